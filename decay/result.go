@@ -129,4 +129,3 @@ type Readings struct {
 
 // A Point is a time in s and a value in the unit of the channel.
 type Point struct{ Time, Value float64 }
-
