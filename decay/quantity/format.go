@@ -100,6 +100,20 @@ func Format(x float64, unit string, digits int) string {
 	return withUnit(trimZeros(s), p.symbol, unit)
 }
 
+// Scale returns what to multiply numbers up to x with so that they read well in
+// engineering notation, and the unit they are in then: 2e-5 s are Scale's 1e6
+// and "µs". For axes and tables whose numbers share a unit.
+func Scale(x float64, unit string) (factor float64, scaled string) {
+	if !finite(x) || x == 0 {
+		return 1, symbol(unit)
+	}
+	p := prefixFor(exponent(x, 3), unit)
+	if p.power > 0 {
+		return 1 / math.Pow10(p.power), p.symbol + symbol(unit)
+	}
+	return math.Pow10(-p.power), p.symbol + symbol(unit)
+}
+
 // plain returns the value alone, with as many digits as it deserves.
 func (q Quantity) plain() string {
 	if q.U == 0 {

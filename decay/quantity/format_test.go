@@ -105,6 +105,22 @@ func TestFormat(t *testing.T) {
 	}
 }
 
+func TestScale(t *testing.T) {
+	for _, c := range []struct {
+		x      float64
+		unit   string
+		factor float64
+		scaled string
+	}{
+		{2e-5, "s", 1e6, "µs"}, {999.6, "V", 1e-3, "kV"}, {-0.5, "V", 1e3, "mV"}, {5000, "s", 1, "s"},
+		{0.01, "counts", 1, "counts"}, {0, "V", 1, "V"}, {nan, "ohm", 1, "Ω"},
+	} {
+		if f, u := Scale(c.x, c.unit); f != c.factor || u != c.scaled {
+			t.Errorf("%g %s: got %g, %q, want %g, %q", c.x, c.unit, f, u, c.factor, c.scaled)
+		}
+	}
+}
+
 // What is printed reads back as the same quantity, to the digits shown.
 func TestStringReadsBack(t *testing.T) {
 	rng := rand.New(rand.NewPCG(1, 1))
