@@ -1,0 +1,268 @@
+package decay
+
+import (
+	"math"
+	"sort"
+)
+
+// gate is the stretch of a record that one free decay fills, and the fit to it.
+type gate struct {
+	first, last int // samples first to last-1
+	fit         ringFit
+	// cutBefore and cutAfter tell that something else (an edge) bounds the gate,
+	// not the record.
+	cutBefore, cutAfter bool
+}
+
+const (
+	seedsTried = 4       // per onset
+	coreMost   = 1 << 15 // samples of a first fit
+	tailLimit  = 12      // time constants after which nothing is left to learn
+	breakSigma = 6       // departure that cannot be noise...
+	breakShare = 0.03    // ...nor a model that is slightly wrong
+)
+
+// findGate finds the free decay in s: where it begins, after the edge that
+// shocked the circuit, and where to stop. The first fit grows from the best seed
+// to both sides as long as the samples follow it.
+func findGate(s series, fixedStart, fixedEnd bool) (gate, bool) {
+	p := newPyramid(s)
+	g, ok := firstFit(s, p, fixedStart)
+	if !ok {
+		return gate{}, false
+	}
+	for range 2 {
+		if !fixedStart {
+			g.placeStart(s, p)
+		}
+		g.growForward(s, fixedEnd)
+	}
+	if f, ok := fitRing(s.slice(g.first, g.last), g.fit.a, g.fit.w); ok {
+		g.fit = f
+	}
+	return g, true
+}
+
+// firstFit refines the best seeds of every onset and keeps the likeliest account
+// of the whole record: a constant, then the ring in its window, then a constant.
+func firstFit(s series, p *pyramid, fixedStart bool) (gate, bool) {
+	var best gate
+	least := math.Inf(1)
+	levels := newPlateaus(p)
+	onsets := p.onsets()
+	if fixedStart {
+		onsets = onsets[:1]
+	}
+	for _, o := range onsets {
+		var done []seed
+		for _, sd := range p.seeds(o) {
+			if len(done) == seedsTried {
+				break
+			}
+			if similar(sd, done) {
+				continue
+			}
+			done = append(done, sd)
+			f, explained, ok := p.refine(sd)
+			if !ok {
+				continue
+			}
+			if left := levels.left(sd.first, sd.last) - explained; left < least {
+				least = left
+				m := f.s.dt / s.dt
+				f.a, f.w = f.a/m, f.w/m
+				best = gate{first: p.sample(s, sd.first), last: p.sample(s, sd.last), fit: f}
+			}
+		}
+	}
+	if math.IsInf(least, 1) {
+		return best, false
+	}
+	f, ok := fitRing(s.slice(best.first, min(best.last, best.first+coreMost)), best.fit.a, best.fit.w)
+	if ok && f.stop != Singular {
+		best.fit, best.last = f, min(best.last, best.first+coreMost)
+	}
+	return best, ok
+}
+
+// similar reports whether a seed of the same window adds nothing to those done.
+func similar(s seed, done []seed) bool {
+	for _, d := range done {
+		if s.first == d.first && s.last == d.last && math.Abs(s.w-d.w) < 0.05*d.w && math.Abs(s.a-d.a) < 0.3*d.a {
+			return true
+		}
+	}
+	return false
+}
+
+// refine fits the seed's window on the finest level that keeps it short, and
+// returns the energy that the ring explains there beyond a constant, in units of
+// samples of level 0.
+func (p *pyramid) refine(sd seed) (f ringFit, explained float64, ok bool) {
+	k := 0
+	for k+1 < len(p.levels) && (sd.last-sd.first)/scale(k) > coreMost {
+		k++
+	}
+	m := float64(scale(k))
+	level := p.levels[k]
+	window := level.slice(sd.first/scale(k), min(sd.last/scale(k), level.len()))
+	if sd.w*m > math.Pi {
+		return f, 0, false
+	}
+	if f, ok = fitRing(window, sd.a*m, sd.w*m); !ok || f.stop == Singular {
+		return f, 0, false
+	}
+	r := newRing(window)
+	return f, m * (r.yy - r.y*r.y/float64(r.n) - f.rss), true
+}
+
+// plateaus tells how much energy is left when a record is cut in three and each
+// part is taken as constant.
+type plateaus struct {
+	block    int
+	sum, sqs []float64 // running sums over blocks
+}
+
+const plateauBlocks = 1 << 16
+
+func newPlateaus(p *pyramid) *plateaus {
+	y := p.levels[0].y
+	block := (len(y) + plateauBlocks - 1) / plateauBlocks
+	n := (len(y) + block - 1) / block
+	out := &plateaus{block: block, sum: make([]float64, n+1), sqs: make([]float64, n+1)}
+	ref := y[len(y)/2]
+	for i := range n {
+		out.sum[i+1], out.sqs[i+1] = out.sum[i], out.sqs[i]
+		for _, v := range y[i*block : min(len(y), (i+1)*block)] {
+			out.sum[i+1] += v - ref
+			out.sqs[i+1] += (v - ref) * (v - ref)
+		}
+	}
+	return out
+}
+
+// left is the energy about the means of what lies before first, between, and from last on.
+func (p *plateaus) left(first, last int) float64 {
+	n := len(p.sum) - 1
+	i, j := min(first/p.block, n), min((last+p.block-1)/p.block, n)
+	return p.about(0, i) + p.about(i, j) + p.about(j, n)
+}
+
+func (p *plateaus) about(i, j int) float64 {
+	if i >= j {
+		return 0
+	}
+	s := p.sum[j] - p.sum[i]
+	return p.sqs[j] - p.sqs[i] - s*s/float64((j-i)*p.block)
+}
+
+// sample converts an index of level 0 to one of s.
+func (p *pyramid) sample(s series, i int) int {
+	if s.times == nil {
+		return min(i, s.len())
+	}
+	t := p.levels[0].t0 + float64(i)*s.dt
+	return sort.SearchFloat64s(s.times, t-0.5*s.dt)
+}
+
+// growForward extends the gate, doubling it, until the record ends, the decay has
+// died, or the samples break with the fit.
+func (g *gate) growForward(s series, fixedEnd bool) {
+	for {
+		limit := s.len()
+		if g.fit.a > 0 && !fixedEnd {
+			limit = min(limit, g.first+int(math.Max(tailLimit/g.fit.a, 16)))
+		}
+		if g.last >= limit {
+			g.last = limit
+			g.cutAfter = false
+			return
+		}
+		to := min(limit, g.last+max(g.last-g.first, 8))
+		if i, broken := g.breakIn(s, g.last, to, 1); broken && !fixedEnd {
+			g.last, g.cutAfter = i, true
+			return
+		}
+		g.last = to
+		g.refit(s)
+	}
+}
+
+func (g *gate) refit(s series) {
+	if f, ok := fitRing(s.slice(g.first, g.last), g.fit.a, g.fit.w); ok && f.stop != Singular {
+		g.fit = f
+		g.fit.s = s.slice(g.first, g.last)
+	}
+}
+
+// breakIn walks from sample i towards to (not included) and returns the first
+// sample that departs from the fit by more than noise, prediction and a slightly
+// wrong model explain, provided that a neighbour further on agrees.
+func (g *gate) breakIn(s series, i, to, step int) (int, bool) {
+	sigma := g.lateSigma()
+	cov, ok := invertSym(g.fit.normal.jtj)
+	if !ok {
+		return i, false
+	}
+	size := g.fit.size()
+	origin := s.time(g.fitFirst(s))
+	held := -1
+	for ; i != to; i += step {
+		n := (s.time(i) - origin) / s.dt
+		r := math.Abs(s.y[i] - g.fit.value(n))
+		if math.IsNaN(r) {
+			continue
+		}
+		limit := breakSigma*sigma + breakShare*size*math.Exp(-math.Max(0, g.fit.a*math.Min(n, 0)))
+		if r > limit && r > limit+breakSigma*sigma*(g.fit.spread(cov.At, n)) {
+			if held >= 0 && abs(i-held) <= 3 {
+				return held, true
+			}
+			held = i
+		}
+	}
+	return i, false
+}
+
+// fitFirst is the index in s of the first sample of the fitted window.
+func (g *gate) fitFirst(s series) int { return g.first }
+
+// spread is the standard deviation of the curve n intervals after its start,
+// in units of the noise, from the covariance inv(J'J).
+func (f *ringFit) spread(cov func(i, j int) float64, n float64) float64 {
+	j := f.gradient(n)
+	sum := 0.0
+	for i := range 5 {
+		for k := range 5 {
+			sum += j[i] * cov(i, k) * j[k]
+		}
+	}
+	return math.Sqrt(math.Max(sum, 0))
+}
+
+// gradient of the curve with respect to a, w, c, p, q.
+func (f *ringFit) gradient(n float64) [5]float64 {
+	sin, cos := math.Sincos(f.w * n)
+	e := math.Exp(-f.a * n)
+	c, s := e*cos, e*sin
+	return [5]float64{-n * (f.p*c + f.q*s), n * (f.q*c - f.p*s), 1, c, s}
+}
+
+// lateSigma is the noise in the second half of the fitted window, where neither
+// an edge nor a large amplitude disturbs it.
+func (g *gate) lateSigma() float64 {
+	half := g.fit.s.len() / 2
+	late := g.fit.s.slice(half, g.fit.s.len())
+	if late.len() > noiseSamples {
+		late = late.slice(late.len()-noiseSamples, late.len())
+		half = g.fit.s.len() - noiseSamples
+	}
+	return robustSigma(g.fit.residuals(late, g.fit.s.position(half)))
+}
+
+func abs(i int) int {
+	if i < 0 {
+		return -i
+	}
+	return i
+}

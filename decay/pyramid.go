@@ -1,0 +1,117 @@
+package decay
+
+import (
+	"math"
+	"slices"
+)
+
+// pyramid holds a record at falling sample rates: level k is the mean over 4^k
+// neighbouring samples. The mean of an exponential exp(zn) over blocks is again
+// that exponential, so that decay rate and frequency can be sought on the level
+// where the ring has a handful of samples per cycle, however deep the record is.
+type pyramid struct {
+	levels []series
+}
+
+const pyramidRatio = 4
+
+// newPyramid fills gaps with the last value and puts uneven samples on a uniform
+// grid: good enough to look for start values, never used for the result.
+func newPyramid(s series) *pyramid {
+	base := series{y: s.y, t0: s.time(0), dt: s.dt}
+	if s.times != nil {
+		base.y = gridded(s)
+	} else if s.gaps {
+		base.y = filled(slices.Clone(s.y))
+	}
+	p := &pyramid{levels: []series{base}}
+	for {
+		last := p.levels[len(p.levels)-1]
+		if last.len() < 16*pyramidRatio {
+			return p
+		}
+		p.levels = append(p.levels, decimated(last))
+	}
+}
+
+func decimated(s series) series {
+	out := make([]float64, s.len()/pyramidRatio)
+	for i := range out {
+		b := s.y[i*pyramidRatio : i*pyramidRatio+pyramidRatio]
+		out[i] = (b[0] + b[1] + b[2] + b[3]) / pyramidRatio
+	}
+	return series{y: out, t0: s.t0 + s.dt*(pyramidRatio-1)/2, dt: s.dt * pyramidRatio}
+}
+
+// filled replaces NaN by the last value before it (the first one after it at the start).
+func filled(y []float64) []float64 {
+	last := 0.0
+	if i := slices.IndexFunc(y, func(v float64) bool { return !math.IsNaN(v) }); i >= 0 {
+		last = y[i]
+	}
+	for i, v := range y {
+		if math.IsNaN(v) {
+			y[i] = last
+		} else {
+			last = v
+		}
+	}
+	return y
+}
+
+// gridded interpolates an uneven series linearly at uniform times.
+func gridded(s series) []float64 {
+	n := max(2, min(4*s.len(), int((s.times[s.len()-1]-s.times[0])/s.dt+1.5)))
+	src := filled(slices.Clone(s.y))
+	out := make([]float64, n)
+	j := 0
+	for i := range out {
+		t := s.times[0] + float64(i)*s.dt
+		for j+2 < s.len() && s.times[j+1] < t {
+			j++
+		}
+		span := s.times[j+1] - s.times[j]
+		f := 0.0
+		if span > 0 {
+			f = math.Min(1, math.Max(0, (t-s.times[j])/span))
+		}
+		out[i] = src[j] + f*(src[j+1]-src[j])
+	}
+	return out
+}
+
+// scale returns the number of samples of level 0 in one of level k.
+func scale(k int) int { return 1 << (2 * k) }
+
+// onsets proposes where a decay may begin, as indices of level 0 in order of time.
+// Any shock stands out, at some scale, as the place where the mean of a stretch
+// differs most from the mean of the next: the steepest place of each level is
+// followed down to the finest (edge tracking across scales as in Mallat and Hwang
+// 1992, from memory). The start of the record is always among them.
+func (p *pyramid) onsets() []int {
+	found := []int{0}
+	for k := len(p.levels) - 1; k >= 0; k-- {
+		i := steepest(p.levels[k].y, 0, p.levels[k].len())
+		for j := k - 1; j >= 0; j-- {
+			i *= pyramidRatio
+			i = steepest(p.levels[j].y, i-pyramidRatio, i+3*pyramidRatio)
+		}
+		found = append(found, i)
+	}
+	slices.Sort(found)
+	return slices.Compact(found)
+}
+
+// steepest returns the index before the largest step between neighbours or next
+// neighbours in y[first:last].
+func steepest(y []float64, first, last int) int {
+	first, last = max(0, first), min(len(y), last)
+	best, at := -1.0, first
+	for i := first; i+2 < last; i++ {
+		d := math.Max(math.Abs(y[i+1]-y[i]), math.Abs(y[i+2]-y[i]))
+		if d > best {
+			best, at = d, i
+		}
+	}
+	return at
+}

@@ -1,0 +1,88 @@
+package decay
+
+import (
+	"math"
+
+	"dieaway/capture"
+)
+
+// series is a stretch of samples with its time axis: what the methods work on.
+type series struct {
+	y     []float64 // NaN where there is no sample
+	t0    float64   // time of y[0], s
+	dt    float64   // mean interval, s
+	times []float64 // true times, s; nil when uniform
+	gaps  bool      // whether y holds a NaN
+}
+
+func newSeries(ch *capture.Channel) series {
+	s := series{y: ch.Samples, t0: ch.Axis.Start, dt: ch.Axis.Interval, times: ch.Axis.Times}
+	for _, v := range s.y {
+		if math.IsNaN(v) {
+			s.gaps = true
+			break
+		}
+	}
+	return s
+}
+
+func (s series) len() int { return len(s.y) }
+
+// uniform reports whether every sample is there, at its place.
+func (s series) uniform() bool { return s.times == nil && !s.gaps }
+
+// slice returns samples first to last-1.
+func (s series) slice(first, last int) series {
+	out := series{y: s.y[first:last], t0: s.time(first), dt: s.dt, gaps: s.gaps}
+	if s.times != nil {
+		out.times = s.times[first:last]
+	}
+	return out
+}
+
+func (s series) time(i int) float64 {
+	if s.times != nil && i < len(s.times) {
+		return s.times[i]
+	}
+	if s.times != nil {
+		return s.times[len(s.times)-1] + float64(i+1-len(s.times))*s.dt
+	}
+	return s.t0 + float64(i)*s.dt
+}
+
+// position returns the time of sample i after sample 0, in mean intervals.
+func (s series) position(i int) float64 {
+	if s.times != nil {
+		return (s.times[i] - s.times[0]) / s.dt
+	}
+	return float64(i)
+}
+
+// count returns the number of samples that are there.
+func (s series) count() int {
+	if !s.gaps {
+		return len(s.y)
+	}
+	n := 0
+	for _, v := range s.y {
+		if !math.IsNaN(v) {
+			n++
+		}
+	}
+	return n
+}
+
+// mean of the samples that are there; 0 when there is none.
+func (s series) mean() float64 {
+	sum, n := 0.0, 0
+	for _, v := range s.y {
+		if !math.IsNaN(v) {
+			sum += v
+			n++
+		}
+	}
+	if n == 0 {
+		return 0
+	}
+	return sum / float64(n)
+}

@@ -1,0 +1,147 @@
+package decay
+
+import "math"
+
+const (
+	startPoints  = 64    // samples per cycle that suffice to place the start coarsely
+	startCycles  = 32    // cycles of the decay that tell the start,
+	heavyRatio   = 5     // w over a, twice Q, below which a ring counts as heavily damped
+	startSamples = 4096  // or as many samples
+	modelShare   = 0.005 // of the record's rms: what a slightly wrong model may leave
+	trimSigma    = 5     // departure at which a sample on an edge is dropped
+)
+
+// startSearch looks for the first sample of the free decay: the cut s for which
+// samples from s on, as a ring with noise of their own, and samples before s, as
+// anything of the record's own variance V, are likeliest together:
+//
+//	J(s) = n(s) ln(RSS(s)/n(s)) + s ln V
+//
+// A sample is thus left out only when the ring explains it worse than chance.
+type startSearch struct {
+	s        series  // up to the last sample that the search needs
+	variance float64 // V
+	floor    float64 // variance that a slightly wrong model may leave
+	a, w     float64
+	tried    map[int]trial
+}
+
+// trial is a fit from one start.
+type trial struct {
+	cost float64
+	fit  ringFit
+}
+
+func newStartSearch(s series, start, last int, f *ringFit) *startSearch {
+	enough := int(math.Max(startCycles*f.period(), startSamples))
+	s = s.slice(0, min(last, start+enough))
+	r := newRing(s)
+	v := (r.yy - r.y*r.y/float64(max(1, r.n))) / float64(max(1, r.n))
+	return &startSearch{s: s, a: f.a, w: f.w, variance: v, floor: sq(modelShare) * v, tried: map[int]trial{}}
+}
+
+// at fits the decay from sample i.
+func (q *startSearch) at(i int) trial {
+	if t, ok := q.tried[i]; ok {
+		return t
+	}
+	t := trial{cost: math.Inf(1)}
+	if f, ok := q.fit(q.s.slice(i, q.s.len())); ok {
+		n := float64(f.n)
+		t = trial{cost: -n * math.Log(q.variance/(f.rss/n+q.floor)), fit: f}
+	}
+	q.tried[i] = t
+	return t
+}
+
+// fit starts at the best estimate so far and, where the ring is so damped that a
+// sample too many spoils it, afresh from the bank as well.
+func (q *startSearch) fit(window series) (best ringFit, ok bool) {
+	starts := []seed{{a: q.a, w: q.w}}
+	if q.w < heavyRatio*q.a {
+		starts = append(starts, damped(window.y)...)
+	}
+	for _, sd := range starts {
+		f, good := fitRing(window, sd.a, sd.w)
+		if good && f.stop != Singular && f.a > 0 && (!ok || f.rss < best.rss) {
+			best, ok = f, true
+		}
+	}
+	return best, ok
+}
+
+// search walks from start to better starts in steps that shrink by half.
+func (q *startSearch) search(start int) (int, trial) {
+	at, best := start, q.at(start)
+	for step := floorPower(q.s.len()); step >= 1; step /= 2 {
+		for _, i := range []int{at - step, at + step} {
+			if i < 0 || i > q.s.len()-samplesLeast {
+				continue
+			}
+			if t := q.at(i); t.cost < best.cost {
+				at, best = i, t
+				q.a, q.w = t.fit.a, t.fit.w
+			}
+		}
+	}
+	return at, best
+}
+
+// floorPower is the largest power of two not above n.
+func floorPower(n int) int {
+	p := 1
+	for p*2 <= n {
+		p *= 2
+	}
+	return p
+}
+
+// placeStart moves the start of the gate to where the free decay begins, on the
+// level that has samples enough per cycle and then on the record itself.
+func (g *gate) placeStart(s series, p *pyramid) {
+	k := 0
+	if s.uniform() {
+		for k+1 < len(p.levels) && g.fit.period()/float64(scale(k+1)) >= startPoints {
+			k++
+		}
+	}
+	for ; k >= 0; k -= 2 {
+		m := float64(scale(k))
+		level := s
+		if k > 0 {
+			level = p.levels[k]
+		}
+		f := g.fit
+		f.a, f.w = f.a*m, f.w*m
+		q := newStartSearch(level, g.first/scale(k), min(g.last/scale(k), level.len()), &f)
+		at, t := q.search(min(g.first/scale(k), max(0, q.s.len()-samplesLeast)))
+		if !math.IsInf(t.cost, 1) {
+			g.first = at * scale(k)
+			g.fit.a, g.fit.w = t.fit.a/m, t.fit.w/m
+		}
+		if k == 1 {
+			k = 2
+		}
+	}
+	g.refit(s)
+	g.trim(s)
+	g.cutBefore = g.first > 0
+}
+
+// trim drops the samples of the edge itself, a few at most, that a finite rise
+// time leaves between the levels.
+func (g *gate) trim(s series) {
+	if g.first == 0 {
+		return
+	}
+	sigma := g.lateSigma()
+	most := g.first + max(2, int(g.fit.period()/16))
+	for g.first < most && g.last-g.first > 2*samplesLeast {
+		r := g.fit.residuals(g.fit.s.slice(0, 1), 0)[0]
+		if math.Abs(r) < trimSigma*sigma {
+			return
+		}
+		g.first++
+		g.refit(s)
+	}
+}
