@@ -50,6 +50,11 @@ type Axis struct {
 	// Times holds the true time of every sample, in seconds, not decreasing;
 	// nil when the samples are uniform: sample i is at Start + i*Interval.
 	Times []float64
+	// IntervalU is the standard uncertainty of Interval from the print alone, in
+	// seconds; 0 when nothing tells. The clock's own error is not in it.
+	IntervalU float64
+	// Resolution is the step of the printed times, in seconds; 0 without a time column.
+	Resolution float64
 	// Source says where the axis came from, in words for people, for example
 	// "time column, regression over 2500 stamps".
 	Source string

@@ -1,0 +1,236 @@
+package capture
+
+import (
+	"fmt"
+	"math"
+	"strings"
+)
+
+// build makes the capture from the table.
+func (d *layoutDesign) build(c *Capture, src *source, t *table) *Error {
+	axes := make([]*Axis, d.plan.times)
+	for k := range axes {
+		a, err := d.axis(c, t, k)
+		if err != nil {
+			return err
+		}
+		axes[k] = a
+		for _, other := range axes[:k] {
+			if sameAxis(a, other) {
+				axes[k] = other
+			}
+		}
+	}
+	if len(axes) == 0 {
+		a, err := d.bareAxis(t.rows)
+		if err != nil {
+			return err
+		}
+		axes = append(axes, a)
+	}
+	d.finishRoles(t)
+	d.addChannels(c, t, axes)
+	d.addFindings(c, t)
+	c.Layout = d.layout(src)
+	return nil
+}
+
+func sameAxis(a, b *Axis) bool {
+	if a.N != b.N || a.Start != b.Start || a.Interval != b.Interval || (a.Times == nil) != (b.Times == nil) {
+		return false
+	}
+	return sameValues(a.Times, b.Times)
+}
+
+func (d *layoutDesign) addChannels(c *Capture, t *table, axes []*Axis) {
+	for i := range d.columns {
+		col := &d.columns[i]
+		if col.Role != RoleChannel {
+			continue
+		}
+		ch := &Channel{Number: len(c.Channels) + 1, Unit: col.unit.base, Samples: t.values[d.plan.steps[i].to], Axis: axes[0]}
+		if col.time >= 0 {
+			ch.Axis = axes[d.plan.steps[col.time].to]
+		}
+		if ch.Unit == "" && wholeNumbers(ch.Samples) {
+			ch.Unit = "counts"
+		}
+		ch.Name = d.channelName(i, ch.Number)
+		c.Channels = append(c.Channels, ch)
+	}
+}
+
+func wholeNumbers(v []float64) bool {
+	for _, x := range v {
+		if x != math.Trunc(x) {
+			return false
+		}
+	}
+	return true
+}
+
+// channelName is the name of the column, without what it only shares with its
+// time column; else what the preamble calls the source; else the number.
+func (d *layoutDesign) channelName(i, number int) string {
+	col := &d.columns[i]
+	if name := col.Name; name != "" {
+		if col.time >= 0 {
+			name = commonEnd(d.columns[col.time].Name, name)
+		}
+		return name
+	}
+	if text, _, ok := d.preamble.text(meansSource, i); ok {
+		return text
+	}
+	return fmt.Sprintf("channel %d", number)
+}
+
+// commonEnd returns what "TimeV_S" and "AmplitudeV_S" end in, when the first
+// starts with the word time; else the name as it is.
+func commonEnd(time, name string) string {
+	if rest := strings.TrimLeft(time[min(4, len(time)):], " _-"); len(time) > 4 && strings.EqualFold(time[:4], "time") {
+		if rest != "" && strings.HasSuffix(name, rest) {
+			return rest
+		}
+	}
+	return name
+}
+
+// finishRoles corrects the roles by all values, now that they are known.
+func (d *layoutDesign) finishRoles(t *table) {
+	var channels []int
+	for i := range d.columns {
+		if d.columns[i].Role == RoleChannel {
+			channels = append(channels, i)
+		}
+	}
+	kept := len(channels)
+	drop := func(i int, r Role, why string, args ...any) {
+		if kept > 1 {
+			d.columns[i].is(r, why, args...)
+			kept--
+		}
+	}
+	values := func(i int) []float64 { return t.values[d.plan.steps[i].to] }
+	for k, i := range channels {
+		switch v := values(i); {
+		case t.missing[d.plan.steps[i].to] == t.rows:
+			drop(i, RoleBlank, "not one sample in it can be read")
+		case bits(v) && d.columns[i].whole:
+			drop(i, RoleLogic, "it holds only 0 and 1")
+		default:
+			for _, j := range channels[:k] {
+				a, b := d.columns[j].Name, d.columns[i].Name
+				if d.columns[j].Role == RoleChannel && (b == "" || a == b) && sameValues(v, values(j)) {
+					drop(i, RoleDuplicate, "the same samples as in column %d", j+1)
+					break
+				}
+			}
+		}
+	}
+	d.joinPeaks(channels, values)
+}
+
+// bits reports a column of both 0 and 1 and nothing else.
+func bits(v []float64) bool {
+	zero, one := false, false
+	for _, x := range v {
+		zero, one = zero || x == 0, one || x == 1
+		if x != 0 && x != 1 && !math.IsNaN(x) {
+			return false
+		}
+	}
+	return zero && one
+}
+
+// joinPeaks replaces the minimum and maximum columns of peak detection by
+// their mean: a ring that the sampling resolves lies between them, and one that
+// it does not resolve leaves no false envelope.
+func (d *layoutDesign) joinPeaks(channels []int, values func(int) []float64) {
+	for k := 1; k < len(channels); k++ {
+		i, j := channels[k-1], channels[k]
+		a, b := &d.columns[i], &d.columns[j]
+		stem, ok := peakPair(a.Name, b.Name)
+		if !ok || a.Role != RoleChannel || b.Role != RoleChannel {
+			continue
+		}
+		lo, hi := values(i), values(j)
+		if stem == a.Name && !ordered(lo, hi) {
+			continue
+		}
+		for n := range lo {
+			lo[n] = 0.5*lo[n] + 0.5*hi[n]
+		}
+		a.Why = fmt.Sprintf("mean of the minimum and maximum of peak detection in columns %d and %d", i+1, j+1)
+		a.Name = stem
+		b.is(RoleDuplicate, "other end of the peak detection of column %d; the channel is the mean of both", i+1)
+	}
+}
+
+// peakPair reports names that differ in minimum and maximum only, or not at
+// all, and what they have in common.
+func peakPair(a, b string) (string, bool) {
+	if a == "" || a == b {
+		return a, a != ""
+	}
+	strip := func(name string) (string, bool) {
+		found := false
+		var keep []string
+		for _, w := range words(name) {
+			switch w {
+			case "min", "max", "minimum", "maximum", "low", "high":
+				found = true
+			default:
+				keep = append(keep, w)
+			}
+		}
+		return strings.Join(keep, " "), found
+	}
+	x, okX := strip(a)
+	y, okY := strip(b)
+	if !okX || !okY || x != y {
+		return "", false
+	}
+	if n := strings.Index(strings.ToLower(a), x); x != "" && n >= 0 {
+		return a[n : n+len(x)], true
+	}
+	return x, true
+}
+
+func ordered(lo, hi []float64) bool {
+	for i := range lo {
+		if lo[i] > hi[i] {
+			return false
+		}
+	}
+	return true
+}
+
+// layout sums up how the file was understood.
+func (d *layoutDesign) layout(src *source) Layout {
+	l := Layout{
+		Encoding: src.encoding, Compressed: src.compressed,
+		Preamble: d.head.lines[d.head.first].number - 1, HeaderLine: d.heading.namesLine, UnitsLine: d.heading.unitsLine,
+		FirstLine: d.head.lines[d.head.first].number, Delimiter: d.head.name(), DecimalMark: string(d.head.mark),
+	}
+	if top := min(positive(l.HeaderLine, l.FirstLine), positive(l.UnitsLine, l.FirstLine)); top > 0 {
+		l.Preamble = top - 1
+	}
+	if len(d.columns) == 1 {
+		l.Delimiter = "none"
+	}
+	if src.encoding == "UTF-8" && !validHead(d.head.bytes) {
+		l.Encoding = "Latin-1"
+	}
+	for _, c := range d.columns {
+		l.Columns = append(l.Columns, c.Column)
+	}
+	return l
+}
+
+func positive(n, otherwise int) int {
+	if n > 0 {
+		return n
+	}
+	return otherwise
+}

@@ -1,0 +1,230 @@
+package capture
+
+import (
+	"fmt"
+	"math"
+)
+
+// axis decides the time axis of the time column k, and adds to c what must be
+// said of it.
+func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
+	col := d.timeColumn(k)
+	clk := newClock(t.spans[k])
+	if clk.spans[len(clk.spans)-1].last <= clk.spans[0].first {
+		return nil, &Error{Err: ErrNoTime, Column: col + 1, Found: "the same time in every row", Expected: "a time that rises"}
+	}
+	if d.columns[col].Role == RoleIndex {
+		return d.indexAxis(c, clk, col), nil
+	}
+	a := &Axis{N: clk.n, Resolution: clk.resolution}
+	decl := d.declared(col)
+	d.contradiction(c, clk, decl)
+	if clk.even() {
+		clk.straight(a, decl, d.opt.Interval > 0)
+		coarse(c, clk, a)
+	} else {
+		clk.crooked(a)
+		uneven(c, clk, a)
+	}
+	if d.columns[col].kind == kindStamp {
+		a.countFromFirst()
+	}
+	if d.assumed {
+		d.assumed = false // said once
+		c.note(CoarseTime, Note, "nothing in the file gives the unit of time; seconds are assumed",
+			"give the unit with --time-unit if the times are not seconds")
+	}
+	a.Source += "; " + d.timeWhy
+	return a, nil
+}
+
+func (d *layoutDesign) timeColumn(k int) int {
+	for i, s := range d.plan.steps {
+		if (s.op == opTime || s.op == opClock) && s.to == k {
+			return i
+		}
+	}
+	return 0
+}
+
+// straight makes the axis of stamps that lie on a line. Of the interval of the
+// regression and the declared one that agrees with it the sharper is taken.
+func (k *clock) straight(a *Axis, decl declared, given bool) {
+	su := k.slopeError()
+	a.Interval = shorten(k.interval, 2*su)
+	a.IntervalU = su
+	a.Source = fmt.Sprintf("time column, regression over %d stamps", k.n)
+	if decl.ok && (given || k.agrees(decl) && decl.half < su) {
+		a.Interval, a.IntervalU = decl.value, decl.half/math.Sqrt(3)
+		a.Source = fmt.Sprintf("time column of %d stamps, with the declared interval of %s", k.n, seconds(decl.value))
+	}
+	middle := float64(k.n-1) / 2
+	a.Start = k.start + (k.interval-a.Interval)*middle
+	if first := k.spans[0].first; math.Abs(a.Start-first) <= 0.05*k.resolution+1e-9*k.interval {
+		a.Start = first
+	}
+}
+
+// agrees reports a declared interval that the stamps do not contradict, within
+// what both are printed to.
+func (k *clock) agrees(decl declared) bool {
+	is := k.interval
+	if len(k.gaps) > 0 {
+		is = k.typical
+	}
+	tolerance := math.Max(1.02*decl.half, math.Max(4*k.slopeError(), 1e-6*is))
+	if !k.even() {
+		tolerance = math.Max(tolerance, 0.02*is)
+	}
+	return math.Abs(is-decl.value) <= tolerance
+}
+
+func (d *layoutDesign) contradiction(c *Capture, k *clock, decl declared) {
+	if !decl.ok || k.agrees(decl) {
+		return
+	}
+	what := "the preamble declares"
+	use := "the time column is used"
+	if d.opt.Interval > 0 {
+		what, use = "--interval gives", "the given interval is used"
+		if !k.even() {
+			use = "the time column is used"
+		}
+	}
+	c.note(CoarseTime, Warning, fmt.Sprintf("%s %s a sample, but the stamps are %s apart; %s", what, seconds(decl.value), seconds(k.interval), use),
+		"find out which of the two is true: frequency and time constant scale with it")
+}
+
+// coarse says that the print of the stamps was too coarse to be taken as it
+// is, where that is more than nothing.
+func coarse(c *Capture, k *clock, a *Axis) {
+	if k.off < 0.05*k.interval {
+		return
+	}
+	severity := Note
+	if a.IntervalU > 1e-4*a.Interval {
+		severity = Warning
+	}
+	c.note(CoarseTime, severity,
+		fmt.Sprintf("times are printed to %s, %.2g of the sampling interval of %s; even sampling is rebuilt from %s",
+			seconds(k.resolution), k.resolution/a.Interval, seconds(a.Interval), a.Source),
+		"save the times with more digits if the record is not evenly sampled")
+}
+
+// crooked makes the axis of stamps that are not even: their true times.
+func (k *clock) crooked(a *Axis) {
+	a.Times = k.times()
+	a.Start = a.Times[0]
+	a.Interval = (a.Times[k.n-1] - a.Times[0]) / float64(k.n-1)
+	a.Source = fmt.Sprintf("time column, the %d stamps as they are", k.n)
+}
+
+// uneven says what is uneven: rows missing, stamps repeated, jitter.
+func uneven(c *Capture, k *clock, a *Axis) {
+	if len(k.gaps) > 0 {
+		g := k.gaps[0]
+		where := fmt.Sprintf("before sample %d at %s", g.row+1, seconds(g.time))
+		if n := len(k.gaps); n > 1 {
+			where = fmt.Sprintf("in %d gaps, the first %s", n, where)
+		}
+		c.note(MissingSamples, Warning, fmt.Sprintf("%s of time missing: %s", rowsOf(k.lost), where),
+			"save the record again; the fit uses the true times of the samples that are there")
+	}
+	if k.zeroSteps > 0 && k.resolution < 0.5*k.typical {
+		c.note(UnevenTime, Warning, fmt.Sprintf("%d stamps repeat the one before them", k.zeroSteps),
+			"look for rows that were written twice")
+	}
+	rms, worst := k.jitter(a.Times)
+	if worst <= math.Max(k.resolution, 2*negligible*k.typical) {
+		return
+	}
+	severity := Note
+	if worst > 0.2*k.typical {
+		severity = Warning
+	}
+	c.note(UnevenTime, severity,
+		fmt.Sprintf("stamps are not even: steps scatter by %.2g %% of the interval of %s, at most by %.2g %%", 100*rms/k.typical, seconds(k.typical), 100*worst/k.typical),
+		"nothing if the sampling is known to jitter: the fit uses the true times")
+}
+
+func rowsOf(n int) string {
+	if n == 1 {
+		return "1 row"
+	}
+	return fmt.Sprintf("%d rows", n)
+}
+
+// jitter is the rms and largest departure of steps from their mean, gaps and
+// repeated stamps left out.
+func (k *clock) jitter(times []float64) (rms, worst float64) {
+	regular := func(d float64) bool { return d > 0 && d <= 1.5*k.typical }
+	sum, n := 0.0, 0
+	for i := 1; i < len(times); i++ {
+		if d := times[i] - times[i-1]; regular(d) {
+			sum += d
+			n++
+		}
+	}
+	mean, squares := sum/float64(max(n, 1)), 0.0
+	for i := 1; i < len(times); i++ {
+		if d := times[i] - times[i-1]; regular(d) {
+			squares += (d - mean) * (d - mean)
+			worst = math.Max(worst, math.Abs(d-mean))
+		}
+	}
+	return math.Sqrt(squares / float64(max(n, 1))), worst
+}
+
+// countFromFirst makes the first sample the zero of a clock time.
+func (a *Axis) countFromFirst() {
+	for i := range a.Times {
+		a.Times[i] -= a.Start
+	}
+	a.Start = 0
+}
+
+// indexAxis makes the axis of a column that counts the samples, and of the
+// declared start and interval.
+func (d *layoutDesign) indexAxis(c *Capture, k *clock, col int) *Axis {
+	decl := d.declared(col)
+	start, source := d.declaredStart(col, decl.value)
+	a := &Axis{N: k.n, Start: start, IntervalU: decl.half / math.Sqrt(3),
+		Source: fmt.Sprintf("count of samples in column %d, with the declared interval of %s%s", col+1, seconds(decl.value), source)}
+	if k.even() {
+		a.Interval = decl.value * shorten(k.interval, 2*k.slopeError())
+		return a
+	}
+	k.crooked(a)
+	uneven(c, k, a)
+	first := a.Times[0]
+	for i, n := range a.Times {
+		a.Times[i] = start + (n-first)*decl.value
+	}
+	a.Start, a.Interval = a.Times[0], a.Interval*decl.value
+	return a
+}
+
+// bareAxis makes the axis of a file without a time column.
+func (d *layoutDesign) bareAxis(rows int) (*Axis, *Error) {
+	col := max(0, firstWithRole(d.columns, RoleChannel))
+	decl := d.declared(col)
+	start, source := d.declaredStart(col, decl.value)
+	from := "preamble"
+	if d.opt.Interval > 0 {
+		from = "given"
+	}
+	return &Axis{N: rows, Start: start, Interval: decl.value, IntervalU: decl.half / math.Sqrt(3),
+		Source: fmt.Sprintf("no time column; interval of %s (%s)%s", seconds(decl.value), from, source)}, nil
+}
+
+// declaredStart is the time of the first sample as the preamble gives it,
+// directly or by the number of samples before the trigger; else zero.
+func (d *layoutDesign) declaredStart(col int, interval float64) (float64, string) {
+	if s := d.preamble.number(meansStart, col, "s", d.preamble.timeUnit(col)); s.ok {
+		return s.value, ", start declared"
+	}
+	if n := d.preamble.number(meansTrigger, col, "", unit{}); n.ok && n.value >= 0 && n.value == math.Trunc(n.value) {
+		return -n.value * interval, ", start from the trigger's sample"
+	}
+	return 0, ", starting at zero"
+}

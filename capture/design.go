@@ -1,0 +1,185 @@
+package capture
+
+import (
+	"fmt"
+	"math"
+	"slices"
+)
+
+// A layoutDesign is what was understood of the head, and what follows from it.
+type layoutDesign struct {
+	head     *head
+	preamble preamble
+	heading  heading
+	columns  []column
+	plan     plan
+	opt      Options
+	// timeWhy says where the unit of time came from; assumed is true when
+	// nothing gave it.
+	timeWhy string
+	assumed bool
+}
+
+// design decides the layout from the head.
+func design(h *head, opt Options) (*layoutDesign, *Error) {
+	d := &layoutDesign{head: h, opt: opt, preamble: preamble{d: h.dialect}}
+	for _, l := range h.preambleLines() {
+		d.preamble.readLine(l.number, d.preamble.cellsOf(l.text))
+	}
+	d.readBeside()
+	d.heading = findNames(h, &d.preamble)
+	d.columns = newColumns(h, d.heading)
+	assignRoles(h, d.columns)
+	return d, d.makePlan()
+}
+
+// readBeside reads metadata that stand in columns beside the first samples.
+func (d *layoutDesign) readBeside() {
+	d.head.eachRow(func(l line, cells []cell) {
+		for i := range cells {
+			if i < len(d.head.kinds) && d.head.kinds[i].numeric() {
+				cells[i] = cell{}
+			}
+		}
+		d.preamble.readLine(l.number, cells)
+	})
+}
+
+// makePlan turns roles into steps of the data pass.
+func (d *layoutDesign) makePlan() *Error {
+	d.plan = plan{dialect: d.head.dialect, term: d.head.term, steps: make([]step, len(d.columns))}
+	timed := firstWithRole(d.columns, RoleTime) >= 0
+	for i := range d.columns {
+		c, s := &d.columns[i], &d.plan.steps[i]
+		switch c.Role {
+		case RoleTime:
+			d.planTime(c, s)
+		case RoleIndex:
+			if timed || d.plan.times > 0 {
+				continue
+			}
+			*s = step{op: opTime, to: d.plan.times}
+			d.plan.times++
+		case RoleChannel:
+			d.planValue(i)
+		default:
+			continue
+		}
+		d.plan.last = i
+	}
+	if d.plan.values == 0 {
+		return &Error{Err: ErrNoData, Found: fmt.Sprintf("%d columns, none of samples", len(d.columns)), Expected: "a column of voltage or current"}
+	}
+	if d.plan.times == 0 || !timed {
+		return d.needInterval()
+	}
+	return nil
+}
+
+func (d *layoutDesign) planValue(i int) {
+	c := &d.columns[i]
+	if c.unit.base == "" && c.kind != kindQuantity {
+		c.unit, _ = d.preamble.valueUnit(i)
+	}
+	if c.unit.base == "s" || c.unit.base == "Sa/s" { // the unit of something else
+		c.unit = unit{}
+	}
+	d.plan.steps[i] = step{op: opValue, to: d.plan.values, shift: c.unit.exp, quantity: c.kind == kindQuantity}
+	d.plan.values++
+}
+
+// planTime settles the unit of a time column.
+func (d *layoutDesign) planTime(c *column, s *step) {
+	*s = step{op: opTime, to: d.plan.times, quantity: c.kind == kindQuantity}
+	d.plan.times++
+	if c.kind == kindStamp {
+		s.op = opClock
+		d.plan.dayFirst = d.dayFirst(c.Number - 1)
+		d.plan.zero = d.firstSecond(c.Number - 1)
+		d.timeWhy = "dates or clock times, counted from the first"
+		return
+	}
+	if c.kind == kindQuantity {
+		d.timeWhy = "each stamp has its unit"
+		return
+	}
+	c.unit, d.timeWhy = d.timeUnit(c)
+	c.Unit = unitName(c.unit)
+	s.shift = c.unit.exp
+}
+
+// timeUnit looks for the unit of a time column: the caller's word, the header,
+// the preamble, the declared interval against the steps of the column; seconds
+// when nothing gives it.
+func (d *layoutDesign) timeUnit(c *column) (unit, string) {
+	if d.opt.TimeUnit != "" {
+		if u, ok := parseUnit(d.opt.TimeUnit); ok && u.base == "s" {
+			return u, "unit of time given"
+		}
+	}
+	if c.unit.base == "s" {
+		return c.unit, "unit of time in the header"
+	}
+	if u := d.preamble.timeUnit(c.Number - 1); u.base == "s" {
+		return u, "unit of time in the preamble"
+	}
+	if decl, step := d.declared(c.Number-1), medianStep(c.values); decl.ok && step > 0 {
+		for _, exp := range []int{0, -3, -6, -9, -12} {
+			if r := decl.value / (step * math.Pow10(exp)); r > 0.5 && r < 2 {
+				return unit{"s", exp}, "unit of time implied by the declared interval of " + seconds(decl.value)
+			}
+		}
+	}
+	d.assumed = true
+	return unit{base: "s"}, "seconds assumed"
+}
+
+// declared is the sampling interval that the caller or else the preamble gives.
+func (d *layoutDesign) declared(col int) declared {
+	if d.opt.Interval > 0 {
+		return declared{value: d.opt.Interval, ok: true}
+	}
+	return d.preamble.interval(col)
+}
+
+// needInterval refuses a file without time whose interval nothing gives.
+func (d *layoutDesign) needInterval() *Error {
+	col := max(0, slices.IndexFunc(d.columns, func(c column) bool { return c.Role == RoleChannel }))
+	if d.declared(col).ok {
+		return nil
+	}
+	found := "no time column"
+	if i := firstWithRole(d.columns, RoleIndex); i >= 0 {
+		found = fmt.Sprintf("only a count of samples in column %d", i+1)
+	}
+	return &Error{Err: ErrNoTime, Found: found + ", and no sampling interval in the preamble", Expected: "one of them, or --interval"}
+}
+
+// dayFirst reports dates whose first number cannot be a month.
+func (d *layoutDesign) dayFirst(col int) bool {
+	first := true // common in most of the world, and of no weight within a day
+	d.head.eachRow(func(_ line, cells []cell) {
+		p := stampParser{b: cells[col].text}
+		p.number()
+		if p.i++; p.i < len(p.b) {
+			if n, ok := p.number(); ok && n > 12 && n < 32 {
+				first = false
+			}
+		}
+	})
+	return first
+}
+
+// firstSecond is the whole second of the first stamp of a column.
+func (d *layoutDesign) firstSecond(col int) int64 {
+	zero, found := int64(0), false
+	d.head.eachRow(func(_ line, cells []cell) {
+		if found {
+			return
+		}
+		if s, ok := parseStamp(cells[col].text, d.plan.dayFirst); ok {
+			zero, found = s.second, true
+		}
+	})
+	return zero
+}

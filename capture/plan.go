@@ -1,0 +1,306 @@
+package capture
+
+import (
+	"bytes"
+	"fmt"
+	"math"
+)
+
+// An op is what the data pass does with a cell.
+type op uint8
+
+const (
+	opSkip  op = iota
+	opValue    // a sample
+	opTime     // a stamp printed as a number
+	opClock    // a stamp printed as date or clock time
+)
+
+// A step is what the data pass does with the cells of one column.
+type step struct {
+	op       op
+	to       int  // index among the values or among the times
+	shift    int  // power of ten from the printed unit to the base unit
+	quantity bool // cells carry a unit of their own
+}
+
+// A plan is the fixed layout that the data pass follows.
+type plan struct {
+	dialect
+	term     byte
+	steps    []step
+	last     int // the last column that is not skipped
+	values   int // number of columns of samples
+	times    int // number of time columns
+	dayFirst bool
+	zero     int64 // whole second that clock times are counted from
+}
+
+// A chunk is a run of whole lines and what the data pass made of it.
+type chunk struct {
+	text  []byte // ends in the plan's term
+	line  int    // number of its first line
+	lines int
+
+	dst     [][]float64 // for each column of samples, room for as many as lines
+	rows    int
+	missing []int // for each column of samples
+	spans   []span
+	first   int    // line of its first row
+	footer  *Error // the first line that may be a footer
+	err     *Error
+}
+
+// read follows the plan through the chunk. Rows as the plan expects them take
+// the fast way; any other goes to slowRow, which knows every exception.
+func (p *plan) read(c *chunk, stamps [][]float64) {
+	c.missing = make([]int, p.values)
+	c.spans = make([]span, p.times)
+	for k := range c.spans {
+		if cap(stamps[k]) < c.lines {
+			stamps[k] = make([]float64, 0, c.lines)
+		}
+		c.spans[k].begin(stamps[k])
+	}
+	line := c.line
+	for i := 0; i < len(c.text); line++ {
+		next := p.fastRow(c, i)
+		ok := next >= 0
+		if !ok {
+			end := i + bytes.IndexByte(c.text[i:], p.term)
+			ok = p.slowRow(c, c.text[i:end], line)
+			next = end + 1
+		}
+		i = next
+		if ok {
+			if c.rows == 0 {
+				c.first = line
+			}
+			c.rows++
+			p.checkOrder(c, line)
+		}
+		if c.err != nil {
+			return
+		}
+	}
+	for k := range c.spans {
+		c.spans[k].finish(c.rows)
+	}
+}
+
+// checkOrder refuses a row whose time is before that of the row above, and
+// rows below what was taken for a footer.
+func (p *plan) checkOrder(c *chunk, line int) {
+	if c.footer != nil {
+		c.err = c.footer
+		return
+	}
+	for k := range c.spans {
+		if t := c.spans[k].stamps[:c.rows]; c.rows > 1 && t[c.rows-1] < t[c.rows-2] {
+			c.err = backwards(line, t[c.rows-1], t[c.rows-2])
+		}
+	}
+}
+
+func backwards(line int, t, before float64) *Error {
+	return &Error{Err: ErrBackwards, Line: line, Found: fmt.Sprintf("%.9g s after %.9g s", t, before), Expected: "a later time"}
+}
+
+// fastRow reads the row that starts at text[i] and returns where the next line
+// starts, or -1 when the row is not as the plan expects it.
+func (p *plan) fastRow(c *chunk, i int) int {
+	b := c.text
+	for k := 0; k <= p.last; k++ {
+		s := &p.steps[k]
+		for b[i] == ' ' {
+			i++
+		}
+		switch s.op {
+		case opSkip:
+			for b[i] != p.delim && b[i] != p.term && b[i] != '"' {
+				if p.delim == ' ' && b[i] == '\t' {
+					break
+				}
+				i++
+			}
+		case opClock:
+			end := i
+			for b[end] != p.delim && b[end] != p.term && b[end] != '\r' {
+				end++
+			}
+			t, ok := parseStamp(bytes.TrimRight(b[i:end], " "), p.dayFirst)
+			if !ok {
+				return -1
+			}
+			c.spans[s.to].addClock(t, p.zero, c.rows)
+			i = end
+		default:
+			d, end := scanDecimal(b, i, p.mark)
+			if end < 0 {
+				return -1
+			}
+			v := d.float(s.shift, b[i:end], p.mark)
+			if s.op == opTime {
+				c.spans[s.to].add(v, d, s.shift, c.rows)
+			} else {
+				c.dst[s.to][c.rows] = v
+				if math.IsInf(v, 0) {
+					return -1
+				}
+			}
+			i = end
+		}
+		if k < p.last {
+			if i = p.separator(b, i); i < 0 {
+				return -1
+			}
+		}
+	}
+	return p.lineEnd(b, i)
+}
+
+// separator steps over what parts two cells.
+func (p *plan) separator(b []byte, i int) int {
+	if p.delim == ' ' {
+		if b[i] != ' ' && b[i] != '\t' {
+			return -1
+		}
+		for b[i] == ' ' || b[i] == '\t' {
+			i++
+		}
+		return i
+	}
+	for b[i] == ' ' {
+		i++
+	}
+	if b[i] != p.delim {
+		return -1
+	}
+	return i + 1
+}
+
+// lineEnd steps over the rest of a line behind the last cell that is read.
+func (p *plan) lineEnd(b []byte, i int) int {
+	if b[i] == p.term {
+		return i + 1
+	}
+	if p.last < len(p.steps)-1 && (b[i] == p.delim || b[i] == ' ' || b[i] == '\t') {
+		return i + bytes.IndexByte(b[i:], p.term) + 1
+	}
+	for b[i] == '\r' || b[i] == ' ' || b[i] == p.delim {
+		i++
+	}
+	if b[i] == p.term {
+		return i + 1
+	}
+	return -1
+}
+
+// slowRow reads a row of any kind, and reports whether it was one. Blank lines
+// and comments are passed over; words at the end of the text are a footer.
+func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
+	text = bytes.TrimRight(text, "\r\x1a")
+	cells := p.split(text, nil)
+	if allBlank(cells) || isComment(text) && p.kindOf(cells[0]) == kindText {
+		return false
+	}
+	bad, numbers := p.badCell(cells)
+	if bad != nil {
+		bad.Line = line
+		if numbers > 0 {
+			c.err = bad
+		} else if c.footer == nil {
+			c.footer = bad
+		}
+		return false
+	}
+	for k := 0; k <= p.last; k++ {
+		s := p.steps[k]
+		d, shift, digits, _ := p.decimalOf(cells[k], s)
+		switch s.op {
+		case opValue:
+			v := math.NaN()
+			if digits != nil {
+				v = d.float(shift, digits, p.mark)
+			}
+			if math.IsNaN(v) || math.IsInf(v, 0) {
+				v = math.NaN()
+				c.missing[s.to]++
+			}
+			c.dst[s.to][c.rows] = v
+		case opTime:
+			c.spans[s.to].add(d.float(shift, digits, p.mark), d, shift, c.rows)
+		case opClock:
+			t, _ := parseStamp(cells[k].text, p.dayFirst)
+			c.spans[s.to].addClock(t, p.zero, c.rows)
+		}
+	}
+	return true
+}
+
+// decimalOf reads a cell as the step wants it; digits are nil when there is none.
+func (p *plan) decimalOf(x cell, s step) (d decimal, shift int, digits []byte, ok bool) {
+	if x.blank() {
+		return d, 0, nil, s.op == opValue
+	}
+	if d, digits, ok = p.number(x); ok {
+		return d, s.shift, digits, true
+	}
+	if s.quantity {
+		var u unit
+		if d, u, digits, ok = p.quantity(x); ok {
+			return d, u.exp, digits, true
+		}
+	}
+	return d, 0, nil, s.op == opValue && missingMark(x.text)
+}
+
+// badCell returns the first thing wrong with a row, nil if none, and how many
+// of its cells are numbers.
+func (p *plan) badCell(cells []cell) (bad *Error, numbers int) {
+	for k := 0; k <= p.last && k < len(cells); k++ {
+		s := p.steps[k]
+		if s.op == opSkip {
+			continue
+		}
+		var ok, found bool
+		if s.op == opClock {
+			_, ok = parseStamp(cells[k].text, p.dayFirst)
+			found = ok
+		} else {
+			_, _, digits, fine := p.decimalOf(cells[k], s)
+			ok, found = fine, digits != nil
+		}
+		if found {
+			numbers++
+		}
+		if !ok && bad == nil {
+			bad = &Error{Err: ErrSyntax, Column: k + 1, Found: quote(string(cells[k].text)), Expected: s.expects()}
+			if cells[k].blank() {
+				bad.Found = "an empty cell"
+			}
+		}
+	}
+	if bad == nil && (len(cells) <= p.last || p.surplus(cells)) {
+		bad = &Error{Err: ErrSyntax, Found: fmt.Sprintf("a row of %d cells", len(cells)), Expected: fmt.Sprintf("%d", len(p.steps))}
+	}
+	return bad, numbers
+}
+
+func (s step) expects() string {
+	switch s.op {
+	case opTime:
+		return "a time as a number"
+	case opClock:
+		return "a date or clock time"
+	}
+	return "a number"
+}
+
+// surplus reports cells with something in them beyond the last column.
+func (p *plan) surplus(cells []cell) bool {
+	if p.last < len(p.steps)-1 || len(cells) <= len(p.steps) {
+		return false // text may hold separators
+	}
+	return !allBlank(cells[len(p.steps):])
+}

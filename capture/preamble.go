@@ -1,0 +1,242 @@
+package capture
+
+import (
+	"bytes"
+	"math"
+	"strings"
+)
+
+// A meaning is what an entry of a preamble tells.
+type meaning int
+
+const (
+	meansNothing meaning = iota
+	meansInterval
+	meansRate
+	meansStart
+	meansTrigger // index of the sample at time zero
+	meansTimeUnit
+	meansValueUnit
+	meansSource // name of the channel
+	meansCount  // number of samples
+)
+
+// meanings gives the meaning of the keys of preambles, folded.
+var meanings = map[string]meaning{}
+
+func init() {
+	for m, keys := range map[meaning]string{
+		meansInterval: `sampleinterval samplinginterval sampleperiod samplingperiod samplingtime sampletime timeinterval
+			timepersample secondspersample timestep timeincrement timedelta increment xincrement xinc xincr incr horizontalinterval deltat δt dt
+			ts interval sp samplespacing timespacing tinc hresolution timeresolution`,
+		meansRate:      `samplerate samplingrate samplefrequency samplingfrequency samplingfreq fs samplespersecond sr acquisitionrate sampling`,
+		meansStart:     `start starttime t0 x0 tstart xstart tzero xzero xorigin timeorigin timezero firstsample timeoffirstsample horizontalstart xfirst`,
+		meansTrigger:   `triggerpoint triggersample triggerindex triggerposition pretriggersamples pretriggerpoints`,
+		meansTimeUnit:  `horizontalunits horizontalunit timeunit timeunits xunit xunits timebaseunit unitoftime`,
+		meansValueUnit: `verticalunits verticalunit unit units yunit yunits voltageunit valueunit amplitudeunit channelunit`,
+		meansSource:    `source channel trace channelname tracename signal`,
+		meansCount:     `recordlength points samples numberofpoints numberofsamples recordsize memorylength npoints datapoints numpoints`,
+	} {
+		for _, k := range strings.Fields(keys) {
+			meanings[k] = m
+		}
+	}
+}
+
+// An entry is one thing a preamble tells.
+type entry struct {
+	means  meaning
+	line   int
+	column int // of the key, from 0
+	unit   unit
+	values []located
+}
+
+// A located value is a text and the column it stands in, from 0.
+type located struct {
+	text   string
+	column int
+}
+
+// A preamble is all that was understood of the lines above the samples and of
+// the metadata beside them.
+type preamble struct {
+	d       dialect
+	entries []entry
+}
+
+// readLine takes in the cells of one line of metadata.
+func (p *preamble) readLine(number int, cells []cell) {
+	var open *entry
+	for col, c := range cells {
+		if c.blank() {
+			continue
+		}
+		text := toUTF8(c.text)
+		if e, rest, ok := readKey(text); ok {
+			p.entries = append(p.entries, e)
+			open = &p.entries[len(p.entries)-1]
+			open.line, open.column = number, col
+			if rest != "" {
+				open.values = append(open.values, located{rest, col})
+			}
+			continue
+		}
+		if open != nil {
+			open.values = append(open.values, located{text, col})
+		}
+	}
+}
+
+// readKey reads "key", "key: value", "key = value" and "key value", the key
+// with or without its unit in brackets.
+func readKey(text string) (e entry, rest string, ok bool) {
+	key := text
+	if i := strings.IndexAny(text, ":="); i > 0 {
+		key, rest = text[:i], strings.TrimSpace(text[i+1:])
+	}
+	for {
+		name, u, _ := splitUnit(key)
+		if m := meanings[fold(name)]; m != meansNothing && len(strings.TrimSpace(name)) < 40 {
+			return entry{means: m, unit: u}, rest, true
+		}
+		// Shorten a free text by its last word, which may be the value.
+		i := strings.LastIndexByte(strings.TrimSpace(key), ' ')
+		if i < 0 || rest != "" && key == text {
+			return entry{}, "", false
+		}
+		rest = strings.TrimSpace(key[i:] + " " + rest)
+		key = key[:i]
+		if !strings.ContainsAny(rest[:1], "0123456789+-.") && !isUnit(rest) {
+			return entry{}, "", false
+		}
+	}
+}
+
+func isUnit(text string) bool {
+	_, ok := parseUnit(text)
+	return ok
+}
+
+// cellsOf cuts a line of the preamble. A comment mark is dropped; in a file
+// whose samples are separated by blanks the preamble's words are not cells.
+func (p *preamble) cellsOf(text []byte) []cell {
+	text = stripComment(text)
+	d := p.d
+	if d.delim == ' ' {
+		d.delim = ','
+		if bytes.IndexByte(text, '\t') >= 0 {
+			d.delim = '\t'
+		} else if d.mark == ',' {
+			d.delim = ';'
+		}
+	}
+	return d.split(text, nil)
+}
+
+func stripComment(text []byte) []byte {
+	if isComment(text) {
+		return bytes.TrimLeft(text, "#%/!; \t\"")
+	}
+	return text
+}
+
+// isComment reports a line that starts with a comment mark.
+func isComment(text []byte) bool {
+	text = bytes.TrimLeft(text, " \t\"")
+	return len(text) > 0 && (text[0] == '#' || text[0] == '%' || text[0] == '!' || bytes.HasPrefix(text, []byte("//")))
+}
+
+// text returns the value of an entry for the column col (from 0): the one that
+// stands in that column, else the nearest to its left, else the first.
+func (p *preamble) text(m meaning, col int) (string, unit, bool) {
+	var best *located
+	var u unit
+	rank := func(l *located) int {
+		if l.column <= col {
+			return 1000000 - (col - l.column)
+		}
+		return -l.column
+	}
+	for i := range p.entries {
+		e := &p.entries[i]
+		if e.means != m {
+			continue
+		}
+		for j := range e.values {
+			if v := &e.values[j]; best == nil || rank(v) > rank(best) {
+				best, u = v, e.unit
+			}
+		}
+	}
+	if best == nil {
+		return "", u, false
+	}
+	return best.text, u, true
+}
+
+// A declared number is a value the preamble gives, in SI units, and half a
+// unit of its last printed digit.
+type declared struct {
+	value, half float64
+	ok          bool
+}
+
+// number returns the value of an entry as a number in base units; a value
+// without a unit of its own has that of its key, else the default.
+func (p *preamble) number(m meaning, col int, base string, def unit) declared {
+	text, u, ok := p.text(m, col)
+	if !ok {
+		return declared{}
+	}
+	if u.base == "" {
+		u = def
+	}
+	c := cell{text: []byte(strings.TrimSpace(text)), quoted: true}
+	n, digits, ok := p.d.number(c)
+	if !ok {
+		if n, u, digits, ok = p.d.quantity(c); !ok {
+			return declared{}
+		}
+	}
+	if u.base != "" && u.base != base {
+		return declared{}
+	}
+	return declared{n.float(u.exp, digits, p.d.mark), 0.5 * math.Pow10(n.exp+u.exp), true}
+}
+
+// interval returns the sampling interval that the preamble declares for a
+// column, directly or as a rate.
+func (p *preamble) interval(col int) declared {
+	if d := p.number(meansInterval, col, "s", p.timeUnit(col)); d.ok && d.value > 0 {
+		return d
+	}
+	for _, base := range []string{"Sa/s", "Hz"} {
+		if d := p.number(meansRate, col, base, unit{base: base}); d.ok && d.value > 0 {
+			return declared{1 / d.value, d.half / (d.value * d.value), true}
+		}
+	}
+	return declared{}
+}
+
+// timeUnit is the unit of time the preamble names, without base when it names none.
+func (p *preamble) timeUnit(col int) unit {
+	if text, _, ok := p.text(meansTimeUnit, col); ok {
+		if u, ok := parseUnit(text); ok && u.base == "s" {
+			return u
+		}
+	}
+	return unit{}
+}
+
+// valueUnit is the unit of the samples of a column that the preamble names.
+func (p *preamble) valueUnit(col int) (unit, bool) {
+	text, u, ok := p.text(meansValueUnit, col)
+	if !ok {
+		return unit{}, false
+	}
+	if u.base != "" {
+		return u, true
+	}
+	return parseUnit(text)
+}

@@ -1,0 +1,96 @@
+package capture
+
+import (
+	"io"
+	"os"
+)
+
+// Options says what a file may not tell by itself. The zero value reads a file
+// that tells everything.
+type Options struct {
+	// Interval is the sampling interval in seconds, for files that do not give
+	// it; 0: as the file says. It overrides what the preamble declares.
+	Interval float64
+	// TimeUnit is the unit of the time column: "s", "ms", "us", "ns" or "ps";
+	// "": as the file says.
+	TimeUnit string
+	// Progress, if not nil, is called now and then, at most four times a
+	// second, with the bytes of the file read so far and the size of the file,
+	// 0 when it is not known.
+	Progress func(done, total int64)
+}
+
+// ReadFile reads the capture in the named file. Text that cannot be a capture
+// gives an [*Error]; a file that cannot be read gives the system's error.
+func ReadFile(name string, opt Options) (*Capture, error) {
+	f, err := os.Open(name)
+	if err != nil {
+		return nil, err
+	}
+	defer f.Close()
+	info, err := f.Stat()
+	if err != nil {
+		return nil, err
+	}
+	size := int64(0)
+	if info.Mode().IsRegular() {
+		size = info.Size()
+	}
+	return read(f, name, size, opt)
+}
+
+// Read reads a capture from r; name stands for it in messages.
+func Read(r io.Reader, name string, opt Options) (*Capture, error) {
+	return read(r, name, 0, opt)
+}
+
+func read(r io.Reader, name string, size int64, opt Options) (*Capture, error) {
+	src, err := openSource(r, name, size, opt)
+	if err != nil {
+		return nil, err
+	}
+	h, err := readHead(src)
+	if err != nil {
+		return nil, err
+	}
+	d, refusal := design(h, opt)
+	if refusal != nil {
+		refusal.File = name
+		return nil, refusal
+	}
+	t, err := d.plan.scan(src, h)
+	if err != nil {
+		return nil, err
+	}
+	c := &Capture{File: name}
+	if c.SHA256, err = src.digest(); err != nil {
+		return nil, src.readError(err)
+	}
+	if err := src.unchanged(); err != nil {
+		return nil, err
+	}
+	if refusal := d.build(c, src, t); refusal != nil {
+		refusal.File = name
+		return nil, refusal
+	}
+	return c, nil
+}
+
+// readHead reads the beginning of the text, or all of a short one.
+func readHead(src *source) (*head, error) {
+	buf := make([]byte, headSize+1)
+	n, err := io.ReadFull(src.text, buf[:headSize])
+	whole := err == io.EOF || err == io.ErrUnexpectedEOF
+	if err != nil && !whole {
+		return nil, src.readError(err)
+	}
+	if what := foreign(buf[:min(n, 4096)]); what != "" {
+		return nil, src.notText(what)
+	}
+	h, refusal := newHead(buf[:n], whole)
+	if refusal != nil {
+		refusal.File = src.name
+		return nil, refusal
+	}
+	return h, nil
+}

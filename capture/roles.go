@@ -1,0 +1,333 @@
+package capture
+
+import (
+	"fmt"
+	"math"
+	"strings"
+)
+
+// A column is a column of the table with what its role was decided from.
+type column struct {
+	Column
+	kind   kind
+	unit   unit      // base "" when nothing names it
+	values []float64 // of the first rows, as printed (quantities in base units); NaN where there is none
+	whole  bool      // all of them are printed without fraction and exponent
+	time   int       // index of the column with the time of this one, -1: none
+}
+
+func (c *column) is(r Role, why string, args ...any) {
+	c.Role, c.Why = r, fmt.Sprintf(why, args...)
+}
+
+// newColumns reads the first rows into columns that have no role yet.
+func newColumns(h *head, hd heading) []column {
+	cols := make([]column, len(h.kinds))
+	for i := range cols {
+		cols[i] = column{Column: Column{Number: i + 1, Name: hd.names[i], Unit: unitName(hd.units[i])},
+			kind: h.kinds[i], unit: hd.units[i], whole: true, time: -1}
+		if cols[i].kind == kindMissing {
+			cols[i].kind = kindNumber // over range so far
+		}
+	}
+	h.eachRow(func(_ line, cells []cell) {
+		for i := range cols {
+			if i < len(cells) {
+				cols[i].look(h.dialect, cells[i])
+			} else {
+				cols[i].values = append(cols[i].values, math.NaN())
+			}
+		}
+	})
+	return cols
+}
+
+// look appends the value of a cell of the first rows.
+func (c *column) look(d dialect, x cell) {
+	v := math.NaN()
+	if n, text, ok := d.number(x); ok {
+		v = n.float(0, text, d.mark)
+		c.whole = c.whole && n.exp == 0
+	} else if n, u, text, ok := d.quantity(x); ok && c.kind == kindQuantity {
+		v = n.float(u.exp, text, d.mark)
+		c.unit, c.whole = unit{base: u.base}, false
+	} else if s, ok := parseStamp(x.text, false); ok && c.kind == kindStamp {
+		v = s.since(0)
+	}
+	c.values = append(c.values, v)
+}
+
+func unitName(u unit) string {
+	for prefix, exp := range prefixes {
+		if exp == u.exp && len(prefix) == 1 && u.base != "" && prefix != "K" && prefix != "µ" && prefix != "μ" {
+			return prefix + u.base
+		}
+	}
+	return u.base
+}
+
+// assignRoles gives every column its role, from its name, unit and first
+// values. finishRoles corrects it by all values.
+func assignRoles(h *head, cols []column) {
+	for i := range cols {
+		c := &cols[i]
+		switch {
+		case c.kind == kindBlank && h.metadataBeside(i):
+			c.is(RoleMetadata, "words beside the first samples only")
+		case c.kind == kindBlank:
+			c.is(RoleBlank, "no cell in it holds anything")
+		case c.kind == kindText && h.metadataBeside(i):
+			c.is(RoleMetadata, "words beside the first samples only")
+		case c.kind == kindText:
+			c.is(RoleText, "words instead of numbers")
+		}
+	}
+	assignTime(cols)
+	for i := range cols {
+		if c := &cols[i]; c.Role == "" {
+			assignByName(c)
+		}
+	}
+	assignDeviations(cols)
+	for i, last := 0, -1; i < len(cols); i++ {
+		switch cols[i].Role {
+		case RoleTime:
+			last = i
+		case "":
+			cols[i].is(RoleChannel, "numbers")
+			cols[i].time = last
+		}
+	}
+	// Channels left of the only time column belong to it as well.
+	for i := range cols {
+		if cols[i].Role == RoleChannel && cols[i].time < 0 {
+			cols[i].time = firstWithRole(cols, RoleTime)
+		}
+	}
+}
+
+func firstWithRole(cols []column, r Role) int {
+	for i := range cols {
+		if cols[i].Role == r {
+			return i
+		}
+	}
+	return -1
+}
+
+// metadataBeside reports text in a column that ends before the first rows do.
+func (h *head) metadataBeside(col int) bool {
+	row, lastText, found := 0, 0, false
+	h.eachRow(func(_ line, cells []cell) {
+		row++
+		if col < len(cells) && !cells[col].blank() {
+			lastText, found = row, true
+		}
+	})
+	return found && lastText < row
+}
+
+// How much a column looks like time.
+const (
+	noTime    = iota
+	countTime // counts the samples
+	evenTime  // rises in even steps, without a name
+	clockTime // dates or clock times
+	namedTime // its name or unit says time
+)
+
+// timeRank says how much a column looks like time, and why.
+func (c *column) timeRank(first bool) (int, string) {
+	if c.kind == kindStamp {
+		return clockTime, "dates or clock times"
+	}
+	if c.kind != kindNumber && c.kind != kindQuantity {
+		return noTime, ""
+	}
+	rising, even := c.rises()
+	says := timeName(c.Name) && (rising || !weakTimeName(c.Name))
+	switch {
+	case c.unit.base == "s":
+		return namedTime, "its unit is " + unitName(c.unit)
+	case c.counts() && (!says || weakTimeName(c.Name) || fold(c.Name) == "xaxis"):
+		return countTime, "whole numbers that count the samples"
+	case says:
+		return namedTime, fmt.Sprintf("its name is %q", c.Name)
+	case rising && (even || first) && c.Name == "":
+		return evenTime, "no name, and it rises from row to row"
+	case rising && even && first:
+		return evenTime, "the first column of numbers, and it rises in even steps"
+	}
+	return noTime, ""
+}
+
+// rises reports values that hardly ever fall and end above their start, and
+// whether nearly all steps are of like size.
+func (c *column) rises() (rising, even bool) {
+	var steps []float64
+	last := math.NaN()
+	sum, falls := 0.0, 0
+	for _, v := range c.values {
+		if d := v - last; !math.IsNaN(d) {
+			steps = append(steps, d)
+			sum += d
+			if d < 0 {
+				falls++
+			}
+		}
+		if !math.IsNaN(v) {
+			last = v
+		}
+	}
+	if sum <= 0 || falls*50 > len(steps) {
+		return false, false
+	}
+	mean, like := sum/float64(len(steps)), 0
+	for _, d := range steps {
+		if d > 0.2*mean && d < 5*mean {
+			like++
+		}
+	}
+	return true, like*10 >= len(steps)*8
+}
+
+// counts reports whole numbers that rise by one from row to row.
+func (c *column) counts() bool {
+	if !c.whole || c.kind != kindNumber || len(c.values) < 2 {
+		return false
+	}
+	misses := 0
+	for i, v := range c.values[1:] {
+		if v-c.values[i] != 1 {
+			misses++
+		}
+	}
+	return misses*50 <= len(c.values)
+}
+
+// assignTime finds the time columns: those that look most like time. Without
+// names a second one must repeat the first.
+func assignTime(cols []column) {
+	ranks := make([]int, len(cols))
+	whys := make([]string, len(cols))
+	best, numeric := -1, 0
+	for i := range cols {
+		if !cols[i].kind.numeric() {
+			continue
+		}
+		ranks[i], whys[i] = cols[i].timeRank(numeric == 0)
+		numeric++
+		if ranks[i] != noTime && (best < 0 || ranks[i] > ranks[best]) {
+			best = i
+		}
+	}
+	if best < 0 || numeric == 1 && ranks[best] < clockTime {
+		return
+	}
+	for i := range cols {
+		switch c := &cols[i]; {
+		case ranks[i] == noTime:
+		case ranks[i] == countTime:
+			c.is(RoleIndex, "%s", whys[i])
+		case ranks[i] == ranks[best] && (i == best || ranks[i] >= clockTime || sameValues(c.values, cols[best].values)):
+			c.is(RoleTime, "%s", whys[i])
+		case ranks[i] == clockTime:
+			c.is(RoleText, "clock times beside a time column of numbers")
+		}
+	}
+}
+
+func sameValues(a, b []float64) bool {
+	if len(a) != len(b) {
+		return false
+	}
+	for i, v := range a {
+		if v != b[i] && !(math.IsNaN(v) && math.IsNaN(b[i])) {
+			return false
+		}
+	}
+	return true
+}
+
+// assignByName gives a role to a column whose name says that it is no channel.
+func assignByName(c *column) {
+	if m := meanings[fold(c.Name)]; m == meansInterval || m == meansStart {
+		c.is(RoleMetadata, "its name is %q", c.Name)
+		return
+	}
+	for _, w := range words(c.Name) {
+		switch w {
+		case "error", "err", "errors", "std", "stdev", "stddev", "sigma", "deviation", "dev", "sd", "uncertainty", "unc", "±", "sem":
+			c.is(RoleDeviation, "its name is %q", c.Name)
+		}
+	}
+	if logicName(c.Name) && c.onlyBits() {
+		c.is(RoleLogic, "its name is %q, and it holds only 0 and 1", c.Name)
+	}
+}
+
+func words(name string) []string {
+	return strings.FieldsFunc(strings.ToLower(name), func(r rune) bool { return strings.ContainsRune(" _-.,()[]/:", r) })
+}
+
+func logicName(name string) bool {
+	w := fold(name)
+	if strings.HasPrefix(w, "digital") || strings.HasPrefix(w, "logic") || strings.HasPrefix(w, "bit") || strings.HasPrefix(w, "pod") {
+		return true
+	}
+	return len(w) > 1 && len(w) < 4 && w[0] == 'd' && w[1]-'0' <= 9
+}
+
+func (c *column) onlyBits() bool {
+	for _, v := range c.values {
+		if v != 0 && v != 1 && !math.IsNaN(v) {
+			return false
+		}
+	}
+	return true
+}
+
+// assignDeviations finds columns of standard deviations in a table without
+// names: x, u(x), y, u(y), … or x, y, u(y), each u positive throughout and
+// small against the span of the values it stands behind.
+func assignDeviations(cols []column) {
+	var numeric []int
+	for i := range cols {
+		if cols[i].Name != "" {
+			return
+		}
+		if cols[i].kind == kindNumber {
+			numeric = append(numeric, i)
+		}
+	}
+	var of [][2]int // deviation, values
+	switch n := len(numeric); {
+	case n >= 4 && n%2 == 0:
+		for i := 0; i < n; i += 2 {
+			of = append(of, [2]int{numeric[i+1], numeric[i]})
+		}
+	case n == 3:
+		of = append(of, [2]int{numeric[2], numeric[1]})
+	}
+	for _, pair := range of {
+		if cols[pair[0]].Role != "" || !deviates(cols[pair[0]].values, cols[pair[1]].values) {
+			return
+		}
+	}
+	for _, pair := range of {
+		cols[pair[0]].is(RoleDeviation, "positive throughout and small against column %d, as every second column is", pair[1]+1)
+	}
+}
+
+func deviates(u, values []float64) bool {
+	lo, hi, largest := math.Inf(1), math.Inf(-1), 0.0
+	varies := false
+	for i, v := range values {
+		if u[i] <= 0 || math.IsNaN(u[i]) {
+			return false
+		}
+		lo, hi, largest = math.Min(lo, v), math.Max(hi, v), math.Max(largest, u[i])
+		varies = varies || u[i] != u[0]
+	}
+	return varies && largest < (hi-lo)/5
+}

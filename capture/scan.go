@@ -1,0 +1,192 @@
+package capture
+
+import (
+	"bytes"
+	"fmt"
+	"io"
+	"runtime"
+	"sync"
+	"sync/atomic"
+)
+
+const blockSize = 256 << 10 // bytes of text a worker takes at a time
+
+// A table is what the data pass made of a text.
+type table struct {
+	rows    int
+	values  [][]float64
+	missing []int
+	spans   [][]span // for each time column, in order of the rows
+}
+
+// A scanner reads a text block by block and hands the blocks to workers.
+type scanner struct {
+	p      *plan
+	src    *source
+	h      *head
+	store  store
+	chunks []*chunk
+	line   int     // number of the next line
+	rowLen float64 // mean length of a row, in bytes
+	failed atomic.Bool
+	free   sync.Pool
+}
+
+// scan reads all samples of the text whose beginning is h.
+func (p *plan) scan(src *source, h *head) (*table, error) {
+	s := &scanner{p: p, src: src, h: h, store: store{columns: p.values}}
+	s.free.New = func() any { b := make([]byte, blockSize+1); return &b }
+	start := h.lines[h.first]
+	s.line = start.number
+	end := bytes.LastIndexByte(h.bytes, h.term) + 1
+	text, carry := h.bytes[start.offset:max(end, start.offset)], h.bytes[max(end, start.offset):]
+	if h.whole && len(carry) > 0 {
+		text = append(h.bytes[start.offset:len(h.bytes):len(h.bytes)], h.term)
+	}
+	s.rowLen = float64(len(text)) / float64(len(h.lines)-h.first)
+	first := s.chunk(text, src.size()-int64(start.offset))
+	if h.whole {
+		p.read(first, p.buffers())
+	} else if err := s.stream(first, carry); err != nil {
+		return nil, err
+	}
+	return s.finish()
+}
+
+// chunk books a block of whole lines; left is the number of bytes of text from
+// its start to the end of the file, not positive when unknown.
+func (s *scanner) chunk(text []byte, left int64) *chunk {
+	c := &chunk{text: text, line: s.line, lines: bytes.Count(text, []byte{s.p.term})}
+	s.line += c.lines
+	expected := 0
+	if left > 0 {
+		// An eighth more costs address space only: pages never written are never there.
+		expected = int(1.125*float64(left)/s.rowLen) + 64
+	} else if !s.h.whole {
+		for _, g := range s.store.segments {
+			expected += g.used
+		}
+		expected = max(expected, 1<<16)
+	}
+	s.store.reserve(c, expected)
+	s.chunks = append(s.chunks, c)
+	return c
+}
+
+// buffers returns room for the stamps of a block.
+func (p *plan) buffers() [][]float64 { return make([][]float64, p.times) }
+
+// stream reads the text behind the head; carry is the beginning of its first line.
+func (s *scanner) stream(first *chunk, carry []byte) error {
+	jobs := make(chan *chunk, 2)
+	var workers sync.WaitGroup
+	for range runtime.GOMAXPROCS(0) {
+		workers.Go(func() {
+			stamps := s.p.buffers()
+			for c := range jobs {
+				s.work(c, stamps)
+			}
+		})
+	}
+	jobs <- first
+	err := s.blocks(jobs, carry)
+	close(jobs)
+	workers.Wait()
+	return err
+}
+
+func (s *scanner) work(c *chunk, stamps [][]float64) {
+	s.p.read(c, stamps)
+	for k := range stamps {
+		stamps[k] = c.spans[k].release()
+	}
+	if c.err != nil {
+		s.failed.Store(true)
+	}
+	if text := c.text[:cap(c.text)]; len(text) == blockSize+1 {
+		s.free.Put(&text)
+	}
+	c.text = nil
+}
+
+// blocks cuts the text into blocks of whole lines and sends them to jobs.
+func (s *scanner) blocks(jobs chan<- *chunk, carry []byte) error {
+	for !s.failed.Load() {
+		buf := *s.free.Get().(*[]byte)
+		kept := copy(buf, carry)
+		n, err := io.ReadFull(s.src.text, buf[kept:blockSize])
+		text := buf[:kept+n]
+		last := err == io.EOF || err == io.ErrUnexpectedEOF
+		if err != nil && !last {
+			return s.src.readError(err)
+		}
+		if last && len(text) > 0 && text[len(text)-1] != s.p.term {
+			text = append(text, s.p.term)
+		}
+		end := bytes.LastIndexByte(text, s.p.term) + 1
+		carry = append([]byte(nil), text[end:]...)
+		if end > 0 {
+			jobs <- s.chunk(text[:end], s.src.size()-s.src.meter.done+int64(len(text)))
+		} else if !last {
+			e := longLine(s.line)
+			e.File = s.src.name
+			return e
+		}
+		if last {
+			return nil
+		}
+		if err := s.src.grown(); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// finish joins what the workers made, or returns the first error in the text.
+func (s *scanner) finish() (*table, error) {
+	t := &table{missing: make([]int, s.p.values), spans: make([][]span, s.p.times)}
+	if err := s.join(t); err != nil {
+		err.File = s.src.name
+		return nil, err
+	}
+	if t.rows < fewestRows {
+		return nil, &Error{File: s.src.name, Err: ErrTooFew, Found: fmt.Sprintf("%d rows", t.rows),
+			Expected: fmt.Sprintf("at least %d: a decay has five unknowns", fewestRows)}
+	}
+	t.values = s.store.gather(t.rows)
+	return t, nil
+}
+
+// fewestRows is the least number of samples that can be a capture.
+const fewestRows = 6
+
+func (s *scanner) join(t *table) *Error {
+	var footer *Error
+	for _, c := range s.chunks {
+		if c.err != nil {
+			if footer != nil && c.rows > 0 {
+				return footer
+			}
+			return c.err
+		}
+		if c.rows > 0 && footer != nil {
+			return footer
+		}
+		if footer == nil {
+			footer = c.footer
+		}
+		for k := range c.spans {
+			if n := len(t.spans[k]); n > 0 && c.rows > 0 && c.spans[k].first < t.spans[k][n-1].last {
+				return backwards(c.first, c.spans[k].first, t.spans[k][n-1].last)
+			}
+			if c.rows > 0 {
+				t.spans[k] = append(t.spans[k], c.spans[k])
+			}
+		}
+		for k, n := range c.missing {
+			t.missing[k] += n
+		}
+		t.rows += c.rows
+	}
+	return nil
+}

@@ -1,0 +1,169 @@
+package capture
+
+import "time"
+
+// A stamp is a date and clock time, or a clock time alone on day 0.
+type stamp struct {
+	second   int64   // whole seconds
+	fraction float64 // of a second
+	places   int     // printed decimal places of the second
+}
+
+// since returns the seconds from whole second zero to s.
+func (s stamp) since(zero int64) float64 { return float64(s.second-zero) + s.fraction }
+
+// parseStamp reads
+//
+//	[date ('T' | blanks)] hours:minutes:seconds[(. | ,)fraction] [AM | PM] [Z | (+ | -)hh:mm]
+//
+// with a date of year-month-day, or of day/month/year, or of month/day/year
+// unless dayFirst; the date's separator is one of "-/.".
+func parseStamp(text []byte, dayFirst bool) (stamp, bool) {
+	p := stampParser{b: text}
+	first, ok := p.number()
+	if !ok {
+		return stamp{}, false
+	}
+	var day int64
+	if p.i < len(text) && (text[p.i] == '-' || text[p.i] == '/' || text[p.i] == '.') {
+		if day, ok = p.date(first, dayFirst); !ok {
+			return stamp{}, false
+		}
+		if first, ok = p.number(); !ok {
+			return stamp{}, false
+		}
+	}
+	s, ok := p.clock(first)
+	s.second += day * 86400
+	return s, ok && p.i == len(text)
+}
+
+type stampParser struct {
+	b []byte
+	i int
+}
+
+// number reads one to four digits.
+func (p *stampParser) number() (int, bool) {
+	n, first := 0, p.i
+	for p.i < len(p.b) && p.b[p.i]-'0' <= 9 && p.i-first < 5 {
+		n = n*10 + int(p.b[p.i]-'0')
+		p.i++
+	}
+	return n, p.i > first && p.i-first < 5
+}
+
+func (p *stampParser) accept(c byte) bool {
+	if p.i < len(p.b) && p.b[p.i] == c {
+		p.i++
+		return true
+	}
+	return false
+}
+
+// date reads the rest of a date behind its first number, and the blanks or T
+// after it; it returns the day counted from 1970.
+func (p *stampParser) date(first int, dayFirst bool) (int64, bool) {
+	sep := p.b[p.i]
+	p.i++
+	second, ok := p.number()
+	if !ok || !p.accept(sep) {
+		return 0, false
+	}
+	third, ok := p.number()
+	if !ok {
+		return 0, false
+	}
+	blanks := p.i
+	for p.accept(' ') {
+	}
+	if p.i == blanks && !p.accept('T') && !p.accept('t') {
+		return 0, false
+	}
+	year, month, day := third, first, second
+	if first > 31 {
+		year, month, day = first, second, third
+	} else if dayFirst || first > 12 {
+		month, day = second, first
+	}
+	if month > 12 {
+		month, day = day, month
+	}
+	if month < 1 || month > 12 || day < 1 || day > 31 {
+		return 0, false
+	}
+	if year < 100 {
+		year += 2000
+	}
+	return time.Date(year, time.Month(month), day, 0, 0, 0, 0, time.UTC).Unix() / 86400, true
+}
+
+// clock reads the rest of a clock time behind its hours.
+func (p *stampParser) clock(hours int) (s stamp, ok bool) {
+	var part [2]int
+	for k := range part {
+		if !p.accept(':') {
+			return s, false
+		}
+		if part[k], ok = p.number(); !ok || part[k] > 60 {
+			return s, false
+		}
+	}
+	if p.i < len(p.b) && (p.b[p.i] == '.' || p.b[p.i] == ',') {
+		s.fraction, s.places = p.fractionOf()
+	}
+	for p.accept(' ') {
+	}
+	if p.i+2 <= len(p.b) && p.b[p.i+1]|0x20 == 'm' {
+		switch p.b[p.i] | 0x20 {
+		case 'a':
+			hours %= 12
+		case 'p':
+			hours = hours%12 + 12
+		}
+		p.i += 2
+	}
+	s.second = int64(hours)*3600 + int64(part[0])*60 + int64(part[1])
+	return s, hours < 25 && p.zone(&s)
+}
+
+// fractionOf reads .056435 as a fraction and its number of places.
+func (p *stampParser) fractionOf() (float64, int) {
+	p.i++
+	first, m := p.i, uint64(0)
+	for p.i < len(p.b) && p.b[p.i]-'0' <= 9 {
+		if p.i-first < 18 {
+			m = m*10 + uint64(p.b[p.i]-'0')
+		}
+		p.i++
+	}
+	places := min(p.i-first, 18)
+	return decimal{mant: m}.float(-places, nil, '.'), places
+}
+
+// zone reads Z or +hh:mm and takes it off s.
+func (p *stampParser) zone(s *stamp) bool {
+	if p.accept('Z') || p.accept('z') || p.i == len(p.b) {
+		return true
+	}
+	sign := int64(1)
+	if p.accept('-') {
+		sign = -1
+	} else if !p.accept('+') {
+		return false
+	}
+	h, ok := p.number()
+	if !ok {
+		return false
+	}
+	m := 0
+	if p.accept(':') {
+		if m, ok = p.number(); !ok {
+			return false
+		}
+	} else if h >= 100 {
+		h, m = h/100, h%100
+	}
+	s.second -= sign * int64(h*3600+m*60)
+	return true
+}

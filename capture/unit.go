@@ -1,0 +1,117 @@
+package capture
+
+import (
+	"strings"
+	"unicode"
+)
+
+// A unit is a base unit without prefix and the power of ten of its prefix.
+type unit struct {
+	base string // "s", "V", "A", "Hz", "Sa/s", "counts", …
+	exp  int
+}
+
+var prefixes = map[string]int{"": 0, "p": -12, "n": -9, "u": -6, "µ": -6, "μ": -6, "m": -3, "k": 3, "K": 3, "M": 6, "G": 9,
+	"pico": -12, "nano": -9, "micro": -6, "milli": -3, "kilo": 3, "mega": 6, "giga": 9}
+
+// baseUnits gives the SI symbol of what files write.
+var baseUnits = map[string]string{
+	"s": "s", "sec": "s", "secs": "s", "second": "s", "seconds": "s",
+	"v": "V", "volt": "V", "volts": "V", "a": "A", "amp": "A", "amps": "A", "ampere": "A", "amperes": "A",
+	"hz": "Hz", "hertz": "Hz", "sa/s": "Sa/s", "s/s": "Sa/s", "sps": "Sa/s", "samples/s": "Sa/s", "pts/s": "Sa/s",
+	"samples/second": "Sa/s", "samples per second": "Sa/s", "w": "W", "watt": "W", "ohm": "ohm", "ohms": "ohm", "ω": "ohm",
+}
+
+// plainUnits take no prefix.
+var plainUnits = map[string]string{
+	"count": "counts", "counts": "counts", "code": "counts", "codes": "counts", "lsb": "counts", "adc": "counts",
+	"raw": "counts", "digits": "counts", "adc counts": "counts", "adc codes": "counts", "div": "div", "%": "%",
+	"db": "dB", "deg": "deg", "°": "deg", "degree": "deg", "degrees": "deg", "rad": "rad", "usec": "", "c": "",
+}
+
+// parseUnit reads a unit as files write it: V, mV, (mV), [µs], Volt, uS, MSa/s.
+func parseUnit(text string) (unit, bool) {
+	text = strings.Trim(strings.TrimSpace(text), "()[]")
+	text = strings.TrimSpace(text)
+	lower := strings.ToLower(text)
+	if base := plainUnits[lower]; base != "" {
+		return unit{base: base}, true
+	}
+	if base := baseUnits[lower]; base != "" {
+		return unit{base: base}, true
+	}
+	for prefix, exp := range prefixes {
+		rest, ok := strings.CutPrefix(text, prefix)
+		if !ok || prefix == "" {
+			continue
+		}
+		if base := baseUnits[strings.ToLower(rest)]; base != "" && (len(prefix) < 4 || len(rest) > 2) {
+			if prefix == "M" && base == "s" { // no clock counts in megaseconds: milliseconds in capitals
+				exp = -3
+			}
+			return unit{base, exp}, true
+		}
+	}
+	return unit{}, false
+}
+
+// splitUnit parts a name as printed in a header into name and unit:
+// "CH1 (mV)", "Time[us]", "U / V", "time_us", "t in ms".
+func splitUnit(text string) (name string, u unit, ok bool) {
+	text = strings.TrimSpace(text)
+	for _, brackets := range []string{"()", "[]"} {
+		open := strings.LastIndexByte(text, brackets[0])
+		if open >= 0 && strings.HasSuffix(text, brackets[1:]) {
+			if u, ok = parseUnit(text[open:]); ok {
+				return strings.TrimSpace(text[:open]), u, true
+			}
+		}
+	}
+	for _, sep := range []string{" / ", "/", " in ", ", ", "_"} {
+		if i := strings.LastIndex(text, sep); i > 0 {
+			// V_C and TimeV_S are names, time_us and ch1_mV are name and unit:
+			// after an underscore only a unit with prefix, or the second after
+			// a word for time, is believed.
+			u, ok = parseUnit(text[i+len(sep):])
+			if ok && (sep != "_" || u.exp != 0 || u.base == "s" && exactTimeName(text[:i])) {
+				return strings.TrimSpace(text[:i]), u, true
+			}
+		}
+	}
+	return text, unit{}, false
+}
+
+// timeName reports a name that says time.
+func timeName(name string) bool {
+	w := fold(name)
+	return exactTimeName(name) || strings.HasPrefix(w, "time") || strings.HasSuffix(w, "time")
+}
+
+// exactTimeName reports a name that says time and nothing else.
+func exactTimeName(name string) bool {
+	switch fold(name) {
+	case "time", "times", "t", "x", "xaxis", "sec", "s", "zeit", "temps", "tiempo", "timebase", "timestamp", "clock", "second", "seconds":
+		return true
+	}
+	return false
+}
+
+// weakTimeName reports a name that says time only when the values rise too.
+func weakTimeName(name string) bool {
+	switch fold(name) {
+	case "t", "x", "s":
+		return true
+	}
+	return false
+}
+
+// fold keeps letters and digits, in lower case, so that "Sample Interval",
+// "sample_interval:" and "SampleInterval" compare equal.
+func fold(text string) string {
+	return strings.Map(func(r rune) rune {
+		if unicode.IsLetter(r) || unicode.IsDigit(r) {
+			return unicode.ToLower(r)
+		}
+		return -1
+	}, text)
+}
