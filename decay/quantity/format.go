@@ -144,7 +144,8 @@ func layoutFor(value, u float64, unit string) layout {
 	power := exponent(big, max(1, exponent(big, 17)-last+1))
 	l := layout{prefix: prefixFor(power, unit), unit: unit}
 	top, place := power-l.prefix.power, last-l.prefix.power
-	if outside(top) || place > 0 && !takesPrefix(unit) && top > 3 {
+	// Without a prefix a short run of zeros behind the point still reads better than an exponent.
+	if top >= 7 || top < -3 && (takesPrefix(unit) || place < -6) || place > 0 && !takesPrefix(unit) && top > 3 {
 		l.prefix, l.exp = prefix{"", 0}, power
 	}
 	l.place = last - l.prefix.power - l.exp

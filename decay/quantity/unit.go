@@ -59,7 +59,7 @@ func symbol(unit string) string {
 // takesPrefix reports whether an SI prefix may stand before the unit.
 func takesPrefix(unit string) bool {
 	switch unit {
-	case "", "%", "ppm", "dB", "deg", "°", "counts":
+	case "", "%", "ppm", "dB", "rad", "deg", "°", "counts":
 		return false
 	}
 	return !strings.HasPrefix(unit, "1/")

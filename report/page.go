@@ -1,0 +1,214 @@
+package report
+
+import (
+	"bufio"
+	_ "embed" // the parts of the page
+	"encoding/json"
+	"fmt"
+	"html/template"
+	"io"
+	"strings"
+	"time"
+
+	"dieaway/capture"
+	"dieaway/decay"
+)
+
+//go:embed web/page.html
+var pageHTML string
+
+//go:embed web/page.css
+var pageCSS string
+
+//go:embed web/page.js
+var pageJS string
+
+//go:embed echarts/echarts.common.min.js
+var echartsJS string
+
+var pageTemplate = template.Must(template.New("page").Parse(pageHTML))
+
+// WritePage writes the evidence as one HTML page that needs no network: what was
+// measured and the verdict, the results with their uncertainties, findings,
+// charts, and how it was made. The same ring-down gives the same bytes.
+//
+// The page holds a reduced copy of a long record; it stays below 2.5 MB whatever
+// the record's length. A file that could not be read has no page: WritePage
+// returns its error.
+func (r *RingDown) WritePage(w io.Writer) error {
+	if err := r.check(); err != nil {
+		return err
+	}
+	if r.Err != nil {
+		return fmt.Errorf("no page of a file that could not be read: %w", r.Err)
+	}
+	f, err := r.figure()
+	if err != nil {
+		return fmt.Errorf("charts of the page: %w", err)
+	}
+	data, err := json.Marshal(f)
+	if err != nil {
+		return fmt.Errorf("charts of the page: %w", err)
+	}
+	b := bufio.NewWriterSize(w, 1<<16)
+	if err := pageTemplate.Execute(b, r.page(f, data)); err != nil {
+		return err
+	}
+	return b.Flush()
+}
+
+// A page is what the template shows.
+type page struct {
+	CSS             template.CSS
+	Script, ECharts template.JS
+	Data            template.JS // JSON, escaped for a script element
+
+	Title, Heading, What string
+	Status               decay.Status
+	Verdict              string
+	Refused              bool
+	Headline, Results    []row
+	Facts                []fact
+	Readings             []comparison
+	Decays               []decayRow
+	MoreDecays           int
+	Modes                [][]row
+	Findings             []capture.Finding
+	Figure               *figure
+	Origin, Layout       []fact
+	Columns              []capture.Column
+}
+
+// A fact is a name and what there is to say.
+type fact struct{ Name, Value string }
+
+// A decayRow is one of several decays.
+type decayRow struct {
+	Number int
+	Gate   string
+	Rows   []row
+}
+
+func (r *RingDown) page(f *figure, data []byte) *page {
+	p := &page{
+		CSS: template.CSS(pageCSS), Script: template.JS(pageJS), ECharts: template.JS(echartsJS), Data: template.JS(data),
+		Heading: r.heading(), What: r.what(), Status: r.Status(), Verdict: r.verdict(),
+		Refused: r.refused(), Findings: r.Findings(), Figure: f,
+		Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns,
+	}
+	p.Title = p.Heading + " – free decay, " + string(p.Status)
+	p.Facts = append(p.Facts, fact{"record", r.recordLine()})
+	if p.Refused {
+		return p
+	}
+	res := r.Result
+	p.Results = resultRows(res.Quantities)
+	p.Headline = p.Results[:4]
+	p.Readings = comparisons(res)
+	p.Facts = append([]fact{{"model", modelName(res)}}, p.Facts...)
+	if len(res.Decays) == 1 {
+		d := res.Decays[0]
+		p.Facts = append(p.Facts, fact{"gate", gateLine(d)}, fact{"noise", noiseLine(d, r.Channel.Unit)})
+		for _, row := range shapeRows(d) {
+			p.Facts = append(p.Facts, fact{row.Label, row.Quantity.String()})
+		}
+	} else {
+		p.Decays, p.MoreDecays = decayRows(res.Decays)
+	}
+	for _, m := range res.Modes {
+		p.Modes = append(p.Modes, resultRows(m))
+	}
+	return p
+}
+
+// decayRows tabulates several decays, as many as are drawn.
+func decayRows(all []*decay.Decay) (rows []decayRow, more int) {
+	for i, d := range all[:min(len(all), mostDecays)] {
+		rows = append(rows, decayRow{i + 1, gateLine(d), resultRows(&d.Quantities)[:4]})
+	}
+	return rows, len(all) - len(rows)
+}
+
+// heading names what was measured.
+func (r *RingDown) heading() string {
+	if r.Device != "" {
+		return clean(r.Device, nameLength)
+	}
+	return clean(r.file(), nameLength)
+}
+
+// what says in one line what was measured.
+func (r *RingDown) what() string {
+	s := fmt.Sprintf("Channel %s of %s", clean(r.Channel.Name, nameLength), clean(r.file(), nameLength))
+	if r.refused() {
+		return s + "."
+	}
+	cycles := 0.0
+	for _, d := range r.Result.Decays {
+		cycles += d.Cycles
+	}
+	if n := len(r.Result.Decays); n > 1 {
+		return fmt.Sprintf("%s: %d free decays, %.0f cycles in all, fitted with %s.", s, n, cycles, modelName(r.Result))
+	}
+	return fmt.Sprintf("%s: %.0f cycles of free decay, fitted with %s.", s, cycles, modelName(r.Result))
+}
+
+// longName is where even the full name of a file or device is cut on the page.
+const longName = 400
+
+// origin says how the result was made.
+func (r *RingDown) origin() []fact {
+	facts := []fact{
+		{"file", clean(r.file(), longName)}, {"SHA-256", r.sha256()},
+		{"device", clean(r.Device, longName)}, {"channel", clean(r.Channel.Name, longName)},
+		{"version", clean(r.Origin.Version, longName)}, {"command line", clean(r.Origin.CommandLine, 4*longName)},
+	}
+	if !r.Origin.Made.IsZero() {
+		facts = append(facts, fact{"made", r.Origin.Made.UTC().Format(time.DateTime) + " UTC"})
+	}
+	return stated(facts)
+}
+
+// layout says how the file was understood.
+func (r *RingDown) layout() []fact {
+	l := &r.Capture.Layout
+	line := func(n int) string {
+		if n == 0 {
+			return ""
+		}
+		return fmt.Sprintf("line %d", n)
+	}
+	encoding := l.Encoding
+	if l.Compressed {
+		encoding = strings.TrimPrefix(encoding+", compressed", ", ")
+	}
+	return stated([]fact{
+		{"time axis", clean(r.Channel.Axis.Source, longName)}, {"encoding", clean(encoding, nameLength)},
+		{"names", line(l.HeaderLine)}, {"units", line(l.UnitsLine)}, {"first sample", line(l.FirstLine)},
+		{"delimiter", clean(l.Delimiter, nameLength)}, {"decimal mark", clean(l.DecimalMark, nameLength)},
+	})
+}
+
+// stated leaves out the facts without a value.
+func stated(all []fact) []fact {
+	var out []fact
+	for _, f := range all {
+		if f.Value != "" {
+			out = append(out, f)
+		}
+	}
+	return out
+}
+
+// Cells returns the columns of the file with their texts made safe to show.
+func (p *page) Cells() []capture.Column {
+	var out []capture.Column
+	for _, c := range p.Columns[:min(len(p.Columns), mostColumns)] {
+		c.Name, c.Unit, c.Why = clean(c.Name, nameLength), clean(c.Unit, nameLength), clean(c.Why, longName)
+		out = append(out, c)
+	}
+	return out
+}
+
+// mostColumns is how many columns of the file the page lists.
+const mostColumns = 40

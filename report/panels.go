@@ -1,0 +1,311 @@
+package report
+
+import (
+	"math"
+
+	"github.com/go-echarts/go-echarts/v2/charts"
+	"github.com/go-echarts/go-echarts/v2/opts"
+
+	"dieaway/decay"
+)
+
+// The keys of the legends.
+var (
+	keySamples   = key{"samples", "dots", "samples"}
+	keyFit       = key{"fitted curve", "line", "fit"}
+	keyEdges     = key{"envelope", "dash", "envelope"}
+	keyBaseline  = key{"baseline", "dash", "quiet"}
+	keyCrossings = key{"crossings read", "cross", "crossing"}
+	keyPeaks     = key{"peaks read", "ring", "peak"}
+	keyCrests    = key{"largest sample of each half cycle", "dots", "samples"}
+	keyEnvelope  = key{"fitted envelope", "line", "fit"}
+	keyLogPeaks  = key{"peaks read, from baseline", "ring", "peak"}
+	keyLine      = key{"line through the peaks", "dash", "peak"}
+	keyNoise     = key{"noise, rms", "dash", "quiet"}
+	keyResidual  = key{"sample less fitted curve", "dots", "samples"}
+	keyBand      = key{"two standard deviations of the noise", "band", "band"}
+)
+
+const (
+	captionWaveform = "The curve should run through the samples from the first cycle to the last, and the gate should begin after the excitation has ended."
+	captionRefused  = "The record as it was read; the findings above say why no decay was taken from it."
+	captionEnvelope = "One decay is a straight line here: a bend means loss that changes with amplitude, a ripple a second mode, and the flat end is noise."
+	captionResidual = "About 19 samples in 20 should lie inside the band without a pattern; an oscillation that is left over means that the model misses something."
+)
+
+// figure draws the ring-down: the waveform and, unless it was refused, the envelope
+// on a logarithmic scale and what the fit leaves.
+func (r *RingDown) figure() (*figure, error) {
+	ch, axis := r.Channel, r.Channel.Axis
+	lo, hi, _ := span(ch.Samples)
+	start, end := axis.Start, axis.Time(max(0, axis.N-1))
+	p := &plot{Line: charts.NewLine(),
+		time:  scaleFor(start, end, axis.Interval/20, "s"),
+		level: scaleFor(lo, hi, (hi-lo)/20000, ch.Unit)}
+	all := r.drawnDecays()
+	var windows []indexRange
+	for _, w := range all {
+		windows = append(windows, w.windows...)
+	}
+	parts := r.parts(all, windows)
+	p.waveform(r, all, parts)
+	if len(all) > 0 {
+		p.envelope(r, all)
+		p.residual(r, all, windows)
+	}
+	f := &figure{Time: p.time.unit, Panels: p.panels, Views: p.views(r, all),
+		Name: prefixed(r.Device) + clean(ch.Name, nameLength), Reduced: parts[0].bin > 1 || len(parts) > 1}
+	var err error
+	f.Option, err = p.finish(start, end, r.description())
+	return f, err
+}
+
+// description is what a screen reader says of the charts.
+func (r *RingDown) description() string {
+	if r.refused() {
+		return "Chart of the recorded waveform. The numbers are withheld; the findings say why."
+	}
+	return "Three charts over the same time: the waveform with the fitted curve, its envelope on a logarithmic scale, " +
+		"and the difference of samples and curve. Every result stands in the tables of this page."
+}
+
+// parts divides the record: gates are shown in finer bins than the rest.
+func (r *RingDown) parts(all []drawn, windows []indexRange) []segment {
+	n := r.Channel.Axis.N
+	if n <= exactLimit {
+		return []segment{{indexRange{0, n}, 1}}
+	}
+	inside := 0
+	for _, w := range all {
+		inside += w.gate.to - w.gate.from
+	}
+	var out []segment
+	at := 0
+	add := func(a indexRange, bins, of int) {
+		if a.from < a.to {
+			share := math.Ceil(float64(bins) * float64(a.to-a.from) / float64(of))
+			out = append(out, segments(a, windows, int(share))...)
+		}
+	}
+	for _, w := range all {
+		add(indexRange{at, w.gate.from}, binsElsewhere, n-inside)
+		add(indexRange{max(at, w.gate.from), w.gate.to}, binsInGates, inside)
+		at = max(at, w.gate.to)
+	}
+	bins := binsElsewhere
+	if len(all) == 0 {
+		bins = binsInGates + binsElsewhere
+	}
+	add(indexRange{at, n}, bins, n-inside)
+	return out
+}
+
+// waveform draws samples, fitted curve, envelope, baseline, gate and readings.
+func (p *plot) waveform(r *RingDown, all []drawn, parts []segment) {
+	caption := captionWaveform
+	if len(all) == 0 {
+		caption = captionRefused
+	}
+	p.addPanel("Waveform", caption, p.level.unit, false)
+	ch := r.Channel
+	tr := reduce(ch.Axis, parts, func(i int) float64 { return ch.Samples[i] })
+	data := p.addTrace(tr, p.level)
+	p.addSeries(keySamples, "line", data, "v", gates(p.time, all))
+	for i := range all {
+		w := &all[i]
+		o := w.outline(ch.Axis.Time)
+		smooth := p.addData(map[string]column{"t": p.time.column(o.t), "upper": p.level.column(o.upper),
+			"lower": p.level.column(o.lower), "baseline": p.level.column(o.baseline)})
+		p.addSeries(keyEdges, "line", smooth, "upper")
+		p.addSeries(keyEdges, "line", smooth, "lower")
+		p.addSeries(keyBaseline, "line", smooth, "baseline")
+		p.addSeries(keyFit, "line", p.addTrace(w.fitted(ch.Axis.Time), p.level), "v")
+	}
+	p.addDots(keySamples, data)
+	if len(all) > 0 {
+		p.readingMarks(&r.Result.Readings)
+	}
+}
+
+// readingMarks marks the points that the readings were made at.
+func (p *plot) readingMarks(read *decay.Readings) {
+	var crossings, peaks trace
+	for _, t := range read.Crossings {
+		crossings.add(t, read.Baseline)
+	}
+	for _, q := range read.Peaks {
+		peaks.add(q.Time, q.Value)
+	}
+	if len(crossings.t) > 0 {
+		p.addSeries(keyCrossings, "scatter", p.addTrace(thin(crossings), p.level), "v")
+	}
+	if len(peaks.t) > 0 {
+		p.addSeries(keyPeaks, "scatter", p.addTrace(thin(peaks), p.level), "v")
+	}
+}
+
+// envelope draws the distance from the baseline on a logarithmic scale.
+func (p *plot) envelope(r *RingDown, all []drawn) {
+	p.addPanel("Envelope, logarithmic", captionEnvelope, p.level.unit, true)
+	axis, read := r.Channel.Axis, &r.Result.Readings
+	log := func(v []float64) column { return column{values: v, factor: p.level.factor, leading: 5} }
+	for i := range all {
+		w := &all[i]
+		end := axis.N
+		if i+1 < len(all) {
+			end = all[i+1].gate.from
+		}
+		tr := w.crests(r, end)
+		p.addSeries(keyCrests, "scatter", p.addData(map[string]column{"t": p.time.column(tr.t), "v": log(tr.v)}), "v",
+			charts.WithSeriesOpts(func(s *charts.SingleSeries) { s.SymbolSize = 3 }))
+	}
+	var peaks trace
+	for _, q := range read.Peaks {
+		if v := math.Abs(q.Value - read.Baseline); v > 0 {
+			peaks.add(q.Time, v)
+		}
+	}
+	if len(peaks.t) > 0 {
+		peaks = thin(peaks)
+		p.addSeries(keyLogPeaks, "scatter", p.addData(map[string]column{"t": p.time.column(peaks.t), "v": log(peaks.v)}), "v")
+	}
+	for i := range all {
+		o := all[i].outline(axis.Time)
+		data := p.addData(map[string]column{"t": p.time.column(o.t), "v": log(positive(o.envelope))})
+		p.addSeries(keyEnvelope, "line", data, "v", gates(p.time, all[i:i+1]))
+		p.noiseFloor(all[i].decay)
+	}
+	if read.Line[1] != 0 && len(peaks.t) > 0 {
+		line := readingLine(r.Result)
+		p.addSeries(keyLine, "line", p.addData(map[string]column{"t": p.time.column(line.t), "v": log(positive(line.v))}), "v")
+	}
+}
+
+// noiseFloor draws the noise of a decay as a level.
+func (p *plot) noiseFloor(d *decay.Decay) {
+	if !(d.NoiseRMS > 0) || math.IsInf(d.NoiseRMS, 0) {
+		return
+	}
+	t := between(d.From, d.To, envelopePoints/4)
+	level := make([]float64, len(t))
+	for i := range level {
+		level[i] = d.NoiseRMS
+	}
+	data := p.addData(map[string]column{"t": p.time.column(t), "v": {values: level, factor: p.level.factor, leading: 5}})
+	p.addSeries(keyNoise, "line", data, "v")
+}
+
+// residual draws what the fit leaves, with the band of the noise.
+func (p *plot) residual(r *RingDown, all []drawn, windows []indexRange) {
+	ch := r.Channel
+	traces := make([]trace, len(all))
+	lo, hi := 0.0, 0.0
+	for i := range all {
+		w := &all[i]
+		bins := w.points(binsInGates)
+		if ch.Axis.N <= exactLimit {
+			bins = ch.Axis.N
+		}
+		traces[i] = reduce(ch.Axis, segments(w.gate, windows, bins), func(k int) float64 {
+			v, _, _ := w.curve.At(ch.Axis.Time(k))
+			return ch.Samples[k] - v
+		})
+		if a, b, ok := span(traces[i].v); ok {
+			lo, hi = math.Min(lo, a), math.Max(hi, b)
+		}
+	}
+	scale := scaleFor(lo, hi, (hi-lo)/5000, ch.Unit)
+	p.addPanel("Residual", captionResidual, scale.unit, false)
+	for i := range all {
+		data := p.addTrace(traces[i], scale)
+		p.addSeries(keyResidual, "line", data, "v", band(p.time, scale, all[i].decay))
+		p.addDots(keyResidual, data)
+	}
+	last := &p.panels[len(p.panels)-1]
+	last.Keys = append(last.Keys, keyBand)
+}
+
+func (p *plot) addTrace(tr trace, s axisScale) int {
+	return p.addData(map[string]column{"t": p.time.column(tr.t), "v": s.column(tr.v)})
+}
+
+// addDots draws the points of a line as dots, in one go however many they are.
+func (p *plot) addDots(k key, data int) {
+	p.addSeries(k, "scatter", data, "v", charts.WithSeriesOpts(func(s *charts.SingleSeries) {
+		s.Large, s.LargeThreshold = opts.Bool(true), 500
+	}))
+}
+
+// gates shades the stretches of time that were fitted.
+func gates(time axisScale, all []drawn) charts.SeriesOpts {
+	return charts.WithSeriesOpts(func(s *charts.SingleSeries) {
+		var areas []any
+		for _, w := range all {
+			areas = append(areas, []opts.MarkAreaData{
+				{XAxis: round(w.decay.From*time.factor, time.places)}, {XAxis: round(w.decay.To*time.factor, time.places)}})
+		}
+		if len(areas) > 0 {
+			s.MarkAreas = &opts.MarkAreas{Data: areas, MarkAreaStyle: opts.MarkAreaStyle{ItemStyle: &opts.ItemStyle{Color: "@gate"}}}
+		}
+	})
+}
+
+// band shades two standard deviations of the noise to both sides of zero.
+func band(time, level axisScale, d *decay.Decay) charts.SeriesOpts {
+	return charts.WithSeriesOpts(func(s *charts.SingleSeries) {
+		h := 2 * d.NoiseRMS * level.factor
+		if !(h > 0) || math.IsInf(h, 0) {
+			return
+		}
+		s.MarkAreas = &opts.MarkAreas{
+			Data: []any{[]opts.MarkAreaData{
+				{Coord: []float64{round(d.From*time.factor, time.places), -h}}, {Coord: []float64{round(d.To*time.factor, time.places), h}}}},
+			MarkAreaStyle: opts.MarkAreaStyle{ItemStyle: &opts.ItemStyle{Color: "@band"}},
+		}
+	})
+}
+
+// views returns the stretches of time that are worth a button.
+func (p *plot) views(r *RingDown, all []drawn) []view {
+	if len(all) == 0 {
+		return []view{}
+	}
+	at := func(t float64) number { return number(round(t*p.time.factor, p.time.places)) }
+	d := all[0].decay
+	out := []view{{"Gate", at(d.From), at(d.To)}}
+	// Where a window of true samples exists, the view stays inside of it.
+	cycles := (d.To - d.From) / math.Max(d.Cycles, 1)
+	wide := math.Min(windowCycles*0.7*cycles, (d.To-d.From)/3)
+	if len(all[0].windows) == 3 {
+		w := all[0].windows[1]
+		wide = math.Min(wide, r.Channel.Axis.Time(w.to-1)-r.Channel.Axis.Time(w.from))
+	}
+	middle := (d.From + d.To) / 2
+	return append(out, view{"First cycles", at(d.From - wide/10), at(d.From + wide)},
+		view{"Middle", at(middle - wide/2), at(middle + wide/2)}, view{"Last cycles", at(d.To - wide), at(d.To)})
+}
+
+// thin keeps at most a few hundred points of a reading, evenly.
+func thin(tr trace) trace {
+	const most = 400
+	if len(tr.t) <= most {
+		return tr
+	}
+	var out trace
+	for i := range most {
+		k := i * (len(tr.t) - 1) / (most - 1)
+		out.add(tr.t[k], tr.v[k])
+	}
+	return out
+}
+
+// positive returns v with NaN for what has no logarithm.
+func positive(v []float64) []float64 {
+	out := make([]float64, len(v))
+	for i, x := range v {
+		if out[i] = x; !(x > 0) {
+			out[i] = math.NaN()
+		}
+	}
+	return out
+}

@@ -1,0 +1,158 @@
+package report
+
+import (
+	"math"
+
+	"dieaway/capture"
+)
+
+// How much of a record the page shows. Up to exactLimit samples it shows all of
+// them. Beyond, it shows all samples of a few windows and of the rest the
+// smallest and the largest sample of each bin, which keeps the outline of an
+// oscillation as well as a single spike; an average would keep neither.
+const (
+	exactLimit    = 8000
+	binsInGates   = 1600
+	binsElsewhere = 500
+	windowSamples = 1400
+	windowCycles  = 12
+)
+
+// An indexRange is the samples from one up to before another.
+type indexRange struct{ from, to int }
+
+// A segment is a part of the record, shown in bins of some samples; a bin of one
+// is every sample.
+type segment struct {
+	indexRange
+	bin int
+}
+
+// segments says how to show the samples from a.from to a.to, with every sample
+// inside the windows, which are in order and do not overlap, and about bins bins
+// outside of them.
+func segments(a indexRange, windows []indexRange, bins int) []segment {
+	outside := a.to - a.from
+	for _, w := range windows {
+		outside -= max(0, min(w.to, a.to)-max(w.from, a.from))
+	}
+	bin := 1
+	if outside > 2*bins {
+		bin = (outside + bins - 1) / bins
+	}
+	var out []segment
+	add := func(from, to, bin int) {
+		if from < to {
+			out = append(out, segment{indexRange{from, to}, bin})
+		}
+	}
+	at := a.from
+	for _, w := range windows {
+		from, to := max(w.from, at), min(w.to, a.to)
+		if from >= to {
+			continue
+		}
+		add(at, from, bin)
+		add(from, to, 1)
+		at = to
+	}
+	add(at, a.to, bin)
+	return out
+}
+
+// windowsOf returns the parts of a gate that are shown sample by sample: its first
+// cycles, its middle and its last ones, each of at most size samples.
+func windowsOf(g indexRange, cycle float64, size int) []indexRange {
+	if g.to <= g.from {
+		return nil
+	}
+	if w := windowCycles * cycle; w < float64(size) {
+		size = min(size, max(int(math.Ceil(w)), 100))
+	}
+	size = min(size, (g.to-g.from+2)/3)
+	lead := min(size/8, g.from) // the moment before the decay tells how it was started
+	middle := (g.from + g.to - size) / 2
+	return []indexRange{
+		{g.from - lead, g.from + size - lead},
+		{middle, middle + size},
+		{g.to - size, g.to},
+	}
+}
+
+// A trace is a reduced course of values over time. NaN breaks the line.
+type trace struct{ t, v []float64 }
+
+func (tr *trace) add(t, v float64) { tr.t, tr.v = append(tr.t, t), append(tr.v, v) }
+
+// reduce shows value(i) over the segments. Bins give their smallest and largest
+// value in the order of time; missing values are left out of them.
+func reduce(axis *capture.Axis, parts []segment, value func(i int) float64) trace {
+	var tr trace
+	for _, p := range parts {
+		for i := p.from; i < p.to; i += p.bin {
+			if p.bin == 1 {
+				tr.add(axis.Time(i), value(i))
+				continue
+			}
+			lo, hi := extremes(i, min(i+p.bin, p.to), value)
+			if lo.index < 0 {
+				tr.add(axis.Time(i), math.NaN())
+				continue
+			}
+			if lo.index > hi.index {
+				lo, hi = hi, lo
+			}
+			tr.add(axis.Time(lo.index), lo.value)
+			if hi.index != lo.index {
+				tr.add(axis.Time(hi.index), hi.value)
+			}
+		}
+	}
+	return tr
+}
+
+type extreme struct {
+	index int
+	value float64
+}
+
+// extremes finds the smallest and the largest of value(from..to-1); the indices
+// are -1 when none is a number.
+func extremes(from, to int, value func(i int) float64) (lo, hi extreme) {
+	lo, hi = extreme{-1, math.Inf(1)}, extreme{-1, math.Inf(-1)}
+	for i := from; i < to; i++ {
+		v := value(i)
+		if v < lo.value {
+			lo = extreme{i, v}
+		}
+		if v > hi.value {
+			hi = extreme{i, v}
+		}
+	}
+	if hi.index < 0 || lo.index < 0 {
+		return extreme{index: -1}, extreme{index: -1}
+	}
+	return lo, hi
+}
+
+// crests returns the largest |sample - baseline| of each stretch of samples of
+// the given length, at its time: with a stretch of half a cycle, the peaks.
+func crests(ch *capture.Channel, a indexRange, stretch int, baseline func(t float64) float64) trace {
+	var tr trace
+	for i := a.from; i < a.to; i += stretch {
+		end := min(i+stretch, a.to)
+		b := baseline(ch.Axis.Time(i))
+		lo, hi := extremes(i, end, func(k int) float64 { return ch.Samples[k] })
+		if lo.index < 0 {
+			continue
+		}
+		at := hi
+		if b-lo.value > hi.value-b {
+			at = lo
+		}
+		if v := math.Abs(at.value - b); v > 0 { // nothing on a logarithmic axis
+			tr.add(ch.Axis.Time(at.index), v)
+		}
+	}
+	return tr
+}

@@ -1,0 +1,204 @@
+"use strict";
+(() => {
+  const data = JSON.parse(document.getElementById("data").textContent);
+  const source = JSON.stringify(data.option);
+  const stage = document.getElementById("stage");
+  const canvas = document.getElementById("chart");
+  const tools = document.querySelector(".tools");
+  const heads = [...stage.querySelectorAll(".head")];
+  const printWidth = 680; // CSS pixels between the margins of A4 and of Letter
+  const margin = { left: 58, right: 18 };
+  let printing = false;
+
+  const css = (name) => getComputedStyle(document.documentElement).getPropertyValue(name).trim();
+  const escape = (s) => s.replace(/[&<>"']/g, (c) => `&#${c.charCodeAt(0)};`);
+  const minus = (s) => s.replace("-", "−").replace("e", " × 10^").replace("^+", "^");
+
+  // digits writes a number without the noise of binary fractions.
+  const digits = (x, n) => minus(String(Number(x.toPrecision(n))));
+
+  // paint replaces "@name" by the colour of that name in the style sheet.
+  const paint = (x) => {
+    if (typeof x === "string") return x.startsWith("@") ? css(`--c-${x.slice(1)}`) : x;
+    if (Array.isArray(x)) return typeof x[0] === "number" ? x : x.map(paint);
+    if (x === null || typeof x !== "object") return x;
+    for (const k of Object.keys(x)) if (k !== "dataset") x[k] = paint(x[k]);
+    return x;
+  };
+
+  const valueOf = (p) => {
+    const y = p.encode.y[0];
+    return Array.isArray(p.value) ? p.value[y] : p.value[p.dimensionNames[y]];
+  };
+
+  // tip lists what stands at the pointer, panel by panel.
+  const tip = (params) => {
+    if (!params.length) return "";
+    let html = `<span class="t">${digits(params[0].axisValue, 9)} ${escape(data.time)}</span>`;
+    const rows = new Map();
+    for (const p of params) {
+      const v = valueOf(p);
+      if (typeof v !== "number" || Number.isNaN(v)) continue;
+      const text = digits(v, 5);
+      const row = rows.get(p.seriesName) || { unit: data.panels[p.axisIndex].unit, texts: [] };
+      if (!row.texts.includes(text)) row.texts.push(text);
+      rows.set(p.seriesName, row);
+    }
+    for (const [name, row] of rows) {
+      html += `<span>${escape(name)}</span><b class="v">${escape(row.texts.slice(0, 2).join(" and "))} ${escape(row.unit)}</b>`;
+    }
+    return `<div class="tip">${html}</div>`;
+  };
+
+  const axisStyle = () => ({
+    axisLine: { show: true, onZero: false, lineStyle: { color: css("--line") } },
+    axisTick: { show: true, lineStyle: { color: css("--line") } },
+    splitLine: { show: true, lineStyle: { color: css("--grid") } },
+    nameTextStyle: { color: css("--soft"), fontSize: 12 },
+  });
+  const label = (format) => ({ color: css("--soft"), fontSize: 12, hideOverlap: true, formatter: format });
+
+  // dress adds to the option what depends on the theme and what needs a function.
+  const dress = () => {
+    const o = paint(JSON.parse(source));
+    o.backgroundColor = "transparent";
+    o.textStyle = { fontFamily: getComputedStyle(document.body).fontFamily };
+    for (const x of o.xAxis) Object.assign(x, axisStyle(), { nameLocation: "end", nameGap: 4, axisLabel: { ...label((v) => digits(v, 9)), showMinLabel: false, showMaxLabel: false } });
+    o.xAxis.forEach((x) => Object.assign(x.nameTextStyle, { align: "right", verticalAlign: "top", padding: [9, -margin.right + 4, 0, 0] }));
+    o.yAxis.forEach((y) => Object.assign(y, axisStyle(), { nameLocation: "end", nameGap: 8, axisLabel: label((v) => digits(v, 6)) }));
+    o.yAxis.forEach((y) => Object.assign(y.nameTextStyle, { align: "right", padding: [0, 8, 0, 0] }));
+    Object.assign(o.tooltip, { formatter: tip, confine: true, backgroundColor: css("--sheet"), borderColor: css("--line"), textStyle: { color: css("--ink") }, padding: [6, 10] });
+    o.axisPointer.lineStyle = { color: css("--soft"), type: "solid", width: 1 };
+    o.axisPointer.label = { show: false };
+    for (const s of o.series) {
+      if (s.markArea) s.markArea.silent = true;
+      if (s.type === "line") s.emphasis = { disabled: true };
+      if (s.large) s.silent = true;
+    }
+    Object.assign(o.dataZoom[0], { zoomOnMouseWheel: "ctrl", moveOnMouseWheel: false, preventDefaultMouseMove: false });
+    Object.assign(o.dataZoom[1], {
+      left: margin.left, right: margin.right, height: 26, showDetail: false, brushSelect: false,
+      borderColor: css("--line"), fillerColor: css("--c-gate"), handleStyle: { color: css("--sheet"), borderColor: css("--soft") },
+      moveHandleSize: 6, moveHandleStyle: { color: css("--line") },
+      dataBackground: { lineStyle: { color: css("--c-quiet"), width: 0.5 }, areaStyle: { color: css("--line"), opacity: 0.4 } },
+      selectedDataBackground: { lineStyle: { color: css("--c-samples"), width: 0.7 }, areaStyle: { opacity: 0 } },
+    });
+    // Only for the cursor that marks a stretch; its buttons are ours.
+    o.toolbox = { show: true, left: -200, top: 0, feature: { dataZoom: { yAxisIndex: "none" } } };
+    return o;
+  };
+
+  const chart = echarts.init(canvas, null, { renderer: "canvas", devicePixelRatio: Math.max(2, window.devicePixelRatio || 1), height: 300 });
+
+  // layout gives each heading its place and each panel the room below it.
+  const layout = () => {
+    stage.classList.add("drawn");
+    stage.style.width = printing ? `${printWidth}px` : "";
+    const width = stage.clientWidth;
+    const heights = printing ? [215, 160, 130] : width < 560 ? [210, 190, 160] : [340, 260, 210];
+    if (heads.length === 1) heights[0] += 40;
+    const grids = [];
+    let y = 0;
+    heads.forEach((head, i) => {
+      head.style.top = `${y}px`;
+      y += head.offsetHeight + 26;
+      grids.push({ ...margin, top: y, height: heights[i], containLabel: false });
+      y += heights[i] + (printing ? 34 : 46);
+    });
+    const slider = { show: !printing, top: y };
+    if (!printing) y += 40;
+    canvas.style.height = `${y}px`;
+    chart.resize({ width, height: y });
+    return { grid: grids, dataZoom: [{}, slider] };
+  };
+
+  // draw keeps the stretch of time and the series that are switched off.
+  const draw = () => {
+    const old = chart.getOption();
+    const option = dress();
+    const place = layout();
+    option.grid = place.grid;
+    Object.assign(option.dataZoom[1], place.dataZoom[1]);
+    if (old && old.dataZoom) {
+      option.legend.selected = old.legend[0].selected;
+      for (const z of option.dataZoom) Object.assign(z, { start: old.dataZoom[0].start, end: old.dataZoom[0].end });
+    }
+    chart.setOption(option, { notMerge: true });
+  };
+
+  const zoomTo = (start, end) => chart.dispatchAction({ type: "dataZoom", start: Math.max(0, start), end: Math.min(100, end) });
+  const stretch = () => chart.getOption().dataZoom[0];
+  const move = (scale, shift) => {
+    const { start, end } = stretch();
+    const half = Math.min(50, ((end - start) / 2) * scale);
+    const middle = Math.min(100 - half, Math.max(half, (start + end) / 2 + shift * (end - start)));
+    zoomTo(middle - half, middle + half);
+  };
+
+  const select = (on) => {
+    tools.querySelector("[data-do=select]").setAttribute("aria-pressed", String(on));
+    chart.dispatchAction({ type: "takeGlobalCursor", key: "dataZoomSelect", dataZoomSelectActive: on });
+  };
+
+  // picture saves the charts with the titles that the page shows as text.
+  const picture = () => {
+    const titles = heads.map((head, i) => ({
+      text: i === 0 ? `${data.name} – ${data.panels[i].title}` : data.panels[i].title,
+      left: 0, top: parseFloat(head.style.top), padding: 0, textStyle: { color: css("--ink"), fontSize: 15, width: stage.clientWidth - 10, overflow: "truncate" },
+    }));
+    chart.setOption({ title: titles, dataZoom: [{}, { show: false }] });
+    const link = document.createElement("a");
+    link.href = chart.getDataURL({ type: "png", pixelRatio: 2, backgroundColor: css("--paper") });
+    link.download = "free-decay.png";
+    link.click();
+    chart.setOption({ title: titles.map(() => ({ show: false })), dataZoom: [{}, { show: true }] });
+  };
+
+  const actions = {
+    all: () => zoomTo(0, 100), in: () => move(0.5, 0), out: () => move(2, 0), left: () => move(1, -0.5), right: () => move(1, 0.5),
+    select: (b) => select(b.getAttribute("aria-pressed") !== "true"), picture,
+  };
+  const showView = (v, room) => {
+    const { min, max } = data.option.xAxis[0];
+    const at = (t) => (100 * (t - min)) / (max - min);
+    const extra = room * (at(v.to) - at(v.from));
+    zoomTo(at(v.from) - extra, at(v.to) + extra);
+  };
+
+  tools.addEventListener("click", (event) => {
+    const b = event.target.closest("button");
+    if (!b) return;
+    if (b.dataset.view) showView(data.views[Number(b.dataset.view)], 0);
+    else actions[b.dataset.do](b);
+  });
+  stage.addEventListener("click", (event) => {
+    const b = event.target.closest("button[data-series]");
+    if (!b) return;
+    const on = b.getAttribute("aria-pressed") !== "true";
+    b.setAttribute("aria-pressed", String(on));
+    chart.dispatchAction({ type: on ? "legendSelect" : "legendUnSelect", name: b.dataset.series });
+  });
+  chart.on("datazoom", (event) => {
+    if (event.batch && tools.querySelector("[data-do=select]").getAttribute("aria-pressed") === "true") select(false);
+  });
+
+  tools.hidden = false;
+  draw();
+  // A gate that is a small part of a long record deserves the first look.
+  if (data.views.length) {
+    const { min, max } = data.option.xAxis[0];
+    const gate = data.views[0];
+    if (gate.to - gate.from < 0.4 * (max - min)) showView(gate, 0.12);
+  }
+
+  let pending = 0;
+  new ResizeObserver(() => {
+    if (printing || pending) return;
+    pending = requestAnimationFrame(() => { pending = 0; if (!printing) chart.setOption(layout()); });
+  }).observe(stage);
+  matchMedia("(prefers-color-scheme: dark)").addEventListener("change", () => { if (!printing) draw(); });
+  const print = (on) => { if (printing !== on) { printing = on; draw(); } };
+  addEventListener("beforeprint", () => print(true));
+  addEventListener("afterprint", () => print(false));
+  matchMedia("print").addEventListener("change", (event) => print(event.matches));
+})();
