@@ -42,10 +42,11 @@ func Analyze(ch *capture.Channel, opt Options) *Result {
 	v := noiseOf(g.fit.residuals(window.slice(0, min(window.len(), noiseSamples)), 0), g.fit.sigma())
 	// 3. Covariance, and everything that follows from rate and frequency.
 	d := newDecay(s, g, v, ch.Unit, opt.TimebaseU)
-	// 4. Readings by crossings and peaks, which know nothing of the fit.
-	readings := read(window, d.period(), v.rms*v.factor(g.fit.w))
+	// 4. Readings by crossings and peaks, which know nothing of the fit but what
+	// else moves beside the ring.
+	readings := read(g.ringOnly(s), d.period(), v.rms*v.factor(g.fit.w))
 	// 5. Judgement: is it a decay at all, and can the numbers be trusted?
-	r := &Result{Model: Exponential, Decays: []*Decay{d}, Readings: readings}
+	r := &Result{Model: d.model(), Decays: []*Decay{d}, Readings: readings}
 	if f, refuse := judge(&g, d, v); refuse {
 		return refused(r, f...)
 	}
@@ -100,8 +101,8 @@ func newDecay(s series, g gate, v noise, unit string, timebase float64) *Decay {
 		law: f.law(),
 	}
 	if cov, ok := f.covariance(v); ok {
-		d.Quantities = quantitiesOf(f.a, f.w, s.dt, cov, timebase)
-		d.Amplitude, d.Phase, d.Offset = f.shape(cov, unit)
+		d.Quantities = quantitiesOf(f.a, f.w, s.dt, &cov, timebase)
+		d.Amplitude, d.Phase, d.Offset = f.shape(&cov, unit)
 	}
 	d.Cycles = (d.To - d.From) * d.Quantities.DampedFrequency.Value
 	return d
@@ -137,4 +138,12 @@ func (r *Result) settle() *Result {
 		}
 	}
 	return r
+}
+
+// model names the law that the decay was fitted with.
+func (d *Decay) model() Model {
+	if l, ok := d.law.(exponentialLaw); ok && l.companion != nil && l.companion.w > 0 {
+		return TwoMode
+	}
+	return Exponential
 }

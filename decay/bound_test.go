@@ -50,7 +50,7 @@ func TestBoundIsExact(t *testing.T) {
 	for _, v := range vectors {
 		t.Run(v.name, func(t *testing.T) {
 			s := series{y: v.samples(nil), dt: 1 / v.rate}
-			f, ok := fitRing(s, 1/(v.tau*v.rate)*1.05, 2*math.Pi*v.fd/v.rate*1.0005)
+			f, ok := fitRing(s, 1/(v.tau*v.rate)*1.05, 2*math.Pi*v.fd/v.rate*1.0005, fine)
 			if !ok || f.stop != Converged {
 				t.Fatalf("stop %v", f.stop)
 			}
@@ -58,8 +58,8 @@ func TestBoundIsExact(t *testing.T) {
 			if !ok {
 				t.Fatal("no covariance")
 			}
-			q := quantitiesOf(f.a, f.w, s.dt, cov, 0)
-			a, phi, c := f.shape(cov, "V")
+			q := quantitiesOf(f.a, f.w, s.dt, &cov, 0)
+			a, phi, c := f.shape(&cov, "V")
 			near(t, "fd", q.DampedFrequency.Value, v.fd, 1e-10)
 			near(t, "Q", q.Q.Value, v.q, 1e-7)
 			near(t, "sd(fd)", q.DampedFrequency.U, v.sdF, 1e-6)

@@ -3,8 +3,6 @@ package decay
 import (
 	"math"
 
-	"gonum.org/v1/gonum/mat"
-
 	"dieaway/decay/quantity"
 )
 
@@ -31,12 +29,13 @@ func (s StopReason) String() string {
 	return stopNames[s]
 }
 
-// ringFit is a damped sinusoid fitted to a window, in the units of the samples'
-// index; a, w, c, p, q as in [ring].
+// ringFit is a damped sinusoid fitted to a window, in intervals of the samples,
+// with a companion or none: y(n) = ref + c + exp(-a n) (p cos wn + q sin wn) + ...
 type ringFit struct {
 	s             series
 	a, w, c, p, q float64
 	ref           float64
+	companion     *term
 	rss           float64
 	n             int
 	stop          StopReason
@@ -44,31 +43,77 @@ type ringFit struct {
 	normal        normal
 }
 
-// fitRing fits a damped sinusoid about a constant, started at (a, w).
-func fitRing(s series, a, w float64) (ringFit, bool) {
-	if s.len() < 6 {
+// term is a component beside the ring: a second ring, or, with w = 0, a plain
+// exponential p exp(-a n).
+type term struct{ a, w, p, q float64 }
+
+func (t *term) at(n float64) float64 {
+	sin, cos := math.Sincos(t.w * n)
+	return math.Exp(-t.a*n) * (t.p*cos + t.q*sin)
+}
+
+// fitRing fits a damped sinusoid about a constant, started at (a, w), to the
+// tolerance of [minimise]. It is false when no fit can be made at all.
+func fitRing(s series, a, w, tolerance float64) (ringFit, bool) {
+	return fitSum(s, pole{a, w}, nil, tolerance)
+}
+
+// fitSum fits a ring and, unless it is nil, a companion.
+func fitSum(s series, ring pole, companion *pole, tolerance float64) (ringFit, bool) {
+	theta := []float64{ring.a, ring.w}
+	p := &poles{}
+	switch {
+	case s.len() < samplesLeast:
+		return ringFit{}, false
+	case companion == nil:
+		p = newPoles(s, 1, 0)
+	case companion.w > 0:
+		p = newPoles(s, 2, 0)
+		theta = append(theta, companion.a, companion.w)
+	default:
+		p = newPoles(s, 1, 1)
+		theta = append(theta, companion.a)
+	}
+	if p.n < samplesLeast || !(p.yy > 0) {
 		return ringFit{}, false
 	}
-	p := newRing(s)
-	if p.n < 6 || !(p.yy > 0) {
-		return ringFit{}, false
-	}
-	sol := minimise(p, []float64{a, w})
-	if sol.normal.jtj == nil {
+	sol := minimise(p, theta, tolerance)
+	if sol.stop == Singular {
 		return ringFit{}, false
 	}
 	return p.fit(sol), true
 }
 
-func (r *ring) fit(sol solution) ringFit {
+func (r *poles) fit(sol solution) ringFit {
 	b := sol.normal.beta
-	return ringFit{
+	f := ringFit{
 		s: r.s, a: sol.theta[0], w: sol.theta[1], c: b[0], p: b[1], q: b[2], ref: r.ref,
 		rss: sol.normal.rss, n: r.n, stop: sol.stop, iterations: sol.iterations, normal: sol.normal,
 	}
+	switch {
+	case r.rings == 2:
+		f.companion = &term{sol.theta[2], sol.theta[3], b[3], b[4]}
+	case r.falls == 1:
+		f.companion = &term{a: sol.theta[2], p: b[3]}
+	}
+	return f
 }
 
-func (f *ringFit) dof() float64     { return math.Max(1, float64(f.n-5)) }
+// places of a, w, c, p, q among the parameters of the normal equations.
+func (f *ringFit) places() [5]int {
+	k := f.normal.jtj.n - len(f.normal.beta)
+	return [5]int{0, 1, k, k + 1, k + 2}
+}
+
+// companionPole is the start of a fit with the same companion, nil for none.
+func (f *ringFit) companionPole() *pole {
+	if f.companion == nil {
+		return nil
+	}
+	return &pole{f.companion.a, f.companion.w}
+}
+
+func (f *ringFit) dof() float64     { return math.Max(1, float64(f.n-f.normal.jtj.n)) }
 func (f *ringFit) sigma() float64   { return math.Sqrt(f.rss / f.dof()) }
 func (f *ringFit) size() float64    { return math.Hypot(f.p, f.q) }
 func (f *ringFit) offset() float64  { return f.ref + f.c }
@@ -78,8 +123,12 @@ func (f *ringFit) qFactor() float64 { return math.Hypot(f.a, f.w) / (2 * f.a) }
 
 // value returns the curve n intervals after the first sample of the window.
 func (f *ringFit) value(n float64) float64 {
-	sin, cos := math.Sincos(f.w * n)
-	return f.offset() + math.Exp(-f.a*n)*(f.p*cos+f.q*sin)
+	ring := term{f.a, f.w, f.p, f.q}
+	v := f.offset() + ring.at(n)
+	if f.companion != nil {
+		v += f.companion.at(n)
+	}
+	return v
 }
 
 // residuals of the samples first to last-1 of s, whose sample 0 is n0 intervals
@@ -92,34 +141,45 @@ func (f *ringFit) residuals(s series, n0 float64) []float64 {
 		}
 		return out
 	}
-	t := newPowers(f.a, f.w)
-	c := f.offset()
-	for at := 0; at < len(out); at += blockLength {
-		n := n0 + float64(at)
-		sin, cos := math.Sincos(f.w * n)
-		e := math.Exp(-f.a * n)
-		// (p - jq) base z^m, of which the real part is the curve.
-		re, im := e*(f.p*cos+f.q*sin), e*(f.p*sin-f.q*cos)
-		for m := range min(blockLength, len(out)-at) {
-			out[at+m] = s.y[at+m] - c - (re*t.re[m] - im*t.im[m])
-		}
+	copy(out, s.y)
+	for i := range out {
+		out[i] -= f.offset()
+	}
+	(&term{f.a, f.w, f.p, f.q}).subtract(out, n0)
+	if f.companion != nil {
+		f.companion.subtract(out, n0)
 	}
 	return out
+}
+
+// subtract takes the term off uniform samples, the first of which is at time n0.
+func (t *term) subtract(y []float64, n0 float64) {
+	table := newPowers(pole{t.a, t.w})
+	for at := 0; at < len(y); at += blockLength {
+		// The curve is the real part of (p - jq) z^n.
+		c := complex(t.p, -t.q) * table.z.at(n0+float64(at))
+		re, im := real(c), imag(c)
+		for m := range min(blockLength, len(y)-at) {
+			y[at+m] -= re*table.re[m] - im*table.im[m]
+		}
+	}
 }
 
 // covariance returns the covariance of (a, w, c, p, q) for noise v: the inverse
 // of J'J with the noise density where each parameter lives, at the damped
 // frequency for all but the offset and at zero for the offset.
-func (f *ringFit) covariance(v noise) (*mat.SymDense, bool) {
-	cov, ok := invertSym(f.normal.jtj)
+func (f *ringFit) covariance(v noise) (cov sym, ok bool) {
+	inv, ok := f.normal.jtj.inverse()
 	if !ok {
-		return nil, false
+		return cov, false
 	}
 	at, zero := v.rms*v.factor(f.w), v.rms*v.factor(0)
 	scale := [5]float64{at, at, zero, at, at}
-	for i := range 5 {
-		for j := i; j < 5; j++ {
-			cov.SetSym(i, j, cov.At(i, j)*scale[i]*scale[j])
+	cov.n = 5
+	where := f.places()
+	for i, a := range where {
+		for j, b := range where {
+			cov.set(i, j, inv.At(a, b)*scale[i]*scale[j])
 		}
 	}
 	return cov, true
@@ -129,7 +189,7 @@ func (f *ringFit) covariance(v noise) (*mat.SymDense, bool) {
 // covariance to everything that follows from them; timebase is the relative
 // standard uncertainty of dt, which leaves pure numbers alone. The formulas are
 // those of the damped oscillator: s^2 = a^2 + w^2, f0 = s/(2 pi dt), Q = s/(2a).
-func quantitiesOf(a, w, dt float64, cov mat.Symmetric, timebase float64) Quantities {
+func quantitiesOf(a, w, dt float64, cov *sym, timebase float64) Quantities {
 	s := math.Hypot(a, w)
 	caa, cww, caw := cov.At(0, 0), cov.At(1, 1), cov.At(0, 1)
 	// make propagates a derivative (da, dw) and adds the time base where it enters.
@@ -155,7 +215,7 @@ func quantitiesOf(a, w, dt float64, cov mat.Symmetric, timebase float64) Quantit
 }
 
 // shape returns amplitude, phase and offset with their uncertainty, in unit.
-func (f *ringFit) shape(cov mat.Symmetric, unit string) (amplitude, phase, offset quantity.Quantity) {
+func (f *ringFit) shape(cov *sym, unit string) (amplitude, phase, offset quantity.Quantity) {
 	size := f.size()
 	u := func(dp, dq float64) float64 {
 		v := dp*dp*cov.At(3, 3) + dq*dq*cov.At(4, 4) + 2*dp*dq*cov.At(3, 4)
@@ -168,13 +228,39 @@ func (f *ringFit) shape(cov mat.Symmetric, unit string) (amplitude, phase, offse
 }
 
 // exponentialLaw is the fitted curve of a ringFit in physical units.
-type exponentialLaw struct{ amplitude, rate, omega, phase, offset float64 }
-
-func (f *ringFit) law() law {
-	return exponentialLaw{f.size(), f.a / f.s.dt, f.w / f.s.dt, math.Atan2(-f.q, f.p), f.offset()}
+type exponentialLaw struct {
+	amplitude, rate, omega, phase, offset float64
+	companion                             *term // rates and frequency per second
 }
 
+func (f *ringFit) law() law {
+	l := exponentialLaw{f.size(), f.a / f.s.dt, f.w / f.s.dt, math.Atan2(-f.q, f.p), f.offset(), nil}
+	if c := f.companion; c != nil {
+		l.companion = &term{c.a / f.s.dt, c.w / f.s.dt, c.p, c.q}
+	}
+	return l
+}
+
+// at counts a plain exponential to the baseline and the beat of a second ring to
+// the envelope.
 func (l exponentialLaw) at(t float64) (value, envelope, baseline float64) {
-	envelope = l.amplitude * math.Exp(-l.rate*t)
-	return l.offset + envelope*math.Cos(l.omega*t+l.phase), envelope, l.offset
+	envelope, baseline = l.amplitude*math.Exp(-l.rate*t), l.offset
+	value = envelope * math.Cos(l.omega*t+l.phase)
+	switch c := l.companion; {
+	case c == nil:
+	case c.w == 0:
+		baseline += c.at(t)
+	default:
+		value += c.at(t)
+		envelope = c.beat(t, envelope, l.omega*t+l.phase)
+	}
+	return value + baseline, envelope, baseline
+}
+
+// beat is the envelope of the sum of this ring and another of the given envelope
+// and phase: the magnitude of the sum of two phasors.
+func (t *term) beat(at, envelope, phase float64) float64 {
+	e := math.Exp(-t.a*at) * math.Hypot(t.p, t.q)
+	d := phase - (t.w*at + math.Atan2(-t.q, t.p))
+	return math.Sqrt(math.Max(0, envelope*envelope+e*e+2*envelope*e*math.Cos(d)))
 }

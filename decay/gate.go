@@ -24,23 +24,38 @@ const (
 
 // findGate finds the free decay in s: where it begins, after the edge that
 // shocked the circuit, and where to stop. The first fit grows from the best seed
-// to both sides as long as the samples follow it.
+// to both sides as long as the samples follow it. Where a companion stands out
+// beside the ring the same is done with the companion taken off, and the
+// likelier of the two accounts is kept.
 func findGate(s series, fixedStart, fixedEnd bool) (gate, bool) {
 	p := newPyramid(s)
-	g, ok := firstFit(s, p, fixedStart)
+	first, ok := firstFit(s, p, fixedStart)
 	if !ok {
 		return gate{}, false
 	}
+	g := first
+	g.settle(s, p, fixedStart, fixedEnd)
+	if two, ok := withCompanion(s, &first); ok {
+		two.settleBoth(s, fixedStart, fixedEnd)
+		if two.cost(s) < g.cost(s)-companionMargin {
+			g = two
+		}
+	}
+	if g.fit.companion == nil {
+		g.addCompanion(s)
+	}
+	g.refit(s, fine)
+	return g, true
+}
+
+// settle moves both ends of the gate to where the decay begins and ends.
+func (g *gate) settle(s series, p *pyramid, fixedStart, fixedEnd bool) {
 	for range 2 {
 		if !fixedStart {
 			g.placeStart(s, p)
 		}
 		g.growForward(s, fixedEnd)
 	}
-	if f, ok := fitRing(s.slice(g.first, g.last), g.fit.a, g.fit.w); ok {
-		g.fit = f
-	}
-	return g, true
 }
 
 // firstFit refines the best seeds of every onset and keeps the likeliest account
@@ -78,8 +93,8 @@ func firstFit(s series, p *pyramid, fixedStart bool) (gate, bool) {
 	if math.IsInf(least, 1) {
 		return best, false
 	}
-	f, ok := fitRing(s.slice(best.first, min(best.last, best.first+coreMost)), best.fit.a, best.fit.w)
-	if ok && f.stop != Singular {
+	f, ok := fitRing(s.slice(best.first, min(best.last, best.first+coreMost)), best.fit.a, best.fit.w, coarse)
+	if ok {
 		best.fit, best.last = f, min(best.last, best.first+coreMost)
 	}
 	return best, ok
@@ -109,11 +124,10 @@ func (p *pyramid) refine(sd seed) (f ringFit, explained float64, ok bool) {
 	if sd.w*m > math.Pi {
 		return f, 0, false
 	}
-	if f, ok = fitRing(window, sd.a*m, sd.w*m); !ok || f.stop == Singular {
+	if f, ok = fitRing(window, sd.a*m, sd.w*m, coarse); !ok {
 		return f, 0, false
 	}
-	r := newRing(window)
-	return f, m * (r.yy - r.y*r.y/float64(r.n) - f.rss), true
+	return f, m * (newRing(window).aboutMean() - f.rss), true
 }
 
 // plateaus tells how much energy is left when a record is cut in three and each
@@ -184,14 +198,15 @@ func (g *gate) growForward(s series, fixedEnd bool) {
 			return
 		}
 		g.last = to
-		g.refit(s)
+		g.refit(s, coarse)
 	}
 }
 
-func (g *gate) refit(s series) {
-	if f, ok := fitRing(s.slice(g.first, g.last), g.fit.a, g.fit.w); ok && f.stop != Singular {
-		g.fit = f
-		g.fit.s = s.slice(g.first, g.last)
+// refit fits the window of the gate, from the last fit, to tolerance.
+func (g *gate) refit(s series, tolerance float64) {
+	f := &g.fit
+	if next, ok := fitSum(s.slice(g.first, g.last), pole{f.a, f.w}, f.companionPole(), tolerance); ok {
+		g.fit = next
 	}
 }
 
@@ -200,12 +215,12 @@ func (g *gate) refit(s series) {
 // wrong model explain, provided that a neighbour further on agrees.
 func (g *gate) breakIn(s series, i, to, step int) (int, bool) {
 	sigma := g.lateSigma()
-	cov, ok := invertSym(g.fit.normal.jtj)
+	cov, ok := g.fit.normal.jtj.inverse()
 	if !ok {
 		return i, false
 	}
 	size := g.fit.size()
-	origin := s.time(g.fitFirst(s))
+	origin := s.time(g.first)
 	held := -1
 	for ; i != to; i += step {
 		n := (s.time(i) - origin) / s.dt
@@ -214,7 +229,7 @@ func (g *gate) breakIn(s series, i, to, step int) (int, bool) {
 			continue
 		}
 		limit := breakSigma*sigma + breakShare*size*math.Exp(-math.Max(0, g.fit.a*math.Min(n, 0)))
-		if r > limit && r > limit+breakSigma*sigma*(g.fit.spread(cov.At, n)) {
+		if r > limit && r > limit+breakSigma*sigma*(g.fit.spread(&cov, n)) {
 			if held >= 0 && abs(i-held) <= 3 {
 				return held, true
 			}
@@ -224,17 +239,14 @@ func (g *gate) breakIn(s series, i, to, step int) (int, bool) {
 	return i, false
 }
 
-// fitFirst is the index in s of the first sample of the fitted window.
-func (g *gate) fitFirst(s series) int { return g.first }
-
 // spread is the standard deviation of the curve n intervals after its start,
 // in units of the noise, from the covariance inv(J'J).
-func (f *ringFit) spread(cov func(i, j int) float64, n float64) float64 {
-	j := f.gradient(n)
+func (f *ringFit) spread(cov *sym, n float64) float64 {
+	j, where := f.gradient(n), f.places()
 	sum := 0.0
-	for i := range 5 {
-		for k := range 5 {
-			sum += j[i] * cov(i, k) * j[k]
+	for i, a := range where {
+		for k, b := range where {
+			sum += j[i] * cov.At(a, b) * j[k]
 		}
 	}
 	return math.Sqrt(math.Max(sum, 0))

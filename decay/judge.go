@@ -20,9 +20,9 @@ func unfit(s series, first, last int) (Finding, bool) {
 	w := s.slice(min(first, s.len()), max(min(first, s.len()), last))
 	n := w.count()
 	if n < samplesLeast {
-		return Finding{capture.NoDecay, capture.Fault,
+		return fault(capture.NoDecay,
 			fmt.Sprintf("only %d samples lie in the gate; at least %d are needed to fit a decay.", n, samplesLeast),
-			"Widen the gate, or capture more samples of the decay."}, true
+			"Widen the gate, or capture more samples of the decay."), true
 	}
 	lo, hi := math.Inf(1), math.Inf(-1)
 	for _, v := range w.y {
@@ -31,17 +31,29 @@ func unfit(s series, first, last int) (Finding, bool) {
 		}
 	}
 	if lo == hi {
-		return Finding{capture.NoDecay, capture.Fault,
+		return fault(capture.NoDecay,
 			fmt.Sprintf("All %d samples have the same value, %g.", n, lo),
-			"Check the probe, the channel and the vertical range."}, true
+			"Check the probe, the channel and the vertical range."), true
 	}
 	return Finding{}, false
 }
 
+func fault(code capture.Code, message, remedy string) Finding {
+	return Finding{Code: code, Severity: capture.Fault, Message: message, Remedy: remedy}
+}
+
+func warning(code capture.Code, message, remedy string) Finding {
+	return Finding{Code: code, Severity: capture.Warning, Message: message, Remedy: remedy}
+}
+
+func note(code capture.Code, message, remedy string) Finding {
+	return Finding{Code: code, Severity: capture.Note, Message: message, Remedy: remedy}
+}
+
 func noRing() Finding {
-	return Finding{capture.NoDecay, capture.Fault,
+	return fault(capture.NoDecay,
 		"Nothing in the record follows a damped oscillation.",
-		"Check that the record holds the decay, and that the channel is the one that rings."}
+		"Check that the record holds the decay, and that the channel is the one that rings.")
 }
 
 // judge decides whether the fit measures a free decay at all. The reasons for a
@@ -49,25 +61,25 @@ func noRing() Finding {
 func judge(g *gate, d *Decay, v noise) ([]Finding, bool) {
 	f := &g.fit
 	q := &d.Quantities
-	if f.stop == Singular || !q.Q.Known() || math.IsNaN(q.DecayRate.U) {
+	if !q.Q.Known() || math.IsNaN(q.DecayRate.U) {
 		return []Finding{noRing()}, true
 	}
 	window := f.s
 	if gain, need := energyGain(f, v), energyNeeded(window.len()); gain < need {
-		return []Finding{{capture.NoDecay, capture.Fault,
+		return []Finding{fault(capture.NoDecay,
 			fmt.Sprintf("No decay stands out of the noise: the best fit explains %.3g times the noise, and chance alone explains up to %.3g in %d samples.", gain, need, f.n),
-			"Raise the amplitude of the shock or average several decays; check that the channel is the one that rings."}}, true
+			"Raise the amplitude of the shock or average several decays; check that the channel is the one that rings.")}, true
 	}
 	rate, u := q.DecayRate.Value, q.DecayRate.U
 	if rate < -decaySigma*u {
-		return []Finding{{capture.NoDecay, capture.Fault,
+		return []Finding{fault(capture.NoDecay,
 			fmt.Sprintf("The oscillation grows, by %s a cycle: this is no free decay.", percent(math.Expm1(-q.LogDecrement.Value))),
-			"Remove what feeds the circuit (an oscillating amplifier, a drive that is still building up) or set the gate behind it."}}, true
+			"Remove what feeds the circuit (an oscillating amplifier, a drive that is still building up) or set the gate behind it.")}, true
 	}
 	if rate < decaySigma*u {
-		return []Finding{{capture.DriveOn, capture.Fault,
+		return []Finding{fault(capture.DriveOn,
 			fmt.Sprintf("The amplitude does not fall within the record: its rate is %s, which is not told from zero.", q.DecayRate),
-			"Switch the source off for the capture, or, if it is off, record longer: at least a fifth of the time constant, better three."}}, true
+			"Switch the source off for the capture, or, if it is off, record longer: at least a fifth of the time constant, better three.")}, true
 	}
 	return overdampedReasons(f, q, v)
 }
@@ -75,9 +87,7 @@ func judge(g *gate, d *Decay, v noise) ([]Finding, bool) {
 // energyGain is the energy that the ring explains beyond a constant, in units of
 // the noise density where the ring lives.
 func energyGain(f *ringFit, v noise) float64 {
-	r := newRing(f.s)
-	zero := r.yy - r.y*r.y/float64(r.n)
-	return (zero - f.rss) / sq(v.rms*v.factor(f.w))
+	return (newRing(f.s).aboutMean() - f.rss) / sq(v.rms*v.factor(f.w))
 }
 
 // energyNeeded is what the largest of n noise lines explains by chance (twice the
@@ -95,47 +105,22 @@ func overdampedReasons(f *ringFit, q *Quantities, v noise) ([]Finding, bool) {
 	if gain > oscillateGain && f.w > f.a*0.1 {
 		return nil, false
 	}
-	return []Finding{{capture.Overdamped, capture.Fault,
+	return []Finding{fault(capture.Overdamped,
 		"The record falls without swinging: a bare exponential fits it as well as a damped oscillation does.",
-		"Nothing rings here that has a frequency; check the wiring and the probe, or read the time constant with a model without oscillation."}}, true
+		"Nothing rings here that has a frequency; check the wiring and the probe, or read the time constant with a model without oscillation.")}, true
 }
 
 // fitExponential returns the residual sum of squares of a bare exponential about
-// a constant, the best over its rate by golden-section search on its logarithm.
+// a constant, from the best of a row of start rates.
 func fitExponential(s series) (float64, bool) {
-	r := newRing(s)
-	rss := func(logRate float64) float64 {
-		m := momentsOf(s, r.ref, math.Exp(logRate), 0)
-		n, e, b0, be := m.n, m.ee[0], r.y, real(m.yz[0])
-		z := real(m.z1[0])
-		det := n*e - z*z
-		if !(det > 1e-12*n*e) {
-			return r.yy - b0*b0/n
-		}
-		c, p := (b0*e-be*z)/det, (be*n-b0*z)/det
-		return r.yy - c*b0 - p*be
-	}
-	length := float64(s.len())
-	best, at := math.Inf(1), 0.0
-	lo, hi, steps := math.Log(0.1/length), math.Log(2), 40
-	for i := range steps + 1 {
-		x := lo + (hi-lo)*float64(i)/float64(steps)
-		if v := rss(x); v < best {
-			best, at = v, x
+	p := newPoles(s, 0, 1)
+	best := math.Inf(1)
+	for _, u := range []float64{0.3, 2, 8, 30} {
+		if sol := minimise(p, []float64{u / p.length}, coarse); sol.stop != Singular {
+			best = math.Min(best, sol.normal.rss)
 		}
 	}
-	width := (hi - lo) / float64(steps)
-	const golden = 0.6180339887498949
-	a, b := at-width, at+width
-	for range 25 {
-		x1, x2 := b-golden*(b-a), a+golden*(b-a)
-		if rss(x1) < rss(x2) {
-			b = x2
-		} else {
-			a = x1
-		}
-	}
-	return math.Min(best, rss((a+b)/2)), true
+	return best, !math.IsInf(best, 1)
 }
 
 // doubts lists what makes a measured decay less trustworthy.
@@ -144,24 +129,24 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 	q := &d.Quantities
 	u := (d.To - d.From) * q.DecayRate.Value
 	if u < 0.5 {
-		out = append(out, Finding{capture.ShortRecord, capture.Warning,
+		out = append(out, warning(capture.ShortRecord,
 			fmt.Sprintf("The record covers %.2g time constants of the decay; Q hangs on a fall of only %s.", u, percent(-math.Expm1(-u))),
-			"Record longer: three to five time constants."})
+			"Record longer: three to five time constants."))
 	}
 	if d.Cycles < 2 && q.Q.Value > 1 {
-		out = append(out, Finding{capture.FewCycles, capture.Warning,
+		out = append(out, warning(capture.FewCycles,
 			fmt.Sprintf("Only %.2g cycles lie in the gate.", d.Cycles),
-			"Record more of the decay, or move the gate so that it holds several cycles."})
+			"Record more of the decay, or move the gate so that it holds several cycles."))
 	}
 	if d.SNR < 14 {
-		out = append(out, Finding{capture.WeakSignal, capture.Warning,
+		out = append(out, warning(capture.WeakSignal,
 			fmt.Sprintf("The ring starts at only %.1f times the noise (%.1f dB).", math.Pow(10, d.SNR/20), d.SNR),
-			"Shock harder, use a smaller vertical range, or average several decays."})
+			"Shock harder, use a smaller vertical range, or average several decays."))
 	}
 	if v.factor(g.fit.w) > 1.5 {
-		out = append(out, Finding{capture.ColouredNoise, capture.Note,
+		out = append(out, note(capture.ColouredNoise,
 			fmt.Sprintf("The noise is %.2g times as dense at the ring's frequency as white noise of the same size; the uncertainties allow for it.", v.factor(g.fit.w)),
-			"Nothing to do; a lower bandwidth limit does not help, a stronger ring does."})
+			"Nothing to do; a lower bandwidth limit does not help, a stronger ring does."))
 	}
 	return out
 }
@@ -179,9 +164,9 @@ func compareReadings(d *Decay, r *Readings) []Finding {
 		// The reading uses a few of the samples of the fit, so that their errors
 		// are all but independent; beyond four times their joint uncertainty.
 		if diff := math.Abs(reading.Value - fit.Value); diff > 4*math.Hypot(reading.U, fit.U) {
-			out = append(out, Finding{capture.ReadingsDisagree, capture.Warning,
+			out = append(out, warning(capture.ReadingsDisagree,
 				fmt.Sprintf("The %s is %s but the fit gives %s: they differ by %s, beyond both uncertainties.", what, reading, fit, percent(diff/fit.Value)),
-				"Look at the residual and at the log of the envelope: the decay is not one exponential, or something disturbs its first cycles."})
+				"Look at the residual and at the log of the envelope: the decay is not one exponential, or something disturbs its first cycles."))
 		}
 	}
 	check("frequency read from the crossings", r.DampedFrequency, d.Quantities.DampedFrequency)

@@ -1,10 +1,6 @@
 package decay
 
-import (
-	"math"
-
-	"gonum.org/v1/gonum/mat"
-)
+import "math"
 
 // The least-squares core: separable problems y = sum_j beta_j phi_j(t; theta)
 // solved by variable projection. The linear beta are eliminated at every theta
@@ -16,10 +12,10 @@ import (
 // linear parameters already at their optimum. The nonlinear parameters come
 // first, then the linear ones.
 type normal struct {
-	jtj  *mat.SymDense // J'J, (k+m) x (k+m)
-	jtr  []float64     // J'r, the gradient; its linear part is zero up to rounding
-	beta []float64     // the linear parameters, m
-	rss  float64       // r'r
+	jtj  sym       // J'J, (k+m) x (k+m)
+	jtr  []float64 // J'r, the gradient; its linear part is zero up to rounding
+	beta []float64 // the linear parameters, m
+	rss  float64   // r'r
 }
 
 // separable is a least-squares problem with k nonlinear parameters.
@@ -47,29 +43,31 @@ func (s *solution) dof(n int) float64 {
 
 const (
 	iterationCap  = 60
-	stepTolerance = 1e-6  // of the variance: a thousandth of the uncertainty
+	fine          = 1e-6  // step of a final fit, in variances: a thousandth of the uncertainty
+	coarse        = 1e-3  // step of a trial
 	roundingFloor = 1e-26 // of the signal's energy: nothing is left to gain
 	lambdaLeast   = 1e-7
 	lambdaMost    = 1e9
 )
 
-// minimise starts at theta and follows the damped Gauss-Newton steps down.
-func minimise(p separable, theta []float64) solution {
+// minimise starts at theta and follows the damped Gauss-Newton steps down until
+// the square of a step falls below tolerance, in units of the variance.
+func minimise(p separable, theta []float64, tolerance float64) solution {
 	s := solution{theta: append([]float64(nil), theta...), stop: Singular}
 	cur, ok := p.at(theta)
 	if !p.valid(theta) || !ok {
 		return s
 	}
 	s.normal = cur
-	floor := roundingFloor * energy(cur)
+	floor := roundingFloor * cur.energy()
 	lambda := 0.0
 	for s.iterations = 1; s.iterations <= iterationCap; s.iterations++ {
-		step, gain, ok := reducedStep(s.normal, len(theta), lambda)
+		step, gain, ok := reducedStep(&s.normal, len(theta), lambda)
 		if !ok {
 			s.stop = Singular
 			return s
 		}
-		small := gain <= stepTolerance*s.normal.rss/s.dof(p.size())+floor
+		small := gain <= tolerance*s.normal.rss/s.dof(p.size())+floor
 		next := make([]float64, len(theta))
 		for i := range next {
 			next[i] = s.theta[i] + step[i]
@@ -114,8 +112,8 @@ func shrink(lambda float64) float64 {
 func grow(lambda float64) float64 { return math.Max(lambdaLeast*1e3, lambda*10) }
 
 // energy is the scale of the data: what the linear parameters explain and what is left.
-func energy(n normal) float64 {
-	k := n.jtj.SymmetricDim() - len(n.beta)
+func (n *normal) energy() float64 {
+	k := n.jtj.n - len(n.beta)
 	e := n.rss
 	for i, b := range n.beta {
 		e += b * b * n.jtj.At(k+i, k+i)
@@ -124,119 +122,20 @@ func energy(n normal) float64 {
 }
 
 // reducedStep solves for the step of the k nonlinear parameters, with the linear
-// ones eliminated by the Schur complement and Marquardt's damping lambda times
-// the diagonal. gain is step' S step, the squared step in units of the data.
-func reducedStep(n normal, k int, lambda float64) (step []float64, gain float64, ok bool) {
-	s, ok := schur(n.jtj, k)
+// ones eliminated and Marquardt's damping lambda times the diagonal. gain is
+// step' S step, the squared step in units of the data.
+func reducedStep(n *normal, k int, lambda float64) (step []float64, gain float64, ok bool) {
+	s, ok := n.jtj.schur(k)
 	if !ok {
 		return nil, 0, false
 	}
-	damped := mat.NewSymDense(k, nil)
-	damped.CopySym(s)
+	damped := s
 	for i := range k {
-		damped.SetSym(i, i, s.At(i, i)*(1+lambda))
+		damped.set(i, i, s.At(i, i)*(1+lambda))
 	}
-	x, ok := solveSym(damped, n.jtr[:k])
+	x, ok := solveSym(&damped, n.jtr)
 	if !ok {
 		return nil, 0, false
 	}
-	v := mat.NewVecDense(k, x)
-	return x, mat.Inner(v, s, v), true
-}
-
-// schur returns A11 - A12 inv(A22) A21 for the first k parameters.
-func schur(a *mat.SymDense, k int) (*mat.SymDense, bool) {
-	n := a.SymmetricDim()
-	out := mat.NewSymDense(k, nil)
-	if n == k {
-		out.CopySym(a)
-		return out, true
-	}
-	inv, ok := invertSym(a.SliceSym(k, n))
-	if !ok {
-		return nil, false
-	}
-	for i := range k {
-		for j := i; j < k; j++ {
-			sum := a.At(i, j)
-			for p := k; p < n; p++ {
-				for q := k; q < n; q++ {
-					sum -= a.At(i, p) * inv.At(p-k, q-k) * a.At(q, j)
-				}
-			}
-			out.SetSym(i, j, sum)
-		}
-	}
-	return out, true
-}
-
-// solveSym solves a x = b for a symmetric positive definite a, after scaling its
-// diagonal to one so that units do not spoil the conditioning.
-func solveSym(a mat.Symmetric, b []float64) ([]float64, bool) {
-	var chol mat.Cholesky
-	scale, ok := factorise(&chol, a)
-	if !ok {
-		return nil, false
-	}
-	n := len(scale)
-	rhs := mat.NewVecDense(n, nil)
-	for i := range n {
-		rhs.SetVec(i, b[i]*scale[i])
-	}
-	x := mat.NewVecDense(n, nil)
-	if err := chol.SolveVecTo(x, rhs); err != nil && !isCondition(err) {
-		return nil, false
-	}
-	out := make([]float64, n)
-	for i := range n {
-		out[i] = x.AtVec(i) * scale[i]
-		if math.IsNaN(out[i]) || math.IsInf(out[i], 0) {
-			return nil, false
-		}
-	}
-	return out, true
-}
-
-// invertSym inverts a symmetric positive definite matrix with the same scaling.
-func invertSym(a mat.Symmetric) (*mat.SymDense, bool) {
-	var chol mat.Cholesky
-	scale, ok := factorise(&chol, a)
-	if !ok {
-		return nil, false
-	}
-	inv := mat.NewSymDense(len(scale), nil)
-	if err := chol.InverseTo(inv); err != nil && !isCondition(err) {
-		return nil, false
-	}
-	for i := range scale {
-		for j := i; j < len(scale); j++ {
-			inv.SetSym(i, j, inv.At(i, j)*scale[i]*scale[j])
-		}
-	}
-	return inv, true
-}
-
-func factorise(chol *mat.Cholesky, a mat.Symmetric) (scale []float64, ok bool) {
-	n := a.SymmetricDim()
-	scale = make([]float64, n)
-	for i := range n {
-		d := a.At(i, i)
-		if !(d > 0) || math.IsInf(d, 0) {
-			return nil, false
-		}
-		scale[i] = 1 / math.Sqrt(d)
-	}
-	scaled := mat.NewSymDense(n, nil)
-	for i := range n {
-		for j := i; j < n; j++ {
-			scaled.SetSym(i, j, a.At(i, j)*scale[i]*scale[j])
-		}
-	}
-	return scale, chol.Factorize(scaled)
-}
-
-// isCondition tells gonum's warning of a bad condition number from a failure.
-func isCondition(err error) bool {
-	_, ok := err.(mat.Condition)
-	return ok
+	return x, s.quadratic(x), true
 }

@@ -123,7 +123,7 @@ func damped(y []float64) []seed {
 	}
 	n := float64(len(y))
 	r := newRing(series{y: y, dt: 1})
-	zero := r.yy - r.y*r.y/n
+	zero := r.aboutMean()
 	if !(zero > 0) {
 		return nil
 	}

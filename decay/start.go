@@ -36,7 +36,7 @@ func newStartSearch(s series, start, last int, f *ringFit) *startSearch {
 	enough := int(math.Max(startCycles*f.period(), startSamples))
 	s = s.slice(0, min(last, start+enough))
 	r := newRing(s)
-	v := (r.yy - r.y*r.y/float64(max(1, r.n))) / float64(max(1, r.n))
+	v := r.aboutMean() / float64(max(1, r.n))
 	return &startSearch{s: s, a: f.a, w: f.w, variance: v, floor: sq(modelShare) * v, tried: map[int]trial{}}
 }
 
@@ -62,8 +62,8 @@ func (q *startSearch) fit(window series) (best ringFit, ok bool) {
 		starts = append(starts, damped(window.y)...)
 	}
 	for _, sd := range starts {
-		f, good := fitRing(window, sd.a, sd.w)
-		if good && f.stop != Singular && f.a > 0 && (!ok || f.rss < best.rss) {
+		f, good := fitRing(window, sd.a, sd.w, coarse)
+		if good && f.a > 0 && (!ok || f.rss < best.rss) {
 			best, ok = f, true
 		}
 	}
@@ -123,7 +123,7 @@ func (g *gate) placeStart(s series, p *pyramid) {
 			k = 2
 		}
 	}
-	g.refit(s)
+	g.refit(s, coarse)
 	g.trim(s)
 	g.cutBefore = g.first > 0
 }
@@ -142,6 +142,6 @@ func (g *gate) trim(s series) {
 			return
 		}
 		g.first++
-		g.refit(s)
+		g.refit(s, coarse)
 	}
 }

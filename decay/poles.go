@@ -1,0 +1,240 @@
+package decay
+
+import (
+	"math"
+	"math/cmplx"
+	"sync"
+)
+
+// A pole is one exponential of a model, exp((-a + jw) n) with n in intervals:
+// a ring with w > 0, a plain exponential with w = 0.
+type pole struct{ a, w float64 }
+
+// at returns the exponential at time n.
+func (z pole) at(n float64) complex128 { return cmplx.Exp(complex(-z.a*n, z.w*n)) }
+
+// poles is the least-squares problem of a sum of exponentials about a constant,
+//
+//	y(n) = ref + c + sum_k exp(-a_k n) (p_k cos w_k n + q_k sin w_k n) + sum_l d_l exp(-b_l n)
+//
+// theta = (a_1, w_1, a_2, w_2, ..., b_1, ...), beta = (c, p_1, q_1, ..., d_1, ...).
+// Everything that the normal equations need lies in the span of the constant, of
+// the exponentials and of n times them, so that one pass over the samples per
+// theta is enough, and only for their products with y: all other sums are
+// geometric series.
+type poles struct {
+	s            series
+	rings, falls int // damped sinusoids, plain exponentials
+	n            int
+	ref          float64
+	y, yy        float64 // sums about ref
+	length       float64 // in intervals
+}
+
+func newPoles(s series, rings, falls int) *poles {
+	p := &poles{s: s, rings: rings, falls: falls, ref: s.mean()}
+	for _, v := range s.y {
+		if !math.IsNaN(v) {
+			v -= p.ref
+			p.y += v
+			p.yy += v * v
+			p.n++
+		}
+	}
+	p.length = s.position(s.len() - 1)
+	return p
+}
+
+// newRing is the problem of one ring.
+func newRing(s series) *poles { return newPoles(s, 1, 0) }
+
+// aboutMean is the energy about the mean: what a constant leaves.
+func (p *poles) aboutMean() float64 { return p.yy - p.y*p.y/float64(max(1, p.n)) }
+
+func (p *poles) size() int { return p.n }
+
+// at turns theta into normal equations.
+func (p *poles) at(theta []float64) (normal, bool) {
+	list := p.list(theta)
+	var g gram
+	if p.s.uniform() {
+		g = p.uniformGram(list)
+	} else {
+		g = p.directGram(list)
+	}
+	return p.normal(&g)
+}
+
+func (p *poles) list(theta []float64) []pole {
+	out := make([]pole, 0, p.rings+p.falls)
+	for k := range p.rings {
+		out = append(out, pole{theta[2*k], theta[2*k+1]})
+	}
+	for l := range p.falls {
+		out = append(out, pole{a: theta[2*p.rings+l]})
+	}
+	return out
+}
+
+// valid keeps every w where samples can tell it and every rate where exp neither
+// dies within a sample nor explodes within the window.
+func (p *poles) valid(theta []float64) bool {
+	for _, z := range p.list(theta) {
+		if z.w < 0 || z.w >= math.Pi || !(z.a < 8) || !(z.a*p.length > -30) {
+			return false
+		}
+	}
+	for k := range p.rings {
+		if !(theta[2*k+1] > 0) {
+			return false
+		}
+	}
+	return true
+}
+
+// gram holds inner products of the basis: the constant; for each ring C, S, nC,
+// nS; for each fall E, nE; in this order. C = exp(-an) cos wn, S = exp(-an) sin wn.
+type gram struct {
+	g sym
+	b [parametersMost]float64 // with y
+}
+
+// slot returns where the functions of pole k begin in the basis.
+func (p *poles) slot(k int) int {
+	if k <= p.rings {
+		return 1 + 4*k
+	}
+	return 1 + 4*p.rings + 2*(k-p.rings)
+}
+
+func (p *poles) isRing(k int) bool { return k < p.rings }
+
+// uniformGram sums over uniform samples without gaps.
+func (p *poles) uniformGram(list []pole) gram {
+	var g gram
+	n := p.s.len()
+	g.g.n = p.slot(len(list))
+	g.g.set(0, 0, float64(n))
+	g.b[0] = p.y
+	for k, zk := range list {
+		p.putProjection(&g, k, projectAll(p.s.y, zk, p.ref))
+		one := geometric(zk, n)
+		p.putPair(&g, k, -1, one, one)
+		for l, zl := range list[:k+1] {
+			sum, difference := pole{zk.a + zl.a, zk.w + zl.w}, pole{zk.a + zl.a, zk.w - zl.w}
+			p.putPair(&g, k, l, geometric(sum, n), geometric(difference, n))
+		}
+	}
+	return g
+}
+
+// parallelFrom is the number of samples from which two cores pay.
+const parallelFrom = 1 << 16
+
+// projectAll returns sum y z^n and sum y n z^n over all of y.
+func projectAll(y []float64, z pole, ref float64) [2]complex128 {
+	t := newPowers(z)
+	if len(y) < parallelFrom {
+		return t.project(y, 0, len(y), ref)
+	}
+	half := len(y) / 2 / blockLength * blockLength
+	var second [2]complex128
+	var wg sync.WaitGroup
+	wg.Go(func() { second = t.project(y, half, len(y), ref) })
+	first := t.project(y, 0, half, ref)
+	wg.Wait()
+	return [2]complex128{first[0] + second[0], first[1] + second[1]}
+}
+
+func (p *poles) putProjection(g *gram, k int, sum [2]complex128) {
+	at := p.slot(k)
+	for j := range 2 {
+		if p.isRing(k) {
+			g.b[at+2*j], g.b[at+2*j+1] = real(sum[j]), imag(sum[j])
+		} else {
+			g.b[at+j] = real(sum[j])
+		}
+	}
+}
+
+// putPair enters the inner products of pole k with pole l (-1: the constant),
+// from the sums of n^j (zk zl)^n and n^j (zk conj zl)^n. With u = zk^n, v = zl^n:
+// Re u Re v = (Re uv + Re uv*)/2, Im u Im v = (Re uv* - Re uv)/2,
+// Re u Im v = (Im uv - Im uv*)/2, Im u Re v = (Im uv + Im uv*)/2.
+func (p *poles) putPair(g *gram, k, l int, uv, uc [3]complex128) {
+	for i := range 2 {
+		for j := range 2 {
+			if l < 0 && j > 0 {
+				continue
+			}
+			s, d := uv[i+j], uc[i+j]
+			g.put(p, k, i, false, l, j, false, (real(s)+real(d))/2)
+			g.put(p, k, i, true, l, j, true, (real(d)-real(s))/2)
+			g.put(p, k, i, false, l, j, true, (imag(s)-imag(d))/2)
+			g.put(p, k, i, true, l, j, false, (imag(s)+imag(d))/2)
+		}
+	}
+}
+
+// put enters the product of n^i times the real or imaginary part of pole k with
+// n^j times that of pole l, where both are in the basis.
+func (g *gram) put(p *poles, k, i int, imK bool, l, j int, imL bool, x float64) {
+	a, okA := p.index(k, i, imK)
+	b, okB := p.index(l, j, imL)
+	if okA && okB {
+		g.g.set(a, b, x)
+	}
+}
+
+func (p *poles) index(k, power int, im bool) (int, bool) {
+	switch {
+	case k < 0:
+		return 0, !im
+	case p.isRing(k) && im:
+		return p.slot(k) + 2*power + 1, true
+	case p.isRing(k):
+		return p.slot(k) + 2*power, true
+	default:
+		return p.slot(k) + power, !im
+	}
+}
+
+// directGram sums at the true time of every sample that is there.
+func (p *poles) directGram(list []pole) gram {
+	var g gram
+	g.g.n = p.slot(len(list))
+	var f [parametersMost]float64
+	f[0] = 1
+	for i, v := range p.s.y {
+		if math.IsNaN(v) {
+			continue
+		}
+		p.basis(list, p.s.position(i), &f)
+		for a := range g.g.n {
+			g.b[a] += f[a] * (v - p.ref)
+			for b := range a + 1 {
+				g.g.v[a*parametersMost+b] += f[a] * f[b]
+			}
+		}
+	}
+	for a := range g.g.n {
+		for b := range a {
+			g.g.v[b*parametersMost+a] = g.g.v[a*parametersMost+b]
+		}
+	}
+	return g
+}
+
+// basis evaluates the basis at time t, in intervals.
+func (p *poles) basis(list []pole, t float64, f *[parametersMost]float64) {
+	for k, z := range list {
+		e := math.Exp(-z.a * t)
+		at := p.slot(k)
+		if !p.isRing(k) {
+			f[at], f[at+1] = e, t*e
+			continue
+		}
+		sin, cos := math.Sincos(z.w * t)
+		f[at], f[at+1], f[at+2], f[at+3] = e*cos, e*sin, t*e*cos, t*e*sin
+	}
+}
