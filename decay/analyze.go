@@ -34,6 +34,9 @@ func Analyze(ch *capture.Channel, opt Options) *Result {
 	// 1. Gate and fit: the free decay, from its true start to where it has died.
 	g, ok := findGate(s.slice(first, last), opt.From != nil, opt.To != nil)
 	if !ok {
+		if fallsOnly(s.slice(first, last)) {
+			return refused(nil, bareExponential())
+		}
 		return refused(nil, noRing())
 	}
 	g.first, g.last = g.first+first, g.last+first
@@ -47,8 +50,8 @@ func Analyze(ch *capture.Channel, opt Options) *Result {
 	readings := read(g.ringOnly(s), d.period(), v.rms*v.factor(g.fit.w))
 	// 5. Judgement: is it a decay at all, and can the numbers be trusted?
 	r := &Result{Model: d.model(), Decays: []*Decay{d}, Readings: readings}
-	if f, refuse := judge(&g, d, v); refuse {
-		return refused(r, f...)
+	if why, refuse := judge(s.slice(first, last), &g, d, v); refuse {
+		return refused(r, why)
 	}
 	r.Quantities = &d.Quantities
 	r.Findings = append(doubts(&g, d, v), compareReadings(d, &readings)...)

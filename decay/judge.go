@@ -10,9 +10,10 @@ import (
 
 const (
 	samplesLeast  = 8
-	decaySigma    = 3   // a rate nearer to zero than this is no decay
-	critical      = 0.6 // Q below which one damped sinusoid is not told from two exponentials
-	oscillateGain = 16  // chi-squared that an oscillation must explain beyond an exponential
+	decaySigma    = 3    // a rate nearer to zero than this is no decay
+	ringingLeast  = 4    // samples that must carry the ring
+	fallsShare    = 0.25 // of the energy that a bare exponential may leave
+	oscillateGain = 16   // chi-squared that an oscillation must explain beyond an exponential
 )
 
 // unfit names what makes a record useless before any fit.
@@ -58,30 +59,57 @@ func noRing() Finding {
 
 // judge decides whether the fit measures a free decay at all. The reasons for a
 // refusal are faults.
-func judge(g *gate, d *Decay, v noise) ([]Finding, bool) {
-	f := &g.fit
-	q := &d.Quantities
-	if !q.Q.Known() || math.IsNaN(q.DecayRate.U) {
-		return []Finding{noRing()}, true
+func judge(s series, g *gate, d *Decay, v noise) (Finding, bool) {
+	why, refuse := noDecay(g, d, v)
+	if !refuse {
+		why, refuse = notOscillating(&g.fit, v)
+	} else if fallsOnly(s) {
+		why = bareExponential()
 	}
-	window := f.s
-	if gain, need := energyGain(f, v), energyNeeded(window.len()); gain < need {
-		return []Finding{fault(capture.NoDecay,
+	return why, refuse
+}
+
+// noDecay names what the fit is when it is no free decay.
+func noDecay(g *gate, d *Decay, v noise) (Finding, bool) {
+	f, q := &g.fit, &d.Quantities
+	if !q.Q.Known() || math.IsNaN(q.DecayRate.U) {
+		return noRing(), true
+	}
+	if gain, need := energyGain(f, v), energyNeeded(f.s.len()); gain < need {
+		return fault(capture.NoDecay,
 			fmt.Sprintf("No decay stands out of the noise: the best fit explains %.3g times the noise, and chance alone explains up to %.3g in %d samples.", gain, need, f.n),
-			"Raise the amplitude of the shock or average several decays; check that the channel is the one that rings.")}, true
+			"Raise the amplitude of the shock or average several decays; check that the channel is the one that rings."), true
+	}
+	if n := f.samplesRinging(); n < ringingLeast {
+		return fault(capture.NoDecay,
+			fmt.Sprintf("What stands out is over within %.2g samples: an edge or a glitch, not a decay.", n),
+			"Sample faster if the circuit rings that fast; otherwise check that the record holds the decay."), true
 	}
 	rate, u := q.DecayRate.Value, q.DecayRate.U
 	if rate < -decaySigma*u {
-		return []Finding{fault(capture.NoDecay,
+		return fault(capture.NoDecay,
 			fmt.Sprintf("The oscillation grows, by %s a cycle: this is no free decay.", percent(math.Expm1(-q.LogDecrement.Value))),
-			"Remove what feeds the circuit (an oscillating amplifier, a drive that is still building up) or set the gate behind it.")}, true
+			"Remove what feeds the circuit (an oscillating amplifier, a drive that is still building up) or set the gate behind it."), true
 	}
 	if rate < decaySigma*u {
-		return []Finding{fault(capture.DriveOn,
+		return fault(capture.DriveOn,
 			fmt.Sprintf("The amplitude does not fall within the record: its rate is %s, which is not told from zero.", q.DecayRate),
-			"Switch the source off for the capture, or, if it is off, record longer: at least a fifth of the time constant, better three.")}, true
+			"Switch the source off for the capture, or, if it is off, record longer: at least a fifth of the time constant, better three."), true
 	}
-	return overdampedReasons(f, q, v)
+	return Finding{}, false
+}
+
+// samplesRinging is the number of samples that carry the ring: the square of its
+// energy over the sum of its fourth powers.
+func (f *ringFit) samplesRinging() float64 {
+	ring := term{f.a, f.w, f.p, f.q}
+	e2, e4 := 0.0, 0.0
+	for i := range min(f.s.len(), 256) {
+		v := sq(ring.at(float64(i)))
+		e2 += v
+		e4 += v * v
+	}
+	return e2 * e2 / e4
 }
 
 // energyGain is the energy that the ring explains beyond a constant, in units of
@@ -94,20 +122,42 @@ func energyGain(f *ringFit, v noise) float64 {
 // logarithm of their number) with a margin for the search over rates and windows.
 func energyNeeded(n int) float64 { return 2*math.Log(float64(n)) + 20 }
 
-// overdampedReasons refuses what does not oscillate: the fit must explain more
-// than a bare exponential does.
-func overdampedReasons(f *ringFit, q *Quantities, v noise) ([]Finding, bool) {
+// notOscillating refuses what does not swing: the fit must explain more than a
+// bare exponential does.
+func notOscillating(f *ringFit, v noise) (Finding, bool) {
 	e, ok := fitExponential(f.s)
 	if !ok {
-		return nil, false
+		return Finding{}, false
 	}
 	gain := (e - f.rss) / sq(v.rms*v.factor(f.w))
 	if gain > oscillateGain && f.w > f.a*0.1 {
-		return nil, false
+		return Finding{}, false
 	}
-	return []Finding{fault(capture.Overdamped,
+	return bareExponential(), true
+}
+
+func bareExponential() Finding {
+	return fault(capture.Overdamped,
 		"The record falls without swinging: a bare exponential fits it as well as a damped oscillation does.",
-		"Nothing rings here that has a frequency; check the wiring and the probe, or read the time constant with a model without oscillation.")}, true
+		"Nothing rings here that has a frequency: check the wiring, the probe and what loads the circuit.")
+}
+
+// fallsOnly reports whether a bare exponential from one of the onsets on accounts
+// for most of what moves in the record.
+func fallsOnly(s series) bool {
+	p := newPyramid(s)
+	levels := newPlateaus(p)
+	total := levels.left(0, s.len())
+	for _, o := range p.onsets() {
+		if s.len()-o < 2*samplesLeast {
+			continue
+		}
+		window := s.slice(o, s.len())
+		if left, ok := fitExponential(window); ok && levels.about(0, o/levels.block)+left < fallsShare*total {
+			return newRing(window).aboutMean() > fallsShare*total
+		}
+	}
+	return false
 }
 
 // fitExponential returns the residual sum of squares of a bare exponential about
@@ -121,55 +171,4 @@ func fitExponential(s series) (float64, bool) {
 		}
 	}
 	return best, !math.IsInf(best, 1)
-}
-
-// doubts lists what makes a measured decay less trustworthy.
-func doubts(g *gate, d *Decay, v noise) []Finding {
-	var out []Finding
-	q := &d.Quantities
-	u := (d.To - d.From) * q.DecayRate.Value
-	if u < 0.5 {
-		out = append(out, warning(capture.ShortRecord,
-			fmt.Sprintf("The record covers %.2g time constants of the decay; Q hangs on a fall of only %s.", u, percent(-math.Expm1(-u))),
-			"Record longer: three to five time constants."))
-	}
-	if d.Cycles < 2 && q.Q.Value > 1 {
-		out = append(out, warning(capture.FewCycles,
-			fmt.Sprintf("Only %.2g cycles lie in the gate.", d.Cycles),
-			"Record more of the decay, or move the gate so that it holds several cycles."))
-	}
-	if d.SNR < 14 {
-		out = append(out, warning(capture.WeakSignal,
-			fmt.Sprintf("The ring starts at only %.1f times the noise (%.1f dB).", math.Pow(10, d.SNR/20), d.SNR),
-			"Shock harder, use a smaller vertical range, or average several decays."))
-	}
-	if v.factor(g.fit.w) > 1.5 {
-		out = append(out, note(capture.ColouredNoise,
-			fmt.Sprintf("The noise is %.2g times as dense at the ring's frequency as white noise of the same size; the uncertainties allow for it.", v.factor(g.fit.w)),
-			"Nothing to do; a lower bandwidth limit does not help, a stronger ring does."))
-	}
-	return out
-}
-
-// percent prints a ratio as a percentage with its sign dropped.
-func percent(x float64) string { return fmt.Sprintf("%.3g %%", 100*math.Abs(x)) }
-
-// compareReadings holds the classical readings against the fit.
-func compareReadings(d *Decay, r *Readings) []Finding {
-	var out []Finding
-	check := func(what string, reading, fit quantity.Quantity) {
-		if !reading.Known() || !(reading.U > 0) {
-			return
-		}
-		// The reading uses a few of the samples of the fit, so that their errors
-		// are all but independent; beyond four times their joint uncertainty.
-		if diff := math.Abs(reading.Value - fit.Value); diff > 4*math.Hypot(reading.U, fit.U) {
-			out = append(out, warning(capture.ReadingsDisagree,
-				fmt.Sprintf("The %s is %s but the fit gives %s: they differ by %s, beyond both uncertainties.", what, reading, fit, percent(diff/fit.Value)),
-				"Look at the residual and at the log of the envelope: the decay is not one exponential, or something disturbs its first cycles."))
-		}
-	}
-	check("frequency read from the crossings", r.DampedFrequency, d.Quantities.DampedFrequency)
-	check("log decrement read from the peaks", r.LogDecrement, d.Quantities.LogDecrement)
-	return out
 }

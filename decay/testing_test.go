@@ -9,3 +9,13 @@ func channel(y []float64, start, interval float64) *capture.Channel {
 		Axis: &capture.Axis{N: len(y), Start: start, Interval: interval},
 	}
 }
+
+// has reports whether r carries a finding of the code.
+func has(r *Result, code capture.Code) bool {
+	for _, f := range r.Findings {
+		if f.Code == code {
+			return true
+		}
+	}
+	return false
+}

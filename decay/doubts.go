@@ -1,0 +1,78 @@
+package decay
+
+import (
+	"fmt"
+	"math"
+
+	"dieaway/capture"
+	"dieaway/decay/quantity"
+)
+
+// doubts lists what makes a measured decay less trustworthy.
+func doubts(g *gate, d *Decay, v noise) []Finding {
+	var out []Finding
+	q := &d.Quantities
+	u := (d.To - d.From) * q.DecayRate.Value
+	if u < 0.5 {
+		out = append(out, warning(capture.ShortRecord,
+			fmt.Sprintf("The record covers %.2g time constants of the decay; Q hangs on a fall of only %s.", u, percent(-math.Expm1(-u))),
+			"Record longer: three to five time constants."))
+	}
+	if d.Cycles < 2 && q.Q.Value > 1 {
+		out = append(out, warning(capture.FewCycles,
+			fmt.Sprintf("Only %.2g cycles lie in the gate.", d.Cycles),
+			"Record more of the decay, or move the gate so that it holds several cycles."))
+	}
+	if d.SNR < 14 {
+		out = append(out, warning(capture.WeakSignal,
+			fmt.Sprintf("The ring starts at only %.1f times the noise (%.1f dB).", math.Pow(10, d.SNR/20), d.SNR),
+			"Shock harder, use a smaller vertical range, or average several decays."))
+	}
+	if c := g.fit.companion; c != nil {
+		out = append(out, g.besides(c))
+	}
+	if v.factor(g.fit.w) > 1.5 {
+		out = append(out, note(capture.ColouredNoise,
+			fmt.Sprintf("The noise is %.2g times as dense at the ring's frequency as white noise of the same size; the uncertainties allow for it.", v.factor(g.fit.w)),
+			"Nothing to do; a lower bandwidth limit does not help, a stronger ring does."))
+	}
+	return out
+}
+
+// besides names the companion of the ring.
+func (g *gate) besides(c *term) Finding {
+	share := math.Hypot(c.p, c.q) / g.fit.size()
+	if c.w == 0 {
+		return note(capture.BaselineDrift,
+			fmt.Sprintf("The ring sits on a baseline that moves exponentially, by %s of the ring's amplitude with a time constant of %s; it was fitted along.",
+				percent(share), quantity.Format(g.fit.s.dt/c.a, "s", 3)),
+			"Nothing to do if the coupling explains it (AC coupling, a clamp that recovers); otherwise look for what still feeds the circuit.")
+	}
+	return warning(capture.SecondMode,
+		fmt.Sprintf("A second ring of %s, %s of the amplitude of the first, beats with it; both were fitted.",
+			quantity.Format(c.w/(2*math.Pi*g.fit.s.dt), "Hz", 4), percent(share)),
+		"Find what else resonates (a coupled circuit, a probe lead, a second winding) and quote each ring by itself.")
+}
+
+// percent prints a ratio as a percentage with its sign dropped.
+func percent(x float64) string { return fmt.Sprintf("%.3g %%", 100*math.Abs(x)) }
+
+// compareReadings holds the classical readings against the fit.
+func compareReadings(d *Decay, r *Readings) []Finding {
+	var out []Finding
+	check := func(what string, reading, fit quantity.Quantity) {
+		if !reading.Known() || !(reading.U > 0) {
+			return
+		}
+		// The reading uses a few of the samples of the fit, so that their errors
+		// are all but independent; beyond four times their joint uncertainty.
+		if diff := math.Abs(reading.Value - fit.Value); diff > 4*math.Hypot(reading.U, fit.U) {
+			out = append(out, warning(capture.ReadingsDisagree,
+				fmt.Sprintf("The %s is %s but the fit gives %s: they differ by %s, beyond both uncertainties.", what, reading, fit, percent(diff/fit.Value)),
+				"Look at the residual and at the log of the envelope: the decay is not one exponential, or something disturbs its first cycles."))
+		}
+	}
+	check("frequency read from the crossings", r.DampedFrequency, d.Quantities.DampedFrequency)
+	check("log decrement read from the peaks", r.LogDecrement, d.Quantities.LogDecrement)
+	return out
+}
