@@ -1,0 +1,129 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"os"
+	"unicode"
+	"unicode/utf8"
+
+	"github.com/urfave/cli/v2"
+)
+
+// Exit codes: scripts depend on them. With several files the highest wins.
+const (
+	exitDone       = 0
+	exitFailed     = 1 // input, output or internal error
+	exitUsage      = 2
+	exitUnreadable = 3 // not a capture
+	exitRefused    = 4 // no decay that can be measured
+	exitWarning    = 6 // a warning, with --strict
+)
+
+// An exitError ends the program with a code. A nil Err means that all there is
+// to say has been said.
+type exitError struct {
+	Code int
+	Err  error
+}
+
+func (e *exitError) Error() string {
+	if e.Err == nil {
+		return fmt.Sprintf("exit code %d", e.Code)
+	}
+	return e.Err.Error()
+}
+
+func (e *exitError) Unwrap() error { return e.Err }
+
+// usagef returns the error of a wrong command line.
+func usagef(format string, args ...any) error {
+	return &exitError{Code: exitUsage, Err: fmt.Errorf(format, args...)}
+}
+
+// arguments is the key of the program's metadata for what it was called with.
+const arguments = "arguments"
+
+// run is the whole program: args[0] is its name. It returns the exit code.
+func run(ctx context.Context, args []string, stdin io.Reader, stdout, stderr io.Writer) int {
+	app := newApp(stdin, stdout, stderr)
+	app.Metadata = map[string]any{arguments: args[1:]}
+	ordered, err := flagsFirst(args, app.Commands)
+	if err == nil {
+		err = app.RunContext(ctx, ordered)
+	}
+	return conclude(stderr, err)
+}
+
+// conclude says what went wrong, if anything did, and returns the exit code.
+func conclude(stderr io.Writer, err error) int {
+	if err == nil {
+		return exitDone
+	}
+	code := exitFailed
+	var exit *exitError
+	var library cli.ExitCoder // unknown help topics have a code of their own
+	switch {
+	case errors.As(err, &exit):
+		code, err = exit.Code, exit.Err
+	case errors.As(err, &library):
+		code, err = exitUsage, lowerCase(err)
+	}
+	if err != nil {
+		say(stderr, err)
+	}
+	return code
+}
+
+// say prints one message to people: not a result.
+func say(stderr io.Writer, message any) {
+	fmt.Fprintln(stderr, "dieaway:", message)
+}
+
+func newApp(stdin io.Reader, stdout, stderr io.Writer) *cli.App {
+	cli.VersionFlag = &cli.BoolFlag{Name: "version", Usage: "print the version and the revision it was built from", DisableDefaultText: true}
+	cli.SuggestDidYouMeanTemplate = "%s"
+	cli.VersionPrinter = func(c *cli.Context) { fmt.Fprintln(c.App.Writer, "dieaway", c.App.Version) }
+	return &cli.App{
+		Name:           "dieaway",
+		HelpName:       "dieaway",
+		Usage:          "frequency, time constant and Q of a resonant circuit from the way its ringing dies away",
+		UsageText:      "dieaway COMMAND [flags] [FILE...]",
+		Version:        version(),
+		Reader:         stdin,
+		Writer:         stdout,
+		ErrWriter:      stderr,
+		Commands:       []*cli.Command{fitCommand(), demoCommand()},
+		Action:         noCommand,
+		OnUsageError:   usageError,
+		ExitErrHandler: func(*cli.Context, error) {}, // run reports
+	}
+}
+
+// noCommand runs when the first argument is no command.
+func noCommand(c *cli.Context) error {
+	name := c.Args().First()
+	if name == "" {
+		c.App.Writer = c.App.ErrWriter // the help is not the result of anything
+		_ = cli.ShowAppHelp(c)
+		return &exitError{Code: exitUsage}
+	}
+	if _, err := os.Stat(name); err == nil {
+		return usagef("the command comes first, found the file %s: `dieaway fit %[1]s` measures it", name)
+	}
+	return usagef("unknown command %s; the nearest is %s, and `dieaway help` lists all", name, cli.SuggestCommand(c.App.Commands, name))
+}
+
+// usageError replaces the library's, which prints the whole help to standard output.
+func usageError(_ *cli.Context, err error, _ bool) error {
+	return &exitError{Code: exitUsage, Err: lowerCase(err)}
+}
+
+// lowerCase makes a message of the library begin like all others.
+func lowerCase(err error) error {
+	text := err.Error()
+	first, size := utf8.DecodeRuneInString(text)
+	return errors.New(string(unicode.ToLower(first)) + text[size:])
+}

@@ -1,0 +1,110 @@
+package main
+
+import (
+	"strings"
+
+	"github.com/urfave/cli/v2"
+)
+
+// flagsFirst reorders the arguments of a command so that flags may stand before
+// or after the files: the library reads them only before. What follows "--" is
+// files, and so is a lone "-". Arguments that begin with a flag of the program
+// itself, or with no known command, stay as they are.
+func flagsFirst(args []string, commands []*cli.Command) ([]string, error) {
+	if len(args) < 2 {
+		return args, nil
+	}
+	command := find(commands, args[1])
+	if command == nil {
+		return args, unknownGlobal(args[1])
+	}
+	var flags, files []string
+	rest := args[2:]
+	for len(rest) > 0 {
+		arg := rest[0]
+		switch {
+		case arg == "--":
+			files = append(files, rest[1:]...)
+			rest = nil
+		case arg == "-" || !strings.HasPrefix(arg, "-"):
+			files = append(files, arg)
+			rest = rest[1:]
+		default:
+			n, err := flagLength(command, rest)
+			if err != nil {
+				return nil, err
+			}
+			flags = append(flags, rest[:n]...)
+			rest = rest[n:]
+		}
+	}
+	return append(append(append(args[:2:2], flags...), "--"), files...), nil
+}
+
+// flagLength returns how many of args, which begin with a flag, belong to it.
+// A value may begin with a minus sign, as in --from -2us.
+func flagLength(command *cli.Command, args []string) (int, error) {
+	name, _, joined := strings.Cut(strings.TrimLeft(args[0], "-"), "=")
+	flag := findFlag(command, name)
+	if flag == nil {
+		return 0, unknownFlag(command, args[0])
+	}
+	if takesNoValue(flag) || joined {
+		return 1, nil
+	}
+	if len(args) == 1 {
+		return 0, usagef("%s needs a value", args[0])
+	}
+	if next := strings.TrimLeft(args[1], "-"); next != args[1] && findFlag(command, next) != nil {
+		return 0, usagef("%s needs a value, and %s is a flag; write %s=%s if it is meant", args[0], args[1], args[0], args[1])
+	}
+	return 2, nil
+}
+
+func find(commands []*cli.Command, name string) *cli.Command {
+	for _, c := range commands {
+		if c.HasName(name) {
+			return c
+		}
+	}
+	return nil
+}
+
+// findFlag returns the flag of the command by its name without dashes, or nil.
+func findFlag(command *cli.Command, name string) cli.Flag {
+	for _, flag := range append([]cli.Flag{cli.HelpFlag}, command.Flags...) {
+		for _, n := range flag.Names() {
+			if n == name {
+				return flag
+			}
+		}
+	}
+	return nil
+}
+
+func takesNoValue(flag cli.Flag) bool {
+	doc, ok := flag.(cli.DocGenerationFlag)
+	return ok && !doc.TakesValue()
+}
+
+func unknownFlag(command *cli.Command, arg string) error {
+	name, _, _ := strings.Cut(strings.TrimLeft(arg, "-"), "=")
+	hint := ""
+	if near := cli.SuggestFlag(command.Flags, name, false); near != "" {
+		hint = "; the nearest is " + near
+	}
+	return usagef("unknown flag %s%s; `dieaway %s --help` lists all", arg, hint, command.Name)
+}
+
+// unknownGlobal refuses a flag in the place of the command, but for the few
+// that the program itself has.
+func unknownGlobal(arg string) error {
+	switch arg {
+	case "-h", "--help", "-help", "--version", "-version", "--", "-":
+		return nil
+	}
+	if strings.HasPrefix(arg, "-") {
+		return usagef("the command comes first, then its flags: found %s in its place; `dieaway help` lists the commands", arg)
+	}
+	return nil
+}

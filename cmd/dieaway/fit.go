@@ -1,0 +1,59 @@
+package main
+
+import (
+	"github.com/urfave/cli/v2"
+)
+
+func fitCommand() *cli.Command {
+	return &cli.Command{
+		Name:      "fit",
+		Usage:     "measure ring-downs: frequency, time constant and Q with their uncertainty",
+		UsageText: "dieaway fit [flags] CAPTURE...",
+		Description: "Reads each capture (\"-\" is standard input), finds the free decay in it, fits it and\n" +
+			"prints what it found. Flags may stand before or after the files. Times are given with\n" +
+			"their unit, for example --from -2us --to 0.2ms.",
+		Flags:           fitFlags(),
+		Action:          fit,
+		OnUsageError:    usageError, // not inherited from the program
+		HideHelpCommand: true,       // a capture may be named "help"
+	}
+}
+
+func fit(c *cli.Context) error {
+	j, err := parseJob(c)
+	if err != nil {
+		return err
+	}
+	files := c.Args().Slice()
+	if err := checkFiles(files, j); err != nil {
+		return err
+	}
+	j.inputs = files
+	for _, name := range files {
+		j.sources = append(j.sources, j.source(name))
+	}
+	return j.run(c.Context)
+}
+
+// checkFiles refuses what no analysis can make good.
+func checkFiles(files []string, j *job) error {
+	if len(files) == 0 {
+		return usagef("no capture given: name at least one file, or - for standard input")
+	}
+	if j.page != "" && len(files) > 1 {
+		return usagef("--report takes one capture, and there are %d: run fit once for each page", len(files))
+	}
+	streams := 0
+	for _, name := range files {
+		if name == "" {
+			return usagef("the name of a capture is empty")
+		}
+		if name == "-" {
+			streams++
+		}
+	}
+	if streams > 1 {
+		return usagef("standard input can be read only once: found - %d times", streams)
+	}
+	return nil
+}

@@ -1,0 +1,153 @@
+package main
+
+import (
+	"math"
+	"slices"
+	"strconv"
+	"strings"
+
+	"github.com/urfave/cli/v2"
+
+	"dieaway/capture"
+	"dieaway/decay"
+	"dieaway/decay/quantity"
+)
+
+// outputFlags are the flags of every command that measures.
+func outputFlags() []cli.Flag {
+	return []cli.Flag{
+		&cli.BoolFlag{Name: "json", Usage: "print one JSON object per file and nothing else", DisableDefaultText: true},
+		&cli.StringFlag{Name: "report", Aliases: []string{"o"}, Usage: "write the page of evidence to `FILE` (HTML)"},
+		&cli.BoolFlag{Name: "quiet", Usage: "print no summary, only errors", DisableDefaultText: true},
+	}
+}
+
+// fitFlags are the flags of fit. Texts are plain strings: the library splits
+// slices at commas, and takes NaN for a number.
+func fitFlags() []cli.Flag {
+	return append([]cli.Flag{
+		&cli.StringFlag{Name: "channel", Usage: "measure the channel of this `NAME` or number, not the one that rings most"},
+		&cli.StringFlag{Name: "from", Usage: "begin at this `TIME` of the record, for example 2.2us"},
+		&cli.StringFlag{Name: "to", Usage: "end at this `TIME` of the record"},
+		&cli.StringFlag{Name: "interval", Usage: "the sampling interval `TIME` of a file without a time axis"},
+		&cli.StringFlag{Name: "time-unit", Usage: "the `UNIT` of the time column where the file does not tell: s, ms, us, ns or ps"},
+		&cli.StringFlag{Name: "model", Usage: "the `LAW` of the decay: " + strings.Join(models, ", "), Value: "auto"},
+		&cli.StringFlag{Name: "probe", Usage: "multiply voltages by this `FACTOR`, where the scope was set to the wrong probe"},
+		&cli.StringFlag{Name: "device", Usage: "the `NAME` of what was measured"},
+		&cli.BoolFlag{Name: "strict", Usage: "exit with code 6 when there is a warning", DisableDefaultText: true},
+		&cli.BoolFlag{Name: "explain", Usage: "print what was understood of the file before the result", DisableDefaultText: true},
+	}, outputFlags()...)
+}
+
+var (
+	models    = []string{"auto", string(decay.Exponential)}
+	timeUnits = []string{"s", "ms", "us", "ns", "ps"}
+)
+
+// parseJob returns what the flags of the command ask for.
+func parseJob(c *cli.Context) (*job, error) {
+	j := &job{
+		channel: c.String("channel"),
+		device:  c.String("device"),
+		json:    c.Bool("json"),
+		page:    c.String("report"),
+		quiet:   c.Bool("quiet"),
+		strict:  c.Bool("strict"),
+		explain: c.Bool("explain"),
+		probe:   1,
+		origin:  originOf(c.App),
+		style:   styleOf(c.App.Writer),
+		stdin:   c.App.Reader,
+		stdout:  c.App.Writer,
+		stderr:  c.App.ErrWriter,
+	}
+	if j.json && j.explain {
+		return nil, usagef("--json prints nothing but JSON: take --explain by itself")
+	}
+	for _, name := range []string{"report", "channel", "device"} {
+		if c.IsSet(name) && c.String(name) == "" {
+			return nil, usagef("--%s is empty", name)
+		}
+	}
+	return j, firstOf(
+		func() error { return parseRead(c, &j.read) },
+		func() error { return parseAnalysis(c, &j.analysis) },
+		func() error { return parseProbe(c, &j.probe) },
+	)
+}
+
+func firstOf(steps ...func() error) error {
+	for _, step := range steps {
+		if err := step(); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+func parseRead(c *cli.Context, opt *capture.Options) error {
+	interval, err := parseTime(c, "interval")
+	if err != nil {
+		return err
+	}
+	if interval != nil {
+		if *interval <= 0 {
+			return usagef("--interval %s: expected a time greater than zero", c.String("interval"))
+		}
+		opt.Interval = *interval
+	}
+	opt.TimeUnit = c.String("time-unit")
+	if c.IsSet("time-unit") && !slices.Contains(timeUnits, opt.TimeUnit) {
+		return usagef("--time-unit %s: expected one of %s", opt.TimeUnit, strings.Join(timeUnits, ", "))
+	}
+	return nil
+}
+
+func parseAnalysis(c *cli.Context, opt *decay.Options) error {
+	var err error
+	if opt.From, err = parseTime(c, "from"); err != nil {
+		return err
+	}
+	if opt.To, err = parseTime(c, "to"); err != nil {
+		return err
+	}
+	if opt.From != nil && opt.To != nil && *opt.From >= *opt.To {
+		return usagef("--from %s is not before --to %s", c.String("from"), c.String("to"))
+	}
+	model := c.String("model")
+	if c.IsSet("model") && !slices.Contains(models, model) {
+		return usagef("--model %s: expected one of %s", model, strings.Join(models, ", "))
+	}
+	if model != "auto" {
+		opt.Model = decay.Model(model)
+	}
+	return nil
+}
+
+// parseTime returns the time of a flag in seconds, nil when it is not given.
+func parseTime(c *cli.Context, name string) (*float64, error) {
+	if !c.IsSet(name) {
+		return nil, nil
+	}
+	t, err := quantity.Parse(c.String(name), "s")
+	if err != nil {
+		return nil, usagef("--%s: %w", name, err)
+	}
+	if !math.IsNaN(t.U) {
+		return nil, usagef("--%s %s: expected a time without an uncertainty", name, c.String(name))
+	}
+	return &t.Value, nil
+}
+
+func parseProbe(c *cli.Context, factor *float64) error {
+	if !c.IsSet("probe") {
+		return nil
+	}
+	text := c.String("probe")
+	x, err := strconv.ParseFloat(text, 64)
+	if err != nil || math.IsInf(x, 0) || !(x > 0) { // nor NaN
+		return usagef("--probe %s: expected a factor greater than zero, for example 10", text)
+	}
+	*factor = x
+	return nil
+}
