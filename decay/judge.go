@@ -5,7 +5,6 @@ import (
 	"math"
 
 	"dieaway/capture"
-	"dieaway/decay/quantity"
 )
 
 const (
