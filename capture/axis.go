@@ -95,20 +95,28 @@ func (c *clock) departures() {
 
 func (c *clock) at(row int) float64 { return c.start + float64(row)*c.interval }
 
-// findGaps finds steps longer than one and a half of the typical one. Where the
-// print is too coarse to tell them from rounding there are none.
+// findGaps finds steps that are too long for one interval, rounding of the
+// print allowed for. In a print coarser than the interval they cannot be told.
 func (c *clock) findGaps() {
-	c.typical = c.typicalStep()
-	if c.resolution > 0.6*c.typical && !c.onGrid() || c.most < 1.5*c.typical {
+	c.typical = c.medianStep()
+	limit := 1.5 * c.typical
+	if c.resolution > 0.1*c.typical && !c.onGrid() {
+		c.typical = (c.spans[len(c.spans)-1].last - c.spans[0].first) / float64(c.n-1)
+		limit = 1.5*c.typical + c.resolution
+		if c.resolution > c.typical {
+			return
+		}
+	}
+	if c.most < limit {
 		return
 	}
 	row := 0
 	before := math.NaN()
 	for _, s := range c.spans {
-		c.step(row, before, s.first)
-		if s.most > 1.5*c.typical {
+		c.step(row, before, s.first, limit)
+		if s.most > limit {
 			for i := 1; i < len(s.stamps); i++ {
-				c.step(row+i, s.stamps[i-1], s.stamps[i])
+				c.step(row+i, s.stamps[i-1], s.stamps[i], limit)
 			}
 		}
 		row += s.n
@@ -116,18 +124,18 @@ func (c *clock) findGaps() {
 	}
 }
 
-func (c *clock) step(row int, before, t float64) {
-	if d := t - before; d > 1.5*c.typical {
+func (c *clock) step(row int, before, t, limit float64) {
+	if d := t - before; d > limit {
 		lost := int(math.Round(d/c.typical)) - 1
 		c.gaps = append(c.gaps, gap{row, t, lost})
 		c.lost += lost
 	}
 }
 
-// typicalStep is the median step of the first span that has enough of them.
-func (c *clock) typicalStep() float64 {
+// medianStep is the median step of the first span that has enough of them.
+func (c *clock) medianStep() float64 {
 	for _, s := range c.spans {
-		if s.stamps == nil {
+		if s.even {
 			return s.slope
 		}
 		if len(s.stamps) > 8 || len(c.spans) == 1 {
@@ -142,11 +150,14 @@ func (c *clock) typicalStep() float64 {
 // steps again and again.
 func (c *clock) onGrid() bool {
 	odd := 0
-	for _, s := range c.spans {
-		if s.stamps == nil && s.most-s.least > 0.5*c.resolution {
+	for i, s := range c.spans {
+		if s.even && s.most-s.least > 0.5*c.resolution {
 			return false
 		}
 		odd += countOdd(s.stamps, c.typical, c.resolution)
+		if i > 0 && math.Abs(s.first-c.spans[i-1].last-c.typical) > 0.5*c.resolution {
+			odd++
+		}
 	}
 	return odd > 0 && odd <= 2 && c.n > 20
 }
@@ -168,7 +179,7 @@ func (c *clock) times() []float64 {
 	t := make([]float64, 0, c.n)
 	for i := range c.spans {
 		s := &c.spans[i]
-		if s.stamps != nil {
+		if !s.even {
 			t = append(t, s.stamps...)
 			continue
 		}
@@ -200,6 +211,9 @@ func shorten(v, tol float64) float64 {
 // seconds writes a time for people, in the unit that suits it.
 func seconds(t float64) string {
 	a := math.Abs(t)
+	if a == 0 {
+		return "0 s"
+	}
 	for _, u := range []struct {
 		name string
 		size float64
@@ -208,5 +222,5 @@ func seconds(t float64) string {
 			return fmt.Sprintf("%.6g %s", t/u.size, u.name)
 		}
 	}
-	return "0 s"
+	return ""
 }

@@ -11,7 +11,7 @@ func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
 	col := d.timeColumn(k)
 	clk := newClock(t.spans[k])
 	if clk.spans[len(clk.spans)-1].last <= clk.spans[0].first {
-		return nil, &Error{Err: ErrNoTime, Column: col + 1, Found: "the same time in every row", Expected: "a time that rises"}
+		return nil, &Error{Err: ErrNoTime, Column: col + 1, Found: seconds(clk.start) + " in every row", Expected: "a time that rises"}
 	}
 	if d.columns[col].Role == RoleIndex {
 		return d.indexAxis(c, clk, col), nil
@@ -121,21 +121,30 @@ func (k *clock) crooked(a *Axis) {
 
 // uneven says what is uneven: rows missing, stamps repeated, jitter.
 func uneven(c *Capture, k *clock, a *Axis) {
+	said := len(c.Findings)
 	if len(k.gaps) > 0 {
 		g := k.gaps[0]
 		where := fmt.Sprintf("before sample %d at %s", g.row+1, seconds(g.time))
 		if n := len(k.gaps); n > 1 {
 			where = fmt.Sprintf("in %d gaps, the first %s", n, where)
 		}
-		c.note(MissingSamples, Warning, fmt.Sprintf("%s of time missing: %s", rowsOf(k.lost), where),
+		c.note(MissingSamples, Warning, fmt.Sprintf("%s of time missing: %s", plural(k.lost, "row"), where),
 			"save the record again; the fit uses the true times of the samples that are there")
 	}
 	if k.zeroSteps > 0 && k.resolution < 0.5*k.typical {
-		c.note(UnevenTime, Warning, fmt.Sprintf("%d stamps repeat the one before them", k.zeroSteps),
+		message := "1 stamp repeats the one before it"
+		if k.zeroSteps > 1 {
+			message = fmt.Sprintf("%d stamps repeat the one before them", k.zeroSteps)
+		}
+		c.note(UnevenTime, Warning, message,
 			"look for rows that were written twice")
 	}
 	rms, worst := k.jitter(a.Times)
 	if worst <= math.Max(k.resolution, 2*negligible*k.typical) {
+		if said == len(c.Findings) { // a drift too slow to show from step to step
+			c.note(UnevenTime, Note, fmt.Sprintf("stamps depart from even sampling by up to %s, %.2g of the interval", seconds(k.off), k.off/a.Interval),
+				"nothing: the fit uses the true times")
+		}
 		return
 	}
 	severity := Note
@@ -145,13 +154,6 @@ func uneven(c *Capture, k *clock, a *Axis) {
 	c.note(UnevenTime, severity,
 		fmt.Sprintf("stamps are not even: steps scatter by %.2g %% of the interval of %s, at most by %.2g %%", 100*rms/k.typical, seconds(k.typical), 100*worst/k.typical),
 		"nothing if the sampling is known to jitter: the fit uses the true times")
-}
-
-func rowsOf(n int) string {
-	if n == 1 {
-		return "1 row"
-	}
-	return fmt.Sprintf("%d rows", n)
 }
 
 // jitter is the rms and largest departure of steps from their mean, gaps and

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strings"
 )
 
 // A layoutDesign is what was understood of the head, and what follows from it.
@@ -68,12 +69,24 @@ func (d *layoutDesign) makePlan() *Error {
 		d.plan.last = i
 	}
 	if d.plan.values == 0 {
-		return &Error{Err: ErrNoData, Found: fmt.Sprintf("%d columns, none of samples", len(d.columns)), Expected: "a column of voltage or current"}
+		return &Error{Err: ErrNoData, Found: d.whatThereIs(), Expected: "a column of voltage or current"}
 	}
 	if d.plan.times == 0 || !timed {
 		return d.needInterval()
 	}
 	return nil
+}
+
+// whatThereIs names the columns of a table without channels.
+func (d *layoutDesign) whatThereIs() string {
+	if len(d.columns) == 1 {
+		return fmt.Sprintf("a %s column and nothing beside it", d.columns[0].Role)
+	}
+	var roles []string
+	for _, c := range d.columns {
+		roles = append(roles, string(c.Role))
+	}
+	return "columns of " + strings.Join(roles, ", ")
 }
 
 func (d *layoutDesign) planValue(i int) {

@@ -46,6 +46,7 @@ type shape struct {
 	kinds []kind
 	score float64 // numeric cells explained, less half of those that are not
 	rows  int
+	full  []int // rows with something in the column
 }
 
 // newHead cuts the head into lines and finds the block of samples.
@@ -66,6 +67,10 @@ func newHead(text []byte, whole bool) (*head, *Error) {
 		return nil, h.noData()
 	}
 	h.first = h.firstRow()
+	// Metadata may make the first row longer than the others.
+	for n := len(h.split(h.lines[h.first].text, nil)); len(h.kinds) < n; {
+		h.kinds = append(h.kinds, kindBlank)
+	}
 	return h, nil
 }
 
@@ -76,14 +81,13 @@ func longLine(number int) *Error {
 
 // noData says what the text holds instead of samples.
 func (h *head) noData() *Error {
-	e := &Error{Err: ErrNoData, Found: fmt.Sprintf("%d lines without a row of numbers", len(h.lines)), Expected: "columns of samples"}
+	e := &Error{Err: ErrNoData, Found: "nothing but blank lines", Expected: "columns of samples"}
 	for _, l := range h.lines {
-		if len(bytes.TrimSpace(l.text)) > 0 {
-			e.Found = fmt.Sprintf("%d lines from %s on without a row of numbers", len(h.lines), quote(string(bytes.TrimSpace(l.text))))
-			return e
+		if text := bytes.TrimSpace(l.text); len(text) > 0 {
+			e.Found = fmt.Sprintf("%s from %s on without a row of numbers", plural(len(h.lines), "line"), quote(string(text)))
+			break
 		}
 	}
-	e.Found = "nothing but blank lines"
 	return e
 }
 
@@ -153,7 +157,18 @@ func (d dialect) blockUpTo(lines []line) shape {
 			break
 		}
 	}
+	for i := range s.kinds {
+		if s.sparse(i) {
+			s.kinds[i] = kindBlank
+		}
+	}
 	return s
+}
+
+// sparse reports a column that is blank in most rows: what stands in it is
+// beside the samples.
+func (s *shape) sparse(col int) bool {
+	return s.rows >= 4 && col < len(s.full) && 4*s.full[col] < s.rows
 }
 
 func allBlank(cells []cell) bool {
@@ -185,9 +200,12 @@ func (s *shape) admit(cells []cell) bool {
 	}
 	for i, k := range kinds {
 		if i == len(s.kinds) {
-			s.kinds = append(s.kinds, k)
+			s.kinds, s.full = append(s.kinds, k), append(s.full, 0)
 		} else if old := s.kinds[i]; old == kindBlank || old == kindMissing && k != kindBlank {
 			s.kinds[i] = k
+		}
+		if k != kindBlank {
+			s.full[i]++
 		}
 	}
 	s.rows++
@@ -209,8 +227,8 @@ func (s *shape) alike(kinds []kind) bool {
 	}
 	for i := range max(len(kinds), len(s.kinds)) {
 		a, b := at(s.kinds, i), at(kinds, i)
-		free := a == kindBlank || a == kindMissing || b == kindBlank || b == kindMissing
-		if !free && a != b || (i >= len(kinds) || i >= len(s.kinds)) && (a.numeric() || b.numeric()) {
+		free := s.sparse(i) || a == kindBlank || a == kindMissing || b == kindBlank || b == kindMissing
+		if !free && a != b || (i >= len(kinds) || i >= len(s.kinds)) && (a.numeric() || b.numeric()) && !s.sparse(i) {
 			return false
 		}
 	}

@@ -50,6 +50,14 @@ func (d *layoutDesign) addFindings(c *Capture, t *table) {
 	}
 }
 
+// plural is a count with its noun.
+func plural(n int, noun string) string {
+	if n == 1 {
+		return "1 " + noun
+	}
+	return fmt.Sprintf("%d %ss", n, noun)
+}
+
 func validHead(b []byte) bool {
 	for cut := 0; cut < utf8.UTFMax && cut < len(b); cut++ {
 		if utf8.Valid(b[:len(b)-cut]) {

@@ -43,11 +43,10 @@ func findNames(h *head, p *preamble) heading {
 // headingCells cuts a line that may be a heading. In a file separated by
 // blanks a name may hold single blanks, or its unit in brackets stand apart.
 func (h *head) headingCells(p *preamble, text []byte) []cell {
-	text = stripComment(text)
 	if h.delim != ' ' {
-		return h.split(text, nil)
+		return p.cellsOf(text)
 	}
-	words := h.split(text, nil)
+	words := h.split(stripComment(text), nil)
 	var cells []cell
 	for _, w := range words {
 		if n := len(cells); n > 0 && len(w.text) > 1 && (w.text[0] == '(' || w.text[0] == '[') {
@@ -112,14 +111,19 @@ func (h *head) namesRow(cells []cell, adjacent bool) bool {
 			return false
 		default:
 			words++
-			name, u, _ := splitUnit(text)
-			says = says || timeName(name) || u.base == "s"
+			says = says || saysTime(text)
 		}
 	}
 	if words == 0 || words+numbers < h.fewestNames() || h.entryLine(cells) {
 		return false
 	}
 	return adjacent || says || cells[0].blank()
+}
+
+// saysTime reports a heading that says time by its name or unit.
+func saysTime(text string) bool {
+	name, u, _ := splitUnit(text)
+	return timeName(name) || u.base == "s"
 }
 
 // entryLine reports a line that is an entry of the preamble rather than a
@@ -173,7 +177,7 @@ func (h *head) place(cells []cell, set func(col int, text string)) {
 			texts = append(texts, toUTF8(c.text))
 		}
 	}
-	if missed && len(texts) >= len(numeric)-1 && len(texts) <= len(numeric) {
+	if missed && len(texts) >= len(numeric)-1 && len(texts) <= len(numeric) && !saysTime(texts[0]) {
 		for i, text := range texts {
 			set(numeric[len(numeric)-len(texts)+i], text)
 		}

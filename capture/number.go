@@ -6,11 +6,11 @@ import (
 	"strconv"
 )
 
-// A decimal is a number as it is printed: (-1)^neg * mant * 10^exp.
+// A decimal is a number as it is printed: (-1)^sign * mant * 10^exp.
 type decimal struct {
 	mant uint64
 	exp  int
-	neg  bool
+	sign uint64 // 0 or 1: added without a branch, as the sign of a ring is a coin toss
 	// long is true when there were more digits than mant can hold; mant is
 	// then of no use and the text itself must be converted.
 	long bool
@@ -22,19 +22,17 @@ var exactPow10 = [...]float64{
 	1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22,
 }
 
+// signs has bit 0 for a sign and bit 1 for a minus.
+var signs = [256]uint8{'+': 1, '-': 3}
+
 // scanDecimal reads the number that starts at b[i] and returns it with the
 // index behind it; the index is -1 when no number starts there. b must end in
 // a byte that no number holds. The grammar is
 //
 //	[+-] (digits [mark [digits]] | mark digits) [(e|E) [+-] digits]
 func scanDecimal(b []byte, i int, mark byte) (d decimal, end int) {
-	switch b[i] {
-	case '-':
-		d.neg = true
-		i++
-	case '+':
-		i++
-	}
+	d.sign = uint64(signs[b[i]] >> 1)
+	i += int(signs[b[i]] & 1)
 	first := i
 	m := uint64(0)
 	c := b[i] - '0'
@@ -143,10 +141,7 @@ func (d decimal) float(shift int, text []byte, mark byte) float64 {
 		} else {
 			f *= exactPow10[e]
 		}
-		if d.neg {
-			return -f
-		}
-		return f
+		return math.Float64frombits(math.Float64bits(f) | d.sign<<63)
 	}
 	return d.slowFloat(e, text, mark)
 }
@@ -155,7 +150,7 @@ func (d decimal) float(shift int, text []byte, mark byte) float64 {
 func (d decimal) slowFloat(e int, text []byte, mark byte) float64 {
 	var room [64]byte
 	s := room[:0]
-	if d.neg {
+	if d.sign != 0 {
 		s = append(s, '-')
 	}
 	if d.long {
@@ -198,5 +193,8 @@ func parseDecimal(cell []byte, mark byte) (decimal, bool) {
 	return d, end == len(cell)
 }
 
-// resolution is the power of ten of the last printed digit, in units.
-func (d decimal) resolution() float64 { return math.Pow10(d.exp) }
+// integer is the signed mantissa; ok is false when it does not fit.
+func (d decimal) integer() (m int64, ok bool) {
+	m = int64(d.mant)
+	return (m ^ -int64(d.sign)) + int64(d.sign), !d.long && m >= 0
+}

@@ -43,6 +43,7 @@ type chunk struct {
 	lines int
 
 	dst     [][]float64 // for each column of samples, room for as many as lines
+	now     []instant   // the stamps of the row being read
 	rows    int
 	missing []int // for each column of samples
 	spans   []span
@@ -54,13 +55,11 @@ type chunk struct {
 // read follows the plan through the chunk. Rows as the plan expects them take
 // the fast way; any other goes to slowRow, which knows every exception.
 func (p *plan) read(c *chunk, stamps [][]float64) {
+	c.now = make([]instant, p.times)
 	c.missing = make([]int, p.values)
 	c.spans = make([]span, p.times)
 	for k := range c.spans {
-		if cap(stamps[k]) < c.lines {
-			stamps[k] = make([]float64, 0, c.lines)
-		}
-		c.spans[k].begin(stamps[k])
+		c.spans[k].begin(stamps[k], c.lines)
 	}
 	line := c.line
 	for i := 0; i < len(c.text); line++ {
@@ -77,33 +76,33 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 				c.first = line
 			}
 			c.rows++
-			p.checkOrder(c, line)
+			p.accept(c, line)
 		}
 		if c.err != nil {
 			return
 		}
 	}
 	for k := range c.spans {
-		c.spans[k].finish(c.rows)
+		c.spans[k].finish()
 	}
 }
 
-// checkOrder refuses a row whose time is before that of the row above, and
-// rows below what was taken for a footer.
-func (p *plan) checkOrder(c *chunk, line int) {
+// accept takes in the stamps of a row. It refuses a row whose time is before
+// that of the row above, and rows below what was taken for a footer.
+func (p *plan) accept(c *chunk, line int) {
 	if c.footer != nil {
 		c.err = c.footer
 		return
 	}
 	for k := range c.spans {
-		if t := c.spans[k].stamps[:c.rows]; c.rows > 1 && t[c.rows-1] < t[c.rows-2] {
-			c.err = backwards(line, t[c.rows-1], t[c.rows-2])
+		if s := &c.spans[k]; !s.add(&c.now[k]) {
+			c.err = backwards(line, c.now[k].seconds(), s.last)
 		}
 	}
 }
 
 func backwards(line int, t, before float64) *Error {
-	return &Error{Err: ErrBackwards, Line: line, Found: fmt.Sprintf("%.9g s after %.9g s", t, before), Expected: "a later time"}
+	return &Error{Err: ErrBackwards, Line: line, Found: seconds(t) + " after " + seconds(before), Expected: "a later time"}
 }
 
 // fastRow reads the row that starts at text[i] and returns where the next line
@@ -132,17 +131,17 @@ func (p *plan) fastRow(c *chunk, i int) int {
 			if !ok {
 				return -1
 			}
-			c.spans[s.to].addClock(t, p.zero, c.rows)
+			c.now[s.to] = t.instant(p.zero)
 			i = end
 		default:
 			d, end := scanDecimal(b, i, p.mark)
 			if end < 0 {
 				return -1
 			}
-			v := d.float(s.shift, b[i:end], p.mark)
 			if s.op == opTime {
-				c.spans[s.to].add(v, d, s.shift, c.rows)
+				c.now[s.to] = d.instant(s.shift, b[i:end], p.mark)
 			} else {
+				v := d.float(s.shift, b[i:end], p.mark)
 				c.dst[s.to][c.rows] = v
 				if math.IsInf(v, 0) {
 					return -1
@@ -229,10 +228,10 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 			}
 			c.dst[s.to][c.rows] = v
 		case opTime:
-			c.spans[s.to].add(d.float(shift, digits, p.mark), d, shift, c.rows)
+			c.now[s.to] = d.instant(shift, digits, p.mark)
 		case opClock:
 			t, _ := parseStamp(cells[k].text, p.dayFirst)
-			c.spans[s.to].addClock(t, p.zero, c.rows)
+			c.now[s.to] = t.instant(p.zero)
 		}
 	}
 	return true

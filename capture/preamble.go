@@ -82,10 +82,27 @@ func (p *preamble) readLine(number int, cells []cell) {
 			}
 			continue
 		}
-		if open != nil {
+		if open == nil {
+			if rate, ok := p.findRate(text); ok {
+				p.entries = append(p.entries, entry{means: meansRate, line: number, column: col, values: []located{{rate, col}}})
+			}
+		} else {
 			open.values = append(open.values, located{text, col})
 		}
 	}
+}
+
+// findRate looks for a sampling rate in a sentence: its unit tells.
+func (p *preamble) findRate(text string) (string, bool) {
+	w := strings.Fields(text)
+	for i := range w {
+		for _, try := range []string{w[i], strings.Join(w[i:min(i+2, len(w))], " ")} {
+			if _, u, _, ok := p.d.quantity(cell{text: []byte(strings.TrimRight(try, ".;)"))}); ok && u.base == "Sa/s" {
+				return strings.TrimRight(try, ".;)"), true
+			}
+		}
+	}
+	return "", false
 }
 
 // readKey reads "key", "key: value", "key = value" and "key value", the key
@@ -118,17 +135,16 @@ func isUnit(text string) bool {
 	return ok
 }
 
-// cellsOf cuts a line of the preamble. A comment mark is dropped; in a file
-// whose samples are separated by blanks the preamble's words are not cells.
+// cellsOf cuts a line of the preamble. A comment mark is dropped; a line that
+// is not cut as the samples are is cut at tabs, semicolons or commas.
 func (p *preamble) cellsOf(text []byte) []cell {
 	text = stripComment(text)
 	d := p.d
-	if d.delim == ' ' {
-		d.delim = ','
-		if bytes.IndexByte(text, '\t') >= 0 {
-			d.delim = '\t'
-		} else if d.mark == ',' {
-			d.delim = ';'
+	if d.delim == ' ' || bytes.IndexByte(text, d.delim) < 0 {
+		for _, d.delim = range []byte("\t;,") {
+			if bytes.IndexByte(text, d.delim) >= 0 && d.delim != d.mark {
+				break
+			}
 		}
 	}
 	return d.split(text, nil)

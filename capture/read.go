@@ -79,9 +79,8 @@ func read(r io.Reader, name string, size int64, opt Options) (*Capture, error) {
 // readHead reads the beginning of the text, or all of a short one.
 func readHead(src *source) (*head, error) {
 	buf := make([]byte, headSize+1)
-	n, err := io.ReadFull(src.text, buf[:headSize])
-	whole := err == io.EOF || err == io.ErrUnexpectedEOF
-	if err != nil && !whole {
+	n, whole, err := fill(src.text, buf[:headSize])
+	if err != nil {
 		return nil, src.readError(err)
 	}
 	if what := foreign(buf[:min(n, 4096)]); what != "" {

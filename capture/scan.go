@@ -3,7 +3,6 @@ package capture
 import (
 	"bytes"
 	"fmt"
-	"io"
 	"runtime"
 	"sync"
 	"sync/atomic"
@@ -114,10 +113,9 @@ func (s *scanner) blocks(jobs chan<- *chunk, carry []byte) error {
 	for !s.failed.Load() {
 		buf := *s.free.Get().(*[]byte)
 		kept := copy(buf, carry)
-		n, err := io.ReadFull(s.src.text, buf[kept:blockSize])
+		n, last, err := fill(s.src.text, buf[kept:blockSize])
 		text := buf[:kept+n]
-		last := err == io.EOF || err == io.ErrUnexpectedEOF
-		if err != nil && !last {
+		if err != nil {
 			return s.src.readError(err)
 		}
 		if last && len(text) > 0 && text[len(text)-1] != s.p.term {

@@ -81,12 +81,25 @@ func (s *source) digest() (string, error) {
 // peek returns the first bytes of r and a reader of all of them.
 func peek(r io.Reader) ([]byte, io.Reader, error) {
 	head := make([]byte, 1024)
-	n, err := io.ReadFull(r, head)
-	if err == io.EOF || err == io.ErrUnexpectedEOF {
-		err = nil
-	}
+	n, _, err := fill(r, head)
 	head = head[:n]
 	return head, io.MultiReader(bytes.NewReader(head), r), err
+}
+
+// fill reads until p is full or the text ends. Unlike io.ReadFull it does not
+// mistake a damaged stream for a short one.
+func fill(r io.Reader, p []byte) (n int, end bool, err error) {
+	for n < len(p) {
+		k, err := r.Read(p[n:])
+		n += k
+		if err == io.EOF {
+			return n, true, nil
+		}
+		if err != nil {
+			return n, false, err
+		}
+	}
+	return n, false, nil
 }
 
 // A meter hashes and counts the bytes that pass.

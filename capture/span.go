@@ -18,54 +18,172 @@ type span struct {
 	exp    int    // power of ten of the last printed digit, the least of all stamps
 	digits uint64 // largest mantissa printed: tells the number of significant digits
 
-	steps      int     // steps between neighbours
-	least      float64 // smallest and largest step
-	most       float64
-	stamps     []float64 // nil once the line stands for them
-	zeroSteps  int
-	sumSquares float64 // of the departures of the stamps from the line
+	steps     int     // steps between neighbours
+	least     float64 // smallest and largest step
+	most      float64
+	stamps    []float64 // nil once the line stands for them
+	zeroSteps int
+	rows      int         // room wanted for the stamps
+	run       progression // of all stamps so far, as long as it lasts
+	even      bool        // the line stands for all stamps
 }
 
-// begin starts a span in the room of a buffer.
-func (s *span) begin(room []float64) {
-	*s = span{exp: math.MaxInt32, stamps: room[:0]}
+// An instant is one stamp: a printed number, its power of ten that of seconds;
+// or, when real is set, the time itself and the power of ten it is printed to.
+type instant struct {
+	d    decimal
+	real bool
+	time float64 // in seconds
 }
 
-// add takes the stamp of row i: t = d * 10^shift, in seconds.
-func (s *span) add(t float64, d decimal, shift, i int) {
-	if e := d.exp + shift; e < s.exp {
-		s.exp = e
+// instant is the stamp printed as text, times 10^shift.
+func (d decimal) instant(shift int, text []byte, mark byte) instant {
+	if d.long {
+		return instant{real: true, time: d.float(shift, text, mark), d: decimal{exp: d.exp + shift}}
 	}
-	if d.mant > s.digits {
-		s.digits = d.mant
+	d.exp += shift
+	return instant{d: d}
+}
+
+// instant is the stamp counted from the whole second zero.
+func (s stamp) instant(zero int64) instant {
+	return instant{real: true, time: s.since(zero), d: decimal{exp: -s.places}}
+}
+
+// seconds is the time as a number.
+func (t *instant) seconds() float64 {
+	if t.real {
+		return t.time
 	}
-	s.put(t, i)
+	return t.d.float(0, nil, 0)
 }
 
-// addClock takes a clock time, counted from the whole second zero.
-func (s *span) addClock(t stamp, zero int64, i int) {
-	s.exp = min(s.exp, -t.places)
-	s.put(t.since(zero), i)
+// A progression is a run of stamps whose printed digits rise by the same whole
+// number: it needs no arithmetic with fractions, and no memory.
+type progression struct {
+	n          int
+	last, step int64 // in units of 10^exp seconds
+	exp        int
 }
 
-// put sets the stamp of row i; a row that was read again replaces it.
-func (s *span) put(t float64, i int) {
-	if i < len(s.stamps) {
-		s.stamps[i] = t
-	} else {
-		s.stamps = append(s.stamps, t)
+// begin starts a span of up to rows stamps, in the room of a buffer.
+func (s *span) begin(room []float64, rows int) {
+	*s = span{exp: math.MaxInt32, stamps: room[:0], rows: rows}
+}
+
+// add takes the next stamp, and reports whether it is in order.
+func (s *span) add(t *instant) bool {
+	if s.n == s.run.n && s.follows(t) {
+		s.n++
+		s.run.n++
+		return true
 	}
+	if s.run.n > 0 && len(s.stamps) == 0 {
+		s.writeOut()
+	}
+	if len(s.stamps) == 0 && cap(s.stamps) < s.rows {
+		s.stamps = make([]float64, 0, s.rows)
+	}
+	s.exp = min(s.exp, t.d.exp)
+	s.digits = max(s.digits, t.d.mant)
+	v := t.seconds()
+	s.stamps = append(s.stamps, v)
+	s.n++
+	if s.n > 1 && v < s.last {
+		return false
+	}
+	s.last = v
+	return true
 }
 
-// finish sums the n stamps up.
-func (s *span) finish(n int) {
-	s.stamps = s.stamps[:n]
-	if s.n = n; n == 0 {
+// follows takes a stamp that goes on with the progression.
+func (s *span) follows(t *instant) bool {
+	r := &s.run
+	m, ok := t.d.integer()
+	if r.n > 1 {
+		if !ok || m-r.last != r.step || t.d.exp != r.exp {
+			return false
+		}
+		r.last = m
+		return true
+	}
+	// Beyond 2^53 the progression could not be written out exactly.
+	if ok = ok && !t.real && t.d.mant < 1<<53; !ok {
+		return false
+	}
+	if r.n == 1 {
+		if r.step = m - r.last; r.step <= 0 || t.d.exp != r.exp {
+			return false
+		}
+	}
+	r.last, r.exp = m, t.d.exp
+	return true
+}
+
+// value is the stamp number i of the progression.
+func (r *progression) value(i int) float64 {
+	m := r.last - int64(r.n-1-i)*r.step
+	d := decimal{mant: uint64(m), exp: r.exp}
+	if m < 0 {
+		d.mant, d.sign = uint64(-m), 1
+	}
+	return d.float(0, nil, '.')
+}
+
+// writeOut turns the progression so far into stamps: the next one breaks it.
+func (s *span) writeOut() {
+	if cap(s.stamps) < s.rows {
+		s.stamps = make([]float64, 0, s.rows)
+	}
+	for i := range s.run.n {
+		s.stamps = append(s.stamps, s.run.value(i))
+	}
+	s.last = s.stamps[s.n-1]
+	s.noteDigits()
+}
+
+// noteDigits takes the print of the progression into account: the mantissas
+// that are largest stand at its ends.
+func (s *span) noteDigits() {
+	first := s.run.last - int64(s.run.n-1)*s.run.step
+	s.exp = min(s.exp, s.run.exp)
+	s.digits = max(s.digits, magnitude(first), magnitude(s.run.last))
+}
+
+func magnitude(m int64) uint64 {
+	if m < 0 {
+		return uint64(-m)
+	}
+	return uint64(m)
+}
+
+// finish sums the stamps up.
+func (s *span) finish() {
+	if s.n == 0 {
 		return
 	}
-	s.first, s.last = s.stamps[0], s.stamps[n-1]
+	if s.run.n == s.n {
+		s.finishRun()
+		return
+	}
+	s.first = s.stamps[0]
 	s.line()
 	s.depart()
+}
+
+// finishRun is finish for a progression: its line is known.
+func (s *span) finishRun() {
+	n := s.n
+	s.noteDigits()
+	s.first, s.last = s.run.value(0), s.run.value(n-1)
+	s.steps, s.mean = n-1, s.first
+	if n > 1 {
+		s.mean = s.first + (s.last-s.first)/2
+		s.slope = (s.last - s.first) / float64(n-1)
+		s.sxy = s.slope * sumOfSquares(n)
+	}
+	s.least, s.most = s.slope, s.slope
+	s.even = true
 }
 
 // line fits t(i) = mean + slope*(i - (n-1)/2), in steps from the first stamp so
@@ -110,11 +228,7 @@ func sumOfSquares(n int) float64 {
 func (s *span) depart() {
 	half := float64(s.n-1) / 2
 	for i, t := range s.stamps {
-		d := math.Abs(t - s.at(float64(i)-half))
-		s.sumSquares += d * d
-		if d > s.off {
-			s.off = d
-		}
+		s.off = max(s.off, math.Abs(t-s.at(float64(i)-half)))
 	}
 }
 
@@ -124,15 +238,14 @@ func (s *span) at(fromMiddle float64) float64 { return s.mean + s.slope*fromMidd
 // departures stay within the rounding of the print, or are negligible against
 // the interval.
 func (s *span) release() []float64 {
-	tolerance := math.Max(0.55*s.resolution(s.digits, s.exp), negligible*s.slope)
-	if s.n < 3 || s.off > tolerance || s.oddSteps() {
-		if s.n == 0 {
-			return s.stamps
-		}
-		return nil
-	}
 	room := s.stamps
-	s.stamps = nil
+	if s.n > 0 && !s.even {
+		tolerance := max(0.55*s.resolution(s.digits, s.exp), negligible*s.slope)
+		if s.n < 3 || s.off > tolerance || s.oddSteps() {
+			return nil
+		}
+	}
+	s.even, s.stamps = true, nil
 	return room
 }
 

@@ -25,6 +25,7 @@ func (s *store) reserve(c *chunk, expected int) {
 		g = &segment{columns: make([][]float64, s.columns)}
 		for k := range g.columns {
 			g.columns[k] = make([]float64, max(expected, c.lines))
+			hugePages(g.columns[k])
 		}
 		s.segments = append(s.segments, g)
 	}
@@ -42,6 +43,7 @@ func (s *store) gather(rows int) [][]float64 {
 	for k := range out {
 		if len(s.segments) > 1 {
 			out[k] = make([]float64, rows)
+			hugePages(out[k])
 		} else {
 			out[k] = s.segments[0].columns[k][:rows:rows]
 		}

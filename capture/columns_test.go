@@ -1,0 +1,132 @@
+package capture
+
+import (
+	"fmt"
+	"math"
+	"strings"
+	"testing"
+)
+
+// roles asks for the roles of the columns.
+func roles(wanted string) func(*testing.T, *Capture) {
+	return func(t *testing.T, c *Capture) {
+		t.Helper()
+		var got []string
+		for _, col := range c.Layout.Columns {
+			got = append(got, string(col.Role))
+			if col.Why == "" {
+				t.Errorf("column %d is %s without a why", col.Number, col.Role)
+			}
+		}
+		if s := strings.Join(got, " "); s != wanted {
+			t.Errorf("columns are %s, want %s", s, wanted)
+		}
+	}
+}
+
+// Columns that are no channels, and cells that are no samples.
+func TestColumns(t *testing.T) {
+	t0 := func(i int) string { return at(i, 0.4, 1) }
+	nan := math.NaN()
+	ringBut := func(gone func(ch, i int) bool) func(ch, i int) float64 {
+		return func(ch, i int) float64 {
+			if gone(ch, i) {
+				return nan
+			}
+			return number(ring(ch, i))
+		}
+	}
+	marks := []string{"inf", "-inf", "---", "****", "", "NaN", "OVER", "+Inf", "#N/A", "1e999"}
+	marked := func(ch, i int) bool { return i < len(marks) }
+	for _, c := range []struct {
+		name, text string
+		w          want
+	}{
+		{"minimum and maximum of peak detection", "time (us),CH1 min (V),CH1 max (V),CH2 min (V),CH2 max (V)\n" + lines(rows, func(i int) string {
+			return t0(i) + "," + peaks(1, i) + "," + peaks(2, i)
+		}), want{interval: 0.4e-6, channels: "CH1/V CH2/V", findings: "ignored-columns", value: peakMean,
+			check: roles("time channel duplicate channel duplicate")}},
+		{"minimum and maximum under one name", "time (us),CH1 (V),CH1 (V)\n" + lines(rows, func(i int) string { return t0(i) + "," + peaks(1, i) }),
+			want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", value: peakMean, check: roles("time channel duplicate")}},
+		{"error columns by name", "time (us),CH1 (V),CH1 error (V),CH2 (V),std CH2\n" + lines(rows, func(i int) string {
+			return t0(i) + "," + ring(1, i) + ",0.002," + ring(2, i) + ",0.003"
+		}), want{interval: 0.4e-6, channels: "CH1/V CH2/V", findings: "ignored-columns", check: roles("time channel deviation channel deviation")}},
+		{"deviations without names", lines(rows, func(i int) string {
+			return fmt.Sprintf("%s 0.%02d %s %.3f", t0(i), 3+i%5, ring(1, i), 0.01+0.001*float64(i%7))
+		}), want{interval: 0.4, channels: "channel_1/", findings: "coarse-time ignored-columns", check: roles("time deviation channel deviation")}},
+		{"one deviation without a name", lines(rows, func(i int) string { return fmt.Sprintf("%s\t%s\t%.3f", t0(i), ring(1, i), 0.01+0.001*float64(i%7)) }),
+			want{interval: 0.4, channels: "channel_1/", findings: "coarse-time ignored-columns", check: roles("time channel deviation")}},
+		{"two channels without names are channels", lines(rows, func(i int) string { return t0(i) + "," + ring(1, i) + "," + ring(2, i) }),
+			want{interval: 0.4, channels: "channel_1/ channel_2/", findings: "coarse-time", check: roles("time channel channel")}},
+		{"logic columns", "time (us),CH1 (V),D0,D1,trigger\n" + lines(rows, func(i int) string {
+			return fmt.Sprintf("%s,%s,%d,0,%d", t0(i), ring(1, i), i%2, i/30)
+		}), want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("time channel logic logic logic")}},
+		{"a duplicate under a blank header", "time (us),CH1 (V),\n" + lines(rows, func(i int) string { return t0(i) + "," + ring(1, i) + "," + ring(1, i) }),
+			want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("time channel duplicate")}},
+		{"a text column last", "time (us),CH1 (V),remark\n" + lines(rows, func(i int) string {
+			return t0(i) + "," + ring(1, i) + []string{",ok", ",\"armed, waiting\"", ",", ", see note, page 2"}[i%4]
+		}), want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("time channel text text")}},
+		{"a text column first", "state,time (us),CH1 (V)\n" + lines(rows, func(i int) string { return "run," + t0(i) + "," + ring(1, i) }),
+			want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("text time channel")}},
+		{"a blank column with a name", "time (us),CH1 (V),CH2 (V)\n" + lines(rows, func(i int) string { return t0(i) + "," + ring(1, i) + "," }),
+			want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("time channel blank")}},
+		{"count and time", "Index;Time (us);CH1 (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%d;%s;%s", i, t0(i), ring(1, i)) }),
+			want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("index time channel")}},
+		{"an analogue cell empty at first", "time (us),CH1 (V),CH2 (V)\n" + lines(rows, func(i int) string {
+			if i < 3 {
+				return t0(i) + ",," + ring(2, i)
+			}
+			return t0(i) + "," + ring(1, i) + "," + ring(2, i)
+		}), want{interval: 0.4e-6, channels: "CH1/V CH2/V", findings: "missing-samples",
+			value: ringBut(func(ch, i int) bool { return ch == 1 && i < 3 }), check: has(MissingSamples, Warning, "3 of 60 samples of CH1")}},
+		{"the only analogue cell empty at first", "time (us),CH1 (V)\n" + lines(rows, func(i int) string {
+			if i < 3 {
+				return t0(i) + ","
+			}
+			return t0(i) + "," + ring(1, i)
+		}), want{interval: 0.4e-6, channels: "CH1/V", findings: "missing-samples", value: ringBut(func(ch, i int) bool { return i < 3 })}},
+		{"marks of over-range and missing samples", "time (us),CH1 (V)\n" + lines(rows, func(i int) string {
+			if marked(1, i) {
+				return t0(i) + "," + marks[i]
+			}
+			return t0(i) + "," + ring(1, i)
+		}), want{interval: 0.4e-6, channels: "CH1/V", findings: "missing-samples", value: ringBut(marked), check: has(MissingSamples, Warning, "10 of 60")}},
+		{"a channel that is over range throughout", "time (us),CH1 (V),CH2 (V)\n" + lines(rows, func(i int) string { return t0(i) + "," + ring(1, i) + ",---" }),
+			want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("time channel blank")}},
+		{"comments and blank lines between the samples", "time (us),CH1 (V)\n" + lines(rows, func(i int) string {
+			return t0(i) + "," + ring(1, i) + []string{"", "\n", "\n# block"}[i%3]
+		}), want{interval: 0.4e-6, channels: "CH1/V"}},
+	} {
+		t.Run(c.name, func(t *testing.T) { understand(t, c.text, Options{}, c.w) })
+	}
+}
+
+// peaks are the two ends of peak detection about the ring of a channel.
+func peaks(channel, i int) string {
+	v := number(ring(channel, i))
+	return fmt.Sprintf("%.5f,%.5f", v-0.01, v+0.02)
+}
+
+func peakMean(ch, i int) float64 {
+	ends := strings.Split(peaks(ch, i), ",")
+	return number(ends[0])/2 + number(ends[1])/2
+}
+
+func TestChannel(t *testing.T) {
+	c, err := Read(strings.NewReader("time (us),V_S (V),V_C (V),3\n"+lines(rows, func(i int) string {
+		return at(i, 0.4, 1) + "," + ring(1, i) + "," + ring(2, i) + "," + ring(3, i)
+	})), "loop 07.csv", Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for ask, name := range map[string]string{"V_S": "V_S", "v_c": "V_C", "1": "V_S", "2": "V_C", "3": "3"} {
+		if ch, err := c.Channel(ask); err != nil || ch.Name != name {
+			t.Errorf("%q gives %v, %v", ask, ch, err)
+		}
+	}
+	_, err = c.Channel("V_R")
+	const message = `no channel "V_R" in loop 07.csv, which has 1 "V_S", 2 "V_C", 3 "3"`
+	if err == nil || err.Error() != message {
+		t.Errorf("error %v, want %s", err, message)
+	}
+}

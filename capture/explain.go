@@ -1,0 +1,106 @@
+package capture
+
+import (
+	"fmt"
+	"io"
+	"slices"
+	"strings"
+)
+
+// Explain writes what the reader understood of the file: encoding, preamble,
+// separators, each column with its role and why, the channels, and the time
+// axis with where it came from.
+func (c *Capture) Explain(w io.Writer) error {
+	var b strings.Builder
+	l := c.Layout
+	encoding := l.Encoding
+	if l.Compressed {
+		encoding += ", compressed with gzip"
+	}
+	fmt.Fprintf(&b, "%s\n", c.File)
+	fmt.Fprintf(&b, "  text       %s\n", encoding)
+	fmt.Fprintf(&b, "  SHA-256    %s\n", c.SHA256)
+	fmt.Fprintf(&b, "  lines      %s\n", l.lines())
+	fmt.Fprintf(&b, "  separator  %s, decimal mark %q\n", l.Delimiter, l.DecimalMark)
+	for _, col := range l.Columns {
+		fmt.Fprintf(&b, "  column %-3d %s\n", col.Number, col.describe())
+	}
+	for _, ch := range c.Channels {
+		fmt.Fprintf(&b, "  channel %-2d %s\n", ch.Number, ch.describe())
+	}
+	for _, a := range c.axes() {
+		fmt.Fprintf(&b, "  time       %s\n", a.describe(c.onAxis(a)))
+	}
+	for _, f := range c.Findings {
+		fmt.Fprintf(&b, "  %-10s %s: %s\n", f.Severity, f.Code, f.Message)
+	}
+	_, err := io.WriteString(w, b.String())
+	return err
+}
+
+func (l Layout) lines() string {
+	var parts []string
+	if l.Preamble > 0 {
+		parts = append(parts, fmt.Sprintf("preamble to line %d", l.Preamble))
+	}
+	if l.HeaderLine > 0 {
+		parts = append(parts, fmt.Sprintf("names in line %d", l.HeaderLine))
+	}
+	if l.UnitsLine > 0 {
+		parts = append(parts, fmt.Sprintf("units in line %d", l.UnitsLine))
+	}
+	return strings.Join(append(parts, fmt.Sprintf("samples from line %d on", l.FirstLine)), ", ")
+}
+
+func (col Column) describe() string {
+	s := string(col.Role)
+	if col.Name != "" {
+		s += fmt.Sprintf(" %q", col.Name)
+	}
+	if col.Unit != "" {
+		s += " in " + col.Unit
+	}
+	return s + ": " + col.Why
+}
+
+func (ch *Channel) describe() string {
+	unit := ch.Unit
+	if unit == "" {
+		unit = "a unit the file does not tell"
+	}
+	return fmt.Sprintf("%q in %s, %d samples", ch.Name, unit, len(ch.Samples))
+}
+
+// axes returns the different time axes, in order of the channels.
+func (c *Capture) axes() []*Axis {
+	var axes []*Axis
+	for _, ch := range c.Channels {
+		if !slices.Contains(axes, ch.Axis) {
+			axes = append(axes, ch.Axis)
+		}
+	}
+	return axes
+}
+
+// onAxis returns the channels on an axis.
+func (c *Capture) onAxis(a *Axis) []*Channel {
+	var on []*Channel
+	for _, ch := range c.Channels {
+		if ch.Axis == a {
+			on = append(on, ch)
+		}
+	}
+	return on
+}
+
+func (a *Axis) describe(on []*Channel) string {
+	var names []string
+	for _, ch := range on {
+		names = append(names, ch.Name)
+	}
+	kind := "even"
+	if a.Times != nil {
+		kind = "not even"
+	}
+	return fmt.Sprintf("%s: %d samples from %s, every %s, %s (%s)", strings.Join(names, ", "), a.N, seconds(a.Start), seconds(a.Interval), kind, a.Source)
+}
