@@ -32,7 +32,7 @@ func Analyze(ch *capture.Channel, opt Options) *Result {
 		return refused(nil, f)
 	}
 	// 1. Gate and fit: the free decay, from its true start to where it has died.
-	g, ok := findGate(s.slice(first, last), opt.From != nil, opt.To != nil)
+	g, ok := findGate(s.slice(first, last), opt.From != nil, opt.To != nil, opt.Model)
 	if !ok {
 		if fallsOnly(s.slice(first, last)) {
 			return refused(nil, bareExponential())
@@ -54,7 +54,7 @@ func Analyze(ch *capture.Channel, opt Options) *Result {
 		return refused(r, why)
 	}
 	r.Quantities = &d.Quantities
-	r.Findings = append(doubts(&g, d, v), compareReadings(d, &readings)...)
+	r.Findings = append(doubts(&g, d, v), compareReadings(d, r.Model, &readings)...)
 	return r.settle()
 }
 
@@ -106,6 +106,7 @@ func newDecay(s series, g gate, v noise, unit string, timebase float64) *Decay {
 	if cov, ok := f.covariance(v); ok {
 		d.Quantities = quantitiesOf(f.a, f.w, s.dt, &cov, timebase)
 		d.Amplitude, d.Phase, d.Offset = f.shape(&cov, unit)
+		d.AtStart = f.atStart(v, timebase)
 	}
 	d.Cycles = (d.To - d.From) * d.Quantities.DampedFrequency.Value
 	return d
@@ -145,6 +146,9 @@ func (r *Result) settle() *Result {
 
 // model names the law that the decay was fitted with.
 func (d *Decay) model() Model {
+	if _, ok := d.law.(bentLaw); ok {
+		return Amplitude
+	}
 	if l, ok := d.law.(exponentialLaw); ok && l.companion != nil && l.companion.w > 0 {
 		return TwoMode
 	}

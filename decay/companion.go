@@ -6,9 +6,8 @@ import (
 )
 
 const (
-	companionGain   = 60  // chi-squared beyond chance that a second component must explain
-	companionDrop   = 0.8 // and what it may leave of the residual sum of squares
-	companionMargin = 60  // logarithm of likelihood that a gate with one must win by
+	companionGain   = 60 // chi-squared beyond chance that a second component must explain
+	companionMargin = 60 // logarithm of likelihood that a gate with one must win by
 	companionSeeds  = 3
 	baselineRatio   = 2.5  // w over a below which a second ring may stand for the baseline,
 	baselineRise    = 1.25 // if a plain exponential leaves hardly more
@@ -17,34 +16,60 @@ const (
 // withCompanion looks for a second component in what the fit of a gate leaves: a
 // second ring, or a baseline that recovers exponentially.
 func withCompanion(s series, g *gate) (gate, bool) {
-	f := &g.fit
-	if f.s.len() < 4*samplesLeast {
+	if g.fit.s.len() < 4*samplesLeast {
 		return gate{}, false
 	}
-	r := f.residuals(f.s, 0)
-	starts := companionStarts(f, r)
-	best, found := ringFit{}, false
-	for _, st := range starts {
-		next, ok := fitSum(f.s, st[0], &st[1], coarse)
-		if ok && next.a > 0 && (!found || next.rss < best.rss) {
-			best, found = next, true
-		}
-	}
-	if !found || best.rss > companionDrop*f.rss || !decisive(f, &best) {
+	list := companions(&g.fit, nil)
+	if len(list) == 0 {
 		return gate{}, false
 	}
-	best.dampedIsBaseline()
-	best.strongestFirst()
+	best := slices.MinFunc(list, func(x, y ringFit) int { return compareFloat(x.rss, y.rss) })
+	if !decisive(&g.fit, &best) {
+		return gate{}, false
+	}
 	out := *g
 	out.fit = best
 	return out, true
+}
+
+// companions fits the ring of f with the best plain exponential and with the best
+// second ring beside it. known is a start value, or nil.
+func companions(f *ringFit, known *pole) []ringFit {
+	starts := companionStarts(f, f.residuals(f.s, 0))
+	if known != nil {
+		starts = append(starts, [2]pole{{f.a, f.w}, *known})
+	}
+	var best [2]ringFit
+	var found [2]bool
+	for _, st := range starts {
+		next, ok := fitSum(f.s, st[0], &st[1], coarse)
+		if !ok || next.a <= 0 {
+			continue
+		}
+		next.dampedIsBaseline()
+		next.strongestFirst()
+		k := 0
+		if next.companion.w > 0 {
+			k = 1
+		}
+		if !found[k] || next.rss < best[k].rss {
+			best[k], found[k] = next, true
+		}
+	}
+	var out []ringFit
+	for k := range best {
+		if found[k] {
+			out = append(out, best[k])
+		}
+	}
+	return out
 }
 
 // companionStarts pairs the ring with candidates from its residual r, and, where
 // the first fit took the baseline for the ring, the baseline with a ring.
 func companionStarts(f *ringFit, r []float64) [][2]pole {
 	ring := pole{f.a, f.w}
-	length := float64(len(r))
+	length := f.s.position(f.s.len() - 1)
 	var out [][2]pole
 	for _, u := range []float64{0.7, 3, 10} {
 		out = append(out, [2]pole{ring, {a: u / length}})
@@ -139,16 +164,6 @@ func (g *gate) without(s series) series {
 		out.y[g.first+i] -= g.fit.companion.at(window.position(i))
 	}
 	return out
-}
-
-// addCompanion adds a companion to a settled gate where the samples insist.
-func (g *gate) addCompanion(s series) {
-	if g.fit.s.len() > coreMost {
-		return
-	}
-	if two, ok := withCompanion(s, g); ok {
-		g.fit = two.fit
-	}
 }
 
 // cost is the negative logarithm of the likelihood of the gate's account of s, as

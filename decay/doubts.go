@@ -31,6 +31,9 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 	if c := g.fit.companion; c != nil {
 		out = append(out, g.besides(c))
 	}
+	if b := g.fit.bend; b != nil {
+		out = append(out, dependsOnAmplitude(d, b))
+	}
 	if v.factor(g.fit.w) > 1.5 {
 		out = append(out, note(capture.ColouredNoise,
 			fmt.Sprintf("The noise is %.2g times as dense at the ring's frequency as white noise of the same size; the uncertainties allow for it.", v.factor(g.fit.w)),
@@ -54,12 +57,25 @@ func (g *gate) besides(c *term) Finding {
 		"Find what else resonates (a coupled circuit, a probe lead, a second winding) and quote each ring by itself.")
 }
 
+func dependsOnAmplitude(d *Decay, b *bend) Finding {
+	q, at := &d.Quantities, d.AtStart
+	return warning(capture.AmplitudeDependent,
+		fmt.Sprintf("Loss and frequency depend on the amplitude: from %s and Q %s at the first cycle to %s and Q %s as the ring dies; %s.",
+			at.DampedFrequency, at.Q, q.DampedFrequency, q.Q, b.law),
+		"Quote the small-signal values with the amplitude they hold for, and compare with other measurements at the same amplitude only.")
+}
+
 // percent prints a ratio as a percentage with its sign dropped.
 func percent(x float64) string { return fmt.Sprintf("%.3g %%", 100*math.Abs(x)) }
 
-// compareReadings holds the classical readings against the fit.
-func compareReadings(d *Decay, r *Readings) []Finding {
+// compareReadings holds the classical readings against the fit. They are averages
+// over the decay: where frequency and damping move along it, or two rings beat,
+// they have no counterpart in the fit.
+func compareReadings(d *Decay, m Model, r *Readings) []Finding {
 	var out []Finding
+	if m != Exponential {
+		return nil
+	}
 	check := func(what string, reading, fit quantity.Quantity) {
 		if !reading.Known() || !(reading.U > 0) {
 			return

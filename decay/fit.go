@@ -35,7 +35,8 @@ type ringFit struct {
 	s             series
 	a, w, c, p, q float64
 	ref           float64
-	companion     *term
+	companion     *term // beside the ring, or nil
+	bend          *bend // its dependence on the amplitude, or nil
 	rss           float64
 	n             int
 	stop          StopReason
@@ -121,10 +122,20 @@ func (f *ringFit) tau() float64     { return f.s.dt / f.a }
 func (f *ringFit) period() float64  { return 2 * math.Pi / f.w } // samples
 func (f *ringFit) qFactor() float64 { return math.Hypot(f.a, f.w) / (2 * f.a) }
 
+// ring returns the oscillation n intervals after the first sample of the window.
+func (f *ringFit) ring(n float64) float64 {
+	if f.bend == nil {
+		ring := term{f.a, f.w, f.p, f.q}
+		return ring.at(n)
+	}
+	u, i, _, _, _, _ := f.bend.law.shape(f.a, f.bend.b, n)
+	sin, cos := math.Sincos(f.w*n + f.bend.g*i)
+	return u * (f.p*cos + f.q*sin)
+}
+
 // value returns the curve n intervals after the first sample of the window.
 func (f *ringFit) value(n float64) float64 {
-	ring := term{f.a, f.w, f.p, f.q}
-	v := f.offset() + ring.at(n)
+	v := f.offset() + f.ring(n)
 	if f.companion != nil {
 		v += f.companion.at(n)
 	}
@@ -135,7 +146,7 @@ func (f *ringFit) value(n float64) float64 {
 // after the start of the fitted window.
 func (f *ringFit) residuals(s series, n0 float64) []float64 {
 	out := make([]float64, s.len())
-	if s.times != nil {
+	if s.times != nil || f.bend != nil {
 		for i, v := range s.y {
 			out[i] = v - f.value(n0+s.position(i))
 		}
@@ -234,6 +245,9 @@ type exponentialLaw struct {
 }
 
 func (f *ringFit) law() law {
+	if f.bend != nil {
+		return bentLaw{*f}
+	}
 	l := exponentialLaw{f.size(), f.a / f.s.dt, f.w / f.s.dt, math.Atan2(-f.q, f.p), f.offset(), nil}
 	if c := f.companion; c != nil {
 		l.companion = &term{c.a / f.s.dt, c.w / f.s.dt, c.p, c.q}
@@ -263,4 +277,13 @@ func (t *term) beat(at, envelope, phase float64) float64 {
 	e := math.Exp(-t.a*at) * math.Hypot(t.p, t.q)
 	d := phase - (t.w*at + math.Atan2(-t.q, t.p))
 	return math.Sqrt(math.Max(0, envelope*envelope+e*e+2*envelope*e*math.Cos(d)))
+}
+
+// bentLaw is the fitted curve of an amplitude law.
+type bentLaw struct{ f ringFit }
+
+func (l bentLaw) at(t float64) (value, envelope, baseline float64) {
+	n := t / l.f.s.dt
+	u, _, _, _, _, _ := l.f.bend.law.shape(l.f.a, l.f.bend.b, n)
+	return l.f.value(n), u * l.f.size(), l.f.offset()
 }

@@ -27,7 +27,7 @@ const (
 // to both sides as long as the samples follow it. Where a companion stands out
 // beside the ring the same is done with the companion taken off, and the
 // likelier of the two accounts is kept.
-func findGate(s series, fixedStart, fixedEnd bool) (gate, bool) {
+func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 	p := newPyramid(s)
 	first, ok := firstFit(s, p, fixedStart)
 	if !ok {
@@ -41,8 +41,9 @@ func findGate(s series, fixedStart, fixedEnd bool) (gate, bool) {
 			g = two
 		}
 	}
-	if g.fit.companion == nil {
-		g.addCompanion(s)
+	g.chooseModel(s, model)
+	if !fixedStart {
+		g.extendBack(s)
 	}
 	g.refit(s, fine)
 	return g, true
@@ -202,12 +203,21 @@ func (g *gate) growForward(s series, fixedEnd bool) {
 	}
 }
 
-// refit fits the window of the gate, from the last fit, to tolerance.
+// refit fits the window of the gate, from the last fit and with its model, to
+// tolerance.
 func (g *gate) refit(s series, tolerance float64) {
-	f := &g.fit
-	if next, ok := fitSum(s.slice(g.first, g.last), pole{f.a, f.w}, f.companionPole(), tolerance); ok {
+	if next, ok := refit(s.slice(g.first, g.last), &g.fit, 0, tolerance); ok {
 		g.fit = next
 	}
+}
+
+// refit fits window with the model of f, started at its parameters; the window
+// begins shift intervals after that of f.
+func refit(window series, f *ringFit, shift, tolerance float64) (ringFit, bool) {
+	if f.bend != nil {
+		return refitBent(window, f, shift, tolerance)
+	}
+	return fitSum(window, pole{f.a, f.w}, f.companionPole(), tolerance)
 }
 
 // breakIn walks from sample i towards to (not included) and returns the first

@@ -101,10 +101,9 @@ func noDecay(g *gate, d *Decay, v noise) (Finding, bool) {
 // samplesRinging is the number of samples that carry the ring: the square of its
 // energy over the sum of its fourth powers.
 func (f *ringFit) samplesRinging() float64 {
-	ring := term{f.a, f.w, f.p, f.q}
 	e2, e4 := 0.0, 0.0
 	for i := range min(f.s.len(), 256) {
-		v := sq(ring.at(float64(i)))
+		v := sq(f.ring(float64(i)))
 		e2 += v
 		e4 += v * v
 	}

@@ -1,29 +1,14 @@
 package decay
 
-import "math"
-
 // normal solves for the linear parameters and forms the normal equations of the
 // full problem from the inner products of the basis.
 func (p *poles) normal(g *gram) (normal, bool) {
-	where := p.linear()
-	lin := sym{n: len(where)}
-	rhs := make([]float64, len(where))
-	for i, a := range where {
-		rhs[i] = g.b[a]
-		for j, b := range where[:i+1] {
-			lin.set(i, j, g.g.At(a, b))
-		}
-	}
-	beta, ok := solveSym(&lin, rhs)
+	linear := p.linear()
+	out, ok := g.project(linear, p.yy)
 	if !ok {
-		return normal{}, false
+		return out, false
 	}
-	out := normal{beta: beta, rss: p.yy}
-	for i := range beta {
-		out.rss -= beta[i] * rhs[i]
-	}
-	out.rss = math.Max(out.rss, 0)
-	p.project(&out, g, p.columns(beta), where)
+	out.fill(g, p.columns(out.beta), linear)
 	return out, true
 }
 
@@ -37,13 +22,6 @@ func (p *poles) linear() []int {
 		out = append(out, p.slot(p.rings+l))
 	}
 	return out
-}
-
-// column is one column of the Jacobian as a combination of at most two functions
-// of the basis.
-type column struct {
-	at [2]int
-	x  [2]float64
 }
 
 // columns of the Jacobian, nonlinear parameters first. With y = p C + q S:
@@ -64,29 +42,4 @@ func (p *poles) columns(beta []float64) []column {
 		out = append(out, column{[2]int{at, at}, [2]float64{1, 0}})
 	}
 	return out
-}
-
-// project fills J'J and J'r.
-func (p *poles) project(out *normal, g *gram, cols []column, where []int) {
-	out.jtj.n = len(cols)
-	out.jtr = make([]float64, len(cols))
-	var left [parametersMost]float64 // basis' r
-	for i := range g.g.n {
-		left[i] = g.b[i]
-		for j, at := range where {
-			left[i] -= g.g.At(i, at) * out.beta[j]
-		}
-	}
-	for i, c := range cols {
-		out.jtr[i] = c.x[0]*left[c.at[0]] + c.x[1]*left[c.at[1]]
-		for j, d := range cols[:i+1] {
-			sum := 0.0
-			for a := range 2 {
-				for b := range 2 {
-					sum += c.x[a] * d.x[b] * g.g.At(c.at[a], d.at[b])
-				}
-			}
-			out.jtj.set(i, j, sum)
-		}
-	}
 }

@@ -60,7 +60,7 @@ func (p *poles) at(theta []float64) (normal, bool) {
 	if p.s.uniform() {
 		g = p.uniformGram(list)
 	} else {
-		g = p.directGram(list)
+		g.accumulate(p.s, p.ref, p.slot(len(list)), func(t float64, f *[parametersMost]float64) { p.basis(list, t, f) })
 	}
 	return p.normal(&g)
 }
@@ -92,12 +92,8 @@ func (p *poles) valid(theta []float64) bool {
 	return true
 }
 
-// gram holds inner products of the basis: the constant; for each ring C, S, nC,
-// nS; for each fall E, nE; in this order. C = exp(-an) cos wn, S = exp(-an) sin wn.
-type gram struct {
-	g sym
-	b [parametersMost]float64 // with y
-}
+// The basis of [gram] holds the constant; for each ring C, S, nC, nS; for each
+// fall E, nE; in this order, with C = exp(-an) cos wn and S = exp(-an) sin wn.
 
 // slot returns where the functions of pole k begin in the basis.
 func (p *poles) slot(k int) int {
@@ -197,32 +193,6 @@ func (p *poles) index(k, power int, im bool) (int, bool) {
 	default:
 		return p.slot(k) + power, !im
 	}
-}
-
-// directGram sums at the true time of every sample that is there.
-func (p *poles) directGram(list []pole) gram {
-	var g gram
-	g.g.n = p.slot(len(list))
-	var f [parametersMost]float64
-	f[0] = 1
-	for i, v := range p.s.y {
-		if math.IsNaN(v) {
-			continue
-		}
-		p.basis(list, p.s.position(i), &f)
-		for a := range g.g.n {
-			g.b[a] += f[a] * (v - p.ref)
-			for b := range a + 1 {
-				g.g.v[a*parametersMost+b] += f[a] * f[b]
-			}
-		}
-	}
-	for a := range g.g.n {
-		for b := range a {
-			g.g.v[b*parametersMost+a] = g.g.v[a*parametersMost+b]
-		}
-	}
-	return g
 }
 
 // basis evaluates the basis at time t, in intervals.

@@ -13,6 +13,9 @@ type series struct {
 	dt    float64   // mean interval, s
 	times []float64 // true times, s; nil when uniform
 	gaps  bool      // whether y holds a NaN
+	// stride, if not 0, is the distance of neighbours in intervals: the series was
+	// thinned.
+	stride int
 }
 
 func newSeries(ch *capture.Channel) series {
@@ -29,7 +32,7 @@ func newSeries(ch *capture.Channel) series {
 func (s series) len() int { return len(s.y) }
 
 // uniform reports whether every sample is there, at its place.
-func (s series) uniform() bool { return s.times == nil && !s.gaps }
+func (s series) uniform() bool { return s.times == nil && !s.gaps && s.stride == 0 }
 
 // slice returns samples first to last-1.
 func (s series) slice(first, last int) series {
@@ -55,7 +58,27 @@ func (s series) position(i int) float64 {
 	if s.times != nil {
 		return (s.times[i] - s.times[0]) / s.dt
 	}
+	if s.stride > 0 {
+		return float64(i * s.stride)
+	}
 	return float64(i)
+}
+
+// thinned keeps every m-th sample so that at most n are left: enough to judge a
+// model by, at the true times of the samples.
+func (s series) thinned(n int) series {
+	m := (s.len() + n - 1) / n
+	if m <= 1 {
+		return s
+	}
+	out := series{t0: s.t0, dt: s.dt, gaps: s.gaps, stride: m}
+	for i := 0; i < s.len(); i += m {
+		out.y = append(out.y, s.y[i])
+		if s.times != nil {
+			out.times = append(out.times, s.times[i])
+		}
+	}
+	return out
 }
 
 // count returns the number of samples that are there.

@@ -1,0 +1,131 @@
+package decay
+
+import (
+	"math"
+	"slices"
+)
+
+const (
+	choiceSamples = 1 << 15 // samples that a model is chosen on
+	// evidence is what a richer model must win by, in units of chi-squared beyond
+	// the Bayesian information criterion (Schwarz 1978, from memory). Kass and
+	// Raftery (1995, from memory) call ten decisive; converters and amplifiers are
+	// no white Gaussian noise, hence the margin.
+	evidence = 40
+	// unresolved is charged to two rings closer to each other than their widths:
+	// they describe any departure from one exponential, so that another law goes first.
+	unresolved = 200
+)
+
+// chooseModel decides by evidence whether the decay is one ring about a constant,
+// a ring beside a companion, or a ring whose loss depends on its amplitude. model
+// forces the answer; "" leaves it to the data.
+func (g *gate) chooseModel(s series, model Model) {
+	window := s.slice(g.first, g.last).thinned(choiceSamples)
+	plain, ok := fitRing(window, g.fit.a, g.fit.w, coarse)
+	if !ok || plain.a <= 0 {
+		return
+	}
+	candidates := g.candidates(window, &plain, model)
+	if len(candidates) == 0 {
+		return
+	}
+	best := cheapest(candidates)
+	if next, ok := refit(s.slice(g.first, g.last), &best, 0, coarse); ok {
+		g.fit = next
+	}
+}
+
+// candidates fits the models that come into question.
+func (g *gate) candidates(window series, plain *ringFit, model Model) []ringFit {
+	var out []ringFit
+	if model == "" || model == Exponential {
+		out = append(out, *plain)
+	}
+	if model == "" || model == TwoMode || model == Exponential {
+		for _, c := range companions(plain, g.fit.companionPole()) {
+			if model == "" || (c.companion.w > 0) == (model == TwoMode) {
+				out = append(out, c)
+			}
+		}
+	}
+	if model == "" || model == Amplitude {
+		for _, law := range []bendLaw{quadratic, cubic, constant} {
+			if f, ok := fitBent(window, law, plain.a, plain.w, coarse); ok {
+				out = append(out, f)
+			}
+		}
+	}
+	return slices.DeleteFunc(out, func(f ringFit) bool { return math.IsNaN(f.rss) })
+}
+
+// cheapest returns the candidate of least residual after the charge for its
+// parameters. The residual counts in units of the noise density at the ring of
+// what the best of them leaves.
+func cheapest(list []ringFit) ringFit {
+	least := slices.MinFunc(list, func(x, y ringFit) int { return compareFloat(x.rss, y.rss) })
+	v := noiseOf(least.residuals(least.s, 0), least.sigma())
+	density := sq(v.rms * v.factor(least.w))
+	charge := func(f *ringFit) float64 {
+		n := math.Log(float64(f.n))
+		c := f.rss/density + float64(f.normal.jtj.n)*n
+		if f.companion != nil || f.bend != nil {
+			c += evidence
+		}
+		if k := f.companion; k != nil && k.w > 0 && math.Abs(k.w-f.w) < math.Abs(k.a)+math.Abs(f.a) {
+			c += unresolved
+		}
+		return c
+	}
+	return slices.MinFunc(list, func(x, y ringFit) int { return compareFloat(charge(&x), charge(&y)) })
+}
+
+func compareFloat(x, y float64) int {
+	switch {
+	case x < y:
+		return -1
+	case x > y:
+		return 1
+	}
+	return 0
+}
+
+// extendBack carries the start of a decay of a richer model towards its true
+// beginning: one plain ring departs from its large early swings, so that the gate
+// found with it may begin too late.
+func (g *gate) extendBack(s series) {
+	if g.fit.bend == nil && g.fit.companion == nil {
+		return
+	}
+	step := max(1, int(g.fit.period()/8))
+	most := sigmaGrowth * g.fit.sigma()
+	for g.first > 0 {
+		to := max(0, g.first-step)
+		head := s.slice(to, g.first)
+		next, ok := refit(s.slice(to, g.last), &g.fit, -float64(g.first-to), coarse)
+		if !ok || next.a <= 0 || next.sigma() > most || !g.follows(&next, head) {
+			break
+		}
+		g.first, g.fit = to, next
+	}
+	g.cutBefore = g.first > 0
+}
+
+// follows reports whether the samples at the head of a window keep to its fit as
+// those of the rest do.
+func (g *gate) follows(f *ringFit, head series) bool {
+	limit := math.Hypot(headSigma*g.lateSigma(), headShare*f.size())
+	for _, r := range f.residuals(head, 0) {
+		if math.Abs(r) > limit {
+			return false
+		}
+	}
+	return true
+}
+
+const (
+	headSigma = 5    // noise,
+	headShare = 0.01 // and share of the amplitude, that the head of a decay may depart by
+	// sigmaGrowth bounds how much of a misfit the head may bring in.
+	sigmaGrowth = 1.15
+)
