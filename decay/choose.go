@@ -7,6 +7,7 @@ import (
 
 const (
 	choiceSamples = 1 << 15 // samples that a model is chosen on
+	suspicion     = 20      // chi-squared from which other models are tried
 	// evidence is what a richer model must win by, in units of chi-squared beyond
 	// the Bayesian information criterion (Schwarz 1978, from memory). Kass and
 	// Raftery (1995, from memory) call ten decisive; converters and amplifiers are
@@ -17,10 +18,17 @@ const (
 	unresolved = 200
 )
 
+// open is the model of a decay that one ring does not account for: which one
+// does is decided by evidence.
+const open Model = "open"
+
 // chooseModel decides by evidence whether the decay is one ring about a constant,
 // a ring beside a companion, or a ring whose loss depends on its amplitude. model
-// forces the answer; "" leaves it to the data.
+// forces the answer; "" keeps the one ring that accounts for its samples.
 func (g *gate) chooseModel(s series, model Model) {
+	if model == "" {
+		return
+	}
 	window := s.slice(g.first, g.last).thinned(choiceSamples)
 	plain, ok := fitRing(window, g.fit.a, g.fit.w, coarse)
 	if !ok || plain.a <= 0 {
@@ -36,20 +44,77 @@ func (g *gate) chooseModel(s series, model Model) {
 	}
 }
 
+// misfits is a quick look whether a second component or an amplitude law could
+// explain more of the gate's samples than noise allows, or whether the gate holds
+// no decay at all. It takes a pass or two where fitting the models takes dozens.
+func (g *gate) misfits(s series) bool {
+	window := s.slice(g.first, g.last).thinned(choiceSamples)
+	f, ok := fitRing(window, g.fit.a, g.fit.w, coarse)
+	if !ok || f.a <= 0 {
+		return true
+	}
+	r := f.residuals(window, 0)
+	v := noiseOf(r, f.sigma())
+	density := sq(v.rms * v.factor(f.w))
+	if energyGain(&f, v) < energyNeeded(f.n) {
+		return true
+	}
+	return lineGain(r) > suspicion || bendGain(&f)/density > suspicion || fallGain(&f)/sq(v.rms*v.factor(0)) > suspicion
+}
+
+// lineGain is what the strongest line of the residual explains beyond chance, in
+// whole, half and quarter windows.
+func lineGain(r []float64) float64 {
+	y := filled(slices.Clone(r))
+	most := 0.0
+	for n := len(y); n >= len(y)/4 && n >= windowLeast; n /= 2 {
+		for _, s := range spectral(y[:min(n, coreMost)]) {
+			most = math.Max(most, s.gain-2*math.Log(float64(n)))
+		}
+	}
+	return most
+}
+
+// bendGain is the drop of the residual that the score of the quadratic law
+// promises: one Gauss-Newton step from no dependence on the amplitude.
+func bendGain(f *ringFit) float64 {
+	n, ok := newBent(f.s, quadratic).at([]float64{f.a, f.w, 1e-6 * f.a, 0})
+	if !ok {
+		return 0
+	}
+	_, gain, ok := reducedStep(&n, 4, 0)
+	if !ok {
+		return 0
+	}
+	return gain
+}
+
+// fallGain is what a plain exponential explains beside the ring.
+func fallGain(f *ringFit) float64 {
+	p := newPoles(f.s, 1, 1)
+	most := 0.0
+	for _, u := range []float64{0.7, 3, 10} {
+		if n, ok := p.at([]float64{f.a, f.w, u / p.length}); ok {
+			most = math.Max(most, f.rss-n.rss)
+		}
+	}
+	return most
+}
+
 // candidates fits the models that come into question.
 func (g *gate) candidates(window series, plain *ringFit, model Model) []ringFit {
 	var out []ringFit
-	if model == "" || model == Exponential {
+	if model == open || model == Exponential {
 		out = append(out, *plain)
 	}
-	if model == "" || model == TwoMode || model == Exponential {
+	if model == open || model == TwoMode || model == Exponential {
 		for _, c := range companions(plain, g.fit.companionPole()) {
-			if model == "" || (c.companion.w > 0) == (model == TwoMode) {
+			if model == open || (c.companion.w > 0) == (model == TwoMode) {
 				out = append(out, c)
 			}
 		}
 	}
-	if model == "" || model == Amplitude {
+	if model == open || model == Amplitude {
 		for _, law := range []bendLaw{quadratic, cubic, constant} {
 			if f, ok := fitBent(window, law, plain.a, plain.w, coarse); ok {
 				out = append(out, f)

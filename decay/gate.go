@@ -1,6 +1,7 @@
 package decay
 
 import (
+	"cmp"
 	"math"
 	"sort"
 )
@@ -24,9 +25,9 @@ const (
 
 // findGate finds the free decay in s: where it begins, after the edge that
 // shocked the circuit, and where to stop. The first fit grows from the best seed
-// to both sides as long as the samples follow it. Where a companion stands out
-// beside the ring the same is done with the companion taken off, and the
-// likelier of the two accounts is kept.
+// to both sides as long as the samples follow it. Where one ring does not account
+// for its samples the same is done with a companion taken off, the likelier of
+// the two accounts is kept, and other models are tried.
 func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 	p := newPyramid(s)
 	first, ok := firstFit(s, p, fixedStart)
@@ -35,11 +36,14 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 	}
 	g := first
 	g.settle(s, p, fixedStart, fixedEnd)
-	if two, ok := withCompanion(s, &first); ok {
-		two.settleBoth(s, fixedStart, fixedEnd)
-		if two.cost(s) < g.cost(s)-companionMargin {
-			g = two
+	if g.misfits(s) {
+		if two, ok := withCompanion(s, &first); ok {
+			two.settleBoth(s, fixedStart, fixedEnd)
+			if two.cost(s) < g.cost(s)-companionMargin {
+				g = two
+			}
 		}
+		model = cmp.Or(model, open)
 	}
 	g.chooseModel(s, model)
 	if !fixedStart {

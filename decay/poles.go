@@ -129,7 +129,7 @@ const parallelFrom = 1 << 16
 
 // projectAll returns sum y z^n and sum y n z^n over all of y.
 func projectAll(y []float64, z pole, ref float64) [2]complex128 {
-	t := newPowers(z)
+	t := newPowers(z, len(y))
 	if len(y) < parallelFrom {
 		return t.project(y, 0, len(y), ref)
 	}

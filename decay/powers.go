@@ -11,10 +11,12 @@ type powers struct {
 // blockLength is the length of the table.
 const blockLength = 128
 
-func newPowers(z pole) *powers {
+// newPowers fills the table as far as n samples need it.
+func newPowers(z pole, n int) *powers {
 	t := &powers{z: z}
-	powerTable(z.at(1), &t.re, &t.im)
-	for m := range blockLength {
+	n = min(n, blockLength)
+	powerTable(z.at(1), &t.re, &t.im, n)
+	for m := range n {
 		t.mre[m], t.mim[m] = float64(m)*t.re[m], float64(m)*t.im[m]
 	}
 	return t
@@ -22,10 +24,10 @@ func newPowers(z pole) *powers {
 
 // powerTable fills z^m by halving, which keeps the error at a few units in the
 // last place.
-func powerTable(z complex128, re, im *[blockLength]float64) {
+func powerTable(z complex128, re, im *[blockLength]float64, n int) {
 	re[0], im[0] = 1, 0
 	re[1], im[1] = real(z), imag(z)
-	for m := 2; m < blockLength; m++ {
+	for m := 2; m < n; m++ {
 		h, k := m/2, m-m/2
 		re[m] = re[h]*re[k] - im[h]*im[k]
 		im[m] = re[h]*im[k] + im[h]*re[k]
@@ -63,7 +65,7 @@ func (t *powers) block(y []float64, ref float64) [2]complex128 {
 // near one.
 func geometric(z pole, count int) (sum [3]complex128) {
 	var re, im [blockLength]float64
-	powerTable(z.at(1), &re, &im)
+	powerTable(z.at(1), &re, &im, min(count, blockLength))
 	full := partial(&re, &im, min(blockLength, count))
 	for at := 0; at < count; at += blockLength {
 		b := full

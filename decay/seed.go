@@ -128,8 +128,8 @@ func damped(y []float64) []seed {
 		return nil
 	}
 	best := seed{gain: math.Inf(-1)}
-	for _, cycles := range []float64{0.5, 1, 2, 4} {
-		for _, u := range []float64{2, 4, 8} {
+	for _, cycles := range []float64{0.5, 1.2, 3} {
+		for _, u := range []float64{2.5, 6} {
 			a, w := u/n, 2*math.Pi*cycles/n
 			e, ok := r.at([]float64{a, w})
 			if !ok {
