@@ -36,13 +36,17 @@ func design(h *head, opt Options) (*layoutDesign, *Error) {
 
 // readBeside reads metadata that stand in columns beside the first samples.
 func (d *layoutDesign) readBeside() {
+	var beside []cell
 	d.head.eachRow(func(l line, cells []cell) {
-		for i := range cells {
-			if i < len(d.head.kinds) && d.head.kinds[i].numeric() {
-				cells[i] = cell{}
+		beside = append(beside[:0], cells...)
+		for i, k := range d.head.kinds[:min(len(cells), len(d.head.kinds))] {
+			if k.numeric() {
+				beside[i] = cell{}
 			}
 		}
-		d.preamble.readLine(l.number, cells)
+		if !allBlank(beside) {
+			d.preamble.readLine(l.number, beside)
+		}
 	})
 }
 

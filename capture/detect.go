@@ -20,7 +20,7 @@ import (
 const (
 	headSize   = 256 << 10 // bytes looked at to find the layout
 	blockLines = 64        // lines of the block that decides the dialect
-	roleRows   = 512       // rows looked at to decide roles
+	roleRows   = 256       // rows looked at to decide roles
 )
 
 // A line is one line of the head, without its line end.
@@ -37,7 +37,8 @@ type head struct {
 	term  byte // the byte that ends a line
 	lines []line
 	shape
-	first int // index in lines of the first row of samples
+	first  int   // index in lines of the first row of samples
+	sample []row // the first rows of samples
 }
 
 // A shape is the dialect of a block of lines and the kind of each column.
@@ -47,6 +48,7 @@ type shape struct {
 	score float64 // numeric cells explained, less half of those that are not
 	rows  int
 	full  []int // rows with something in the column
+	now   []kind
 }
 
 // newHead cuts the head into lines and finds the block of samples.
@@ -71,6 +73,7 @@ func newHead(text []byte, whole bool) (*head, *Error) {
 	for n := len(h.split(h.lines[h.first].text, nil)); len(h.kinds) < n; {
 		h.kinds = append(h.kinds, kindBlank)
 	}
+	h.takeSample()
 	return h, nil
 }
 
@@ -94,7 +97,7 @@ func (h *head) noData() *Error {
 // splitLines cuts text at term; a last line without term counts when the text
 // is whole.
 func splitLines(text []byte, term byte, whole bool) []line {
-	var lines []line
+	lines := make([]line, 0, bytes.Count(text, []byte{term})+1)
 	for at := 0; at < len(text); {
 		n := bytes.IndexByte(text[at:], term)
 		if n < 0 {
@@ -121,12 +124,12 @@ func findShape(lines []line) shape {
 	return best
 }
 
-// block finds the best block of like lines near the end of lines: a footer or
-// a last line that was cut off must not hide it.
+// block finds the best block of like lines near the end of lines: a footer of
+// up to blockLines or a last line that was cut off must not hide it.
 func (d dialect) block(lines []line) shape {
 	var best shape
 	tries := 0
-	for last := len(lines) - 1; last >= 0 && tries < 8; last-- {
+	for last := len(lines) - 1; last >= max(0, len(lines)-blockLines) && tries < 8; last-- {
 		s := d.blockUpTo(lines[:last+1])
 		if s.rows == 0 {
 			continue
@@ -182,16 +185,17 @@ func allBlank(cells []cell) bool {
 
 // admit takes a line into the block when its cells are like the block's.
 func (s *shape) admit(cells []cell) bool {
-	kinds := make([]kind, len(cells))
+	kinds := s.now[:0]
 	numeric, text := 0, 0
-	for i, c := range cells {
-		kinds[i] = s.kindOf(c)
-		if kinds[i].numeric() {
+	for _, c := range cells {
+		k := s.kindOf(c)
+		if kinds = append(kinds, k); k.numeric() {
 			numeric++
-		} else if kinds[i] == kindText {
+		} else if k == kindText {
 			text++
 		}
 	}
+	s.now = kinds
 	if numeric == 0 || s.delim == ' ' && text > numeric {
 		return false
 	}
@@ -284,18 +288,30 @@ func (h *head) firstRow() int {
 // preambleLines are the lines above the first row.
 func (h *head) preambleLines() []line { return h.lines[:h.first] }
 
-// eachRow calls f with the cells of the first rows of samples, until it has seen
-// roleRows of them; cells are valid during the call only.
+// eachRow calls f with the cells of the first rows of samples.
 func (h *head) eachRow(f func(l line, cells []cell)) {
-	var cells []cell
-	seen := 0
+	for _, r := range h.sample {
+		f(r.line, r.cells)
+	}
+}
+
+// A row is a line of samples, cut into cells.
+type row struct {
+	line  line
+	cells []cell
+}
+
+// takeSample cuts the first rows of samples, up to roleRows of them.
+func (h *head) takeSample() {
+	var flat []cell
 	for _, l := range h.lines[h.first:] {
-		cells = h.split(l.text, cells[:0])
+		from := len(flat)
+		flat = h.split(l.text, flat)
+		cells := flat[from:len(flat):len(flat)]
 		if allBlank(cells) || !h.fits(cells) {
 			continue
 		}
-		f(l, cells)
-		if seen++; seen == roleRows {
+		if h.sample = append(h.sample, row{l, cells}); len(h.sample) == roleRows {
 			return
 		}
 	}

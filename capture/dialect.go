@@ -200,7 +200,7 @@ func properGroups(groups [][]byte) bool {
 
 // quantity reads a cell as a number with a unit attached, 4.000us or 10 mV.
 func (d dialect) quantity(c cell) (decimal, unit, []byte, bool) {
-	n, end := scanDecimal(append(c.text[:len(c.text):len(c.text)], 0), 0, d.mark)
+	n, end := scanCell(c.text, d.mark)
 	if end < 0 || end == len(c.text) {
 		return n, unit{}, nil, false
 	}

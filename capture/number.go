@@ -174,7 +174,8 @@ func appendDigits(s, text []byte, mark byte, shift int) ([]byte, int) {
 		case c == mark:
 			after = true
 		case c|0x20 == 'e':
-			x, _ := scanExponent(append(text[i+1:len(text):len(text)], 0), 0)
+			var room [64]byte
+			x, _ := scanExponent(append(append(room[:0], text[i+1:]...), 0), 0)
 			return s, e + x - fraction
 		case c-'0' <= 9:
 			s = append(s, c)
@@ -188,9 +189,14 @@ func appendDigits(s, text []byte, mark byte, shift int) ([]byte, int) {
 
 // parseDecimal reads a whole cell as one number.
 func parseDecimal(cell []byte, mark byte) (decimal, bool) {
-	b := append(cell[:len(cell):len(cell)], 0)
-	d, end := scanDecimal(b, 0, mark)
+	d, end := scanCell(cell, mark)
 	return d, end == len(cell)
+}
+
+// scanCell is scanDecimal for a cell by itself.
+func scanCell(cell []byte, mark byte) (decimal, int) {
+	var room [64]byte
+	return scanDecimal(append(append(room[:0], cell...), 0), 0, mark)
 }
 
 // integer is the signed mantissa; ok is false when it does not fit.

@@ -44,6 +44,7 @@ type chunk struct {
 
 	dst     [][]float64 // for each column of samples, room for as many as lines
 	now     []instant   // the stamps of the row being read
+	cells   []cell      // of the row being read by slowRow
 	rows    int
 	missing []int // for each column of samples
 	spans   []span
@@ -134,6 +135,10 @@ func (p *plan) fastRow(c *chunk, i int) int {
 			c.now[s.to] = t.instant(p.zero)
 			i = end
 		default:
+			quoted := b[i] == '"'
+			if quoted {
+				i++
+			}
 			d, end := scanDecimal(b, i, p.mark)
 			if end < 0 {
 				return -1
@@ -147,7 +152,12 @@ func (p *plan) fastRow(c *chunk, i int) int {
 					return -1
 				}
 			}
-			i = end
+			if i = end; quoted {
+				if b[i] != '"' {
+					return -1
+				}
+				i++
+			}
 		}
 		if k < p.last {
 			if i = p.separator(b, i); i < 0 {
@@ -199,7 +209,8 @@ func (p *plan) lineEnd(b []byte, i int) int {
 // and comments are passed over; words at the end of the text are a footer.
 func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 	text = bytes.TrimRight(text, "\r\x1a")
-	cells := p.split(text, nil)
+	c.cells = p.split(text, c.cells[:0])
+	cells := c.cells
 	if allBlank(cells) || isComment(text) && p.kindOf(cells[0]) == kindText {
 		return false
 	}

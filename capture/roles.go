@@ -57,10 +57,11 @@ func (c *column) look(d dialect, x cell) {
 	c.values = append(c.values, v)
 }
 
+// unitName writes a unit with its prefix.
 func unitName(u unit) string {
-	for prefix, exp := range prefixes {
-		if exp == u.exp && len(prefix) == 1 && u.base != "" && prefix != "K" && prefix != "µ" && prefix != "μ" {
-			return prefix + u.base
+	for _, p := range prefixes {
+		if p.exp == u.exp && u.base != "" {
+			return p.text + u.base
 		}
 	}
 	return u.base

@@ -11,8 +11,13 @@ type unit struct {
 	exp  int
 }
 
-var prefixes = map[string]int{"": 0, "p": -12, "n": -9, "u": -6, "µ": -6, "μ": -6, "m": -3, "k": 3, "K": 3, "M": 6, "G": 9,
-	"pico": -12, "nano": -9, "micro": -6, "milli": -3, "kilo": 3, "mega": 6, "giga": 9}
+var prefixes = []struct {
+	text string
+	exp  int
+}{
+	{"p", -12}, {"n", -9}, {"u", -6}, {"µ", -6}, {"μ", -6}, {"m", -3}, {"k", 3}, {"K", 3}, {"M", 6}, {"G", 9},
+	{"pico", -12}, {"nano", -9}, {"micro", -6}, {"milli", -3}, {"kilo", 3}, {"mega", 6}, {"giga", 9},
+}
 
 // baseUnits gives the SI symbol of what files write.
 var baseUnits = map[string]string{
@@ -31,8 +36,10 @@ var plainUnits = map[string]string{
 
 // parseUnit reads a unit as files write it: V, mV, (mV), [µs], Volt, uS, MSa/s.
 func parseUnit(text string) (unit, bool) {
-	text = strings.Trim(strings.TrimSpace(text), "()[]")
-	text = strings.TrimSpace(text)
+	text = strings.TrimSpace(strings.Trim(strings.TrimSpace(text), "()[]"))
+	if text == "" || len(text) > 20 {
+		return unit{}, false
+	}
 	lower := strings.ToLower(text)
 	if base := plainUnits[lower]; base != "" {
 		return unit{base: base}, true
@@ -40,16 +47,16 @@ func parseUnit(text string) (unit, bool) {
 	if base := baseUnits[lower]; base != "" {
 		return unit{base: base}, true
 	}
-	for prefix, exp := range prefixes {
-		rest, ok := strings.CutPrefix(text, prefix)
-		if !ok || prefix == "" {
+	for _, p := range prefixes {
+		rest, ok := strings.CutPrefix(text, p.text)
+		if !ok {
 			continue
 		}
-		if base := baseUnits[strings.ToLower(rest)]; base != "" && (len(prefix) < 4 || len(rest) > 2) {
-			if prefix == "M" && base == "s" { // no clock counts in megaseconds: milliseconds in capitals
-				exp = -3
+		if base := baseUnits[strings.ToLower(rest)]; base != "" && (len(p.text) < 4 || len(rest) > 2) {
+			if p.text == "M" && base == "s" { // no clock counts in megaseconds: milliseconds in capitals
+				return unit{base, -3}, true
 			}
-			return unit{base, exp}, true
+			return unit{base, p.exp}, true
 		}
 	}
 	return unit{}, false
