@@ -40,7 +40,7 @@ func fitFlags() []cli.Flag {
 }
 
 var (
-	models    = []string{"auto", string(decay.Exponential)}
+	models    = []string{"auto", string(decay.Exponential), string(decay.Amplitude), string(decay.TwoMode)}
 	timeUnits = []string{"s", "ms", "us", "ns", "ps"}
 )
 

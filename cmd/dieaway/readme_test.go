@@ -6,6 +6,7 @@ import (
 	"os"
 	"os/exec"
 	"path/filepath"
+	"regexp"
 	"strings"
 	"testing"
 
@@ -19,14 +20,10 @@ var update = flag.Bool("update", false, "write what the commands print into READ
 // TestReadme runs every command of README.md, in the order it shows them, and
 // compares what is printed with what README.md says is.
 func TestReadme(t *testing.T) {
-	name := filepath.Join(root, "README.md")
-	shown, err := os.ReadFile(name)
-	if err != nil {
-		t.Fatal(err)
-	}
+	shown := readText(t, "README.md")
 	folder := exampleFolder(t)
 	n := 0
-	printed := refresh(string(shown), func(command string, silent bool) string {
+	printed := refresh(shown, func(command string, silent bool) string {
 		n++
 		return runExample(t, folder, command, silent)
 	})
@@ -34,8 +31,8 @@ func TestReadme(t *testing.T) {
 		t.Errorf("found %d commands in README.md, expected the worked use", n)
 	}
 	if *update {
-		write(t, name, printed)
-	} else if diff := cmp.Diff(string(shown), printed); diff != "" {
+		write(t, filepath.Join(root, "README.md"), printed)
+	} else if diff := cmp.Diff(shown, printed); diff != "" {
 		t.Errorf("README.md shows something else than is printed; go test ./cmd/dieaway -run Readme -update mends it (-shown +printed):\n%s", diff)
 	}
 }
@@ -99,4 +96,46 @@ func runExample(t *testing.T, folder, command string, silent bool) string {
 		t.Errorf("%s: %v\n%s", command, err, printed)
 	}
 	return string(printed)
+}
+
+// TestReadmeExplainsFindings wants a row of README.md's table for every code that
+// the packages give.
+func TestReadmeExplainsFindings(t *testing.T) {
+	readme := readText(t, "README.md")
+	code := regexp.MustCompile(`(?m)^\t(\w+) +Code = "([a-z-]+)"`)
+	codes := code.FindAllStringSubmatch(readText(t, "capture/finding.go"), -1)
+	if len(codes) < 20 {
+		t.Fatalf("found %d codes in capture/finding.go", len(codes))
+	}
+	sources := packageText(t, "capture") + packageText(t, "decay")
+	for _, c := range codes {
+		used := regexp.MustCompile(`\b` + c[1] + `,`).MatchString(sources) // as an argument or a field
+		if used && !strings.Contains(readme, "\n| `"+c[2]+"` |") {
+			t.Errorf("README.md does not explain the finding %s", c[2])
+		}
+	}
+}
+
+// packageText returns the sources of a package without its tests.
+func packageText(t *testing.T, folder string) string {
+	names, err := filepath.Glob(filepath.Join(root, folder, "*.go"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	var text strings.Builder
+	for _, name := range names {
+		if !strings.HasSuffix(name, "_test.go") {
+			text.WriteString(readText(t, filepath.Join(folder, filepath.Base(name))))
+		}
+	}
+	return text.String()
+}
+
+func readText(t *testing.T, name string) string {
+	t.Helper()
+	text, err := os.ReadFile(filepath.Join(root, name))
+	if err != nil {
+		t.Fatal(err)
+	}
+	return string(text)
 }
