@@ -116,7 +116,7 @@ func (d *layoutDesign) finishRoles(t *table) {
 		switch v := values(i); {
 		case t.missing[d.plan.steps[i].to] == t.rows:
 			drop(i, RoleBlank, "not one sample in it can be read")
-		case bits(v) && d.columns[i].whole:
+		case zerosAndOnes(v) && d.columns[i].whole:
 			drop(i, RoleLogic, "it holds only 0 and 1")
 		default:
 			for _, j := range channels[:k] {
@@ -131,8 +131,8 @@ func (d *layoutDesign) finishRoles(t *table) {
 	d.joinPeaks(channels, values)
 }
 
-// bits reports a column of both 0 and 1 and nothing else.
-func bits(v []float64) bool {
+// zerosAndOnes reports a column of both 0 and 1 and nothing else.
+func zerosAndOnes(v []float64) bool {
 	zero, one := false, false
 	for _, x := range v {
 		zero, one = zero || x == 0, one || x == 1

@@ -3,6 +3,7 @@ package capture
 import (
 	"encoding/binary"
 	"math"
+	"math/bits"
 	"strconv"
 )
 
@@ -129,25 +130,38 @@ func eightValue(w uint64) uint64 {
 
 // float is the float64 nearest to d * 10^shift, correctly rounded; text is the
 // number as printed. Beyond the range it is ±Inf.
-//
-// A mantissa below 2^53 and a power of ten up to 10^22 are both exact as
-// float64, so that one multiplication or division rounds once (Clinger 1990).
 func (d decimal) float(shift int, text []byte, mark byte) float64 {
-	e := d.exp + shift
-	if d.mant < 1<<53 && !d.long && -22 <= e && e <= 22 {
-		f := float64(d.mant)
-		if e < 0 {
-			f /= exactPow10[-e]
-		} else {
-			f *= exactPow10[e]
-		}
-		return math.Float64frombits(math.Float64bits(f) | d.sign<<63)
+	if f, exact := d.quick(shift); exact {
+		return f
 	}
-	return d.slowFloat(e, text, mark)
+	return d.slowFloat(d.exp+shift, text, mark)
 }
 
-// slowFloat leaves the rounding to strconv.
+// quick is float where one operation gives it: a mantissa below 2^53 and a
+// power of ten up to 10^22 are both exact as float64, so that their product or
+// quotient is rounded once (Clinger 1990).
+func (d decimal) quick(shift int) (f float64, exact bool) {
+	e := d.exp + shift
+	if d.mant >= 1<<53 || d.long {
+		return 0, false
+	}
+	f = float64(int64(d.mant))
+	if uint(-e) < uint(len(exactPow10)) {
+		f /= exactPow10[-e]
+	} else if uint(e) < uint(len(exactPow10)) {
+		f *= exactPow10[e]
+	} else {
+		return 0, false
+	}
+	return math.Float64frombits(math.Float64bits(f) | d.sign<<63), true
+}
+
+// slowFloat is float for a mantissa of up to 64 bits and any power of ten, or
+// for more digits than 64 bits hold: then strconv rounds.
 func (d decimal) slowFloat(e int, text []byte, mark byte) float64 {
+	if !d.long && -len(pow5) < e && e < len(pow5) {
+		return d.ratio(e)
+	}
 	var room [64]byte
 	s := room[:0]
 	if d.sign != 0 {
@@ -162,6 +176,48 @@ func (d decimal) slowFloat(e int, text []byte, mark byte) float64 {
 	s = strconv.AppendInt(s, int64(e), 10)
 	f, _ := strconv.ParseFloat(string(s), 64) // the only error left is of range: ±Inf
 	return f
+}
+
+// pow5 are the powers of five that fit in 63 bits.
+var pow5 = func() (p [28]uint64) {
+	p[0] = 1
+	for i := range p[1:] {
+		p[i+1] = 5 * p[i]
+	}
+	return p
+}()
+
+// ratio is mant * 10^e for |e| < 28, correctly rounded: 10^e = 5^e * 2^e, and
+// the product or quotient of mant and the power of five is taken to 62 bits or
+// more in whole numbers. Bit 0, far below the last bit of a float64, collects
+// whether anything was cut off, so that the conversion rounds once.
+func (d decimal) ratio(e int) float64 {
+	if d.mant == 0 {
+		return math.Float64frombits(d.sign << 63)
+	}
+	var q uint64
+	var shift int // the result is q * 2^shift
+	lead := bits.LeadingZeros64(d.mant)
+	m := d.mant << lead
+	p := pow5[max(e, -e)]
+	by := bits.LeadingZeros64(p)
+	p <<= by
+	if e >= 0 {
+		hi, lo := bits.Mul64(m, p)
+		q, shift = hi, 64+e-lead-by
+		if lo != 0 {
+			q |= 1
+		}
+	} else {
+		var rest uint64
+		q, rest = bits.Div64(m>>1, m<<63, p)
+		shift = by - 63 + e - lead
+		if rest != 0 {
+			q |= 1
+		}
+	}
+	f := float64(q) * math.Float64frombits(uint64(1023+shift)<<52)
+	return math.Float64frombits(math.Float64bits(f) | d.sign<<63)
 }
 
 // appendDigits appends the digits of a printed number without its mark, and
@@ -199,8 +255,7 @@ func scanCell(cell []byte, mark byte) (decimal, int) {
 	return scanDecimal(append(append(room[:0], cell...), 0), 0, mark)
 }
 
-// integer is the signed mantissa; ok is false when it does not fit.
-func (d decimal) integer() (m int64, ok bool) {
-	m = int64(d.mant)
-	return (m ^ -int64(d.sign)) + int64(d.sign), !d.long && m >= 0
+// integer is the mantissa with its sign, where it is less than 2^63.
+func (d decimal) integer() int64 {
+	return (int64(d.mant) ^ -int64(d.sign)) + int64(d.sign)
 }

@@ -96,8 +96,12 @@ func (p *plan) accept(c *chunk, line int) {
 		return
 	}
 	for k := range c.spans {
-		if s := &c.spans[k]; !s.add(&c.now[k]) {
-			c.err = backwards(line, c.now[k].seconds(), s.last)
+		s, t := &c.spans[k], &c.now[k]
+		if s.run.goesOn(t) && s.n == s.run.n {
+			s.run.n++
+			s.n++
+		} else if !s.add(t) {
+			c.err = backwards(line, t.seconds(), s.last)
 		}
 	}
 }
@@ -146,11 +150,13 @@ func (p *plan) fastRow(c *chunk, i int) int {
 			if s.op == opTime {
 				c.now[s.to] = d.instant(s.shift, b[i:end], p.mark)
 			} else {
-				v := d.float(s.shift, b[i:end], p.mark)
-				c.dst[s.to][c.rows] = v
-				if math.IsInf(v, 0) {
-					return -1
+				v, exact := d.quick(s.shift)
+				if !exact {
+					if v = d.float(s.shift, b[i:end], p.mark); math.IsInf(v, 0) {
+						return -1
+					}
 				}
+				c.dst[s.to][c.rows] = v
 			}
 			if i = end; quoted {
 				if b[i] != '"' {

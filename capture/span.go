@@ -38,7 +38,7 @@ type instant struct {
 
 // instant is the stamp printed as text, times 10^shift.
 func (d decimal) instant(shift int, text []byte, mark byte) instant {
-	if d.long {
+	if d.long || d.mant>>63 != 0 {
 		return instant{real: true, time: d.float(shift, text, mark), d: decimal{exp: d.exp + shift}}
 	}
 	d.exp += shift
@@ -71,18 +71,41 @@ func (s *span) begin(room []float64, rows int) {
 	*s = span{exp: math.MaxInt32, stamps: room[:0], rows: rows}
 }
 
+// goesOn takes a stamp that continues a progression of at least two.
+func (r *progression) goesOn(t *instant) bool {
+	m := t.d.integer()
+	if m-r.last != r.step || t.d.exp != r.exp || t.real || r.n < 2 {
+		return false
+	}
+	r.last = m
+	return true
+}
+
+// starts takes a stamp that can be the first or second of a progression.
+// Beyond 2^53 the stamps could not be written out exactly.
+func (r *progression) starts(t *instant) bool {
+	if r.n > 1 || t.real || t.d.mant >= 1<<53 {
+		return false
+	}
+	m := t.d.integer()
+	if r.n == 1 {
+		if r.step = m - r.last; r.step <= 0 || t.d.exp != r.exp {
+			return false
+		}
+	}
+	r.last, r.exp = m, t.d.exp
+	return true
+}
+
 // add takes the next stamp, and reports whether it is in order.
 func (s *span) add(t *instant) bool {
-	if s.n == s.run.n && s.follows(t) {
+	if s.n == s.run.n && s.run.starts(t) {
 		s.n++
 		s.run.n++
 		return true
 	}
-	if s.run.n > 0 && len(s.stamps) == 0 {
+	if len(s.stamps) == 0 {
 		s.writeOut()
-	}
-	if len(s.stamps) == 0 && cap(s.stamps) < s.rows {
-		s.stamps = make([]float64, 0, s.rows)
 	}
 	s.exp = min(s.exp, t.d.exp)
 	s.digits = max(s.digits, t.d.mant)
@@ -93,30 +116,6 @@ func (s *span) add(t *instant) bool {
 		return false
 	}
 	s.last = v
-	return true
-}
-
-// follows takes a stamp that goes on with the progression.
-func (s *span) follows(t *instant) bool {
-	r := &s.run
-	m, ok := t.d.integer()
-	if r.n > 1 {
-		if !ok || m-r.last != r.step || t.d.exp != r.exp {
-			return false
-		}
-		r.last = m
-		return true
-	}
-	// Beyond 2^53 the progression could not be written out exactly.
-	if ok = ok && !t.real && t.d.mant < 1<<53; !ok {
-		return false
-	}
-	if r.n == 1 {
-		if r.step = m - r.last; r.step <= 0 || t.d.exp != r.exp {
-			return false
-		}
-	}
-	r.last, r.exp = m, t.d.exp
 	return true
 }
 
@@ -138,8 +137,10 @@ func (s *span) writeOut() {
 	for i := range s.run.n {
 		s.stamps = append(s.stamps, s.run.value(i))
 	}
-	s.last = s.stamps[s.n-1]
-	s.noteDigits()
+	if s.n > 0 {
+		s.last = s.stamps[s.n-1]
+		s.noteDigits()
+	}
 }
 
 // noteDigits takes the print of the progression into account: the mantissas
