@@ -28,34 +28,151 @@ type Options struct {
 func Analyze(ch *capture.Channel, opt Options) *Result {
 	s := newSeries(ch)
 	first, last := limits(ch.Axis, opt)
-	if f, unfit := unfit(s, first, last); unfit {
-		return refused(nil, f)
+	if why, unfit := unfit(s, first, last); unfit {
+		return refused(nil, why)
 	}
-	// 1. Gate and fit: the free decay, from its true start to where it has died.
-	g, ok := findGate(s.slice(first, last), opt.From != nil, opt.To != nil, opt.Model)
-	if !ok {
-		if fallsOnly(s.slice(first, last)) {
-			return refused(nil, bareExponential())
-		}
-		return refused(nil, noRing())
+	a := &analysis{s: s.slice(first, last), unit: ch.Unit, opt: opt, step: stepOf(s.y)}
+	// 1. Gates: each free decay, from its true start to where it has died, and the
+	// model that accounts for it. Samples that are not the circuit's are left out.
+	a.gates()
+	if len(a.found) == 0 {
+		return a.notRinging(nil, noRing()).shifted(first)
 	}
-	g.first, g.last = g.first+first, g.last+first
-	// 2. Noise: what the fit leaves, its size and colour.
-	window := s.slice(g.first, g.last)
-	v := noiseOf(g.fit.residuals(window.slice(0, min(window.len(), noiseSamples)), 0), g.fit.sigma())
-	// 3. Covariance, and everything that follows from rate and frequency.
-	d := newDecay(s, g, v, ch.Unit, opt.TimebaseU)
-	// 4. Readings by crossings and peaks, which know nothing of the fit but what
+	// 2. Noise and covariance of every decay, and what follows from rate and frequency.
+	a.measure()
+	// 3. Readings by crossings and peaks, which know nothing of the fit but what
 	// else moves beside the ring.
-	readings := read(g.ringOnly(s), d.period(), v.rms*v.factor(g.fit.w))
-	// 5. Judgement: is it a decay at all, and can the numbers be trusted?
-	r := &Result{Model: d.model(), Decays: []*Decay{d}, Readings: readings}
-	if why, refuse := judge(s.slice(first, last), &g, d, v); refuse {
-		return refused(r, why)
+	g, d, v := &a.found[0], a.decays[0], a.noises[0]
+	r := &Result{Model: g.model(), Decays: a.decays}
+	r.Readings = read(g.ringOnly(a.s), d.period(), v.rms*v.factor(g.fit.w))
+	// 4. Judgement: is it a decay at all, and can the numbers be trusted?
+	if why, refuse := judge(a.s, g, d, v); refuse {
+		return a.notRinging(r, why).shifted(first)
 	}
-	r.Quantities = &d.Quantities
-	r.Findings = append(doubts(&g, d, v), compareReadings(d, r.Model, &readings)...)
-	return r.settle()
+	r.Quantities = a.combined()
+	r.Modes = a.modes()
+	r.Findings = slices.Concat(a.findings, doubts(g, d, v), compareReadings(d, r.Model, &r.Readings))
+	return r.shifted(first).settle()
+}
+
+// analysis is the work on one channel, step by step.
+type analysis struct {
+	s        series
+	unit     string
+	opt      Options
+	step     float64 // of the converter, 0 when there is none
+	found    []gate
+	decays   []*Decay
+	noises   []noise
+	findings []Finding
+}
+
+// gates finds the decays, and finds them anew without the samples that a limiter
+// cut off or that stand alone far off the first fit.
+func (a *analysis) gates() {
+	if rails := railed(a.s.y, a.step); len(rails) > 0 {
+		free := a.s.without(rails)
+		if found := findDecays(free, a.opt); len(found) > 0 {
+			if n, excess := found[0].beyond(a.s, rails); n > 0 && excess > math.Max(a.step, 2*found[0].fit.sigma()) {
+				a.s, a.found = free, found
+				a.findings = append(a.findings, clippedFinding(n, excess, found[0].fit.size()))
+			}
+		}
+	}
+	if len(a.found) == 0 {
+		a.found = findDecays(a.s, a.opt)
+	}
+	a.dropGlitches()
+	for i := range a.found {
+		if f, ok := a.found[i].coarseLevels(a.s, a.step); ok && i == 0 {
+			a.findings = append(a.findings, f)
+		}
+	}
+}
+
+func (a *analysis) dropGlitches() {
+	var list []int
+	for i := range a.found {
+		list = append(list, a.found[i].glitches(a.s)...)
+	}
+	if len(list) == 0 {
+		return
+	}
+	clean := a.s.without(list)
+	if found := findDecays(clean, a.opt); len(found) > 0 {
+		a.s, a.found = clean, found
+		a.findings = append(a.findings, glitchFinding(len(list)))
+	}
+}
+
+// measure puts every gate into physical quantities.
+func (a *analysis) measure() {
+	for i := range a.found {
+		g := &a.found[i]
+		window := a.s.slice(g.first, g.last)
+		v := noiseOf(g.fit.residuals(window.slice(0, min(window.len(), noiseSamples)), 0), g.fit.sigma())
+		a.noises = append(a.noises, v)
+		a.decays = append(a.decays, newDecay(a.s, g, v, a.unit, a.opt.TimebaseU))
+	}
+}
+
+// combined is the result to quote: of the only decay, or of all that are sound.
+func (a *analysis) combined() *Quantities {
+	var rates, omegas []float64
+	var covs []sym
+	for i := range a.found {
+		g := &a.found[i]
+		cov, ok := g.fit.covariance(a.noises[i])
+		if _, no := noDecay(g, a.decays[i], a.noises[i]); ok && !no {
+			rates, omegas, covs = append(rates, g.fit.a), append(omegas, g.fit.w), append(covs, cov)
+		}
+	}
+	if len(rates) < 2 {
+		return &a.decays[0].Quantities
+	}
+	c, ok := combine(rates, omegas, covs)
+	if !ok {
+		return &a.decays[0].Quantities
+	}
+	a.findings = append(a.findings, severalDecays(len(rates), &c)...)
+	cov := c.widened()
+	q := quantitiesOf(c.a, c.w, a.s.dt, &cov, a.opt.TimebaseU)
+	return &q
+}
+
+// modes lists both rings of a two-mode decay, stronger first.
+func (a *analysis) modes() []*Quantities {
+	g := &a.found[0]
+	if g.model() != TwoMode {
+		return nil
+	}
+	inv, ok := g.fit.normal.jtj.inverse()
+	if !ok {
+		return nil
+	}
+	c, v := g.fit.companion, a.noises[0]
+	cov := sym{n: 2}
+	for i := range 2 {
+		for j := range 2 {
+			cov.set(i, j, inv.At(2+i, 2+j)*sq(v.rms*v.factor(c.w)))
+		}
+	}
+	second := quantitiesOf(c.a, c.w, a.s.dt, &cov, a.opt.TimebaseU)
+	return []*Quantities{&a.decays[0].Quantities, &second}
+}
+
+// notRinging measures what does not ring but tells its damping all the same, and
+// refuses the rest.
+func (a *analysis) notRinging(r *Result, why Finding) *Result {
+	if why.Code == capture.Overdamped || fallsOnly(a.s) {
+		if d, findings := overdampedDecay(a.s, a.opt.TimebaseU); d != nil {
+			out := &Result{Model: Overdamped, Decays: []*Decay{d}, Readings: unread(), Quantities: &d.Quantities}
+			out.Findings = append(a.findings, findings...)
+			return out.settle()
+		}
+		why = bareExponential()
+	}
+	return refused(r, append(a.findings, why)...)
 }
 
 // AnalyzeCapture analyses the channel of c that rings: the only one, or the one
@@ -72,8 +189,7 @@ func AnalyzeCapture(c *capture.Capture, opt Options) (*capture.Channel, *Result)
 }
 
 // prominence ranks the channels of one capture: a measured decay before a refused
-// one, then the amplitude in units of the noise times the root of the samples
-// that carry it.
+// one, then by how well its rate is known.
 func (r *Result) prominence() float64 {
 	if r.Status == Refused || len(r.Decays) == 0 {
 		return -1
@@ -94,7 +210,7 @@ func limits(a *capture.Axis, opt Options) (first, last int) {
 }
 
 // newDecay puts the fit of a gate into physical quantities.
-func newDecay(s series, g gate, v noise, unit string, timebase float64) *Decay {
+func newDecay(s series, g *gate, v noise, unit string, timebase float64) *Decay {
 	f := &g.fit
 	d := &Decay{
 		First: g.first, Last: g.last, From: s.time(g.first), To: s.time(g.last - 1),
@@ -115,14 +231,35 @@ func newDecay(s series, g gate, v noise, unit string, timebase float64) *Decay {
 // period of the damped oscillation in s.
 func (d *Decay) period() float64 { return 1 / d.Quantities.DampedFrequency.Value }
 
+// model names the law that the decay was fitted with.
+func (g *gate) model() Model {
+	f := &g.fit
+	switch {
+	case f.bend != nil:
+		return Amplitude
+	case f.companion != nil && f.companion.w > 0 && !f.companion.steady(f.s.position(f.s.len()-1)):
+		return TwoMode
+	default:
+		return Exponential
+	}
+}
+
 // refused withholds the numbers of r, which may be nil, for the reasons given.
 func refused(r *Result, reasons ...Finding) *Result {
 	if r == nil {
 		r = &Result{Model: Exponential, Readings: unread()}
 	}
-	r.Quantities = nil
+	r.Quantities, r.Modes = nil, nil
 	r.Findings = append(r.Findings, reasons...)
 	return r.settle()
+}
+
+// shifted counts the samples of the decays from the start of the record.
+func (r *Result) shifted(first int) *Result {
+	for _, d := range r.Decays {
+		d.First, d.Last = d.First+first, d.Last+first
+	}
+	return r
 }
 
 var weight = map[capture.Severity]int{capture.Fault: 0, capture.Warning: 1, capture.Note: 2}
@@ -142,15 +279,4 @@ func (r *Result) settle() *Result {
 		}
 	}
 	return r
-}
-
-// model names the law that the decay was fitted with.
-func (d *Decay) model() Model {
-	if _, ok := d.law.(bentLaw); ok {
-		return Amplitude
-	}
-	if l, ok := d.law.(exponentialLaw); ok && l.companion != nil && l.companion.w > 0 {
-		return TwoMode
-	}
-	return Exponential
 }

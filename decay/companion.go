@@ -9,6 +9,7 @@ const (
 	companionGain   = 60 // chi-squared beyond chance that a second component must explain
 	companionMargin = 60 // logarithm of likelihood that a gate with one must win by
 	companionSeeds  = 3
+	steadyFall      = 0.3  // nepers over the window below which a ring is a steady tone
 	baselineRatio   = 2.5  // w over a below which a second ring may stand for the baseline,
 	baselineRise    = 1.25 // if a plain exponential leaves hardly more
 )
@@ -118,17 +119,27 @@ func (f *ringFit) dampedIsBaseline() {
 	}
 }
 
-// strongestFirst makes the ring with more energy the one, a plain exponential
-// never.
+// strongestFirst makes the ring with more energy the one; a plain exponential or a
+// steady tone is never it.
 func (f *ringFit) strongestFirst() {
 	c := f.companion
-	if c.w == 0 || (c.p*c.p+c.q*c.q)/math.Abs(c.a) <= (f.p*f.p+f.q*f.q)/math.Abs(f.a) {
+	length := f.s.position(f.s.len() - 1)
+	tone, second := c.steady(length), term{f.a, f.w, f.p, f.q}
+	switch {
+	case c.w == 0 || tone:
 		return
-	}
-	if next, ok := fitSum(f.s, pole{c.a, c.w}, &pole{f.a, f.w}, coarse); ok {
-		*f = next
+	case second.steady(length) || c.energy() > second.energy():
+		if next, ok := fitSum(f.s, pole{c.a, c.w}, &pole{f.a, f.w}, coarse); ok {
+			*f = next
+		}
 	}
 }
+
+// energy is that of the whole decay of a ring, up to a factor.
+func (t *term) energy() float64 { return (t.p*t.p + t.q*t.q) / math.Abs(t.a) }
+
+// steady reports whether a ring hardly decays over length intervals: a tone.
+func (t *term) steady(length float64) bool { return t.w > 0 && math.Abs(t.a)*length < steadyFall }
 
 // settleBoth settles a gate with a companion: the ends are sought with the
 // companion taken off, then both are fitted anew.

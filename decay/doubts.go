@@ -8,6 +8,10 @@ import (
 	"dieaway/decay/quantity"
 )
 
+// weakSNR is a ratio of four of amplitude to noise, in dB: below five the fit
+// leaves the bound, below three it may lock to noise.
+const weakSNR = 12
+
 // doubts lists what makes a measured decay less trustworthy.
 func doubts(g *gate, d *Decay, v noise) []Finding {
 	var out []Finding
@@ -23,7 +27,7 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 			fmt.Sprintf("Only %.2g cycles lie in the gate.", d.Cycles),
 			"Record more of the decay, or move the gate so that it holds several cycles."))
 	}
-	if d.SNR < 14 {
+	if d.SNR < weakSNR {
 		out = append(out, warning(capture.WeakSignal,
 			fmt.Sprintf("The ring starts at only %.1f times the noise (%.1f dB).", math.Pow(10, d.SNR/20), d.SNR),
 			"Shock harder, use a smaller vertical range, or average several decays."))
@@ -44,17 +48,28 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 
 // besides names the companion of the ring.
 func (g *gate) besides(c *term) Finding {
-	share := math.Hypot(c.p, c.q) / g.fit.size()
-	if c.w == 0 {
+	f := &g.fit
+	share := math.Hypot(c.p, c.q) / f.size()
+	frequency := quantity.Format(c.w/(2*math.Pi*f.s.dt), "Hz", 4)
+	switch tone := c.steady(f.s.position(f.s.len() - 1)); {
+	case c.w == 0:
 		return note(capture.BaselineDrift,
 			fmt.Sprintf("The ring sits on a baseline that moves exponentially, by %s of the ring's amplitude with a time constant of %s; it was fitted along.",
-				percent(share), quantity.Format(g.fit.s.dt/c.a, "s", 3)),
+				percent(share), quantity.Format(f.s.dt/c.a, "s", 3)),
 			"Nothing to do if the coupling explains it (AC coupling, a clamp that recovers); otherwise look for what still feeds the circuit.")
+	case tone && math.Abs(c.w-f.w) < 2*f.a:
+		return warning(capture.DriveOn,
+			fmt.Sprintf("A steady tone of %s, %s of the ring's amplitude, stays within the width of the resonance: the source still drives the circuit.", frequency, percent(share)),
+			"Switch the source off or disconnect it before the decay; the tone was fitted out, but it may not be steady.")
+	case tone:
+		return warning(capture.InterferingTone,
+			fmt.Sprintf("A steady tone of %s, %s of the ring's amplitude, lies over the decay; it was fitted out.", frequency, percent(share)),
+			"Find the source of the tone (mains, a switching supply, a clock) and keep it off the probe.")
+	default:
+		return warning(capture.SecondMode,
+			fmt.Sprintf("A second ring of %s, %s of the amplitude of the first, beats with it; both were fitted.", frequency, percent(share)),
+			"Find what else resonates (a coupled circuit, a probe lead, a second winding) and quote each ring by itself.")
 	}
-	return warning(capture.SecondMode,
-		fmt.Sprintf("A second ring of %s, %s of the amplitude of the first, beats with it; both were fitted.",
-			quantity.Format(c.w/(2*math.Pi*g.fit.s.dt), "Hz", 4), percent(share)),
-		"Find what else resonates (a coupled circuit, a probe lead, a second winding) and quote each ring by itself.")
 }
 
 func dependsOnAmplitude(d *Decay, b *bend) Finding {

@@ -88,7 +88,7 @@ func fitSum(s series, ring pole, companion *pole, tolerance float64) (ringFit, b
 func (r *poles) fit(sol solution) ringFit {
 	b := sol.normal.beta
 	f := ringFit{
-		s: r.s, a: sol.theta[0], w: sol.theta[1], c: b[0], p: b[1], q: b[2], ref: r.ref,
+		s: r.given, a: sol.theta[0], w: sol.theta[1], c: b[0], p: b[1], q: b[2], ref: r.ref,
 		rss: sol.normal.rss, n: r.n, stop: sol.stop, iterations: sol.iterations, normal: sol.normal,
 	}
 	switch {

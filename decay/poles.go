@@ -3,6 +3,7 @@ package decay
 import (
 	"math"
 	"math/cmplx"
+	"slices"
 	"sync"
 )
 
@@ -23,25 +24,36 @@ func (z pole) at(n float64) complex128 { return cmplx.Exp(complex(-z.a*n, z.w*n)
 // theta is enough, and only for their products with y: all other sums are
 // geometric series.
 type poles struct {
-	s            series
-	rings, falls int // damped sinusoids, plain exponentials
+	given        series // as it was given
+	s            series // with what is missing at the level ref
+	rings, falls int    // damped sinusoids, plain exponentials
 	n            int
 	ref          float64
 	y, yy        float64 // sums about ref
 	length       float64 // in intervals
+	missing      []int   // samples that are not there
 }
 
 func newPoles(s series, rings, falls int) *poles {
-	p := &poles{s: s, rings: rings, falls: falls, ref: s.mean()}
-	for _, v := range s.y {
-		if !math.IsNaN(v) {
-			v -= p.ref
-			p.y += v
-			p.yy += v * v
-			p.n++
+	p := &poles{given: s, s: s, rings: rings, falls: falls, ref: s.mean()}
+	for i, v := range s.y {
+		if math.IsNaN(v) {
+			p.missing = append(p.missing, i)
+			continue
+		}
+		v -= p.ref
+		p.y += v
+		p.yy += v * v
+	}
+	p.n = s.len() - len(p.missing)
+	p.length = s.position(s.len() - 1)
+	if len(p.missing) > 0 && s.even() {
+		// At the reference level they add nothing to the sums with y.
+		p.s.y = slices.Clone(s.y)
+		for _, i := range p.missing {
+			p.s.y[i] = p.ref
 		}
 	}
-	p.length = s.position(s.len() - 1)
 	return p
 }
 
@@ -57,8 +69,9 @@ func (p *poles) size() int { return p.n }
 func (p *poles) at(theta []float64) (normal, bool) {
 	list := p.list(theta)
 	var g gram
-	if p.s.uniform() {
+	if p.s.even() {
 		g = p.uniformGram(list)
+		p.takeOut(&g, list)
 	} else {
 		g.accumulate(p.s, p.ref, p.slot(len(list)), func(t float64, f *[parametersMost]float64) { p.basis(list, t, f) })
 	}
@@ -105,7 +118,7 @@ func (p *poles) slot(k int) int {
 
 func (p *poles) isRing(k int) bool { return k < p.rings }
 
-// uniformGram sums over uniform samples without gaps.
+// uniformGram sums over uniform samples, gaps included.
 func (p *poles) uniformGram(list []pole) gram {
 	var g gram
 	n := p.s.len()
@@ -122,6 +135,20 @@ func (p *poles) uniformGram(list []pole) gram {
 		}
 	}
 	return g
+}
+
+// takeOut corrects the sums for the samples that are not there.
+func (p *poles) takeOut(g *gram, list []pole) {
+	var f [parametersMost]float64
+	f[0] = 1
+	for _, i := range p.missing {
+		p.basis(list, float64(i), &f)
+		for a := range g.g.n {
+			for b := range a + 1 {
+				g.g.set(a, b, g.g.At(a, b)-f[a]*f[b])
+			}
+		}
+	}
 }
 
 // parallelFrom is the number of samples from which two cores pay.

@@ -31,8 +31,8 @@ func newSeries(ch *capture.Channel) series {
 
 func (s series) len() int { return len(s.y) }
 
-// uniform reports whether every sample is there, at its place.
-func (s series) uniform() bool { return s.times == nil && !s.gaps && s.stride == 0 }
+// even reports whether the samples stand at even times, though some may be missing.
+func (s series) even() bool { return s.times == nil && s.stride == 0 }
 
 // slice returns samples first to last-1.
 func (s series) slice(first, last int) series {

@@ -100,7 +100,7 @@ func floorPower(n int) int {
 // level that has samples enough per cycle and then on the record itself.
 func (g *gate) placeStart(s series, p *pyramid) {
 	k := 0
-	if s.uniform() {
+	if s.even() {
 		for k+1 < len(p.levels) && g.fit.period()/float64(scale(k+1)) >= startPoints {
 			k++
 		}

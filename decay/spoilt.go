@@ -1,0 +1,173 @@
+package decay
+
+import (
+	"fmt"
+	"math"
+	"slices"
+
+	"dieaway/capture"
+)
+
+var sprintf = fmt.Sprintf
+
+const (
+	railRun     = 3    // samples in a row on a rail that may be clipped
+	railJump    = 3    // steps of the converter that the flank beside such a run takes at least
+	glitchSigma = 7    // departure that makes a sample an outlier
+	glitchShare = 0.02 // share of the samples beyond which it is the model that is wrong
+	levelsTail  = 4    // steps of a converter without dither at which the tail is cut
+	ditherLeast = 0.4  // noise in steps from which a converter counts as dithered
+)
+
+// railed returns the samples that lie on the upper or lower end of the range in
+// flat runs with steep flanks: what a limiter or a converter cut off. The top of
+// an oscillation may repeat one level too, but leaves it slowly.
+func railed(y []float64, step float64) []int {
+	lo, hi := math.Inf(1), math.Inf(-1)
+	for _, v := range y {
+		if !math.IsNaN(v) {
+			lo, hi = math.Min(lo, v), math.Max(hi, v)
+		}
+	}
+	var out []int
+	for _, rail := range []float64{hi, lo} {
+		for i := 0; i < len(y); {
+			j := i
+			for j < len(y) && y[j] == rail {
+				j++
+			}
+			if j-i >= railRun && steepFlank(y, i, j, step) {
+				for k := i; k < j; k++ {
+					out = append(out, k)
+				}
+			}
+			i = max(j, i+1)
+		}
+	}
+	slices.Sort(out)
+	return out
+}
+
+// steepFlank reports whether y leaves the run y[i:j] by more than the curvature of
+// a smooth top allows: after a flat top j-i samples wide, of less than a step in
+// height, the next sample is at most (1 + 2/(j-i))^2 steps lower.
+func steepFlank(y []float64, i, j int, step float64) bool {
+	smooth := sq(1+2/float64(j-i)) * step
+	before, after := i > 0 && math.Abs(y[i-1]-y[i]) > railJump*smooth, j < len(y) && math.Abs(y[j]-y[i]) > railJump*smooth
+	return before || after
+}
+
+// step estimates the step of the converter: the smallest difference between
+// levels that the samples take, 0 when they take too many to be steps.
+func stepOf(y []float64) float64 {
+	levels := slices.Clone(y[:min(len(y), 1<<15)])
+	levels = slices.DeleteFunc(levels, math.IsNaN)
+	slices.Sort(levels)
+	levels = slices.Compact(levels)
+	if len(levels) < 2 || len(levels) > len(y)/2 && len(levels) > 64 {
+		return 0
+	}
+	span := levels[len(levels)-1] - levels[0]
+	least := math.Inf(1)
+	for i := 1; i < len(levels); i++ {
+		if d := levels[i] - levels[i-1]; d > 1e-9*span {
+			least = math.Min(least, d)
+		}
+	}
+	return least
+}
+
+// without returns s with the samples listed taken out, in a copy.
+func (s series) without(list []int) series {
+	if len(list) == 0 {
+		return s
+	}
+	out := s
+	out.y = slices.Clone(s.y)
+	out.gaps = true
+	for _, i := range list {
+		out.y[i] = math.NaN()
+	}
+	return out
+}
+
+// beyond reports whether a fit that never saw the railed samples runs past the
+// rail there: then they were cut off.
+func (g *gate) beyond(s series, list []int) (count int, excess float64) {
+	sum := 0.0
+	for _, i := range list {
+		if i < g.first || i >= g.last {
+			continue
+		}
+		n := (s.time(i) - s.time(g.first)) / s.dt
+		d := g.fit.value(n) - s.y[i]
+		if s.y[i] < g.fit.offset() {
+			d = -d
+		}
+		sum += d
+		count++
+	}
+	if count == 0 {
+		return 0, 0
+	}
+	return count, sum / float64(count)
+}
+
+func clippedFinding(count int, excess, size float64) Finding {
+	return warning(capture.Clipped,
+		sprintf("%d samples of the decay are cut off at the end of the range, %s of the amplitude short on average; they were left out of the fit.", count, percent(excess/size)),
+		"Use a larger vertical range, or move the offset, and capture again.")
+}
+
+// glitches returns the samples of the gate that stand alone far off the fit.
+func (g *gate) glitches(s series) []int {
+	window := s.slice(g.first, g.last)
+	r := g.fit.residuals(window, 0)
+	limit := glitchSigma * robustSigma(slices.Clone(r))
+	if !(limit > 0) {
+		return nil
+	}
+	var out []int
+	for i, v := range r {
+		if math.Abs(v) > limit {
+			out = append(out, g.first+i)
+		}
+	}
+	if float64(len(out)) > math.Max(1, glitchShare*float64(len(r))) {
+		return nil
+	}
+	return out
+}
+
+func samplesLie(n int) string {
+	if n == 1 {
+		return "One sample lies"
+	}
+	return sprintf("%d samples lie", n)
+}
+
+func glitchFinding(n int) Finding {
+	return note(capture.OutlierSamples,
+		sprintf("%s far off the decay, more than %d times the noise; left out of the fit.", samplesLie(n), glitchSigma),
+		"Look at the residual: single spikes come from interference or a converter that slips.")
+}
+
+// coarse cuts the tail of a gate at a few steps of a converter whose steps no
+// noise blurs: below that the rounding follows the signal and pulls the rate.
+func (g *gate) coarseLevels(s series, step float64) (Finding, bool) {
+	sigma := g.lateSigma()
+	if !(step > 0) || !(sigma < ditherLeast*step) || g.fit.a <= 0 {
+		return Finding{}, false
+	}
+	size := g.fit.size()
+	if n := math.Log(size/(levelsTail*step)) / g.fit.a; n > 2*samplesLeast && n < float64(g.last-g.first) {
+		g.last = g.first + int(n)
+		g.refit(s, fine)
+	}
+	message := sprintf("The amplitude is %.3g steps of the converter and the noise only %.2g: nothing blurs the steps; the tail below %d steps was left out.", size/step, sigma/step, levelsTail)
+	remedy := "Use a smaller vertical range, more bits, or average so that noise of half a step blurs the levels."
+	if size > 100*step {
+		return note(capture.CoarseLevels, message, remedy), true
+	}
+	return warning(capture.CoarseLevels, message, remedy), true
+}
