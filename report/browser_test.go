@@ -3,6 +3,7 @@ package report
 import (
 	"bytes"
 	"context"
+	"flag"
 	"fmt"
 	"os"
 	"path/filepath"
@@ -21,7 +22,20 @@ import (
 
 const chromium = "/usr/bin/chromium"
 
-// browser starts a browser whose network is cut.
+// One browser serves all tests; TestMain ends it.
+var (
+	startBrowser = sync.OnceValues(launch)
+	endBrowser   = func() {}
+)
+
+func TestMain(m *testing.M) {
+	flag.Parse()
+	code := m.Run()
+	endBrowser()
+	os.Exit(code)
+}
+
+// browser returns the context of a browser whose network is cut.
 func browser(t *testing.T) context.Context {
 	t.Helper()
 	if _, err := os.Stat(chromium); err != nil {
@@ -30,20 +44,22 @@ func browser(t *testing.T) context.Context {
 		}
 		t.Skip("no browser at " + chromium)
 	}
-	options := append(chromedp.DefaultExecAllocatorOptions[:], chromedp.ExecPath(chromium), chromedp.NoSandbox, chromedp.DisableGPU,
-		chromedp.Flag("disable-quic", true), chromedp.Flag("disable-background-networking", true),
-		chromedp.Flag("disable-component-update", true), chromedp.Flag("disable-sync", true),
-		chromedp.Flag("proxy-server", "127.0.0.1:9"), chromedp.UserDataDir(t.TempDir()))
-	ctx, cancel := chromedp.NewExecAllocator(context.Background(), options...)
-	t.Cleanup(cancel)
-	ctx, cancel = context.WithTimeout(ctx, 3*time.Minute)
-	t.Cleanup(cancel)
-	ctx, cancel = chromedp.NewContext(ctx)
-	t.Cleanup(cancel)
-	if err := chromedp.Do(ctx); err != nil {
+	ctx, err := startBrowser()
+	if err != nil {
 		t.Fatal(err)
 	}
 	return ctx
+}
+
+func launch() (context.Context, error) {
+	options := append(chromedp.DefaultExecAllocatorOptions[:], chromedp.ExecPath(chromium), chromedp.NoSandbox, chromedp.DisableGPU,
+		chromedp.Flag("disable-quic", true), chromedp.Flag("disable-background-networking", true),
+		chromedp.Flag("disable-component-update", true), chromedp.Flag("disable-sync", true),
+		chromedp.Flag("proxy-server", "127.0.0.1:9")) // nothing listens there
+	allocator, cancelAllocator := chromedp.NewExecAllocator(context.Background(), options...)
+	ctx, cancel := chromedp.NewContext(allocator)
+	endBrowser = func() { cancel(); cancelAllocator() }
+	return ctx, chromedp.Do(ctx)
 }
 
 // A tab shows one page and keeps what went wrong in it.
@@ -68,6 +84,8 @@ func open(t *testing.T, parent context.Context, r *RingDown, width, height int64
 		t.Fatal(err)
 	}
 	ctx, cancel := chromedp.NewContext(parent)
+	t.Cleanup(cancel)
+	ctx, cancel = context.WithTimeout(ctx, 2*time.Minute)
 	t.Cleanup(cancel)
 	p := &tab{T: t, ctx: ctx, url: "file://" + file}
 	if err := chromedp.Do(ctx, chromedp.EmulateViewport(width, height)); err != nil {

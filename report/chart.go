@@ -45,7 +45,7 @@ type figure struct {
 	Panels  []panel         `json:"panels"`
 	Views   []view          `json:"views"`
 	Name    string          `json:"name"` // for the title of an exported picture
-	Reduced bool            `json:"-"`
+	Reduced bool            `json:"reduced"`
 }
 
 // A column is numbers of a data set, rounded to what a screen can show; NaN is null.
@@ -137,17 +137,17 @@ func (p *plot) addSeries(k key, kind string, data int, y string, more ...charts.
 		s.XAxisIndex, s.YAxisIndex, s.DatasetIndex = index, index, data
 		s.Encode = &opts.Encode{X: "t", Y: y}
 		s.ShowSymbol, s.Data = opts.Bool(false), nil
-		s.LineStyle = &opts.LineStyle{Color: "@" + k.Color, Width: 1.6}
+		s.LineStyle = &opts.LineStyle{Color: "@" + k.Color, Width: 1.8}
 		s.ItemStyle = &opts.ItemStyle{Color: "@" + k.Color}
 		switch k.Mark {
 		case "dash":
 			s.LineStyle.Type = "dashed"
 		case "dots":
-			s.LineStyle.Width, s.LineStyle.Opacity = 1, opts.Float(0.55)
+			s.LineStyle.Width, s.LineStyle.Opacity = 1, opts.Float(0.45)
 			s.SymbolSize = 3
 		case "ring":
-			s.Symbol, s.SymbolSize = "circle", 8
-			s.ItemStyle = &opts.ItemStyle{Color: "transparent", BorderColor: "@" + k.Color, BorderWidth: 1.6}
+			s.Symbol, s.SymbolSize = "circle", 7
+			s.ItemStyle = &opts.ItemStyle{Color: "transparent", BorderColor: "@" + k.Color, BorderWidth: 1.4}
 		case "cross":
 			s.Symbol, s.SymbolSize = "diamond", 7
 		}

@@ -22,10 +22,20 @@ type drawn struct {
 	curve curve
 	cycle float64 // samples per cycle, NaN when unknown
 	gate  indexRange
-	// windows are the parts that are shown sample by sample.
+	// windows are the parts that are shown more finely.
 	windows []indexRange
 	// share is the number of decays that share the points of the page.
 	share int
+}
+
+// bins returns how many bins of at most n the gate is shown in. A bin of most of a
+// cycle would beat with the oscillation, so that it becomes a whole one.
+func (w *drawn) bins(n int) int {
+	samples := float64(w.gate.to - w.gate.from)
+	if bin := samples / float64(n); bin > w.cycle/6 && bin < 1.5*w.cycle {
+		n = int(samples / math.Ceil(1.5*w.cycle))
+	}
+	return max(n, 1)
 }
 
 // points returns the share of n points that this decay has.
@@ -43,15 +53,15 @@ func (r *RingDown) drawnDecays() []drawn {
 		w := drawn{decay: d, curve: r.curve(i), gate: indexRange{max(0, d.First), min(axis.N, d.Last)}, share: len(shown)}
 		w.cycle = 1 / (d.Quantities.DampedFrequency.Value * axis.Interval)
 		if axis.N > exactLimit {
-			w.windows = windowsOf(w.gate, w.cycle, w.points(windowSamples))
+			w.windows = windowsOf(w.gate, w.cycle)
 		}
 		out = append(out, w)
 	}
 	return out
 }
 
-// fitted returns the fitted curve. Where the cycles are too many to draw, it goes
-// to and fro between the edges of the envelope, which looks the same.
+// fitted returns the fitted curve. Where the cycles are too many to draw there is
+// a gap, and only the envelope tells where the curve runs.
 func (w *drawn) fitted(time func(i int) float64) trace {
 	var tr trace
 	samples := float64(w.gate.to - w.gate.from)
@@ -66,15 +76,10 @@ func (w *drawn) fitted(time func(i int) float64) trace {
 		w.follow(&tr, w.decay.From, w.decay.To, samples/step)
 		return tr
 	}
-	at := w.gate.from
 	for _, win := range w.windows {
-		win.from = max(win.from, w.gate.from)
-		w.edges(&tr, time(at), time(win.from))
-		w.follow(&tr, time(win.from), time(win.to-1), float64(win.to-win.from)/step)
-		at = win.to - 1
-	}
-	if at < w.gate.to-1 {
-		w.edges(&tr, time(at), w.decay.To)
+		from := max(win.from, w.gate.from)
+		w.follow(&tr, time(from), time(win.to-1), float64(win.to-from)/step)
+		tr.add(time(win.to-1), math.NaN())
 	}
 	return tr
 }
@@ -84,16 +89,6 @@ func (w *drawn) follow(tr *trace, from, to, n float64) {
 	for _, t := range between(from, to, int(math.Min(n, float64(w.points(curvePoints))))+1) {
 		v, _, _ := w.curve.At(t)
 		tr.add(t, v)
-	}
-}
-
-// edges draws to and fro between the edges of the envelope.
-func (w *drawn) edges(tr *trace, from, to float64) {
-	sign := 1.0
-	for _, t := range between(from, to, w.points(envelopePoints)) {
-		_, e, b := w.curve.At(t)
-		tr.add(t, b+sign*e)
-		sign = -sign
 	}
 }
 
@@ -156,10 +151,10 @@ func (w *drawn) crests(r *RingDown, end int) trace {
 }
 
 // readingLine is the straight line through the logarithms of the peaks read.
-func readingLine(r *decay.Result) trace {
+func readingLine(r *decay.Result, times []float64) trace {
 	var tr trace
 	d := r.Decays[0]
-	for _, t := range between(d.From, d.To, envelopePoints/4) {
+	for _, t := range times {
 		tr.add(t, math.Exp(r.Readings.Line[0]+r.Readings.Line[1]*(t-d.From)))
 	}
 	return tr

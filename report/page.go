@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"html/template"
 	"io"
+	"math"
 	"strings"
 	"time"
 
@@ -93,22 +94,23 @@ func (r *RingDown) page(f *figure, data []byte) *page {
 	p := &page{
 		CSS: template.CSS(pageCSS), Script: template.JS(pageJS), ECharts: template.JS(echartsJS), Data: template.JS(data),
 		Heading: r.heading(), What: r.what(), Status: r.Status(), Verdict: r.verdict(),
-		Refused: r.refused(), Findings: r.Findings(), Figure: f,
+		Refused: r.refused(), Findings: cleaned(r.Findings()), Figure: f,
 		Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns,
 	}
 	p.Title = p.Heading + " – free decay, " + string(p.Status)
-	p.Facts = append(p.Facts, fact{"record", r.recordLine()})
+	record := fact{"record", r.recordLine()}
 	if p.Refused {
+		p.Layout = append([]fact{record}, p.Layout...)
 		return p
 	}
 	res := r.Result
 	p.Results = resultRows(res.Quantities)
 	p.Headline = p.Results[:4]
 	p.Readings = comparisons(res)
-	p.Facts = append([]fact{{"model", modelName(res)}}, p.Facts...)
+	p.Facts = []fact{{"model", modelName(res)}, record}
 	if len(res.Decays) == 1 {
 		d := res.Decays[0]
-		p.Facts = append(p.Facts, fact{"gate", gateLine(d)}, fact{"noise", noiseLine(d, r.Channel.Unit)})
+		p.Facts = append(p.Facts, fact{"gate", gateLine(d)}, fact{"noise", noiseLine(d, r.unit())})
 		for _, row := range shapeRows(d) {
 			p.Facts = append(p.Facts, fact{row.Label, row.Quantity.String()})
 		}
@@ -147,10 +149,14 @@ func (r *RingDown) what() string {
 	for _, d := range r.Result.Decays {
 		cycles += d.Cycles
 	}
-	if n := len(r.Result.Decays); n > 1 {
+	switch n := len(r.Result.Decays); {
+	case math.IsNaN(cycles):
+		return fmt.Sprintf("%s: a free decay, fitted with %s.", s, modelName(r.Result))
+	case n > 1:
 		return fmt.Sprintf("%s: %d free decays, %.0f cycles in all, fitted with %s.", s, n, cycles, modelName(r.Result))
+	default:
+		return fmt.Sprintf("%s: %.0f cycles of free decay, fitted with %s.", s, cycles, modelName(r.Result))
 	}
-	return fmt.Sprintf("%s: %.0f cycles of free decay, fitted with %s.", s, cycles, modelName(r.Result))
 }
 
 // longName is where even the full name of a file or device is cut on the page.
@@ -187,6 +193,14 @@ func (r *RingDown) layout() []fact {
 		{"names", line(l.HeaderLine)}, {"units", line(l.UnitsLine)}, {"first sample", line(l.FirstLine)},
 		{"delimiter", clean(l.Delimiter, nameLength)}, {"decimal mark", clean(l.DecimalMark, nameLength)},
 	})
+}
+
+// cleaned returns findings whose texts, which may quote the file, are safe to show.
+func cleaned(all []capture.Finding) []capture.Finding {
+	for i := range all {
+		all[i].Message, all[i].Remedy = clean(all[i].Message, 0), clean(all[i].Remedy, 0)
+	}
+	return all
 }
 
 // stated leaves out the facts without a value.

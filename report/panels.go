@@ -30,6 +30,7 @@ const (
 	captionWaveform = "The curve should run through the samples from the first cycle to the last, and the gate should begin after the excitation has ended."
 	captionRefused  = "The record as it was read; the findings above say why no decay was taken from it."
 	captionEnvelope = "One decay is a straight line here: a bend means loss that changes with amplitude, a ripple a second mode, and the flat end is noise."
+	captionExtremes = "The extremes of each bin reach beyond the band, but evenly: an oscillation that is left over, or a swelling, means that the model misses something."
 	captionResidual = "About 19 samples in 20 should lie inside the band without a pattern; an oscillation that is left over means that the model misses something."
 )
 
@@ -41,7 +42,7 @@ func (r *RingDown) figure() (*figure, error) {
 	start, end := axis.Start, axis.Time(max(0, axis.N-1))
 	p := &plot{Line: charts.NewLine(),
 		time:  scaleFor(start, end, axis.Interval/20, "s"),
-		level: scaleFor(lo, hi, (hi-lo)/20000, ch.Unit)}
+		level: scaleFor(lo, hi, (hi-lo)/20000, r.unit())}
 	all := r.drawnDecays()
 	var windows []indexRange
 	for _, w := range all {
@@ -51,10 +52,10 @@ func (r *RingDown) figure() (*figure, error) {
 	p.waveform(r, all, parts)
 	if len(all) > 0 {
 		p.envelope(r, all)
-		p.residual(r, all, windows)
+		p.residual(r, all, windows, reduced(parts))
 	}
-	f := &figure{Time: p.time.unit, Panels: p.panels, Views: p.views(r, all),
-		Name: prefixed(r.Device) + clean(ch.Name, nameLength), Reduced: parts[0].bin > 1 || len(parts) > 1}
+	f := &figure{Time: p.time.unit, Panels: p.panels, Views: p.views(all),
+		Name: prefixed(r.Device) + clean(ch.Name, nameLength), Reduced: reduced(parts)}
 	var err error
 	f.Option, err = p.finish(start, end, r.description())
 	return f, err
@@ -81,15 +82,19 @@ func (r *RingDown) parts(all []drawn, windows []indexRange) []segment {
 	}
 	var out []segment
 	at := 0
+	fine := max(8, binsInWindow/max(1, len(all)))
 	add := func(a indexRange, bins, of int) {
 		if a.from < a.to {
 			share := math.Ceil(float64(bins) * float64(a.to-a.from) / float64(of))
-			out = append(out, segments(a, windows, int(share))...)
+			out = append(out, segments(a, windows, int(share), fine)...)
 		}
 	}
-	for _, w := range all {
+	for i := range all {
+		w := &all[i]
 		add(indexRange{at, w.gate.from}, binsElsewhere, n-inside)
-		add(indexRange{max(at, w.gate.from), w.gate.to}, binsInGates, inside)
+		if w.gate.to > w.gate.from {
+			out = append(out, segments(indexRange{max(at, w.gate.from), w.gate.to}, windows, w.bins(w.points(binsInGates)), fine)...)
+		}
 		at = max(at, w.gate.to)
 	}
 	bins := binsElsewhere
@@ -110,7 +115,7 @@ func (p *plot) waveform(r *RingDown, all []drawn, parts []segment) {
 	ch := r.Channel
 	tr := reduce(ch.Axis, parts, func(i int) float64 { return ch.Samples[i] })
 	data := p.addTrace(tr, p.level)
-	p.addSeries(keySamples, "line", data, "v", gates(p.time, all))
+	p.addSeries(keySamples, "line", data, "v", gates(p.time, all)) // first: the bar below shows its outline
 	for i := range all {
 		w := &all[i]
 		o := w.outline(ch.Axis.Time)
@@ -173,20 +178,19 @@ func (p *plot) envelope(r *RingDown, all []drawn) {
 		o := all[i].outline(axis.Time)
 		data := p.addData(map[string]column{"t": p.time.column(o.t), "v": log(positive(o.envelope))})
 		p.addSeries(keyEnvelope, "line", data, "v", gates(p.time, all[i:i+1]))
-		p.noiseFloor(all[i].decay)
+		p.noiseFloor(all[i].decay, o.t)
 	}
-	if read.Line[1] != 0 && len(peaks.t) > 0 {
-		line := readingLine(r.Result)
+	if len(all) > 0 && read.Line[1] != 0 && len(peaks.t) > 0 {
+		line := readingLine(r.Result, all[0].outline(axis.Time).t)
 		p.addSeries(keyLine, "line", p.addData(map[string]column{"t": p.time.column(line.t), "v": log(positive(line.v))}), "v")
 	}
 }
 
 // noiseFloor draws the noise of a decay as a level.
-func (p *plot) noiseFloor(d *decay.Decay) {
+func (p *plot) noiseFloor(d *decay.Decay, t []float64) {
 	if !(d.NoiseRMS > 0) || math.IsInf(d.NoiseRMS, 0) {
 		return
 	}
-	t := between(d.From, d.To, envelopePoints/4)
 	level := make([]float64, len(t))
 	for i := range level {
 		level[i] = d.NoiseRMS
@@ -196,17 +200,17 @@ func (p *plot) noiseFloor(d *decay.Decay) {
 }
 
 // residual draws what the fit leaves, with the band of the noise.
-func (p *plot) residual(r *RingDown, all []drawn, windows []indexRange) {
+func (p *plot) residual(r *RingDown, all []drawn, windows []indexRange, reduced bool) {
 	ch := r.Channel
 	traces := make([]trace, len(all))
 	lo, hi := 0.0, 0.0
 	for i := range all {
 		w := &all[i]
-		bins := w.points(binsInGates)
+		bins := w.bins(w.points(binsInGates))
 		if ch.Axis.N <= exactLimit {
 			bins = ch.Axis.N
 		}
-		traces[i] = reduce(ch.Axis, segments(w.gate, windows, bins), func(k int) float64 {
+		traces[i] = reduce(ch.Axis, segments(w.gate, windows, bins, w.points(binsInWindow)), func(k int) float64 {
 			v, _, _ := w.curve.At(ch.Axis.Time(k))
 			return ch.Samples[k] - v
 		})
@@ -214,7 +218,7 @@ func (p *plot) residual(r *RingDown, all []drawn, windows []indexRange) {
 			lo, hi = math.Min(lo, a), math.Max(hi, b)
 		}
 	}
-	scale := scaleFor(lo, hi, (hi-lo)/5000, ch.Unit)
+	scale := scaleFor(lo, hi, (hi-lo)/5000, r.unit())
 	p.addPanel("Residual", captionResidual, scale.unit, false)
 	for i := range all {
 		data := p.addTrace(traces[i], scale)
@@ -223,6 +227,9 @@ func (p *plot) residual(r *RingDown, all []drawn, windows []indexRange) {
 	}
 	last := &p.panels[len(p.panels)-1]
 	last.Keys = append(last.Keys, keyBand)
+	if reduced {
+		last.Caption = captionExtremes
+	}
 }
 
 func (p *plot) addTrace(tr trace, s axisScale) int {
@@ -266,34 +273,35 @@ func band(time, level axisScale, d *decay.Decay) charts.SeriesOpts {
 }
 
 // views returns the stretches of time that are worth a button.
-func (p *plot) views(r *RingDown, all []drawn) []view {
+func (p *plot) views(all []drawn) []view {
 	if len(all) == 0 {
 		return []view{}
 	}
 	at := func(t float64) number { return number(round(t*p.time.factor, p.time.places)) }
 	d := all[0].decay
 	out := []view{{"Gate", at(d.From), at(d.To)}}
-	// Where a window of true samples exists, the view stays inside of it.
+	if len(all) > 1 {
+		out[0] = view{"All gates", at(d.From), at(all[len(all)-1].decay.To)}
+	}
+	// Where the record is reduced the views stay inside of its windows.
 	cycles := (d.To - d.From) / math.Max(d.Cycles, 1)
 	wide := math.Min(windowCycles*0.7*cycles, (d.To-d.From)/3)
-	if len(all[0].windows) == 3 {
-		w := all[0].windows[1]
-		wide = math.Min(wide, r.Channel.Axis.Time(w.to-1)-r.Channel.Axis.Time(w.from))
-	}
 	middle := (d.From + d.To) / 2
 	return append(out, view{"First cycles", at(d.From - wide/10), at(d.From + wide)},
 		view{"Middle", at(middle - wide/2), at(middle + wide/2)}, view{"Last cycles", at(d.To - wide), at(d.To)})
 }
 
-// thin keeps at most a few hundred points of a reading, evenly.
+// thin keeps the first points of a reading, for the view of the first cycles, and
+// of the others so many that they do not merge into a bar.
 func thin(tr trace) trace {
-	const most = 400
-	if len(tr.t) <= most {
+	const first, others = 40, 60
+	n := len(tr.t) - first
+	if n <= others {
 		return tr
 	}
-	var out trace
-	for i := range most {
-		k := i * (len(tr.t) - 1) / (most - 1)
+	out := trace{t: append([]float64{}, tr.t[:first]...), v: append([]float64{}, tr.v[:first]...)}
+	for i := range others {
+		k := first + i*(n-1)/(others-1)
 		out.add(tr.t[k], tr.v[k])
 	}
 	return out

@@ -2,19 +2,21 @@ package report
 
 import (
 	"math"
+	"slices"
 
 	"dieaway/capture"
 )
 
 // How much of a record the page shows. Up to exactLimit samples it shows all of
-// them. Beyond, it shows all samples of a few windows and of the rest the
-// smallest and the largest sample of each bin, which keeps the outline of an
-// oscillation as well as a single spike; an average would keep neither.
+// them. Beyond, it shows the smallest and the largest sample of each bin, which
+// keeps the outline of an oscillation as well as a single spike; an average would
+// keep neither. In a few windows of some cycles the bins are finer, one sample
+// each where that is enough.
 const (
-	exactLimit    = 8000
+	exactLimit    = 10000
 	binsInGates   = 1600
 	binsElsewhere = 500
-	windowSamples = 1400
+	binsInWindow  = 700
 	windowCycles  = 12
 )
 
@@ -28,18 +30,15 @@ type segment struct {
 	bin int
 }
 
-// segments says how to show the samples from a.from to a.to, with every sample
-// inside the windows, which are in order and do not overlap, and about bins bins
-// outside of them.
-func segments(a indexRange, windows []indexRange, bins int) []segment {
+// segments says how to show the samples from a.from to a.to, with up to fine bins
+// inside each of the windows, which are in order and do not overlap, and about
+// bins bins outside of them.
+func segments(a indexRange, windows []indexRange, bins, fine int) []segment {
 	outside := a.to - a.from
 	for _, w := range windows {
 		outside -= max(0, min(w.to, a.to)-max(w.from, a.from))
 	}
-	bin := 1
-	if outside > 2*bins {
-		bin = (outside + bins - 1) / bins
-	}
+	bin := binFor(outside, bins)
 	var out []segment
 	add := func(from, to, bin int) {
 		if from < to {
@@ -53,23 +52,37 @@ func segments(a indexRange, windows []indexRange, bins int) []segment {
 			continue
 		}
 		add(at, from, bin)
-		add(from, to, 1)
+		add(from, to, binFor(w.to-w.from, fine))
 		at = to
 	}
 	add(at, a.to, bin)
 	return out
 }
 
-// windowsOf returns the parts of a gate that are shown sample by sample: its first
-// cycles, its middle and its last ones, each of at most size samples.
-func windowsOf(g indexRange, cycle float64, size int) []indexRange {
+// reduced reports whether any bin is of more than one sample.
+func reduced(parts []segment) bool {
+	return slices.ContainsFunc(parts, func(p segment) bool { return p.bin > 1 })
+}
+
+// binFor returns the size of bins for n samples: one where the two points of each
+// bin would be no fewer than the samples.
+func binFor(n, bins int) int {
+	if n <= 2*bins {
+		return 1
+	}
+	return (n + bins - 1) / bins
+}
+
+// windowsOf returns the parts of a gate that are shown more finely: its first
+// cycles, its middle and its last ones. cycle is in samples, NaN when unknown.
+func windowsOf(g indexRange, cycle float64) []indexRange {
 	if g.to <= g.from {
 		return nil
 	}
+	size := (g.to - g.from + 2) / 3
 	if w := windowCycles * cycle; w < float64(size) {
 		size = min(size, max(int(math.Ceil(w)), 100))
 	}
-	size = min(size, (g.to-g.from+2)/3)
 	lead := min(size/8, g.from) // the moment before the decay tells how it was started
 	middle := (g.from + g.to - size) / 2
 	return []indexRange{

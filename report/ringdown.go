@@ -72,6 +72,9 @@ func (r *RingDown) file() string {
 	return r.File
 }
 
+// unit is the channel's unit, safe to show.
+func (r *RingDown) unit() string { return clean(r.Channel.Unit, unitLength) }
+
 func (r *RingDown) sha256() string {
 	if r.SHA256 == "" && r.Capture != nil {
 		return r.Capture.SHA256

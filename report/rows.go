@@ -44,10 +44,12 @@ func resultRows(q *decay.Quantities) []row {
 
 // shapeRows returns what belongs to one decay and to the channel's scale.
 func shapeRows(d *decay.Decay) []row {
+	amplitude, offset := d.Amplitude, d.Offset
+	amplitude.Unit, offset.Unit = clean(amplitude.Unit, unitLength), clean(offset.Unit, unitLength)
 	rows := []row{
-		{"amplitude at gate start", "A", "", "", d.Amplitude},
+		{"amplitude at gate start", "A", "", "", amplitude},
 		{"phase at gate start", "phi", "φ", "", d.Phase},
-		{"offset", "c", "", "", d.Offset},
+		{"offset", "c", "", "", offset},
 	}
 	if d.AtStart != nil {
 		rows = append(rows,
@@ -119,19 +121,21 @@ func modelName(r *decay.Result) string {
 
 // gateLine says what part of the record was fitted.
 func gateLine(d *decay.Decay) string {
-	return fmt.Sprintf("%s to %s, %.1f cycles, %s", quantity.Format(d.From, "s", 6), quantity.Format(d.To, "s", 6),
-		d.Cycles, plural(d.Last-d.First, "sample"))
+	cycles := ""
+	if !math.IsNaN(d.Cycles) {
+		cycles = fmt.Sprintf("%.1f cycles, ", d.Cycles)
+	}
+	return fmt.Sprintf("%s to %s, %s%s", quantity.Format(d.From, "s", 6), quantity.Format(d.To, "s", 6),
+		cycles, plural(d.Last-d.First, "sample"))
 }
 
 // noiseLine says how large the noise is.
 func noiseLine(d *decay.Decay, unit string) string {
-	s := fmt.Sprintf("%s rms, the fit leaves %s rms; signal to noise %.1f dB",
-		quantity.Format(d.NoiseRMS, unit, 3), quantity.Format(d.ResidualRMS, unit, 3), d.SNR)
+	s := fmt.Sprintf("%s rms, the fit leaves %s rms", quantity.Format(d.NoiseRMS, unit, 3), quantity.Format(d.ResidualRMS, unit, 3))
 	if math.IsNaN(d.SNR) || math.IsInf(d.SNR, 0) {
-		s = fmt.Sprintf("%s rms, the fit leaves %s rms",
-			quantity.Format(d.NoiseRMS, unit, 3), quantity.Format(d.ResidualRMS, unit, 3))
+		return s
 	}
-	return s
+	return s + fmt.Sprintf("; signal to noise %.1f dB", d.SNR)
 }
 
 // recordLine says what the record is.

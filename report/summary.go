@@ -74,26 +74,38 @@ func (s *summary) results(r *RingDown) {
 	s.WriteString("\n")
 	s.item(label("model"), modelName(res))
 	s.item(label("record"), r.recordLine())
-	for i, d := range res.Decays {
+	shown := res.Decays[:min(len(res.Decays), mostDecays)]
+	for i, d := range shown {
 		if len(res.Decays) > 1 {
 			fmt.Fprintf(s, "\n  decay %d\n", i+1)
-			for _, row := range resultRows(&d.Quantities)[:4] {
-				s.quantity(row)
-			}
+			s.quantities(&d.Quantities)
 		}
-		s.item(label("gate"), gateLine(d))
-		s.item(label("noise"), noiseLine(d, r.Channel.Unit))
-		for _, row := range shapeRows(d) {
-			s.item(label(shortLabel(row)), row.Quantity.String())
-		}
+		s.decay(d, r.unit())
+	}
+	if more := len(res.Decays) - len(shown); more > 0 {
+		fmt.Fprintf(s, "\n  and %s more\n", plural(more, "decay"))
 	}
 	for i, m := range res.Modes {
 		fmt.Fprintf(s, "\n  mode %d\n", i+1)
-		for _, row := range resultRows(m)[:4] {
-			s.quantity(row)
-		}
+		s.quantities(m)
 	}
 	s.readings(comparisons(res))
+}
+
+// decay writes the conditions of one decay.
+func (s *summary) decay(d *decay.Decay, unit string) {
+	s.item(label("gate"), gateLine(d))
+	s.item(label("noise"), noiseLine(d, unit))
+	for _, row := range shapeRows(d) {
+		s.item(label(shortLabel(row)), row.Quantity.String())
+	}
+}
+
+// quantities writes the chief results of one decay or mode.
+func (s *summary) quantities(q *decay.Quantities) {
+	for _, row := range resultRows(q)[:4] {
+		s.quantity(row)
+	}
 }
 
 func (s *summary) quantity(r row) {
@@ -131,7 +143,7 @@ func (s *summary) refusal(r *RingDown) {
 	s.item(label("record"), r.recordLine())
 	if lo, hi, ok := span(r.Channel.Samples); ok {
 		s.item(label("samples"), fmt.Sprintf("between %s and %s",
-			quantity.Format(lo, r.Channel.Unit, 4), quantity.Format(hi, r.Channel.Unit, 4)))
+			quantity.Format(lo, r.unit(), 4), quantity.Format(hi, r.unit(), 4)))
 	}
 	s.findings(r.Findings())
 }

@@ -12,6 +12,9 @@ import (
 // nameLength is where a name from a file is cut in text for people.
 const nameLength = 60
 
+// unitLength is where a unit from a file is cut.
+const unitLength = 12
+
 // labelWidth is the width of the labels of a summary.
 const labelWidth = 17
 

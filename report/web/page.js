@@ -7,8 +7,12 @@
   const tools = document.querySelector(".tools");
   const heads = [...stage.querySelectorAll(".head")];
   const printWidth = 680; // CSS pixels between the margins of A4 and of Letter
-  const margin = { left: 58, right: 18 };
   let printing = false;
+
+  // The charts grow with the text, which is larger on a very wide screen.
+  const textSize = () => parseFloat(getComputedStyle(document.documentElement).fontSize);
+  const fontSize = () => Math.max(10, 0.75 * textSize());
+  const margin = () => ({ left: Math.max(50, 4.9 * fontSize()), right: 18 });
 
   const css = (name) => getComputedStyle(document.documentElement).getPropertyValue(name).trim();
   const escape = (s) => s.replace(/[&<>"']/g, (c) => `&#${c.charCodeAt(0)};`);
@@ -54,9 +58,9 @@
     axisLine: { show: true, onZero: false, lineStyle: { color: css("--line") } },
     axisTick: { show: true, lineStyle: { color: css("--line") } },
     splitLine: { show: true, lineStyle: { color: css("--grid") } },
-    nameTextStyle: { color: css("--soft"), fontSize: 12 },
+    nameTextStyle: { color: css("--soft"), fontSize: fontSize() },
   });
-  const label = (format) => ({ color: css("--soft"), fontSize: 12, hideOverlap: true, formatter: format });
+  const label = (format) => ({ color: css("--soft"), fontSize: fontSize(), hideOverlap: true, formatter: format });
 
   // dress adds to the option what depends on the theme and what needs a function.
   const dress = () => {
@@ -64,8 +68,8 @@
     o.backgroundColor = "transparent";
     o.textStyle = { fontFamily: getComputedStyle(document.body).fontFamily };
     for (const x of o.xAxis) Object.assign(x, axisStyle(), { nameLocation: "end", nameGap: 4, axisLabel: { ...label((v) => digits(v, 9)), showMinLabel: false, showMaxLabel: false } });
-    o.xAxis.forEach((x) => Object.assign(x.nameTextStyle, { align: "right", verticalAlign: "top", padding: [9, -margin.right + 4, 0, 0] }));
-    o.yAxis.forEach((y) => Object.assign(y, axisStyle(), { nameLocation: "end", nameGap: 8, axisLabel: label((v) => digits(v, 6)) }));
+    o.xAxis.forEach((x) => Object.assign(x.nameTextStyle, { align: "right", verticalAlign: "top", padding: [9, -margin().right + 4, 0, 0] }));
+    o.yAxis.forEach((y) => Object.assign(y, axisStyle(), { nameLocation: "end", nameGap: 12, axisLabel: label((v) => digits(v, 6)) }));
     o.yAxis.forEach((y) => Object.assign(y.nameTextStyle, { align: "right", padding: [0, 8, 0, 0] }));
     Object.assign(o.tooltip, { formatter: tip, confine: true, backgroundColor: css("--sheet"), borderColor: css("--line"), textStyle: { color: css("--ink") }, padding: [6, 10] });
     o.axisPointer.lineStyle = { color: css("--soft"), type: "solid", width: 1 };
@@ -74,10 +78,14 @@
       if (s.markArea) s.markArea.silent = true;
       if (s.type === "line") s.emphasis = { disabled: true };
       if (s.large) s.silent = true;
+      // The curve below the samples, the points read above them.
+      s.z = s.type === "scatter" ? (s.large ? 3 : 4) : s.lineStyle.opacity ? 3 : 2;
     }
     Object.assign(o.dataZoom[0], { zoomOnMouseWheel: "ctrl", moveOnMouseWheel: false, preventDefaultMouseMove: false });
     Object.assign(o.dataZoom[1], {
-      left: margin.left, right: margin.right, height: 26, showDetail: false, brushSelect: false,
+      ...margin(), height: 26, showDetail: false, brushSelect: false,
+      // The outline goes by the number of the point, which is no time in a reduced record.
+      showDataShadow: data.reduced ? false : "auto",
       borderColor: css("--line"), fillerColor: css("--c-gate"), handleStyle: { color: css("--sheet"), borderColor: css("--soft") },
       moveHandleSize: 6, moveHandleStyle: { color: css("--line") },
       dataBackground: { lineStyle: { color: css("--c-quiet"), width: 0.5 }, areaStyle: { color: css("--line"), opacity: 0.4 } },
@@ -95,15 +103,15 @@
     stage.classList.add("drawn");
     stage.style.width = printing ? `${printWidth}px` : "";
     const width = stage.clientWidth;
-    const heights = printing ? [215, 160, 130] : width < 560 ? [210, 190, 160] : [340, 260, 210];
+    const heights = printing ? [190, 140, 115] : width < 560 ? [210, 190, 160] : [340, 260, 210].map((h) => h * Math.max(1, textSize() / 16));
     if (heads.length === 1) heights[0] += 40;
     const grids = [];
     let y = 0;
     heads.forEach((head, i) => {
       head.style.top = `${y}px`;
-      y += head.offsetHeight + 26;
-      grids.push({ ...margin, top: y, height: heights[i], containLabel: false });
-      y += heights[i] + (printing ? 34 : 46);
+      y += head.offsetHeight + 1.4 * fontSize() + 9;
+      grids.push({ ...margin(), top: y, height: heights[i], containLabel: false });
+      y += heights[i] + 2 * fontSize() + (printing ? 12 : 22);
     });
     const slider = { show: !printing, top: y };
     if (!printing) y += 40;
@@ -197,7 +205,13 @@
     pending = requestAnimationFrame(() => { pending = 0; if (!printing) chart.setOption(layout()); });
   }).observe(stage);
   matchMedia("(prefers-color-scheme: dark)").addEventListener("change", () => { if (!printing) draw(); });
-  const print = (on) => { if (printing !== on) { printing = on; draw(); } };
+  const print = (on) => {
+    if (printing === on) return;
+    printing = on;
+    // The event comes before the rules for print hold; the class brings what the charts depend on.
+    document.documentElement.classList.toggle("printing", on);
+    draw();
+  };
   addEventListener("beforeprint", () => print(true));
   addEventListener("afterprint", () => print(false));
   matchMedia("print").addEventListener("change", (event) => print(event.matches));
