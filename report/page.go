@@ -141,7 +141,7 @@ func (r *RingDown) heading() string {
 
 // what says in one line what was measured.
 func (r *RingDown) what() string {
-	s := fmt.Sprintf("Channel %s of %s", clean(r.Channel.Name, nameLength), clean(r.file(), nameLength))
+	s := upperFirst(r.source())
 	if r.refused() {
 		return s + "."
 	}

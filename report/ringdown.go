@@ -7,6 +7,7 @@ import (
 	"cmp"
 	"errors"
 	"slices"
+	"strings"
 	"time"
 
 	"dieaway/capture"
@@ -70,6 +71,15 @@ func (r *RingDown) file() string {
 		return r.Capture.File
 	}
 	return r.File
+}
+
+// source names channel and file, safe to show.
+func (r *RingDown) source() string {
+	name := clean(r.Channel.Name, nameLength)
+	if !strings.HasPrefix(strings.ToLower(name), "channel") {
+		name = "channel " + name
+	}
+	return name + " of " + clean(r.file(), nameLength)
 }
 
 // unit is the channel's unit, safe to show.

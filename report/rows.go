@@ -135,7 +135,7 @@ func noiseLine(d *decay.Decay, unit string) string {
 	if math.IsNaN(d.SNR) || math.IsInf(d.SNR, 0) {
 		return s
 	}
-	return s + fmt.Sprintf("; signal to noise %.1f dB", d.SNR)
+	return s + fmt.Sprintf("; SNR %.1f dB", d.SNR)
 }
 
 // recordLine says what the record is.

@@ -53,7 +53,7 @@ func (s *summary) head(r *RingDown) {
 	status := r.Status()
 	color := map[decay.Status]string{decay.Good: green, decay.Doubtful: yellow, decay.Refused: red}[status]
 	s.item(s.paint(string(status), color)+": ", r.verdict())
-	s.item("  ", fmt.Sprintf("%schannel %s of %s", prefixed(r.Device), clean(r.Channel.Name, nameLength), clean(r.file(), nameLength)))
+	s.item("  ", prefixed(r.Device)+r.source())
 	s.WriteString("\n")
 }
 

@@ -91,6 +91,12 @@ func pad(s string, n int) string {
 	return s + strings.Repeat(" ", max(0, n-utf8.RuneCountInString(s)))
 }
 
+// upperFirst begins s with a capital letter.
+func upperFirst(s string) string {
+	c, n := utf8.DecodeRuneInString(s)
+	return string(unicode.ToUpper(c)) + s[n:]
+}
+
 func trimRight(s string) string { return strings.TrimRight(s, " ") }
 
 // span returns the smallest and the largest sample that is a number.

@@ -145,7 +145,7 @@ func layoutFor(value, u float64, unit string) layout {
 	l := layout{prefix: prefixFor(power, unit), unit: unit}
 	top, place := power-l.prefix.power, last-l.prefix.power
 	// Without a prefix a short run of zeros behind the point still reads better than an exponent.
-	if top >= 7 || top < -3 && (takesPrefix(unit) || place < -6) || place > 0 && !takesPrefix(unit) && top > 3 {
+	if top >= 7 || top < -3 && (takesPrefix(unit) || place < -6) || place > 2 && !takesPrefix(unit) && top > 3 {
 		l.prefix, l.exp = prefix{"", 0}, power
 	}
 	l.place = last - l.prefix.power - l.exp
