@@ -32,7 +32,7 @@ func TestReadme(t *testing.T) {
 	}
 	if *update {
 		write(t, filepath.Join(root, "README.md"), printed)
-	} else if diff := cmp.Diff(shown, printed); diff != "" {
+	} else if diff := cmp.Diff(strings.Split(shown, "\n"), strings.Split(printed, "\n")); diff != "" {
 		t.Errorf("README.md shows something else than is printed; go test ./cmd/dieaway -run Readme -update mends it (-shown +printed):\n%s", diff)
 	}
 }
