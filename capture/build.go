@@ -48,11 +48,11 @@ func (d *layoutDesign) addChannels(c *Capture, t *table, axes []*Axis) {
 		if col.Role != RoleChannel {
 			continue
 		}
-		ch := &Channel{Number: len(c.Channels) + 1, Unit: col.unit.base, Samples: t.values[d.plan.steps[i].to], Axis: axes[0]}
+		ch := &Channel{Number: len(c.Channels) + 1, Column: i + 1, Unit: col.unit.base, Samples: t.values[d.plan.steps[i].to], Axis: axes[0]}
 		if col.time >= 0 {
 			ch.Axis = axes[d.plan.steps[col.time].to]
 		}
-		if ch.Unit == "" && wholeNumbers(ch.Samples) {
+		if ch.Unit == "" && col.whole && wholeNumbers(ch.Samples) {
 			ch.Unit = "counts"
 		}
 		ch.Name = d.channelName(i, ch.Number)
@@ -60,9 +60,10 @@ func (d *layoutDesign) addChannels(c *Capture, t *table, axes []*Axis) {
 	}
 }
 
+// wholeNumbers reports samples without fractions, as raw codes are.
 func wholeNumbers(v []float64) bool {
 	for _, x := range v {
-		if x != math.Trunc(x) {
+		if x != math.Trunc(x) && !math.IsNaN(x) {
 			return false
 		}
 	}

@@ -29,6 +29,8 @@ type Channel struct {
 	Number int
 	// Name is the channel's name as the file gives it, or "channel N".
 	Name string
+	// Column is the number of its column in the file, from 1.
+	Column int
 	// Unit is the SI unit of the samples without prefix ("V", "A"), or "" when
 	// the file does not tell; "counts" for raw converter codes.
 	Unit string

@@ -29,9 +29,40 @@ func design(h *head, opt Options) (*layoutDesign, *Error) {
 	}
 	d.readBeside()
 	d.heading = findNames(h, &d.preamble)
+	if err := d.brokenRow(); err != nil {
+		return nil, err
+	}
 	d.columns = newColumns(h, d.heading)
 	assignRoles(h, d.columns)
 	return d, d.makePlan()
+}
+
+// brokenRow refuses a line below the heading that holds a number where the
+// samples are, and words as well: a row that the search for the first row
+// would pass over without a word.
+func (d *layoutDesign) brokenRow() *Error {
+	h := d.head
+	heading := max(d.heading.namesLine, d.heading.unitsLine)
+	if heading == 0 {
+		return nil
+	}
+	for _, l := range h.lines[heading:h.first] {
+		cells := h.split(l.text, nil)
+		bad, numbers := -1, 0
+		for i, k := range h.kinds[:min(len(h.kinds), len(cells))] {
+			switch got := h.kindOf(cells[i]); {
+			case !k.numeric():
+			case got == k:
+				numbers++
+			case got == kindText && bad < 0:
+				bad = i
+			}
+		}
+		if numbers > 0 && bad >= 0 {
+			return &Error{Err: ErrSyntax, Line: l.number, Column: bad + 1, Found: quote(string(cells[bad].text)), Expected: "a number"}
+		}
+	}
+	return nil
 }
 
 // readBeside reads metadata that stand in columns beside the first samples.

@@ -13,7 +13,7 @@ type dialect struct {
 // dialects are tried in this order; the first of equals is taken.
 var dialects = []dialect{
 	{';', '.'}, {';', ','}, {'\t', '.'}, {'\t', ','}, {',', '.'},
-	{' ', '.'}, {' ', ','}, {'|', '.'}, {',', ','},
+	{' ', '.'}, {' ', ','}, {'|', '.'}, {'|', ','}, {',', ','},
 }
 
 // name is the separator in words.

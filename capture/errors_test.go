@@ -52,6 +52,8 @@ func TestBadInput(t *testing.T) {
 		{"gzip cut off", zipped.String()[:zipped.Len()/2], ErrNotText, 0, 0, "not a text file: found a damaged or cut-off gzip file (unexpected EOF), expected text with columns of samples"},
 		{"not a number", broken(2000, 1502, "600.0,0.1,x7.2"), ErrSyntax, 1502, 3, `line 1502, column 3: found "x7.2", expected a number`},
 		{"not a number in the head", broken(60, 22, "8.0,0.1.2,0.3"), ErrSyntax, 22, 2, `line 22, column 2: found "0.1.2", expected a number`},
+		{"not a number in the first row", broken(60, 2, "0.0,x,0.3"), ErrSyntax, 2, 2, `line 2, column 2: found "x", expected a number`},
+		{"not a number in the second row", broken(60, 3, "0.4,0.1,x"), ErrSyntax, 3, 3, `line 3, column 3: found "x", expected a number`},
 		{"not a time", broken(2000, 1502, "noon,0.1,0.2"), ErrSyntax, 1502, 1, `line 1502, column 1: found "noon", expected a time as a number`},
 		{"no time", broken(2000, 1502, ",0.1,0.2"), ErrSyntax, 1502, 1, `line 1502, column 1: found an empty cell, expected a time as a number`},
 		{"row too short", broken(2000, 1502, "600.0,0.1"), ErrSyntax, 1502, 0, `line 1502: found a row of 2 cells, expected 3`},

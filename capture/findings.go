@@ -2,17 +2,28 @@ package capture
 
 import (
 	"fmt"
+	"slices"
 	"strconv"
 	"strings"
 	"unicode/utf8"
 )
 
+// note adds a finding; what two time columns have in common is said once.
 func (c *Capture) note(code Code, s Severity, message, remedy string) {
-	c.Findings = append(c.Findings, Finding{code, s, message, remedy})
+	f := Finding{code, s, message, remedy}
+	if !slices.Contains(c.Findings, f) {
+		c.Findings = append(c.Findings, f)
+	}
 }
 
-// addFindings says what was left out.
+// addFindings says what is missing and what was left out.
 func (d *layoutDesign) addFindings(c *Capture, t *table) {
+	d.missing(c, t)
+	d.ignored(c)
+}
+
+// missing counts the samples that the file does not hold.
+func (d *layoutDesign) missing(c *Capture, t *table) {
 	for i := range d.columns {
 		if d.columns[i].Role != RoleChannel {
 			continue
@@ -23,6 +34,15 @@ func (d *layoutDesign) addFindings(c *Capture, t *table) {
 				"set the vertical scale so that the whole record is on screen")
 		}
 	}
+	col := max(0, firstWithRole(d.columns, RoleChannel))
+	if n := d.preamble.number(meansCount, col, "", unit{}); n.ok && n.value > float64(t.rows) && n.value < 1e12 {
+		c.note(MissingSamples, Note, fmt.Sprintf("the preamble declares %.0f samples, and %d are there", n.value, t.rows),
+			"see whether the file was cut off")
+	}
+}
+
+// ignored lists the columns that are no channels.
+func (d *layoutDesign) ignored(c *Capture) {
 	var parts []string
 	last := len(d.columns) - 1
 	for i := range d.columns {
@@ -67,25 +87,32 @@ func validHead(b []byte) bool {
 	return len(b) == 0
 }
 
-// Channel returns the channel of that name, or of that number; names count
-// first, and capitals do not. The error lists the channels there are.
+// Channel returns the channel of that name, or of that number. Names count
+// first, then the headings of the columns; capitals do not matter. The error
+// lists the channels there are.
 func (c *Capture) Channel(nameOrNumber string) (*Channel, error) {
-	for _, ch := range c.Channels {
-		if ch.Name == nameOrNumber {
-			return ch, nil
+	ask := strings.TrimSpace(nameOrNumber)
+	for _, same := range []func(ch *Channel) bool{
+		func(ch *Channel) bool { return ch.Name == ask },
+		func(ch *Channel) bool { return strings.EqualFold(ch.Name, ask) },
+		func(ch *Channel) bool { return ask != "" && strings.EqualFold(c.heading(ch), ask) },
+		func(ch *Channel) bool { return strconv.Itoa(ch.Number) == ask },
+	} {
+		if i := slices.IndexFunc(c.Channels, same); i >= 0 {
+			return c.Channels[i], nil
 		}
-	}
-	for _, ch := range c.Channels {
-		if strings.EqualFold(ch.Name, strings.TrimSpace(nameOrNumber)) {
-			return ch, nil
-		}
-	}
-	if n, err := strconv.Atoi(nameOrNumber); err == nil && n > 0 && n <= len(c.Channels) {
-		return c.Channels[n-1], nil
 	}
 	var list []string
 	for _, ch := range c.Channels {
 		list = append(list, fmt.Sprintf("%d %q", ch.Number, ch.Name))
 	}
 	return nil, fmt.Errorf("no channel %q in %s, which has %s", nameOrNumber, c.File, strings.Join(list, ", "))
+}
+
+// heading is the name of the channel's column as the file gives it.
+func (c *Capture) heading(ch *Channel) string {
+	if ch.Column < 1 || ch.Column > len(c.Layout.Columns) {
+		return ""
+	}
+	return c.Layout.Columns[ch.Column-1].Name
 }

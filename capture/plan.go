@@ -38,9 +38,10 @@ type plan struct {
 
 // A chunk is a run of whole lines and what the data pass made of it.
 type chunk struct {
-	text  []byte // ends in the plan's term
-	line  int    // number of its first line
-	lines int
+	text   []byte  // ends in the plan's term
+	buffer *[]byte // what text lies in, to be used again; nil for the head
+	line   int     // number of its first line
+	lines  int
 
 	dst     [][]float64 // for each column of samples, room for as many as lines
 	now     []instant   // the stamps of the row being read

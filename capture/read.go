@@ -1,7 +1,9 @@
 package capture
 
 import (
+	"fmt"
 	"io"
+	"math"
 	"os"
 )
 
@@ -21,7 +23,8 @@ type Options struct {
 }
 
 // ReadFile reads the capture in the named file. Text that cannot be a capture
-// gives an [*Error]; a file that cannot be read gives the system's error.
+// gives an [*Error]; a file that cannot be read gives the system's error, and
+// options that make no sense a plain one.
 func ReadFile(name string, opt Options) (*Capture, error) {
 	f, err := os.Open(name)
 	if err != nil {
@@ -44,7 +47,22 @@ func Read(r io.Reader, name string, opt Options) (*Capture, error) {
 	return read(r, name, 0, opt)
 }
 
+// check refuses options that no file could go with.
+func (o Options) check() error {
+	if o.Interval < 0 || math.IsNaN(o.Interval) || math.IsInf(o.Interval, 0) {
+		return fmt.Errorf("sampling interval of %v s: expected a positive time", o.Interval)
+	}
+	switch o.TimeUnit {
+	case "", "s", "ms", "us", "ns", "ps":
+		return nil
+	}
+	return fmt.Errorf("unit of time %q: expected s, ms, us, ns or ps", o.TimeUnit)
+}
+
 func read(r io.Reader, name string, size int64, opt Options) (*Capture, error) {
+	if err := opt.check(); err != nil {
+		return nil, err
+	}
 	src, err := openSource(r, name, size, opt)
 	if err != nil {
 		return nil, err
@@ -60,6 +78,10 @@ func read(r io.Reader, name string, size int64, opt Options) (*Capture, error) {
 	}
 	t, err := d.plan.scan(src, h)
 	if err != nil {
+		// A file that was cut while it was read breaks in the middle of a row.
+		if src.meter.ended && src.unchanged() != nil {
+			err = src.unchanged()
+		}
 		return nil, err
 	}
 	c := &Capture{File: name}

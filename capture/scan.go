@@ -102,16 +102,17 @@ func (s *scanner) work(c *chunk, stamps [][]float64) {
 	if c.err != nil {
 		s.failed.Store(true)
 	}
-	if text := c.text[:cap(c.text)]; len(text) == blockSize+1 {
-		s.free.Put(&text)
+	if c.buffer != nil {
+		s.free.Put(c.buffer)
 	}
-	c.text = nil
+	c.text, c.buffer = nil, nil
 }
 
 // blocks cuts the text into blocks of whole lines and sends them to jobs.
 func (s *scanner) blocks(jobs chan<- *chunk, carry []byte) error {
 	for !s.failed.Load() {
-		buf := *s.free.Get().(*[]byte)
+		buffer := s.free.Get().(*[]byte)
+		buf := *buffer
 		kept := copy(buf, carry)
 		n, last, err := fill(s.src.text, buf[kept:blockSize])
 		text := buf[:kept+n]
@@ -124,7 +125,9 @@ func (s *scanner) blocks(jobs chan<- *chunk, carry []byte) error {
 		end := bytes.LastIndexByte(text, s.p.term) + 1
 		carry = append([]byte(nil), text[end:]...)
 		if end > 0 {
-			jobs <- s.chunk(text[:end], s.src.size()-s.src.meter.done+int64(len(text)))
+			c := s.chunk(text[:end], s.src.size()-s.src.meter.done+int64(len(text)))
+			c.buffer = buffer
+			jobs <- c
 		} else if !last {
 			e := longLine(s.line)
 			e.File = s.src.name

@@ -74,10 +74,11 @@ func zipKind(head []byte) string {
 	return "a zip archive (unpack it first)"
 }
 
-// isBinary reports control characters that no text holds. UTF-16 with its mark
-// is text in spite of its zero bytes.
+// isBinary reports control characters that no text holds. UTF-16 is text in
+// spite of its zero bytes.
 func isBinary(head []byte) bool {
-	if bytes.HasPrefix(head, []byte{0xff, 0xfe}) || bytes.HasPrefix(head, []byte{0xfe, 0xff}) {
+	if bytes.HasPrefix(head, []byte{0xff, 0xfe}) || bytes.HasPrefix(head, []byte{0xfe, 0xff}) ||
+		utf16Unmarked(head, 0) || utf16Unmarked(head, 1) {
 		return false
 	}
 	for _, c := range head {

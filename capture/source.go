@@ -109,6 +109,7 @@ type meter struct {
 	done     int64
 	size     int64
 	err      error // of the reader below, other than io.EOF
+	ended    bool  // io.EOF has been seen
 	progress func(done, total int64)
 	told     time.Time
 }
@@ -120,7 +121,9 @@ func (m *meter) Read(p []byte) (int, error) {
 	n, err := m.r.Read(p)
 	m.hash.Write(p[:n])
 	m.done += int64(n)
-	if err != nil && err != io.EOF {
+	if err == io.EOF {
+		m.ended = true
+	} else if err != nil {
 		m.err = err
 	}
 	if m.progress != nil && time.Since(m.told) >= progressEvery {
@@ -144,8 +147,23 @@ func decode(head []byte, rest io.Reader) (io.Reader, string) {
 		return &utf16Reader{r: skip(2)}, "UTF-16 little-endian"
 	case bytes.HasPrefix(head, []byte{0xfe, 0xff}):
 		return &utf16Reader{r: skip(2), big: true}, "UTF-16 big-endian"
+	case utf16Unmarked(head, 0):
+		return &utf16Reader{r: rest}, "UTF-16 little-endian without mark"
+	case utf16Unmarked(head, 1):
+		return &utf16Reader{r: rest, big: true}, "UTF-16 big-endian without mark"
 	}
 	return rest, "UTF-8"
+}
+
+// utf16Unmarked reports text whose every second byte, other than those from
+// parity on, is zero: ASCII in UTF-16 without its mark.
+func utf16Unmarked(head []byte, parity int) bool {
+	for i, c := range head {
+		if (c == 0) != (i%2 != parity) {
+			return false
+		}
+	}
+	return len(head) >= 4 && len(head)%2 == 0
 }
 
 // toUTF8 reads a piece of text as UTF-8, or as Latin-1 when it is not UTF-8.
