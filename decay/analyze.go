@@ -70,7 +70,7 @@ type analysis struct {
 // gates finds the decays, and finds them anew without the samples that a limiter
 // cut off or that stand alone far off the first fit.
 func (a *analysis) gates() {
-	if rails := railed(a.s.y, a.step); len(rails) > 0 {
+	if rails := railed(a.s, a.step); len(rails) > 0 {
 		free := a.s.without(rails)
 		if found := findDecays(free, a.opt); len(found) > 0 {
 			if n, excess := found[0].beyond(a.s, rails); n > 0 && excess > math.Max(a.step, 2*found[0].fit.sigma()) {

@@ -146,7 +146,7 @@ func (f *ringFit) value(n float64) float64 {
 // after the start of the fitted window.
 func (f *ringFit) residuals(s series, n0 float64) []float64 {
 	out := make([]float64, s.len())
-	if s.times != nil || f.bend != nil {
+	if !s.even() || f.bend != nil {
 		for i, v := range s.y {
 			out[i] = v - f.value(n0+s.position(i))
 		}

@@ -16,11 +16,12 @@ type gate struct {
 }
 
 const (
-	seedsTried = 4       // per onset
-	coreMost   = 1 << 15 // samples of a first fit
-	tailLimit  = 12      // time constants after which nothing is left to learn
-	breakSigma = 6       // departure that cannot be noise...
-	breakShare = 0.03    // ...nor a model that is slightly wrong
+	seedsTried     = 4       // per onset
+	coreMost       = 1 << 15 // samples of a first fit
+	tailLimit      = 12      // time constants after which nothing is left to learn
+	breakSigma     = 6       // departure that cannot be noise...
+	breakShare     = 0.03    // ...nor a model that is slightly wrong,
+	breakNeighbour = 4       // if another such sample stands less than this apart
 )
 
 // findGate finds the free decay in s: where it begins, after the edge that
@@ -150,12 +151,15 @@ func newPlateaus(p *pyramid) *plateaus {
 	n := (len(y) + block - 1) / block
 	out := &plateaus{block: block, sum: make([]float64, n+1), sqs: make([]float64, n+1)}
 	ref := y[len(y)/2]
-	for i := range n {
-		out.sum[i+1], out.sqs[i+1] = out.sum[i], out.sqs[i]
-		for _, v := range y[i*block : min(len(y), (i+1)*block)] {
-			out.sum[i+1] += v - ref
-			out.sqs[i+1] += (v - ref) * (v - ref)
+	halves(n, func(first, last int) func() {
+		for i := first; i < last; i++ {
+			out.sum[i+1], out.sqs[i+1], _ = sums(y[i*block:min(len(y), (i+1)*block)], ref)
 		}
+		return func() {}
+	})
+	for i := range n {
+		out.sum[i+1] += out.sum[i]
+		out.sqs[i+1] += out.sqs[i]
 	}
 	return out
 }
@@ -198,7 +202,7 @@ func (g *gate) growForward(s series, fixedEnd bool) {
 			return
 		}
 		to := min(limit, g.last+max(g.last-g.first, 8))
-		if i, broken := g.breakIn(s, g.last, to, 1); broken && !fixedEnd {
+		if i, broken := g.breakIn(s, g.last, to); broken && !fixedEnd {
 			g.last, g.cutAfter = i, true
 			return
 		}
@@ -224,33 +228,32 @@ func refit(window series, f *ringFit, shift, tolerance float64) (ringFit, bool) 
 	return fitSum(window, pole{f.a, f.w}, f.companionPole(), tolerance)
 }
 
-// breakIn walks from sample i towards to (not included) and returns the first
-// sample that departs from the fit by more than noise, prediction and a slightly
-// wrong model explain, provided that a neighbour further on agrees.
-func (g *gate) breakIn(s series, i, to, step int) (int, bool) {
-	sigma := g.lateSigma()
+// breakIn returns the first of the samples from to to-1 behind the fitted window
+// that departs from the fit by more than noise, prediction and a slightly wrong
+// model explain, provided that another does so close by.
+func (g *gate) breakIn(s series, from, to int) (int, bool) {
 	cov, ok := g.fit.normal.jtj.inverse()
 	if !ok {
-		return i, false
+		return to, false
 	}
-	size := g.fit.size()
-	origin := s.time(g.first)
-	held := -1
-	for ; i != to; i += step {
-		n := (s.time(i) - origin) / s.dt
-		r := math.Abs(s.y[i] - g.fit.value(n))
-		if math.IsNaN(r) {
-			continue
-		}
-		limit := breakSigma*sigma + breakShare*size*math.Exp(-math.Max(0, g.fit.a*math.Min(n, 0)))
-		if r > limit && r > limit+breakSigma*sigma*(g.fit.spread(&cov, n)) {
-			if held >= 0 && abs(i-held) <= 3 {
+	sigma := g.lateSigma()
+	limit := breakSigma*sigma + breakShare*g.fit.size()
+	origin := s.slice(g.first, s.len())
+	held := -breakNeighbour
+	for at := from; at < to; at += glitchBlock {
+		block := s.slice(at, min(at+glitchBlock, to))
+		for i, r := range g.fit.residuals(block, origin.position(at-g.first)) {
+			r = math.Abs(r)
+			if !(r > limit) || r <= limit+breakSigma*sigma*g.fit.spread(&cov, origin.position(at+i-g.first)) {
+				continue
+			}
+			if at+i-held < breakNeighbour {
 				return held, true
 			}
-			held = i
+			held = at + i
 		}
 	}
-	return i, false
+	return to, false
 }
 
 // spread is the standard deviation of the curve n intervals after its start,
@@ -284,11 +287,4 @@ func (g *gate) lateSigma() float64 {
 		half = g.fit.s.len() - noiseSamples
 	}
 	return robustSigma(g.fit.residuals(late, g.fit.s.position(half)))
-}
-
-func abs(i int) int {
-	if i < 0 {
-		return -i
-	}
-	return i
 }

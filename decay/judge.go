@@ -10,7 +10,7 @@ import (
 const (
 	samplesLeast  = 8
 	decaySigma    = 3    // a rate nearer to zero than this is no decay
-	ringingLeast  = 4    // samples that must carry the ring
+	ringingLeast  = 3    // samples that must carry the ring
 	fallsShare    = 0.25 // of the energy that a bare exponential may leave
 	oscillateGain = 16   // chi-squared that an oscillation must explain beyond an exponential
 )
@@ -24,15 +24,9 @@ func unfit(s series, first, last int) (Finding, bool) {
 			fmt.Sprintf("only %d samples lie in the gate; at least %d are needed to fit a decay.", n, samplesLeast),
 			"Widen the gate, or capture more samples of the decay."), true
 	}
-	lo, hi := math.Inf(1), math.Inf(-1)
-	for _, v := range w.y {
-		if !math.IsNaN(v) {
-			lo, hi = math.Min(lo, v), math.Max(hi, v)
-		}
-	}
-	if lo == hi {
+	if s.lo == s.hi {
 		return fault(capture.NoDecay,
-			fmt.Sprintf("All %d samples have the same value, %g.", n, lo),
+			fmt.Sprintf("All %d samples have the same value, %g.", n, s.lo),
 			"Check the probe, the channel and the vertical range."), true
 	}
 	return Finding{}, false
@@ -99,11 +93,11 @@ func noDecay(g *gate, d *Decay, v noise) (Finding, bool) {
 }
 
 // samplesRinging is the number of samples that carry the ring: the square of its
-// energy over the sum of its fourth powers.
+// energy over the sum of its fourth powers, along the envelope.
 func (f *ringFit) samplesRinging() float64 {
 	e2, e4 := 0.0, 0.0
 	for i := range min(f.s.len(), 256) {
-		v := sq(f.ring(float64(i)))
+		v := math.Exp(-2 * f.a * float64(i))
 		e2 += v
 		e4 += v * v
 	}
@@ -123,6 +117,9 @@ func energyNeeded(n int) float64 { return 2*math.Log(float64(n)) + 20 }
 // notOscillating refuses what does not swing: the fit must explain more than a
 // bare exponential does.
 func notOscillating(f *ringFit, v noise) (Finding, bool) {
+	if f.w > heavyRatio*f.a {
+		return Finding{}, false // it swings several times: no exponential does
+	}
 	e, ok := fitExponential(f.s)
 	if !ok {
 		return Finding{}, false

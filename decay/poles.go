@@ -4,7 +4,6 @@ import (
 	"math"
 	"math/cmplx"
 	"slices"
-	"sync"
 )
 
 // A pole is one exponential of a model, exp((-a + jw) n) with n in intervals:
@@ -35,26 +34,47 @@ type poles struct {
 }
 
 func newPoles(s series, rings, falls int) *poles {
-	p := &poles{given: s, s: s, rings: rings, falls: falls, ref: s.mean()}
-	for i, v := range s.y {
-		if math.IsNaN(v) {
-			p.missing = append(p.missing, i)
-			continue
-		}
-		v -= p.ref
-		p.y += v
-		p.yy += v * v
-	}
-	p.n = s.len() - len(p.missing)
+	p := &poles{given: s, s: s, rings: rings, falls: falls, ref: s.thinned(levelSamples).mean()}
+	halves(s.len(), func(first, last int) func() {
+		y, yy, n := sums(s.y[first:last], p.ref)
+		return func() { p.y, p.yy, p.n = p.y+y, p.yy+yy, p.n+n }
+	})
 	p.length = s.position(s.len() - 1)
-	if len(p.missing) > 0 && s.even() {
-		// At the reference level they add nothing to the sums with y.
-		p.s.y = slices.Clone(s.y)
-		for _, i := range p.missing {
+	if p.n < s.len() {
+		p.fillGaps()
+	}
+	return p
+}
+
+// levelSamples are enough for a level to count from.
+const levelSamples = 1 << 10
+
+// sums returns the sum and the sum of squares of y - ref and their number; NaN is
+// left out.
+func sums(y []float64, ref float64) (sum, squares float64, n int) {
+	for _, v := range y {
+		v -= ref
+		if v == v {
+			sum += v
+			squares += v * v
+			n++
+		}
+	}
+	return sum, squares, n
+}
+
+// fillGaps notes the samples that are not there and puts them at the reference
+// level, where they add nothing to the sums with y.
+func (p *poles) fillGaps() {
+	if p.s.even() {
+		p.s.y = slices.Clone(p.s.y)
+	}
+	for i, v := range p.s.y {
+		if math.IsNaN(v) && p.s.even() {
+			p.missing = append(p.missing, i)
 			p.s.y[i] = p.ref
 		}
 	}
-	return p
 }
 
 // newRing is the problem of one ring.
@@ -151,22 +171,14 @@ func (p *poles) takeOut(g *gram, list []pole) {
 	}
 }
 
-// parallelFrom is the number of samples from which two cores pay.
-const parallelFrom = 1 << 16
-
 // projectAll returns sum y z^n and sum y n z^n over all of y.
-func projectAll(y []float64, z pole, ref float64) [2]complex128 {
+func projectAll(y []float64, z pole, ref float64) (out [2]complex128) {
 	t := newPowers(z, len(y))
-	if len(y) < parallelFrom {
-		return t.project(y, 0, len(y), ref)
-	}
-	half := len(y) / 2 / blockLength * blockLength
-	var second [2]complex128
-	var wg sync.WaitGroup
-	wg.Go(func() { second = t.project(y, half, len(y), ref) })
-	first := t.project(y, 0, half, ref)
-	wg.Wait()
-	return [2]complex128{first[0] + second[0], first[1] + second[1]}
+	halves(len(y), func(first, last int) func() {
+		sum := t.project(y, first, last, ref)
+		return func() { out[0], out[1] = out[0]+sum[0], out[1]+sum[1] }
+	})
+	return out
 }
 
 func (p *poles) putProjection(g *gram, k int, sum [2]complex128) {

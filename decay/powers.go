@@ -35,51 +35,74 @@ func powerTable(z complex128, re, im *[blockLength]float64, n int) {
 }
 
 // project returns sum y z^n and sum y n z^n over the samples first to last-1 of
-// y, counted about ref; first is a multiple of the block length.
+// y, counted about ref; first is a multiple of the block length. The powers of z
+// at the blocks come from a second table, renewed exactly once a table.
 func (t *powers) project(y []float64, first, last int, ref float64) (sum [2]complex128) {
-	for at := first; at < last; at += blockLength {
-		b := t.block(y[at:min(at+blockLength, last)], ref)
-		base := t.z.at(float64(at))
-		sum[0] += base * b[0]
-		sum[1] += base * (complex(float64(at), 0)*b[0] + b[1])
+	var re, im [blockLength]float64
+	powerTable(t.z.at(blockLength), &re, &im, min(blockLength, (last-first)/blockLength+1))
+	const span = blockLength * blockLength
+	for far := first; far < last; far += span {
+		root := t.z.at(float64(far))
+		for k, at := 0, far; at < min(far+span, last); k, at = k+1, at+blockLength {
+			b := t.block(y[at:min(at+blockLength, last)], ref)
+			base := root * complex(re[k], im[k])
+			sum[0] += base * b[0]
+			sum[1] += base * (complex(float64(at), 0)*b[0] + b[1])
+		}
 	}
 	return sum
 }
 
+// block sums over one block. Two sets of sums let the additions overlap.
 func (t *powers) block(y []float64, ref float64) [2]complex128 {
-	var sr, si, mr, mi float64
+	var sr, si, mr, mi, tr, ti, nr, ni float64
 	re, im := t.re[:len(y)], t.im[:len(y)]
 	mre, mim := t.mre[:len(y)], t.mim[:len(y)]
-	for i, v := range y {
-		v -= ref
+	i := 0
+	for ; i+1 < len(y); i += 2 {
+		v, w := y[i]-ref, y[i+1]-ref
+		sr += v * re[i]
+		si += v * im[i]
+		mr += v * mre[i]
+		mi += v * mim[i]
+		tr += w * re[i+1]
+		ti += w * im[i+1]
+		nr += w * mre[i+1]
+		ni += w * mim[i+1]
+	}
+	if i < len(y) {
+		v := y[i] - ref
 		sr += v * re[i]
 		si += v * im[i]
 		mr += v * mre[i]
 		mi += v * mim[i]
 	}
-	return [2]complex128{complex(sr, si), complex(mr, mi)}
+	return [2]complex128{complex(sr+tr, si+ti), complex(mr+nr, mi+ni)}
 }
 
 // geometric returns sum n^k z^n over n = 0..count-1 for k = 0, 1, 2, with
-// z = exp(-a + jw), summed block by block: closed forms lose all digits where z is
-// near one.
+// z = exp(-a + jw). Closed forms lose all digits where z is near one: one block is
+// summed term by term, and the sum over blocks is a geometric one again, of
+// z^blockLength, with n = blockLength b + m.
 func geometric(z pole, count int) (sum [3]complex128) {
 	var re, im [blockLength]float64
 	powerTable(z.at(1), &re, &im, min(count, blockLength))
-	full := partial(&re, &im, min(blockLength, count))
-	for at := 0; at < count; at += blockLength {
-		b := full
-		if count-at < blockLength {
-			b = partial(&re, &im, count-at)
-		}
-		n := complex(float64(at), 0)
-		base := complex(1, 0)
-		if at > 0 {
-			base = z.at(float64(at))
-		}
-		sum[0] += base * b[0]
-		sum[1] += base * (n*b[0] + b[1])
-		sum[2] += base * (n*n*b[0] + 2*n*b[1] + b[2])
+	if count <= blockLength {
+		return partial(&re, &im, count)
+	}
+	const l = blockLength
+	blocks := count / l
+	g := geometric(pole{z.a * l, z.w * l}, blocks)
+	b := partial(&re, &im, l)
+	sum[0] = g[0] * b[0]
+	sum[1] = l*g[1]*b[0] + g[0]*b[1]
+	sum[2] = l*l*g[2]*b[0] + 2*l*g[1]*b[1] + g[0]*b[2]
+	if rest := count - blocks*l; rest > 0 {
+		n := complex(float64(blocks*l), 0)
+		base, r := z.at(float64(blocks*l)), partial(&re, &im, rest)
+		sum[0] += base * r[0]
+		sum[1] += base * (n*r[0] + r[1])
+		sum[2] += base * (n*n*r[0] + 2*n*r[1] + r[2])
 	}
 	return sum
 }

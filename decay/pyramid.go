@@ -36,10 +36,13 @@ func newPyramid(s series) *pyramid {
 
 func decimated(s series) series {
 	out := make([]float64, s.len()/pyramidRatio)
-	for i := range out {
-		b := s.y[i*pyramidRatio : i*pyramidRatio+pyramidRatio]
-		out[i] = (b[0] + b[1] + b[2] + b[3]) / pyramidRatio
-	}
+	halves(len(out), func(first, last int) func() {
+		for i := first; i < last; i++ {
+			b := s.y[i*pyramidRatio : i*pyramidRatio+pyramidRatio]
+			out[i] = (b[0] + b[1] + b[2] + b[3]) / pyramidRatio
+		}
+		return func() {}
+	})
 	return series{y: out, t0: s.t0 + s.dt*(pyramidRatio-1)/2, dt: s.dt * pyramidRatio}
 }
 

@@ -13,6 +13,8 @@ type series struct {
 	dt    float64   // mean interval, s
 	times []float64 // true times, s; nil when uniform
 	gaps  bool      // whether y holds a NaN
+	// lo and hi are the smallest and the largest sample of the whole record.
+	lo, hi float64
 	// stride, if not 0, is the distance of neighbours in intervals: the series was
 	// thinned.
 	stride int
@@ -20,13 +22,29 @@ type series struct {
 
 func newSeries(ch *capture.Channel) series {
 	s := series{y: ch.Samples, t0: ch.Axis.Start, dt: ch.Axis.Interval, times: ch.Axis.Times}
-	for _, v := range s.y {
-		if math.IsNaN(v) {
-			s.gaps = true
-			break
+	s.lo, s.hi = math.Inf(1), math.Inf(-1)
+	halves(len(s.y), func(first, last int) func() {
+		lo, hi, gaps := span(s.y[first:last])
+		return func() { s.lo, s.hi, s.gaps = min(s.lo, lo), max(s.hi, hi), s.gaps || gaps }
+	})
+	return s
+}
+
+// span returns the smallest and the largest sample, and whether any is missing.
+func span(y []float64) (lo, hi float64, gaps bool) {
+	lo, hi = math.Inf(1), math.Inf(-1)
+	for _, v := range y {
+		if v < lo {
+			lo = v
+		}
+		if v > hi {
+			hi = v
+		}
+		if v != v {
+			gaps = true
 		}
 	}
-	return s
+	return lo, hi, gaps
 }
 
 func (s series) len() int { return len(s.y) }
@@ -36,7 +54,8 @@ func (s series) even() bool { return s.times == nil && s.stride == 0 }
 
 // slice returns samples first to last-1.
 func (s series) slice(first, last int) series {
-	out := series{y: s.y[first:last], t0: s.time(first), dt: s.dt, gaps: s.gaps}
+	out := s
+	out.y, out.t0 = s.y[first:last], s.time(first)
 	if s.times != nil {
 		out.times = s.times[first:last]
 	}

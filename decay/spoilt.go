@@ -11,40 +11,38 @@ import (
 var sprintf = fmt.Sprintf
 
 const (
-	railRun     = 3    // samples in a row on a rail that may be clipped
-	railJump    = 3    // steps of the converter that the flank beside such a run takes at least
-	glitchSigma = 7    // departure that makes a sample an outlier
-	glitchShare = 0.02 // share of the samples beyond which it is the model that is wrong
-	levelsTail  = 4    // steps of a converter without dither at which the tail is cut
-	ditherLeast = 0.4  // noise in steps from which a converter counts as dithered
+	railRun     = 3       // samples in a row on a rail that may be clipped
+	railJump    = 3       // steps of the converter that the flank beside such a run takes at least
+	stepSamples = 1 << 13 // samples that tell the steps of a converter
+	glitchSigma = 7       // departure that makes a sample an outlier
+	glitchBlock = 1 << 14 // samples looked at in one go
+	glitchShare = 0.02    // share of the samples beyond which it is the model that is wrong
+	levelsTail  = 4       // steps of a converter without dither at which the tail is cut
+	ditherLeast = 0.4     // noise in steps from which a converter counts as dithered
 )
 
 // railed returns the samples that lie on the upper or lower end of the range in
 // flat runs with steep flanks: what a limiter or a converter cut off. The top of
 // an oscillation may repeat one level too, but leaves it slowly.
-func railed(y []float64, step float64) []int {
-	lo, hi := math.Inf(1), math.Inf(-1)
-	for _, v := range y {
-		if !math.IsNaN(v) {
-			lo, hi = math.Min(lo, v), math.Max(hi, v)
-		}
-	}
+func railed(s series, step float64) []int {
 	var out []int
-	for _, rail := range []float64{hi, lo} {
-		for i := 0; i < len(y); {
-			j := i
-			for j < len(y) && y[j] == rail {
-				j++
-			}
-			if j-i >= railRun && steepFlank(y, i, j, step) {
-				for k := i; k < j; k++ {
-					out = append(out, k)
-				}
-			}
-			i = max(j, i+1)
+	y := s.y
+	for i := 0; i < len(y); i++ {
+		rail := y[i]
+		if rail != s.hi && rail != s.lo {
+			continue
 		}
+		j := i
+		for j < len(y) && y[j] == rail {
+			j++
+		}
+		if j-i >= railRun && steepFlank(y, i, j, step) {
+			for k := i; k < j; k++ {
+				out = append(out, k)
+			}
+		}
+		i = j - 1
 	}
-	slices.Sort(out)
 	return out
 }
 
@@ -57,21 +55,28 @@ func steepFlank(y []float64, i, j int, step float64) bool {
 	return before || after
 }
 
-// step estimates the step of the converter: the smallest difference between
-// levels that the samples take, 0 when they take too many to be steps.
+// stepOf estimates the step of the converter: the smallest difference between
+// levels that the samples take, provided that all others are multiples of it; 0
+// when the samples know no steps.
 func stepOf(y []float64) float64 {
-	levels := slices.Clone(y[:min(len(y), 1<<15)])
+	levels := slices.Clone(y[:min(len(y), stepSamples)])
 	levels = slices.DeleteFunc(levels, math.IsNaN)
 	slices.Sort(levels)
 	levels = slices.Compact(levels)
-	if len(levels) < 2 || len(levels) > len(y)/2 && len(levels) > 64 {
+	if len(levels) < 2 {
 		return 0
 	}
 	span := levels[len(levels)-1] - levels[0]
 	least := math.Inf(1)
 	for i := 1; i < len(levels); i++ {
-		if d := levels[i] - levels[i-1]; d > 1e-9*span {
+		if d := levels[i] - levels[i-1]; d > 1e-7*span {
 			least = math.Min(least, d)
+		}
+	}
+	for i := 1; i < len(levels); i++ {
+		// Printed values are rounded: a tenth of a step is no new level.
+		if d := (levels[i] - levels[i-1]) / least; d > 0.1 && math.Abs(d-math.Round(d)) > 0.1 {
+			return 0
 		}
 	}
 	return least
@@ -122,18 +127,21 @@ func clippedFinding(count int, excess, size float64) Finding {
 // glitches returns the samples of the gate that stand alone far off the fit.
 func (g *gate) glitches(s series) []int {
 	window := s.slice(g.first, g.last)
-	r := g.fit.residuals(window, 0)
-	limit := glitchSigma * robustSigma(slices.Clone(r))
+	sample := window.thinned(noiseSamples)
+	limit := glitchSigma * robustSigma(g.fit.residuals(sample, 0))
 	if !(limit > 0) {
 		return nil
 	}
 	var out []int
-	for i, v := range r {
-		if math.Abs(v) > limit {
-			out = append(out, g.first+i)
+	for at := 0; at < window.len(); at += glitchBlock {
+		block := window.slice(at, min(at+glitchBlock, window.len()))
+		for i, v := range g.fit.residuals(block, window.position(at)) {
+			if math.Abs(v) > limit {
+				out = append(out, g.first+at+i)
+			}
 		}
 	}
-	if float64(len(out)) > math.Max(1, glitchShare*float64(len(r))) {
+	if float64(len(out)) > math.Max(1, glitchShare*float64(window.len())) {
 		return nil
 	}
 	return out
