@@ -137,6 +137,7 @@ func TestLineEnds(t *testing.T) {
 			understand(t, strings.TrimRight(s, "\r\n"), Options{}, w) // no final line end
 			understand(t, s+end+end, Options{}, w)
 			understand(t, end+s, Options{}, w)
+			understand(t, strings.ReplaceAll(s, end, " "+end), Options{}, w) // blanks at the end of every line
 		})
 	}
 }
@@ -280,6 +281,10 @@ func TestPreambles(t *testing.T) {
 			Options{TimeUnit: "ns"}, want{interval: 0.4e-9, channels: "V_C/"}},
 		{"count and interval in the preamble", "Sampling rate: 2.5 MSa/s\nsample,V_C (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%d,%s", i, ring(1, i)) }),
 			Options{}, want{interval: 0.4e-6, channels: "V_C/V"}},
+		{"a line that names the separator", "sep=;\ntime (s);CH1 (V)\n" + lines(rows, func(i int) string { return strings.Replace(pair(i), ",", ";", 1) }),
+			Options{}, want{interval: 4e-6, channels: "CH1/V"}},
+		{"fewer samples than declared", "Record Length,100\ntime (s),CH1 (V)\n" + lines(rows, pair), Options{},
+			want{interval: 4e-6, channels: "CH1/V", findings: "missing-samples", check: has(MissingSamples, Note, "declares 100 samples, and 60 are there")}},
 		{"footer", "time (s),CH1 (V)\n" + lines(rows, pair) + "\nend of record\n", Options{}, want{interval: 4e-6, channels: "CH1/V"}},
 	} {
 		t.Run(c.name, func(t *testing.T) { understand(t, c.text, c.opt, c.w) })

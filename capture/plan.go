@@ -122,23 +122,11 @@ func (p *plan) fastRow(c *chunk, i int) int {
 		}
 		switch s.op {
 		case opSkip:
-			for b[i] != p.delim && b[i] != p.term && b[i] != '"' {
-				if p.delim == ' ' && b[i] == '\t' {
-					break
-				}
-				i++
-			}
+			i = p.skipCell(b, i)
 		case opClock:
-			end := i
-			for b[end] != p.delim && b[end] != p.term && b[end] != '\r' {
-				end++
-			}
-			t, ok := parseStamp(bytes.TrimRight(b[i:end], " "), p.dayFirst)
-			if !ok {
+			if i = p.clockCell(c, s, i); i < 0 {
 				return -1
 			}
-			c.now[s.to] = t.instant(p.zero)
-			i = end
 		default:
 			quoted := b[i] == '"'
 			if quoted {
@@ -175,6 +163,28 @@ func (p *plan) fastRow(c *chunk, i int) int {
 	return p.lineEnd(b, i)
 }
 
+// skipCell steps over a cell that is not read, up to a quote in it.
+func (p *plan) skipCell(b []byte, i int) int {
+	for b[i] != p.delim && b[i] != p.term && b[i] != '"' && (p.delim != ' ' || b[i] != '\t') {
+		i++
+	}
+	return i
+}
+
+// clockCell reads a date or clock time; -1 when there is none.
+func (p *plan) clockCell(c *chunk, s *step, i int) int {
+	b, end := c.text, i
+	for b[end] != p.delim && b[end] != p.term && b[end] != '\r' {
+		end++
+	}
+	t, ok := parseStamp(bytes.TrimRight(b[i:end], " "), p.dayFirst)
+	if !ok {
+		return -1
+	}
+	c.now[s.to] = t.instant(p.zero)
+	return end
+}
+
 // separator steps over what parts two cells.
 func (p *plan) separator(b []byte, i int) int {
 	if p.delim == ' ' {
@@ -203,7 +213,7 @@ func (p *plan) lineEnd(b []byte, i int) int {
 	if p.last < len(p.steps)-1 && (b[i] == p.delim || b[i] == ' ' || b[i] == '\t') {
 		return i + bytes.IndexByte(b[i:], p.term) + 1
 	}
-	for b[i] == '\r' || b[i] == ' ' || b[i] == p.delim {
+	for b[i] != p.term && (b[i] == '\r' || b[i] == ' ' || b[i] == p.delim) {
 		i++
 	}
 	if b[i] == p.term {

@@ -73,12 +73,14 @@ func assignRoles(h *head, cols []column) {
 	for i := range cols {
 		c := &cols[i]
 		switch {
+		case c.kind == kindBlank && h.metadataBeside(i) && (c.Name == "" || meanings[fold(c.Name)] != meansNothing):
+			c.is(RoleMetadata, "words or numbers beside the first samples only")
 		case c.kind == kindBlank && h.metadataBeside(i):
-			c.is(RoleMetadata, "words beside the first samples only")
+			c.is(RoleText, "a few cells only hold anything")
 		case c.kind == kindBlank:
 			c.is(RoleBlank, "no cell in it holds anything")
-		case c.kind == kindText && h.metadataBeside(i):
-			c.is(RoleMetadata, "words beside the first samples only")
+		case c.kind == kindText && c.Name == "" && h.metadataBeside(i):
+			c.is(RoleMetadata, "words or numbers beside the first samples only")
 		case c.kind == kindText:
 			c.is(RoleText, "words instead of numbers")
 		}
