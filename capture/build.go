@@ -3,6 +3,7 @@ package capture
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 )
 
@@ -156,7 +157,7 @@ func (d *layoutDesign) joinPeaks(channels []int, values func(int) []float64) {
 			continue
 		}
 		lo, hi := values(i), values(j)
-		if stem == a.Name && !ordered(lo, hi) {
+		if !ordered(lo, hi) && !ordered(hi, lo) {
 			continue
 		}
 		for n := range lo {
@@ -168,31 +169,23 @@ func (d *layoutDesign) joinPeaks(channels []int, values func(int) []float64) {
 	}
 }
 
-// peakPair reports names that differ in minimum and maximum only, or not at
-// all, and what they have in common.
+// peakPair reports names that differ at most in words for minimum and maximum,
+// and what they have in common.
 func peakPair(a, b string) (string, bool) {
-	if a == "" || a == b {
-		return a, a != ""
-	}
-	strip := func(name string) (string, bool) {
-		found := false
-		var keep []string
-		for _, w := range words(name) {
+	strip := func(name string) string {
+		return strings.Join(slices.DeleteFunc(words(name), func(w string) bool {
 			switch w {
-			case "min", "max", "minimum", "maximum", "low", "high":
-				found = true
-			default:
-				keep = append(keep, w)
+			case "min", "max", "minimum", "maximum", "low", "high", "lo", "hi", "peak", "detect", "pk", "pkdetect", "peakdetect":
+				return true
 			}
-		}
-		return strings.Join(keep, " "), found
+			return false
+		}), " ")
 	}
-	x, okX := strip(a)
-	y, okY := strip(b)
-	if !okX || !okY || x != y {
+	x := strip(a)
+	if x != strip(b) || a == "" || b == "" {
 		return "", false
 	}
-	if n := strings.Index(strings.ToLower(a), x); x != "" && n >= 0 {
+	if n := strings.Index(strings.ToLower(a), x); x != "" && n >= 0 && n+len(x) <= len(a) {
 		return a[n : n+len(x)], true
 	}
 	return x, true

@@ -83,6 +83,13 @@ func (d *layoutDesign) readBeside() {
 
 // makePlan turns roles into steps of the data pass.
 func (d *layoutDesign) makePlan() *Error {
+	// A unit of time makes a count of samples a time.
+	if i := firstWithRole(d.columns, RoleIndex); i >= 0 && d.opt.TimeUnit != "" && !d.declared(i).ok && firstWithRole(d.columns, RoleTime) < 0 {
+		d.columns[i].is(RoleTime, "whole numbers, and a unit of time is given")
+		for k := range d.columns {
+			d.columns[k].time = i
+		}
+	}
 	d.plan = plan{dialect: d.head.dialect, term: d.head.term, steps: make([]step, len(d.columns))}
 	timed := firstWithRole(d.columns, RoleTime) >= 0
 	for i := range d.columns {

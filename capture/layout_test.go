@@ -279,6 +279,8 @@ func TestPreambles(t *testing.T) {
 			Options{}, want{interval: 4e-6, channels: "CH1/V CH2/V", value: scaled(-3), findings: "ignored-columns"}},
 		{"unit of time given", "time,V_C\n" + lines(rows, func(i int) string { return at(i, 0.4, 1) + "," + ring(1, i) }),
 			Options{TimeUnit: "ns"}, want{interval: 0.4e-9, channels: "V_C/"}},
+		{"unit of time given for whole numbers", lines(rows, func(i int) string { return at(i, 1, 0) + " " + ring(1, i) }),
+			Options{TimeUnit: "us"}, want{interval: 1e-6, channels: "channel_1/"}},
 		{"count and interval in the preamble", "Sampling rate: 2.5 MSa/s\nsample,V_C (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%d,%s", i, ring(1, i)) }),
 			Options{}, want{interval: 0.4e-6, channels: "V_C/V"}},
 		{"a line that names the separator", "sep=;\ntime (s);CH1 (V)\n" + lines(rows, func(i int) string { return strings.Replace(pair(i), ",", ";", 1) }),

@@ -1,6 +1,9 @@
 package capture
 
-import "strings"
+import (
+	"slices"
+	"strings"
+)
 
 // A heading is what stands above the columns: their names and units.
 type heading struct {
@@ -194,8 +197,11 @@ func (h *head) place(cells []cell, set func(col int, text string)) {
 // stands below it, in the units row or the first row of samples.
 func (p *preamble) readBelow(h *head, names int, header []cell) {
 	for col, c := range header {
+		if c.blank() || isDelta(toUTF8(c.text), header) {
+			continue
+		}
 		e, rest, ok := readKey(toUTF8(c.text))
-		if c.blank() || !ok || rest != "" || e.means == meansSource || !h.aside(col) {
+		if !ok || rest != "" || e.means == meansSource || !h.aside(col) {
 			continue
 		}
 		for _, l := range h.lines[names+1 : min(h.first+2, len(h.lines))] {
@@ -208,6 +214,12 @@ func (p *preamble) readBelow(h *head, names int, header []cell) {
 			}
 		}
 	}
+}
+
+// isDelta reports a heading dt beside a heading t: a deviation, no interval.
+func isDelta(text string, header []cell) bool {
+	rest, ok := strings.CutPrefix(text, "d")
+	return ok && slices.ContainsFunc(header, func(c cell) bool { return string(c.text) == rest })
 }
 
 // aside reports a column that is none of samples: it holds a number in the

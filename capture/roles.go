@@ -88,7 +88,11 @@ func assignRoles(h *head, cols []column) {
 	assignTime(cols)
 	for i := range cols {
 		if c := &cols[i]; c.Role == "" {
-			assignByName(c)
+			if of := deviationOf(cols, i); of >= 0 {
+				c.is(RoleDeviation, "its name is %q beside %q", c.Name, cols[of].Name)
+			} else {
+				assignByName(c)
+			}
 		}
 	}
 	assignDeviations(cols)
@@ -264,9 +268,45 @@ func assignByName(c *column) {
 			c.is(RoleDeviation, "its name is %q", c.Name)
 		}
 	}
-	if logicName(c.Name) && c.onlyBits() {
-		c.is(RoleLogic, "its name is %q, and it holds only 0 and 1", c.Name)
+	if logicName(c.Name) && c.whole {
+		c.is(RoleLogic, "its name is %q, and it holds whole numbers", c.Name)
 	}
+}
+
+// deviationOf returns the column whose standard deviation a column is by its
+// name, dV or uV beside V, and by its values; -1 if there is none.
+func deviationOf(cols []column, i int) int {
+	for j := range cols {
+		name, of := cols[i].Name, cols[j].Name
+		if i == j || of == "" || len(name) <= len(of) || !strings.HasSuffix(name, of) {
+			continue
+		}
+		switch strings.Trim(name[:len(name)-len(of)], " _") {
+		case "d", "u", "s", "e", "Δ", "δ", "σ", "D", "U", "S", "E":
+			if small(cols[i].values, cols[j].values) {
+				return j
+			}
+		}
+	}
+	return -1
+}
+
+// small reports values that are nowhere negative and small against the span of
+// those they stand beside.
+func small(u, values []float64) bool {
+	lo, hi, largest := math.Inf(1), math.Inf(-1), 0.0
+	for i, v := range values {
+		if u[i] < 0 {
+			return false
+		}
+		if !math.IsNaN(v) {
+			lo, hi = min(lo, v), max(hi, v)
+		}
+		if !math.IsNaN(u[i]) {
+			largest = max(largest, u[i])
+		}
+	}
+	return largest < (hi-lo)/5
 }
 
 func words(name string) []string {
@@ -278,16 +318,7 @@ func logicName(name string) bool {
 	if strings.HasPrefix(w, "digital") || strings.HasPrefix(w, "logic") || strings.HasPrefix(w, "bit") || strings.HasPrefix(w, "pod") {
 		return true
 	}
-	return len(w) > 1 && len(w) < 4 && w[0] == 'd' && w[1]-'0' <= 9
-}
-
-func (c *column) onlyBits() bool {
-	for _, v := range c.values {
-		if v != 0 && v != 1 && !math.IsNaN(v) {
-			return false
-		}
-	}
-	return true
+	return len(w) > 1 && w[0] == 'd' && w[1]-'0' <= 9 && strings.Trim(w, "d0123456789") == "" // D3, D7-D0
 }
 
 // assignDeviations finds columns of standard deviations in a table without
@@ -323,14 +354,12 @@ func assignDeviations(cols []column) {
 }
 
 func deviates(u, values []float64) bool {
-	lo, hi, largest := math.Inf(1), math.Inf(-1), 0.0
 	varies := false
-	for i, v := range values {
-		if u[i] <= 0 || math.IsNaN(u[i]) {
+	for _, x := range u {
+		if !(x > 0) {
 			return false
 		}
-		lo, hi, largest = math.Min(lo, v), math.Max(hi, v), math.Max(largest, u[i])
-		varies = varies || u[i] != u[0]
+		varies = varies || x != u[0]
 	}
-	return varies && largest < (hi-lo)/5
+	return varies && small(u, values)
 }

@@ -63,7 +63,7 @@ func parseUnit(text string) (unit, bool) {
 }
 
 // splitUnit parts a name as printed in a header into name and unit:
-// "CH1 (mV)", "Time[us]", "U / V", "time_us", "t in ms".
+// "CH1 (mV)", "Time[us]", "U / V", "time_us", "t in ms", "in s".
 func splitUnit(text string) (name string, u unit, ok bool) {
 	text = strings.TrimSpace(text)
 	for _, brackets := range []string{"()", "[]"} {
@@ -72,6 +72,11 @@ func splitUnit(text string) (name string, u unit, ok bool) {
 			if u, ok = parseUnit(text[open:]); ok {
 				return strings.TrimSpace(text[:open]), u, true
 			}
+		}
+	}
+	if rest, found := strings.CutPrefix(text, "in "); found {
+		if u, ok = parseUnit(rest); ok {
+			return "", u, true
 		}
 	}
 	for _, sep := range []string{" / ", "/", " in ", ", ", "_"} {
