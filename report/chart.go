@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 	"strconv"
+	"strings"
 
 	"github.com/go-echarts/go-echarts/v2/charts"
 	"github.com/go-echarts/go-echarts/v2/opts"
@@ -103,11 +104,29 @@ type axisScale struct {
 // scaleFor returns the scale for numbers from lo to hi that are told apart down to step.
 func scaleFor(lo, hi, step float64, unit string) axisScale {
 	s := axisScale{places: 3}
-	s.factor, s.unit = quantity.Scale(math.Max(math.Abs(lo), math.Abs(hi)), unit)
+	most := math.Max(math.Abs(lo), math.Abs(hi))
+	if s.factor, s.unit = quantity.Scale(most, unit); s.factor == 1 {
+		s.factor, s.unit = powers(most, s.unit)
+	}
 	if step > 0 {
 		s.places = max(0, min(15, int(math.Ceil(-math.Log10(step*s.factor)))))
 	}
 	return s
+}
+
+// powers scales by a power of a thousand, named in the unit, what has no prefix
+// and would need many zeros.
+func powers(most float64, unit string) (factor float64, scaled string) {
+	if !(most > 0) || math.IsInf(most, 0) || most >= 0.01 && most < 1e5 {
+		return 1, unit
+	}
+	p := 3 * int(math.Floor(math.Log10(most)/3))
+	return math.Pow10(-p), strings.TrimSpace("×10" + superscript(p) + " " + unit)
+}
+
+func superscript(n int) string {
+	return strings.NewReplacer("-", "⁻", "0", "⁰", "1", "¹", "2", "²", "3", "³", "4", "⁴",
+		"5", "⁵", "6", "⁶", "7", "⁷", "8", "⁸", "9", "⁹").Replace(strconv.Itoa(n))
 }
 
 func (s axisScale) column(v []float64) column {

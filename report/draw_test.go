@@ -133,6 +133,27 @@ func TestPageReadout(t *testing.T) {
 	p.quiet()
 }
 
+// The picture has headings and legends, which the page has as text, and the page
+// has none of them afterwards.
+func TestPagePicture(t *testing.T) {
+	p := open(t, browser(t), loop07().ringDown(), 1100, 900, "light")
+	got := eval[string](p, `(() => {
+		let saved = "", titles = "";
+		HTMLAnchorElement.prototype.click = function () { saved = this.download + " " + this.href; titles = JSON.stringify(`+theChart+`.getOption().title.map((t) => t.text)); };
+		document.querySelector('[data-do="picture"]').click();
+		return saved.slice(0, 60) + " " + saved.length + " " + titles;
+	})()`)
+	for _, want := range []string{"free-decay.png data:image/png;base64,", "loop 07, CH1 – Waveform", "fitted envelope", "two standard deviations"} {
+		if !strings.Contains(got, want) {
+			t.Errorf("no %q in %q", want, got)
+		}
+	}
+	if n := eval[int](p, theChart+`.getOption().title.filter((t) => t.show).length`); n != 0 {
+		t.Errorf("%d headings are left in the charts", n)
+	}
+	p.quiet()
+}
+
 func TestPageWidths(t *testing.T) {
 	ctx := browser(t)
 	several := loop07()

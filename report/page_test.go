@@ -117,6 +117,13 @@ func TestPageStructure(t *testing.T) {
 	}
 }
 
+// The text of the pages, byte by byte; scripts and styles are files of their own.
+func TestPageGolden(t *testing.T) {
+	for _, name := range []string{"doubtful", "refused", "several"} {
+		golden(t, name+".html", []byte(scripts.ReplaceAllString(pageOf(t, records()[name]), "$1$2")))
+	}
+}
+
 func checkHeadings(t *testing.T, all []*element) {
 	t.Helper()
 	level := 0

@@ -128,18 +128,22 @@ func (p *plot) waveform(r *RingDown, all []drawn, parts []segment) {
 	}
 	p.addDots(keySamples, data)
 	if len(all) > 0 {
-		p.readingMarks(&r.Result.Readings)
+		p.readingMarks(&r.Result.Readings, all[0].curve)
 	}
 }
 
-// readingMarks marks the points that the readings were made at.
-func (p *plot) readingMarks(read *decay.Readings) {
+// readingMarks marks the points that the readings were made at. The readings are
+// of the ring alone, about a level of their own: here they ride on the baseline
+// of the fit, which may move.
+func (p *plot) readingMarks(read *decay.Readings, fit curve) {
 	var crossings, peaks trace
 	for _, t := range read.Crossings {
-		crossings.add(t, read.Baseline)
+		_, _, b := fit.At(t)
+		crossings.add(t, b)
 	}
 	for _, q := range read.Peaks {
-		peaks.add(q.Time, q.Value)
+		_, _, b := fit.At(q.Time)
+		peaks.add(q.Time, b+q.Value-read.Baseline)
 	}
 	if len(crossings.t) > 0 {
 		p.addSeries(keyCrossings, "scatter", p.addTrace(thin(crossings), p.level), "v")

@@ -95,6 +95,22 @@ func TestColumn(t *testing.T) {
 	}
 }
 
+func TestScaleFor(t *testing.T) {
+	for _, c := range []struct {
+		most   float64
+		unit   string
+		factor float64
+		scaled string
+	}{
+		{0.02, "V", 1e3, "mV"}, {4e-4, "", 1e6, "×10⁻⁶"}, {4e-3, "", 1e3, "×10⁻³"}, {2e6, "counts", 1e-6, "×10⁶ counts"},
+		{614, "counts", 1, "counts"}, {0, "", 1, ""},
+	} {
+		if s := scaleFor(-c.most/2, c.most, c.most/1000, c.unit); math.Abs(s.factor/c.factor-1) > 1e-12 || s.unit != c.scaled {
+			t.Errorf("%g %s: got %g, %q, want %g, %q", c.most, c.unit, s.factor, s.unit, c.factor, c.scaled)
+		}
+	}
+}
+
 // Neighbouring samples stay apart on the page even late in a long record.
 func TestTimesStayApart(t *testing.T) {
 	l := loop07()

@@ -21,6 +21,12 @@
   // digits writes a number without the noise of binary fractions.
   const digits = (x, n) => minus(String(Number(x.toPrecision(n))));
 
+  // power writes a mark of a logarithmic axis.
+  const power = (x) => {
+    const n = Math.round(Math.log10(x));
+    return n > -3 && n < 5 ? digits(x, 3) : "10" + [...String(n)].map((c) => "⁻⁰¹²³⁴⁵⁶⁷⁸⁹"["-0123456789".indexOf(c)]).join("");
+  };
+
   // paint replaces "@name" by the colour of that name in the style sheet.
   const paint = (x) => {
     if (typeof x === "string") return x.startsWith("@") ? css(`--c-${x.slice(1)}`) : x;
@@ -67,9 +73,10 @@
     const o = paint(JSON.parse(source));
     o.backgroundColor = "transparent";
     o.textStyle = { fontFamily: getComputedStyle(document.body).fontFamily };
-    for (const x of o.xAxis) Object.assign(x, axisStyle(), { nameLocation: "end", nameGap: 4, axisLabel: { ...label((v) => digits(v, 9)), showMinLabel: false, showMaxLabel: false } });
-    o.xAxis.forEach((x) => Object.assign(x.nameTextStyle, { align: "right", verticalAlign: "top", padding: [9, -margin().right + 4, 0, 0] }));
+    for (const x of o.xAxis) Object.assign(x, axisStyle(), { nameLocation: "end", nameGap: 0, nameMoveOverlap: false, axisLabel: { ...label((v) => digits(v, 9)), showMinLabel: false, showMaxLabel: false } });
+    o.xAxis.forEach((x) => Object.assign(x.nameTextStyle, { align: "right", verticalAlign: "top", padding: [1.9 * fontSize(), 0, 0, 0] }));
     o.yAxis.forEach((y) => Object.assign(y, axisStyle(), { nameLocation: "end", nameGap: 12, axisLabel: label((v) => digits(v, 6)) }));
+    o.yAxis.filter((y) => y.type === "log").forEach((y) => { y.axisLabel.formatter = power; });
     o.yAxis.forEach((y) => Object.assign(y.nameTextStyle, { align: "right", padding: [0, 8, 0, 0] }));
     Object.assign(o.tooltip, { formatter: tip, confine: true, backgroundColor: css("--sheet"), borderColor: css("--line"), textStyle: { color: css("--ink") }, padding: [6, 10] });
     o.axisPointer.lineStyle = { color: css("--soft"), type: "solid", width: 1 };
@@ -110,7 +117,7 @@
     heads.forEach((head, i) => {
       head.style.top = `${y}px`;
       y += head.offsetHeight + 1.4 * fontSize() + 9;
-      grids.push({ ...margin(), top: y, height: heights[i], containLabel: false });
+      grids.push({ ...margin(), top: y, height: heights[i], containLabel: false, outerBoundsMode: "none" });
       y += heights[i] + 2 * fontSize() + (printing ? 12 : 22);
     });
     const slider = { show: !printing, top: y };
@@ -148,12 +155,33 @@
     chart.dispatchAction({ type: "takeGlobalCursor", key: "dataZoomSelect", dataZoomSelectActive: on });
   };
 
-  // picture saves the charts with the titles that the page shows as text.
+  // title writes heading and legend of a panel into the picture, where the page has them as text.
+  const marks = { line: "━━", dash: "╍╍", dots: "•••", ring: "○", cross: "◆", band: "██" };
+  const title = (head, i, top) => {
+    const rich = { title: { fontSize: 15, fontWeight: "bold", lineHeight: 22, color: css("--ink") } };
+    const lines = [[]];
+    let room = 0;
+    [...head.querySelectorAll(".key")].filter((k) => k.getAttribute("aria-pressed") !== "false").forEach((k, n) => {
+      const [, kind, color] = k.querySelector(".mark").classList;
+      rich[`k${n}`] = { color: css(`--${color}`), fontSize: 13, fontWeight: "bold" };
+      room += 8 * (k.textContent.length + 8);
+      if (room > stage.clientWidth && lines.at(-1).length) {
+        lines.push([]);
+        room = 8 * (k.textContent.length + 8);
+      }
+      lines.at(-1).push(`{k${n}|${marks[kind]}} ${k.textContent}`);
+    });
+    const name = i === 0 ? `${data.name} – ${data.panels[i].title}` : data.panels[i].title;
+    return {
+      text: [`{title|${name.replace(/[{}|\n]/g, " ")}}`, ...lines.map((line) => line.join("     "))].join("\n"),
+      left: 8, top: top - 1.4 * fontSize() - 34 - 18 * lines.length, padding: 0,
+      textStyle: { rich, color: css("--ink"), fontSize: 13, fontWeight: "normal", lineHeight: 18 },
+    };
+  };
+
+  // picture saves the charts.
   const picture = () => {
-    const titles = heads.map((head, i) => ({
-      text: i === 0 ? `${data.name} – ${data.panels[i].title}` : data.panels[i].title,
-      left: 0, top: parseFloat(head.style.top), padding: 0, textStyle: { color: css("--ink"), fontSize: 15, width: stage.clientWidth - 10, overflow: "truncate" },
-    }));
+    const titles = heads.map((head, i) => title(head, i, chart.getOption().grid[i].top));
     chart.setOption({ title: titles, dataZoom: [{}, { show: false }] });
     const link = document.createElement("a");
     link.href = chart.getDataURL({ type: "png", pixelRatio: 2, backgroundColor: css("--paper") });
