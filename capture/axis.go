@@ -181,6 +181,7 @@ func (c *clock) times() []float64 {
 		s := &c.spans[i]
 		if !s.even {
 			t = append(t, s.stamps...)
+			s.stamps = nil
 			continue
 		}
 		half := float64(s.n-1) / 2

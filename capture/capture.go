@@ -52,8 +52,9 @@ type Axis struct {
 	// Times holds the true time of every sample, in seconds, not decreasing;
 	// nil when the samples are uniform: sample i is at Start + i*Interval.
 	Times []float64
-	// IntervalU is the standard uncertainty of Interval from the print alone, in
-	// seconds; 0 when nothing tells. The clock's own error is not in it.
+	// IntervalU is the standard uncertainty of Interval from the print of the
+	// stamps, in seconds; 0 for a declared interval, which is taken at its word,
+	// and for stamps that are not even. The clock's own error is not in it.
 	IntervalU float64
 	// Resolution is the step of the printed times, in seconds; 0 without a time column.
 	Resolution float64

@@ -55,7 +55,7 @@ func (k *clock) straight(a *Axis, decl declared, given bool) {
 	a.IntervalU = su
 	a.Source = fmt.Sprintf("time column, regression over %d stamps", k.n)
 	if decl.ok && (given || k.agrees(decl) && decl.half < su) {
-		a.Interval, a.IntervalU = decl.value, decl.half/math.Sqrt(3)
+		a.Interval, a.IntervalU = decl.value, 0
 		a.Source = fmt.Sprintf("time column of %d stamps, with the declared interval of %s", k.n, seconds(decl.value))
 	}
 	middle := float64(k.n-1) / 2
@@ -190,7 +190,7 @@ func (a *Axis) countFromFirst() {
 func (d *layoutDesign) indexAxis(c *Capture, k *clock, col int) *Axis {
 	decl := d.declared(col)
 	start, source := d.declaredStart(col, decl.value)
-	a := &Axis{N: k.n, Start: start, IntervalU: decl.half / math.Sqrt(3),
+	a := &Axis{N: k.n, Start: start,
 		Source: fmt.Sprintf("count of samples in column %d, with the declared interval of %s%s", col+1, seconds(decl.value), source)}
 	if k.even() {
 		a.Interval = decl.value * shorten(k.interval, 2*k.slopeError())
@@ -215,7 +215,7 @@ func (d *layoutDesign) bareAxis(rows int) (*Axis, *Error) {
 	if d.opt.Interval > 0 {
 		from = "given"
 	}
-	return &Axis{N: rows, Start: start, Interval: decl.value, IntervalU: decl.half / math.Sqrt(3),
+	return &Axis{N: rows, Start: start, Interval: decl.value,
 		Source: fmt.Sprintf("no time column; interval of %s (%s)%s", seconds(decl.value), from, source)}, nil
 }
 

@@ -52,6 +52,7 @@ func (s *store) gather(rows int) [][]float64 {
 			for _, c := range g.chunks {
 				// Moves down in place over the room that blank lines left.
 				at += copy(out[k][at:], c.dst[k][:c.rows])
+				c.dst[k] = nil
 			}
 			g.columns[k] = nil
 		}
