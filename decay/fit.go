@@ -114,13 +114,11 @@ func (f *ringFit) companionPole() *pole {
 	return &pole{f.companion.a, f.companion.w}
 }
 
-func (f *ringFit) dof() float64     { return math.Max(1, float64(f.n-f.normal.jtj.n)) }
-func (f *ringFit) sigma() float64   { return math.Sqrt(f.rss / f.dof()) }
-func (f *ringFit) size() float64    { return math.Hypot(f.p, f.q) }
-func (f *ringFit) offset() float64  { return f.ref + f.c }
-func (f *ringFit) tau() float64     { return f.s.dt / f.a }
-func (f *ringFit) period() float64  { return 2 * math.Pi / f.w } // samples
-func (f *ringFit) qFactor() float64 { return math.Hypot(f.a, f.w) / (2 * f.a) }
+func (f *ringFit) dof() float64    { return math.Max(1, float64(f.n-f.normal.jtj.n)) }
+func (f *ringFit) sigma() float64  { return math.Sqrt(f.rss / f.dof()) }
+func (f *ringFit) size() float64   { return math.Hypot(f.p, f.q) }
+func (f *ringFit) offset() float64 { return f.ref + f.c }
+func (f *ringFit) period() float64 { return 2 * math.Pi / f.w } // samples
 
 // ring returns the oscillation n intervals after the first sample of the window.
 func (f *ringFit) ring(n float64) float64 {
