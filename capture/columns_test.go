@@ -51,7 +51,7 @@ func TestColumns(t *testing.T) {
 		{"a channel and its peak detection", "TIME,CH1,CH1 Peak Detect\ns,V,V\n" + lines(rows, func(i int) string { return at(i, 4e-6, 6) + "," + peaks(1, i) }),
 			want{interval: 4e-6, channels: "CH1/V", findings: "ignored-columns", value: peakMean, check: roles("time channel duplicate")}},
 		{"deviations named for what they are of", "t\tdt\tV\tdV\n" + lines(rows, func(i int) string { return t0(i) + "\t0.1\t" + ring(1, i) + "\t0.002" }),
-			want{interval: 0.4, channels: "V/", findings: "coarse-time ignored-columns", check: roles("time deviation channel deviation")}},
+			want{interval: 0.4, channels: "V/V", findings: "coarse-time ignored-columns", check: roles("time deviation channel deviation")}},
 		{"two probes with like names are channels", "in s,V in V,uV in V\n" + lines(rows, func(i int) string { return t0(i) + "," + ring(1, i) + "," + ring(2, i) }),
 			want{interval: 0.4, channels: "V/V uV/V"}},
 		{"bit patterns", "time (us),D7-D0,CH1 (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%s,%08b,%s", t0(i), i, ring(1, i)) }),

@@ -30,6 +30,9 @@ func findNames(h *head, p *preamble) heading {
 			hd.namesLine = h.lines[i].number
 			h.place(cells, func(col int, text string) {
 				name, u, ok := splitUnit(text)
+				if !ok {
+					u, ok = unitAsName(text)
+				}
 				if hd.names[col] = name; ok {
 					hd.units[col] = u
 				}
@@ -117,16 +120,34 @@ func (h *head) namesRow(cells []cell, adjacent bool) bool {
 			says = says || saysTime(text)
 		}
 	}
-	if words == 0 || words+numbers < h.fewestNames() || h.entryLine(cells) {
+	if words == 0 || words+numbers < h.fewestNames() || h.entryLine(cells) || words == 1 && numbers == 0 && sectionWord(cells) {
 		return false
 	}
 	return adjacent || says || cells[0].blank()
+}
+
+// unitAsName reads a name that is a unit itself: seconds, Volt, V. A single A
+// is the first of several channels rather than a current.
+func unitAsName(text string) (unit, bool) {
+	u, ok := parseUnit(text)
+	return u, ok && (u.base == "V" || len(text) > 2 || u.base == "s" && len(text) > 1)
 }
 
 // saysTime reports a heading that says time by its name or unit.
 func saysTime(text string) bool {
 	name, u, _ := splitUnit(text)
 	return timeName(name) || u.base == "s"
+}
+
+// sectionWord reports a line that only announces the samples.
+func sectionWord(cells []cell) bool {
+	for _, c := range cells {
+		switch fold(toUTF8(c.text)) {
+		case "data", "values", "samples", "begin", "waveform", "waveformdata", "curve", "rawdata":
+			return true
+		}
+	}
+	return false
 }
 
 // entryLine reports a line that is an entry of the preamble rather than a

@@ -154,7 +154,7 @@ func (c *column) timeRank(first bool) (int, string) {
 	rising, even := c.rises()
 	says := timeName(c.Name) && (rising || !weakTimeName(c.Name))
 	switch {
-	case c.unit.base == "s":
+	case c.unit.base == "s" && (rising || timeName(c.Name)):
 		return namedTime, "its unit is " + unitName(c.unit)
 	case c.counts() && (!says || weakTimeName(c.Name) || fold(c.Name) == "xaxis"):
 		return countTime, "whole numbers that count the samples"
