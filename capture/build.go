@@ -31,6 +31,9 @@ func (d *layoutDesign) build(c *Capture, src *source, t *table) *Error {
 	}
 	d.finishRoles(t)
 	d.addChannels(c, t, axes)
+	if ch := c.Channels[0]; len(c.Channels) == 1 && t.missing[d.plan.steps[ch.Column-1].to] == t.rows {
+		return &Error{Err: ErrNoData, Column: ch.Column, Found: fmt.Sprintf("%d samples missing or over range", t.rows), Expected: "numbers"}
+	}
 	d.addFindings(c, t)
 	c.Layout = d.layout(src)
 	return nil

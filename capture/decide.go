@@ -106,7 +106,7 @@ func coarse(c *Capture, k *clock, a *Axis) {
 		severity = Warning
 	}
 	c.note(CoarseTime, severity,
-		fmt.Sprintf("times are printed to %s, %.2g of the sampling interval of %s; even sampling is rebuilt from %s",
+		fmt.Sprintf("times are printed to %s, %.2g of the sampling interval of %s; even sampling is rebuilt (%s)",
 			seconds(k.resolution), k.resolution/a.Interval, seconds(a.Interval), a.Source),
 		"save the times with more digits if the record is not evenly sampled")
 }

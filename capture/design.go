@@ -139,6 +139,7 @@ func (d *layoutDesign) planValue(i int) {
 	if c.unit.base == "s" || c.unit.base == "Sa/s" { // the unit of something else
 		c.unit = unit{}
 	}
+	c.Unit = unitName(c.unit)
 	d.plan.steps[i] = step{op: opValue, to: d.plan.values, shift: c.unit.exp, quantity: c.kind == kindQuantity}
 	d.plan.values++
 }

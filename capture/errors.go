@@ -56,12 +56,13 @@ func (e *Error) Error() string {
 // Reason is the error without the name of the file.
 func (e *Error) Reason() string {
 	var b strings.Builder
-	if e.Line > 0 {
-		fmt.Fprintf(&b, "line %d", e.Line)
-		if e.Column > 0 {
-			fmt.Fprintf(&b, ", column %d", e.Column)
-		}
-		b.WriteString(": ")
+	switch {
+	case e.Line > 0 && e.Column > 0:
+		fmt.Fprintf(&b, "line %d, column %d: ", e.Line, e.Column)
+	case e.Line > 0:
+		fmt.Fprintf(&b, "line %d: ", e.Line)
+	case e.Column > 0:
+		fmt.Fprintf(&b, "column %d: ", e.Column)
 	}
 	// A bad cell speaks for itself; every other kind needs its name.
 	if e.Err != nil && (e.Err != ErrSyntax || e.Found == "") {

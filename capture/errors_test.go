@@ -63,9 +63,10 @@ func TestBadInput(t *testing.T) {
 		{"two records in one file", strings.Join(good(600), "") + strings.Join(good(600)[1:], ""), ErrBackwards, 602, 0, `line 602: time runs backwards: found 0 s after 239.6 us, expected a later time`},
 		{"cut off in the middle of a row", strings.Join(good(100), "") + "40.0,0.1", ErrSyntax, 102, 0, `line 102: found a row of 2 cells, expected 3`},
 		{"two samples", strings.Join(good(2), ""), ErrTooFew, 0, 0, "too few samples: found 2 rows, expected at least 6: a decay has five unknowns"},
-		{"the same time throughout", "time (s),V (V)\n" + strings.Repeat("1.5,0.25\n", 20), ErrNoTime, 0, 1, "no time axis: found 1.5 s in every row, expected a time that rises"},
+		{"the same time throughout", "time (s),V (V)\n" + strings.Repeat("1.5,0.25\n", 20), ErrNoTime, 0, 1, "column 1: no time axis: found 1.5 s in every row, expected a time that rises"},
 		{"no interval", "CH1\n" + lines(rows, func(i int) string { return ring(1, i) }), ErrNoTime, 0, 0, "no time axis: found no time column, and no sampling interval in the preamble, expected one of them, or --interval"},
 		{"only a count", "n,CH1\n" + lines(rows, func(i int) string { return at(i, 1, 0) + "," + ring(1, i) }), ErrNoTime, 0, 0, "no time axis: found only a count of samples in column 1, and no sampling interval in the preamble, expected one of them, or --interval"},
+		{"nothing but over-range marks", "time (us),V (V)\n" + lines(rows, func(i int) string { return at(i, 0.4, 1) + ",---" }), ErrNoData, 0, 2, "column 2: no samples: found 60 samples missing or over range, expected numbers"},
 		{"only time", "time (s)\n" + lines(rows, func(i int) string { return at(i, 1, 1) }), ErrNoData, 0, 0, "no samples: found a time column and nothing beside it, expected a column of voltage or current"},
 	} {
 		t.Run(c.name, func(t *testing.T) {

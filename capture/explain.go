@@ -102,5 +102,8 @@ func (a *Axis) describe(on []*Channel) string {
 	if a.Times != nil {
 		kind = "not even"
 	}
+	if a.Resolution > 0 {
+		kind += ", printed to " + seconds(a.Resolution)
+	}
 	return fmt.Sprintf("%s: %d samples from %s, every %s, %s (%s)", strings.Join(names, ", "), a.N, seconds(a.Start), seconds(a.Interval), kind, a.Source)
 }

@@ -24,13 +24,10 @@ func (d *layoutDesign) addFindings(c *Capture, t *table) {
 
 // missing counts the samples that the file does not hold.
 func (d *layoutDesign) missing(c *Capture, t *table) {
-	for i := range d.columns {
-		if d.columns[i].Role != RoleChannel {
-			continue
-		}
-		if n := t.missing[d.plan.steps[i].to]; n > 0 {
+	for _, ch := range c.Channels {
+		if n := t.missing[d.plan.steps[ch.Column-1].to]; n > 0 {
 			c.note(MissingSamples, Warning,
-				fmt.Sprintf("%d of %d samples of %s are missing or over range, and left out", n, t.rows, d.channelName(i, i)),
+				fmt.Sprintf("%d of %d samples of %s are missing or over range, and left out", n, t.rows, ch.Name),
 				"set the vertical scale so that the whole record is on screen")
 		}
 	}

@@ -255,6 +255,9 @@ func scanCell(cell []byte, mark byte) (decimal, int) {
 	return scanDecimal(append(append(room[:0], cell...), 0), 0, mark)
 }
 
+// tooLong reports a mantissa that integer cannot give.
+func (d decimal) tooLong() bool { return d.long || d.mant>>63 != 0 }
+
 // integer is the mantissa with its sign, where it is less than 2^63.
 func (d decimal) integer() int64 {
 	return (int64(d.mant) ^ -int64(d.sign)) + int64(d.sign)

@@ -137,7 +137,11 @@ func (p *plan) fastRow(c *chunk, i int) int {
 				return -1
 			}
 			if s.op == opTime {
-				c.now[s.to] = d.instant(s.shift, b[i:end], p.mark)
+				t := &c.now[s.to]
+				t.d, t.real = d, d.tooLong()
+				if t.d.exp += s.shift; t.real {
+					t.time = d.float(s.shift, b[i:end], p.mark)
+				}
 			} else {
 				v, exact := d.quick(s.shift)
 				if !exact {
@@ -256,7 +260,8 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 			}
 			c.dst[s.to][c.rows] = v
 		case opTime:
-			c.now[s.to] = d.instant(shift, digits, p.mark)
+			c.now[s.to] = instant{d: d, real: d.tooLong(), time: d.float(shift, digits, p.mark)}
+			c.now[s.to].d.exp += shift
 		case opClock:
 			t, _ := parseStamp(cells[k].text, p.dayFirst)
 			c.now[s.to] = t.instant(p.zero)

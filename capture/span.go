@@ -36,15 +36,6 @@ type instant struct {
 	time float64 // in seconds
 }
 
-// instant is the stamp printed as text, times 10^shift.
-func (d decimal) instant(shift int, text []byte, mark byte) instant {
-	if d.long || d.mant>>63 != 0 {
-		return instant{real: true, time: d.float(shift, text, mark), d: decimal{exp: d.exp + shift}}
-	}
-	d.exp += shift
-	return instant{d: d}
-}
-
 // instant is the stamp counted from the whole second zero.
 func (s stamp) instant(zero int64) instant {
 	return instant{real: true, time: s.since(zero), d: decimal{exp: -s.places}}
