@@ -54,6 +54,8 @@ func TestColumns(t *testing.T) {
 			want{interval: 0.4, channels: "V/V", findings: "coarse-time ignored-columns", check: roles("time deviation channel deviation")}},
 		{"two probes with like names are channels", "in s,V in V,uV in V\n" + lines(rows, func(i int) string { return t0(i) + "," + ring(1, i) + "," + ring(2, i) }),
 			want{interval: 0.4, channels: "V/V uV/V"}},
+		{"an error of the time", "time (us),time error (us),V (V),V error (V)\n" + lines(rows, func(i int) string { return t0(i) + ",0.1," + ring(1, i) + ",0.002" }),
+			want{interval: 0.4e-6, channels: "V/V", findings: "ignored-columns", check: roles("time deviation channel deviation")}},
 		{"bit patterns", "time (us),D7-D0,CH1 (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%s,%08b,%s", t0(i), i, ring(1, i)) }),
 			want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("time logic channel")}},
 		{"error columns by name", "time (us),CH1 (V),CH1 error (V),CH2 (V),std CH2\n" + lines(rows, func(i int) string {

@@ -204,7 +204,11 @@ func (d dialect) quantity(c cell) (decimal, unit, []byte, bool) {
 	if end < 0 || end == len(c.text) {
 		return n, unit{}, nil, false
 	}
-	u, ok := parseUnit(toUTF8(bytes.TrimSpace(c.text[end:])))
+	rest := bytes.TrimSpace(c.text[end:])
+	if bytes.IndexByte([]byte(",;|.:/-+"), rest[0]) >= 0 {
+		return n, unit{}, nil, false
+	}
+	u, ok := parseUnit(toUTF8(rest))
 	return n, u, c.text[:end], ok
 }
 

@@ -100,8 +100,12 @@ func read(r io.Reader, name string, size int64, opt Options) (*Capture, error) {
 
 // readHead reads the beginning of the text, or all of a short one.
 func readHead(src *source) (*head, error) {
-	buf := make([]byte, headSize+1)
-	n, whole, err := fill(src.text, buf[:headSize])
+	room := int64(headSize)
+	if size := src.size(); size > 0 {
+		room = min(room, 2*size+64) // UTF-16 may grow by half
+	}
+	buf := make([]byte, room+1)
+	n, whole, err := fill(src.text, buf[:room])
 	if err != nil {
 		return nil, src.readError(err)
 	}

@@ -3,6 +3,7 @@ package capture
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 )
 
@@ -152,7 +153,10 @@ func (c *column) timeRank(first bool) (int, string) {
 		return noTime, ""
 	}
 	rising, even := c.rises()
-	says := timeName(c.Name) && (rising || !weakTimeName(c.Name))
+	says := exactTimeName(c.Name) && !weakTimeName(c.Name) || timeName(c.Name) && rising
+	if deviationName(c.Name) {
+		return noTime, ""
+	}
 	switch {
 	case c.unit.base == "s" && (rising || timeName(c.Name)):
 		return namedTime, "its unit is " + unitName(c.unit)
@@ -262,15 +266,23 @@ func assignByName(c *column) {
 		c.is(RoleMetadata, "its name is %q", c.Name)
 		return
 	}
-	for _, w := range words(c.Name) {
-		switch w {
-		case "error", "err", "errors", "std", "stdev", "stddev", "sigma", "deviation", "dev", "sd", "uncertainty", "unc", "±", "sem":
-			c.is(RoleDeviation, "its name is %q", c.Name)
-		}
+	if deviationName(c.Name) {
+		c.is(RoleDeviation, "its name is %q", c.Name)
 	}
 	if logicName(c.Name) && c.whole {
 		c.is(RoleLogic, "its name is %q, and it holds whole numbers", c.Name)
 	}
+}
+
+// deviationName reports a name with a word for error or deviation.
+func deviationName(name string) bool {
+	return slices.ContainsFunc(words(name), func(w string) bool {
+		switch w {
+		case "error", "err", "errors", "std", "stdev", "stddev", "sigma", "deviation", "dev", "sd", "uncertainty", "unc", "±", "sem":
+			return true
+		}
+		return false
+	})
 }
 
 // deviationOf returns the column whose standard deviation a column is by its
