@@ -109,8 +109,7 @@ func (a *analysis) dropGlitches() {
 func (a *analysis) measure() {
 	for i := range a.found {
 		g := &a.found[i]
-		window := a.s.slice(g.first, g.last)
-		v := noiseOf(g.fit.residuals(window.slice(0, min(window.len(), noiseSamples)), 0), g.fit.sigma())
+		v := g.fit.noise()
 		a.noises = append(a.noises, v)
 		a.decays = append(a.decays, newDecay(a.s, g, v, a.unit, a.opt.TimebaseU))
 	}
@@ -146,15 +145,15 @@ func (a *analysis) modes() []*Quantities {
 	if g.model() != TwoMode {
 		return nil
 	}
-	inv, ok := g.fit.normal.jtj.inverse()
+	full, ok := g.fit.fullCovariance(a.noises[0])
 	if !ok {
 		return nil
 	}
-	c, v := g.fit.companion, a.noises[0]
+	c := g.fit.companion
 	cov := sym{n: 2}
 	for i := range 2 {
 		for j := range 2 {
-			cov.set(i, j, inv.At(2+i, 2+j)*sq(v.rms*v.factor(c.w)))
+			cov.set(i, j, full.At(2+i, 2+j))
 		}
 	}
 	second := quantitiesOf(c.a, c.w, a.s.dt, &cov, a.opt.TimebaseU)

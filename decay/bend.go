@@ -169,15 +169,14 @@ func (f *ringFit) atStart(v noise, timebase float64) *AtStart {
 	if f.bend == nil {
 		return nil
 	}
-	inv, ok := f.normal.jtj.inverse()
+	inv, ok := f.fullCovariance(v)
 	if !ok {
 		return nil
 	}
-	density := sq(v.rms * v.factor(f.w))
 	cov := sym{n: 2}
 	for i := range 2 {
 		for j := range i + 1 {
-			cov.set(i, j, density*(inv.At(i, j)+inv.At(i, j+2)+inv.At(i+2, j)+inv.At(i+2, j+2)))
+			cov.set(i, j, (inv.At(i, j) + inv.At(i, j+2) + inv.At(i+2, j) + inv.At(i+2, j+2)))
 		}
 	}
 	q := quantitiesOf(f.a+f.bend.b, f.w+f.bend.g, f.s.dt, &cov, timebase)

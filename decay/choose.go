@@ -13,6 +13,9 @@ const (
 	// Raftery (1995, from memory) call ten decisive; converters and amplifiers are
 	// no white Gaussian noise, hence the margin.
 	evidence = 40
+	// fewSamples raises the evidence wanted in short windows, where a rich model
+	// follows coloured noise and makes it look smaller than it is.
+	fewSamples = 300
 	// unresolved is charged to two rings closer to each other than their widths:
 	// they describe any departure from one exponential, so that another law goes first.
 	unresolved = 200
@@ -124,18 +127,17 @@ func (g *gate) candidates(window series, plain *ringFit, model Model) []ringFit 
 	return slices.DeleteFunc(out, func(f ringFit) bool { return math.IsNaN(f.rss) })
 }
 
-// cheapest returns the candidate of least residual after the charge for its
-// parameters. The residual counts in units of the noise density at the ring of
-// what the best of them leaves.
+// cheapest returns the candidate that explains most after the charge for its
+// parameters. What it explains beyond the worst of them counts in units of the
+// noise density where its addition lives, as the best of them leaves it.
 func cheapest(list []ringFit) ringFit {
-	least := slices.MinFunc(list, func(x, y ringFit) int { return compareFloat(x.rss, y.rss) })
+	byRSS := func(x, y ringFit) int { return compareFloat(x.rss, y.rss) }
+	least, most := slices.MinFunc(list, byRSS), slices.MaxFunc(list, byRSS)
 	v := noiseOf(least.residuals(least.s, 0), least.sigma())
-	density := sq(v.rms * v.factor(least.w))
 	charge := func(f *ringFit) float64 {
-		n := math.Log(float64(f.n))
-		c := f.rss/density + float64(f.normal.jtj.n)*n
+		c := float64(f.normal.jtj.n)*math.Log(float64(f.n)) - (most.rss-f.rss)/sq(v.rms*v.factor(f.addition()))
 		if f.companion != nil || f.bend != nil {
-			c += evidence
+			c += evidence * (1 + fewSamples/float64(f.n))
 		}
 		if k := f.companion; k != nil && k.w > 0 && math.Abs(k.w-f.w) < math.Abs(k.a)+math.Abs(f.a) {
 			c += unresolved
@@ -143,6 +145,14 @@ func cheapest(list []ringFit) ringFit {
 		return c
 	}
 	return slices.MinFunc(list, func(x, y ringFit) int { return compareFloat(charge(&x), charge(&y)) })
+}
+
+// addition is the angular frequency of what the fit has beyond one ring.
+func (f *ringFit) addition() float64 {
+	if f.companion != nil {
+		return f.companion.w
+	}
+	return f.w
 }
 
 func compareFloat(x, y float64) int {

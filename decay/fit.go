@@ -174,24 +174,72 @@ func (t *term) subtract(y []float64, n0 float64) {
 	}
 }
 
-// covariance returns the covariance of (a, w, c, p, q) for noise v: the inverse
-// of J'J with the noise density where each parameter lives, at the damped
-// frequency for all but the offset and at zero for the offset.
+// covariance returns the covariance of (a, w, c, p, q) for noise v.
 func (f *ringFit) covariance(v noise) (cov sym, ok bool) {
-	inv, ok := f.normal.jtj.inverse()
-	if !ok {
-		return cov, false
-	}
-	at, zero := v.rms*v.factor(f.w), v.rms*v.factor(0)
-	scale := [5]float64{at, at, zero, at, at}
+	full, ok := f.fullCovariance(v)
 	cov.n = 5
 	where := f.places()
 	for i, a := range where {
 		for j, b := range where {
-			cov.set(i, j, inv.At(a, b)*scale[i]*scale[j])
+			cov.set(i, j, full.At(a, b))
 		}
 	}
-	return cov, true
+	return cov, ok
+}
+
+// fullCovariance returns the covariance of all parameters: in white noise the
+// inverse of J'J times the variance, in coloured noise the sandwich, or, for long
+// windows, the inverse scaled by the density where each parameter lives: at the
+// ring's frequency, for the offset at zero. It is widened for what is not known
+// of the noise.
+func (f *ringFit) fullCovariance(v noise) (sym, bool) {
+	cov, ok := f.plainCovariance(v)
+	k := sq(widening(v.freedom(f.w, cov.n)))
+	for i := range cov.v {
+		cov.v[i] *= k
+	}
+	return cov, ok
+}
+
+func (f *ringFit) plainCovariance(v noise) (sym, bool) {
+	if len(v.ar) > 0 && f.s.len() <= sandwichSamples {
+		if c, ok := newColoured(f); ok {
+			meat := c.meat(c.density(v))
+			out := c.sandwich(&meat)
+			for i := range out.v {
+				out.v[i] *= v.rms * v.rms
+			}
+			return out, true
+		}
+	}
+	cov, ok := f.normal.jtj.inverse()
+	at, zero, offset := v.rms*v.factor(f.w), v.rms*v.factor(0), f.places()[2]
+	scale := func(i int) float64 {
+		if i == offset {
+			return zero
+		}
+		return at
+	}
+	for i := range cov.n {
+		for j := range i + 1 {
+			cov.set(i, j, cov.At(i, j)*scale(i)*scale(j))
+		}
+	}
+	return cov, ok
+}
+
+// noise describes what the fit leaves of its window.
+func (f *ringFit) noise() noise {
+	r := f.residuals(f.s.slice(0, min(f.s.len(), noiseSamples)), 0)
+	v := noiseOf(r, f.sigma())
+	if len(v.ar) == 0 || f.s.len() > unbiasSamples || !f.s.even() {
+		return v
+	}
+	c, ok := newColoured(f)
+	if !ok {
+		return v
+	}
+	return c.unbiased(v, r)
 }
 
 // quantitiesOf carries (a, w), radians and nepers per interval dt (s), with their

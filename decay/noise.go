@@ -4,6 +4,9 @@ import (
 	"math"
 	"math/cmplx"
 	"slices"
+
+	"gonum.org/v1/gonum/mat"
+	"gonum.org/v1/gonum/stat/distuv"
 )
 
 // noise describes what a fit leaves: its rms and its colour. Only the density at
@@ -15,6 +18,8 @@ type noise struct {
 	ar  []float64
 	// gain is the variance of the innovation over the variance of the noise.
 	gain float64
+	// gamma is the autocovariance that ar follows from, lags 0 to its order.
+	gamma []float64
 }
 
 const (
@@ -46,7 +51,7 @@ func noiseOf(r []float64, rms float64) noise {
 		}
 		if bic := n*math.Log(e/c[0]) + float64(k)*math.Log(n); bic < best {
 			best = bic
-			out.ar, out.gain = slices.Clone(a), e/c[0]
+			out.ar, out.gain, out.gamma = slices.Clone(a), e/c[0], c[:k+1]
 		}
 	}
 	return out
@@ -98,6 +103,46 @@ func (v noise) factor(w float64) float64 {
 	}
 	return math.Sqrt(v.gain) / cmplx.Abs(h)
 }
+
+// freedom returns the effective degrees of freedom of the noise density at angular
+// frequency w: 2 over the variance of its logarithm. parameters were fitted to the
+// n residuals; the coefficients of the autoregression have the covariance
+// (innovation variance/n) inv(Toeplitz gamma) (Mann and Wald 1943, from memory).
+func (v noise) freedom(w float64, parameters int) float64 {
+	n := math.Max(1, v.n-float64(parameters))
+	order := len(v.ar)
+	if order == 0 {
+		return n
+	}
+	t := mat.NewSymDense(order, nil)
+	h := complex(1, 0)
+	for i := range order {
+		for j := i; j < order; j++ {
+			t.SetSym(i, j, v.gamma[j-i])
+		}
+		h -= complex(v.ar[i], 0) * cmplx.Exp(complex(0, -w*float64(i+1)))
+	}
+	d := mat.NewVecDense(order, nil) // of ln density by the coefficients
+	for i := range order {
+		d.SetVec(i, 2*real(cmplx.Exp(complex(0, -w*float64(i+1)))/h))
+	}
+	var chol mat.Cholesky
+	x := mat.NewVecDense(order, nil)
+	if !chol.Factorize(t) || chol.SolveVecTo(x, d) != nil {
+		return n
+	}
+	return 2 / (2/n + v.gain*v.gamma[0]/n*mat.Dot(d, x))
+}
+
+// widening is the factor by which a standard uncertainty grows so that twice it
+// covers 95 % although the noise is known with freedom degrees only: Student's
+// quantile over that of the normal distribution (GUM G.3).
+func widening(freedom float64) float64 {
+	t := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: math.Max(1, freedom)}
+	return math.Min(widestFactor, t.Quantile(0.975)/distuv.UnitNormal.Quantile(0.975))
+}
+
+const widestFactor = 4
 
 // robustSigma estimates a standard deviation from the median of |r|
 // (1.4826 median for a normal distribution). NaN is left out.

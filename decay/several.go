@@ -56,8 +56,7 @@ func (g *gate) sameCircuit(other *gate) bool {
 	if f.a <= 0 || f.size() < decayShare*o.size() || math.Abs(f.w-o.w) > decayTwin*o.w || f.a > 2*o.a || f.a < o.a/2 {
 		return false
 	}
-	v := noiseOf(f.residuals(f.s.slice(0, min(f.s.len(), noiseSamples)), 0), f.sigma())
-	return energyGain(f, v) > energyNeeded(f.s.len())
+	return energyGain(f, f.noise()) > energyNeeded(f.s.len())
 }
 
 // combined weighs the rates and frequencies of several decays by their
