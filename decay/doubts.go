@@ -12,12 +12,15 @@ import (
 // leaves the bound, below three it may lock to noise.
 const weakSNR = 12
 
+// shortWindow is the window, in time constants, below which the fall is hardly seen.
+const shortWindow = 0.45
+
 // doubts lists what makes a measured decay less trustworthy.
 func doubts(g *gate, d *Decay, v noise) []Finding {
 	var out []Finding
 	q := &d.Quantities
 	u := (d.To - d.From) * q.DecayRate.Value
-	if u < 0.5 {
+	if u < shortWindow {
 		out = append(out, warning(capture.ShortRecord,
 			fmt.Sprintf("The record covers %.2g time constants of the decay; Q hangs on a fall of only %s.", u, percent(-math.Expm1(-u))),
 			"Record longer: three to five time constants."))
