@@ -3,7 +3,18 @@
 //
 // The reader knows no maker: it describes a file by its shape (preamble,
 // header, units row, data; the role of each column) and says what it
-// understood in a [Layout].
+// understood in a [Layout], which [Capture.Explain] prints. A text goes through
+// three steps:
+//
+//   - the head of the text decides the layout (detect.go, preamble.go, names.go,
+//     roles.go);
+//   - the data pass follows that layout over the whole text, block by block on
+//     all processors, without keeping text (plan.go, scan.go, number.go). Of the
+//     time column it keeps a regression, and the stamps only where they do not
+//     lie on a line (span.go);
+//   - all values known, the time axis is decided, roles are corrected, and what
+//     was left out or cannot be trusted is said in findings (axis.go, decide.go,
+//     build.go, findings.go).
 package capture
 
 import "math"

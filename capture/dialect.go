@@ -205,7 +205,7 @@ func (d dialect) quantity(c cell) (decimal, unit, []byte, bool) {
 		return n, unit{}, nil, false
 	}
 	rest := bytes.TrimSpace(c.text[end:])
-	if bytes.IndexByte([]byte(",;|.:/-+"), rest[0]) >= 0 {
+	if len(rest) == 0 || bytes.IndexByte([]byte(",;|.:/-+"), rest[0]) >= 0 {
 		return n, unit{}, nil, false
 	}
 	u, ok := parseUnit(toUTF8(rest))
