@@ -7,7 +7,7 @@
 // three steps:
 //
 //   - the head of the text decides the layout (detect.go, preamble.go, names.go,
-//     roles.go);
+//     roles.go, timecolumn.go);
 //   - the data pass follows that layout over the whole text, block by block on
 //     all processors, without keeping text (plan.go, scan.go, number.go). Of the
 //     time column it keeps a regression, and the stamps only where they do not

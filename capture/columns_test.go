@@ -56,6 +56,13 @@ func TestColumns(t *testing.T) {
 			want{interval: 0.4, channels: "V/V uV/V"}},
 		{"an error of the time", "time (us),time error (us),V (V),V error (V)\n" + lines(rows, func(i int) string { return t0(i) + ",0.1," + ring(1, i) + ",0.002" }),
 			want{interval: 0.4e-6, channels: "V/V", findings: "ignored-columns", check: roles("time deviation channel deviation")}},
+		{"a channel that rises, and no time column", "# Sampling interval: 4 us\n" + lines(rows, func(i int) string { return rise(i) + " " + ring(2, i) }),
+			want{interval: 4e-6, channels: "channel_1/ channel_2/", check: roles("channel channel"), value: func(ch, i int) float64 {
+				if ch == 1 {
+					return number(rise(i))
+				}
+				return number(ring(2, i))
+			}}},
 		{"bit patterns", "time (us),D7-D0,CH1 (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%s,%08b,%s", t0(i), i, ring(1, i)) }),
 			want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("time logic channel")}},
 		{"error columns by name", "time (us),CH1 (V),CH1 error (V),CH2 (V),std CH2\n" + lines(rows, func(i int) string {
@@ -110,6 +117,9 @@ func TestColumns(t *testing.T) {
 		t.Run(c.name, func(t *testing.T) { understand(t, c.text, Options{}, c.w) })
 	}
 }
+
+// rise is a supply that settles.
+func rise(i int) string { return fmt.Sprintf("%.4f", 5-5*math.Exp(-float64(i)/20)) }
 
 // peaks are the two ends of peak detection about the ring of a channel.
 func peaks(channel, i int) string {

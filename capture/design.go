@@ -33,7 +33,7 @@ func design(h *head, opt Options) (*layoutDesign, *Error) {
 		return nil, err
 	}
 	d.columns = newColumns(h, d.heading)
-	assignRoles(h, d.columns)
+	assignRoles(h, d.columns, d.declared)
 	return d, d.makePlan()
 }
 
@@ -179,15 +179,26 @@ func (d *layoutDesign) timeUnit(c *column) (unit, string) {
 	if u := d.preamble.timeUnit(c.Number - 1); u.base == "s" {
 		return u, "unit of time in the preamble"
 	}
-	if decl, step := d.declared(c.Number-1), medianStep(c.values); decl.ok && step > 0 {
-		for _, exp := range []int{0, -3, -6, -9, -12} {
-			if r := decl.value / (step * math.Pow10(exp)); r > 0.5 && r < 2 {
-				return unit{"s", exp}, "unit of time implied by the declared interval of " + seconds(decl.value)
-			}
-		}
+	decl := d.declared(c.Number - 1)
+	if exp, ok := decl.scaleOf(medianStep(c.values)); ok {
+		return unit{"s", exp}, "unit of time implied by the declared interval of " + seconds(decl.value)
 	}
 	d.assumed = true
 	return unit{base: "s"}, "seconds assumed"
+}
+
+// scaleOf returns the power of ten of the unit in which a step is like the
+// declared interval.
+func (decl declared) scaleOf(step float64) (exp int, ok bool) {
+	if !decl.ok || !(step > 0) {
+		return 0, false
+	}
+	for _, exp := range []int{0, -3, -6, -9, -12} {
+		if r := decl.value / (step * math.Pow10(exp)); r > 0.5 && r < 2 {
+			return exp, true
+		}
+	}
+	return 0, false
 }
 
 // declared is the sampling interval that the caller or else the preamble gives.

@@ -69,8 +69,9 @@ func unitName(u unit) string {
 }
 
 // assignRoles gives every column its role, from its name, unit and first
-// values. finishRoles corrects it by all values.
-func assignRoles(h *head, cols []column) {
+// values; interval gives the declared one for a column. finishRoles corrects
+// the roles by all values.
+func assignRoles(h *head, cols []column, interval func(col int) declared) {
 	for i := range cols {
 		c := &cols[i]
 		switch {
@@ -86,7 +87,7 @@ func assignRoles(h *head, cols []column) {
 			c.is(RoleText, "words instead of numbers")
 		}
 	}
-	assignTime(cols)
+	assignTime(cols, interval)
 	for i := range cols {
 		if c := &cols[i]; c.Role == "" {
 			if of := deviationOf(cols, i); of >= 0 {
@@ -135,119 +136,7 @@ func (h *head) metadataBeside(col int) bool {
 	return found && lastText < row
 }
 
-// How much a column looks like time.
-const (
-	noTime    = iota
-	countTime // counts the samples
-	evenTime  // rises in even steps, without a name
-	clockTime // dates or clock times
-	namedTime // its name or unit says time
-)
-
-// timeRank says how much a column looks like time, and why.
-func (c *column) timeRank(first bool) (int, string) {
-	if c.kind == kindStamp {
-		return clockTime, "dates or clock times"
-	}
-	if c.kind != kindNumber && c.kind != kindQuantity {
-		return noTime, ""
-	}
-	rising, even := c.rises()
-	says := exactTimeName(c.Name) && !weakTimeName(c.Name) || timeName(c.Name) && rising
-	if deviationName(c.Name) {
-		return noTime, ""
-	}
-	switch {
-	case c.unit.base == "s" && (rising || timeName(c.Name)):
-		return namedTime, "its unit is " + unitName(c.unit)
-	case c.counts() && (!says || weakTimeName(c.Name) || fold(c.Name) == "xaxis"):
-		return countTime, "whole numbers that count the samples"
-	case says:
-		return namedTime, fmt.Sprintf("its name is %q", c.Name)
-	case rising && (even || first) && c.Name == "":
-		return evenTime, "no name, and it rises from row to row"
-	case rising && even && first:
-		return evenTime, "the first column of numbers, and it rises in even steps"
-	}
-	return noTime, ""
-}
-
-// rises reports values that hardly ever fall and end above their start, and
-// whether nearly all steps are of like size.
-func (c *column) rises() (rising, even bool) {
-	var steps []float64
-	last := math.NaN()
-	sum, falls := 0.0, 0
-	for _, v := range c.values {
-		if d := v - last; !math.IsNaN(d) {
-			steps = append(steps, d)
-			sum += d
-			if d < 0 {
-				falls++
-			}
-		}
-		if !math.IsNaN(v) {
-			last = v
-		}
-	}
-	if sum <= 0 || falls*50 > len(steps) {
-		return false, false
-	}
-	mean, like := sum/float64(len(steps)), 0
-	for _, d := range steps {
-		if d > 0.2*mean && d < 5*mean {
-			like++
-		}
-	}
-	return true, like*10 >= len(steps)*8
-}
-
-// counts reports whole numbers that rise by one from row to row.
-func (c *column) counts() bool {
-	if !c.whole || c.kind != kindNumber || len(c.values) < 2 {
-		return false
-	}
-	misses := 0
-	for i, v := range c.values[1:] {
-		if v-c.values[i] != 1 {
-			misses++
-		}
-	}
-	return misses*50 <= len(c.values)
-}
-
-// assignTime finds the time columns: those that look most like time. Without
-// names a second one must repeat the first.
-func assignTime(cols []column) {
-	ranks := make([]int, len(cols))
-	whys := make([]string, len(cols))
-	best, numeric := -1, 0
-	for i := range cols {
-		if !cols[i].kind.numeric() {
-			continue
-		}
-		ranks[i], whys[i] = cols[i].timeRank(numeric == 0)
-		numeric++
-		if ranks[i] != noTime && (best < 0 || ranks[i] > ranks[best]) {
-			best = i
-		}
-	}
-	if best < 0 || numeric == 1 && ranks[best] < clockTime {
-		return
-	}
-	for i := range cols {
-		switch c := &cols[i]; {
-		case ranks[i] == noTime:
-		case ranks[i] == countTime:
-			c.is(RoleIndex, "%s", whys[i])
-		case ranks[i] == ranks[best] && (i == best || ranks[i] >= clockTime || sameValues(c.values, cols[best].values)):
-			c.is(RoleTime, "%s", whys[i])
-		case ranks[i] == clockTime:
-			c.is(RoleText, "clock times beside a time column of numbers")
-		}
-	}
-}
-
+// sameValues reports columns equal in every row, NaN counting as equal.
 func sameValues(a, b []float64) bool {
 	if len(a) != len(b) {
 		return false
