@@ -159,7 +159,7 @@ func (c *clock) onGrid() bool {
 			odd++
 		}
 	}
-	return odd > 0 && odd <= 2 && c.n > 20
+	return c.typical > 0 && odd > 0 && odd <= 2 && c.n > 20
 }
 
 // even reports that a straight line gives every stamp to within what was
@@ -169,9 +169,10 @@ func (c *clock) even() bool {
 }
 
 // slopeError is the standard uncertainty of the interval from the rounding of
-// the stamps, s: q/sqrt(12) each, over n of them.
+// the stamps, s: q/sqrt(12) each, over n of them; of those that share a printed
+// time the errors go together, and count as one.
 func (c *clock) slopeError() float64 {
-	return c.resolution / math.Sqrt(12*sumOfSquares(c.n))
+	return c.resolution / math.Sqrt(12*sumOfSquares(c.n)) * math.Sqrt(math.Max(1, c.resolution/c.interval))
 }
 
 // times returns every stamp; a span kept as its line is written out.

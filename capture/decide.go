@@ -11,6 +11,9 @@ func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
 	col := d.timeColumn(k)
 	clk := newClock(t.spans[k])
 	if clk.spans[len(clk.spans)-1].last <= clk.spans[0].first {
+		if decl := d.declared(col); decl.ok {
+			return d.frozenAxis(c, clk, col, decl), nil
+		}
 		return nil, &Error{Err: ErrNoTime, Column: col + 1, Found: seconds(clk.start) + " in every row", Expected: "a time that rises"}
 	}
 	if d.columns[col].Role == RoleIndex {
@@ -36,6 +39,19 @@ func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
 	}
 	a.Source += "; " + d.timeWhy
 	return a, nil
+}
+
+// frozenAxis makes the axis of stamps too coarse to differ within the record,
+// where the interval is declared.
+func (d *layoutDesign) frozenAxis(c *Capture, k *clock, col int, decl declared) *Axis {
+	a := &Axis{N: k.n, Start: k.spans[0].first, Interval: decl.value, Resolution: k.resolution,
+		Source: fmt.Sprintf("declared interval of %s; the time column shows the same time in every row", seconds(decl.value))}
+	if d.columns[col].kind == kindStamp {
+		a.Start = 0
+	}
+	c.note(CoarseTime, Note, fmt.Sprintf("times are printed to %s and never change; even sampling is taken from the declared interval of %s",
+		seconds(k.resolution), seconds(decl.value)), "save the times with more digits if the record is not evenly sampled")
+	return a
 }
 
 func (d *layoutDesign) timeColumn(k int) int {
