@@ -1,0 +1,54 @@
+package driven
+
+import (
+	"math"
+	"math/cmplx"
+
+	"dieaway/capture"
+)
+
+// A curve is a fitted response: gain times the form of what it is measured across.
+type curve struct {
+	across capture.Part
+	f0, q  float64 // Hz, and Q of the whole loop
+	gain   float64 // of the source, in the unit of the response
+	rest   float64 // share of the loop's resistance that sits in the coil; for Both only
+}
+
+// at returns magnitude and phase at f hertz.
+func (c *curve) at(f float64) (magnitude, phase float64) {
+	if !(c.f0 > 0) {
+		return math.NaN(), math.NaN()
+	}
+	h, _, _, _ := c.form(f)
+	return c.gain * cmplx.Abs(h), cmplx.Phase(h)
+}
+
+// form returns the response H for a gain of one and its derivatives by the
+// relative frequency f0 dH/df0, by the relative Q, Q dH/dQ, and by rest.
+//
+// With x = f/f0 and D = 1 - x^2 + jx/Q the voltage is, in parts of the source's
+// (METHODS: series circuit), across the capacitor 1/D, the coil -x^2/D, the
+// resistor (jx/Q)/D, and across coil and capacitor together (1 - x^2 + j rest x/Q)/D.
+func (c *curve) form(f float64) (h, byF0, byQ, byRest complex128) {
+	x := f / c.f0
+	// (f0-f)(f0+f) keeps the digits that 1 - x^2 loses near a sharp resonance.
+	detuning := (c.f0 - f) / c.f0 * (1 + x)
+	loss := x / c.q
+	d := complex(detuning, loss)
+	dF0, dQ := complex(2*x*x, -loss), complex(0, -loss) // f0 dD/df0, Q dD/dQ
+	var n, nF0, nQ, nRest complex128
+	switch c.across {
+	case capture.Inductor:
+		n, nF0 = complex(-x*x, 0), complex(2*x*x, 0)
+	case capture.Resistor:
+		n, nF0, nQ = complex(0, loss), complex(0, -loss), complex(0, -loss)
+	case capture.Both:
+		n, nF0 = complex(detuning, c.rest*loss), complex(2*x*x, -c.rest*loss)
+		nQ, nRest = complex(0, -c.rest*loss), complex(0, loss)
+	default:
+		n = 1
+	}
+	h = n / d
+	return h, (nF0 - h*dF0) / d, (nQ - h*dQ) / d, nRest / d
+}
