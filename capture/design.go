@@ -21,8 +21,19 @@ type layoutDesign struct {
 	assumed bool
 }
 
-// design decides the layout from the head.
+// design decides the layout of a capture from the head.
 func design(h *head, opt Options) (*layoutDesign, *Error) {
+	d, err := newDesign(h, opt)
+	if err != nil {
+		return nil, err
+	}
+	assignRoles(h, d.columns, d.declared)
+	return d, d.makePlan()
+}
+
+// newDesign reads what stands above the table and beside it, and its columns;
+// these have no roles yet.
+func newDesign(h *head, opt Options) (*layoutDesign, *Error) {
 	d := &layoutDesign{head: h, opt: opt, preamble: preamble{d: h.dialect}}
 	for _, l := range h.preambleLines() {
 		d.preamble.readLine(l.number, d.preamble.cellsOf(l.text))
@@ -33,8 +44,7 @@ func design(h *head, opt Options) (*layoutDesign, *Error) {
 		return nil, err
 	}
 	d.columns = newColumns(h, d.heading)
-	assignRoles(h, d.columns, d.declared)
-	return d, d.makePlan()
+	return d, nil
 }
 
 // brokenRow refuses a line below the heading that holds a number where the
