@@ -11,7 +11,7 @@ import (
 type decimal struct {
 	mant uint64
 	exp  int
-	sign uint64 // 0 or 1: added without a branch, as the sign of a ring is a coin toss
+	sign uint64 // 0 or 1
 	// long is true when there were more digits than mant can hold; mant is
 	// then of no use and the text itself must be converted.
 	long bool
@@ -23,17 +23,19 @@ var exactPow10 = [...]float64{
 	1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22,
 }
 
-// signs has bit 0 for a sign and bit 1 for a minus.
-var signs = [256]uint8{'+': 1, '-': 3}
-
 // scanDecimal reads the number that starts at b[i] and returns it with the
 // index behind it; the index is -1 when no number starts there. b must end in
 // a byte that no number holds. The grammar is
 //
 //	[+-] (digits [mark [digits]] | mark digits) [(e|E) [+-] digits]
 func scanDecimal(b []byte, i int, mark byte) (d decimal, end int) {
-	d.sign = uint64(signs[b[i]] >> 1)
-	i += int(signs[b[i]] & 1)
+	switch b[i] {
+	case '-':
+		d.sign = 1
+		i++
+	case '+':
+		i++
+	}
 	first := i
 	m := uint64(0)
 	c := b[i] - '0'
@@ -46,13 +48,12 @@ func scanDecimal(b []byte, i int, mark byte) (d decimal, end int) {
 	if b[i] == mark {
 		i++
 		point := i
-		for i+8 <= len(b) {
-			w := binary.LittleEndian.Uint64(b[i:])
-			if !eightDigits(w) {
-				break
+		// One step of eight suffices: few files print more decimal places.
+		if i+8 <= len(b) {
+			if w := binary.LittleEndian.Uint64(b[i:]); eightDigits(w) {
+				m = m*100000000 + eightValue(w)
+				i += 8
 			}
-			m = m*100000000 + eightValue(w)
-			i += 8
 		}
 		c = b[i] - '0'
 		for c <= 9 {
