@@ -31,7 +31,7 @@ func Analyze(ch *capture.Channel, opt Options) *Result {
 	if why, unfit := unfit(s, first, last); unfit {
 		return refused(nil, why)
 	}
-	a := &analysis{s: s.slice(first, last), unit: ch.Unit, opt: opt, step: stepOf(s.y)}
+	a := &analysis{s: s.slice(first, last), unit: ch.Unit, opt: opt}
 	// 1. Gates: each free decay, from its true start to where it has died, and the
 	// model that accounts for it. Samples that are not the circuit's are left out.
 	a.gates()
@@ -42,7 +42,7 @@ func Analyze(ch *capture.Channel, opt Options) *Result {
 	a.measure()
 	// 3. Readings by crossings and peaks, which know nothing of the fit but what
 	// else moves beside the ring.
-	g, d, v := &a.found[0], a.decays[0], a.noises[0]
+	g, d, v := &a.found[a.best], a.decays[a.best], a.noises[a.best]
 	r := &Result{Model: g.model(), Decays: a.decays}
 	r.Readings = read(g.ringOnly(a.s), d.period(), v.rms*v.factor(g.fit.w))
 	// 4. Judgement: is it a decay at all, and can the numbers be trusted?
@@ -60,20 +60,20 @@ type analysis struct {
 	s        series
 	unit     string
 	opt      Options
-	step     float64 // of the converter, 0 when there is none
 	found    []gate
 	decays   []*Decay
 	noises   []noise
+	best     int // the decay whose rate is known best
 	findings []Finding
 }
 
 // gates finds the decays, and finds them anew without the samples that a limiter
 // cut off or that stand alone far off the first fit.
 func (a *analysis) gates() {
-	if rails := railed(a.s, a.step); len(rails) > 0 {
+	if rails := railed(a.s); len(rails) > 0 {
 		free := a.s.without(rails)
 		if found := findDecays(free, a.opt); len(found) > 0 {
-			if n, excess := found[0].beyond(a.s, rails); n > 0 && excess > math.Max(a.step, 2*found[0].fit.sigma()) {
+			if n, excess := found[0].beyond(a.s, rails); n > 0 && excess > math.Max(a.s.step, 2*found[0].fit.sigma()) {
 				a.s, a.found = free, found
 				a.findings = append(a.findings, clippedFinding(n, excess, found[0].fit.size()))
 			}
@@ -83,10 +83,8 @@ func (a *analysis) gates() {
 		a.found = findDecays(a.s, a.opt)
 	}
 	a.dropGlitches()
-	for i := range a.found {
-		if f, ok := a.found[i].coarseLevels(a.s, a.step); ok && i == 0 {
-			a.findings = append(a.findings, f)
-		}
+	if len(a.found) > 0 && a.found[0].coarse {
+		a.findings = append(a.findings, a.found[0].coarseFinding(a.s.step))
 	}
 }
 
@@ -112,6 +110,9 @@ func (a *analysis) measure() {
 		v := g.fit.noise()
 		a.noises = append(a.noises, v)
 		a.decays = append(a.decays, newDecay(a.s, g, v, a.unit, a.opt.TimebaseU))
+		if rate := &a.decays[i].Quantities.DecayRate; rate.Value > 0 && !(rate.Relative() >= a.decays[a.best].Quantities.DecayRate.Relative()) {
+			a.best = i
+		}
 	}
 }
 
@@ -127,11 +128,11 @@ func (a *analysis) combined() *Quantities {
 		}
 	}
 	if len(rates) < 2 {
-		return &a.decays[0].Quantities
+		return &a.decays[a.best].Quantities
 	}
 	c, ok := combine(rates, omegas, covs)
 	if !ok {
-		return &a.decays[0].Quantities
+		return &a.decays[a.best].Quantities
 	}
 	a.findings = append(a.findings, severalDecays(len(rates), &c)...)
 	cov := c.widened()
@@ -141,11 +142,11 @@ func (a *analysis) combined() *Quantities {
 
 // modes lists both rings of a two-mode decay, stronger first.
 func (a *analysis) modes() []*Quantities {
-	g := &a.found[0]
+	g := &a.found[a.best]
 	if g.model() != TwoMode {
 		return nil
 	}
-	full, ok := g.fit.fullCovariance(a.noises[0])
+	full, ok := g.fit.fullCovariance(a.noises[a.best])
 	if !ok {
 		return nil
 	}
@@ -157,7 +158,7 @@ func (a *analysis) modes() []*Quantities {
 		}
 	}
 	second := quantitiesOf(c.a, c.w, a.s.dt, &cov, a.opt.TimebaseU)
-	return []*Quantities{&a.decays[0].Quantities, &second}
+	return []*Quantities{&a.decays[a.best].Quantities, &second}
 }
 
 // notRinging measures what does not ring but tells its damping all the same, and
@@ -190,10 +191,10 @@ func AnalyzeCapture(c *capture.Capture, opt Options) (*capture.Channel, *Result)
 // prominence ranks the channels of one capture: a measured decay before a refused
 // one, then by how well its rate is known.
 func (r *Result) prominence() float64 {
-	if r.Status == Refused || len(r.Decays) == 0 {
+	if r.Quantities == nil {
 		return -1
 	}
-	return 1 / r.Decays[0].Quantities.DecayRate.Relative()
+	return 1 / r.Quantities.DecayRate.Relative()
 }
 
 // limits turns the overrides of the gate into sample indices.

@@ -54,7 +54,7 @@ func TestBoundIsExact(t *testing.T) {
 			if !ok || f.stop != Converged {
 				t.Fatalf("stop %v", f.stop)
 			}
-			cov, ok := f.covariance(noise{rms: v.sigma, gain: 1})
+			cov, ok := f.covariance(noise{rms: v.sigma, gain: 1, n: math.Inf(1)})
 			if !ok {
 				t.Fatal("no covariance")
 			}

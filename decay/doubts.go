@@ -12,6 +12,10 @@ import (
 // leaves the bound, below three it may lock to noise.
 const weakSNR = 12
 
+// sparse is the number of samples a cycle below which an alias is not excluded by
+// any margin.
+const sparse = 2.45
+
 // shortWindow is the window, in time constants, below which the fall is hardly seen.
 const shortWindow = 0.45
 
@@ -34,6 +38,11 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 		out = append(out, warning(capture.WeakSignal,
 			fmt.Sprintf("The ring starts at only %.1f times the noise (%.1f dB).", math.Pow(10, d.SNR/20), d.SNR),
 			"Shock harder, use a smaller vertical range, or average several decays."))
+	}
+	if spc := g.fit.period(); spc < sparse {
+		out = append(out, warning(capture.SparseSamples,
+			fmt.Sprintf("Only %.3g samples fall on a cycle: a faster ring would look the same (aliasing).", spc),
+			"Sample faster, at least five times a cycle, or make sure by a second capture at another rate that the frequency is the true one."))
 	}
 	if c := g.fit.companion; c != nil {
 		out = append(out, g.besides(c))

@@ -13,6 +13,8 @@ type gate struct {
 	// cutBefore and cutAfter tell that something else (an edge) bounds the gate,
 	// not the record.
 	cutBefore, cutAfter bool
+	// coarse tells that nothing blurs the steps of the converter.
+	coarse bool
 }
 
 const (
@@ -37,7 +39,8 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 	}
 	g := first
 	g.settle(s, p, fixedStart, fixedEnd)
-	if g.misfits(s) {
+	g.cutCoarseTail(s)
+	if g.misfits(s) && !g.coarse {
 		if two, ok := withCompanion(s, &first); ok {
 			two.settleBoth(s, fixedStart, fixedEnd)
 			if two.cost(s) < g.cost(s)-companionMargin {
@@ -278,13 +281,24 @@ func (f *ringFit) gradient(n float64) [5]float64 {
 }
 
 // lateSigma is the noise in the second half of the fitted window, where neither
-// an edge nor a large amplitude disturbs it.
-func (g *gate) lateSigma() float64 {
-	half := g.fit.s.len() / 2
-	late := g.fit.s.slice(half, g.fit.s.len())
-	if late.len() > noiseSamples {
-		late = late.slice(late.len()-noiseSamples, late.len())
-		half = g.fit.s.len() - noiseSamples
+// an edge nor a large amplitude disturbs it, by a measure that outliers do not move.
+func (g *gate) lateSigma() float64 { return robustSigma(g.late()) }
+
+// lateRMS is the same by the mean square: rounding without noise leaves 0.29 steps.
+func (g *gate) lateRMS() float64 {
+	sum, n := 0.0, 0
+	for _, r := range g.late() {
+		if r == r {
+			sum += r * r
+			n++
+		}
 	}
-	return robustSigma(g.fit.residuals(late, g.fit.s.position(half)))
+	return math.Sqrt(sum / float64(max(1, n)))
+}
+
+// late returns the residual of the second half, of at most noiseSamples samples.
+func (g *gate) late() []float64 {
+	s := g.fit.s
+	half := max(s.len()/2, s.len()-noiseSamples)
+	return g.fit.residuals(s.slice(half, s.len()), s.position(half))
 }

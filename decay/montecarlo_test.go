@@ -72,7 +72,7 @@ func TestSineLimit(t *testing.T) {
 		if !ok {
 			t.Fatal("no fit")
 		}
-		cov, ok := fit.covariance(noise{rms: fit.sigma(), gain: 1})
+		cov, ok := fit.covariance(noise{rms: fit.sigma(), gain: 1, n: math.Inf(1)})
 		if !ok {
 			t.Fatal("no covariance")
 		}

@@ -41,7 +41,8 @@ type Result struct {
 	Decays []*Decay
 	// Modes is set for TwoMode only, strongest first.
 	Modes []*Quantities
-	// Readings are the classical readings of the first decay, independent of the fit.
+	// Readings are the classical readings of the decay whose rate is known best,
+	// independent of the fit.
 	Readings Readings
 	// Findings is sorted by severity, gravest first.
 	Findings []Finding

@@ -15,6 +15,8 @@ type series struct {
 	gaps  bool      // whether y holds a NaN
 	// lo and hi are the smallest and the largest sample of the whole record.
 	lo, hi float64
+	// step is that of the converter, 0 when the samples know none.
+	step float64
 	// stride, if not 0, is the distance of neighbours in intervals: the series was
 	// thinned.
 	stride int
@@ -27,6 +29,7 @@ func newSeries(ch *capture.Channel) series {
 		lo, hi, gaps := span(s.y[first:last])
 		return func() { s.lo, s.hi, s.gaps = min(s.lo, lo), max(s.hi, hi), s.gaps || gaps }
 	})
+	s.step = stepOf(s.y)
 	return s
 }
 

@@ -2,6 +2,7 @@ package decay
 
 import (
 	"math"
+	"slices"
 
 	"dieaway/capture"
 
@@ -9,45 +10,129 @@ import (
 )
 
 const (
+	edgesMost    = 6    // cuts in search of a decay between edges
+	edgeShare    = 0.2  // of the range that an edge must jump by
+	sameRing     = 0.15 // mean square departure, over the square of the amplitude, of one ring from itself
+	stirring     = 3    // variance over that of the noise that is worth a look
 	decayShare   = 0.05 // of the first amplitude that another decay must have
 	decayTwin    = 0.25 // relative difference of frequency up to which it is the same circuit
 	disagreement = 1e-3 // probability below which the decays of a record disagree
 )
 
-// findDecays finds every free decay of s: the most prominent one, and, where an
-// edge bounds it, those of the same circuit before and after.
+// findDecays finds every free decay of s: the most prominent one first in the
+// search, and, where something else stirs before or behind it, those of the same
+// circuit there. They are returned in order of time.
 func findDecays(s series, opt Options) []gate {
-	g, ok := findGate(s, opt.From != nil, opt.To != nil, opt.Model)
-	if !ok {
+	if opt.From != nil || opt.To != nil {
+		if g, ok := findGate(s, opt.From != nil, opt.To != nil, opt.Model); ok {
+			return []gate{g}
+		}
 		return nil
 	}
-	list := []gate{g}
-	if opt.To == nil && g.cutAfter {
-		list = append(list, decaysLike(&g, s, g.last, s.len(), opt.Model)...)
+	g, ok := decayIn(s, opt.Model, nil)
+	if !ok {
+		if g, ok = findGate(s, false, false, opt.Model); !ok {
+			return nil
+		}
+		return []gate{g} // for the judge to say what is wrong with it
 	}
-	if opt.From == nil && g.first > (g.last-g.first)/2 {
-		list = append(decaysLike(&g, s, 0, g.first, opt.Model), list...)
-	}
-	return list
+	return slices.Concat(decaysLike(&g, s, 0, g.first, opt.Model), []gate{g}, decaysLike(&g, s, g.last, s.len(), opt.Model))
 }
 
 // decaysLike finds the decays of the circuit of g in samples from to to-1.
 func decaysLike(g *gate, s series, from, to int, model Model) []gate {
-	var out []gate
-	least := max(2*samplesLeast, int(g.fit.period()))
-	for to-from >= least {
-		next, ok := findGate(s.slice(from, to), false, false, model)
-		if !ok || !next.sameCircuit(g) {
-			return out
-		}
-		next.first, next.last = next.first+from, next.last+from
-		out = append(out, next)
-		if !next.cutAfter {
-			return out
-		}
-		from = next.last
+	if to-from < max(2*samplesLeast, int(g.fit.period())) || !g.stirs(s.slice(from, to)) {
+		return nil
 	}
-	return out
+	next, ok := decayIn(s.slice(from, to), model, g)
+	if !ok {
+		return nil
+	}
+	next.first, next.last = next.first+from, next.last+from
+	if next.runsInto(g, s) || g.runsInto(&next, s) {
+		return nil
+	}
+	return slices.Concat(decaysLike(g, s, from, next.first, model), []gate{next}, decaysLike(g, s, next.last, to, model))
+}
+
+// runsInto reports whether the ring of g, continued, is that of other: then the
+// two are parts of one decay that the model does not follow all the way.
+func (g *gate) runsInto(other *gate, s series) bool {
+	if other.first < g.last {
+		return false
+	}
+	n := min(max(4, int(other.fit.period()/2)), other.last-other.first)
+	origin := s.slice(g.first, s.len())
+	sum := 0.0
+	for i := range n {
+		at := origin.position(other.first + i - g.first)
+		d := g.fit.value(at) - other.fit.value(float64(i))
+		sum += d * d
+	}
+	return sum < sameRing*float64(n)*sq(other.fit.size())
+}
+
+// stirs reports whether more than the noise of the decay g moves in s.
+func (g *gate) stirs(s series) bool {
+	sample := newRing(s.thinned(choiceSamples))
+	return sample.aboutMean() > stirring*sq(g.fit.sigma())*float64(sample.n)
+}
+
+// decayIn finds a decay in s that is plausible and, unless like is nil, of the
+// same circuit. A drive that switches to and fro may outweigh the ring: then it is
+// looked for between the edges.
+func decayIn(s series, model Model, like *gate) (gate, bool) {
+	return decayWithin(s, model, like, edgesMost)
+}
+
+func decayWithin(s series, model Model, like *gate, cuts int) (gate, bool) {
+	if s.len() < 2*samplesLeast {
+		return gate{}, false
+	}
+	g, ok := findGate(s, false, false, model)
+	if ok && g.plausible() && (like == nil || g.sameCircuit(like)) {
+		return g, true
+	}
+	if cuts == 0 {
+		return gate{}, false
+	}
+	at, ok := newPyramid(s).strongestEdge(s)
+	if !ok {
+		return gate{}, false
+	}
+	for _, part := range [][2]int{{at, s.len()}, {0, at}} {
+		if g, ok := decayWithin(s.slice(part[0], part[1]), model, like, cuts-1); ok {
+			g.first, g.last = g.first+part[0], g.last+part[0]
+			return g, true
+		}
+	}
+	return gate{}, false
+}
+
+// plausible reports whether the gate holds a decay that is worth a second look.
+func (g *gate) plausible() bool {
+	f := &g.fit
+	v := f.noise()
+	cov, ok := f.covariance(v)
+	return ok && f.a > decaySigma*math.Sqrt(cov.At(0, 0)) && energyGain(f, v) > energyNeeded(f.s.len())
+}
+
+// strongestEdge finds where the means of stretches of 16 samples jump most, if by
+// a notable share of the range.
+func (p *pyramid) strongestEdge(s series) (int, bool) {
+	if len(p.levels) < 3 || s.times != nil {
+		return 0, false
+	}
+	y := p.levels[2].y
+	i := steepest(y, 1, len(y)-1)
+	if i+2 >= len(y) || math.Abs(y[i+2]-y[i]) < edgeShare*(s.hi-s.lo) {
+		return 0, false
+	}
+	for j := 1; j >= 0; j-- {
+		i *= pyramidRatio
+		i = steepest(p.levels[j].y, i, i+3*pyramidRatio)
+	}
+	return i + 1, i > 0
 }
 
 // sameCircuit reports whether g is a measurable decay of the circuit of other.

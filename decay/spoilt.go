@@ -18,13 +18,14 @@ const (
 	glitchBlock = 1 << 14 // samples looked at in one go
 	glitchShare = 0.02    // share of the samples beyond which it is the model that is wrong
 	levelsTail  = 4       // steps of a converter without dither at which the tail is cut
+	manySteps   = 50      // amplitude in steps from which rounding hardly moves the result
 	ditherLeast = 0.4     // noise in steps from which a converter counts as dithered
 )
 
 // railed returns the samples that lie on the upper or lower end of the range in
 // flat runs with steep flanks: what a limiter or a converter cut off. The top of
 // an oscillation may repeat one level too, but leaves it slowly.
-func railed(s series, step float64) []int {
+func railed(s series) []int {
 	var out []int
 	y := s.y
 	for i := 0; i < len(y); i++ {
@@ -36,7 +37,7 @@ func railed(s series, step float64) []int {
 		for j < len(y) && y[j] == rail {
 			j++
 		}
-		if j-i >= railRun && steepFlank(y, i, j, step) {
+		if j-i >= railRun && steepFlank(y, i, j, s.step) {
 			for k := i; k < j; k++ {
 				out = append(out, k)
 			}
@@ -160,22 +161,25 @@ func glitchFinding(n int) Finding {
 		"Look at the residual: single spikes come from interference or a converter that slips.")
 }
 
-// coarse cuts the tail of a gate at a few steps of a converter whose steps no
-// noise blurs: below that the rounding follows the signal and pulls the rate.
-func (g *gate) coarseLevels(s series, step float64) (Finding, bool) {
-	sigma := g.lateSigma()
-	if !(step > 0) || !(sigma < ditherLeast*step) || g.fit.a <= 0 {
-		return Finding{}, false
+// cutCoarseTail cuts the tail of a gate at a few steps of a converter whose steps
+// no noise blurs: below that the rounding follows the signal and pulls the rate.
+func (g *gate) cutCoarseTail(s series) {
+	g.coarse = s.step > 0 && g.fit.a > 0 && g.lateRMS() < ditherLeast*s.step
+	if !g.coarse {
+		return
 	}
-	size := g.fit.size()
-	if n := math.Log(size/(levelsTail*step)) / g.fit.a; n > 2*samplesLeast && n < float64(g.last-g.first) {
+	if n := math.Log(g.fit.size()/(levelsTail*s.step)) / g.fit.a; n > 2*samplesLeast && n < float64(g.last-g.first) {
 		g.last = g.first + int(n)
-		g.refit(s, fine)
+		g.refit(s, coarse)
 	}
-	message := sprintf("The amplitude is %.3g steps of the converter and the noise only %.2g: nothing blurs the steps; the tail below %d steps was left out.", size/step, sigma/step, levelsTail)
+}
+
+func (g *gate) coarseFinding(step float64) Finding {
+	size := g.fit.size()
+	message := sprintf("The amplitude is %.3g steps of the converter and what is left only %.2g: no noise blurs the steps; the tail below %d steps was left out.", size/step, g.lateRMS()/step, levelsTail)
 	remedy := "Use a smaller vertical range, more bits, or average so that noise of half a step blurs the levels."
-	if size > 100*step {
-		return note(capture.CoarseLevels, message, remedy), true
+	if size > manySteps*step {
+		return note(capture.CoarseLevels, message, remedy)
 	}
-	return warning(capture.CoarseLevels, message, remedy), true
+	return warning(capture.CoarseLevels, message, remedy)
 }

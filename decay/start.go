@@ -8,7 +8,7 @@ const (
 	heavyRatio   = 5     // w over a, twice Q, below which a ring counts as heavily damped
 	startSamples = 4096  // or as many samples
 	modelShare   = 0.005 // of the record's rms: what a slightly wrong model may leave
-	trimSigma    = 5     // departure at which a sample on an edge is dropped
+	trimSigma    = 3     // departure at which a sample on an edge is dropped
 )
 
 // startSearch looks for the first sample of the free decay: the cut s for which
