@@ -138,6 +138,9 @@ func (v noise) freedom(w float64, parameters int) float64 {
 // covers 95 % although the noise is known with freedom degrees only: Student's
 // quantile over that of the normal distribution (GUM G.3).
 func widening(freedom float64) float64 {
+	if freedom > 1e6 {
+		return 1
+	}
 	t := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: math.Max(1, freedom)}
 	return math.Min(widestFactor, t.Quantile(0.975)/distuv.UnitNormal.Quantile(0.975))
 }

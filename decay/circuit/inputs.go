@@ -14,7 +14,7 @@ import (
 // results share keeps them correlated.
 type inputs struct {
 	names   []string
-	targets []*float64
+	targets [][]*float64 // the variables that take the value
 	values  []float64
 	blocks  []block
 }
@@ -47,7 +47,17 @@ func (in *inputs) bind(name string, value float64, target *float64) {
 	*target = value
 	in.names = append(in.names, name)
 	in.values = append(in.values, value)
-	in.targets = append(in.targets, target)
+	in.targets = append(in.targets, []*float64{target})
+}
+
+// share gives another variable the input that is bound to the variable of.
+func (in *inputs) share(of, target *float64) {
+	for i := range in.targets {
+		if in.targets[i][0] == of {
+			*target = *of
+			in.targets[i] = append(in.targets[i], target)
+		}
+	}
 }
 
 // propagate returns the results that f writes into y from the bound variables.
@@ -78,8 +88,10 @@ func (in *inputs) propagate(results []result, f func(y []float64)) (*quantity.Jo
 }
 
 func (in *inputs) set(x []float64) {
-	for i, t := range in.targets {
-		*t = x[i]
+	for i, targets := range in.targets {
+		for _, t := range targets {
+			*t = x[i]
+		}
 	}
 }
 

@@ -63,20 +63,35 @@ func newScene(b *Bench) *scene {
 	}
 	s.addKnown("coil resistance", b.CoilResistance, &s.coil)
 	s.addKnown("resistor", b.Resistor, &s.resistor)
-	s.bindSetup("ring-down", &b.RingDown, &s.ringDown)
+	s.bindRingDown()
 	return s
 }
 
-// withSweep binds the other set-up too. What both files give with the same value
-// and uncertainty is taken to be the same part: its error is no reason to differ.
+// withSweep binds the other set-up too. A part that both have with one value and
+// one uncertainty is taken to be the same: its error is no reason to differ.
 func (s *scene) withSweep() {
-	s.bindSetup("sweep", &s.bench.Sweep, &s.sweep)
+	for _, p := range []struct {
+		name         string
+		first, again quantity.Quantity
+		to, also     *float64
+	}{
+		{"sweep source", s.bench.RingDown.SourceResistance, s.bench.Sweep.SourceResistance, &s.ringDown.source, &s.sweep.source},
+		{"sweep probe resistance", s.bench.RingDown.ProbeResistance, s.bench.Sweep.ProbeResistance, &s.ringDown.probe, &s.sweep.probe},
+		{"sweep probe capacitance", s.bench.RingDown.ProbeCapacitance, s.bench.Sweep.ProbeCapacitance, &s.ringDown.probeC, &s.sweep.probeC},
+	} {
+		if p.first.Known() && p.first == p.again {
+			s.share(p.to, p.also)
+		} else {
+			s.addKnown(p.name, p.again, p.also)
+		}
+	}
 }
 
-func (s *scene) bindSetup(name string, from *Setup, to *setup) {
-	s.addKnown(name+" source", from.SourceResistance, &to.source)
-	s.addKnown(name+" probe resistance", from.ProbeResistance, &to.probe)
-	s.addKnown(name+" probe capacitance", from.ProbeCapacitance, &to.probeC)
+func (s *scene) bindRingDown() {
+	at := &s.bench.RingDown
+	s.addKnown("ring-down source", at.SourceResistance, &s.ringDown.source)
+	s.addKnown("ring-down probe resistance", at.ProbeResistance, &s.ringDown.probe)
+	s.addKnown("ring-down probe capacitance", at.ProbeCapacitance, &s.ringDown.probeC)
 }
 
 func (s *scene) addKnown(name string, q quantity.Quantity, target *float64) {
