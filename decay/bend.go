@@ -92,7 +92,7 @@ func logIntegral(b, f, fa float64) (i, ia, ib float64) {
 func newBent(s series, law bendLaw) *design {
 	length := s.position(s.len() - 1)
 	d := &design{
-		s: s, ref: s.mean(), width: 11, linear: []int{0, 1, 2},
+		s: s, ref: s.level(), width: 11, linear: []int{0, 1, 2},
 		derivative: [][]product{{{3, 1}, {4, 2}}, {{5, 1}, {6, 2}}, {{7, 1}, {8, 2}}, {{9, 1}, {10, 2}}},
 		eval: func(th []float64, t float64, f *[parametersMost]float64) {
 			u, i, ua, ub, ia, ib := law.shape(th[0], th[2], t)

@@ -14,7 +14,7 @@ import "math"
 func newSecondOrder(s series) *design {
 	length := s.position(s.len() - 1)
 	d := &design{
-		s: s, ref: s.mean(), width: 7, linear: []int{0, 1, 2},
+		s: s, ref: s.level(), width: 7, linear: []int{0, 1, 2},
 		derivative: [][]product{{{3, 1}, {4, 2}}, {{5, 1}, {6, 2}}},
 		eval: func(th []float64, t float64, f *[parametersMost]float64) {
 			k, s, kd, sd := dampedPair(th[0], th[1], t)

@@ -163,7 +163,8 @@ func (f *ringFit) residuals(s series, n0 float64) []float64 {
 
 // subtract takes the term off uniform samples, the first of which is at time n0.
 func (t *term) subtract(y []float64, n0 float64) {
-	table := newPowers(pole{t.a, t.w}, len(y))
+	var table powers
+	table.fill(pole{t.a, t.w}, len(y))
 	for at := 0; at < len(y); at += blockLength {
 		// The curve is the real part of (p - jq) z^n.
 		c := complex(t.p, -t.q) * table.z.at(n0+float64(at))

@@ -34,20 +34,21 @@ type poles struct {
 }
 
 func newPoles(s series, rings, falls int) *poles {
-	p := &poles{given: s, s: s, rings: rings, falls: falls, ref: s.thinned(levelSamples).mean()}
-	halves(s.len(), func(first, last int) func() {
-		y, yy, n := sums(s.y[first:last], p.ref)
-		return func() { p.y, p.yy, p.n = p.y+y, p.yy+yy, p.n+n }
-	})
+	p := &poles{given: s, s: s, rings: rings, falls: falls, ref: s.level()}
+	if s.len() < parallelFrom {
+		p.y, p.yy, p.n = sums(s.y, p.ref)
+	} else {
+		halves(s.len(), func(first, last int) func() {
+			y, yy, n := sums(s.y[first:last], p.ref)
+			return func() { p.y, p.yy, p.n = p.y+y, p.yy+yy, p.n+n }
+		})
+	}
 	p.length = s.position(s.len() - 1)
 	if p.n < s.len() {
 		p.fillGaps()
 	}
 	return p
 }
-
-// levelSamples are enough for a level to count from.
-const levelSamples = 1 << 10
 
 // sums returns the sum and the sum of squares of y - ref and their number; NaN is
 // left out.
@@ -173,7 +174,13 @@ func (p *poles) takeOut(g *gram, list []pole) {
 
 // projectAll returns sum y z^n and sum y n z^n over all of y.
 func projectAll(y []float64, z pole, ref float64) (out [2]complex128) {
-	t := newPowers(z, len(y))
+	if len(y) < parallelFrom {
+		var t powers // on the stack
+		t.fill(z, len(y))
+		return t.project(y, 0, len(y), ref)
+	}
+	t := new(powers)
+	t.fill(z, len(y))
 	halves(len(y), func(first, last int) func() {
 		sum := t.project(y, first, last, ref)
 		return func() { out[0], out[1] = out[0]+sum[0], out[1]+sum[1] }

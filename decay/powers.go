@@ -11,15 +11,14 @@ type powers struct {
 // blockLength is the length of the table.
 const blockLength = 128
 
-// newPowers fills the table as far as n samples need it.
-func newPowers(z pole, n int) *powers {
-	t := &powers{z: z}
+// fill sets the table up for z, as far as n samples need it.
+func (t *powers) fill(z pole, n int) {
+	t.z = z
 	n = min(n, blockLength)
 	powerTable(z.at(1), &t.re, &t.im, n)
 	for m := range n {
 		t.mre[m], t.mim[m] = float64(m)*t.re[m], float64(m)*t.im[m]
 	}
-	return t
 }
 
 // powerTable fills z^m by halving, which keeps the error at a few units in the
@@ -81,25 +80,22 @@ func (t *powers) block(y []float64, ref float64) [2]complex128 {
 }
 
 // geometric returns sum n^k z^n over n = 0..count-1 for k = 0, 1, 2, with
-// z = exp(-a + jw). Closed forms lose all digits where z is near one: one block is
-// summed term by term, and the sum over blocks is a geometric one again, of
-// z^blockLength, with n = blockLength b + m.
+// z = exp(-a + jw). Closed forms lose all digits where z is near one: a short run
+// is summed term by term, and the sum over runs is a geometric one again, of
+// z^geometricRun, with n = geometricRun b + m.
 func geometric(z pole, count int) (sum [3]complex128) {
-	var re, im [blockLength]float64
-	powerTable(z.at(1), &re, &im, min(count, blockLength))
-	if count <= blockLength {
-		return partial(&re, &im, count)
+	if count <= geometricRun {
+		return shortSum(z.at(1), count)
 	}
-	const l = blockLength
-	blocks := count / l
-	g := geometric(pole{z.a * l, z.w * l}, blocks)
-	b := partial(&re, &im, l)
+	const l = geometricRun
+	runs := count / l
+	g, b := geometric(pole{z.a * l, z.w * l}, runs), shortSum(z.at(1), l)
 	sum[0] = g[0] * b[0]
 	sum[1] = l*g[1]*b[0] + g[0]*b[1]
 	sum[2] = l*l*g[2]*b[0] + 2*l*g[1]*b[1] + g[0]*b[2]
-	if rest := count - blocks*l; rest > 0 {
-		n := complex(float64(blocks*l), 0)
-		base, r := z.at(float64(blocks*l)), partial(&re, &im, rest)
+	if rest := count - runs*l; rest > 0 {
+		n := complex(float64(runs*l), 0)
+		base, r := z.at(float64(runs*l)), shortSum(z.at(1), rest)
 		sum[0] += base * r[0]
 		sum[1] += base * (n*r[0] + r[1])
 		sum[2] += base * (n*n*r[0] + 2*n*r[1] + r[2])
@@ -107,16 +103,18 @@ func geometric(z pole, count int) (sum [3]complex128) {
 	return sum
 }
 
-func partial(re, im *[blockLength]float64, count int) [3]complex128 {
-	var r, i [3]float64
+// geometricRun is short enough for powers by repeated multiplication to keep
+// their digits.
+const geometricRun = 16
+
+func shortSum(z complex128, count int) (sum [3]complex128) {
+	power := complex(1, 0)
 	for m := range count {
-		x := float64(m)
-		r[0] += re[m]
-		i[0] += im[m]
-		r[1] += x * re[m]
-		i[1] += x * im[m]
-		r[2] += x * x * re[m]
-		i[2] += x * x * im[m]
+		x := complex(float64(m), 0)
+		sum[0] += power
+		sum[1] += x * power
+		sum[2] += x * x * power
+		power *= z
 	}
-	return [3]complex128{complex(r[0], i[0]), complex(r[1], i[1]), complex(r[2], i[2])}
+	return sum
 }

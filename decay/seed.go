@@ -5,6 +5,7 @@ import (
 	"math"
 	"math/cmplx"
 	"slices"
+	"sync"
 
 	"gonum.org/v1/gonum/dsp/fourier"
 )
@@ -66,6 +67,7 @@ func shorter(n int) int {
 // ratio R of neighbouring bins k and k+1 of an unwindowed transform gives its
 // pole, z = (1-R)/(v(k) - R v(k+1)) with v(k) = exp(-2 pi j k/N) (Bertocco et al. 1994).
 func spectral(y []float64) []seed {
+	y = y[:smooth(len(y))]
 	n := len(y)
 	mean := 0.0
 	for _, v := range y {
@@ -80,7 +82,7 @@ func spectral(y []float64) []seed {
 	if !(energy > 0) {
 		return nil
 	}
-	c := fourier.NewFFT(n).Coefficients(nil, x)
+	c := transform(x)
 	k := 1
 	for i := 1; i < len(c)-1; i++ {
 		if cmplx.Abs(c[i]) > cmplx.Abs(c[k]) {
@@ -144,6 +146,32 @@ func damped(y []float64) []seed {
 		return nil
 	}
 	return []seed{best}
+}
+
+// smooth is the largest length up to n, within a fifth of it, whose transform is
+// quick: a power of two times 4, 5 or 6.
+func smooth(n int) int {
+	p := max(1, floorPower(n)/4)
+	for _, m := range []int{6, 5, 4} {
+		if m*p <= n {
+			return m * p
+		}
+	}
+	return n
+}
+
+// plans keeps the tables of transforms by length: they cost more than a transform.
+var plans sync.Map // int -> *sync.Pool of *fourier.FFT
+
+// transform returns the discrete Fourier transform of x, bins 0 to len(x)/2.
+func transform(x []float64) []complex128 {
+	pool, _ := plans.LoadOrStore(len(x), &sync.Pool{})
+	plan, ok := pool.(*sync.Pool).Get().(*fourier.FFT)
+	if !ok {
+		plan = fourier.NewFFT(len(x))
+	}
+	defer pool.(*sync.Pool).Put(plan)
+	return plan.Coefficients(nil, x)
 }
 
 func sq(x float64) float64 { return x * x }
