@@ -5,15 +5,26 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+	"unicode"
 	"unicode/utf8"
 )
 
 // note adds a finding; what two time columns have in common is said once.
 func (c *Capture) note(code Code, s Severity, message, remedy string) {
-	f := Finding{code, s, message, remedy}
+	f := Finding{code, s, sentence(message), sentence(remedy)}
 	if !slices.Contains(c.Findings, f) {
 		c.Findings = append(c.Findings, f)
 	}
+}
+
+// sentence begins with a capital and ends with a full stop.
+func sentence(s string) string {
+	r, n := utf8.DecodeRuneInString(s)
+	s = string(unicode.ToUpper(r)) + s[n:]
+	if !strings.HasSuffix(s, ".") {
+		s += "."
+	}
+	return s
 }
 
 // addFindings says what is missing and what was left out.
