@@ -76,7 +76,7 @@ func Analyze(b *Bench, q *decay.Quantities) *Analysis {
 	}
 	s.addRingDown(m, q, b.RingDown.TimebaseU)
 	s.add(clock, quantity.New(0, b.RingDown.TimebaseU, ""), &s.clock)
-	if tank := s.tank(m.resonance(), &s.ringDown); !a.possible(tank, s) {
+	if tank := s.tank(m.resonance(), &s.ringDown); !a.possibleIn(tank, s.load(&s.ringDown)) {
 		return a
 	}
 	parts := s.partNames(&s.ringDown)
@@ -126,9 +126,8 @@ func (a *Analysis) note(message string) {
 		Remedy: "nothing; frequency and damping stand by themselves"})
 }
 
-// possible warns of a bench file that no circuit can follow.
-func (a *Analysis) possible(t Tank, s *scene) bool {
-	load := s.load(&s.ringDown)
+// possibleIn warns of a bench file that no circuit can follow.
+func (a *Analysis) possibleIn(t Tank, load Load) bool {
 	switch {
 	case math.IsNaN(t.Inductance+t.Capacitance+t.Resistance) || !(t.Inductance > 0):
 		a.wrong("no coil and capacitor can ring as measured with the source, resistor and probe of the bench file connected",

@@ -141,10 +141,3 @@ func (s *scene) tank(r Resonance, at *setup) Tank {
 		return WithResistance(s.coil, r, load, s.bench.Topology == Parallel)
 	}
 }
-
-// unloaded reports whether a set-up loads the circuit with nothing.
-func (s *Setup) unloaded(t Topology) bool {
-	source := s.SourceResistance.Known() && (t == Parallel || s.SourceResistance.Value != 0)
-	probe := s.ProbeResistance.Known() || s.ProbeCapacitance.Known() && s.ProbeCapacitance.Value != 0
-	return !source && !probe
-}
