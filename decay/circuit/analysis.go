@@ -89,7 +89,7 @@ func Analyze(b *Bench, q *decay.Quantities) *Analysis {
 		s.losses(y, r, tank, &s.ringDown)
 	})
 	if err != nil { // an uncertainty that is not known
-		a.note(err.Error())
+		a.note("Component values were not worked out: " + err.Error() + ".")
 		return a
 	}
 	a.take(joint, parts)
@@ -111,11 +111,11 @@ func (a *Analysis) feasible(s *scene, q *decay.Quantities) bool {
 	switch {
 	case s.known == nothing:
 		a.Findings = append(a.Findings, decay.Finding{Code: capture.Loading, Severity: capture.Note,
-			Message: "the bench file gives none of inductance, capacitance and coil_resistance, so what source and probe do cannot be worked out",
-			Remedy:  "give one of them under [circuit]"})
+			Message: "The bench file gives none of inductance, capacitance and coil_resistance: what source and probe do cannot be worked out.",
+			Remedy:  "Give one of them under [circuit]."})
 		return false
 	case !q.DampedFrequency.Known() || !q.DecayRate.Known():
-		a.note("the circuit does not ring, so its component values were not worked out")
+		a.note("The circuit does not ring: its component values were not worked out.")
 		return false
 	}
 	return true
@@ -123,19 +123,19 @@ func (a *Analysis) feasible(s *scene, q *decay.Quantities) bool {
 
 func (a *Analysis) note(message string) {
 	a.Findings = append(a.Findings, decay.Finding{Code: capture.Loading, Severity: capture.Note, Message: message,
-		Remedy: "nothing; frequency and damping stand by themselves"})
+		Remedy: "Nothing; frequency and damping stand by themselves."})
 }
 
 // possibleIn warns of a bench file that no circuit can follow.
 func (a *Analysis) possibleIn(t Tank, load Load) bool {
 	switch {
 	case math.IsNaN(t.Inductance+t.Capacitance+t.Resistance) || !(t.Inductance > 0):
-		a.wrong("no coil and capacitor can ring as measured with the source, resistor and probe of the bench file connected",
-			"check their values, and the component that is given as known")
+		a.wrong("No coil and capacitor can ring as measured with the source, resistor and probe of the bench file connected.",
+			"Check their values, and the component that is given as known.")
 	case !(t.Capacitance > 0):
-		a.wrong(fmt.Sprintf("all capacitance together is %s, less than the %s of the probe in the bench file",
+		a.wrong(fmt.Sprintf("All capacitance together is %s, less than the %s of the probe in the bench file.",
 			quantity.Format(t.Capacitance+load.Capacitance, "F", 3), quantity.Format(load.Capacitance, "F", 3)),
-			"check probe_capacitance and the inductance of the bench file")
+			"Check probe_capacitance and the inductance of the bench file.")
 	default:
 		return true
 	}
@@ -185,8 +185,8 @@ const grossError = 0.2
 func (a *Analysis) judgeGiven(v GivenValue) {
 	off := v.Found.Value/v.Given.Value - 1
 	if math.Abs(v.En) > 1 || math.IsNaN(v.En) && math.Abs(off) > grossError {
-		a.wrong(fmt.Sprintf("the %s is %s by the ring-down and the %s of the bench file, which gives %s: %+.2g %%",
+		a.wrong(fmt.Sprintf("The %s is %s by the ring-down and the %s of the bench file, which gives %s: %+.2g %%.",
 			v.Name, v.Found, a.Known, v.Given, 100*off),
-			"check both values of the bench file; a coil's own capacitance adds to the capacitor's")
+			"Check both values of the bench file; a coil's own capacitance adds to the capacitor's.")
 	}
 }

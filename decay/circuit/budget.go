@@ -130,14 +130,14 @@ func negativeRemainder(budget []Loss, total Loss, setup string) (f decay.Finding
 		return f, false
 	}
 	f = decay.Finding{Code: capture.Loading, Severity: capture.Note,
-		Message: fmt.Sprintf("nothing remains for %s in the %s: %s of a total of %s, which is none within its uncertainty",
+		Message: fmt.Sprintf("Nothing remains for %s in the %s: %s of a total of %s, which is none within its uncertainty.",
 			last.Part, setup, r, total.Resistance),
-		Remedy: "nothing; a smaller loading tells the coil better"}
+		Remedy: "Nothing; less loading tells more of the coil."}
 	if r.Value+2*r.U < 0 {
 		f.Severity = capture.Warning
-		f.Message = fmt.Sprintf("the bench file takes away more loss than the %s has: of a total of %s there would remain %s for %s",
+		f.Message = fmt.Sprintf("The bench file takes away more loss than the %s has: of a total of %s there would remain %s for %s.",
 			setup, total.Resistance, r, last.Part)
-		f.Remedy = "check the source, resistor, probe and component values of the bench file: at least one is wrong"
+		f.Remedy = "Check the source, resistor, probe and component values of the bench file: at least one is wrong."
 	}
 	return f, true
 }

@@ -77,7 +77,7 @@ func Compare(b *Bench, ringDown *decay.Result, sweep *driven.Result) *CrossCheck
 	c.plan()
 	if err := c.compute(); err != nil {
 		c.Findings = append(c.Findings, decay.Finding{Code: capture.Loading, Severity: capture.Warning,
-			Message: "the two cannot be compared: " + err.Error(), Remedy: "check the findings of ring-down and sweep"})
+			Message: "The two cannot be compared: " + err.Error() + ".", Remedy: "Look at the findings of ring-down and sweep."})
 		return c.CrossCheck
 	}
 	c.judge()

@@ -29,7 +29,8 @@ func (c *comparer) explain() {
 
 func (c *comparer) say(s string) {
 	if s != "" {
-		c.Explanations = append(c.Explanations, s)
+		s = strings.ToUpper(s[:1]) + s[1:]
+		c.Explanations = append(c.Explanations, strings.TrimSuffix(s, ".")+".")
 	}
 }
 
