@@ -59,11 +59,13 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 
 // settle moves both ends of the gate to where the decay begins and ends.
 func (g *gate) settle(s series, p *pyramid, fixedStart, fixedEnd bool) {
+	reach := s.len()
 	for range 2 {
 		if !fixedStart {
-			g.placeStart(s, p)
+			g.placeStart(s, p, reach)
 		}
 		g.growForward(s, fixedEnd)
+		reach = int(g.fit.period() / 2) // the rest of the decay moves it no further
 	}
 }
 

@@ -159,15 +159,47 @@ func robustSigma(r []float64) float64 {
 	return 1.4826 * median(abs)
 }
 
-// median sorts x; 0 for an empty slice.
+// median reorders x; 0 for an empty slice.
 func median(x []float64) float64 {
 	if len(x) == 0 {
 		return 0
 	}
-	slices.Sort(x)
 	m := len(x) / 2
+	upper := selected(x, m)
 	if len(x)%2 == 1 {
-		return x[m]
+		return upper
 	}
-	return (x[m-1] + x[m]) / 2
+	return (slices.Max(x[:m]) + upper) / 2
+}
+
+// selected returns the k-th smallest of x and moves the smaller ones before it
+// (quickselect, Hoare 1961): a full sort costs more than the fit it serves.
+func selected(x []float64, k int) float64 {
+	lo, hi := 0, len(x)-1
+	for lo < hi {
+		pivot := x[lo+(hi-lo)/2]
+		i, j := lo, hi
+		for i <= j {
+			for x[i] < pivot {
+				i++
+			}
+			for x[j] > pivot {
+				j--
+			}
+			if i <= j {
+				x[i], x[j] = x[j], x[i]
+				i++
+				j--
+			}
+		}
+		switch {
+		case k <= j:
+			hi = j
+		case k >= i:
+			lo = i
+		default:
+			return x[k]
+		}
+	}
+	return x[k]
 }

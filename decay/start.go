@@ -5,6 +5,7 @@ import "math"
 const (
 	startPoints  = 64    // samples per cycle that suffice to place the start coarsely
 	startCycles  = 32    // cycles of the decay that tell the start,
+	trialStep    = 0.1   // step of a fit that is only compared with others, in variances
 	heavyRatio   = 5     // w over a, twice Q, below which a ring counts as heavily damped
 	startSamples = 4096  // or as many samples
 	modelShare   = 0.005 // of the record's rms: what a slightly wrong model may leave
@@ -62,7 +63,7 @@ func (q *startSearch) fit(window series) (best ringFit, ok bool) {
 		starts = append(starts, damped(window.y)...)
 	}
 	for _, sd := range starts {
-		f, good := fitRing(window, sd.a, sd.w, coarse)
+		f, good := fitRing(window, sd.a, sd.w, trialStep)
 		if good && f.a > 0 && (!ok || f.rss < best.rss) {
 			best, ok = f, true
 		}
@@ -70,10 +71,11 @@ func (q *startSearch) fit(window series) (best ringFit, ok bool) {
 	return best, ok
 }
 
-// search walks from start to better starts in steps that shrink by half.
-func (q *startSearch) search(start int) (int, trial) {
+// search walks from start to better starts in steps that shrink by half, at first
+// of up to reach.
+func (q *startSearch) search(start, reach int) (int, trial) {
 	at, best := start, q.at(start)
-	for step := floorPower(q.s.len()); step >= 1; step /= 2 {
+	for step := floorPower(max(1, min(reach, q.s.len()))); step >= 1; step /= 2 {
 		for _, i := range []int{at - step, at + step} {
 			if i < 0 || i > q.s.len()-samplesLeast {
 				continue
@@ -98,7 +100,8 @@ func floorPower(n int) int {
 
 // placeStart moves the start of the gate to where the free decay begins, on the
 // level that has samples enough per cycle and then on the record itself.
-func (g *gate) placeStart(s series, p *pyramid) {
+// reach bounds the first step, in samples.
+func (g *gate) placeStart(s series, p *pyramid, reach int) {
 	k := 0
 	if s.even() {
 		for k+1 < len(p.levels) && g.fit.period()/float64(scale(k+1)) >= startPoints {
@@ -114,7 +117,7 @@ func (g *gate) placeStart(s series, p *pyramid) {
 		f := g.fit
 		f.a, f.w = f.a*m, f.w*m
 		q := newStartSearch(level, g.first/scale(k), min(g.last/scale(k), level.len()), &f)
-		at, t := q.search(min(g.first/scale(k), max(0, q.s.len()-samplesLeast)))
+		at, t := q.search(min(g.first/scale(k), max(0, q.s.len()-samplesLeast)), reach/scale(k))
 		if !math.IsInf(t.cost, 1) {
 			g.first = at * scale(k)
 			g.fit.a, g.fit.w = t.fit.a/m, t.fit.w/m
