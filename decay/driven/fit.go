@@ -77,17 +77,28 @@ func (s *state) gradient(f float64) (g [parMost]complex128) {
 // the curve; zero leaves a row out.
 type weights struct{ along, across []float64 }
 
+// sums are the normal equations under way: J'WJ, J'Wr and the weighted sum of squares.
+type sums struct {
+	jtj  [parMost][parMost]float64
+	jtr  [parMost]float64
+	cost float64
+}
+
+func (n *sums) add(row []float64, r float64) {
+	for i, x := range row {
+		for k := 0; k <= i; k++ {
+			n.jtj[i][k] += x * row[k]
+		}
+		n.jtr[i] += x * r
+	}
+	n.cost += r * r
+}
+
 // normal returns J'WJ, J'Wr and the weighted sum of squares.
 func (s *state) normal(d *rows, w weights) (jtj *mat.SymDense, jtr *mat.VecDense, cost float64) {
-	p := len(s.free)
-	jtj, jtr = mat.NewSymDense(p, nil), mat.NewVecDense(p, nil)
-	add := func(row []float64, r float64) {
-		v := mat.NewVecDense(p, row)
-		jtj.SymRankOne(jtj, 1, v)
-		jtr.AddScaledVec(jtr, r, v)
-		cost += r * r
-	}
-	row := make([]float64, p)
+	var n sums
+	var room [parMost]float64
+	row := room[:len(s.free)]
 	for i, f := range d.f {
 		if w.along[i] == 0 {
 			continue
@@ -97,16 +108,24 @@ func (s *state) normal(d *rows, w weights) (jtj *mat.SymDense, jtr *mat.VecDense
 		for k, par := range s.free {
 			row[k] = real(g[par]) * w.along[i]
 		}
-		add(row, along*w.along[i])
+		n.add(row, along*w.along[i])
 		if d.phi == nil {
 			continue
 		}
 		for k, par := range s.free {
 			row[k] = imag(g[par]) * w.across[i]
 		}
-		add(row, across*w.across[i])
+		n.add(row, across*w.across[i])
 	}
-	return jtj, jtr, cost
+	p := len(s.free)
+	jtj, jtr = mat.NewSymDense(p, nil), mat.NewVecDense(p, nil)
+	for i := range p {
+		jtr.SetVec(i, n.jtr[i])
+		for k := 0; k <= i; k++ {
+			jtj.SetSym(i, k, n.jtj[i][k])
+		}
+	}
+	return jtj, jtr, n.cost
 }
 
 func (s *state) cost(d *rows, w weights) (cost float64) {
