@@ -62,37 +62,35 @@ func (j *job) run(ctx context.Context) error {
 		}
 		defer page.discard()
 	}
+	tuneGarbage(j.inputs)
+	bar := newProgress(j.stderr, j.quiet || j.json)
+	if len(j.sources) == 1 {
+		j.read.Progress = func(done, total int64) { bar.at(done, total, "reading", true) }
+	}
 	worst := exitDone
-	for i, s := range j.sources {
-		r, err := j.measure(ctx, s)
-		if err != nil {
-			return err
+	work := startAhead(ctx, j.sources, j.ringDown)
+	for i := range j.sources {
+		r, ok := work.next(ctx, i)
+		if !ok {
+			return errors.New("interrupted")
 		}
+		bar.clear()
 		code, err := j.deliver(r, page, i)
 		if err != nil {
 			return err
 		}
+		work.done()
+		bar.at(int64(i+1), int64(len(j.sources)), "captures", false)
 		worst = max(worst, code)
 	}
+	bar.clear()
 	if worst != exitDone {
 		return &exitError{Code: worst}
 	}
 	return nil
 }
 
-// measure reads and analyses one source. The error is that of an interrupt; what
-// is wrong with the source is in the ring-down's Err.
-func (j *job) measure(ctx context.Context, s source) (*report.RingDown, error) {
-	done := make(chan *report.RingDown, 1)
-	go func() { done <- j.ringDown(s) }()
-	select {
-	case r := <-done:
-		return r, nil
-	case <-ctx.Done():
-		return nil, errors.New("interrupted")
-	}
-}
-
+// ringDown reads and analyses one source; what is wrong with it is in its Err.
 func (j *job) ringDown(s source) *report.RingDown {
 	r := &report.RingDown{File: s.name, Device: j.device, Origin: j.origin}
 	c, err := s.open(j.read)
