@@ -63,8 +63,7 @@ type Comparison struct {
 // TimebaseU of their set-ups.
 func Compare(b *Bench, ringDown *decay.Result, sweep *driven.Result) *CrossCheck {
 	if b == nil {
-		b = &Bench{Topology: Series, RingDown: emptySetup(), Sweep: emptySetup(), Inductance: quantity.Unknown("H"),
-			Capacitance: quantity.Unknown("F"), Resistor: quantity.Unknown("ohm"), CoilResistance: quantity.Unknown("ohm")}
+		b = emptyBench()
 	}
 	c := &comparer{CrossCheck: &CrossCheck{Decisive: AsMeasured}, ringDown: ringDown, driven: sweep}
 	none := emptyAnalysis(b).Unloaded

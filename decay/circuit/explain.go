@@ -94,7 +94,7 @@ func signed(x float64) string {
 	if math.Abs(x) < 1e-3 {
 		return fmt.Sprintf("%+.0f ppm", x*1e6)
 	}
-	return fmt.Sprintf("%+.2g %%", x*100)
+	return fmt.Sprintf("%+.3g %%", x*100)
 }
 
 // explainPeak says that the response is not greatest at f0.

@@ -25,14 +25,15 @@ type block struct {
 	cov   *mat.SymDense
 }
 
-// add binds an input of its own; an unknown uncertainty counts as none.
+// add binds an input of its own. An exact value, and one of unknown uncertainty,
+// which counts as exact, only sets the variable.
 func (in *inputs) add(name string, q quantity.Quantity, target *float64) {
-	u := q.U
-	if math.IsNaN(u) {
-		u = 0
+	if !(q.U > 0) {
+		*target = q.Value
+		return
 	}
 	in.bind(name, q.Value, target)
-	in.blocks = append(in.blocks, block{len(in.values) - 1, mat.NewSymDense(1, []float64{u * u})})
+	in.blocks = append(in.blocks, block{len(in.values) - 1, mat.NewSymDense(1, []float64{q.U * q.U})})
 }
 
 // addPair binds two inputs with their covariance.
@@ -50,11 +51,11 @@ func (in *inputs) bind(name string, value float64, target *float64) {
 	in.targets = append(in.targets, []*float64{target})
 }
 
-// share gives another variable the input that is bound to the variable of.
+// share gives another variable the value and the input of the variable of.
 func (in *inputs) share(of, target *float64) {
+	*target = *of
 	for i := range in.targets {
 		if in.targets[i][0] == of {
-			*target = *of
 			in.targets[i] = append(in.targets[i], target)
 		}
 	}
