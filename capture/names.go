@@ -3,6 +3,7 @@ package capture
 import (
 	"slices"
 	"strings"
+	"unicode"
 )
 
 // A heading is what stands above the columns: their names and units.
@@ -113,6 +114,8 @@ func (h *head) namesRow(cells []cell, adjacent bool) bool {
 		switch k := h.kindOf(c); {
 		case k == kindNumber && strings.IndexByte(text, '.') < 0 && len(text) < 4:
 			numbers++ // a channel that is called 1
+		case k == kindMissing && unicode.IsLetter(rune(text[0])):
+			numbers++ // one that is called out
 		case k != kindText:
 			return false
 		default:

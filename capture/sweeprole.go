@@ -1,0 +1,277 @@
+package capture
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+)
+
+// How the columns of a sweep are told apart: by the options, by unit and name,
+// and only then by their place (frequency, response, deviation or phase).
+
+// sweepWords are the words of a name that give its column a role.
+var sweepWords = map[Role][]string{
+	RoleFrequency: {"f", "freq", "frequency", "frequencies", "hz", "khz", "mhz", "ghz", "frequenz", "fréquence"},
+	RolePhase:     {"pha", "phase", "phi", "φ", "deg", "degree", "degrees", "°", "rad", "radian", "radians", "angle", "arg", "theta", "θ"},
+	RoleReal:      {"re", "real"},
+	RoleImaginary: {"im", "imag", "imaginary"},
+	RoleReference: {"vin", "uin", "vs", "us", "vg", "ug", "vsrc", "source", "input", "in", "ref", "reference", "generator", "gen", "drive", "v1", "u1", "ch1", "excitation"},
+	RoleResponse: {"amp", "ampl", "amplitude", "gain", "mag", "magnitude", "db", "ratio", "response", "transfer", "h", "|h|", "out", "vout", "uout",
+		"output", "v2", "u2", "ch2", "vc", "uc", "vl", "ul", "vr", "ur", "current"},
+}
+
+// partWords are folded names of voltages across a part.
+var partWords = map[Part][]string{
+	Capacitor: {"vc", "uc", "vcap", "ucap", "cap", "capacitor", "capacitorvoltage", "vcapacitor", "voltagecapacitor"},
+	Inductor:  {"vl", "ul", "vcoil", "ucoil", "coil", "inductor", "inductorvoltage", "vinductor", "coilvoltage"},
+	Resistor:  {"vr", "ur", "vres", "resistor", "resistorvoltage", "vresistor", "current", "i", "ir", "il", "iloop"},
+	Both:      {"vlc", "ulc", "notch"},
+}
+
+// partOf is the part that a name says; of a ratio its numerator counts.
+func partOf(name string) Part {
+	w := bareName(name)
+	for part, names := range partWords {
+		if slices.Contains(names, w) {
+			return part
+		}
+	}
+	return ""
+}
+
+// bareName is the folded name without the denominator of a ratio and without
+// words for how a voltage was read.
+func bareName(name string) string {
+	name, _, _ = strings.Cut(name, "/")
+	return fold(strings.Join(slices.DeleteFunc(words(name), func(w string) bool { return levels[w] > 0 }), " "))
+}
+
+// nameSays reports a name with a word for the role. "V_C" counts as "vc" too.
+func nameSays(name string, r Role) bool {
+	return slices.ContainsFunc(append(words(name), bareName(name)), func(w string) bool { return slices.Contains(sweepWords[r], w) })
+}
+
+// isRatio reports a name for something that was divided by the source already.
+func isRatio(name string) bool {
+	if strings.Contains(name, "/") {
+		return true
+	}
+	return slices.ContainsFunc(words(name), func(w string) bool {
+		return slices.Contains([]string{"gain", "ratio", "transfer", "h", "|h|"}, w)
+	})
+}
+
+// sweepUnit mends the unit of a column of a sweep: "amp" is an amplitude rather
+// than a current, and a word of the name may be the unit.
+func (c *column) sweepUnit() {
+	if fold(c.Name) == "amp" || fold(c.Name) == "a" {
+		c.unit, c.Unit = unit{}, ""
+	}
+	if c.unit.base != "" && c.unit.base != "s" {
+		return
+	}
+	for _, w := range strings.FieldsFunc(c.Name, func(r rune) bool { return strings.ContainsRune(" _-.,()[]/:", r) }) {
+		if u, ok := parseUnit(w); ok && slices.Contains([]string{"Hz", "dB", "deg", "rad"}, u.base) {
+			c.unit, c.Unit = u, unitName(u)
+			return
+		}
+	}
+}
+
+// assign gives every column its role.
+func (t *sweepTable) assign(opt SweepOptions) error {
+	for i := range t.columns {
+		t.columns[i].sweepUnit()
+	}
+	if err := t.assignAsked(opt); err != nil {
+		return err
+	}
+	t.assignNamed()
+	assignDeviations(t.columns)
+	if firstWithRole(t.columns, RoleFrequency) < 0 {
+		if err := t.guessFrequency(); err != nil {
+			return err
+		}
+	}
+	t.assignUnnamed()
+	t.pickResponse()
+	t.pickReference()
+	return nil
+}
+
+// assignAsked does what the options say.
+func (t *sweepTable) assignAsked(opt SweepOptions) error {
+	for _, a := range []struct {
+		role Role
+		name string
+	}{{RoleFrequency, opt.Frequency}, {RoleResponse, opt.Response}, {RoleReference, opt.Reference}, {RolePhase, opt.Phase}} {
+		if a.name == "" || a.role == RoleReference && a.name == "none" {
+			continue
+		}
+		i, err := t.asked(string(a.role), a.name)
+		if err != nil {
+			return err
+		}
+		if c := &t.columns[i]; c.Role != "" {
+			return fmt.Errorf("%w for the %s: column %d is the %s already", ErrNoColumn, a.role, i+1, c.Role)
+		}
+		t.columns[i].is(a.role, "asked for")
+	}
+	return nil
+}
+
+// assignNamed gives roles by unit and name to columns that have none. Response
+// and reference are weighed against each other later.
+func (t *sweepTable) assignNamed() {
+	taken := func(r Role) bool { return firstWithRole(t.columns, r) >= 0 }
+	for i := range t.columns {
+		c := &t.columns[i]
+		if c.Role != "" {
+			continue
+		}
+		switch of := deviationOf(t.columns, i); {
+		case c.kind == kindStamp:
+			c.is(RoleTime, "dates or clock times")
+		case deviationName(c.Name):
+			c.is(RoleDeviation, "its name is %q", c.Name)
+		case of >= 0:
+			c.is(RoleDeviation, "its name is %q beside %q", c.Name, t.columns[of].Name)
+		case (c.unit.base == "Hz" || nameSays(c.Name, RoleFrequency)) && !taken(RoleFrequency):
+			c.is(RoleFrequency, "its name is %q", c.Name)
+		case (c.unit.base == "deg" || c.unit.base == "rad" || nameSays(c.Name, RolePhase)) && !taken(RolePhase):
+			c.is(RolePhase, "its name is %q", c.Name)
+		case c.unit.base == "s" || exactTimeName(c.Name) && fold(c.Name) != "x":
+			c.is(RoleTime, "its name is %q", c.Name)
+		case nameSays(c.Name, RoleReal) && !taken(RoleReal) && !taken(RoleResponse):
+			c.is(RoleReal, "its name is %q", c.Name)
+		case nameSays(c.Name, RoleImaginary) && !taken(RoleImaginary) && !taken(RoleResponse):
+			c.is(RoleImaginary, "its name is %q", c.Name)
+		case c.Name != "" && indexWord(c.Name) && c.whole:
+			c.is(RoleIndex, "its name is %q", c.Name)
+		}
+	}
+}
+
+// guessFrequency takes the first column of numbers, if they differ and are not all negative.
+func (t *sweepTable) guessFrequency() error {
+	for i := range t.columns {
+		c := &t.columns[i]
+		if c.Role != "" {
+			continue
+		}
+		if lo, hi := extremes(c.values); hi > max(lo, 0) {
+			c.is(RoleFrequency, "no column is named so, and it is the first of numbers")
+			return nil
+		}
+		break
+	}
+	return &Error{Err: ErrNoData, Found: "the columns " + t.listed(), Expected: "one of frequency, or --frequency"}
+}
+
+func extremes(v []float64) (lo, hi float64) {
+	lo, hi = math.Inf(1), math.Inf(-1)
+	for _, x := range v {
+		if !math.IsNaN(x) {
+			lo, hi = min(lo, x), max(hi, x)
+		}
+	}
+	return lo, hi
+}
+
+// assignUnnamed reads a table of three columns without names whose third is no
+// deviation as frequency, response and phase.
+func (t *sweepTable) assignUnnamed() {
+	var free []int
+	for i := range t.columns {
+		c := &t.columns[i]
+		if c.Name != "" {
+			return
+		}
+		if c.Role == "" {
+			free = append(free, i)
+		}
+	}
+	if len(free) != 2 {
+		return
+	}
+	c := &t.columns[free[1]]
+	if lo, hi := extremes(c.values); lo < 0 && hi <= 360 && lo >= -360 {
+		c.is(RolePhase, "no names; the third column, and its numbers are negative")
+	}
+}
+
+// pickResponse chooses the response among the columns left, if real and
+// imaginary parts are not the response.
+func (t *sweepTable) pickResponse() {
+	re, im := firstWithRole(t.columns, RoleReal), firstWithRole(t.columns, RoleImaginary)
+	if firstWithRole(t.columns, RoleResponse) >= 0 || re >= 0 && im >= 0 {
+		return
+	}
+	best, rank := -1, 0
+	for i := range t.columns {
+		if c := &t.columns[i]; c.Role == "" {
+			if r := c.responseRank(); r > rank {
+				best, rank = i, r
+			}
+		}
+	}
+	if best < 0 {
+		return
+	}
+	c := &t.columns[best]
+	switch {
+	case rank >= rankNamed:
+		c.is(RoleResponse, "its name is %q", c.Name)
+	default:
+		c.is(RoleResponse, "the first column of numbers beside the frequency")
+	}
+}
+
+// The ranks of columns that may be the response.
+const (
+	rankSource = 1 // named as a source
+	rankPlain  = 2 // no word for anything
+	rankNamed  = 3
+	rankPart   = 4 // across a part of the circuit
+	rankRatio  = 5 // divided by the source already
+)
+
+func (c *column) responseRank() int {
+	switch {
+	case c.unit.base == "dB" || isRatio(c.Name) || slices.Contains([]string{"amp", "db"}, fold(c.Name)):
+		return rankRatio
+	case partOf(c.Name) == Capacitor:
+		return rankPart
+	case partOf(c.Name) != "" || nameSays(c.Name, RoleResponse):
+		return rankNamed
+	case nameSays(c.Name, RoleReference):
+		return rankSource
+	}
+	return rankPlain
+}
+
+// pickReference chooses the source among the columns left: one that was measured
+// before one that only says what was set. The others are voltages.
+func (t *sweepTable) pickReference() {
+	best, measured := -1, false
+	if firstWithRole(t.columns, RoleReference) < 0 {
+		for i := range t.columns {
+			c := &t.columns[i]
+			if c.Role != "" || !nameSays(c.Name, RoleReference) {
+				continue
+			}
+			if lo, hi := extremes(c.values); best < 0 || hi > lo && !measured {
+				best, measured = i, hi > lo
+			}
+		}
+	}
+	if best >= 0 {
+		t.columns[best].is(RoleReference, "its name is %q", t.columns[best].Name)
+	}
+	for i := range t.columns {
+		if c := &t.columns[i]; c.Role == "" {
+			c.is(RoleVoltage, "numbers beside the response")
+		}
+	}
+}
