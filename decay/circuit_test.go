@@ -166,3 +166,29 @@ func within(t *testing.T, what string, got, want, tol float64) {
 		t.Errorf("%s = %.9g, want %.9g within %.2g", what, got, want, tol)
 	}
 }
+
+// TestResiduals: the quick residual is the sample less the curve, for one ring, a
+// ring with a baseline, two rings and an amplitude law.
+func TestResiduals(t *testing.T) {
+	for _, k := range kinds {
+		switch k.code {
+		case "weak-signal", "baseline-drift", "second-mode", "amplitude-dependent":
+		default:
+			continue
+		}
+		rng := rand.New(rand.NewPCG(2, 53))
+		ch := channel(withNoise(k.make(rng), 0.01, 2), -3e-4, 1e-6)
+		r := Analyze(ch, Options{})
+		if len(r.Decays) == 0 {
+			t.Fatalf("%s: %v", k.name, r.Findings)
+		}
+		d := r.Decays[0]
+		got := d.Residuals(ch, d.First, d.Last-d.First)
+		for i, v := range got {
+			fit, _, _ := d.At(ch.Axis.Time(d.First + i))
+			if want := ch.Samples[d.First+i] - fit; math.Abs(v-want) > 1e-9 {
+				t.Fatalf("%s, sample %d: %g, want %g", k.name, i, v, want)
+			}
+		}
+	}
+}

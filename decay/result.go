@@ -1,6 +1,9 @@
 package decay
 
 import (
+	"math"
+	"slices"
+
 	"dieaway/capture"
 	"dieaway/decay/quantity"
 )
@@ -109,6 +112,34 @@ type law interface {
 // oscillation (half the distance between its upper and lower edge) and the
 // baseline it rings about, in the unit of the channel.
 func (d *Decay) At(t float64) (value, envelope, baseline float64) { return d.law.at(t - d.From) }
+
+// Residuals returns sample less fitted curve for n samples of ch from index first
+// on, in the unit of the channel; NaN where there is no sample. For one ring on
+// even samples it costs a few operations each, where [Decay.At] takes a cosine.
+func (d *Decay) Residuals(ch *capture.Channel, first, n int) []float64 {
+	out := slices.Clone(ch.Samples[first : first+n])
+	l, ok := d.law.(exponentialLaw)
+	if !ok || ch.Axis.Times != nil {
+		for i := range out {
+			v, _, _ := d.At(ch.Axis.Time(first + i))
+			out[i] -= v
+		}
+		return out
+	}
+	dt := ch.Axis.Interval
+	n0 := (ch.Axis.Time(first) - d.From) / dt
+	for i := range out {
+		out[i] -= l.offset
+	}
+	sin, cos := math.Sincos(l.phase)
+	ring := term{l.rate * dt, l.omega * dt, l.amplitude * cos, -l.amplitude * sin}
+	ring.subtract(out, n0)
+	if c := l.companion; c != nil {
+		beside := term{c.a * dt, c.w * dt, c.p, c.q}
+		beside.subtract(out, n0)
+	}
+	return out
+}
 
 // Readings are what a person would read off the screen with care, each with its
 // own uncertainty, and the points they were read at.

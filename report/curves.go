@@ -3,6 +3,7 @@ package report
 import (
 	"math"
 
+	"dieaway/capture"
 	"dieaway/decay"
 )
 
@@ -58,6 +59,32 @@ func (r *RingDown) drawnDecays() []drawn {
 		out = append(out, w)
 	}
 	return out
+}
+
+// residualBlock is how many residuals are computed in one go.
+const residualBlock = 1 << 13
+
+// residuals returns sample less curve by index. A curve that can do many in one go
+// is asked for blocks: the indices are taken in rising order.
+func (w *drawn) residuals(ch *capture.Channel) func(i int) float64 {
+	quick, ok := w.curve.(interface {
+		Residuals(ch *capture.Channel, first, n int) []float64
+	})
+	if !ok {
+		return func(i int) float64 {
+			v, _, _ := w.curve.At(ch.Axis.Time(i))
+			return ch.Samples[i] - v
+		}
+	}
+	var block []float64
+	first := 0
+	return func(i int) float64 {
+		if i < first || i >= first+len(block) {
+			first = i
+			block = quick.Residuals(ch, i, min(residualBlock, ch.Axis.N-i))
+		}
+		return block[i-first]
+	}
 }
 
 // fitted returns the fitted curve. Where the cycles are too many to draw there is

@@ -214,10 +214,7 @@ func (p *plot) residual(r *RingDown, all []drawn, windows []indexRange, reduced 
 		if ch.Axis.N <= exactLimit {
 			bins = ch.Axis.N
 		}
-		traces[i] = reduce(ch.Axis, segments(w.gate, windows, bins, w.points(binsInWindow)), func(k int) float64 {
-			v, _, _ := w.curve.At(ch.Axis.Time(k))
-			return ch.Samples[k] - v
-		})
+		traces[i] = reduce(ch.Axis, segments(w.gate, windows, bins, w.points(binsInWindow)), w.residuals(ch))
 		if a, b, ok := span(traces[i].v); ok {
 			lo, hi = math.Min(lo, a), math.Max(hi, b)
 		}
