@@ -3,6 +3,7 @@ package report
 import (
 	"encoding/json"
 	"fmt"
+	"html/template"
 	"math"
 	"strconv"
 	"strings"
@@ -42,12 +43,28 @@ type view struct {
 // script has to know beside it.
 type figure struct {
 	Option  json.RawMessage `json:"option"`
-	Time    string          `json:"time"` // unit of the time axis
+	Time    string          `json:"time"` // unit of the common axis
 	Panels  []panel         `json:"panels"`
 	Views   []view          `json:"views"`
 	Name    string          `json:"name"` // for the title of an exported picture
 	Reduced bool            `json:"reduced"`
+	Picture string          `json:"picture,omitempty"` // file name of an exported picture
+
+	// Words are those of the tools, Notes the sentences below the charts.
+	Words axisWords `json:"-"`
+	Notes []string  `json:"-"`
+	// Suffix tells the figures of a page apart, Data is the figure as JSON.
+	Suffix string      `json:"-"`
+	Data   template.JS `json:"-"`
 }
+
+// axisWords are what the tools of a figure call its common axis.
+type axisWords struct{ X, Shown, Whole, Left, Right string }
+
+var (
+	wordsOfTime      = axisWords{"time", "Time shown in all charts", "Whole record", "Earlier", "Later"}
+	wordsOfFrequency = axisWords{"frequency", "Frequencies shown in all charts", "Whole sweep", "Lower", "Higher"}
+)
 
 // A column is numbers of a data set, rounded to what a screen can show; NaN is null.
 type column struct {

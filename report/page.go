@@ -1,11 +1,7 @@
 package report
 
 import (
-	"bufio"
-	_ "embed" // the parts of the page
-	"encoding/json"
 	"fmt"
-	"html/template"
 	"io"
 	"math"
 	"strings"
@@ -14,20 +10,6 @@ import (
 	"dieaway/capture"
 	"dieaway/decay"
 )
-
-//go:embed web/page.html
-var pageHTML string
-
-//go:embed web/page.css
-var pageCSS string
-
-//go:embed web/page.js
-var pageJS string
-
-//go:embed echarts/echarts.common.min.js
-var echartsJS string
-
-var pageTemplate = template.Must(template.New("page").Parse(pageHTML))
 
 // WritePage writes the evidence as one HTML page that needs no network: what was
 // measured and the verdict, the results with their uncertainties, findings,
@@ -47,37 +29,23 @@ func (r *RingDown) WritePage(w io.Writer) error {
 	if err != nil {
 		return fmt.Errorf("charts of the page: %w", err)
 	}
-	data, err := json.Marshal(f)
-	if err != nil {
-		return fmt.Errorf("charts of the page: %w", err)
-	}
-	b := bufio.NewWriterSize(w, 1<<16)
-	if err := pageTemplate.Execute(b, r.page(f, data)); err != nil {
-		return err
-	}
-	return b.Flush()
+	p := r.page(f)
+	return p.write(w, "ringdown.html", p)
 }
 
 // A page is what the template shows.
 type page struct {
-	CSS             template.CSS
-	Script, ECharts template.JS
-	Data            template.JS // JSON, escaped for a script element
-
-	Title, Heading, What string
-	Status               decay.Status
-	Verdict              string
-	Refused              bool
-	Headline, Results    []row
-	Facts                []fact
-	Readings             []comparison
-	Decays               []decayRow
-	MoreDecays           int
-	Modes                [][]row
-	Findings             []capture.Finding
-	Figure               *figure
-	Origin, Layout       []fact
-	Columns              []capture.Column
+	frame
+	Refused           bool
+	Headline, Results []row
+	Facts             []fact
+	Readings          []comparison
+	Decays            []decayRow
+	MoreDecays        int
+	Modes             [][]row
+	Findings          []capture.Finding
+	Origin, Layout    []fact
+	Columns           []capture.Column
 }
 
 // A fact is a name and what there is to say.
@@ -90,14 +58,15 @@ type decayRow struct {
 	Rows   []row
 }
 
-func (r *RingDown) page(f *figure, data []byte) *page {
+func (r *RingDown) page(f *figure) *page {
+	f.Words, f.Notes = wordsOfTime, r.notes(f)
 	p := &page{
-		CSS: template.CSS(pageCSS), Script: template.JS(pageJS), ECharts: template.JS(echartsJS), Data: template.JS(data),
-		Heading: r.heading(), What: r.what(), Status: r.Status(), Verdict: r.verdict(),
-		Refused: r.refused(), Findings: cleaned(r.Findings()), Figure: f,
+		frame: frame{Kind: "Free decay of a resonant circuit", Heading: r.heading(), What: r.what(),
+			Status: string(r.Status()), Verdict: r.verdict(), Figures: []*figure{f}},
+		Refused: r.refused(), Findings: cleaned(r.Findings()),
 		Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns,
 	}
-	p.Title = p.Heading + " – free decay, " + string(p.Status)
+	p.Title = p.Heading + " – free decay, " + p.Status
 	record := fact{"record", r.recordLine()}
 	if p.Refused {
 		p.Layout = append([]fact{record}, p.Layout...)
@@ -129,6 +98,22 @@ func decayRows(all []*decay.Decay) (rows []decayRow, more int) {
 		rows = append(rows, decayRow{i + 1, gateLine(d), resultRows(&d.Quantities)[:4]})
 	}
 	return rows, len(all) - len(rows)
+}
+
+// notes says below the charts what is to be known of them.
+func (r *RingDown) notes(f *figure) []string {
+	var out []string
+	if !r.refused() {
+		out = append(out, "The tinted ground is the gate, the stretch that was fitted.")
+	}
+	if f.Reduced {
+		s := "The record is longer than a page can hold: it is drawn by the smallest and the largest sample of each bin"
+		if !r.refused() {
+			s += "; the bins are finer, or single samples, in the first cycles, the middle and the last cycles of each decay, and only there is the fitted curve drawn where its cycles are many. The result comes from all samples"
+		}
+		out = append(out, s+".")
+	}
+	return out
 }
 
 // heading names what was measured.

@@ -1,10 +1,11 @@
 "use strict";
-(() => {
-  const data = JSON.parse(document.getElementById("data").textContent);
+// Each figure of the page has its own charts, data and tools.
+document.querySelectorAll("figure.charts").forEach((figure) => {
+  const data = JSON.parse(document.getElementById(`data${figure.dataset.figure}`).textContent);
   const source = JSON.stringify(data.option);
-  const stage = document.getElementById("stage");
-  const canvas = document.getElementById("chart");
-  const tools = document.querySelector(".tools");
+  const stage = figure.querySelector(".stage");
+  const canvas = figure.querySelector(".canvas");
+  const tools = figure.querySelector(".tools");
   const heads = [...stage.querySelectorAll(".head")];
   const printWidth = 680; // CSS pixels between the margins of A4 and of Letter
   let printing = false;
@@ -185,7 +186,7 @@
     chart.setOption({ title: titles, dataZoom: [{}, { show: false }] });
     const link = document.createElement("a");
     link.href = chart.getDataURL({ type: "png", pixelRatio: 2, backgroundColor: css("--paper") });
-    link.download = "free-decay.png";
+    link.download = data.picture || "free-decay.png";
     link.click();
     chart.setOption({ title: titles.map(() => ({ show: false })), dataZoom: [{}, { show: true }] });
   };
@@ -243,4 +244,4 @@
   addEventListener("beforeprint", () => print(true));
   addEventListener("afterprint", () => print(false));
   matchMedia("print").addEventListener("change", (event) => print(event.matches));
-})();
+});
