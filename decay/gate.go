@@ -20,6 +20,7 @@ type gate struct {
 const (
 	seedsTried     = 4       // per onset
 	coreMost       = 1 << 15 // samples of a first fit
+	deepWindow     = 1 << 16 // samples from which a gate grows fourfold
 	tailLimit      = 12      // time constants after which nothing is left to learn
 	breakSigma     = 6       // departure that cannot be noise...
 	breakShare     = 0.03    // ...nor a model that is slightly wrong,
@@ -206,7 +207,11 @@ func (g *gate) growForward(s series, fixedEnd bool) {
 			g.cutAfter = false
 			return
 		}
-		to := min(limit, g.last+max(g.last-g.first, 8))
+		step := max(g.last-g.first, 8)
+		if step > deepWindow {
+			step *= 3 // so long a window predicts far ahead, and each fit is a few passes
+		}
+		to := min(limit, g.last+step)
 		if i, broken := g.breakIn(s, g.last, to); broken && !fixedEnd {
 			g.last, g.cutAfter = i, true
 			return

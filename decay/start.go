@@ -102,6 +102,7 @@ func floorPower(n int) int {
 // level that has samples enough per cycle and then on the record itself.
 // reach bounds the first step, in samples.
 func (g *gate) placeStart(s series, p *pyramid, reach int) {
+	before, a, w := g.first, g.fit.a, g.fit.w
 	k := 0
 	if s.even() {
 		for k+1 < len(p.levels) && g.fit.period()/float64(scale(k+1)) >= startPoints {
@@ -126,7 +127,11 @@ func (g *gate) placeStart(s series, p *pyramid, reach int) {
 			k = 2
 		}
 	}
-	g.refit(s, coarse)
+	if g.first == before && w > heavyRatio*a {
+		g.fit.a, g.fit.w = a, w // the whole window knows them better
+	} else {
+		g.refit(s, coarse)
+	}
 	g.trim(s)
 	g.cutBefore = g.first > 0
 }
