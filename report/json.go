@@ -47,6 +47,8 @@ type jsonRingDown struct {
 	Decays     []jsonDecay       `json:"decays"`
 	Modes      []jsonMode        `json:"modes"`
 	Readings   jsonReadings      `json:"readings"`
+	Circuit    *jsonCircuit      `json:"circuit,omitempty"` // with a bench file
+	Limits     *jsonLimits       `json:"limits,omitempty"`  // with limits in it
 	Findings   []capture.Finding `json:"findings"`
 }
 
@@ -132,6 +134,7 @@ func (r *RingDown) json() *jsonRingDown {
 		Samples: axis.N, Interval: number(axis.Interval), Start: number(axis.Start),
 		Model: orNull(string(res.Model)), Decays: []jsonDecay{}, Modes: []jsonMode{},
 		Readings: readingsJSON(decay.Readings{DampedFrequency: unknown, LogDecrement: unknown, Q: unknown, TimeConstant: unknown}),
+		Circuit:  circuitJSON(r.Circuit), Limits: limitsJSON(r.Limits),
 		Findings: r.Findings(),
 	}
 	if r.refused() {

@@ -9,6 +9,7 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
+	"dieaway/decay/circuit"
 )
 
 // WritePage writes the evidence as one HTML page that needs no network: what was
@@ -37,6 +38,9 @@ func (r *RingDown) WritePage(w io.Writer) error {
 type page struct {
 	frame
 	Refused           bool
+	Circuit           []fact
+	Losses            []lossRow
+	Judgement         *circuit.Judgement
 	Headline, Results []row
 	Facts             []fact
 	Readings          []comparison
@@ -66,6 +70,7 @@ func (r *RingDown) page(f *figure) *page {
 		Refused: r.refused(), Findings: cleaned(r.Findings()),
 		Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns,
 	}
+	p.Judgement = r.Limits
 	p.Title = p.Heading + " – free decay, " + p.Status
 	record := fact{"record", r.recordLine()}
 	if p.Refused {
@@ -76,6 +81,9 @@ func (r *RingDown) page(f *figure) *page {
 	p.Results = resultRows(res.Quantities)
 	p.Headline = p.Results[:4]
 	p.Readings = comparisons(res)
+	if r.Circuit != nil {
+		p.Circuit, p.Losses = componentRows(r.Circuit), lossRows(r.Circuit.Budget, r.Circuit.Total)
+	}
 	p.Facts = []fact{{"model", modelName(res)}, record}
 	if len(res.Decays) == 1 {
 		d := res.Decays[0]
@@ -99,6 +107,12 @@ func decayRows(all []*decay.Decay) (rows []decayRow, more int) {
 	}
 	return rows, len(all) - len(rows)
 }
+
+// LimitRows and LimitVerdict show the judgement.
+func (p *page) LimitRows() []limitRow { return limitRows(p.Judgement) }
+
+// LimitVerdict is the judgement in one line.
+func (p *page) LimitVerdict() string { return verdictOfLimits(p.Judgement) }
 
 // notes says below the charts what is to be known of them.
 func (r *RingDown) notes(f *figure) []string {

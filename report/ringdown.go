@@ -12,6 +12,7 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
+	"dieaway/decay/circuit"
 )
 
 // A RingDown is everything there is to say about one channel of one capture.
@@ -28,6 +29,10 @@ type RingDown struct {
 	File, SHA256 string
 	// Device is the name of the circuit under test, "" when nobody gave one.
 	Device string
+	// Circuit is what the result says of the circuit, nil without a bench file.
+	Circuit *circuit.Analysis
+	// Limits is how the result stands to the limits of the bench file, nil without any.
+	Limits *circuit.Judgement
 	// Origin says how the result was made; the page shows it.
 	Origin Origin
 
@@ -96,11 +101,14 @@ func (r *RingDown) sha256() string {
 var gravity = map[capture.Severity]int{capture.Fault: 0, capture.Warning: 1, capture.Note: 2}
 
 // Findings returns what speaks against the result, gravest first: the findings of
-// the analysis and those of the reader, each once. It is not nil.
+// the analysis, of the circuit and of the reader, each once. It is not nil.
 func (r *RingDown) Findings() []capture.Finding {
 	all := []capture.Finding{}
 	if r.Result != nil {
 		all = append(all, r.Result.Findings...)
+	}
+	if r.Circuit != nil {
+		all = append(all, r.Circuit.Findings...)
 	}
 	if r.Capture != nil {
 		for _, f := range r.Capture.Findings {

@@ -35,9 +35,12 @@ func (r *RingDown) WriteSummary(w io.Writer, style Style) error {
 	case r.refused():
 		s.head(r)
 		s.refusal(r)
+		s.limits(r.Limits)
 	default:
 		s.head(r)
 		s.results(r)
+		s.circuit(r.Circuit)
+		s.limits(r.Limits)
 		s.findings(r.Findings())
 	}
 	return s.Flush()
