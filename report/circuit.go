@@ -192,7 +192,7 @@ func verdictOfLimits(j *circuit.Judgement) string {
 	s := map[circuit.Verdict]string{
 		circuit.Pass:      "inside the limits",
 		circuit.Fail:      "outside the limits",
-		circuit.Undecided: "undecided: too near to a limit for the uncertainty, or not known",
+		circuit.Undecided: "too near to a limit for the uncertainty, or not known",
 	}[j.Verdict]
 	if j.Rule == circuit.Guarded {
 		return s + " (guarded: the expanded uncertainty U, k = 2, is kept clear of them)"

@@ -19,6 +19,7 @@ const (
 	exitUsage      = 2
 	exitUnreadable = 3 // not a capture
 	exitRefused    = 4 // no decay that can be measured
+	exitOutside    = 5 // outside the limits, or ring-down and sweep disagree
 	exitWarning    = 6 // a warning, with --strict
 )
 

@@ -29,6 +29,11 @@ func fit(c *cli.Context) error {
 		return err
 	}
 	j.inputs = files
+	b, err := parseBench(c)
+	if err != nil {
+		return err
+	}
+	j.useBench(b)
 	for _, name := range files {
 		j.sources = append(j.sources, j.source(name))
 	}

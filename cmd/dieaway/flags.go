@@ -34,6 +34,7 @@ func fitFlags() []cli.Flag {
 		&cli.StringFlag{Name: "model", Usage: "the `LAW` of the decay: " + strings.Join(models, ", "), Value: "auto"},
 		&cli.StringFlag{Name: "probe", Usage: "multiply voltages by this `FACTOR`, where the scope was set to the wrong probe"},
 		&cli.StringFlag{Name: "device", Usage: "the `NAME` of what was measured"},
+		benchFlag(),
 		&cli.BoolFlag{Name: "strict", Usage: "exit with code 6 when there is a warning", DisableDefaultText: true},
 		&cli.BoolFlag{Name: "explain", Usage: "print what was understood of the file before the result", DisableDefaultText: true},
 	}, outputFlags()...)

@@ -9,6 +9,7 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
+	"dieaway/decay/circuit"
 	"dieaway/report"
 )
 
@@ -20,8 +21,9 @@ type job struct {
 	channel  string  // name or number, "" for the one that rings
 	probe    float64 // factor on voltages
 	device   string
-	inputs   []string // files that must not be overwritten
-	page     string   // name of the page of evidence, "" for none
+	bench    *circuit.Bench // nil without one
+	inputs   []string       // files that must not be overwritten
+	page     string         // name of the page of evidence, "" for none
 	json     bool
 	quiet    bool
 	strict   bool
@@ -102,13 +104,19 @@ func (j *job) ringDown(s source) *report.RingDown {
 	r.Capture = c
 	if j.channel == "" {
 		r.Channel, r.Result = decay.AnalyzeCapture(c, j.analysis)
-		return r
+	} else {
+		if r.Channel, err = c.Channel(j.channel); err != nil {
+			r.Err = &exitError{Code: exitUsage, Err: err}
+			return r
+		}
+		r.Result = decay.Analyze(r.Channel, j.analysis)
 	}
-	if r.Channel, err = c.Channel(j.channel); err != nil {
-		r.Err = &exitError{Code: exitUsage, Err: err}
-		return r
+	if b := j.bench; b != nil {
+		if r.Result.Quantities != nil {
+			r.Circuit = circuit.Analyze(b, r.Result.Quantities)
+		}
+		r.Limits = b.Limits.Judge(r.Result.Quantities, r.Circuit)
 	}
-	r.Result = decay.Analyze(r.Channel, j.analysis)
 	return r
 }
 
@@ -202,6 +210,10 @@ func (j *job) exitCode(r *report.RingDown) int {
 	case r.Status() == decay.Refused:
 		return exitRefused
 	case j.strict && r.Status() == decay.Doubtful:
+		return exitWarning
+	case r.Limits != nil && r.Limits.Verdict == circuit.Fail:
+		return exitOutside
+	case j.strict && r.Limits != nil && r.Limits.Verdict == circuit.Undecided:
 		return exitWarning
 	}
 	return exitDone

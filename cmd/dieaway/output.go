@@ -35,7 +35,7 @@ func createOutput(name string, inputs []string) (*output, error) {
 		return nil, fmt.Errorf("cannot write the report: %s is a folder, expected the name of a file", name)
 	}
 	if input, same := sameAsOne(there, inputs); same {
-		return nil, usagef("the report %s would overwrite the capture %s", name, input)
+		return nil, usagef("the report %s would overwrite the input %s", name, input)
 	}
 	if !there.Mode().IsRegular() {
 		file, err := os.OpenFile(name, os.O_WRONLY, 0)

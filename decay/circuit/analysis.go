@@ -109,10 +109,10 @@ func emptyAnalysis(b *Bench) *Analysis {
 // feasible says in a note why nothing can be worked out.
 func (a *Analysis) feasible(s *scene, q *decay.Quantities) bool {
 	switch {
+	case s.known == nothing && s.load(&s.ringDown) == (Load{}):
+		return false // nobody asked
 	case s.known == nothing:
-		a.Findings = append(a.Findings, decay.Finding{Code: capture.Loading, Severity: capture.Note,
-			Message: "The bench file gives none of inductance, capacitance and coil_resistance: what source and probe do cannot be worked out.",
-			Remedy:  "Give one of them under [circuit]."})
+		a.Findings = append(a.Findings, nothingKnown)
 		return false
 	case !q.DampedFrequency.Known() || !q.DecayRate.Known():
 		a.note("The circuit does not ring: its component values were not worked out.")
@@ -120,6 +120,10 @@ func (a *Analysis) feasible(s *scene, q *decay.Quantities) bool {
 	}
 	return true
 }
+
+var nothingKnown = decay.Finding{Code: capture.Loading, Severity: capture.Note,
+	Message: "The bench file gives none of inductance, capacitance and coil_resistance: what source and probe do cannot be worked out.",
+	Remedy:  "Give one of them under [circuit]."}
 
 func (a *Analysis) note(message string) {
 	a.Findings = append(a.Findings, decay.Finding{Code: capture.Loading, Severity: capture.Note, Message: message,
