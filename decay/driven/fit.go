@@ -53,18 +53,18 @@ func newState(c curve, d *rows) state {
 func (s *state) residual(d *rows, i int) (along, across float64) {
 	h, _, _, _ := s.form(d.f[i])
 	if d.phi == nil {
-		return d.m[i] - s.gain*cmplx.Abs(h), 0
+		return d.m[i] - s.gain*modulus(h), 0
 	}
-	z := cmplx.Rect(d.m[i], s.sign*d.phi[i]-s.phase-cmplx.Phase(h))
-	return real(z) - s.gain*cmplx.Abs(h), imag(z)
+	z := cmplx.Rect(d.m[i], s.sign*d.phi[i]-s.phase) * cmplx.Conj(direction(h))
+	return real(z) - s.gain*modulus(h), imag(z)
 }
 
 // gradient is the derivative of the curve at f by the parameters, turned to the
 // direction of the curve: its real part is along, its imaginary part across it.
 func (s *state) gradient(f float64) (g [parMost]complex128) {
 	h, byF0, byQ, byRest := s.form(f)
-	turn := complex(s.gain, 0) * cmplx.Rect(1, -cmplx.Phase(h))
-	size := s.gain * cmplx.Abs(h)
+	turn := complex(s.gain, 0) * cmplx.Conj(direction(h))
+	size := s.gain * modulus(h)
 	g[parF0] = byF0 * turn / complex(2*s.q, 0)
 	g[parQ] = byQ * turn
 	g[parGain] = complex(size, 0)
@@ -186,7 +186,7 @@ func (s *state) descend(d *rows, w weights, most int) (iterations int) {
 				nextCost = next.cost(d, w)
 			}
 		}
-		small := ok && mat.Inner(step, jtj, step) <= stepSmall*math.Max(cost, 1e-300)/float64(d.len())
+		small := ok && mat.Inner(step, jtj, step) <= stepSmall*math.Max(cost, 1)/float64(d.len())
 		if nextCost <= cost {
 			*s = next
 			if small {

@@ -21,7 +21,7 @@ func (c *curve) at(f float64) (magnitude, phase float64) {
 		return math.NaN(), math.NaN()
 	}
 	h, _, _, _ := c.form(f)
-	return c.gain * cmplx.Abs(h), cmplx.Phase(h)
+	return c.gain * modulus(h), cmplx.Phase(h)
 }
 
 // form returns the response H for a gain of one and its derivatives by the
@@ -35,7 +35,6 @@ func (c *curve) form(f float64) (h, byF0, byQ, byRest complex128) {
 	// (f0-f)(f0+f) keeps the digits that 1 - x^2 loses near a sharp resonance.
 	detuning := (c.f0 - f) / c.f0 * (1 + x)
 	loss := x / c.q
-	d := complex(detuning, loss)
 	dF0, dQ := complex(2*x*x, -loss), complex(0, -loss) // f0 dD/df0, Q dD/dQ
 	var n, nF0, nQ, nRest complex128
 	switch c.across {
@@ -49,6 +48,26 @@ func (c *curve) form(f float64) (h, byF0, byQ, byRest complex128) {
 	default:
 		n = 1
 	}
-	h = n / d
-	return h, (nF0 - h*dF0) / d, (nQ - h*dQ) / d, nRest / d
+	// One division serves all four; complex division proper minds infinities.
+	size := detuning*detuning + loss*loss
+	inverse := complex(detuning/size, -loss/size)
+	h = n * inverse
+	return h, (nF0 - h*dF0) * inverse, (nQ - h*dQ) * inverse, nRest * inverse
+}
+
+// size returns |H| for a gain of one.
+func (c *curve) size(f float64) float64 {
+	h, _, _, _ := c.form(f)
+	return modulus(h)
+}
+
+// modulus is |z| of numbers that are neither huge nor tiny.
+func modulus(z complex128) float64 { return math.Sqrt(real(z)*real(z) + imag(z)*imag(z)) }
+
+// direction is the unit number along z, 1 for zero.
+func direction(z complex128) complex128 {
+	if m := modulus(z); m > 0 {
+		return complex(real(z)/m, imag(z)/m)
+	}
+	return 1
 }

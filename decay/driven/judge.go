@@ -21,7 +21,7 @@ const (
 	etaMost       = 0.03 // rate of the sweep over the square of the bandwidth (METHODS: swept too fast)
 	dwellOnePart  = 4.61 // time constants to settle to 1 %
 	dwellTenth    = 6.91 // and to 0.1 %
-	readingsApart = 0.1
+	readingsApart = 0.15
 )
 
 func finding(code capture.Code, s capture.Severity, message, remedy string) decay.Finding {
@@ -45,25 +45,19 @@ func unfit(d *rows) (decay.Finding, bool) {
 func (f *fitted) noResonance(d *rows, q *Quantities) (decay.Finding, bool) {
 	lo, hi := d.f[0], d.f[d.len()-1]
 	gain, need := f.gainOver(d), needGain+math.Log(float64(d.len()))
-	side, outside := "", f.f0 < lo || f.f0 > hi
-	if at := extreme(d.smoothed(), f.across); at <= 1 {
-		side = "only falls"
-	} else if at >= d.len()-2 {
-		side = "only rises"
-	}
-	if f.across == capture.Both {
-		side = ""
-	}
-	oneSided := finding(capture.NarrowSweep, capture.Fault,
-		fmt.Sprintf("The response %s from %s to %s: the resonance is not inside of the sweep.", orStays(side), quantity.Format(lo, "Hz", 5), quantity.Format(hi, "Hz", 5)),
-		"Sweep to both sides of the resonance.")
+	side := f.side(d)
 	switch {
-	case outside || side != "" && gain < need:
-		return oneSided, true
-	case gain < need:
+	case gain < need && side == "":
 		return finding(capture.WeakSignal, capture.Fault,
 			"No resonance stands out: a response without one follows the rows as well.",
 			"Check the column of the response, and that the resonance lies inside of the sweep; raise the drive."), true
+	case gain < need || f.f0 < lo || f.f0 > hi:
+		if side == "" {
+			side = "has no resonance"
+		}
+		return finding(capture.NarrowSweep, capture.Fault,
+			fmt.Sprintf("The response %s from %s to %s: the resonance is not inside of the sweep.", side, quantity.Format(lo, "Hz", 5), quantity.Format(hi, "Hz", 5)),
+			"Sweep to both sides of the resonance."), true
 	case q == nil || !(q.Q.Relative() < refuseQ):
 		return finding(capture.WeakSignal, capture.Fault,
 			fmt.Sprintf("Q is not determined by these rows: the best fit has %s.", orNothing(q)),
@@ -72,11 +66,18 @@ func (f *fitted) noResonance(d *rows, q *Quantities) (decay.Finding, bool) {
 	return decay.Finding{}, false
 }
 
-func orStays(side string) string {
-	if side == "" {
-		return "has no resonance"
+// side says to which side of the resonance all rows lie, "" when to both.
+func (f *fitted) side(d *rows) string {
+	at := extreme(d.smoothed(), f.across)
+	switch {
+	case f.across == capture.Both:
+		return ""
+	case at <= 1:
+		return "only falls"
+	case at >= d.len()-2:
+		return "only rises"
 	}
-	return side
+	return ""
 }
 
 func orNothing(q *Quantities) string {
@@ -113,7 +114,7 @@ func (f *fitted) gainOver(d *rows) float64 {
 func (f *fitted) doubts(d *rows, s *capture.Sweep, opt Options, r *Result) []decay.Finding {
 	var all []decay.Finding
 	for _, list := range [][]decay.Finding{
-		f.extent(d, r.Quantities), f.speed(d, s, opt), sag(s), f.outliers(d), uncertain(r.Quantities), disagreement(r),
+		f.extent(d, r.Quantities), f.speed(d, s, opt), sag(s), f.outliers(d), f.waves(d), uncertain(r.Quantities), disagreement(r),
 	} {
 		all = append(all, list...)
 	}
@@ -165,7 +166,7 @@ func (f *fitted) speed(d *rows, s *capture.Sweep, opt Options) (all []decay.Find
 	rate := f.rate(d, s)
 	if eta := rate / (b * b); eta > etaMost {
 		all = append(all, finding(capture.SweptTooFast, capture.Warning,
-			fmt.Sprintf("The sweep runs at %s/s, %.2g times the square of the bandwidth a second: the peak lags by %s, and Q is off by about -%s.",
+			fmt.Sprintf("The sweep runs at %s/s, %.2g times the square of the bandwidth a second: the curve lags by up to %s, and Q reads low by about %s.",
 				quantity.Format(rate, "Hz", 3), eta, quantity.Format(eta/math.Pi*b, "Hz", 2), quantity.Percent(math.Min(0.5*eta*eta, 0.5))),
 			fmt.Sprintf("Sweep at no more than %s/s.", quantity.Format(etaMost*b*b, "Hz", 2))))
 	}
@@ -235,6 +236,21 @@ func (f *fitted) outliers(d *rows) []decay.Finding {
 	return []decay.Finding{finding(capture.Outliers, severity, message, "Measure these frequencies again; many of them mean a second resonance or a wrong column.")}
 }
 
+// waves tells residuals that are correlated from row to row.
+func (f *fitted) waves(d *rows) []decay.Finding {
+	rho := f.correlation(d)
+	if rho == 0 {
+		return nil
+	}
+	severity := capture.Note
+	if rho > 0.7 {
+		severity = capture.Warning
+	}
+	return []decay.Finding{finding(capture.ColouredNoise, severity,
+		fmt.Sprintf("The rows leave the curve in waves (neighbours correlate by %.2f); the uncertainties are %.1f times those of independent rows.", rho, math.Sqrt((1+rho)/(1-rho))),
+		"See the residual: a second resonance, a loss that changes with the amplitude, or a source that was swept too fast bends the curve.")}
+}
+
 func uncertain(q *Quantities) []decay.Finding {
 	if q.Q.Relative() <= doubtfulQ {
 		return nil
@@ -246,7 +262,7 @@ func uncertain(q *Quantities) []decay.Finding {
 // disagreement compares the readings with the fit.
 func disagreement(r *Result) (all []decay.Finding) {
 	fit, read := r.Quantities.Q, r.Readings.Q
-	if apart := math.Abs(read.Value - fit.Value); read.Known() && apart > readingsApart*fit.Value && apart > 4*math.Hypot(read.U, fit.U) {
+	if apart := math.Abs(read.Value - fit.Value); read.Known() && apart > readingsApart*fit.Value && apart > 6*math.Hypot(read.U, fit.U) {
 		all = append(all, finding(capture.ReadingsDisagree, capture.Warning,
 			fmt.Sprintf("The half-power width gives Q = %s, the fit %s: the curve is not that of one resonance.", read, fit),
 			"See where the rows leave the fitted curve; check what the response was measured across."))

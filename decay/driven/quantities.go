@@ -15,6 +15,10 @@ func (f *fitted) quantities(d *rows, opt Options, unit string) (*Quantities, boo
 	if !ok {
 		return nil, false
 	}
+	// First-order autoregressive residuals carry (1 - rho)/(1 + rho) of the
+	// information of as many independent ones on what is smooth.
+	rho := f.correlation(d)
+	cov.ScaleSym((1+rho)/(1-rho), cov)
 	j, err := f.joint(cov, opt.TimebaseU)
 	if err != nil {
 		return nil, false

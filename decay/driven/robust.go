@@ -26,7 +26,7 @@ func (s *state) shapes(d *rows, v noise) (along, across []float64) {
 	along, across = make([]float64, d.len()), make([]float64, d.len())
 	size := make([]float64, d.len())
 	for i, f := range d.f {
-		size[i], _ = s.at(f)
+		size[i] = s.gain * s.size(f)
 	}
 	floor := scaleFloor * slices.Max(size)
 	shape := func(relative bool, i int) float64 {
@@ -74,15 +74,38 @@ func madScale(r []float64) float64 {
 // measure sets the factors of the noise from the residuals.
 func (v *noise) measure(d *rows, along, across []float64) {
 	v.along = madScale(along)
-	if d.phi == nil {
-		return
+	if d.phi != nil {
+		v.across = madScale(across)
 	}
-	v.across = madScale(across)
 	if d.cartesian {
 		v.along = madScale(slices.Concat(along, across))
 		v.across = v.along
 	}
+	v.atLeast(d)
 }
+
+// finest is the scatter, as a part of the response, that is taken for the rounding
+// of a computed sweep rather than for noise: no meter reads nine digits.
+const finest = 1e-9
+
+// atLeast keeps the factors of the noise above rounding.
+func (v *noise) atLeast(d *rows) {
+	v.along = math.Max(v.along, d.rounding(v.relative))
+	if d.phi != nil {
+		v.across = math.Max(v.across, d.rounding(v.relativeAcross))
+	}
+}
+
+// rounding is the least factor of the noise.
+func (d *rows) rounding(relative bool) float64 {
+	if relative || d.dev != nil {
+		return finest
+	}
+	return finest * slices.Max(d.m)
+}
+
+// computed reports rows without noise, of which no kind of noise can be told.
+func (v *noise) computed(d *rows) bool { return v.along <= 2*d.rounding(v.relative) }
 
 // tukey is the square root of the weight of Tukey's biweight at a residual of r
 // standard deviations (Beaton and Tukey 1974, Technometrics 16:147, from memory);
@@ -160,7 +183,7 @@ const noiseGain = 5
 func fitRobustly(start state, d *rows) (state, noise) {
 	s, v := start, noise{relative: d.decibels, relativeAcross: d.decibels}
 	s.robust(d, &v)
-	if d.dev != nil && d.phi == nil || d.dev != nil && d.cartesian {
+	if v.computed(d) || d.dev != nil && (d.phi == nil || d.cartesian) {
 		return s, v
 	}
 	best := s.likelihood(d, v)
@@ -170,7 +193,7 @@ func fitRobustly(start state, d *rows) (state, noise) {
 		}
 		t, u := s, other
 		t.robust(d, &u)
-		if l := t.likelihood(d, u); l > best+noiseGain {
+		if l := t.likelihood(d, u); l > best+noiseGain && !u.computed(d) {
 			s, v, best = t, u, l
 		}
 	}
@@ -197,18 +220,7 @@ func outlierSpan(n int) float64 {
 // normal noise loses nothing to the bound.
 func (f *fitted) finish(d *rows) {
 	for range 4 {
-		along, across := f.residuals(d, f.noise)
-		out, n := make([]bool, d.len()), 0
-		for i := range out {
-			span := outlierSpan(d.len())
-			out[i] = math.Abs(along[i]) > span*f.noise.along || d.phi != nil && math.Abs(across[i]) > span*f.noise.across
-			if out[i] {
-				n++
-			}
-		}
-		if 3*n > d.len() || d.len()-n <= len(f.free)+1 { // these are no outliers, but a curve that does not fit
-			clear(out)
-		}
+		out := f.farOff(d)
 		settled := f.out != nil && slices.Equal(out, f.out)
 		f.out = out
 		for range 3 {
@@ -222,6 +234,36 @@ func (f *fitted) finish(d *rows) {
 			return
 		}
 	}
+}
+
+// farOff marks the rows that are outliers. Three or more in a row to one side are
+// none: there the curve leaves the rows, not they the curve.
+func (f *fitted) farOff(d *rows) []bool {
+	along, across := f.residuals(d, f.noise)
+	out, n := make([]bool, d.len()), 0
+	span := outlierSpan(d.len())
+	for i := range out {
+		out[i] = math.Abs(along[i]) > span*f.noise.along || d.phi != nil && math.Abs(across[i]) > span*f.noise.across
+	}
+	for i := 0; i < len(out); {
+		k := i
+		for k < len(out) && out[k] && along[k]*along[i] > 0 {
+			k++
+		}
+		if k-i >= 3 {
+			clear(out[i:k])
+		}
+		i = max(k, i+1)
+	}
+	for _, o := range out {
+		if o {
+			n++
+		}
+	}
+	if 3*n > d.len() || d.len()-n <= len(f.free)+1 { // these are no outliers, but a curve that does not fit
+		clear(out)
+	}
+	return out
 }
 
 // plain are the weights of the rows that are not left out.
@@ -247,19 +289,14 @@ func (f *fitted) rms(d *rows) {
 	p := float64(len(f.free))
 	switch {
 	case d.phi == nil:
-		f.noise.along = math.Sqrt(sa / math.Max(1, n-p))
+		f.noise.along = spread(sa, n-p)
 	case d.cartesian:
-		f.noise.along = math.Sqrt((sa + sc) / math.Max(1, 2*n-p))
+		f.noise.along = spread(sa+sc, 2*n-p)
 		f.noise.across = f.noise.along
 	default:
-		f.noise.along = math.Sqrt(sa / math.Max(1, n-p/2))
-		f.noise.across = math.Sqrt(sc / math.Max(1, n-p/2))
+		f.noise.along, f.noise.across = spread(sa, n-p/2), spread(sc, n-p/2)
 	}
-	least := 1e-13 * slices.Max(d.m)
-	f.noise.along = math.Max(f.noise.along, least)
-	if d.phi != nil {
-		f.noise.across = math.Max(f.noise.across, least)
-	}
+	f.noise.atLeast(d)
 	if d.dev != nil { // what the file states counts, unless the rows scatter more
 		f.noise.along = math.Max(f.noise.along, 1)
 		if d.cartesian {
@@ -267,6 +304,40 @@ func (f *fitted) rms(d *rows) {
 		}
 	}
 }
+
+// spread is the standard deviation that a sum of squares tells with the given
+// degrees of freedom: with few of them it is itself not well known, and the
+// standard uncertainty that follows from it is that of Student's distribution,
+// larger by sqrt(n/(n - 2)) (JCGM 101:2008, 6.4.9).
+func spread(squares, degrees float64) float64 {
+	return math.Sqrt(squares / math.Max(1, degrees-2))
+}
+
+// correlation is that of the residuals of neighbouring rows, along the curve: where
+// the rows leave it in waves, for a second resonance or a wrong form, their number
+// says less than it would of independent ones.
+func (f *fitted) correlation(d *rows) float64 {
+	along, _ := f.residuals(d, f.noise)
+	products, squares := 0.0, 0.0
+	last := math.NaN()
+	for i, r := range along {
+		if f.out[i] {
+			continue
+		}
+		if !math.IsNaN(last) {
+			products += r * last
+		}
+		squares, last = squares+r*r, r
+	}
+	rho := products / squares
+	if !(rho > correlationLeast) || rho < 3/math.Sqrt(float64(d.len())) || f.noise.computed(d) {
+		return 0
+	}
+	return math.Min(rho, 0.95)
+}
+
+// correlationLeast is where the correlation of neighbouring residuals counts.
+const correlationLeast = 0.3
 
 // partName names a part in a sentence.
 func partName(p capture.Part) string {

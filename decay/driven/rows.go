@@ -48,7 +48,7 @@ func newRows(s *capture.Sweep, opt Options) *rows {
 	}
 	d.f, d.m, d.phi, d.dev = pick(s.Frequency), pick(s.Magnitude), pick(s.Phase), pick(s.Deviation)
 	d.divide(pick(s.Reference))
-	if s.Reference == nil && opt.MeterBandwidth > 0 {
+	if s.Reference == nil && opt.MeterBandwidth > 0 && d.len() > 0 {
 		d.correctMeter(opt.MeterBandwidth)
 	}
 	if m := slices.Max(append(d.m, 0)); d.dev == nil && !(m > 0) {

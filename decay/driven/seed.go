@@ -3,7 +3,6 @@ package driven
 import (
 	"cmp"
 	"math"
-	"math/cmplx"
 	"slices"
 
 	"dieaway/capture"
@@ -101,8 +100,7 @@ func score(d *rows, m []float64, c curve) scored {
 	stride := max(1, d.len()/gridRows)
 	var mm, mh, hh float64
 	for i := 0; i < d.len(); i += stride {
-		h, _, _, _ := c.form(d.f[i])
-		size, w := cmplx.Abs(h), 1.0
+		size, w := c.size(d.f[i]), 1.0
 		switch {
 		case d.dev != nil:
 			w = 1 / sq(d.dev[i])
