@@ -96,11 +96,20 @@ var kinds = []kind{
 		}
 		return y
 	}, 0.01, kindFd, kindQ},
+	{"overdamped, zeta 2", capture.Overdamped, func(*rand.Rand) []float64 { return criticalCircuit(2) }, 1e-3, math.NaN(), 0.25},
+	{"near critical, zeta 1", capture.NearCritical, func(*rand.Rand) []float64 { return criticalCircuit(1) }, 1e-3, math.NaN(), 0.5},
 	{"noise only", capture.NoDecay, func(*rand.Rand) []float64 { return make([]float64, kindN) }, 1, math.NaN(), math.NaN()},
 	{"steady drive", capture.DriveOn, func(rng *rand.Rand) []float64 {
 		p := phaseOf(rng)
 		return mapped(make([]float64, kindN), func(i int, _ float64) float64 { return math.Cos(kindW*float64(i) + p) })
 	}, 0.05, math.NaN(), math.NaN()},
+}
+
+// criticalCircuit discharges a series circuit of the damping ratio zeta, 300
+// samples of its natural period.
+func criticalCircuit(zeta float64) []float64 {
+	const w0 = 2 * math.Pi / 300
+	return seriesCircuit(1, 2*zeta*w0, 1/(w0*w0), 1, 1, 1500)
 }
 
 func mapped(y []float64, f func(i int, v float64) float64) []float64 {

@@ -46,6 +46,7 @@ const (
 	fine          = 1e-6  // step of a final fit, in variances: a thousandth of the uncertainty
 	coarse        = 1e-3  // step of a trial
 	roundingFloor = 1e-26 // of the signal's energy: nothing is left to gain
+	roundingSlack = 1e-15 // of the signal's energy: the residual is no better known
 	lambdaLeast   = 1e-7
 	lambdaMost    = 1e9
 )
@@ -59,7 +60,7 @@ func minimise(p separable, theta []float64, tolerance float64) solution {
 		return s
 	}
 	s.normal = cur
-	floor := roundingFloor * cur.energy()
+	floor, slack := roundingFloor*cur.energy(), roundingSlack*cur.energy()
 	lambda := 0.0
 	for s.iterations = 1; s.iterations <= iterationCap; s.iterations++ {
 		step, gain, ok := reducedStep(&s.normal, len(theta), lambda)
@@ -77,7 +78,7 @@ func minimise(p separable, theta []float64, tolerance float64) solution {
 			trial, ok = p.at(next)
 		}
 		switch {
-		case ok && trial.rss <= s.normal.rss:
+		case ok && trial.rss <= s.normal.rss+slack:
 			s.theta, s.normal = next, trial
 			lambda = shrink(lambda)
 			if small {
