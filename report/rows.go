@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 
+	"dieaway/capture"
 	"dieaway/decay"
 	"dieaway/decay/quantity"
 )
@@ -148,22 +149,25 @@ func (r *RingDown) recordLine() string {
 
 // verdict is the status in one line for people.
 func (r *RingDown) verdict() string {
-	var faults, warnings, notes int
-	for _, f := range r.Findings() {
-		switch gravity[f.Severity] {
-		case 0:
-			faults++
-		case 1:
-			warnings++
-		default:
+	if r.refused() {
+		return "no decay that can be measured: the numbers are withheld"
+	}
+	return verdictOf(r.Findings())
+}
+
+// verdictOf says in one line what findings do to numbers that are given.
+func verdictOf(findings []capture.Finding) string {
+	var warnings, notes int
+	for _, f := range findings {
+		if f.Severity == capture.Note {
 			notes++
+		} else {
+			warnings++
 		}
 	}
 	switch {
-	case r.refused():
-		return "no decay that can be measured: the numbers are withheld"
-	case warnings+faults > 0:
-		return plural(warnings+faults, "warning") + " to read before the numbers are used"
+	case warnings > 0:
+		return plural(warnings, "warning") + " to read before the numbers are used"
 	case notes > 0:
 		return "nothing speaks against the numbers, " + plural(notes, "note")
 	default:

@@ -53,11 +53,15 @@ type summary struct {
 }
 
 func (s *summary) head(r *RingDown) {
-	status := r.Status()
-	color := map[decay.Status]string{decay.Good: green, decay.Doubtful: yellow, decay.Refused: red}[status]
-	s.item(s.paint(string(status), color)+": ", r.verdict())
+	s.status(r.Status(), r.verdict())
 	s.item("  ", prefixed(r.Device)+r.source())
 	s.WriteString("\n")
+}
+
+// status writes the verdict on a whole result.
+func (s *summary) status(status decay.Status, verdict string) {
+	color := map[decay.Status]string{decay.Good: green, decay.Doubtful: yellow, decay.Refused: red}[status]
+	s.item(s.paint(string(status), color)+": ", verdict)
 }
 
 // prefixed returns the device's name before what follows it.

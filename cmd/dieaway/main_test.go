@@ -87,11 +87,25 @@ var records = map[string]func(t float64) float64{
 	"ring":  func(t float64) float64 { return ring(t, 50e-6) },
 	"short": func(t float64) float64 { return ring(t, 1e-3) }, // a quarter of its time constant
 	"noise": func(float64) float64 { return 0 },
+	// The antenna with capacitors added across its own.
+	"plain": antenna(0),
+	"100p":  antenna(100e-12),
+	"220p":  antenna(220e-12),
 }
 
-func ring(t, tau float64) float64 {
+// antenna rings as 1.62 mH, 30 ohm and 1.0 nF do with a capacitor added.
+func antenna(added float64) func(t float64) float64 {
+	const l, r, c = 1.62e-3, 30, 1e-9
+	tau := 2 * l / r
+	f := math.Sqrt(1/(l*(c+added))-1/(tau*tau)) / (2 * math.Pi)
+	return func(t float64) float64 { return ringAt(t, f, tau) }
+}
+
+func ring(t, tau float64) float64 { return ringAt(t, 125e3, tau) }
+
+func ringAt(t, frequency, tau float64) float64 {
 	if t < 0 {
 		return 1
 	}
-	return math.Exp(-t/tau) * math.Cos(2*math.Pi*125e3*t)
+	return math.Exp(-t/tau) * math.Cos(2*math.Pi*frequency*t)
 }
