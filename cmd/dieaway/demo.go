@@ -10,6 +10,8 @@ import (
 )
 
 //go:generate go run demo/generate.go -o demo/loop07.csv
+//go:generate go run demo/generate_sweep.go -o demo/loop07-sweep.csv
+//go:generate go run demo/generate_node.go -o demo
 
 // loop07 is a simulated ring-down of a tag reader's loop antenna; demo/generate.go
 // holds the circuit.

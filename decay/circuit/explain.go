@@ -49,7 +49,7 @@ func (c *comparer) explainMeasured() string {
 // sameLoad says on what a comparison as measured rests.
 func (c *comparer) sameLoad() string {
 	if c.alike && c.scene.bench.File == "" {
-		return ", which means something only if the same source and probe were connected both times: a bench file takes them out"
+		return "; this counts only if the same source and probe were connected both times, and a bench file takes them out"
 	}
 	return ""
 }
@@ -153,6 +153,10 @@ func (c *comparer) explainUnloaded() string {
 		s, f.RingDown, f.Sweep, f.En, agreement(c.Agrees))
 }
 
+// worstClock is the largest error that a clock in use may have: of an RC oscillator
+// 1 %, but no scope or generator runs on one (common practice).
+const worstClock = 1e-3
+
 // explainClocks points at the clocks where Q agrees and the frequency does not:
 // an error of a time base moves frequencies but no Q.
 func (c *comparer) explainClocks() string {
@@ -161,6 +165,10 @@ func (c *comparer) explainClocks() string {
 	if !ok || !q.Agrees || f.Agrees {
 		return ""
 	}
-	return fmt.Sprintf("only the frequencies differ, by %s: an error of one of the clocks does that (give their timebase), or a capacitance that changed in between",
-		signed(f.RingDown.Value/f.Sweep.Value-1))
+	off := f.RingDown.Value/f.Sweep.Value - 1
+	cause := "a capacitance that differed does that (probe, leads, temperature), or a core that was driven harder"
+	if math.Abs(off) < worstClock {
+		cause = "an error of one of the clocks does that (give their timebase), or a capacitance that changed in between"
+	}
+	return fmt.Sprintf("only the frequencies differ, by %s: %s", signed(off), cause)
 }
