@@ -42,36 +42,65 @@ type bend struct {
 
 // shape returns u and I at time t and their derivatives by a and B.
 func (l bendLaw) shape(a, b, t float64) (u, i, ua, ub, ia, ib float64) {
-	e := math.Exp(-a * t)
 	switch l {
 	case quadratic:
-		f, fa := (1-e)/a, t*e/a-(1-e)/(a*a) // F = (1-E)/a, D = 1 + BF
+		e, f, fa := integral(a, t) // D = 1 + BF
 		d := 1 + b*f
 		u, ua, ub = e/d, -t*e/d-e*b*fa/(d*d), -e*f/(d*d)
 		i, ia, ib = logIntegral(b, f, fa)
 	case cubic:
-		e2 := e * e
-		f, fa := (1-e2)/a, 2*t*e2/a-(1-e2)/(a*a)
+		_, f, fa := integral(2*a, t)
+		f, fa = 2*f, 4*fa // of (1 - E^2)/a
 		d := 1 + b*f
 		root := math.Sqrt(d)
-		u = e / root
+		u = math.Exp(-a*t) / root
 		ua, ub = -t*u-u*b*fa/(2*d), -u*f/(2*d)
 		i, ia, ib = logIntegral(b, f, fa)
 		i, ia, ib = i/2, ia/2, ib/2
 	case constant:
-		k := b / a
-		u = (1+k)*e - k
-		if u <= 0 {
-			stop := math.Log1p(1/k) / a
-			_, i, _, _, ia, ib = l.shape(a, b, stop*(1-1e-12))
-			return 0, i, 0, 0, ia, ib
+		if b > 0 {
+			// Where u has stopped, I stays; its derivatives are those at the stop,
+			// for u vanishes there.
+			t = math.Min(t, math.Log1p(a/b)/a)
 		}
-		ua, ub = -k/a*e-(1+k)*t*e+k/a, (e-1)/a
-		f, fa := (1-e)/a, t*e/a-(1-e)/(a*a)
-		i = (1+k)*f - k*t
-		ia, ib = (1+k)*fa-k/a*f+k/a*t, (f-t)/a
+		e, f, fa := integral(a, t)
+		g, ga := secondIntegral(a, t, f, fa)
+		if u = e - b*f; u > stopped {
+			ua, ub = -t*e-b*fa, -f
+		} else {
+			u = 0
+		}
+		i, ia, ib = f+b*g, fa+b*ga, g
 	}
 	return u, i, ua, ub, ia, ib
+}
+
+// stopped is the amplitude at which a ring with a constant loss has stopped:
+// rounding hides where it vanishes.
+const stopped = 1e-9
+
+// smallExponent is the exponent below which series replace differences.
+const smallExponent = 1e-3
+
+// integral returns E = exp(-at), its integral F = (1 - E)/a and dF/da.
+func integral(a, t float64) (e, f, fa float64) {
+	x := a * t
+	e = math.Exp(-x)
+	if math.Abs(x) < smallExponent {
+		return e, t * (1 - x/2 + x*x/6 - x*x*x/24), t * t * (-0.5 + x/3 - x*x/8 + x*x*x/30)
+	}
+	f = -math.Expm1(-x) / a
+	return e, f, (t*e - f) / a
+}
+
+// secondIntegral returns (F - t)/a, which is minus the integral of F, and its
+// derivative by a.
+func secondIntegral(a, t, f, fa float64) (g, ga float64) {
+	if x := a * t; math.Abs(x) < smallExponent {
+		return t * t * (-0.5 + x/6 - x*x/24 + x*x*x/120), t * t * t * (1.0/6 - x/12 + x*x/40)
+	}
+	g = (f - t) / a
+	return g, (fa - g) / a
 }
 
 // logIntegral returns I = ln(1 + BF)/B and its derivatives by a and B, by series

@@ -64,6 +64,24 @@ func TestBendShape(t *testing.T) {
 	}
 }
 
+// TestConstantLossStops: around the moment at which the ring stops, wherever
+// rounding puts it, the amplitude is small or zero and the phase goes on steadily.
+func TestConstantLossStops(t *testing.T) {
+	rng := rand.New(rand.NewPCG(7, 7))
+	for range 20000 {
+		a, b := math.Exp(-20*rng.Float64()), math.Exp(-15*rng.Float64())
+		stop := math.Log1p(a/b) / a
+		at := stop * (1 + 1e-9*(rng.Float64()-0.5))
+		u, i, ua, ub, ia, ib := constant.shape(a, b, at)
+		if !(u >= 0 && u < 1e-6) || math.IsNaN(i+ua+ub+ia+ib) || i < 0 {
+			t.Fatalf("a %g, b %g, t %g: u %g, I %g", a, b, at, u, i)
+		}
+		if v, j, _, _, _, _ := constant.shape(a, b, 3*stop); v != 0 || math.Abs(j-i) > 1e-6*i {
+			t.Fatalf("behind the stop: u %g, I %g, want 0 and %g", v, j, i)
+		}
+	}
+}
+
 // TestOneExponentialIsBiased: one exponential fitted to the quadratic law reads the
 // time constant low, by the table derived by quadrature (tolerance 3e-4 of the
 // ratio), and the amplitude law takes the bias out.

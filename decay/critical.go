@@ -70,10 +70,10 @@ type secondOrderFit struct {
 	iterations int
 }
 
-// fitSecondOrder fits s from sample at on: near critical damping in a and D, far
+// fitSecondOrder fits at most n samples of s from sample at on: near critical damping in a and D, far
 // above it, where a and D run along a bent valley, in the two rates.
-func fitSecondOrder(s series, at int) (secondOrderFit, bool) {
-	window := s.slice(at, s.len())
+func fitSecondOrder(s series, at, n int) (secondOrderFit, bool) {
+	window := s.slice(at, s.len()).thinned(n)
 	near, okNear := fitNearCritical(window)
 	far, okFar := fitTwoFalls(window)
 	best, ok := near, okNear

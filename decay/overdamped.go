@@ -54,19 +54,27 @@ func bestSecondOrder(s series) (best secondOrderFit, found bool) {
 	p := newPyramid(s)
 	levels := newPlateaus(p)
 	least := math.Inf(1)
+	start := 0
 	for _, o := range p.onsets() {
 		for at := o; at <= o+2 && s.len()-at >= 2*samplesLeast; at++ {
-			f, ok := fitSecondOrder(s, at)
+			f, ok := fitSecondOrder(s, at, onsetSamples)
 			if !ok {
 				continue
 			}
-			if left := levels.about(0, at/levels.block) + f.rss; left < least {
-				best, least, found = f, left, true
+			rss := f.rss / float64(f.used) * float64(s.len()-at)
+			if left := levels.about(0, at/levels.block) + rss; left < least {
+				start, least, found = at, left, true
 			}
 		}
 	}
-	return best, found
+	if !found {
+		return best, false
+	}
+	return fitSecondOrder(s, start, s.len()-start)
 }
+
+// onsetSamples are enough to tell one onset from another.
+const onsetSamples = 256
 
 func dampingFinding(q *Quantities, d, u float64) Finding {
 	if math.Abs(d) < decaySigma*u {
