@@ -21,12 +21,17 @@ func (r *RingDown) WriteJSON(w io.Writer) error {
 	if err := r.check(); err != nil {
 		return err
 	}
+	if r.Err != nil {
+		return writeLine(w, unreadable(schemaRingDown, r.file(), r.sha256(), r.Device, r.Err))
+	}
+	return writeLine(w, r.json())
+}
+
+// writeLine writes one line of JSON.
+func writeLine(w io.Writer, v any) error {
 	enc := json.NewEncoder(w)
 	enc.SetEscapeHTML(false)
-	if r.Err != nil {
-		return enc.Encode(r.unreadable())
-	}
-	return enc.Encode(r.json())
+	return enc.Encode(v)
 }
 
 // The structures below give the keys their order.
@@ -176,12 +181,12 @@ func readingsJSON(r decay.Readings) (out jsonReadings) {
 	return out
 }
 
-func (r *RingDown) unreadable() *jsonUnreadable {
-	out := &jsonUnreadable{Schema: schemaRingDown, Status: "unreadable",
-		File: orNull(r.file()), SHA256: orNull(r.sha256()), Device: orNull(r.Device)}
-	out.Error.Message = r.Err.Error()
+// unreadable says why there is no result; the schema is that of the result.
+func unreadable(schema, file, sha256, device string, err error) *jsonUnreadable {
+	out := &jsonUnreadable{Schema: schema, Status: "unreadable", File: orNull(file), SHA256: orNull(sha256), Device: orNull(device)}
+	out.Error.Message = err.Error()
 	var e *capture.Error
-	if errors.As(r.Err, &e) {
+	if errors.As(err, &e) {
 		out.Error.Line, out.Error.Column = placeOrNull(e.Line), placeOrNull(e.Column)
 	}
 	return out

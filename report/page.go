@@ -37,16 +37,22 @@ func (r *RingDown) WritePage(w io.Writer) error {
 // A page is what the template shows.
 type page struct {
 	frame
+	evidence
+	Circuit    []fact
+	Losses     []lossRow
+	Judgement  *circuit.Judgement
+	Decays     []decayRow
+	MoreDecays int
+	Modes      [][]row
+}
+
+// The evidence is what the page of a ring-down and that of a sweep both show.
+type evidence struct {
 	Refused           bool
-	Circuit           []fact
-	Losses            []lossRow
-	Judgement         *circuit.Judgement
 	Headline, Results []row
 	Facts             []fact
 	Readings          []comparison
-	Decays            []decayRow
-	MoreDecays        int
-	Modes             [][]row
+	ReadingsCaption   string
 	Findings          []capture.Finding
 	Origin, Layout    []fact
 	Columns           []capture.Column
@@ -67,8 +73,8 @@ func (r *RingDown) page(f *figure) *page {
 	p := &page{
 		frame: frame{Kind: "Free decay of a resonant circuit", Heading: r.heading(), What: r.what(),
 			Status: string(r.Status()), Verdict: r.verdict(), Figures: []*figure{f}},
-		Refused: r.refused(), Findings: cleaned(r.Findings()),
-		Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns,
+		evidence: evidence{Refused: r.refused(), Findings: cleaned(r.Findings()),
+			Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns},
 	}
 	p.Judgement = r.Limits
 	p.Title = p.Heading + " – free decay, " + p.Status
@@ -81,6 +87,11 @@ func (r *RingDown) page(f *figure) *page {
 	p.Results = resultRows(res.Quantities)
 	p.Headline = p.Results[:4]
 	p.Readings = comparisons(res)
+	of := ""
+	if len(res.Decays) > 1 {
+		of = " of the first decay"
+	}
+	p.ReadingsCaption = "What crossings of the baseline and heights of peaks say by themselves, beside the fit" + of + ". In parentheses: the difference in standard uncertainties of the reading."
 	if r.Circuit != nil {
 		p.Circuit, p.Losses = componentRows(r.Circuit), lossRows(r.Circuit.Budget, r.Circuit.Total)
 	}
@@ -163,20 +174,26 @@ const longName = 400
 
 // origin says how the result was made.
 func (r *RingDown) origin() []fact {
-	facts := []fact{
-		{"file", clean(r.file(), longName)}, {"SHA-256", r.sha256()},
-		{"device", clean(r.Device, longName)}, {"channel", clean(r.Channel.Name, longName)},
-		{"version", clean(r.Origin.Version, longName)}, {"command line", clean(r.Origin.CommandLine, 4*longName)},
-	}
-	if !r.Origin.Made.IsZero() {
-		facts = append(facts, fact{"made", r.Origin.Made.UTC().Format(time.DateTime) + " UTC"})
+	return r.Origin.facts(fact{"file", clean(r.file(), longName)}, fact{"SHA-256", r.sha256()},
+		fact{"device", clean(r.Device, longName)}, fact{"channel", clean(r.Channel.Name, longName)})
+}
+
+// facts says how the result was made, behind what it was made from.
+func (o Origin) facts(from ...fact) []fact {
+	facts := append(from, fact{"version", clean(o.Version, longName)}, fact{"command line", clean(o.CommandLine, 4*longName)})
+	if !o.Made.IsZero() {
+		facts = append(facts, fact{"made", o.Made.UTC().Format(time.DateTime) + " UTC"})
 	}
 	return stated(facts)
 }
 
 // layout says how the file was understood.
 func (r *RingDown) layout() []fact {
-	l := &r.Capture.Layout
+	return layoutFacts(&r.Capture.Layout, fact{"time axis", clean(r.Channel.Axis.Source, longName)})
+}
+
+// layoutFacts says how a file was understood, behind what is peculiar to it.
+func layoutFacts(l *capture.Layout, first ...fact) []fact {
 	line := func(n int) string {
 		if n == 0 {
 			return ""
@@ -187,11 +204,9 @@ func (r *RingDown) layout() []fact {
 	if l.Compressed {
 		encoding = strings.TrimPrefix(encoding+", compressed", ", ")
 	}
-	return stated([]fact{
-		{"time axis", clean(r.Channel.Axis.Source, longName)}, {"encoding", clean(encoding, nameLength)},
-		{"names", line(l.HeaderLine)}, {"units", line(l.UnitsLine)}, {"first sample", line(l.FirstLine)},
-		{"delimiter", clean(l.Delimiter, nameLength)}, {"decimal mark", clean(l.DecimalMark, nameLength)},
-	})
+	return stated(append(first, fact{"encoding", clean(encoding, nameLength)},
+		fact{"names", line(l.HeaderLine)}, fact{"units", line(l.UnitsLine)}, fact{"first sample", line(l.FirstLine)},
+		fact{"delimiter", clean(l.Delimiter, nameLength)}, fact{"decimal mark", clean(l.DecimalMark, nameLength)}))
 }
 
 // cleaned returns findings whose texts, which may quote the file, are safe to show.
@@ -214,9 +229,9 @@ func stated(all []fact) []fact {
 }
 
 // Cells returns the columns of the file with their texts made safe to show.
-func (p *page) Cells() []capture.Column {
+func (e *evidence) Cells() []capture.Column {
 	var out []capture.Column
-	for _, c := range p.Columns[:min(len(p.Columns), mostColumns)] {
+	for _, c := range e.Columns[:min(len(e.Columns), mostColumns)] {
 		c.Name, c.Unit, c.Why = clean(c.Name, nameLength), clean(c.Unit, nameLength), clean(c.Why, longName)
 		out = append(out, c)
 	}

@@ -111,12 +111,23 @@ func (r *RingDown) Findings() []capture.Finding {
 		all = append(all, r.Circuit.Findings...)
 	}
 	if r.Capture != nil {
-		for _, f := range r.Capture.Findings {
-			if !slices.Contains(all, f) {
-				all = append(all, f)
-			}
+		all = withReader(all, r.Capture.Findings)
+	}
+	return gravest(all)
+}
+
+// withReader appends the findings of the reader that are not there yet.
+func withReader(all, reader []capture.Finding) []capture.Finding {
+	for _, f := range reader {
+		if !slices.Contains(all, f) {
+			all = append(all, f)
 		}
 	}
+	return all
+}
+
+// gravest sorts findings, gravest first.
+func gravest(all []capture.Finding) []capture.Finding {
 	slices.SortStableFunc(all, func(a, b capture.Finding) int {
 		return cmp.Compare(gravity[a.Severity], gravity[b.Severity])
 	})
@@ -129,12 +140,15 @@ func (r *RingDown) Status() decay.Status {
 	if r.Result == nil {
 		return ""
 	}
-	if r.Result.Status == decay.Good {
-		if f := r.Findings(); len(f) > 0 && f[0].Severity != capture.Note {
-			return decay.Doubtful
-		}
+	return statusOf(r.Result.Status, r.Findings())
+}
+
+// statusOf is the verdict of an analysis with the findings of the reader counted in.
+func statusOf(s decay.Status, all []capture.Finding) decay.Status {
+	if s == decay.Good && len(all) > 0 && all[0].Severity != capture.Note {
+		return decay.Doubtful
 	}
-	return r.Result.Status
+	return s
 }
 
 // refused reports whether the numbers are withheld.

@@ -25,13 +25,10 @@ func (r *RingDown) WriteSummary(w io.Writer, style Style) error {
 	if err := r.check(); err != nil {
 		return err
 	}
-	if style.Width <= 0 {
-		style.Width = 80
-	}
-	s := &summary{Writer: bufio.NewWriter(w), style: style}
+	s := newSummary(w, style)
 	switch {
 	case r.Err != nil:
-		s.item(s.paint("unreadable", red)+": ", clean(r.Err.Error(), 0))
+		s.unreadable(r.Err)
 	case r.refused():
 		s.head(r)
 		s.refusal(r)
@@ -50,6 +47,17 @@ func (r *RingDown) WriteSummary(w io.Writer, style Style) error {
 type summary struct {
 	*bufio.Writer
 	style Style
+}
+
+func newSummary(w io.Writer, style Style) *summary {
+	if style.Width <= 0 {
+		style.Width = 80
+	}
+	return &summary{Writer: bufio.NewWriter(w), style: style}
+}
+
+func (s *summary) unreadable(err error) {
+	s.item(s.paint("unreadable", red)+": ", clean(err.Error(), 0))
 }
 
 func (s *summary) head(r *RingDown) {
