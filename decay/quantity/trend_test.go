@@ -1,0 +1,83 @@
+package quantity
+
+import (
+	"math"
+	"math/rand/v2"
+	"testing"
+)
+
+// TestTrendByHand: three values by hand. Unweighted line through (0, 1), (1, 3), (2, 2):
+// slope 1/2, residuals -1/2, 1, -1/2, s^2 = 1.5 with one degree of freedom, u(slope) =
+// sqrt(1.5/2); Student's t for one degree and 95 % is 12.706 (table of GUM G.2).
+func TestTrendByHand(t *testing.T) {
+	none := math.NaN()
+	trend, err := TrendOf([]float64{0, 1, 2}, []Quantity{New(1, none, "V"), New(3, none, "V"), New(2, none, "V")})
+	if err != nil {
+		t.Fatal(err)
+	}
+	near(t, "mean", trend.Mean.Value, 2, 1e-12)
+	near(t, "u(mean)", trend.Mean.U, 1/math.Sqrt(3), 1e-12)
+	near(t, "change", trend.Change.Value, 1, 1e-12)
+	near(t, "u(change)", trend.Change.U, 2*math.Sqrt(0.75), 1e-12)
+	near(t, "k", trend.K, 12.706, 1e-3)
+	if trend.Drifts() || !math.IsNaN(trend.Birge) {
+		t.Errorf("drifts %v, Birge ratio %g", trend.Drifts(), trend.Birge)
+	}
+}
+
+// TestTrendKnownUncertainty: with u known and no scatter beyond it, u(mean) =
+// u/sqrt(n) and u(slope) = u/sqrt(sum (x - mean)^2), here 0.1/sqrt(2), k = 2.
+func TestTrendKnownUncertainty(t *testing.T) {
+	trend, err := TrendOf([]float64{2, 0, 1}, []Quantity{New(5.2, 0.1, ""), New(5, 0.1, ""), New(5.1, 0.1, "")})
+	if err != nil {
+		t.Fatal(err)
+	}
+	near(t, "mean", trend.Mean.Value, 5.1, 1e-12)
+	near(t, "u(mean)", trend.Mean.U, 0.1/math.Sqrt(3), 1e-12)
+	near(t, "change", trend.Change.Value, 0.2, 1e-12)
+	near(t, "u(change)", trend.Change.U, 0.1*math.Sqrt2, 1e-12)
+	if trend.K != 2 || trend.Drifts() {
+		t.Errorf("k %g, drifts %v", trend.K, trend.Drifts())
+	}
+}
+
+func TestTrendFew(t *testing.T) {
+	if _, err := TrendOf([]float64{1}, []Quantity{Unknown("Hz")}); err == nil {
+		t.Error("a trend of nothing")
+	}
+	trend, err := TrendOf([]float64{1}, []Quantity{New(7, 0.5, "Hz")})
+	if err != nil || trend.Mean != New(7, 0.5, "Hz") || trend.Change.Known() || trend.Drifts() {
+		t.Errorf("of one measurement: %+v, %v", trend, err)
+	}
+	same := []Quantity{New(7, 0.5, ""), New(8, 0.5, ""), New(9, 0.5, "")}
+	if trend, err = TrendOf([]float64{1, 1, 1}, same); err != nil || trend.Change.Known() || trend.Drifts() {
+		t.Errorf("all at one time: %+v, %v", trend, err)
+	}
+}
+
+// TestTrendErrorRate: of steady quantities 5 in 100 are said to drift, by the
+// meaning of 95 %, whether u is known, twice too small, or unknown.
+func TestTrendErrorRate(t *testing.T) {
+	random := rand.New(rand.NewPCG(6, 1))
+	for _, u := range []float64{1, 0.5, math.NaN()} {
+		const trials = 2000
+		drifts := 0
+		for range trials {
+			var at []float64
+			var q []Quantity
+			for i := range 8 {
+				at, q = append(at, float64(i)), append(q, New(100+random.NormFloat64(), u, ""))
+			}
+			trend, err := TrendOf(at, q)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if trend.Drifts() {
+				drifts++
+			}
+		}
+		if rate := float64(drifts) / trials; rate < 0.02 || rate > 0.075 {
+			t.Errorf("u %g: %.1f %% of steady quantities drift, expected about 5 %%", u, 100*rate)
+		}
+	}
+}
