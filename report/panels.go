@@ -22,6 +22,7 @@ var (
 	keyLogPeaks  = key{"peaks read, from baseline", "ring", "peak"}
 	keyLine      = key{"line through the peaks", "dash", "peak"}
 	keyNoise     = key{"noise, rms", "dash", "quiet"}
+	keyPredicted = key{"predicted by the sweep", "dash", "crossing"}
 	keyResidual  = key{"sample less fitted curve", "dots", "samples"}
 	keyBand      = key{"two standard deviations of the noise", "band", "band"}
 )
@@ -127,7 +128,12 @@ func (p *plot) waveform(r *RingDown, all []drawn, parts []segment) {
 		p.addSeries(keyFit, "line", p.addTrace(w.fitted(ch.Axis.Time), p.level), "v")
 	}
 	p.addDots(keySamples, data)
-	if len(all) > 0 {
+	switch {
+	case len(all) > 0 && r.predicted != nil:
+		w := all[0]
+		w.curve = r.predicted
+		p.addSeries(keyPredicted, "line", p.addTrace(w.fitted(ch.Axis.Time), p.level), "v")
+	case len(all) > 0:
 		p.readingMarks(&r.Result.Readings, all[0].curve)
 	}
 }
@@ -183,6 +189,12 @@ func (p *plot) envelope(r *RingDown, all []drawn) {
 		data := p.addData(map[string]column{"t": p.time.column(o.t), "v": log(positive(o.envelope))})
 		p.addSeries(keyEnvelope, "line", data, "v", gates(p.time, all[i:i+1]))
 		p.noiseFloor(all[i].decay, o.t)
+	}
+	if len(all) > 0 && r.predicted != nil {
+		w := all[0]
+		w.curve = r.predicted
+		o := w.outline(axis.Time)
+		p.addSeries(keyPredicted, "line", p.addData(map[string]column{"t": p.time.column(o.t), "v": log(positive(o.envelope))}), "v")
 	}
 	if len(all) > 0 && read.Line[1] != 0 && len(peaks.t) > 0 {
 		line := readingLine(r.Result, all[0].outline(axis.Time).t)

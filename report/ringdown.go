@@ -36,6 +36,9 @@ type RingDown struct {
 	// Origin says how the result was made; the page shows it.
 	Origin Origin
 
+	// predicted is what a sweep says of the first decay; nil for none.
+	predicted curve
+
 	// curves stands in for the decays of Result in tests.
 	curves []curve
 }
