@@ -1,0 +1,68 @@
+package report
+
+import (
+	"fmt"
+	"io"
+)
+
+// A sweepPage is what the template of a sweep shows.
+type sweepPage struct {
+	frame
+	evidence
+}
+
+// WritePage writes the evidence as one HTML page that needs no network, as
+// [RingDown.WritePage] does: the resonance curve with its fit, the phase, what the
+// fit leaves, results and findings.
+func (r *Sweep) WritePage(w io.Writer) error {
+	if err := r.check(); err != nil {
+		return err
+	}
+	if r.Err != nil {
+		return fmt.Errorf("no page of a file that could not be read: %w", r.Err)
+	}
+	f, err := r.figure()
+	if err != nil {
+		return fmt.Errorf("charts of the page: %w", err)
+	}
+	p := r.page(f)
+	return p.write(w, "sweep.html", p)
+}
+
+func (r *Sweep) page(f *figure) *sweepPage {
+	heading := clean(r.file(), nameLength)
+	if r.Device != "" {
+		heading = clean(r.Device, nameLength)
+	}
+	p := &sweepPage{
+		frame: frame{Kind: "Driven sweep of a resonant circuit", Heading: heading, What: r.what(),
+			Status: string(r.Status()), Verdict: r.verdict(), Figures: []*figure{f}},
+		evidence: evidence{Refused: r.refused(), Findings: cleaned(r.Findings()), Origin: r.origin(),
+			Layout: layoutFacts(&r.Table.Layout), Columns: r.Table.Layout.Columns},
+	}
+	p.Title = p.Heading + " – driven sweep, " + p.Status
+	if p.Refused {
+		p.Layout = append([]fact{{"sweep", r.rowsLine()}}, p.Layout...)
+		return p
+	}
+	p.Results = sweepRows(r.Result)
+	p.Headline = p.Results[:4]
+	p.Facts = r.facts()
+	p.Readings = sweepComparisons(r.Result)
+	p.ReadingsCaption = "What peak and half-power points say by themselves, corrected for what the response was measured across, beside the fit. In parentheses: the difference in standard uncertainties of the reading."
+	return p
+}
+
+// what says in one line what was measured.
+func (r *Sweep) what() string {
+	s := upperFirst(r.source())
+	if r.refused() {
+		return s + "."
+	}
+	return fmt.Sprintf("%s: %s, fitted with the exact form of a second-order resonance.", s, plural(len(r.Result.Points), "row"))
+}
+
+func (r *Sweep) origin() []fact {
+	return r.Origin.facts(fact{"file", clean(r.file(), longName)}, fact{"SHA-256", r.sha256()},
+		fact{"device", clean(r.Device, longName)}, fact{"response", clean(r.Table.Name, longName)})
+}
