@@ -12,30 +12,50 @@ import (
 // axis with where it came from.
 func (c *Capture) Explain(w io.Writer) error {
 	var b strings.Builder
-	l := c.Layout
-	encoding := l.Encoding
-	if l.Compressed {
-		encoding += ", compressed with gzip"
-	}
-	fmt.Fprintf(&b, "%s\n", c.File)
-	fmt.Fprintf(&b, "  text       %s\n", encoding)
-	fmt.Fprintf(&b, "  SHA-256    %s\n", c.SHA256)
-	fmt.Fprintf(&b, "  lines      %s\n", l.lines())
-	fmt.Fprintf(&b, "  separator  %s, decimal mark %q\n", l.Delimiter, l.DecimalMark)
-	for _, col := range l.Columns {
-		fmt.Fprintf(&b, "  column %-3d %s\n", col.Number, col.describe())
-	}
+	c.Layout.explain(&b, c.File, c.SHA256)
 	for _, ch := range c.Channels {
 		fmt.Fprintf(&b, "  channel %-2d %s\n", ch.Number, ch.describe())
 	}
 	for _, a := range c.axes() {
 		fmt.Fprintf(&b, "  time       %s\n", a.describe(c.onAxis(a)))
 	}
-	for _, f := range c.Findings {
-		fmt.Fprintf(&b, "  %-10s %s: %s\n", f.Severity, f.Code, f.Message)
-	}
+	explainFindings(&b, c.Findings)
 	_, err := io.WriteString(w, b.String())
 	return err
+}
+
+// Explain writes what the reader understood of the table: encoding, preamble,
+// separators, and each column with its role and why.
+func (s *Sweep) Explain(w io.Writer) error {
+	var b strings.Builder
+	s.Layout.explain(&b, s.File, s.SHA256)
+	lo, hi := s.Span()
+	fmt.Fprintf(&b, "  sweep      %s from %s to %s\n", plural(len(s.Frequency), "row"), hertz(lo), hertz(hi))
+	explainFindings(&b, s.Findings)
+	_, err := io.WriteString(w, b.String())
+	return err
+}
+
+func explainFindings(b *strings.Builder, all []Finding) {
+	for _, f := range all {
+		fmt.Fprintf(b, "  %-10s %s: %s\n", f.Severity, f.Code, f.Message)
+	}
+}
+
+// explain writes how the file was understood.
+func (l *Layout) explain(b *strings.Builder, file, sha256 string) {
+	encoding := l.Encoding
+	if l.Compressed {
+		encoding += ", compressed with gzip"
+	}
+	fmt.Fprintf(b, "%s\n", file)
+	fmt.Fprintf(b, "  text       %s\n", encoding)
+	fmt.Fprintf(b, "  SHA-256    %s\n", sha256)
+	fmt.Fprintf(b, "  lines      %s\n", l.lines())
+	fmt.Fprintf(b, "  separator  %s, decimal mark %q\n", l.Delimiter, l.DecimalMark)
+	for _, col := range l.Columns {
+		fmt.Fprintf(b, "  column %-3d %s\n", col.Number, col.describe())
+	}
 }
 
 func (l Layout) lines() string {
