@@ -5,6 +5,7 @@ import (
 	"context"
 	"flag"
 	"fmt"
+	"io"
 	"os"
 	"path/filepath"
 	"strings"
@@ -73,7 +74,7 @@ type tab struct {
 }
 
 // open shows the page of r in a new tab of the given size and colour scheme.
-func open(t *testing.T, parent context.Context, r *RingDown, width, height int64, scheme string) *tab {
+func open(t *testing.T, parent context.Context, r interface{ WritePage(w io.Writer) error }, width, height int64, scheme string) *tab {
 	t.Helper()
 	file := filepath.Join(t.TempDir(), "page.html")
 	var b bytes.Buffer

@@ -26,6 +26,10 @@ type Sweep struct {
 	Device string
 	// Origin says how the result was made; the page shows it.
 	Origin Origin
+
+	// predicted is the response that a ring-down says, nil for none: magnitude and
+	// phase in rad at a frequency in Hz.
+	predicted func(f float64) (magnitude, phase float64)
 }
 
 func (r *Sweep) check() error {

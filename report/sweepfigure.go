@@ -12,6 +12,7 @@ import (
 var (
 	keyRows      = key{"rows of the sweep", "dots", "samples"}
 	keyCurve     = key{"fitted curve", "line", "fit"}
+	keyForetold  = key{"predicted by the ring-down", "dash", "crossing"}
 	keyOutliers  = key{"rows left out", "cross", "crossing"}
 	keyHalfPower = key{"half-power points read", "ring", "peak"}
 	keyRest      = key{"row less fitted curve", "dots", "samples"}
@@ -38,7 +39,9 @@ type sweepPlot struct {
 	points []driven.Point
 	curve  trace // fitted magnitude
 	phase  trace // fitted phase in degrees
-	unit   string
+	// The response that a ring-down predicts, and its phase in degrees; empty without one.
+	predicted, predictedPhase trace
+	unit                      string
 }
 
 // figure draws the sweep: the resonance curve and, unless it was refused, the
@@ -69,7 +72,7 @@ func (r *Sweep) figure() (*figure, error) {
 	}
 	if !r.refused() {
 		p.time = scaleFor(lo, hi, math.Min(hi-lo, res.Quantities.Bandwidth.Value)/2000, "Hz")
-		p.follow(lo, hi)
+		p.follow(lo, hi, r.predicted)
 		f.Views = p.views(lo, hi)
 	}
 	p.response(r.refused())
@@ -115,8 +118,9 @@ func thinned(all []driven.Point, n int) []driven.Point {
 	return out
 }
 
-// follow computes the fitted curve, more finely where the resonance is.
-func (p *sweepPlot) follow(lo, hi float64) {
+// follow computes the fitted curve and the one predicted, if there is one, more
+// finely where the resonance is.
+func (p *sweepPlot) follow(lo, hi float64, predicted func(f float64) (magnitude, phase float64)) {
 	q := p.r.Quantities
 	wide := resonanceHalves * q.Bandwidth.Value / 2
 	fs := merge(between(lo, hi, curveAcross),
@@ -125,6 +129,11 @@ func (p *sweepPlot) follow(lo, hi float64) {
 		m, phase := p.r.At(f)
 		p.curve.add(f, m)
 		p.phase.add(f, phase*180/math.Pi)
+		if predicted != nil {
+			m, phase = predicted(f)
+			p.predicted.add(f, m)
+			p.predictedPhase.add(f, phase*180/math.Pi)
+		}
 	}
 }
 
@@ -172,6 +181,7 @@ func (p *sweepPlot) response(refused bool) {
 	p.addPanel("Response", caption, p.level.unit, false)
 	if !refused {
 		p.addSeries(keyCurve, "line", p.addTrace(p.curve, p.level), "v")
+		p.foretold(p.predicted, p.level)
 	}
 	magnitude := func(x driven.Point) float64 { return x.Magnitude }
 	p.dots(keyRows, p.kept(false, magnitude), p.level)
@@ -197,11 +207,19 @@ func (p *sweepPlot) response(refused bool) {
 	p.dots(keyHalfPower, marks, p.level)
 }
 
+// foretold draws what a ring-down predicts.
+func (p *sweepPlot) foretold(tr trace, s axisScale) {
+	if len(tr.t) > 0 {
+		p.addSeries(keyForetold, "line", p.addTrace(tr, s), "v")
+	}
+}
+
 // phases draws the phase in degrees.
 func (p *sweepPlot) phases() {
 	scale := axisScale{factor: 1, unit: "°", places: 3}
 	p.addPanel("Phase", captionPhase, scale.unit, false)
 	p.addSeries(keyCurve, "line", p.addTrace(p.phase, scale), "v")
+	p.foretold(p.predictedPhase, scale)
 	degrees := func(x driven.Point) float64 { return x.Phase * 180 / math.Pi }
 	p.dots(keyRows, p.kept(false, degrees), scale)
 	p.dots(keyOutliers, p.kept(true, degrees), scale)
