@@ -1,13 +1,9 @@
 package report
 
 import (
-	"bufio"
-	"cmp"
-	"encoding/json"
 	"errors"
 	"fmt"
 	"io"
-	"slices"
 
 	"dieaway/capture"
 	"dieaway/decay"
@@ -36,10 +32,7 @@ func (c *Components) Status() decay.Status {
 	if c.Result == nil {
 		return decay.Refused
 	}
-	if f := c.Findings(); len(f) > 0 && f[0].Severity != capture.Note {
-		return decay.Doubtful
-	}
-	return decay.Good
+	return statusOf(decay.Good, c.Findings())
 }
 
 // Findings returns the findings of the components and the warnings of each
@@ -50,15 +43,9 @@ func (c *Components) Findings() []capture.Finding {
 		all = append(all, c.Result.Findings...)
 	}
 	for _, r := range c.RingDowns {
-		for _, f := range r.Findings() {
-			if f.Severity != capture.Note {
-				f.Message = r.file() + ": " + f.Message
-				all = append(all, f)
-			}
-		}
+		all = append(all, warningsOf(r.file(), r.Findings())...)
 	}
-	slices.SortStableFunc(all, func(a, b capture.Finding) int { return cmp.Compare(gravity[a.Severity], gravity[b.Severity]) })
-	return all
+	return gravest(all)
 }
 
 type jsonComponents struct {
@@ -115,9 +102,7 @@ func (c *Components) WriteJSON(w io.Writer) error {
 	} else {
 		out.Error = &jsonError{c.Err.Error()}
 	}
-	enc := json.NewEncoder(w)
-	enc.SetEscapeHTML(false)
-	return enc.Encode(out)
+	return writeLine(w, out)
 }
 
 func (c *Components) rowJSON(i int, r *RingDown) jsonComponentRow {
@@ -135,10 +120,7 @@ func (c *Components) rowJSON(i int, r *RingDown) jsonComponentRow {
 // WriteSummary writes the components for people: the values, a line for each
 // capture, the damping network that follows, and the findings.
 func (c *Components) WriteSummary(w io.Writer, style Style) error {
-	if style.Width <= 0 {
-		style.Width = 80
-	}
-	s := &summary{Writer: bufio.NewWriter(w), style: style}
+	s := newSummary(w, style)
 	s.status(c.Status(), c.verdict())
 	s.item("  ", prefixed(c.Device)+plural(len(c.RingDowns), "capture"))
 	s.WriteString("\n")
