@@ -271,9 +271,12 @@ func TestSimulationsAreRead(t *testing.T) {
 		s := &Simulation{Bench: benchOf(Series, l, 1e-9, math.Sqrt(l/1e-9)/20, 0, 0, 0, 0), Interval: interval, Samples: 700, Pretrigger: 70,
 			Amplitude: 1, Noise: 0.004, Converter: Converter{Bits: 10, FullScale: 4}}
 		s.Bench.Device = "loop 07, spare"
-		y := simulated(t, s)
+		r, err := s.Record()
+		if err != nil {
+			t.Fatal(err)
+		}
+		y := r.Samples
 		var text bytes.Buffer
-		r := Record{Notes: s.Notes(), Name: "capacitor voltage", Unit: "V", Interval: interval, Pretrigger: 70, Step: s.Converter.Step(), Samples: y}
 		if err := r.Write(&text); err != nil {
 			t.Fatal(err)
 		}
@@ -336,5 +339,27 @@ func TestSimulationRefuses(t *testing.T) {
 		if _, err := s.RingDown(); err == nil {
 			t.Errorf("%s: no error", name)
 		}
+	}
+}
+
+// TestComplete: what is left open is set as at the bench (common practice), and
+// what is given stays.
+func TestComplete(t *testing.T) {
+	b := benchOf(Series, 1.62e-3, 1e-9, 15, 15, 50, 10e6, 12e-12) // 124.3 kHz, tau 40.45 us
+	s := &Simulation{Bench: b, Converter: Converter{Bits: 8}}
+	if err := s.Complete(math.NaN(), math.NaN()); err != nil {
+		t.Fatal(err)
+	}
+	if s.Interval != 200e-9 || s.Amplitude != 1 || s.Converter.FullScale != 5 {
+		t.Errorf("interval %g s, amplitude %g V, full scale %g V; want 200 ns (40 samples a cycle), 1 V, 5 V", s.Interval, s.Amplitude, s.Converter.FullScale)
+	}
+	closeTo(t, "samples", float64(s.Samples), 5*40.45e-6/0.9/200e-9, 0.01)
+	closeTo(t, "pretrigger", float64(s.Pretrigger), float64(s.Samples)/10, 0.01)
+	s = &Simulation{Bench: b, Interval: 1e-7, Source: 3}
+	if err := s.Complete(20e-6, 250e-6); err != nil {
+		t.Fatal(err)
+	}
+	if s.Interval != 1e-7 || s.Samples != 2500 || s.Pretrigger != 200 || s.Amplitude != 0 {
+		t.Errorf("%+v", s)
 	}
 }

@@ -66,17 +66,15 @@ func main() {
 	log.SetFlags(0)
 	name := flag.String("o", "loop07.csv", "file to write")
 	flag.Parse()
-	s := simulation()
-	samples, err := s.RingDown()
+	r, err := simulation().Record()
 	if err != nil {
 		log.Fatal(err)
 	}
+	r.Notes = preamble
 	file, err := os.Create(*name)
 	if err != nil {
 		log.Fatal(err)
 	}
-	r := circuit.Record{Notes: preamble, Name: "capacitor voltage", Unit: "V", Interval: s.Interval, Pretrigger: s.Pretrigger,
-		Step: s.Converter.Step(), Samples: samples}
 	if err := r.Write(file); err != nil {
 		log.Fatal(err)
 	}
