@@ -7,6 +7,7 @@ import (
 	"cmp"
 	"math"
 	"slices"
+	"strings"
 
 	"dieaway/capture"
 )
@@ -43,7 +44,7 @@ func Analyze(ch *capture.Channel, opt Options) *Result {
 	// 3. Readings by crossings and peaks, which know nothing of the fit but what
 	// else moves beside the ring.
 	g, d, v := &a.found[a.best], a.decays[a.best], a.noises[a.best]
-	r := &Result{Model: g.model(), Decays: a.decays}
+	r := &Result{Model: g.model(), Decays: a.decays, Best: a.best}
 	r.Readings = read(g.ringOnly(a.s), d.period(), v.rms*v.factor(g.fit.w))
 	// 4. Judgement: is it a decay at all, and can the numbers be trusted?
 	if why, refuse := judge(a.s, g, d, v); refuse {
@@ -176,16 +177,37 @@ func (a *analysis) notRinging(r *Result, why Finding) *Result {
 }
 
 // AnalyzeCapture analyses the channel of c that rings: the only one, or the one
-// whose decay stands out most. It returns the channel it chose.
+// whose decay is known best; one that is named as the source is taken only where
+// no other rings nearly as well. It returns the channel it chose.
 func AnalyzeCapture(c *capture.Capture, opt Options) (*capture.Channel, *Result) {
 	var channel *capture.Channel
 	var best *Result
+	most := 0.0
 	for _, ch := range c.Channels {
-		if r := Analyze(ch, opt); best == nil || r.prominence() > best.prominence() {
-			channel, best = ch, r
+		r := Analyze(ch, opt)
+		p := r.prominence()
+		if isSource(ch.Name) {
+			p *= sourceShare
+		}
+		if best == nil || p > most {
+			channel, best, most = ch, r, p
 		}
 	}
 	return channel, best
+}
+
+// sourceShare weighs a channel whose name says that it is the source: it may ring
+// along, but it is not what is to be measured.
+const sourceShare = 0.1
+
+// isSource reports whether a channel is named as the voltage of the source is.
+func isSource(name string) bool {
+	plain := strings.ToLower(strings.NewReplacer("_", "", " ", "", "-", "").Replace(name))
+	switch plain {
+	case "vs", "us", "es", "vin", "uin", "vg", "vgen", "source", "drive", "generator", "input", "excitation":
+		return true
+	}
+	return false
 }
 
 // prominence ranks the channels of one capture: a measured decay before a refused

@@ -44,8 +44,9 @@ type Result struct {
 	Decays []*Decay
 	// Modes is set for TwoMode only, strongest first.
 	Modes []*Quantities
-	// Readings are the classical readings of the decay whose rate is known best,
-	// independent of the fit.
+	// Best is the index in Decays of the one whose rate is known best.
+	Best int
+	// Readings are the classical readings of the best decay, independent of the fit.
 	Readings Readings
 	// Findings is sorted by severity, gravest first.
 	Findings []Finding

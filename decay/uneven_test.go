@@ -118,3 +118,31 @@ func kindOf(code capture.Code) kind {
 	}
 	panic("no kind " + code)
 }
+
+// TestChoosesChannel: the channel that rings is taken, whatever its place; one
+// named as the source only where no other rings.
+func TestChoosesChannel(t *testing.T) {
+	ring := func(name string, size float64, seed uint64) *capture.Channel {
+		y := kindRing(1, kindN)
+		for i := range y {
+			y[i] *= size
+		}
+		ch := channel(withNoise(y, 0.01, seed), 0, 1e-6)
+		ch.Name = name
+		return ch
+	}
+	quiet, coil, source := ring("spare", 0, 1), ring("coil voltage", 1, 2), ring("V_S", 3, 3)
+	for _, c := range []struct {
+		channels []*capture.Channel
+		want     *capture.Channel
+	}{
+		{[]*capture.Channel{quiet, coil}, coil},
+		{[]*capture.Channel{coil, quiet}, coil},
+		{[]*capture.Channel{source, coil, quiet}, coil},
+		{[]*capture.Channel{quiet, source}, source},
+	} {
+		if got, r := AnalyzeCapture(&capture.Capture{Channels: c.channels}, Options{}); got != c.want || r.Quantities == nil {
+			t.Errorf("chose %s, %s", got.Name, r.Status)
+		}
+	}
+}

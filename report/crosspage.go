@@ -76,7 +76,7 @@ func (c *CrossCheck) page() (*crossPage, error) {
 func (c *CrossCheck) figures() ([]*figure, error) {
 	ring, sweep := *c.RingDown, *c.Sweep
 	if c.Check.Compared() && len(ring.Result.Decays) > 0 {
-		if t := c.Check.Sweep.Transient(ring.Result.Decays[0]); t != nil {
+		if t := c.Check.Sweep.Transient(ring.Result.Decays[ring.Result.Best]); t != nil {
 			ring.predicted = t
 		}
 		if p := c.Check.RingDown.Predicted; p.Q.Known() {

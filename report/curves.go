@@ -180,7 +180,7 @@ func (w *drawn) crests(r *RingDown, end int) trace {
 // readingLine is the straight line through the logarithms of the peaks read.
 func readingLine(r *decay.Result, times []float64) trace {
 	var tr trace
-	d := r.Decays[0]
+	d := r.Decays[r.Best]
 	for _, t := range times {
 		tr.add(t, math.Exp(r.Readings.Line[0]+r.Readings.Line[1]*(t-d.From)))
 	}

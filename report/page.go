@@ -89,13 +89,17 @@ func (r *RingDown) page(f *figure) *page {
 	p.Readings = comparisons(res)
 	of := ""
 	if len(res.Decays) > 1 {
-		of = " of the first decay"
+		of = fmt.Sprintf(" of decay %d", res.Best+1)
 	}
 	p.ReadingsCaption = "What crossings of the baseline and heights of peaks say by themselves, beside the fit" + of + ". In parentheses: the difference in standard uncertainties of the reading."
 	if r.Circuit != nil {
 		p.Circuit, p.Losses = componentRows(r.Circuit), lossRows(r.Circuit.Budget, r.Circuit.Total)
 	}
-	p.Facts = []fact{{"model", modelName(res)}, record}
+	p.Facts = []fact{{"model", modelName(res)}}
+	if line := r.channelLine(); line != "" {
+		p.Facts = append(p.Facts, fact{"channel", line})
+	}
+	p.Facts = append(p.Facts, record)
 	if len(res.Decays) == 1 {
 		d := res.Decays[0]
 		p.Facts = append(p.Facts, fact{"gate", gateLine(d)}, fact{"noise", noiseLine(d, r.unit())})

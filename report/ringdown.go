@@ -22,6 +22,8 @@ type RingDown struct {
 	// Channel is the channel of Capture that Result belongs to.
 	Channel *capture.Channel
 	Result  *decay.Result
+	// Chosen tells that nobody named the channel: it was chosen of those in Capture.
+	Chosen bool
 	// Err says why the file could not be read.
 	Err error
 	// File is the name of the file as it was given, "-" for standard input, and

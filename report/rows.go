@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"dieaway/capture"
 	"dieaway/decay"
@@ -83,13 +84,13 @@ func (c comparison) Difference() string {
 	return s
 }
 
-// comparisons returns the readings of the first decay beside its fit; a reading
+// comparisons returns the readings of the best decay beside its fit; a reading
 // that could not be made is left out.
 func comparisons(r *decay.Result) []comparison {
 	if len(r.Decays) == 0 {
 		return nil
 	}
-	fit, read := &r.Decays[0].Quantities, &r.Readings
+	fit, read := &r.Decays[r.Best].Quantities, &r.Readings
 	var out []comparison
 	for _, c := range []comparison{
 		{"damped frequency, from crossings", "f_d from crossings", fit.DampedFrequency, read.DampedFrequency},
@@ -137,6 +138,28 @@ func noiseLine(d *decay.Decay, unit string) string {
 		return s
 	}
 	return s + fmt.Sprintf("; SNR %.1f dB", d.SNR)
+}
+
+// channelLine says which channel was measured and of which it was chosen; ""
+// where there was no choice.
+func (r *RingDown) channelLine() string {
+	if !r.Chosen || len(r.Capture.Channels) < 2 {
+		return ""
+	}
+	var names []string
+	for _, ch := range r.Capture.Channels {
+		names = append(names, clean(ch.Name, nameLength))
+	}
+	return fmt.Sprintf("%s, chosen of %s as the one that rings most clearly", clean(r.Channel.Name, nameLength), listed(names))
+}
+
+// listed joins at most eight names.
+func listed(names []string) string {
+	const most = 8
+	if more := len(names) - most; more > 0 {
+		names = append(names[:most:most], fmt.Sprintf("%d more", more))
+	}
+	return strings.Join(names, ", ")
 }
 
 // recordLine says what the record is.

@@ -88,7 +88,7 @@ func (s *summary) results(r *RingDown) {
 	}
 	s.WriteString("\n")
 	s.item(label("model"), modelName(res))
-	s.item(label("record"), r.recordLine())
+	s.record(r)
 	shown := res.Decays[:min(len(res.Decays), mostDecays)]
 	for i, d := range shown {
 		if len(res.Decays) > 1 {
@@ -153,9 +153,17 @@ func (s *summary) findings(all []capture.Finding) {
 	}
 }
 
+// record says what was measured.
+func (s *summary) record(r *RingDown) {
+	if line := r.channelLine(); line != "" {
+		s.item(label("channel"), line)
+	}
+	s.item(label("record"), r.recordLine())
+}
+
 // refusal says what was seen in the record and what to do.
 func (s *summary) refusal(r *RingDown) {
-	s.item(label("record"), r.recordLine())
+	s.record(r)
 	if lo, hi, ok := span(r.Channel.Samples); ok {
 		s.item(label("samples"), fmt.Sprintf("between %s and %s",
 			quantity.Format(lo, r.unit(), 4), quantity.Format(hi, r.unit(), 4)))
