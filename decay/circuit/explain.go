@@ -38,8 +38,8 @@ func (c *comparer) say(s string) {
 func (c *comparer) explainMeasured() string {
 	q, _ := c.comparison(AsMeasured, "q")
 	f, _ := c.comparison(AsMeasured, "natural_frequency_hz")
-	s := fmt.Sprintf("as measured, Q is %s by the ring-down and %s by the sweep (E_n %.2g), f0 %s and %s (E_n %.2g)",
-		q.RingDown, q.Sweep, q.En, f.RingDown, f.Sweep, f.En)
+	s := fmt.Sprintf("as measured, Q is %s by the ring-down and %s by the sweep (E_n %s), f0 %s and %s (E_n %s)",
+		q.RingDown, q.Sweep, figure(q.En), f.RingDown, f.Sweep, figure(f.En))
 	if c.Decisive == AsMeasured {
 		return s + ": they " + agreement(c.Agrees) + c.sameLoad()
 	}
@@ -53,6 +53,9 @@ func (c *comparer) sameLoad() string {
 	}
 	return ""
 }
+
+// figure is a degree of equivalence to two digits.
+func figure(en float64) string { return quantity.Format(en, "", 2) }
 
 func agreement(agrees bool) string {
 	if agrees {
@@ -144,13 +147,13 @@ func (c *comparer) explainUnloaded() string {
 	}
 	s := ""
 	if q, ok := c.comparison(Unloaded, "q"); ok {
-		s = fmt.Sprintf("Q is %s by the ring-down and %s by the sweep (E_n %.2g)", q.RingDown, q.Sweep, q.En)
+		s = fmt.Sprintf("Q is %s by the ring-down and %s by the sweep (E_n %s)", q.RingDown, q.Sweep, figure(q.En))
 	} else {
 		s = "less than no loss remains on one side"
 	}
 	f, _ := c.comparison(Unloaded, "natural_frequency_hz")
-	return fmt.Sprintf("with source and probe taken out, %s, f0 %s and %s (E_n %.2g): they %s",
-		s, f.RingDown, f.Sweep, f.En, agreement(c.Agrees))
+	return fmt.Sprintf("with source and probe taken out, %s, f0 %s and %s (E_n %s): they %s",
+		s, f.RingDown, f.Sweep, figure(f.En), agreement(c.Agrees))
 }
 
 // worstClock is the largest error that a clock in use may have: of an RC oscillator
