@@ -54,7 +54,7 @@ func components(c *cli.Context) error {
 		return err
 	}
 	files := c.Args().Slice()
-	if err := checkFiles(files, j); err != nil {
+	if err := checkFiles("capture", files, j); err != nil {
 		return err
 	}
 	added, resistors, err := parseAdded(c, len(files))
@@ -129,7 +129,7 @@ func (j *job) measureAll(ctx context.Context, out *report.Components) (code int,
 		}
 		if r.Err != nil || r.Status() == decay.Refused {
 			bad = append(bad, s.name)
-			code = max(code, j.exitCode(r))
+			code = max(code, j.exitCode(ofRingDown(r)))
 		}
 		out.RingDowns = append(out.RingDowns, r)
 	}

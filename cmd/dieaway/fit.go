@@ -25,7 +25,7 @@ func fit(c *cli.Context) error {
 		return err
 	}
 	files := c.Args().Slice()
-	if err := checkFiles(files, j); err != nil {
+	if err := checkFiles("capture", files, j); err != nil {
 		return err
 	}
 	j.inputs = files
@@ -40,18 +40,18 @@ func fit(c *cli.Context) error {
 	return j.run(c.Context)
 }
 
-// checkFiles refuses what no analysis can make good.
-func checkFiles(files []string, j *job) error {
+// checkFiles refuses what no analysis can make good; thing is what the files hold.
+func checkFiles(thing string, files []string, j *job) error {
 	if len(files) == 0 {
-		return usagef("no capture given: name at least one file, or - for standard input")
+		return usagef("no %s given: name at least one file, or - for standard input", thing)
 	}
 	if j.page != "" && len(files) > 1 {
-		return usagef("--report takes one capture, and there are %d: run fit once for each page", len(files))
+		return usagef("--report takes one %s, and there are %d: run it once for each page", thing, len(files))
 	}
 	streams := 0
 	for _, name := range files {
 		if name == "" {
-			return usagef("the name of a capture is empty")
+			return usagef("the name of a %s is empty", thing)
 		}
 		if name == "-" {
 			streams++

@@ -53,9 +53,40 @@ func (j *job) source(name string) source {
 	}}
 }
 
-// run measures all sources in their order. One that fails does not stop the
-// rest; the highest exit code wins.
+// A measured is one file with its result, and what is needed to deliver it: the
+// same for ring-downs and sweeps.
+type measured struct {
+	evidence
+	err     error // why there is no result
+	explain func(io.Writer) error
+	limits  *circuit.Judgement // nil without
+}
+
+// The evidence is a result as package report shows it.
+type evidence interface {
+	WriteJSON(io.Writer) error
+	WriteSummary(io.Writer, report.Style) error
+	WritePage(io.Writer) error
+	Status() decay.Status
+}
+
+// ofRingDown is a ring-down to deliver.
+func ofRingDown(r *report.RingDown) measured {
+	m := measured{evidence: r, err: r.Err, limits: r.Limits}
+	if r.Capture != nil {
+		m.explain = r.Capture.Explain
+	}
+	return m
+}
+
+// run measures the free decay in all sources.
 func (j *job) run(ctx context.Context) error {
+	return j.runAll(ctx, "captures", func(s source) measured { return ofRingDown(j.ringDown(s)) })
+}
+
+// runAll measures all sources, which are things, in their order. One that fails
+// does not stop the rest; the highest exit code wins.
+func (j *job) runAll(ctx context.Context, things string, measure func(source) measured) error {
 	var page *output
 	if j.page != "" {
 		var err error
@@ -70,7 +101,7 @@ func (j *job) run(ctx context.Context) error {
 		j.read.Progress = func(done, total int64) { bar.at(done, total, "reading", true) }
 	}
 	worst := exitDone
-	work := startAhead(ctx, j.sources, j.ringDown)
+	work := startAhead(ctx, j.sources, measure)
 	for i := range j.sources {
 		r, ok := work.next(ctx, i)
 		if !ok {
@@ -82,7 +113,7 @@ func (j *job) run(ctx context.Context) error {
 			return err
 		}
 		work.done()
-		bar.at(int64(i+1), int64(len(j.sources)), "captures", false)
+		bar.at(int64(i+1), int64(len(j.sources)), things, false)
 		worst = max(worst, code)
 	}
 	bar.clear()
@@ -104,6 +135,7 @@ func (j *job) ringDown(s source) *report.RingDown {
 	r.Capture = c
 	if j.channel == "" {
 		r.Channel, r.Result = decay.AnalyzeCapture(c, j.analysis)
+		r.Chosen = true
 	} else {
 		if r.Channel, err = c.Channel(j.channel); err != nil {
 			r.Err = &exitError{Code: exitUsage, Err: err}
@@ -137,11 +169,11 @@ func scaleVoltages(c *capture.Capture, factor float64) {
 }
 
 // deliver files and prints what was found in source number i, and returns its exit code.
-func (j *job) deliver(r *report.RingDown, page *output, i int) (int, error) {
-	if r.Err != nil {
-		say(j.stderr, r.Err)
+func (j *job) deliver(r measured, page *output, i int) (int, error) {
+	if r.err != nil {
+		say(j.stderr, r.err)
 	}
-	if page != nil && r.Err == nil {
+	if page != nil && r.err == nil {
 		if err := j.file(r, page); err != nil {
 			return exitFailed, err
 		}
@@ -154,7 +186,7 @@ func (j *job) deliver(r *report.RingDown, page *output, i int) (int, error) {
 }
 
 // file writes the page of evidence.
-func (j *job) file(r *report.RingDown, page *output) error {
+func (j *job) file(r measured, page *output) error {
 	out := bufio.NewWriter(page)
 	if err := r.WritePage(out); err != nil {
 		return err
@@ -172,18 +204,18 @@ func (j *job) file(r *report.RingDown, page *output) error {
 }
 
 // print writes the result to out.
-func (j *job) print(out io.Writer, r *report.RingDown, i int) error {
+func (j *job) print(out io.Writer, r measured, i int) error {
 	if j.json {
 		return r.WriteJSON(out)
 	}
-	if r.Err != nil || j.quiet && !j.explain {
+	if r.err != nil || j.quiet && !j.explain {
 		return nil
 	}
 	if i > 0 {
 		fmt.Fprintln(out)
 	}
 	if j.explain {
-		if err := r.Capture.Explain(out); err != nil {
+		if err := r.explain(out); err != nil {
 			return err
 		}
 	}
@@ -197,23 +229,23 @@ func (j *job) print(out io.Writer, r *report.RingDown, i int) error {
 }
 
 // exitCode returns what the result of one source means for the caller.
-func (j *job) exitCode(r *report.RingDown) int {
+func (j *job) exitCode(r measured) int {
 	var exit *exitError
 	var unreadable *capture.Error
 	switch {
-	case errors.As(r.Err, &exit):
+	case errors.As(r.err, &exit):
 		return exit.Code
-	case errors.As(r.Err, &unreadable):
+	case errors.As(r.err, &unreadable):
 		return exitUnreadable
-	case r.Err != nil:
+	case r.err != nil:
 		return exitFailed
 	case r.Status() == decay.Refused:
 		return exitRefused
 	case j.strict && r.Status() == decay.Doubtful:
 		return exitWarning
-	case r.Limits != nil && r.Limits.Verdict == circuit.Fail:
+	case r.limits != nil && r.limits.Verdict == circuit.Fail:
 		return exitOutside
-	case j.strict && r.Limits != nil && r.Limits.Verdict == circuit.Undecided:
+	case j.strict && r.limits != nil && r.limits.Verdict == circuit.Undecided:
 		return exitWarning
 	}
 	return exitDone

@@ -27,6 +27,7 @@ func TestScripts(t *testing.T) {
 		Cmds: map[string]func(*testscript.TestScript, bool, []string){
 			"exits":  exits,
 			"record": record,
+			"swept":  swept,
 			"link":   link,
 		},
 	})

@@ -6,23 +6,21 @@ import (
 	"runtime"
 	"runtime/debug"
 	"sync"
-
-	"dieaway/report"
 )
 
 // ahead runs measure over sources on all cores and hands the results out in the
 // order of the sources. At most as many results as there are cores are held at a
 // time: memory does not grow with the number of files.
-type ahead struct {
-	results []chan *report.RingDown
+type ahead[T any] struct {
+	results []chan T
 	slots   chan struct{}
 }
 
 // startAhead starts the work; it stops when ctx is done.
-func startAhead(ctx context.Context, sources []source, measure func(source) *report.RingDown) *ahead {
-	a := &ahead{slots: make(chan struct{}, runtime.GOMAXPROCS(0))}
+func startAhead[T any](ctx context.Context, sources []source, measure func(source) T) *ahead[T] {
+	a := &ahead[T]{slots: make(chan struct{}, runtime.GOMAXPROCS(0))}
 	for range sources {
-		a.results = append(a.results, make(chan *report.RingDown, 1))
+		a.results = append(a.results, make(chan T, 1))
 	}
 	go func() {
 		for i, s := range sources {
@@ -38,17 +36,17 @@ func startAhead(ctx context.Context, sources []source, measure func(source) *rep
 }
 
 // next returns the result of source i; ok is false when ctx is done first.
-func (a *ahead) next(ctx context.Context, i int) (r *report.RingDown, ok bool) {
+func (a *ahead[T]) next(ctx context.Context, i int) (r T, ok bool) {
 	select {
 	case r = <-a.results[i]:
 		return r, true
 	case <-ctx.Done():
-		return nil, false
+		return r, false
 	}
 }
 
 // done frees the place of a result that was delivered.
-func (a *ahead) done() { <-a.slots }
+func (a *ahead[T]) done() { <-a.slots }
 
 const (
 	deepFile     = 16 << 20 // bytes of a file that make memory dearer than time

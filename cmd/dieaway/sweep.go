@@ -1,0 +1,144 @@
+package main
+
+import (
+	"errors"
+	"slices"
+	"strings"
+
+	"github.com/urfave/cli/v2"
+
+	"dieaway/capture"
+	"dieaway/decay/circuit"
+	"dieaway/decay/driven"
+	"dieaway/report"
+)
+
+func sweepCommand() *cli.Command {
+	return &cli.Command{
+		Name:      "sweep",
+		Usage:     "measure driven sweeps: natural frequency and Q of the resonance curve",
+		UsageText: "dieaway sweep [flags] SWEEP...",
+		Description: "Reads each table of a driven sweep, or Touchstone file (\"-\" is standard input), fits the\n" +
+			"resonance in it and prints what it found. Columns are told by their names; where that is\n" +
+			"not so, name them by their heading or their number, counted from 1.",
+		Flags:           sweepFlags(),
+		Action:          sweep,
+		OnUsageError:    usageError,
+		HideHelpCommand: true, // a sweep may be named "help"
+	}
+}
+
+func sweepFlags() []cli.Flag {
+	return append([]cli.Flag{
+		&cli.StringFlag{Name: "frequency", Usage: "the `COLUMN` of the frequency"},
+		&cli.StringFlag{Name: "response", Usage: "the `COLUMN` of the response; of a Touchstone file the parameter, S21 or Z11 for example"},
+		&cli.StringFlag{Name: "reference", Usage: "the `COLUMN` of the source's voltage, measured at the circuit, which divides the response; none for no division"},
+		&cli.StringFlag{Name: "phase", Usage: "the `COLUMN` of the phase"},
+		&cli.StringFlag{Name: "across", Usage: "the `PART` that the response is measured across: " + strings.Join(sweepParts, ", ") + " (coil and capacitor together, a notch)"},
+		&cli.StringFlag{Name: "frequency-unit", Usage: "the `UNIT` of the frequency where the file does not tell: " + strings.Join(frequencyUnits, ", ")},
+		&cli.StringFlag{Name: "dwell", Usage: "the `TIME` that the source stays at each frequency before the reading"},
+		&cli.StringFlag{Name: "device", Usage: "the `NAME` of what was measured"},
+		benchFlag(),
+		&cli.BoolFlag{Name: "strict", Usage: "exit with code 6 when there is a warning", DisableDefaultText: true},
+		&cli.BoolFlag{Name: "explain", Usage: "print what was understood of the file before the result", DisableDefaultText: true},
+	}, outputFlags()...)
+}
+
+var (
+	sweepParts     = []string{string(capture.Capacitor), string(capture.Inductor), string(capture.Resistor), string(capture.Both)}
+	frequencyUnits = []string{"Hz", "kHz", "MHz", "GHz"}
+)
+
+// A sweepJob is a job over sweeps instead of captures.
+type sweepJob struct {
+	*job
+	table  capture.SweepOptions
+	driven driven.Options
+}
+
+func sweep(c *cli.Context) error {
+	j, err := parseSweepJob(c)
+	if err != nil {
+		return err
+	}
+	files := c.Args().Slice()
+	if err := checkFiles("sweep", files, j.job); err != nil {
+		return err
+	}
+	j.inputs = files
+	b, err := parseBench(c)
+	if err != nil {
+		return err
+	}
+	j.useSweepBench(b)
+	for _, name := range files {
+		j.sources = append(j.sources, source{name: name})
+	}
+	return j.runAll(c.Context, "sweeps", j.measure)
+}
+
+func parseSweepJob(c *cli.Context) (*sweepJob, error) {
+	base, err := parseJob(c)
+	if err != nil {
+		return nil, err
+	}
+	j := &sweepJob{job: base}
+	j.table = capture.SweepOptions{Frequency: c.String("frequency"), Response: c.String("response"),
+		Reference: c.String("reference"), Phase: c.String("phase"), FrequencyUnit: c.String("frequency-unit")}
+	for _, name := range []string{"frequency", "response", "reference", "phase", "across"} {
+		if c.IsSet(name) && c.String(name) == "" {
+			return nil, usagef("--%s is empty", name)
+		}
+	}
+	if c.IsSet("frequency-unit") && !slices.Contains(frequencyUnits, j.table.FrequencyUnit) {
+		return nil, usagef("--frequency-unit %s: expected one of %s", j.table.FrequencyUnit, strings.Join(frequencyUnits, ", "))
+	}
+	if across := c.String("across"); across != "" {
+		if !slices.Contains(sweepParts, across) {
+			return nil, usagef("--across %s: expected one of %s", across, strings.Join(sweepParts, ", "))
+		}
+		j.driven.Across = capture.Part(across)
+	}
+	dwell, err := parseTime(c, "dwell")
+	if err != nil {
+		return nil, err
+	}
+	if dwell != nil {
+		if *dwell <= 0 {
+			return nil, usagef("--dwell %s: expected a time greater than zero", c.String("dwell"))
+		}
+		j.driven.Dwell = *dwell
+	}
+	return j, nil
+}
+
+// useSweepBench takes from the bench file what it says of the sweep.
+func (j *sweepJob) useSweepBench(b *circuit.Bench) {
+	j.useBench(b)
+	if b == nil {
+		return
+	}
+	j.driven.TimebaseU = b.Sweep.TimebaseU
+	if b.Sweep.MeterBandwidth.Known() {
+		j.driven.MeterBandwidth = b.Sweep.MeterBandwidth.Value
+	}
+}
+
+// measure reads and analyses one sweep; what is wrong with it is in its err.
+func (j *sweepJob) measure(s source) measured {
+	r := &report.Sweep{File: s.name, Device: j.device, Origin: j.origin}
+	var err error
+	if s.name == "-" {
+		r.Table, err = capture.ReadSweep(j.stdin, "-", j.table)
+	} else {
+		r.Table, err = capture.ReadSweepFile(s.name, j.table)
+	}
+	if errors.Is(err, capture.ErrNoColumn) {
+		err = &exitError{Code: exitUsage, Err: err}
+	}
+	if r.Err = err; err != nil {
+		return measured{evidence: r, err: err}
+	}
+	r.Result = driven.Analyze(r.Table, j.driven)
+	return measured{evidence: r, explain: r.Table.Explain}
+}
