@@ -71,3 +71,67 @@ func TestBoundIsExact(t *testing.T) {
 		})
 	}
 }
+
+// TestProspects: the bound of a record that was never made is that of the exact
+// vectors (METHODS A3, derived) at their natural frequency and Q.
+func TestProspects(t *testing.T) {
+	for _, v := range vectors {
+		alpha := 1 / (2 * math.Pi * v.tau)
+		p := Prospect{NaturalFrequency: math.Hypot(v.fd, alpha), Amplitude: v.amp, Noise: v.sigma, Phase: v.phi, Interval: 1 / v.rate, Samples: v.n}
+		p.Q = math.Pi * p.NaturalFrequency * v.tau
+		q, err := p.Bound()
+		if err != nil {
+			t.Fatalf("%s: %v", v.name, err)
+		}
+		near(t, v.name+" fd", q.DampedFrequency.Value, v.fd, 1e-12)
+		near(t, v.name+" sd(fd)", q.DampedFrequency.U, v.sdF, 1e-6)
+		near(t, v.name+" sd(tau)", q.TimeConstant.U, v.sdTau, 1e-6)
+		near(t, v.name+" sd(Q)", q.Q.U, v.sdQ, 1e-6)
+	}
+}
+
+// TestProspectWindows: what a shorter record costs at a fixed sample rate and at a
+// fixed number of samples (METHODS A2, derived, for many cycles and samples).
+func TestProspectWindows(t *testing.T) {
+	const f0, q, rate = 1e5, 1e4, 1.7e6
+	tau := q / (math.Pi * f0)
+	u := func(length, interval float64) float64 {
+		p := Prospect{NaturalFrequency: f0, Q: q, Amplitude: 1, Noise: 0.01, Interval: interval, Samples: int(length * tau / interval)}
+		b, err := p.Bound()
+		if err != nil {
+			t.Fatal(err)
+		}
+		return b.TimeConstant.U
+	}
+	whole, best := u(20, 1/rate), math.Inf(1)
+	const n = 400000
+	at := func(length float64) float64 { return u(length, length*tau/n) }
+	for length := 1.8; length < 2.3; length += 0.01 {
+		best = math.Min(best, at(length))
+	}
+	for _, w := range []struct{ length, f, g float64 }{
+		{1, 2.04725, 1.19655}, {1.5, 1.44541, 1.03466}, {2, 1.20986, 1.00003}, {2.5, 1.10185, 1.01825}, {3, 1.04940, 1.06234},
+		{4, 1.01109, 1.18190}, {5, 1.00230, 1.30992}, {8, 1.00001, 1.65315},
+	} {
+		near(t, "F", u(w.length, 1/rate)/whole, w.f, 2e-4)
+		near(t, "G", at(w.length)/best, w.g, 2e-4)
+	}
+}
+
+// TestProspectOfNothing: what cannot be measured has no bound.
+func TestProspectOfNothing(t *testing.T) {
+	good := Prospect{NaturalFrequency: 1e5, Q: 10, Amplitude: 1, Noise: 0.01, Interval: 1e-6, Samples: 1000}
+	for name, spoil := range map[string]func(p *Prospect){
+		"critical":        func(p *Prospect) { p.Q = 0.5 },
+		"above half rate": func(p *Prospect) { p.Interval = 6e-6 },
+		"no noise":        func(p *Prospect) { p.Noise = 0 },
+		"no amplitude":    func(p *Prospect) { p.Amplitude = math.NaN() },
+		"no samples":      func(p *Prospect) { p.Samples = 3 },
+	} {
+		p := good
+		spoil(&p)
+		if _, err := p.Bound(); err == nil {
+			t.Errorf("%s: no error", name)
+		}
+	}
+}

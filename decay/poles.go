@@ -141,13 +141,20 @@ func (p *poles) isRing(k int) bool { return k < p.rings }
 
 // uniformGram sums over uniform samples, gaps included.
 func (p *poles) uniformGram(list []pole) gram {
+	g := p.innerProducts(list, p.s.len())
+	g.b[0] = p.y
+	for k, z := range list {
+		p.putProjection(&g, k, projectAll(p.s.y, z, p.ref))
+	}
+	return g
+}
+
+// innerProducts returns those of the basis over n uniform samples.
+func (p *poles) innerProducts(list []pole, n int) gram {
 	var g gram
-	n := p.s.len()
 	g.g.n = p.slot(len(list))
 	g.g.set(0, 0, float64(n))
-	g.b[0] = p.y
 	for k, zk := range list {
-		p.putProjection(&g, k, projectAll(p.s.y, zk, p.ref))
 		one := geometric(zk, n)
 		p.putPair(&g, k, -1, one, one)
 		for l, zl := range list[:k+1] {
