@@ -54,12 +54,12 @@ func (j *job) source(name string) source {
 }
 
 // A measured is one file with its result, and what is needed to deliver it: the
-// same for ring-downs and sweeps.
+// same for ring-downs, sweeps and cross-checks.
 type measured struct {
 	evidence
 	err     error // why there is no result
 	explain func(io.Writer) error
-	limits  *circuit.Judgement // nil without
+	verdict circuit.Verdict // on limits or agreement, "" without
 }
 
 // The evidence is a result as package report shows it.
@@ -72,11 +72,18 @@ type evidence interface {
 
 // ofRingDown is a ring-down to deliver.
 func ofRingDown(r *report.RingDown) measured {
-	m := measured{evidence: r, err: r.Err, limits: r.Limits}
+	m := measured{evidence: r, err: r.Err, verdict: verdictOf(r.Limits)}
 	if r.Capture != nil {
 		m.explain = r.Capture.Explain
 	}
 	return m
+}
+
+func verdictOf(j *circuit.Judgement) circuit.Verdict {
+	if j == nil {
+		return ""
+	}
+	return j.Verdict
 }
 
 // run measures the free decay in all sources.
@@ -243,9 +250,9 @@ func (j *job) exitCode(r measured) int {
 		return exitRefused
 	case j.strict && r.Status() == decay.Doubtful:
 		return exitWarning
-	case r.limits != nil && r.limits.Verdict == circuit.Fail:
+	case r.verdict == circuit.Fail:
 		return exitOutside
-	case j.strict && r.limits != nil && r.limits.Verdict == circuit.Undecided:
+	case j.strict && r.verdict == circuit.Undecided:
 		return exitWarning
 	}
 	return exitDone

@@ -124,8 +124,18 @@ func (j *sweepJob) useSweepBench(b *circuit.Bench) {
 	}
 }
 
-// measure reads and analyses one sweep; what is wrong with it is in its err.
+// measure is one sweep to deliver.
 func (j *sweepJob) measure(s source) measured {
+	r := j.sweep(s)
+	m := measured{evidence: r, err: r.Err}
+	if r.Table != nil {
+		m.explain = r.Table.Explain
+	}
+	return m
+}
+
+// sweep reads and analyses one sweep; what is wrong with it is in its Err.
+func (j *sweepJob) sweep(s source) *report.Sweep {
 	r := &report.Sweep{File: s.name, Device: j.device, Origin: j.origin}
 	var err error
 	if s.name == "-" {
@@ -137,8 +147,8 @@ func (j *sweepJob) measure(s source) measured {
 		err = &exitError{Code: exitUsage, Err: err}
 	}
 	if r.Err = err; err != nil {
-		return measured{evidence: r, err: err}
+		return r
 	}
 	r.Result = driven.Analyze(r.Table, j.driven)
-	return measured{evidence: r, explain: r.Table.Explain}
+	return r
 }

@@ -1,0 +1,84 @@
+package main
+
+import (
+	"fmt"
+	"slices"
+
+	"github.com/urfave/cli/v2"
+
+	"dieaway/decay/circuit"
+	"dieaway/report"
+)
+
+func crosscheckCommand() *cli.Command {
+	return &cli.Command{
+		Name:      "crosscheck",
+		Usage:     "hold a ring-down and a driven sweep of one circuit against each other",
+		UsageText: "dieaway crosscheck [flags] CAPTURE SWEEP",
+		Description: "Measures both, compares natural frequency, Q, damping ratio and bandwidth, and says where\n" +
+			"differences come from. With a bench file source and probe of both set-ups are taken out\n" +
+			"and the loss is told apart. The exit code is 5 when they disagree. Flags are those of fit\n" +
+			"and of sweep.",
+		Flags:           crosscheckFlags(),
+		Action:          crosscheck,
+		OnUsageError:    usageError,
+		HideHelpCommand: true,
+	}
+}
+
+// crosscheckFlags are those of fit and of sweep, each once.
+func crosscheckFlags() []cli.Flag {
+	flags := without(fitFlags(), "explain")
+	for _, f := range without(sweepFlags(), "explain") {
+		if !slices.ContainsFunc(flags, func(g cli.Flag) bool { return g.Names()[0] == f.Names()[0] }) {
+			flags = append(flags, f)
+		}
+	}
+	return flags
+}
+
+func crosscheck(c *cli.Context) error {
+	j, err := parseSweepJob(c)
+	if err != nil {
+		return err
+	}
+	files := c.Args().Slice()
+	if len(files) != 2 {
+		return usagef("expected a capture and a sweep, found %d files: `dieaway crosscheck CAPTURE SWEEP`", len(files))
+	}
+	// One page holds both.
+	if err := checkFiles("capture", files, &job{}); err != nil {
+		return err
+	}
+	j.inputs = files
+	b, err := parseBench(c)
+	if err != nil {
+		return err
+	}
+	j.useSweepBench(b)
+	j.sources = []source{j.source(files[0])}
+	return j.runAll(c.Context, "captures", func(s source) measured { return j.crosscheck(s, source{name: files[1]}) })
+}
+
+// crosscheck measures both files and compares them.
+func (j *sweepJob) crosscheck(ring, sweep source) measured {
+	r := &report.CrossCheck{RingDown: j.ringDown(ring), Sweep: j.sweep(sweep), Device: j.device, Origin: j.origin}
+	m := measured{evidence: r}
+	switch a, b := r.RingDown.Err, r.Sweep.Err; {
+	case a != nil && b != nil:
+		m.err = fmt.Errorf("%w; %w", a, b)
+	case a != nil:
+		m.err = a
+	case b != nil:
+		m.err = b
+	}
+	if m.err != nil {
+		return m
+	}
+	r.Check = circuit.Compare(j.bench, r.RingDown.Result, r.Sweep.Result)
+	m.verdict = verdictOf(r.RingDown.Limits)
+	if r.Check.Compared() && !r.Check.Agrees {
+		m.verdict = circuit.Fail
+	}
+	return m
+}
