@@ -19,6 +19,7 @@ type gate struct {
 
 const (
 	seedsTried     = 4       // per onset
+	coreCycles     = 16      // cycles of a first fit, however many samples they take
 	coreMost       = 1 << 15 // samples of a first fit
 	deepWindow     = 1 << 16 // samples from which a gate grows fourfold
 	tailLimit      = 12      // time constants after which nothing is left to learn
@@ -105,9 +106,11 @@ func firstFit(s series, p *pyramid, fixedStart bool) (gate, bool) {
 	if math.IsInf(least, 1) {
 		return best, false
 	}
-	f, ok := fitRing(s.slice(best.first, min(best.last, best.first+coreMost)), best.fit.a, best.fit.w, coarse)
+	core := max(coreMost, int(math.Min(coreCycles*best.fit.period(), float64(s.len()))))
+	best.last = min(best.last, best.first+core)
+	f, ok := fitRing(s.slice(best.first, best.last), best.fit.a, best.fit.w, coarse)
 	if ok {
-		best.fit, best.last = f, min(best.last, best.first+coreMost)
+		best.fit = f
 	}
 	return best, ok
 }
