@@ -64,6 +64,7 @@ func TestSweepColumns(t *testing.T) {
 		{name: "a ratio already", text: rowsOf("f,V_S,V_C/V_S\n", "1,2,5", "2,3,6"), f: "1 2", m: "5 6", part: Capacitor},
 		{name: "peak to peak over rms", text: rowsOf("f,V_S rms,out (pp)\n", "1,1,2.828427125", "2,2,6"), f: "1 2", m: "2.8284 6", reference: "2.8284 5.6569"},
 		{name: "units in the cells", text: rowsOf("f,out\n", "1 kHz,20 mV", "1.5 kHz,30 mV"), f: "1000 1500", m: "0.02 0.03"},
+		{name: "parts in words", text: rowsOf("frequency (kHz),source V_S (V),coil V_L (V)\n", "124,1.5,3", "125,2.5,4"), f: "1.24e+05 1.25e+05", m: "3 4", reference: "1.5 2.5", part: Inductor},
 		{name: "unsorted, repeated", text: rowsOf("f,out\n", "3,1", "1,2", "1,2.5"), f: "3 1", m: "1 2"},
 	} {
 		t.Run(w.name, func(t *testing.T) {

@@ -29,15 +29,28 @@ var partWords = map[Part][]string{
 	Both:      {"vlc", "ulc", "notch"},
 }
 
-// partOf is the part that a name says; of a ratio its numerator counts.
+// partOf is the part that a name says; of a ratio its numerator counts. It may
+// be one word of the name ("capacitor voltage") or its last ("coil V_L").
 func partOf(name string) Part {
-	w := bareName(name)
-	for part, names := range partWords {
-		if slices.Contains(names, w) {
-			return part
+	for _, part := range []Part{Both, Capacitor, Inductor, Resistor} {
+		for i, w := range nameWords(name) {
+			if slices.Contains(partWords[part], w) && (i == 0 || len(w) > 1) {
+				return part
+			}
 		}
 	}
 	return ""
+}
+
+// nameWords are the folded name as a whole, its words, and neighbours of them
+// joined, so that "source V_S" holds "vs".
+func nameWords(name string) []string {
+	all := words(strings.SplitN(name, "/", 2)[0])
+	out := append([]string{bareName(name)}, all...)
+	for i := 1; i < len(all); i++ {
+		out = append(out, all[i-1]+all[i])
+	}
+	return out
 }
 
 // bareName is the folded name without the denominator of a ratio and without
@@ -49,7 +62,7 @@ func bareName(name string) string {
 
 // nameSays reports a name with a word for the role. "V_C" counts as "vc" too.
 func nameSays(name string, r Role) bool {
-	return slices.ContainsFunc(append(words(name), bareName(name)), func(w string) bool { return slices.Contains(sweepWords[r], w) })
+	return slices.ContainsFunc(nameWords(name), func(w string) bool { return slices.Contains(sweepWords[r], w) })
 }
 
 // isRatio reports a name for something that was divided by the source already.

@@ -18,7 +18,7 @@ func fitPart(d *rows, part capture.Part) (*fitted, bool) {
 	var best *fitted
 	for _, c := range starts(d, part) {
 		s := newState(c, d)
-		v := noise{relative: d.decibels, relativeAcross: d.decibels}
+		v := d.firstNoise()
 		s.robust(d, &v)
 		if l := s.likelihood(d, v); finite(l) && (best == nil || l > best.likelihood) {
 			best = &fitted{state: s, noise: v, likelihood: l}

@@ -107,6 +107,24 @@ func TestWeights(t *testing.T) {
 	}
 }
 
+// A source that sags to a third at the resonance: the noise of the ratio is largest
+// there, and the intervals hold all the same.
+func TestNoiseOfRatio(t *testing.T) {
+	s := scene{l: 1.62e-3, c: 1e-9, resistor: 30, source: 50, across: capture.Capacitor, reference: true, noise: 0.02, referenceNoise: 0.002}
+	s = s.span(81, 4)
+	const n = 60
+	inside := 0
+	for seed := range uint64(n) {
+		r := Analyze(s.sweep(newRand(300+seed)), Options{Across: capture.Capacitor})
+		if q := r.Quantities.Q; math.Abs(q.Value-s.q()) < 1.96*q.U {
+			inside++
+		}
+	}
+	if inside < 52 { // 57 of 60 are expected
+		t.Errorf("%d of %d intervals hold Q", inside, n)
+	}
+}
+
 // Order and repetition of the rows do not matter.
 func TestOrder(t *testing.T) {
 	s := loop07(25)

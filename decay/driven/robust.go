@@ -7,13 +7,55 @@ import (
 	"dieaway/capture"
 )
 
-// noise says how the scatter of the rows goes with the response, and how large
-// it is. Its unit, the scatter where weight one stands, is along and across.
+// A kind says how the scatter of the rows goes with the response.
+type kind int
+
+const (
+	constant     kind = iota
+	proportional      // to the response, as of readings in dB, or of few digits on changing ranges
+	divided           // of a voltage and a reference that scatter alike, after the division
+)
+
+// noise is the scatter of magnitude (along the curve) and of phase (across it):
+// its kind, and how large it is where the shape of the kind is one.
 type noise struct {
-	// relative is true for a scatter in proportion to the response, as readings in
-	// dB or of few digits on changing ranges have it, for magnitude and phase.
-	relative, relativeAcross bool
-	along, across            float64
+	kindAlong, kindAcross kind
+	along, across         float64
+}
+
+// firstNoise is the kind to begin with.
+func (d *rows) firstNoise() noise {
+	switch {
+	case d.decibels:
+		return noise{kindAlong: proportional, kindAcross: proportional}
+	case d.reference != nil:
+		return noise{kindAlong: divided, kindAcross: divided}
+	}
+	return noise{}
+}
+
+// otherNoises are the kinds that may be likelier than v.
+func (d *rows) otherNoises(v noise) (out []noise) {
+	kinds := []kind{constant, proportional}
+	if d.reference != nil {
+		kinds = append(kinds, divided)
+	}
+	for _, along := range kinds {
+		for _, across := range kinds {
+			o := noise{kindAlong: along, kindAcross: across}
+			if d.dev != nil {
+				o.kindAlong = v.kindAlong // stated: nothing to choose
+			}
+			if d.phi == nil || d.cartesian {
+				o.kindAcross = o.kindAlong
+			}
+			if o.kindAlong == v.kindAlong && (o.kindAcross == v.kindAcross || d.phi == nil) || slices.Contains(out, o) {
+				continue
+			}
+			out = append(out, o)
+		}
+	}
+	return out
 }
 
 // scaleFloor is the least response, as a part of the greatest, that a scatter in
@@ -29,14 +71,17 @@ func (s *state) shapes(d *rows, v noise) (along, across []float64) {
 		size[i] = s.gain * s.size(f)
 	}
 	floor := scaleFloor * slices.Max(size)
-	shape := func(relative bool, i int) float64 {
-		if relative {
+	shape := func(k kind, i int) float64 {
+		switch k {
+		case proportional:
 			return math.Max(size[i], floor)
+		case divided: // u^2(V/R) = u^2 (1 + (V/R)^2)/R^2
+			return math.Hypot(1, size[i]) / d.reference[i]
 		}
 		return 1
 	}
 	for i := range d.f {
-		along[i], across[i] = shape(v.relative, i), shape(v.relativeAcross, i)
+		along[i], across[i] = shape(v.kindAlong, i), shape(v.kindAcross, i)
 		if d.dev != nil {
 			along[i] = d.dev[i]
 		}
@@ -90,22 +135,22 @@ const finest = 1e-9
 
 // atLeast keeps the factors of the noise above rounding.
 func (v *noise) atLeast(d *rows) {
-	v.along = math.Max(v.along, d.rounding(v.relative))
+	v.along = math.Max(v.along, d.rounding(v.kindAlong))
 	if d.phi != nil {
-		v.across = math.Max(v.across, d.rounding(v.relativeAcross))
+		v.across = math.Max(v.across, d.rounding(v.kindAcross))
 	}
 }
 
 // rounding is the least factor of the noise.
-func (d *rows) rounding(relative bool) float64 {
-	if relative || d.dev != nil {
+func (d *rows) rounding(k kind) float64 {
+	if k == proportional || d.dev != nil {
 		return finest
 	}
 	return finest * slices.Max(d.m)
 }
 
 // computed reports rows without noise, of which no kind of noise can be told.
-func (v *noise) computed(d *rows) bool { return v.along <= 2*d.rounding(v.relative) }
+func (v *noise) computed(d *rows) bool { return v.along <= 2*d.rounding(v.kindAlong) }
 
 // tukey is the square root of the weight of Tukey's biweight at a residual of r
 // standard deviations (Beaton and Tukey 1974, Technometrics 16:147, from memory);
@@ -181,17 +226,15 @@ const noiseGain = 5
 
 // fitRobustly fits from a start with the kind of noise that is likeliest.
 func fitRobustly(start state, d *rows) (state, noise) {
-	s, v := start, noise{relative: d.decibels, relativeAcross: d.decibels}
+	s, v := start, d.firstNoise()
 	s.robust(d, &v)
-	if v.computed(d) || d.dev != nil && (d.phi == nil || d.cartesian) {
-		return s, v
+	if v.computed(d) {
+		return s, v // no noise: nothing to choose
 	}
 	best := s.likelihood(d, v)
-	for _, other := range []noise{{relative: !v.relative, relativeAcross: v.relativeAcross}, {relative: v.relative, relativeAcross: !v.relativeAcross}, {relative: !v.relative, relativeAcross: !v.relativeAcross}} {
-		if d.dev != nil && other.relative != v.relative || (d.phi == nil || d.cartesian) && other.relativeAcross != v.relativeAcross {
-			continue
-		}
-		t, u := s, other
+	first := s
+	for _, other := range d.otherNoises(v) {
+		t, u := first, other
 		t.robust(d, &u)
 		if l := t.likelihood(d, u); l > best+noiseGain && !u.computed(d) {
 			s, v, best = t, u, l
@@ -226,7 +269,7 @@ func (f *fitted) finish(d *rows) {
 		for range 3 {
 			f.iterations += f.descend(d, f.plain(d), stepsMost)
 			f.rms(d)
-			if !f.noise.relative && !f.noise.relativeAcross {
+			if f.noise.kindAlong == constant && f.noise.kindAcross == constant {
 				break // the weights do not follow the curve
 			}
 		}

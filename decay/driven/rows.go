@@ -16,6 +16,8 @@ type rows struct {
 	phi  []float64 // rad, nil without phase
 	dev  []float64 // stated standard deviation of m, nil when none is
 	from []int     // row of the sweep
+	// reference is the voltage that m was divided by, nil for none.
+	reference []float64
 	// cartesian: real and imaginary part scatter alike. decibels: the scatter is
 	// at first taken to be in proportion to the magnitude. ratio: m is a part of
 	// the source's voltage.
@@ -52,7 +54,7 @@ func newRows(s *capture.Sweep, opt Options) *rows {
 		d.correctMeter(opt.MeterBandwidth)
 	}
 	if m := slices.Max(append(d.m, 0)); d.dev == nil && !(m > 0) {
-		d.from, d.f, d.m, d.phi = nil, nil, nil, nil // no response at all
+		d.from, d.f, d.m, d.phi, d.reference = nil, nil, nil, nil, nil // no response at all
 	}
 	return d
 }
@@ -64,6 +66,7 @@ func (d *rows) divide(reference []float64) {
 	if reference == nil {
 		return
 	}
+	d.reference = reference
 	for i, v := range reference {
 		d.scale(i, 1/v)
 	}

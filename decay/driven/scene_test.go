@@ -12,18 +12,19 @@ import (
 // A scene is a whole series circuit and how it was swept. Its responses come from
 // impedances, not from the form that is fitted.
 type scene struct {
-	l, c        float64 // H, F
-	resistor    float64 // ohm, fitted
-	coil        float64 // ohm, of the coil
-	source      float64 // ohm, of the source
-	across      capture.Part
-	frequencies []float64
-	noise       float64 // standard deviation, in parts of the source's voltage
-	relative    bool    // noise in proportion to the response
-	phase       bool    // phase too: noise of both parts alike
-	phaseOffset float64 // rad
-	conjugate   bool    // phase counted the other way
-	reference   bool    // the voltage at the circuit is measured, and divides out the source
+	l, c           float64 // H, F
+	resistor       float64 // ohm, fitted
+	coil           float64 // ohm, of the coil
+	source         float64 // ohm, of the source
+	across         capture.Part
+	frequencies    []float64
+	noise          float64 // standard deviation, in parts of the source's voltage
+	relative       bool    // noise in proportion to the response
+	phase          bool    // phase too: noise of both parts alike
+	phaseOffset    float64 // rad
+	conjugate      bool    // phase counted the other way
+	referenceNoise float64
+	reference      bool // the voltage at the circuit is measured, and divides out the source
 }
 
 // loop07 is a loop antenna of a tag reader with the given Q, at about 125 kHz.
@@ -80,7 +81,7 @@ func (s scene) sweep(rng *rand.Rand) *capture.Sweep {
 		}
 		out.Frequency = append(out.Frequency, f)
 		if s.reference {
-			out.Reference = append(out.Reference, cmplx.Abs(at))
+			out.Reference = append(out.Reference, cmplx.Abs(at)+s.referenceNoise*rng.NormFloat64())
 		}
 		if !s.phase {
 			out.Magnitude = append(out.Magnitude, math.Abs(cmplx.Abs(v)+sigma*rng.NormFloat64()))
