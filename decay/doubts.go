@@ -39,6 +39,11 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 			fmt.Sprintf("The ring starts at only %.1f times the noise (%.1f dB).", math.Pow(10, d.SNR/20), d.SNR),
 			"Shock harder, use a smaller vertical range, or average several decays."))
 	}
+	if q.Q.Value-0.5 < decaySigma*q.Q.U {
+		out = append(out, warning(capture.NearCritical,
+			fmt.Sprintf("Q is %s: the record does not tell whether the circuit swings at all.", q.Q),
+			"Natural frequency and damping ratio stand; the damped frequency does not."))
+	}
 	if spc := g.fit.period(); spc < sparse {
 		out = append(out, warning(capture.SparseSamples,
 			fmt.Sprintf("Only %.3g samples fall on a cycle: a faster ring would look the same (aliasing).", spc),
