@@ -198,3 +198,28 @@ func TestTransient(t *testing.T) {
 		}
 	}
 }
+
+// TestExplanations: what the two measurements found of themselves is told where it
+// explains a difference. Across the coil the peak lies above f0, at f0/sqrt(1 -
+// 1/(2Q^2)) (derived): 511 ppm at Q = 22.135.
+func TestExplanations(t *testing.T) {
+	p := readerSweep()
+	p.rc = 42
+	r, resonance := physicalResult(&p)
+	r.Findings = []decay.Finding{{Code: capture.AmplitudeDependent, Severity: capture.Warning}}
+	r.Decays = []*decay.Decay{{AtStart: &decay.AtStart{Q: quantity.New(15, 0.2, "")}}}
+	w := swept(&p, 1e-4)
+	w.Across = capture.Inductor
+	q := resonance.Q()
+	w.Quantities.PeakFrequency.Value = resonance.NaturalFrequency / math.Sqrt(1-1/(2*q*q))
+	w.Findings = []decay.Finding{{Code: capture.SweptTooFast, Severity: capture.Warning, Message: "The rate is 0.3 bandwidths squared."}}
+	text := strings.Join(Compare(p.bench(p), r, w).Explanations, "\n")
+	for _, want := range []string{
+		"The loss depends on the amplitude, and the two ran at different amplitudes: the ring-down has a Q of 15.00(20) in its first cycle and 22.",
+		"The sweep was too fast, which widens the curve and lowers its Q: The rate is 0.3 bandwidths squared.\n",
+		"The voltage across the coil is greatest 511 ppm above f0"} {
+		if !strings.Contains(text, want) {
+			t.Errorf("no %q in:\n%s", want, text)
+		}
+	}
+}
