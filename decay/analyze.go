@@ -177,7 +177,7 @@ func (a *analysis) notRinging(r *Result, why Finding) *Result {
 }
 
 // AnalyzeCapture analyses the channel of c that rings: the only one, or the one
-// whose decay is known best; one that is named as the source is taken only where
+// whose decay stands out most from its noise; one that is named as the source is taken only where
 // no other rings nearly as well. It returns the channel it chose.
 func AnalyzeCapture(c *capture.Capture, opt Options) (*capture.Channel, *Result) {
 	var channel *capture.Channel
@@ -211,12 +211,12 @@ func isSource(name string) bool {
 }
 
 // prominence ranks the channels of one capture: a measured decay before a refused
-// one, then by how well its rate is known.
+// one, then by amplitude over noise.
 func (r *Result) prominence() float64 {
 	if r.Quantities == nil {
 		return -1
 	}
-	return 1 / r.Quantities.DecayRate.Relative()
+	return math.Pow(10, r.Decays[r.Best].SNR/20)
 }
 
 // limits turns the overrides of the gate into sample indices.
