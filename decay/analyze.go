@@ -177,15 +177,16 @@ func (a *analysis) notRinging(r *Result, why Finding) *Result {
 }
 
 // AnalyzeCapture analyses the channel of c that rings: the only one, or the one
-// whose decay stands out most from its noise; one that is named as the source is taken only where
+// whose ring is largest; one that is named as the source is taken only where
 // no other rings nearly as well. It returns the channel it chose.
 func AnalyzeCapture(c *capture.Capture, opt Options) (*capture.Channel, *Result) {
 	var channel *capture.Channel
 	var best *Result
 	most := 0.0
+	oneUnit := !slices.ContainsFunc(c.Channels, func(ch *capture.Channel) bool { return ch.Unit != c.Channels[0].Unit })
 	for _, ch := range c.Channels {
 		r := Analyze(ch, opt)
-		p := r.prominence()
+		p := r.prominence(oneUnit)
 		if isSource(ch.Name) {
 			p *= sourceShare
 		}
@@ -211,12 +212,17 @@ func isSource(name string) bool {
 }
 
 // prominence ranks the channels of one capture: a measured decay before a refused
-// one, then by amplitude over noise.
-func (r *Result) prominence() float64 {
+// one, then by the amplitude of the ring, or, where the channels differ in unit,
+// by amplitude over noise.
+func (r *Result) prominence(oneUnit bool) float64 {
 	if r.Quantities == nil {
 		return -1
 	}
-	return math.Pow(10, r.Decays[r.Best].SNR/20)
+	d := r.Decays[r.Best]
+	if oneUnit && d.Amplitude.Known() {
+		return d.Amplitude.Value
+	}
+	return math.Pow(10, d.SNR/20)
 }
 
 // limits turns the overrides of the gate into sample indices.
