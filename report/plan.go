@@ -1,0 +1,203 @@
+package report
+
+import (
+	"fmt"
+	"io"
+	"math"
+
+	"dieaway/capture"
+	"dieaway/decay"
+	"dieaway/decay/circuit"
+	"dieaway/decay/plan"
+	"dieaway/decay/quantity"
+)
+
+// schemaPlan names the form of the JSON; scripts depend on it.
+const schemaPlan = "dieaway.plan.v1"
+
+// Plan shows what to set on a scope.
+type Plan struct{ *plan.Plan }
+
+// Status is refused when the wish cannot be met.
+func (p Plan) Status() decay.Status {
+	if !p.Met {
+		return decay.Refused
+	}
+	return statusOf(decay.Good, p.Findings)
+}
+
+type jsonPlan struct {
+	Schema       string            `json:"schema"`
+	Status       decay.Status      `json:"status"`
+	Met          bool              `json:"met"`
+	Want         number            `json:"want_relative_u_q"`
+	Natural      number            `json:"natural_frequency_hz"`
+	Q            number            `json:"q"`
+	jsonSetting                    // of the setting to use
+	Pretrigger   number            `json:"pretrigger_s"`
+	Settle       number            `json:"source_settling_s"`
+	Edge         number            `json:"source_fall_most_s"`
+	Loading      *jsonForecast     `json:"loading"`
+	Alternatives []jsonAlternative `json:"alternatives"`
+	Findings     []capture.Finding `json:"findings"`
+}
+
+type jsonSetting struct {
+	Record    number        `json:"record_s"`
+	Rate      number        `json:"sample_rate_hz"`
+	Samples   int           `json:"samples"`
+	Averages  int           `json:"averages"`
+	FullScale number        `json:"full_scale_v"`
+	Noise     number        `json:"noise_v"`
+	Expected  *jsonExpected `json:"expected"`
+}
+
+type jsonExpected struct {
+	Q               jsonRelative `json:"q"`
+	TimeConstant    jsonRelative `json:"time_constant_s"`
+	DampedFrequency jsonRelative `json:"damped_frequency_hz"`
+}
+
+type jsonRelative struct {
+	Value    number `json:"value"`
+	Relative number `json:"relative_u"`
+}
+
+type jsonAlternative struct {
+	Verdict string `json:"verdict"`
+	Change  string `json:"change"`
+	Reason  string `json:"reason"`
+	jsonSetting
+}
+
+type jsonForecast struct {
+	Free   jsonResonance `json:"by_itself"`
+	Source jsonResonance `json:"with_source"`
+	Probe  jsonResonance `json:"with_probe"`
+	Loaded jsonResonance `json:"with_both"`
+}
+
+type jsonResonance struct {
+	NaturalFrequency number `json:"natural_frequency_hz"`
+	Q                number `json:"q"`
+}
+
+// WriteJSON writes the plan as one line of JSON, schema dieaway.plan.v1.
+func (p Plan) WriteJSON(w io.Writer) error {
+	out := &jsonPlan{Schema: schemaPlan, Status: p.Status(), Met: p.Met, Want: number(p.Wish.Want),
+		Natural: number(p.Ring.NaturalFrequency), Q: number(p.Ring.Q()), jsonSetting: settingJSON(&p.Setting),
+		Pretrigger: number(p.Setting.Pretrigger()), Settle: number(p.Settle), Edge: number(p.EdgeMost),
+		Alternatives: []jsonAlternative{}, Findings: append([]capture.Finding{}, p.Findings...)}
+	for _, a := range p.Alternatives {
+		out.Alternatives = append(out.Alternatives, jsonAlternative{a.Verdict, a.Change, a.Reason, settingJSON(&a.Setting)})
+	}
+	if f := p.Forecast; f != nil {
+		out.Loading = &jsonForecast{resonanceJSON(f.Free), resonanceJSON(f.Source), resonanceJSON(f.Probe), resonanceJSON(f.Loaded)}
+	}
+	return writeLine(w, out)
+}
+
+func settingJSON(s *plan.Setting) jsonSetting {
+	out := jsonSetting{Record: number(s.Record), Rate: number(s.SampleRate), Samples: s.Samples, Averages: s.Averages,
+		FullScale: number(s.FullScale), Noise: number(s.Noise)}
+	if e := s.Expected; e != nil {
+		of := func(q quantity.Quantity) jsonRelative { return jsonRelative{number(q.Value), number(q.Relative())} }
+		out.Expected = &jsonExpected{of(e.Q), of(e.TimeConstant), of(e.DampedFrequency)}
+	}
+	return out
+}
+
+func resonanceJSON(r circuit.Resonance) jsonResonance {
+	return jsonResonance{number(r.NaturalFrequency), number(r.Q())}
+}
+
+// WriteSummary writes the plan for people.
+func (p Plan) WriteSummary(w io.Writer, style Style) error {
+	s := newSummary(w, style)
+	s.status(p.Status(), p.verdict())
+	s.WriteString("\n")
+	s.item(label("the ring"), fmt.Sprintf("%s, Q %.4g, %s that falls to 1/e in %s", format(p.Ring.NaturalFrequency, "Hz"), p.Ring.Q(),
+		format(p.Wish.Amplitude, "V"), format(p.Ring.TimeConstant(), "s")))
+	s.forecast(p.Forecast)
+	if e := p.Setting.Expected; e != nil {
+		s.setting(&p.Setting)
+		s.WriteString("\n")
+		for _, row := range resultRows(e)[:4] {
+			s.quantity(row)
+		}
+	}
+	s.WriteString("\n")
+	s.item(label("source"), fmt.Sprintf("stands still for %s, then falls within %s", format2(p.Settle, "s"), format2(p.EdgeMost, "s")))
+	s.alternatives(p.Alternatives)
+	s.findings(p.Findings)
+	return s.Flush()
+}
+
+func (p Plan) verdict() string {
+	want := quantity.Percent(p.Wish.Want)
+	if !p.Met {
+		return "no setting gives Q to " + want
+	}
+	return fmt.Sprintf("this gives Q to %s or better (standard uncertainty)", want)
+}
+
+func format(x float64, unit string) string  { return quantity.Format(x, unit, 4) }
+func format2(x float64, unit string) string { return quantity.Format(x, unit, 2) }
+
+// forecast tells what source and probe do to the circuit.
+func (s *summary) forecast(f *circuit.Forecast) {
+	if f == nil {
+		return
+	}
+	for _, line := range []struct {
+		name string
+		r    circuit.Resonance
+	}{{"by itself", f.Free}, {"with source", f.Source}, {"with probe", f.Probe}} {
+		text := fmt.Sprintf("%s, Q %.4g", quantity.Format(line.r.NaturalFrequency, "Hz", 6), line.r.Q())
+		if line.r != f.Free {
+			text += fmt.Sprintf(" (%+.2g %%, %+.2g %%)", 100*(line.r.NaturalFrequency/f.Free.NaturalFrequency-1), 100*(line.r.Q()/f.Free.Q()-1))
+		}
+		s.item(label(line.name), text)
+	}
+}
+
+// setting writes what to set.
+func (s *summary) setting(set *plan.Setting) {
+	s.WriteString("\n")
+	s.item(label("record"), fmt.Sprintf("%s, of which %s before the trigger: %.2g time constants, %.3g cycles",
+		format(set.Record, "s"), format(set.Pretrigger(), "s"), set.TimeConstants, set.Cycles))
+	s.item(label("sample rate"), fmt.Sprintf("%s/s: %s, %.3g in a cycle", trimHertz(set.SampleRate), plural(set.Samples, "sample"), set.PerCycle))
+	s.item(label("averages"), averages(set.Averages))
+	s.item(label("vertical range"), fmt.Sprintf("%s, %s a division of eight; %s of noise", format(set.FullScale, "V"), format(set.FullScale/8, "V"), quantity.Format(set.Noise, "V", 3)))
+}
+
+func averages(n int) string {
+	if n == 1 {
+		return "none, a single shot"
+	}
+	return fmt.Sprint(n)
+}
+
+// trimHertz prints a rate as "10 MS".
+func trimHertz(rate float64) string {
+	s := format(rate, "Hz")
+	return s[:len(s)-len("Hz")] + "S"
+}
+
+// alternatives tabulates what else there is.
+func (s *summary) alternatives(all []plan.Alternative) {
+	if len(all) == 0 {
+		return
+	}
+	s.WriteString("\n  instead                               record    rate       samples  averages  u of Q\n")
+	for _, a := range all {
+		fmt.Fprintf(s, "  %s %s %s %s %s %8d  %s\n", pad(a.Verdict, 7), pad(a.Change, 29), pad(format(a.Record, "s"), 9), pad(trimHertz(a.SampleRate)+"/s", 10),
+			padLeft(group(a.Samples), 7), a.Averages, quantity.Percent(a.Expected.Q.Relative()))
+		s.item("          ", a.Reason)
+	}
+}
+
+// padLeft fills s with spaces on the left to n columns.
+func padLeft(s string, n int) string {
+	return fmt.Sprintf("%*s", int(math.Max(float64(n), float64(len(s)))), s)
+}
