@@ -49,6 +49,8 @@ type figure struct {
 	Name    string          `json:"name"` // for the title of an exported picture
 	Reduced bool            `json:"reduced"`
 	Picture string          `json:"picture,omitempty"` // file name of an exported picture
+	Dates   bool            `json:"dates,omitempty"`   // the common axis is of dates
+	Fill    []fill          `json:"fill,omitempty"`    // data sets that come from the rows of the page
 
 	// Words are those of the tools, Notes the sentences below the charts.
 	Words axisWords `json:"-"`

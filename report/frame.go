@@ -33,6 +33,8 @@ type frame struct {
 	// Status names the colour of the heading and stands before Verdict.
 	Status, Verdict string
 	Figures         []*figure
+	// More is a script of this kind of page, beside that of the figures.
+	More template.JS
 }
 
 // write fills the frame and writes the page p, which holds it, by a template.

@@ -112,3 +112,7 @@ func span(x []float64) (lo, hi float64, ok bool) {
 	}
 	return lo, hi, lo <= hi
 }
+
+// Clean makes a text from outside safe to print on a terminal and cuts it to most
+// runes; 0 cuts nothing.
+func Clean(s string, most int) string { return clean(s, most) }

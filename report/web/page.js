@@ -1,7 +1,24 @@
 "use strict";
+// columns takes a data set from the rows of the page: the values, or for bars the
+// ends of two standard uncertainties each, with a gap behind every bar.
+let rows;
+const columns = (f) => {
+  rows ||= JSON.parse(document.getElementById("rows").textContent);
+  const t = [], v = [];
+  for (const r of rows) {
+    const y = r[f.value], u = r[f.u];
+    if (r.k !== f.kind || y === undefined) continue;
+    if (!f.bars) { t.push(r.t); v.push(y * f.factor); }
+    else if (u > 0) { t.push(r.t, r.t, r.t); v.push((y - 2 * u) * f.factor, (y + 2 * u) * f.factor, null); }
+  }
+  return { t, v };
+};
+
 // Each figure of the page has its own charts, data and tools.
 document.querySelectorAll("figure.charts").forEach((figure) => {
   const data = JSON.parse(document.getElementById(`data${figure.dataset.figure}`).textContent);
+  // A figure over the entries of an archive is drawn from the rows of the page.
+  (data.fill || []).forEach((f) => { data.option.dataset[f.dataset].source = columns(f); });
   const source = JSON.stringify(data.option);
   const stage = figure.querySelector(".stage");
   const canvas = figure.querySelector(".canvas");
@@ -45,7 +62,8 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
   // tip lists what stands at the pointer, panel by panel.
   const tip = (params) => {
     if (!params.length) return "";
-    let html = `<span class="t">${digits(params[0].axisValue, 9)} ${escape(data.time)}</span>`;
+    const at = data.dates ? new Date(params[0].axisValue).toISOString().slice(0, 19).replace("T", " ") : digits(params[0].axisValue, 9);
+    let html = `<span class="t">${at} ${escape(data.time)}</span>`;
     const rows = new Map();
     for (const p of params) {
       const v = valueOf(p);
@@ -74,7 +92,7 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     const o = paint(JSON.parse(source));
     o.backgroundColor = "transparent";
     o.textStyle = { fontFamily: getComputedStyle(document.body).fontFamily };
-    for (const x of o.xAxis) Object.assign(x, axisStyle(), { nameLocation: "end", nameGap: 0, nameMoveOverlap: false, axisLabel: { ...label((v) => digits(v, 9)), showMinLabel: false, showMaxLabel: false } });
+    for (const x of o.xAxis) Object.assign(x, axisStyle(), { nameLocation: "end", nameGap: 0, nameMoveOverlap: false, axisLabel: { ...label(data.dates ? undefined : (v) => digits(v, 9)), showMinLabel: false, showMaxLabel: false } });
     o.xAxis.forEach((x) => Object.assign(x.nameTextStyle, { align: "right", verticalAlign: "top", padding: [1.9 * fontSize(), 0, 0, 0] }));
     o.yAxis.forEach((y) => Object.assign(y, axisStyle(), { nameLocation: "end", nameGap: 12, axisLabel: label((v) => digits(v, 6)) }));
     o.yAxis.filter((y) => y.type === "log").forEach((y) => { y.axisLabel.formatter = power; });

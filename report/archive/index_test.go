@@ -1,0 +1,155 @@
+package archive
+
+import (
+	"bytes"
+	"fmt"
+	"os"
+	"path/filepath"
+	"testing"
+)
+
+// TestRebuild: from the entries alone come the same pages, byte for byte.
+func TestRebuild(t *testing.T) {
+	dir := t.TempDir()
+	for i := range 12 {
+		mustAdd(t, dir, fmt.Sprintf("loop-%d", i%3), i)
+	}
+	pages := []string{"index.html", "loop-0/index.html", "loop-1/index.html", "loop-2/index.html"}
+	before := map[string][]byte{}
+	for _, p := range pages {
+		before[p] = readFile(t, dir, p)
+		if err := os.Remove(filepath.Join(dir, p)); err != nil {
+			t.Fatal(err)
+		}
+	}
+	devices, entries, err := Rebuild(dir)
+	if err != nil || devices != 3 || entries != 12 {
+		t.Errorf("%d devices, %d entries, %v", devices, entries, err)
+	}
+	for _, p := range pages {
+		if !bytes.Equal(readFile(t, dir, p), before[p]) {
+			t.Errorf("%s is another page than before", p)
+		}
+	}
+}
+
+// TestIndexHeals: a page that is missing, cut short, of another make, or that lacks
+// an entry is made good with the next entry.
+func TestIndexHeals(t *testing.T) {
+	for name, spoil := range map[string]func(dir string) error{
+		"missing": func(dir string) error { return os.Remove(filepath.Join(dir, "loop", indexName)) },
+		"cut":     func(dir string) error { return os.Truncate(filepath.Join(dir, "loop", indexName), 20000) },
+		"another make": func(dir string) error {
+			return os.WriteFile(filepath.Join(dir, "loop", indexName), []byte("<html>"), 0o666)
+		},
+		"first page missing": func(dir string) error { return os.Remove(filepath.Join(dir, indexName)) },
+		"first page cut":     func(dir string) error { return os.Truncate(filepath.Join(dir, indexName), 20000) },
+		"entry gone": func(dir string) error {
+			folder, err := Add(dir, "loop", entryOf("loop", 7))
+			if err != nil {
+				return err
+			}
+			return os.RemoveAll(folder)
+		},
+	} {
+		dir := t.TempDir()
+		mustAdd(t, dir, "other", 0)
+		mustAdd(t, dir, "loop", 1)
+		mustAdd(t, dir, "loop", 2)
+		if err := spoil(dir); err != nil {
+			t.Fatal(err)
+		}
+		mustAdd(t, dir, "loop", 3)
+		t.Log(name)
+		mustShow(t, dir, map[string]int{"other": 1, "loop": 3})
+	}
+}
+
+// TestOlderEntries: an entry whose result has another form, is no JSON or is gone
+// is listed with what is known of it, and stands in the pages.
+func TestOlderEntries(t *testing.T) {
+	dir := t.TempDir()
+	for i, text := range []string{
+		`{"schema":"dieaway.ringdown.v0","device":"loop","status":"good","natural_frequency_hz":125034,"quantities":{"q":39.2,"natural_frequency_hz":{"value":125034.2}}}`,
+		`{"schema":7,"quantities":[1,2],"limits":"none","device":{"name":"x"}}`,
+		`not JSON`,
+		``,
+	} {
+		folder := mustAdd(t, dir, "loop", i)
+		if err := os.WriteFile(filepath.Join(folder, resultName), []byte(text), 0o666); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if err := os.Remove(filepath.Join(mustAdd(t, dir, "loop", 4), resultName)); err != nil {
+		t.Fatal(err)
+	}
+	all, err := List(dir)
+	if err != nil || len(all) != 5 {
+		t.Fatalf("%d entries, %v", len(all), err)
+	}
+	if r := all[0]; r.Q.Value != 39.2 || r.NaturalFrequency.Value != 125034.2 || r.TimeConstant.Known() || r.Kind != "ringdown" || r.Device != "loop" {
+		t.Errorf("of the older schema: %+v", r)
+	}
+	for i, r := range all[1:] {
+		if r.Q.Known() || r.Status != "unknown" || (r.Err == nil) != (i == 0) {
+			t.Errorf("entry %d: %+v", i+1, r)
+		}
+	}
+	if _, entries, err := Rebuild(dir); err != nil || entries != 5 {
+		t.Errorf("%d entries in the rebuilt page, %v", entries, err)
+	}
+	mustShow(t, dir, map[string]int{"loop": 5})
+}
+
+// TestOlderStamps: stamps of whole seconds are entries too, in order of time.
+func TestOlderStamps(t *testing.T) {
+	dir := t.TempDir()
+	home := filepath.Join(dir, "loop")
+	for _, name := range []string{"20260314T093000Z-01234567", "20260314T093000.500Z-01234567", "20260314T092959.900Z-01234567"} {
+		if err := os.MkdirAll(filepath.Join(home, name), 0o777); err != nil {
+			t.Fatal(err)
+		}
+	}
+	names, err := namesOf(home)
+	if want := "[20260314T092959.900Z-01234567 20260314T093000Z-01234567 20260314T093000.500Z-01234567]"; err != nil || fmt.Sprint(names) != want {
+		t.Errorf("%v, %v, want %s", names, err, want)
+	}
+}
+
+// BenchmarkAdd files one entry into an archive that has N already, of one device or
+// of as many devices, and shows how little the size matters.
+func BenchmarkAdd(b *testing.B) {
+	for _, n := range []int{10, 1000, 10000} {
+		for name, device := range map[string]func(int) string{
+			"device":  func(int) string { return "loop" },
+			"devices": func(i int) string { return fmt.Sprintf("loop-%05d", i) },
+		} {
+			b.Run(fmt.Sprintf("%s=%d", name, n), func(b *testing.B) {
+				dir := b.TempDir()
+				for i := range n {
+					e := entryOf(device(i), i)
+					folder := filepath.Join(dir, FolderOf(device(i)), nameOf(e.Made, e.Sources[0].SHA256))
+					if err := os.MkdirAll(folder, 0o777); err != nil {
+						b.Fatal(err)
+					}
+					f, err := os.Create(filepath.Join(folder, resultName))
+					if err != nil {
+						b.Fatal(err)
+					}
+					if err := e.Result(f); err != nil {
+						b.Fatal(err)
+					}
+					f.Close()
+				}
+				if _, _, err := Rebuild(dir); err != nil {
+					b.Fatal(err)
+				}
+				i := n
+				for b.Loop() {
+					mustAdd(b, dir, device(i%n), i)
+					i++
+				}
+			})
+		}
+	}
+}

@@ -1,0 +1,230 @@
+package archive
+
+import (
+	"bufio"
+	"compress/gzip"
+	"crypto/sha256"
+	"encoding/hex"
+	"encoding/json"
+	"errors"
+	"fmt"
+	"io"
+	"os"
+	"path/filepath"
+	"slices"
+	"strings"
+)
+
+// A Problem is one thing wrong with an entry.
+type Problem struct {
+	// Path is the file or the folder, below the archive.
+	Path string
+	// What is "altered", "missing", "half-written", "not listed" or "unreadable",
+	// and Why says how that is known.
+	What, Why string
+}
+
+// A Verified is the outcome of [Verify].
+type Verified struct {
+	Devices, Entries, Files int
+	Problems                []Problem
+}
+
+// Verify recomputes the checksums of all entries and names what is altered,
+// missing or half-written. Beyond SHA256SUMS, which somebody could alter as well, the
+// capture must be the one that the entry's name and its result are of. An error
+// means that the archive could not be looked through.
+func Verify(dir string) (*Verified, error) {
+	if err := mustBeArchive(dir); err != nil {
+		return nil, err
+	}
+	folders, err := devicesOf(dir)
+	if err != nil {
+		return nil, err
+	}
+	v := &verifier{dir: dir}
+	for _, folder := range folders {
+		if err := v.device(folder); err != nil {
+			return nil, err
+		}
+	}
+	return &v.Verified, nil
+}
+
+type verifier struct {
+	Verified
+	dir string
+}
+
+func (v *verifier) problem(path, what, format string, args ...any) {
+	v.Problems = append(v.Problems, Problem{filepath.ToSlash(path), what, fmt.Sprintf(format, args...)})
+}
+
+// device verifies all entries of one device.
+func (v *verifier) device(folder string) error {
+	home := filepath.Join(v.dir, folder)
+	left, err := foldersOf(home, temporary.MatchString)
+	if err != nil {
+		return err
+	}
+	for _, name := range left {
+		if abandoned(filepath.Join(home, name)) {
+			v.problem(filepath.Join(folder, name), "half-written", "its writer was ended in the middle; rebuild clears it away")
+		}
+	}
+	names, err := namesOf(home)
+	if err != nil {
+		return err
+	}
+	if len(names) > 0 {
+		v.Devices++
+	}
+	for _, name := range names {
+		v.Entries++
+		v.entry(filepath.Join(folder, name))
+	}
+	return nil
+}
+
+// entry verifies one entry.
+func (v *verifier) entry(path string) {
+	sums, err := readSums(filepath.Join(v.dir, path, sumsName))
+	if errors.Is(err, os.ErrNotExist) {
+		v.problem(filepath.Join(path, sumsName), "missing", "the entry has no checksums: it is not known whether it is whole")
+		return
+	}
+	if err != nil {
+		v.problem(filepath.Join(path, sumsName), "altered", "%v", err)
+		return
+	}
+	present, err := os.ReadDir(filepath.Join(v.dir, path))
+	if err != nil {
+		v.problem(path, "unreadable", "%v", err)
+		return
+	}
+	for _, name := range []string{resultName, reportName} {
+		if _, ok := sums[name]; !ok {
+			v.problem(filepath.Join(path, sumsName), "altered", "it lists no %s", name)
+		}
+	}
+	for _, name := range sortedKeys(sums) {
+		v.file(filepath.Join(path, name), sums[name])
+	}
+	for _, e := range present {
+		if _, ok := sums[e.Name()]; !ok && e.Name() != sumsName {
+			v.problem(filepath.Join(path, e.Name()), "not listed", "it is not among the checksums of its entry")
+		}
+	}
+	v.capture(path, sums)
+}
+
+// file compares one file with its checksum.
+func (v *verifier) file(path, want string) {
+	v.Files++
+	got, err := digestOf(filepath.Join(v.dir, path))
+	switch {
+	case errors.Is(err, os.ErrNotExist):
+		v.problem(path, "missing", "the entry's %s lists it", sumsName)
+	case err != nil:
+		v.problem(path, "unreadable", "%v", err)
+	case got != want:
+		v.problem(path, "altered", "its SHA-256 is %s, not %s", got, want)
+	}
+}
+
+// capture makes sure that the capture is the one that was measured.
+func (v *verifier) capture(path string, sums map[string]string) {
+	name := ""
+	for _, n := range sortedKeys(sums) {
+		if strings.HasPrefix(n, "capture.") {
+			name = n
+		}
+	}
+	if name == "" {
+		v.problem(filepath.Join(path, sumsName), "altered", "it lists no capture")
+		return
+	}
+	_, head, _ := parseName(filepath.Base(path))
+	file := filepath.Join(v.dir, path, name)
+	stored, err := digestOf(file)
+	if err != nil {
+		return // said already
+	}
+	inner, _ := contentDigest(file) // "" of what is not compressed text
+	if !strings.HasPrefix(stored, head) && !strings.HasPrefix(inner, head) {
+		v.problem(filepath.Join(path, name), "altered", "it is not the capture that the entry is named after: SHA-256 %s", inner)
+	}
+	text, err := os.ReadFile(filepath.Join(v.dir, path, resultName))
+	if err != nil {
+		return
+	}
+	var o object
+	_ = json.Unmarshal(text, &o)
+	if want := o.text("sha256"); want != "" && want != stored && want != inner {
+		v.problem(filepath.Join(path, resultName), "altered", "it is the result of another capture: SHA-256 %s", want)
+	}
+}
+
+// readSums reads the checksums of an entry by file name.
+func readSums(name string) (map[string]string, error) {
+	f, err := os.Open(name)
+	if err != nil {
+		return nil, err
+	}
+	defer f.Close()
+	sums := map[string]string{}
+	lines := bufio.NewScanner(f)
+	for n := 1; lines.Scan(); n++ {
+		sum, file, ok := strings.Cut(lines.Text(), "  ")
+		raw, err := hex.DecodeString(sum)
+		if !ok || err != nil || len(raw) != sha256.Size || file != filepath.Base(file) || file == "." || file == ".." {
+			return nil, fmt.Errorf("line %d is %q, expected a SHA-256, two spaces and the name of a file", n, lines.Text())
+		}
+		sums[file] = sum
+	}
+	if err := lines.Err(); err != nil {
+		return nil, err
+	}
+	if len(sums) == 0 {
+		return nil, errors.New("it is empty")
+	}
+	return sums, nil
+}
+
+func digestOf(name string) (string, error) {
+	f, err := os.Open(name)
+	if err != nil {
+		return "", err
+	}
+	defer f.Close()
+	return digest(f)
+}
+
+// contentDigest is the digest of what a compressed file holds.
+func contentDigest(name string) (string, error) {
+	f, err := os.Open(name)
+	if err != nil {
+		return "", err
+	}
+	defer f.Close()
+	z, err := gzip.NewReader(f)
+	if err != nil {
+		return "", err
+	}
+	return digest(z)
+}
+
+func digest(r io.Reader) (string, error) {
+	sum := sha256.New()
+	_, err := io.Copy(sum, r)
+	return hex.EncodeToString(sum.Sum(nil)), err
+}
+
+func sortedKeys(m map[string]string) []string {
+	keys := make([]string, 0, len(m))
+	for k := range m {
+		keys = append(keys, k)
+	}
+	slices.Sort(keys)
+	return keys
+}

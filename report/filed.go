@@ -1,0 +1,114 @@
+package report
+
+import (
+	"encoding/json"
+	"time"
+
+	"dieaway/decay/quantity"
+)
+
+// A Filed is one measurement of a device as its history shows it.
+type Filed struct {
+	// Name is the entry's folder, beside the page.
+	Name string
+	Made time.Time
+	// Kind is "ringdown", "sweep", "crosscheck" or "unknown", Status the verdict on
+	// the result, Verdict that on its limits ("" without any), File what was measured.
+	Kind, Status, Verdict, File string
+	// The quantities in Hz, 1 and s; unknown when withheld.
+	NaturalFrequency, Q, TimeConstant quantity.Quantity
+	Limits                            FiledLimits
+
+	// line is the row as a page holds it, nil when it was not read from one.
+	line []byte
+}
+
+// FiledLimits are the limits that a measurement was held against.
+type FiledLimits struct{ NaturalFrequency, Q, TimeConstant Limits }
+
+// Limits are in the SI unit of the quantity; nil where there is none.
+type Limits struct{ Min, Max *float64 }
+
+// A filedRow is the form of a row in the page, short as there may be many.
+type filedRow struct {
+	Name    string `json:"n"`
+	Made    int64  `json:"t"` // milliseconds since 1970
+	Kind    string `json:"k"`
+	Status  string `json:"s"`
+	Verdict string `json:"v,omitempty"`
+	File    string `json:"c,omitempty"`
+	// Value, standard uncertainty and text of frequency, Q and time constant.
+	F  *float64 `json:"f,omitempty"`
+	FU *float64 `json:"fu,omitempty"`
+	FT string   `json:"ft,omitempty"`
+	Q  *float64 `json:"q,omitempty"`
+	QU *float64 `json:"qu,omitempty"`
+	QT string   `json:"qt,omitempty"`
+	T  *float64 `json:"a,omitempty"`
+	TU *float64 `json:"au,omitempty"`
+	TT string   `json:"at,omitempty"`
+	// Limits of the same, lower and upper.
+	LF *[2]*float64 `json:"lf,omitempty"`
+	LQ *[2]*float64 `json:"lq,omitempty"`
+	LT *[2]*float64 `json:"la,omitempty"`
+}
+
+// row is the measurement for the page; texts from outside are made safe to show.
+func (f *Filed) row() *filedRow {
+	r := &filedRow{Name: f.Name, Made: f.Made.UnixMilli(), Kind: clean(f.Kind, nameLength), Status: clean(f.Status, nameLength),
+		Verdict: clean(f.Verdict, nameLength), File: clean(f.File, nameLength)}
+	r.F, r.FU, r.FT = numbersOf(f.NaturalFrequency)
+	r.Q, r.QU, r.QT = numbersOf(f.Q)
+	r.T, r.TU, r.TT = numbersOf(f.TimeConstant)
+	r.LF, r.LQ, r.LT = f.Limits.NaturalFrequency.pair(), f.Limits.Q.pair(), f.Limits.TimeConstant.pair()
+	return r
+}
+
+func numbersOf(q quantity.Quantity) (value, u *float64, text string) {
+	if !q.Known() {
+		return nil, nil, ""
+	}
+	value = &q.Value
+	if q.U >= 0 && q.U < 1e300 {
+		u = &q.U
+	}
+	return value, u, q.String()
+}
+
+func (l Limits) pair() *[2]*float64 {
+	if l.Min == nil && l.Max == nil {
+		return nil
+	}
+	return &[2]*float64{l.Min, l.Max}
+}
+
+// filed is the measurement of a row.
+func (r *filedRow) filed() *Filed {
+	quantityOf := func(value, u *float64, unit string) quantity.Quantity {
+		q := quantity.Unknown(unit)
+		if value != nil {
+			q.Value = *value
+		}
+		if u != nil {
+			q.U = *u
+		}
+		return q
+	}
+	limits := func(pair *[2]*float64) (l Limits) {
+		if pair != nil {
+			l = Limits{pair[0], pair[1]}
+		}
+		return l
+	}
+	return &Filed{Name: r.Name, Made: time.UnixMilli(r.Made), Kind: r.Kind, Status: r.Status, Verdict: r.Verdict, File: r.File,
+		NaturalFrequency: quantityOf(r.F, r.FU, "Hz"), Q: quantityOf(r.Q, r.QU, ""), TimeConstant: quantityOf(r.T, r.TU, "s"),
+		Limits: FiledLimits{limits(r.LF), limits(r.LQ), limits(r.LT)}}
+}
+
+// bytes is the row as JSON, escaped for a script element.
+func (f *Filed) bytes() ([]byte, error) {
+	if f.line != nil {
+		return f.line, nil
+	}
+	return json.Marshal(f.row())
+}
