@@ -222,7 +222,7 @@ func studentLikelihood(r, shape []float64, scale float64) (sum float64) {
 
 // noiseGain is the logarithm of the likelihood that another kind of noise must
 // gain before it is taken.
-const noiseGain = 5
+const noiseGain = 2
 
 // fitRobustly fits from a start with the kind of noise that is likeliest.
 func fitRobustly(start state, d *rows) (state, noise) {
