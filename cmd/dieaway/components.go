@@ -27,7 +27,7 @@ func componentsCommand() *cli.Command {
 		Flags: append([]cli.Flag{
 			&cli.StringFlag{Name: "added-capacitance", Usage: "the capacitor of each capture, as `0,100p,220p`"},
 			&cli.StringFlag{Name: "added-resistance", Usage: "the resistor of each capture, as `0,10,33`"},
-		}, without(fitFlags(), "report", "explain")...),
+		}, without(fitFlags(), "report", "archive", "explain")...),
 		Action:          components,
 		OnUsageError:    usageError,
 		HideHelpCommand: true,

@@ -75,6 +75,7 @@ func (j *sweepJob) crosscheck(ring, sweep source) measured {
 	if m.err != nil {
 		return m
 	}
+	m.files = append(fileOf(r.RingDown.Capture), measuredFile{"sweep", r.Sweep.Table.File, r.Sweep.Table.SHA256})
 	r.Check = circuit.Compare(j.bench, r.RingDown.Result, r.Sweep.Result)
 	m.verdict = verdictOf(r.RingDown.Limits)
 	if r.Check.Compared() && !r.Check.Agrees {

@@ -34,6 +34,7 @@ func fitFlags() []cli.Flag {
 		&cli.StringFlag{Name: "model", Usage: "the `LAW` of the decay: " + strings.Join(models, ", "), Value: "auto"},
 		&cli.StringFlag{Name: "probe", Usage: "multiply voltages by this `FACTOR`, where the scope was set to the wrong probe"},
 		&cli.StringFlag{Name: "device", Usage: "the `NAME` of what was measured"},
+		archiveFlag(),
 		benchFlag(),
 		&cli.BoolFlag{Name: "strict", Usage: "exit with code 6 when there is a warning", DisableDefaultText: true},
 		&cli.BoolFlag{Name: "explain", Usage: "print what was understood of the file before the result", DisableDefaultText: true},
@@ -52,6 +53,7 @@ func parseJob(c *cli.Context) (*job, error) {
 		device:  c.String("device"),
 		json:    c.Bool("json"),
 		page:    c.String("report"),
+		archive: c.String("archive"),
 		quiet:   c.Bool("quiet"),
 		strict:  c.Bool("strict"),
 		explain: c.Bool("explain"),
@@ -65,7 +67,7 @@ func parseJob(c *cli.Context) (*job, error) {
 	if j.json && j.explain {
 		return nil, usagef("--json prints nothing but JSON: take --explain by itself")
 	}
-	for _, name := range []string{"report", "channel", "device"} {
+	for _, name := range []string{"report", "channel", "device", "archive"} {
 		if c.IsSet(name) && c.String(name) == "" {
 			return nil, usagef("--%s is empty", name)
 		}

@@ -2,6 +2,7 @@ package main
 
 import (
 	"bufio"
+	"bytes"
 	"context"
 	"errors"
 	"fmt"
@@ -24,6 +25,8 @@ type job struct {
 	bench    *circuit.Bench // nil without one
 	inputs   []string       // files that must not be overwritten
 	page     string         // name of the page of evidence, "" for none
+	archive  string         // folder to file results in, "" for none
+	piped    *bytes.Buffer  // what came from standard input, for the archive
 	json     bool
 	quiet    bool
 	strict   bool
@@ -60,6 +63,7 @@ type measured struct {
 	err     error // why there is no result
 	explain func(io.Writer) error
 	verdict circuit.Verdict // on limits or agreement, "" without
+	files   []measuredFile  // for the archive
 }
 
 // The evidence is a result as package report shows it.
@@ -72,7 +76,7 @@ type evidence interface {
 
 // ofRingDown is a ring-down to deliver.
 func ofRingDown(r *report.RingDown) measured {
-	m := measured{evidence: r, err: r.Err, verdict: verdictOf(r.Limits)}
+	m := measured{evidence: r, err: r.Err, verdict: verdictOf(r.Limits), files: fileOf(r.Capture)}
 	if r.Capture != nil {
 		m.explain = r.Capture.Explain
 	}
@@ -94,6 +98,9 @@ func (j *job) run(ctx context.Context) error {
 // runAll measures all sources, which are things, in their order. One that fails
 // does not stop the rest; the highest exit code wins.
 func (j *job) runAll(ctx context.Context, things string, measure func(source) measured) error {
+	if err := j.readyArchive(); err != nil {
+		return err
+	}
 	var page *output
 	if j.page != "" {
 		var err error
@@ -185,11 +192,18 @@ func (j *job) deliver(r measured, page *output, i int) (int, error) {
 			return exitFailed, err
 		}
 	}
+	code := j.exitCode(r)
+	if j.archive != "" && r.err == nil {
+		if err := j.keep(r); err != nil { // the result is good all the same
+			say(j.stderr, err)
+			code = max(code, exitFailed)
+		}
+	}
 	out := bufio.NewWriter(j.stdout)
 	if err := j.print(out, r, i); err != nil {
 		return exitFailed, err
 	}
-	return j.exitCode(r), out.Flush()
+	return code, out.Flush()
 }
 
 // file writes the page of evidence.

@@ -100,7 +100,7 @@ func (r *Record) take(o object) {
 	q := o.object("quantities")
 	if inner := o.object("ringdown"); q == nil && inner != nil { // a cross-check holds a whole ring-down
 		if r.File == "" {
-			r.File = inner.text("file")
+			r.File, r.SHA256 = inner.text("file"), inner.text("sha256")
 		}
 		if q = inner.object("quantities"); q == nil {
 			q = inner
