@@ -204,3 +204,43 @@ func TestDampingNetwork(t *testing.T) {
 		t.Errorf("Q that is left: %g", d.Q)
 	}
 }
+
+// TestLossOverFrequency: a resistance that rises with the square root of the
+// frequency (skin effect) moves neither L nor C; the resistance found is one of
+// those there are, within a wider uncertainty, and a note says so.
+func TestLossOverFrequency(t *testing.T) {
+	rows := rowsOf(node, false, []float64{0, 220e-12, 470e-12}, 0.001, nil)
+	for i, added := range []float64{0, 220e-12, 470e-12} {
+		p := node
+		p.c += added
+		p.rc *= math.Sqrt(p.pole().NaturalFrequency / node.pole().NaturalFrequency)
+		r, _ := physicalResult(&p)
+		rows[i].Result = r.Quantities
+	}
+	c, err := FindComponents(node.bench(node), rows)
+	if err != nil {
+		t.Fatal(err)
+	}
+	inside(t, "inductance", c.Inductance, node.l, 2e-3)
+	inside(t, "capacitance", c.Capacitance, node.c, 2e-3)
+	if low := node.rc * math.Sqrt(51.4/80.1); !(c.Resistance.Value > low && c.Resistance.Value < node.rc && c.Resistance.U > 0.02) {
+		t.Errorf("resistance %s, between %.3g and %.3g", c.Resistance, low, node.rc)
+	}
+	if len(c.Findings) != 1 || c.Findings[0].Severity != capture.Note || !strings.Contains(c.Findings[0].Message, "dies away") {
+		t.Errorf("%v", c.Findings)
+	}
+}
+
+// A frequency that moves with an added resistor is no resistor's doing.
+func TestResistorThatDetunes(t *testing.T) {
+	rows := rowsOf(reader, true, []float64{0, 10, 33}, 0.001, nil)
+	q := rows[2].Result
+	q.DampedFrequency.Value *= 0.999
+	c, err := FindComponents(reader.bench(reader), rows)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(c.Findings) != 1 || c.Findings[0].Severity != capture.Warning || !strings.Contains(c.Findings[0].Message, "a resistor does not do that") {
+		t.Errorf("%v", c.Findings)
+	}
+}
