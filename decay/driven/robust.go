@@ -58,9 +58,12 @@ func (d *rows) otherNoises(v noise) (out []noise) {
 	return out
 }
 
-// scaleFloor is the least response, as a part of the greatest, that a scatter in
-// proportion to it is believed at.
-const scaleFloor = 1e-4
+// The least response, as a part of the greatest, that a scatter in proportion to
+// it is believed at. In a notch the few rows near zero would else decide alone.
+const (
+	scaleFloor = 1e-4
+	notchFloor = 0.05
+)
 
 // shapes are the standard deviations of the rows but for the factors of the
 // noise: stated, constant, or in proportion to the curve.
@@ -71,6 +74,9 @@ func (s *state) shapes(d *rows, v noise) (along, across []float64) {
 		size[i] = s.gain * s.size(f)
 	}
 	floor := scaleFloor * slices.Max(size)
+	if s.across == capture.Both {
+		floor = notchFloor * slices.Max(size)
+	}
 	shape := func(k kind, i int) float64 {
 		switch k {
 		case proportional:
@@ -220,9 +226,13 @@ func studentLikelihood(r, shape []float64, scale float64) (sum float64) {
 	return sum
 }
 
-// noiseGain is the logarithm of the likelihood that another kind of noise must
-// gain before it is taken.
-const noiseGain = 2
+// The logarithm of the likelihood that another kind of noise must gain before it is
+// taken. In a notch only the few rows at its bottom tell the kinds apart, and they
+// would gain all the weight by lying close to the curve by chance.
+const (
+	noiseGain      = 3
+	noiseGainNotch = 8
+)
 
 // fitRobustly fits from a start with the kind of noise that is likeliest.
 func fitRobustly(start state, d *rows) (state, noise) {
@@ -232,11 +242,14 @@ func fitRobustly(start state, d *rows) (state, noise) {
 		return s, v // no noise: nothing to choose
 	}
 	best := s.likelihood(d, v)
-	first := s
+	first, need := s, float64(noiseGain)
+	if s.across == capture.Both {
+		need = noiseGainNotch
+	}
 	for _, other := range d.otherNoises(v) {
 		t, u := first, other
 		t.robust(d, &u)
-		if l := t.likelihood(d, u); l > best+noiseGain && !u.computed(d) {
+		if l := t.likelihood(d, u); l > best+need && !u.computed(d) {
 			s, v, best = t, u, l
 		}
 	}
