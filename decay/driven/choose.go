@@ -16,11 +16,12 @@ const restGain = 3
 // fitPart fits the form of one part from the best of the starts.
 func fitPart(d *rows, part capture.Part) (*fitted, bool) {
 	var best *fitted
-	for _, c := range starts(d, part) {
-		s := newState(c, d)
-		v := d.firstNoise()
-		s.robust(d, &v)
-		if l := s.likelihood(d, v); finite(l) && (best == nil || l > best.likelihood) {
+	few := d.fewer(part)
+	for _, c := range starts(few, part) {
+		s := newState(c, few)
+		v := few.firstNoise()
+		s.robust(few, &v)
+		if l := s.likelihood(few, v); finite(l) && (best == nil || l > best.likelihood) {
 			best = &fitted{state: s, noise: v, likelihood: l}
 		}
 	}
@@ -108,4 +109,17 @@ func unsure(d *rows, all []*fitted) (f *fitted, why string, guessed bool) {
 		most = math.Max(most, math.Abs(o.f0/f.f0-1))
 	}
 	return f, fmt.Sprintf("%s: %s would do as well, and move f0 by up to %s", how, others, quantity.Percent(most)), true
+}
+
+// partName names a part in a sentence.
+func partName(p capture.Part) string {
+	switch p {
+	case capture.Inductor:
+		return "the coil"
+	case capture.Resistor:
+		return "the resistor (the current)"
+	case capture.Both:
+		return "coil and capacitor together (a notch)"
+	}
+	return "the capacitor"
 }

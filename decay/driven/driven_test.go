@@ -31,3 +31,20 @@ func TestExact(t *testing.T) {
 		}
 	}
 }
+
+// A long sweep with a narrow resonance, and one with a wide one: starts are chosen
+// by few of the rows.
+func TestManyRows(t *testing.T) {
+	for _, q := range []float64{0.8, 30, 20000} {
+		s := loop07(q)
+		s.noise = q / 100
+		s = s.linear(30001, s.f0()*0.3, s.f0()*1.9)
+		r := Analyze(s.sweep(newRand(5)), Options{Across: capture.Capacitor})
+		if r.Quantities == nil {
+			t.Errorf("Q %g: %v", q, r.Findings)
+			continue
+		}
+		near(t, "Q", r.Quantities.Q.Value, q, 5*r.Quantities.Q.U)
+		near(t, "f0", r.Quantities.NaturalFrequency.Value, s.f0(), 5*r.Quantities.NaturalFrequency.U)
+	}
+}

@@ -106,6 +106,37 @@ func (d *rows) smoothed() []float64 {
 	return out
 }
 
+// fewer are rows enough to choose a start by: of a long sweep every few, and all
+// around the strongest response, which may be narrow.
+func (d *rows) fewer(part capture.Part) *rows {
+	if d.len() <= rowsForStarts {
+		return d
+	}
+	stride := (d.len() + rowsForStarts/2 - 1) / (rowsForStarts / 2)
+	at := extreme(d.smoothed(), part)
+	var list []int
+	for i := range d.len() {
+		if i%stride == 0 || i > at-rowsForStarts/4 && i < at+rowsForStarts/4 {
+			list = append(list, i)
+		}
+	}
+	out := *d
+	for _, column := range []*[]float64{&out.f, &out.m, &out.phi, &out.dev, &out.reference} {
+		if *column == nil {
+			continue
+		}
+		kept := make([]float64, len(list))
+		for k, i := range list {
+			kept[k] = (*column)[i]
+		}
+		*column = kept
+	}
+	return &out
+}
+
+// rowsForStarts is how many rows are enough to choose a start by.
+const rowsForStarts = 1200
+
 // extreme is the index of the greatest value, or of the least for a notch.
 func extreme(v []float64, part capture.Part) int {
 	best := 0

@@ -16,7 +16,6 @@ const (
 	startsKept   = 5
 	gridPoints   = 25  // of frequency, over the span of the sweep
 	broadQ       = 6.0 // up to here a resonance is wide enough for that grid
-	gridRows     = 4000
 	smallestQ    = 0.45
 	largestQ     = 1e7
 	stepOfGridQ  = 1.5
@@ -97,9 +96,8 @@ func candidates(d *rows, m []float64, part capture.Part) []curve {
 
 // score is how badly a curve follows m with the best gain.
 func score(d *rows, m []float64, c curve) scored {
-	stride := max(1, d.len()/gridRows)
 	var mm, mh, hh float64
-	for i := 0; i < d.len(); i += stride {
+	for i := range d.f {
 		size, w := c.size(d.f[i]), 1.0
 		switch {
 		case d.dev != nil:
