@@ -54,7 +54,7 @@ func components(c *cli.Context) error {
 		return err
 	}
 	files := c.Args().Slice()
-	if err := checkFiles("capture", files, j); err != nil {
+	if err := checkFiles("capture", files); err != nil {
 		return err
 	}
 	added, resistors, err := parseAdded(c, len(files))

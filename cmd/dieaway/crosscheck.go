@@ -47,7 +47,7 @@ func crosscheck(c *cli.Context) error {
 		return usagef("expected a capture and a sweep, found %d files: `dieaway crosscheck CAPTURE SWEEP`", len(files))
 	}
 	// One page holds both.
-	if err := checkFiles("capture", files, &job{}); err != nil {
+	if err := checkFiles("capture", files); err != nil {
 		return err
 	}
 	j.inputs = files

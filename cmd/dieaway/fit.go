@@ -9,10 +9,18 @@ func fitCommand() *cli.Command {
 		Name:      "fit",
 		Usage:     "measure ring-downs: frequency, time constant and Q with their uncertainty",
 		UsageText: "dieaway fit [flags] CAPTURE...",
-		Description: "Reads each capture (\"-\" is standard input), finds the free decay in it, fits it and\n" +
-			"prints what it found. Flags may stand before or after the files. Times are given with\n" +
-			"their unit, for example --from -2us --to 0.2ms.",
-		Flags:           fitFlags(),
+		Description: "Reads each capture (\"-\" is standard input, and of a folder all that may be captures),\n" +
+			"finds the free decay in it, fits it and prints what it found: one capture in detail, several\n" +
+			"as a table with statistics. Flags may stand before or after the files. Times are given with\n" +
+			"their unit, for example --from -2us --to 0.2ms.\n\n" +
+			"Examples:\n" +
+			"   dieaway fit ring.csv -o ring.html\n" +
+			"   dieaway fit ring.csv --bench loop07.toml --archive evidence\n" +
+			"   dieaway fit coils/ --bench loop07.toml --csv > coils.csv\n" +
+			"   zcat ring.csv.gz | dieaway fit - --json",
+		Flags: append([]cli.Flag{
+			&cli.BoolFlag{Name: "csv", Usage: "print a table of comma-separated values, one row per file", DisableDefaultText: true},
+		}, fitFlags()...),
 		Action:          fit,
 		OnUsageError:    usageError, // not inherited from the program
 		HideHelpCommand: true,       // a capture may be named "help"
@@ -24,8 +32,11 @@ func fit(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	files := c.Args().Slice()
-	if err := checkFiles("capture", files, j); err != nil {
+	files, err := expand(c.Args().Slice())
+	if err != nil {
+		return err
+	}
+	if err := checkFiles("capture", files); err != nil {
 		return err
 	}
 	j.inputs = files
@@ -37,16 +48,30 @@ func fit(c *cli.Context) error {
 	for _, name := range files {
 		j.sources = append(j.sources, j.source(name))
 	}
+	switch {
+	case c.Bool("csv") && (j.json || j.explain):
+		return usagef("--csv prints nothing but its table: take it without --json and --explain")
+	case c.Bool("csv") || len(files) > 1 && !j.explain:
+		return j.runMany(c.Context, c.Bool("csv"))
+	}
+	if err := checkOnePage("capture", files, j); err != nil {
+		return err
+	}
 	return j.run(c.Context)
 }
 
-// checkFiles refuses what no analysis can make good; thing is what the files hold.
-func checkFiles(thing string, files []string, j *job) error {
-	if len(files) == 0 {
-		return usagef("no %s given: name at least one file, or - for standard input", thing)
-	}
+// checkOnePage refuses one page for several files.
+func checkOnePage(thing string, files []string, j *job) error {
 	if j.page != "" && len(files) > 1 {
 		return usagef("--report takes one %s, and there are %d: run it once for each page", thing, len(files))
+	}
+	return nil
+}
+
+// checkFiles refuses what no analysis can make good; thing is what the files hold.
+func checkFiles(thing string, files []string) error {
+	if len(files) == 0 {
+		return usagef("no %s given: name at least one file, or - for standard input", thing)
 	}
 	streams := 0
 	for _, name := range files {

@@ -33,6 +33,7 @@ type job struct {
 	explain  bool
 	origin   report.Origin
 	style    report.Style
+	many     *many // nil for one capture
 
 	stdin          io.Reader
 	stdout, stderr io.Writer
@@ -64,6 +65,7 @@ type measured struct {
 	explain func(io.Writer) error
 	verdict circuit.Verdict // on limits or agreement, "" without
 	files   []measuredFile  // for the archive
+	row     *report.SetRow  // of several captures, nil for one
 }
 
 // The evidence is a result as package report shows it.
@@ -226,6 +228,9 @@ func (j *job) file(r measured, page *output) error {
 
 // print writes the result to out.
 func (j *job) print(out io.Writer, r measured, i int) error {
+	if j.many != nil {
+		return j.many.print(out, r, i)
+	}
 	if j.json {
 		return r.WriteJSON(out)
 	}

@@ -63,7 +63,7 @@ func sweep(c *cli.Context) error {
 		return err
 	}
 	files := c.Args().Slice()
-	if err := checkFiles("sweep", files, j.job); err != nil {
+	if err := firstOf(func() error { return checkFiles("sweep", files) }, func() error { return checkOnePage("sweep", files, j.job) }); err != nil {
 		return err
 	}
 	j.inputs = files

@@ -10,7 +10,7 @@ import (
 // that their own uncertainties explain.
 type Spread struct {
 	N int
-	// Mean has the standard uncertainty Between/sqrt(N).
+	// Mean has the standard uncertainty Between/sqrt(N), or Within/sqrt(N) if larger.
 	Mean Quantity
 	// Median, Least and Most of the values.
 	Median, Least, Most float64
@@ -59,7 +59,7 @@ func SpreadOf(all []Quantity) (*Spread, error) {
 	}
 	s.Between = math.Sqrt(about / (n - 1))
 	s.Own = math.Sqrt(math.Max(0, s.Between*s.Between-s.Within*s.Within))
-	s.Mean = New(mean, s.Between/math.Sqrt(n), unitOf(all))
+	s.Mean = New(mean, math.Max(s.Between, s.Within)/math.Sqrt(n), unitOf(all))
 	s.findOutliers(all, x)
 	return s, nil
 }
