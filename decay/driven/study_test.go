@@ -112,7 +112,12 @@ var studyCells = []cell{
 func TestStudyBoundAndCoverage(t *testing.T) {
 	n, low, high, least := 40, 0.65, 1.4, 0.82
 	if *studySweeps > 0 {
-		n, low, high, least = *studySweeps, 0.93, 1.05, 0.935
+		// Within 5 % and 95 %, as far as so many sweeps can tell (three and two of
+		// their standard deviations).
+		n = *studySweeps
+		chance := 2/math.Sqrt(2*float64(n)) - 2/math.Sqrt(2000)
+		low, high = 0.95-math.Max(0, chance), 1.05+math.Max(0, chance)
+		least = 0.95 - 3*math.Sqrt(0.95*0.05/float64(n))
 	}
 	for k, c := range studyCells {
 		s := c.scene()
