@@ -1,6 +1,7 @@
 package report
 
 import (
+	"bytes"
 	"encoding/json"
 	"fmt"
 	"html/template"
@@ -8,28 +9,25 @@ import (
 	"math"
 	"slices"
 	"strings"
-	"time"
 )
 
-// Devices is what an archive's first page shows: a row for each device.
+// Devices is what an archive's first page shows: a row for each device, in the
+// order of their folders.
 type Devices struct {
-	// Rows by the name of the device's folder.
-	Rows map[string]*DeviceRow
+	sums devicesSums
+	rows *rowSet
 }
 
-// A DeviceRow is the latest of one device. The zero value is an empty row.
-type DeviceRow struct {
-	row  deviceRow
-	line []byte // the row as a page holds it, nil when it was not read from one
+// devicesSums are what the page says of all devices.
+type devicesSums struct {
+	Devices, Entries int
+	Wanting          int // devices whose latest result is not good, or outside limits
 }
 
-// Count is the number of entries of the device.
-func (r *DeviceRow) Count() int { return r.row.Count }
-
-// A deviceRow is the form of a row in the page.
+// A deviceRow is the form of a row in the page; the folder comes first.
 type deviceRow struct {
-	Device  string   `json:"d"`
 	Folder  string   `json:"p"`
+	Device  string   `json:"d"`
 	Count   int      `json:"c"`
 	Made    int64    `json:"t"` // of the latest, milliseconds since 1970
 	Status  string   `json:"s"`
@@ -42,38 +40,42 @@ type deviceRow struct {
 	Drift   string   `json:"dr,omitempty"`
 }
 
+func (r *deviceRow) wanting() bool { return r.Status != "good" || r.Verdict == "fail" }
+
 // coursePoints is how many results the small line of a row shows.
 const coursePoints = 30
 
-// DeviceRow is the history's row on the page of all devices; folder is the name of
-// the device's folder.
-func (h *History) DeviceRow(folder string) *DeviceRow {
-	latest := h.Entries[len(h.Entries)-1].row()
-	r := deviceRow{Device: clean(h.Device, nameLength), Folder: folder, Count: len(h.Entries), Made: latest.Made,
-		Status: latest.Status, Verdict: latest.Verdict, F: latest.F, FT: latest.FT, Q: latest.Q, QT: latest.QT, Course: h.course()}
+// deviceRow is the history's row on the page of all devices.
+func (h *History) deviceRow(folder string) *deviceRow {
+	rows := h.latest(2 * coursePoints)
+	latest := rows[0]
+	r := &deviceRow{Device: clean(h.sums.Device, nameLength), Folder: folder, Count: h.sums.N, Made: latest.Made,
+		Status: latest.Status, Verdict: latest.Verdict, F: latest.F, FT: latest.FT, Q: latest.Q, QT: latest.QT}
+	kind, _, _ := h.chief()
+	r.Course = courseOf(rows, kind)
 	var drifting []string
 	for i, t := range h.trends() {
-		if t != nil && t.Drifts() {
+		if t.Drifts() {
 			drifting = append(drifting, followedQuantities[i].letter)
 		}
 	}
-	if len(drifting) > 0 {
-		r.Drift = strings.Join(drifting, ", ") + " drifts"
-		if len(drifting) > 1 {
-			r.Drift = strings.Join(drifting, ", ") + " drift"
-		}
+	switch len(drifting) {
+	case 0:
+	case 1:
+		r.Drift = drifting[0] + " drifts"
+	default:
+		r.Drift = strings.Join(drifting, ", ") + " drift"
 	}
-	return &DeviceRow{row: r}
+	return r
 }
 
-// course is the path of the latest values of Q of the chief kind, evenly spaced,
-// from the bottom of the box to its top; "" of fewer than two.
-func (h *History) course() string {
-	kind, _ := h.chiefKind()
+// courseOf is the path of the latest values of Q of one kind, evenly spaced, from
+// the bottom of the box to its top; "" of fewer than two. The rows are newest first.
+func courseOf(rows []*filedRow, kind string) string {
 	var q []float64
-	for i := len(h.Entries) - 1; i >= 0 && len(q) < coursePoints; i-- {
-		if f := h.Entries[i]; f.Kind == kind && f.Q.Known() {
-			q = append(q, f.Q.Value)
+	for _, r := range rows {
+		if r.Kind == kind && r.Q != nil && len(q) < coursePoints {
+			q = append(q, *r.Q)
 		}
 	}
 	slices.Reverse(q)
@@ -92,12 +94,94 @@ func (h *History) course() string {
 	return b.String()
 }
 
-// ReadDevices returns the rows of a page that [Devices.WritePage] wrote; an error
+// NewDevices returns the page of an archive without any device.
+func NewDevices() *Devices {
+	d := new(Devices)
+	d.rows = &rowSet{sums: &d.sums}
+	return d
+}
+
+// ReadDevices returns what a page shows that [Devices.WritePage] wrote; an error
 // means that the page is of another make or damaged.
 func ReadDevices(page []byte) (*Devices, error) {
-	d := &Devices{Rows: map[string]*DeviceRow{}}
-	err := readRows(page, func(r *deviceRow, line []byte) { d.Rows[r.Folder] = &DeviceRow{*r, line} })
+	d := new(Devices)
+	var err error
+	d.rows, err = readRowSet(page, &d.sums)
 	return d, err
+}
+
+// find returns where the row of a folder begins and ends in the text; without one,
+// where it would have to stand.
+func (d *Devices) find(folder string) (from, to int, found bool) {
+	text := d.rows.text
+	name, _ := json.Marshal(folder) // a string
+	head := []byte(`{"p":` + string(name) + ",")
+	if from = bytes.Index(text, head); from >= 0 {
+		if n := bytes.Index(text[from:], []byte(separator)); n >= 0 {
+			return from, from + n, true
+		}
+		return from, len(text), true
+	}
+	for at := 0; at < len(text); {
+		if bytes.Compare(text[at:], head) > 0 {
+			return at, at, false
+		}
+		n := bytes.Index(text[at:], []byte(separator))
+		if n < 0 {
+			break
+		}
+		at += n + len(separator)
+	}
+	return len(text), len(text), false
+}
+
+// Set puts the device of a folder, with its history, in place of what the page
+// showed of it.
+func (d *Devices) Set(folder string, h *History) error {
+	row := h.deviceRow(folder)
+	line, err := json.Marshal(row)
+	if err != nil {
+		return err
+	}
+	from, to, found := d.find(folder)
+	switch {
+	case found:
+		old := new(deviceRow)
+		if err := json.Unmarshal(d.rows.text[from:to], old); err != nil {
+			return err
+		}
+		d.count(old, -1)
+	case from < len(d.rows.text):
+		line = append(line, separator...)
+	case from > 0:
+		line = append([]byte(separator), line...)
+	}
+	d.count(row, 1)
+	d.rows.text = slices.Replace(d.rows.text, from, to, line...)
+	return nil
+}
+
+func (d *Devices) count(r *deviceRow, sign int) {
+	d.sums.Devices += sign
+	d.sums.Entries += sign * r.Count
+	if r.wanting() {
+		d.sums.Wanting += sign
+	}
+}
+
+// Len is the number of devices.
+func (d *Devices) Len() int { return d.sums.Devices }
+
+// Counts returns the number of entries by folder.
+func (d *Devices) Counts() map[string]int {
+	counts := map[string]int{}
+	for _, line := range d.rows.first(d.sums.Devices) {
+		row := new(deviceRow)
+		if json.Unmarshal(line, row) == nil {
+			counts[row.Folder] = row.Count
+		}
+	}
+	return counts
 }
 
 // A devicesPage is what the template shows.
@@ -117,36 +201,19 @@ type firstDevice struct {
 // WritePage writes the page of all devices: one HTML page that needs no network,
 // sorted and filtered in the page. It is meant to stand beside the devices' folders.
 func (d *Devices) WritePage(w io.Writer) error {
-	folders := make([]string, 0, len(d.Rows))
-	for folder := range d.Rows {
-		folders = append(folders, folder)
-	}
-	slices.Sort(folders)
-	p := &devicesPage{Course: coursePoints,
+	p := &devicesPage{Course: coursePoints, RowSet: d.rows,
 		frame: frame{Title: "Archive of resonant circuits", Kind: "Archive", Heading: "Resonant circuits measured", More: template.JS(rowsJS)}}
-	lines := make([][]byte, len(folders))
-	entries, wanting := 0, 0
-	for i, folder := range folders {
-		r := d.Rows[folder]
-		if lines[i] = r.line; r.line == nil {
-			var err error
-			if lines[i], err = json.Marshal(r.row); err != nil {
-				return err
-			}
+	for _, line := range d.rows.first(firstRows) {
+		row := new(deviceRow)
+		if err := json.Unmarshal(line, row); err != nil {
+			return err
 		}
-		if len(p.First) < firstRows {
-			p.First = append(p.First, firstDevice{&r.row, time.UnixMilli(r.row.Made).UTC().Format(time.DateTime)})
-		}
-		entries += r.row.Count
-		if r.row.Status != "good" || r.row.Verdict == "fail" {
-			wanting++
-		}
+		p.First = append(p.First, firstDevice{row, whenOf(row.Made)})
 	}
-	p.RowSet = joinRows(lines)
-	p.What = fmt.Sprintf("%s of %s.", plural(entries, "measurement"), plural(len(folders), "device"))
+	p.What = fmt.Sprintf("%s of %s.", plural(d.sums.Entries, "measurement"), plural(d.sums.Devices, "device"))
 	p.Status, p.Verdict = "good", "the latest result of every device"
-	if wanting > 0 {
-		p.Status, p.Verdict = "doubtful", fmt.Sprintf("%s whose latest result is not good or outside the limits", plural(wanting, "device"))
+	if n := d.sums.Wanting; n > 0 {
+		p.Status, p.Verdict = "doubtful", fmt.Sprintf("%s whose latest result is not good or outside the limits", plural(n, "device"))
 	}
 	return p.write(w, "devices.html", p)
 }

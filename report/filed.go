@@ -1,7 +1,6 @@
 package report
 
 import (
-	"encoding/json"
 	"time"
 
 	"dieaway/decay/quantity"
@@ -18,9 +17,6 @@ type Filed struct {
 	// The quantities in Hz, 1 and s; unknown when withheld.
 	NaturalFrequency, Q, TimeConstant quantity.Quantity
 	Limits                            FiledLimits
-
-	// line is the row as a page holds it, nil when it was not read from one.
-	line []byte
 }
 
 // FiledLimits are the limits that a measurement was held against.
@@ -80,35 +76,4 @@ func (l Limits) pair() *[2]*float64 {
 		return nil
 	}
 	return &[2]*float64{l.Min, l.Max}
-}
-
-// filed is the measurement of a row.
-func (r *filedRow) filed() *Filed {
-	quantityOf := func(value, u *float64, unit string) quantity.Quantity {
-		q := quantity.Unknown(unit)
-		if value != nil {
-			q.Value = *value
-		}
-		if u != nil {
-			q.U = *u
-		}
-		return q
-	}
-	limits := func(pair *[2]*float64) (l Limits) {
-		if pair != nil {
-			l = Limits{pair[0], pair[1]}
-		}
-		return l
-	}
-	return &Filed{Name: r.Name, Made: time.UnixMilli(r.Made), Kind: r.Kind, Status: r.Status, Verdict: r.Verdict, File: r.File,
-		NaturalFrequency: quantityOf(r.F, r.FU, "Hz"), Q: quantityOf(r.Q, r.QU, ""), TimeConstant: quantityOf(r.T, r.TU, "s"),
-		Limits: FiledLimits{limits(r.LF), limits(r.LQ), limits(r.LT)}}
-}
-
-// bytes is the row as JSON, escaped for a script element.
-func (f *Filed) bytes() ([]byte, error) {
-	if f.line != nil {
-		return f.line, nil
-	}
-	return json.Marshal(f.row())
 }

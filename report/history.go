@@ -1,6 +1,7 @@
 package report
 
 import (
+	"encoding/json"
 	"errors"
 	"fmt"
 	"html/template"
@@ -10,38 +11,103 @@ import (
 	"dieaway/decay/quantity"
 )
 
-// A History is all measurements of one device in an archive.
+// A History is all measurements of one device in an archive, on their way to its
+// page. It is made of a page written earlier or of nothing, and takes the
+// measurements one by one: what it costs does not depend on how many there are, but
+// for the copying of their rows.
 type History struct {
-	Device string
-	// Entries are in order of time.
-	Entries []*Filed
+	sums historySums
+	rows *rowSet
 }
 
-// ReadHistory returns the entries of a page that [History.WritePage] wrote, by
-// their names; an error means that the page is of another make or damaged.
-func ReadHistory(page []byte) (map[string]*Filed, error) {
-	entries := map[string]*Filed{}
-	err := readRows(page, func(r *filedRow, line []byte) {
-		f := r.filed()
-		f.line = line
-		entries[f.Name] = f
-	})
-	return entries, err
+// historySums are what the page says of all measurements.
+type historySums struct {
+	Device      string               `json:"device"`
+	N           int                  `json:"n"`
+	First, Last int64                // milliseconds since 1970
+	LastName    string               // of the entry, for the order of equal times
+	Kinds       map[string]*kindSums `json:"kinds"`
+}
+
+// kindSums are those of one kind of measurement.
+type kindSums struct {
+	N      int // with a result
+	Trends [3]quantity.TrendSums
+}
+
+// NewHistory returns the history of a device without any measurement.
+func NewHistory() *History {
+	h := &History{sums: historySums{Kinds: map[string]*kindSums{}}}
+	h.rows = &rowSet{sums: &h.sums}
+	return h
+}
+
+// ReadHistory returns the history of a page that [History.WritePage] wrote; an
+// error means that the page is of another make or damaged.
+func ReadHistory(page []byte) (*History, error) {
+	h := NewHistory()
+	var err error
+	h.rows, err = readRowSet(page, &h.sums)
+	return h, err
+}
+
+// Len is the number of measurements.
+func (h *History) Len() int { return h.sums.N }
+
+// errOrder says that a measurement comes before one that was added already.
+var errOrder = errors.New("report: a measurement out of the order of time")
+
+// Add adds a measurement, which must be newer than those before, of the device,
+// whose latest name counts. Otherwise it returns an error and the history has to
+// be made anew in the order of time.
+func (h *History) Add(device string, f *Filed) error {
+	row, s := f.row(), &h.sums
+	if s.N > 0 && (row.Made < s.Last || row.Made == s.Last && row.Name <= s.LastName) {
+		return errOrder
+	}
+	if s.N == 0 {
+		s.First = row.Made
+	}
+	s.N++
+	s.Device, s.Last, s.LastName = device, row.Made, row.Name
+	k := s.Kinds[row.Kind]
+	if k == nil {
+		k = new(kindSums)
+		s.Kinds[row.Kind] = k
+	}
+	if f.Q.Known() || f.NaturalFrequency.Known() {
+		k.N++
+	}
+	for i, what := range followedQuantities {
+		k.Trends[i].Add(float64(row.Made), what.of(f))
+	}
+	return h.rows.add(row)
+}
+
+// latest returns up to n measurements, newest first.
+func (h *History) latest(n int) (rows []*filedRow) {
+	for _, line := range h.rows.last(n) {
+		row := new(filedRow)
+		if err := json.Unmarshal(line, row); err == nil { // we wrote it
+			rows = append(rows, row)
+		}
+	}
+	return rows
 }
 
 // A followed is one quantity that is followed over time.
 type followed struct {
-	label, letter string
+	label, letter, unit string
 	// value, u are the keys of a row's numbers.
 	value, u string
 	of       func(*Filed) quantity.Quantity
-	limits   func(*FiledLimits) Limits
+	limits   func(*filedRow) *[2]*float64
 }
 
-var followedQuantities = []followed{
-	{"natural frequency", "f_0", "f", "fu", func(f *Filed) quantity.Quantity { return f.NaturalFrequency }, func(l *FiledLimits) Limits { return l.NaturalFrequency }},
-	{"quality factor", "Q", "q", "qu", func(f *Filed) quantity.Quantity { return f.Q }, func(l *FiledLimits) Limits { return l.Q }},
-	{"time constant", "τ", "a", "au", func(f *Filed) quantity.Quantity { return f.TimeConstant }, func(l *FiledLimits) Limits { return l.TimeConstant }},
+var followedQuantities = [3]followed{
+	{"natural frequency", "f_0", "Hz", "f", "fu", func(f *Filed) quantity.Quantity { return f.NaturalFrequency }, func(r *filedRow) *[2]*float64 { return r.LF }},
+	{"quality factor", "Q", "", "q", "qu", func(f *Filed) quantity.Quantity { return f.Q }, func(r *filedRow) *[2]*float64 { return r.LQ }},
+	{"time constant", "τ", "s", "a", "au", func(f *Filed) quantity.Quantity { return f.TimeConstant }, func(r *filedRow) *[2]*float64 { return r.LT }},
 }
 
 // kindNames are the kinds of measurement, the first the commonest, in the plural
@@ -50,39 +116,22 @@ var kindNames = []struct{ kind, name, color string }{
 	{"ringdown", "ring-downs", "samples"}, {"sweep", "driven sweeps", "peak"}, {"crosscheck", "cross-checks", "envelope"}, {"unknown", "others", "quiet"},
 }
 
-// chiefKind is the kind of most entries with a result.
-func (h *History) chiefKind() (kind, name string) {
-	counts := map[string]int{}
-	for _, f := range h.Entries {
-		if f.Q.Known() || f.NaturalFrequency.Known() {
-			counts[f.Kind]++
-		}
-	}
-	most := 0
+// chief returns the kind with the most results: its key, its name and its sums.
+func (h *History) chief() (kind, name string, sums *kindSums) {
+	sums = new(kindSums)
 	for _, k := range kindNames {
-		if counts[k.kind] > most {
-			most, kind, name = counts[k.kind], k.kind, k.name
+		if s := h.sums.Kinds[k.kind]; s != nil && s.N > sums.N {
+			kind, name, sums = k.kind, k.name, s
 		}
 	}
-	return kind, name
+	return kind, name, sums
 }
 
-// trends are the trends of the chief kind in the order of followedQuantities; nil
-// where nothing is known.
-func (h *History) trends() []*quantity.Trend {
-	kind, _ := h.chiefKind()
-	out := make([]*quantity.Trend, len(followedQuantities))
+// trends are the trends of the chief kind in the order of followedQuantities.
+func (h *History) trends() (out [3]*quantity.Trend) {
+	_, _, sums := h.chief()
 	for i, what := range followedQuantities {
-		var at []float64
-		var q []quantity.Quantity
-		for _, f := range h.Entries {
-			if f.Kind == kind {
-				at, q = append(at, float64(f.Made.UnixMilli())), append(q, what.of(f))
-			}
-		}
-		if t, err := quantity.TrendOf(at, q); err == nil {
-			out[i] = t
-		}
+		out[i] = sums.Trends[i].Trend(what.unit)
 	}
 	return out
 }
@@ -90,9 +139,9 @@ func (h *History) trends() []*quantity.Trend {
 // A trendRow is mean and change of one quantity for people.
 type trendRow struct{ Label, Mean, Change, U, Class, Verdict string }
 
-func trendRows(trends []*quantity.Trend) (rows []trendRow) {
+func trendRows(trends [3]*quantity.Trend) (rows []trendRow) {
 	for i, t := range trends {
-		if t == nil {
+		if t.N == 0 {
 			continue
 		}
 		r := trendRow{Label: followedQuantities[i].label, Mean: t.Mean.String(), Verdict: "too few to tell"}
@@ -127,56 +176,44 @@ type firstFiled struct {
 // mean and change, charts over time, and a table of all entries that is sorted and
 // filtered in the page. It is meant to stand beside the folders of the entries.
 func (h *History) WritePage(w io.Writer) error {
-	if len(h.Entries) == 0 {
+	if h.sums.N == 0 {
 		return errors.New("report: a history without any entry")
 	}
 	trends := h.trends()
-	latest := h.Entries[len(h.Entries)-1]
-	_, name := h.chiefKind()
+	_, name, _ := h.chief()
+	first := h.latest(firstRows)
 	p := &historyPage{
-		frame: frame{Kind: "One device over time", Heading: clean(h.Device, nameLength), Status: latest.row().Status,
-			What: h.what(), Verdict: "in the latest of " + plural(len(h.Entries), "measurement"), More: template.JS(rowsJS)},
+		frame: frame{Kind: "One device over time", Heading: clean(h.sums.Device, nameLength), Status: first[0].Status,
+			What: h.what(), Verdict: "in the latest of " + plural(h.sums.N, "measurement"), More: template.JS(rowsJS)},
 		Trends:  trendRows(trends),
 		TrendOf: "Mean of all " + name + ", with the standard uncertainty that follows from their own and from their scatter.",
 		Caption: "Each entry holds its page of evidence, the result as JSON, the capture and their checksums.",
+		RowSet:  h.rows,
 	}
-	if latest.Verdict != "" {
-		p.Verdict += ", limits: " + latest.row().Verdict
+	if v := first[0].Verdict; v != "" {
+		p.Verdict += ", limits: " + v
 	}
 	p.Title = p.Heading + " – history"
-	var err error
 	if len(p.Trends) > 0 {
-		f, err := h.figure(trends)
+		f, err := h.figure(trends, first[0])
 		if err != nil {
 			return fmt.Errorf("charts of the page: %w", err)
 		}
 		p.Figures = []*figure{f}
 	}
-	if p.RowSet, err = h.rows(); err != nil {
-		return err
-	}
-	for i := len(h.Entries) - 1; i >= 0 && len(p.First) < firstRows; i-- {
-		row := h.Entries[i].row()
-		p.First = append(p.First, firstFiled{row, h.Entries[i].Made.UTC().Format(time.DateTime)})
+	for _, row := range first {
+		p.First = append(p.First, firstFiled{row, whenOf(row.Made)})
 	}
 	return p.write(w, "history.html", p)
 }
 
-func (h *History) rows() (*rowSet, error) {
-	lines := make([][]byte, len(h.Entries))
-	for i, f := range h.Entries {
-		var err error
-		if lines[i], err = f.bytes(); err != nil {
-			return nil, err
-		}
-	}
-	return joinRows(lines), nil
-}
+// whenOf writes a time in milliseconds since 1970.
+func whenOf(ms int64) string { return time.UnixMilli(ms).UTC().Format(time.DateTime) }
 
 // what says which time the history covers.
 func (h *History) what() string {
-	first, last := h.Entries[0].Made.UTC(), h.Entries[len(h.Entries)-1].Made.UTC()
-	if len(h.Entries) == 1 {
+	first, last := time.UnixMilli(h.sums.First).UTC(), time.UnixMilli(h.sums.Last).UTC()
+	if h.sums.N == 1 {
 		return "Measured on " + first.Format(time.DateOnly) + "."
 	}
 	return fmt.Sprintf("Measured from %s to %s.", first.Format(time.DateOnly), last.Format(time.DateOnly))

@@ -2,8 +2,6 @@ package report
 
 import (
 	"fmt"
-	"math"
-	"time"
 
 	"github.com/go-echarts/go-echarts/v2/charts"
 	"github.com/go-echarts/go-echarts/v2/opts"
@@ -35,53 +33,45 @@ const manyEntries = 2000
 type historyPlot struct {
 	*plot
 	*History
-	from, to time.Time
+	from, to float64 // milliseconds since 1970
 	fills    []fill
 }
 
 // figure draws frequency, Q and time constant over time.
-func (h *History) figure(trends []*quantity.Trend) (*figure, error) {
-	p := &historyPlot{plot: &plot{Line: charts.NewLine(), time: axisScale{factor: 1, unit: "UTC"}}, History: h,
-		from: h.Entries[0].Made, to: h.Entries[len(h.Entries)-1].Made}
-	room := max(p.to.Sub(p.from)/50, time.Hour)
-	p.from, p.to = p.from.Add(-room), p.to.Add(room)
+func (h *History) figure(trends [3]*quantity.Trend, latest *filedRow) (*figure, error) {
+	p := &historyPlot{plot: &plot{Line: charts.NewLine(), time: axisScale{factor: 1, unit: "UTC"}}, History: h}
+	room := max(float64(h.sums.Last-h.sums.First)/50, 3.6e6) // an hour at least
+	p.from, p.to = float64(h.sums.First)-room, float64(h.sums.Last)+room
 	for i, what := range followedQuantities {
-		if trends[i] != nil {
-			p.panel(what, trends[i])
+		if trends[i].N > 0 {
+			p.panel(i, trends[i], what.limits(latest))
 		}
 	}
-	f := &figure{Time: "UTC", Dates: true, Panels: p.panels, Views: []view{}, Name: clean(h.Device, nameLength), Fill: p.fills,
+	f := &figure{Time: "UTC", Dates: true, Panels: p.panels, Views: []view{}, Name: clean(h.sums.Device, nameLength), Fill: p.fills,
 		Picture: "history.png", Words: axisWords{"time", "Time shown in all charts", "All entries", "Earlier", "Later"}}
 	var err error
-	f.Option, err = p.finish(p.ms(p.from), p.ms(p.to), fmt.Sprintf("%d charts over the same time: %s of the device with their uncertainties. "+
-		"Every value stands in the table of entries.", len(p.panels), "natural frequency, quality factor and time constant"))
+	f.Option, err = p.finish(p.from, p.to, fmt.Sprintf("%d charts over the same time: natural frequency, quality factor and time constant "+
+		"of the device with their uncertainties. Every value stands in the table of entries.", len(p.panels)))
 	return f, err
 }
 
-func (p *historyPlot) ms(t time.Time) float64 { return float64(t.UnixMilli()) }
-
 // panel draws one quantity: a bar and a point for each entry, mean and limits.
-func (p *historyPlot) panel(what followed, trend *quantity.Trend) {
-	lo, hi := math.Inf(1), math.Inf(-1)
-	present := map[string]bool{}
-	for _, f := range p.Entries {
-		if v := what.of(f).Value; !math.IsNaN(v) {
-			lo, hi = math.Min(lo, v), math.Max(hi, v)
-			present[f.Kind] = true
-		}
-	}
-	scale := scaleFor(lo, hi, 0, trend.Mean.Unit)
+func (p *historyPlot) panel(i int, trend *quantity.Trend, limits *[2]*float64) {
+	what := followedQuantities[i]
+	scale := scaleFor(trend.Mean.Value, trend.Mean.Value, 0, what.unit)
 	scale.places = 12 // a slow drift is small beside the value
 	p.addPanel(upperFirst(what.label), captionHistory, scale.unit, false)
 	p.XAxisList[len(p.panels)-1].Type = "time"
 	for _, k := range kindNames {
-		if present[k.kind] {
-			p.points(key{k.name + ", with U (k = 2)", "ring", k.color}, what, fill{Kind: k.kind, Value: what.value, U: what.u, Factor: scale.factor})
+		if sums := p.sums.Kinds[k.kind]; sums != nil && sums.Trends[i].N > 0 {
+			p.points(key{k.name + ", with U (k = 2)", "ring", k.color}, fill{Kind: k.kind, Value: what.value, U: what.u, Factor: scale.factor})
 		}
 	}
 	p.level(keyMean, trend.Mean.Value, scale)
-	limits := what.limits(&p.Entries[len(p.Entries)-1].Limits)
-	for _, limit := range []*float64{limits.Min, limits.Max} {
+	if limits == nil {
+		return
+	}
+	for _, limit := range limits {
 		if limit != nil {
 			p.level(keyLimits, *limit, scale)
 		}
@@ -89,7 +79,7 @@ func (p *historyPlot) panel(what followed, trend *quantity.Trend) {
 }
 
 // points draws the entries of one kind; the page fills in their numbers.
-func (p *historyPlot) points(k key, what followed, f fill) {
+func (p *historyPlot) points(k key, f fill) {
 	empty := map[string]column{"t": {}, "v": {}}
 	f.Dataset, f.Bars = p.addData(empty), true
 	p.fills = append(p.fills, f)
@@ -97,12 +87,12 @@ func (p *historyPlot) points(k key, what followed, f fill) {
 	f.Dataset, f.Bars = p.addData(empty), false
 	p.fills = append(p.fills, f)
 	p.addSeries(k, "scatter", f.Dataset, "v", charts.WithSeriesOpts(func(s *charts.SingleSeries) {
-		s.Large, s.LargeThreshold = opts.Bool(len(p.Entries) > manyEntries), manyEntries
+		s.Large, s.LargeThreshold = opts.Bool(p.sums.N > manyEntries), manyEntries
 	}))
 }
 
 // level draws a level over the whole time.
 func (p *historyPlot) level(k key, value float64, scale axisScale) {
-	data := p.addData(map[string]column{"t": p.time.column([]float64{p.ms(p.from), p.ms(p.to)}), "v": scale.column([]float64{value, value})})
+	data := p.addData(map[string]column{"t": p.time.column([]float64{p.from, p.to}), "v": scale.column([]float64{value, value})})
 	p.addSeries(k, "line", data, "v")
 }

@@ -1,7 +1,6 @@
 package quantity
 
 import (
-	"errors"
 	"math"
 
 	"gonum.org/v1/gonum/stat/distuv"
@@ -27,80 +26,88 @@ type Trend struct {
 // Drifts reports whether the change is larger than its expanded uncertainty K u.
 func (t *Trend) Drifts() bool { return math.Abs(t.Change.Value) > t.K*t.Change.U }
 
-// TrendOf returns mean and change of the quantities q measured at times at, in any
-// unit of time and in any order; q[i] without a value are left out, and all have
-// one unit. With every uncertainty known the weights are 1/u^2, and where the
+// TrendSums are the running sums that a [Trend] is made of: a new measurement costs
+// the same however many there were. The zero value is of none; JSON keeps it exactly.
+type TrendSums struct {
+	N        int // measurements with a value
+	From, To float64
+	// Weighted by 1/u^2 those whose u is known and not zero, Plain all alike.
+	Weighted, Plain lineMoments
+}
+
+// lineMoments are a weight, centres, and moments about the centres, updated as by
+// D. H. D. West, Commun. ACM 22, 532 (1979), which loses no digits.
+type lineMoments struct {
+	N                      int
+	W, X, Y, Sxx, Sxy, Syy float64
+}
+
+func (m *lineMoments) add(x, y, w float64) {
+	m.N++
+	m.W += w
+	dx, dy := x-m.X, y-m.Y
+	m.X += dx * w / m.W
+	m.Y += dy * w / m.W
+	m.Sxx += w * dx * (x - m.X)
+	m.Sxy += w * dx * (y - m.Y)
+	m.Syy += w * dy * (y - m.Y)
+}
+
+// Add counts a measurement q at the time at, in any unit of time and in any order;
+// one without a value is left out, and all have one unit.
+func (s *TrendSums) Add(at float64, q Quantity) {
+	if !q.Known() {
+		return
+	}
+	if s.N++; s.N == 1 {
+		s.From, s.To = at, at
+	}
+	s.From, s.To = math.Min(s.From, at), math.Max(s.To, at)
+	s.Plain.add(at, q.Value, 1)
+	if w := 1 / (q.U * q.U); q.knownU() && finite(w) && w > 0 {
+		s.Weighted.add(at, q.Value, w)
+	}
+}
+
+// Trend returns mean and change of what was counted, in unit; with N = 0 nothing
+// is known. With every uncertainty known the weights are 1/u^2, and where the
 // scatter is larger than they explain, the uncertainties are multiplied by the
 // Birge ratio sqrt(chi^2/(n-2)) (R. T. Birge, Phys. Rev. 40, 207, 1932; common
 // practice). With one unknown or zero, all weigh the same. What all measurements
 // share, such as a time base, moves neither and is not in the uncertainties.
-func TrendOf(at []float64, q []Quantity) (*Trend, error) {
-	var x, y, w []float64
-	weighted := true
-	unit := ""
-	for i, a := range q {
-		if a.Known() {
-			x, y, w = append(x, at[i]), append(y, a.Value), append(w, 1/(a.U*a.U))
-			weighted = weighted && a.knownU() && finite(1/(a.U*a.U)) && a.U > 0
-			unit = a.Unit
-		}
+func (s *TrendSums) Trend(unit string) *Trend {
+	t := &Trend{N: s.N, Mean: Unknown(unit), Change: Unknown(unit), K: math.NaN(), Birge: math.NaN()}
+	if s.N == 0 {
+		return t
 	}
-	if len(x) == 0 {
-		return nil, errors.New("no measurement has a value")
+	m, weighted := s.Plain, s.Weighted.N == s.N
+	if weighted {
+		m = s.Weighted
 	}
-	if !weighted {
-		w = nil
+	birge := math.Sqrt(m.Syy / float64(m.N-1)) // NaN of one
+	if weighted && !(birge > 1) {
+		birge = 1
 	}
-	t := &Trend{N: len(x), Change: Unknown(unit), K: math.NaN(), Birge: math.NaN()}
-	t.Mean = meanOf(y, w, unit)
-	if line, err := Line(x, y, w); err == nil && len(x) > 2 {
-		t.line(line, x, weighted)
+	t.Mean = New(m.Y, birge/math.Sqrt(m.W), unit)
+	if m.N > 2 && m.Sxx > 0 {
+		t.line(&m, s.To-s.From, weighted)
 	}
-	return t, nil
+	return t
 }
 
-// line takes change and coverage from the straight line.
-func (t *Trend) line(f LineFit, x []float64, weighted bool) {
-	dof := float64(f.Degrees)
+// line takes change and coverage from the straight line (GUM H.3).
+func (t *Trend) line(m *lineMoments, span float64, weighted bool) {
+	dof := float64(m.N - 2)
+	birge := math.Sqrt(math.Max(0, m.Syy-m.Sxy*m.Sxy/m.Sxx) / dof)
 	if weighted {
-		t.Birge = math.Sqrt(f.ChiSquare / dof)
-		if t.Birge <= 1 {
-			dof = math.Inf(1) // the uncertainties stand, and with them k
-		} else {
-			f = f.Scaled()
+		t.Birge = birge
+		if birge <= 1 {
+			birge, dof = 1, math.Inf(1) // the uncertainties stand, and with them k
 		}
 	}
-	lo, hi := x[0], x[0]
-	for _, v := range x {
-		lo, hi = math.Min(lo, v), math.Max(hi, v)
-	}
-	t.Change = New(f.Slope*(hi-lo), math.Sqrt(f.VarSlope)*(hi-lo), t.Mean.Unit)
+	t.Change = New(m.Sxy/m.Sxx*span, birge/math.Sqrt(m.Sxx)*span, t.Mean.Unit)
 	t.K = 2
 	if !math.IsInf(dof, 1) {
 		t.K = distuv.StudentsT{Sigma: 1, Nu: dof}.Quantile(0.975)
 	}
-}
-
-// meanOf is the weighted mean; its uncertainty covers the scatter too.
-func meanOf(y, w []float64, unit string) Quantity {
-	var sw, sum, chi2 float64
-	weight := func(i int) float64 {
-		if w == nil {
-			return 1
-		}
-		return w[i]
-	}
-	for i, v := range y {
-		sw += weight(i)
-		sum += weight(i) * (v - y[0])
-	}
-	mean := y[0] + sum/sw
-	for i, v := range y {
-		chi2 += weight(i) * (v - mean) * (v - mean)
-	}
-	birge := math.Sqrt(chi2 / float64(len(y)-1)) // NaN of one
-	if w != nil && !(birge > 1) {
-		birge = 1
-	}
-	return New(mean, birge/math.Sqrt(sw), unit)
 }

@@ -11,10 +11,7 @@ import (
 // sqrt(1.5/2); Student's t for one degree and 95 % is 12.706 (table of GUM G.2).
 func TestTrendByHand(t *testing.T) {
 	none := math.NaN()
-	trend, err := TrendOf([]float64{0, 1, 2}, []Quantity{New(1, none, "V"), New(3, none, "V"), New(2, none, "V")})
-	if err != nil {
-		t.Fatal(err)
-	}
+	trend := trendOf([]float64{0, 1, 2}, []Quantity{New(1, none, "V"), New(3, none, "V"), New(2, none, "V")})
 	near(t, "mean", trend.Mean.Value, 2, 1e-12)
 	near(t, "u(mean)", trend.Mean.U, 1/math.Sqrt(3), 1e-12)
 	near(t, "change", trend.Change.Value, 1, 1e-12)
@@ -28,10 +25,7 @@ func TestTrendByHand(t *testing.T) {
 // TestTrendKnownUncertainty: with u known and no scatter beyond it, u(mean) =
 // u/sqrt(n) and u(slope) = u/sqrt(sum (x - mean)^2), here 0.1/sqrt(2), k = 2.
 func TestTrendKnownUncertainty(t *testing.T) {
-	trend, err := TrendOf([]float64{2, 0, 1}, []Quantity{New(5.2, 0.1, ""), New(5, 0.1, ""), New(5.1, 0.1, "")})
-	if err != nil {
-		t.Fatal(err)
-	}
+	trend := trendOf([]float64{2, 0, 1}, []Quantity{New(5.2, 0.1, ""), New(5, 0.1, ""), New(5.1, 0.1, "")})
 	near(t, "mean", trend.Mean.Value, 5.1, 1e-12)
 	near(t, "u(mean)", trend.Mean.U, 0.1/math.Sqrt(3), 1e-12)
 	near(t, "change", trend.Change.Value, 0.2, 1e-12)
@@ -42,17 +36,47 @@ func TestTrendKnownUncertainty(t *testing.T) {
 }
 
 func TestTrendFew(t *testing.T) {
-	if _, err := TrendOf([]float64{1}, []Quantity{Unknown("Hz")}); err == nil {
-		t.Error("a trend of nothing")
+	if trend := trendOf([]float64{1}, []Quantity{Unknown("Hz")}); trend.N != 0 || trend.Mean.Known() || trend.Drifts() {
+		t.Errorf("of nothing: %+v", trend)
 	}
-	trend, err := TrendOf([]float64{1}, []Quantity{New(7, 0.5, "Hz")})
-	if err != nil || trend.Mean != New(7, 0.5, "Hz") || trend.Change.Known() || trend.Drifts() {
-		t.Errorf("of one measurement: %+v, %v", trend, err)
+	trend := trendOf([]float64{1}, []Quantity{New(7, 0.5, "Hz")})
+	if trend.Mean != New(7, 0.5, "Hz") || trend.Change.Known() || trend.Drifts() {
+		t.Errorf("of one measurement: %+v", trend)
 	}
 	same := []Quantity{New(7, 0.5, ""), New(8, 0.5, ""), New(9, 0.5, "")}
-	if trend, err = TrendOf([]float64{1, 1, 1}, same); err != nil || trend.Change.Known() || trend.Drifts() {
-		t.Errorf("all at one time: %+v, %v", trend, err)
+	if trend = trendOf([]float64{1, 1, 1}, same); trend.Change.Known() || trend.Drifts() {
+		t.Errorf("all at one time: %+v", trend)
 	}
+}
+
+// TestTrendAsLine: the running sums give the line of all points at once, far from
+// the origin too.
+func TestTrendAsLine(t *testing.T) {
+	random := rand.New(rand.NewPCG(6, 2))
+	var x, y, w []float64
+	var q []Quantity
+	for i := range 1000 {
+		u := 0.5 + random.Float64()
+		v := 125e3 + 1e-3*float64(i) + u*random.NormFloat64()
+		x, y, w, q = append(x, 1.7e12+1e7*float64(i)), append(y, v), append(w, 1/(u*u)), append(q, New(v, u, "Hz"))
+	}
+	f, err := Line(x, y, w)
+	if err != nil {
+		t.Fatal(err)
+	}
+	trend := trendOf(x, q)
+	span := x[999] - x[0]
+	near(t, "change", trend.Change.Value, f.Slope*span, 1e-9)
+	near(t, "Birge ratio", trend.Birge, math.Sqrt(f.ChiSquare/998), 1e-9)
+}
+
+// trendOf counts all measurements.
+func trendOf(at []float64, q []Quantity) *Trend {
+	var s TrendSums
+	for i := range q {
+		s.Add(at[i], q[i])
+	}
+	return s.Trend(q[0].Unit)
 }
 
 // TestTrendErrorRate: of steady quantities 5 in 100 are said to drift, by the
@@ -68,10 +92,7 @@ func TestTrendErrorRate(t *testing.T) {
 			for i := range 8 {
 				at, q = append(at, float64(i)), append(q, New(100+random.NormFloat64(), u, ""))
 			}
-			trend, err := TrendOf(at, q)
-			if err != nil {
-				t.Fatal(err)
-			}
+			trend := trendOf(at, q)
 			if trend.Drifts() {
 				drifts++
 			}

@@ -19,7 +19,6 @@ import (
 	"hash"
 	"io"
 	"io/fs"
-	"math/rand/v2"
 	"os"
 	"path/filepath"
 	"regexp"
@@ -67,13 +66,13 @@ func Add(dir, device string, e *Entry) (folder string, err error) {
 	if device == "" {
 		return "", errors.New("an entry of the archive needs the name of its device")
 	}
-	home := filepath.Join(dir, FolderOf(device))
-	name, err := add(dir, home, e)
+	home := FolderOf(device)
+	name, m, err := add(dir, home, e)
 	if err != nil {
 		return "", fmt.Errorf("nothing was filed in the archive %s: %w", dir, plainError(err))
 	}
-	folder = filepath.Join(home, name)
-	if err := refresh(dir, filepath.Base(home)); err != nil {
+	folder = filepath.Join(dir, home, name)
+	if err := refresh(dir, home, name, m); err != nil {
 		return folder, fmt.Errorf("filed %s, but the index pages are not up to date (dieaway archive rebuild mends them): %w", folder, plainError(err))
 	}
 	return folder, nil
@@ -88,31 +87,50 @@ func plainError(err error) error {
 	return err
 }
 
-// add writes the entry into the device's folder and returns its name.
-func add(dir, home string, e *Entry) (name string, err error) {
+// add writes the entry into the device's folder. It returns its name and the mark
+// that stays until the index pages show it.
+func add(dir, folder string, e *Entry) (name string, m *mark, err error) {
 	if err := check(e); err != nil {
-		return "", err
+		return "", nil, err
 	}
+	home := filepath.Join(dir, folder)
 	if err := os.MkdirAll(home, 0o777); err != nil {
-		return "", err
+		return "", nil, err
 	}
-	temp, held, err := begin(dir, home, nameOf(e.Made, e.Sources[0].SHA256))
+	if m, err = begin(dir, folder); err != nil {
+		return "", nil, err
+	}
+	temp := filepath.Join(home, fmt.Sprintf(".%s.%s.tmp", nameOf(e.Made, e.Sources[0].SHA256), m.id))
+	if name, err = m.fill(temp, home, e); err != nil {
+		os.RemoveAll(temp)
+		m.clear()
+		return "", nil, err
+	}
+	return name, m, nil
+}
+
+// begin sets the mark of a writer.
+func begin(dir, folder string) (*mark, error) {
+	release, err := lock(dir)
 	if err != nil {
+		return nil, err
+	}
+	defer release()
+	return setMark(dir, folder)
+}
+
+// fill writes the entry beside its place, moves it there and makes that durable.
+func (m *mark) fill(temp, home string, e *Entry) (name string, err error) {
+	if err := os.Mkdir(temp, 0o777); err != nil {
 		return "", err
 	}
-	defer func() {
-		held.Close()
-		if err != nil {
-			os.RemoveAll(temp)
-		}
-	}()
 	if err := write(temp, e); err != nil {
 		return "", err
 	}
 	if name, err = place(temp, home, e); err != nil {
 		return "", err
 	}
-	return name, errors.Join(syncFolder(home), syncFolder(dir))
+	return name, errors.Join(syncFolder(home), syncFolder(filepath.Dir(home)))
 }
 
 func check(e *Entry) error {
@@ -125,25 +143,6 @@ func check(e *Entry) error {
 		}
 	}
 	return nil
-}
-
-// begin makes the folder that the entry is written in, and holds its lock, which
-// tells others that somebody is at work there.
-func begin(dir, home, name string) (temp string, held *os.File, err error) {
-	release, err := lock(dir) // nobody clears away between the next two steps
-	if err != nil {
-		return "", nil, err
-	}
-	defer release()
-	temp = filepath.Join(home, fmt.Sprintf(".%s.%016x.tmp", name, rand.Uint64()))
-	if err := os.Mkdir(temp, 0o777); err != nil {
-		return "", nil, err
-	}
-	if held, err = os.Open(temp); err != nil {
-		return "", nil, errors.Join(err, os.Remove(temp))
-	}
-	tryLock(held)
-	return temp, held, nil
 }
 
 // place renames the finished folder. Two entries of one capture within a

@@ -7,6 +7,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"maps"
 	"os"
 	"path/filepath"
 	"regexp"
@@ -173,16 +174,16 @@ func mustShow(t *testing.T, dir string, want map[string]int) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if len(devices.Rows) != len(want) {
-		t.Errorf("the page of all devices shows %d, want %d", len(devices.Rows), len(want))
+	if shown := devices.Counts(); !maps.Equal(shown, want) {
+		t.Errorf("the page of all devices shows %v, want %v", shown, want)
 	}
 	for folder, n := range want {
-		entries, err := report.ReadHistory(readFile(t, dir, folder, "index.html"))
-		if err != nil || len(entries) != n {
-			t.Errorf("the page of %s shows %d entries, %v, want %d", folder, len(entries), err, n)
+		h, err := report.ReadHistory(readFile(t, dir, folder, "index.html"))
+		if err != nil || h.Len() != n {
+			t.Errorf("the page of %s shows %d entries, %v, want %d", folder, h.Len(), err, n)
 		}
-		if devices.Rows[folder] == nil || devices.Rows[folder].Count() != n {
-			t.Errorf("the page of all devices does not show %d entries of %s", n, folder)
-		}
+	}
+	if left, err := os.ReadDir(filepath.Join(dir, pendingName)); err != nil || len(left) > 0 {
+		t.Errorf("marks of writers are left: %v, %v", left, err)
 	}
 }

@@ -24,23 +24,35 @@ func Rebuild(dir string) (devices, entries int, err error) {
 		return 0, 0, err
 	}
 	defer release()
+	left := leftBehind(dir)
+	page, entries, err := rebuild(dir)
+	if err == nil {
+		clearMarks(left)
+	}
+	return page.Len(), entries, err
+}
+
+// rebuild makes the pages of all devices and then the first one.
+func rebuild(dir string) (page *report.Devices, entries int, err error) {
+	page = report.NewDevices()
 	folders, err := devicesOf(dir)
 	if err != nil {
-		return 0, 0, err
+		return page, 0, err
 	}
-	all := &report.Devices{Rows: map[string]*report.DeviceRow{}}
 	for _, folder := range folders {
-		h, err := refreshDevice(dir, folder, nil)
+		h, err := rebuildDevice(dir, folder)
 		if err != nil {
-			return devices, entries, err
+			return page, entries, err
 		}
-		if h != nil {
-			all.Rows[folder] = h.DeviceRow(folder)
-			devices++
-			entries += len(h.Entries)
+		if h.Len() == 0 {
+			continue
 		}
+		if err := page.Set(folder, h); err != nil {
+			return page, entries, err
+		}
+		entries += h.Len()
 	}
-	return devices, entries, writePage(dir, all.WritePage)
+	return page, entries, writePage(dir, page.WritePage)
 }
 
 // mustBeArchive refuses a folder that holds something else: it is not for us to
@@ -58,101 +70,123 @@ func mustBeArchive(dir string) error {
 	return fmt.Errorf("%s is not an archive: no folder in it holds an entry", dir)
 }
 
-// refresh brings the index pages up to date after a change to one device. What
-// stands in the pages is taken over, and only entries that they lack are read; a
-// page of another make, or a damaged one, is made anew.
-func refresh(dir, folder string) error {
+// refresh brings the index pages up to date after the entry name of a device, and
+// then clears the writer's mark. What stands in the pages is taken over, and only the
+// new entry is read. A page of another make, or a damaged one, is made anew from the
+// entries, and so are those of devices whose writers were ended in the middle.
+func refresh(dir, folder, name string, m *mark) (err error) {
 	release, err := lock(dir)
 	if err != nil {
+		m.leave()
 		return err
 	}
 	defer release()
-	page, err := os.ReadFile(filepath.Join(dir, folder, indexName))
-	if err != nil && !errors.Is(err, fs.ErrNotExist) {
+	defer func() {
+		if err != nil {
+			m.leave()
+		} else {
+			m.clear()
+		}
+	}()
+	left := leftBehind(dir)
+	changed := map[string]*report.History{folder: nil}
+	for behind := range left {
+		changed[behind] = nil
+	}
+	if left[folder] == nil {
+		changed[folder] = addToPage(dir, folder, name)
+	}
+	for f, h := range changed {
+		if h == nil {
+			if changed[f], err = rebuildDevice(dir, f); err != nil {
+				return err
+			}
+		}
+	}
+	if err := refreshDevices(dir, changed); err != nil {
 		return err
 	}
-	known, err := report.ReadHistory(page)
-	if err != nil {
-		known = nil
-	}
-	h, err := refreshDevice(dir, folder, known)
-	if err != nil || h == nil {
-		return err
-	}
-	return refreshDevices(dir, h.DeviceRow(folder), folder)
+	clearMarks(left)
+	return nil
 }
 
-// refreshDevice writes the page of one device and returns what it shows, nil for
-// a device without entries.
-func refreshDevice(dir, folder string, known map[string]*report.Filed) (*report.History, error) {
+func clearMarks(left map[string][]string) {
+	for _, marks := range left {
+		for _, name := range marks {
+			os.Remove(name)
+		}
+	}
+}
+
+// addToPage adds an entry to the page of its device. It returns nil when the page
+// has to be made anew.
+func addToPage(dir, folder, name string) *report.History {
+	page, err := os.ReadFile(filepath.Join(dir, folder, indexName))
+	if err != nil {
+		return nil
+	}
+	h, err := report.ReadHistory(page)
+	if err != nil {
+		return nil
+	}
+	r := readRecord(dir, folder, name)
+	if h.Add(r.Device, &r.Filed) != nil {
+		return nil
+	}
+	if writePage(filepath.Join(dir, folder), h.WritePage) != nil {
+		return nil // what is wrong shows again
+	}
+	return h
+}
+
+// rebuildDevice makes the page of one device from its entries, after it has cleared
+// away what was left behind; one without entries has no page.
+func rebuildDevice(dir, folder string) (*report.History, error) {
 	home := filepath.Join(dir, folder)
-	clearAway(home)
-	names, err := namesOf(home)
-	if err != nil || len(names) == 0 {
+	temporaries, err := temporariesLeft(dir, folder)
+	if err != nil {
 		return nil, err
 	}
-	h := &report.History{}
-	for _, name := range names {
-		f := known[name]
-		if f == nil {
-			f = &readRecord(dir, folder, name).Filed
-		}
-		h.Entries = append(h.Entries, f)
+	for _, name := range temporaries {
+		os.RemoveAll(filepath.Join(home, name)) // what stays is named by Verify
 	}
-	h.Device = readRecord(dir, folder, names[len(names)-1]).Device
+	names, err := namesOf(home)
+	if err != nil {
+		return nil, err
+	}
+	h := report.NewHistory()
+	for _, name := range names {
+		r := readRecord(dir, folder, name)
+		if err := h.Add(r.Device, &r.Filed); err != nil {
+			return nil, err
+		}
+	}
+	if len(names) == 0 {
+		return h, nil
+	}
 	return h, writePage(home, h.WritePage)
 }
 
-// refreshDevices writes the page of all devices. Devices that it lacks, which are
-// many only when there was no such page, are read.
-func refreshDevices(dir string, row *report.DeviceRow, folder string) error {
-	page, err := os.ReadFile(filepath.Join(dir, indexName))
+// refreshDevices shows what has changed on the page of all devices.
+func refreshDevices(dir string, changed map[string]*report.History) error {
+	text, err := os.ReadFile(filepath.Join(dir, indexName))
 	if err != nil && !errors.Is(err, fs.ErrNotExist) {
 		return err
 	}
-	all, err := report.ReadDevices(page)
+	page, err := report.ReadDevices(text)
 	if err != nil {
-		all = &report.Devices{Rows: map[string]*report.DeviceRow{}}
-	}
-	all.Rows[folder] = row
-	folders, err := devicesOf(dir)
-	if err != nil {
+		_, _, err := rebuild(dir)
 		return err
 	}
-	there := map[string]bool{}
-	for _, f := range folders {
-		there[f] = true
-		if all.Rows[f] != nil {
+	for folder, h := range changed {
+		if h.Len() == 0 {
 			continue
 		}
-		h, err := refreshDevice(dir, f, nil)
-		if err != nil {
+		if err := page.Set(folder, h); err != nil {
 			return err
 		}
-		if h != nil {
-			all.Rows[f] = h.DeviceRow(f)
-		}
 	}
-	for f := range all.Rows {
-		if !there[f] {
-			delete(all.Rows, f)
-		}
-	}
-	return writePage(dir, all.WritePage)
-}
-
-// clearAway removes entries that their writers cannot finish any more. It is
-// called under the lock, so that none has just begun.
-func clearAway(home string) {
-	names, err := foldersOf(home, temporary.MatchString)
-	if err != nil {
-		return
-	}
-	for _, name := range names {
-		if f := filepath.Join(home, name); abandoned(f) {
-			os.RemoveAll(f) // what stays is named by Verify
-		}
-	}
+	return writePage(dir, page.WritePage)
 }
 
 // writePage replaces the index page of a folder in one step. It is not made

@@ -6,6 +6,8 @@ import (
 	"os"
 	"path/filepath"
 	"testing"
+
+	"dieaway/report"
 )
 
 // TestRebuild: from the entries alone come the same pages, byte for byte.
@@ -44,13 +46,6 @@ func TestIndexHeals(t *testing.T) {
 		},
 		"first page missing": func(dir string) error { return os.Remove(filepath.Join(dir, indexName)) },
 		"first page cut":     func(dir string) error { return os.Truncate(filepath.Join(dir, indexName), 20000) },
-		"entry gone": func(dir string) error {
-			folder, err := Add(dir, "loop", entryOf("loop", 7))
-			if err != nil {
-				return err
-			}
-			return os.RemoveAll(folder)
-		},
 	} {
 		dir := t.TempDir()
 		mustAdd(t, dir, "other", 0)
@@ -63,6 +58,38 @@ func TestIndexHeals(t *testing.T) {
 		t.Log(name)
 		mustShow(t, dir, map[string]int{"other": 1, "loop": 3})
 	}
+}
+
+// TestOutOfOrder: an entry with an older stamp takes its place in the pages.
+func TestOutOfOrder(t *testing.T) {
+	dir, other := t.TempDir(), t.TempDir()
+	for _, i := range []int{3, 1, 2, 0} {
+		mustAdd(t, dir, "loop", i)
+		mustAdd(t, other, "loop", 3-i)
+	}
+	for _, page := range []string{"index.html", "loop/index.html"} {
+		if !bytes.Equal(readFile(t, dir, page), readFile(t, other, page)) {
+			t.Errorf("%s depends on the order in which entries were filed", page)
+		}
+	}
+}
+
+// TestLeftBehind: an entry whose writer was ended before the pages showed it is
+// shown with the next entry of any device, and its mark is gone.
+func TestLeftBehind(t *testing.T) {
+	dir := t.TempDir()
+	mustAdd(t, dir, "loop", 0)
+	name, m, err := add(dir, "loop", entryOf("loop", 1))
+	if err != nil || name == "" {
+		t.Fatal(err)
+	}
+	mustAdd(t, dir, "other", 2) // its writer still lives
+	if h, err := report.ReadHistory(readFile(t, dir, "loop", indexName)); err != nil || h.Len() != 1 {
+		t.Errorf("the page shows an entry before its time: %v, %v", h, err)
+	}
+	m.leave()
+	mustAdd(t, dir, "other", 3)
+	mustShow(t, dir, map[string]int{"loop": 2, "other": 2})
 }
 
 // TestOlderEntries: an entry whose result has another form, is no JSON or is gone

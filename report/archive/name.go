@@ -85,5 +85,5 @@ func parseName(name string) (made time.Time, digest string, ok bool) {
 	return made, parts[2], err == nil
 }
 
-// temporary is the name of an entry on its way.
-var temporary = regexp.MustCompile(`^\.(.+)\.[0-9a-f]{16}\.tmp$`)
+// temporary is the name of an entry on its way, with the identity of its writer.
+var temporary = regexp.MustCompile(`^\..+\.([0-9a-f]{16})\.tmp$`)

@@ -1,6 +1,7 @@
 package archive
 
 import (
+	"cmp"
 	"encoding/json"
 	"fmt"
 	"os"
@@ -38,9 +39,10 @@ func namesOf(home string) ([]string, error) {
 	if err != nil {
 		return nil, err
 	}
-	// With and without a fraction of a second the names do not sort by time.
-	slices.SortStableFunc(names, func(a, b string) int {
-		return strings.Compare(strings.TrimSuffix(a[:strings.IndexByte(a, '-')], "Z"), strings.TrimSuffix(b[:strings.IndexByte(b, '-')], "Z"))
+	slices.SortFunc(names, func(a, b string) int { // in the order that a history wants
+		at, _, _ := parseName(a)
+		bt, _, _ := parseName(b)
+		return cmp.Or(cmp.Compare(at.UnixMilli(), bt.UnixMilli()), strings.Compare(a, b))
 	})
 	return names, nil
 }

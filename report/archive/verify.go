@@ -63,14 +63,12 @@ func (v *verifier) problem(path, what, format string, args ...any) {
 // device verifies all entries of one device.
 func (v *verifier) device(folder string) error {
 	home := filepath.Join(v.dir, folder)
-	left, err := foldersOf(home, temporary.MatchString)
+	left, err := temporariesLeft(v.dir, folder)
 	if err != nil {
 		return err
 	}
 	for _, name := range left {
-		if abandoned(filepath.Join(home, name)) {
-			v.problem(filepath.Join(folder, name), "half-written", "its writer was ended in the middle; rebuild clears it away")
-		}
+		v.problem(filepath.Join(folder, name), "half-written", "its writer was ended in the middle; rebuild clears it away")
 	}
 	names, err := namesOf(home)
 	if err != nil {
