@@ -105,7 +105,7 @@ type followed struct {
 }
 
 var followedQuantities = [3]followed{
-	{"natural frequency", "f_0", "Hz", "f", "fu", func(f *Filed) quantity.Quantity { return f.NaturalFrequency }, func(r *filedRow) *[2]*float64 { return r.LF }},
+	{"natural frequency", "f₀", "Hz", "f", "fu", func(f *Filed) quantity.Quantity { return f.NaturalFrequency }, func(r *filedRow) *[2]*float64 { return r.LF }},
 	{"quality factor", "Q", "", "q", "qu", func(f *Filed) quantity.Quantity { return f.Q }, func(r *filedRow) *[2]*float64 { return r.LQ }},
 	{"time constant", "τ", "s", "a", "au", func(f *Filed) quantity.Quantity { return f.TimeConstant }, func(r *filedRow) *[2]*float64 { return r.LT }},
 }
@@ -195,7 +195,7 @@ func (h *History) WritePage(w io.Writer) error {
 	}
 	p.Title = p.Heading + " – history"
 	if len(p.Trends) > 0 {
-		f, err := h.figure(trends, first[0])
+		f, err := h.figure(trends, first)
 		if err != nil {
 			return fmt.Errorf("charts of the page: %w", err)
 		}

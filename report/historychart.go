@@ -38,13 +38,13 @@ type historyPlot struct {
 }
 
 // figure draws frequency, Q and time constant over time.
-func (h *History) figure(trends [3]*quantity.Trend, latest *filedRow) (*figure, error) {
+func (h *History) figure(trends [3]*quantity.Trend, latest []*filedRow) (*figure, error) {
 	p := &historyPlot{plot: &plot{Line: charts.NewLine(), time: axisScale{factor: 1, unit: "UTC"}}, History: h}
 	room := max(float64(h.sums.Last-h.sums.First)/50, 3.6e6) // an hour at least
 	p.from, p.to = float64(h.sums.First)-room, float64(h.sums.Last)+room
 	for i, what := range followedQuantities {
 		if trends[i].N > 0 {
-			p.panel(i, trends[i], what.limits(latest))
+			p.panel(i, trends[i], limitsOf(latest, what))
 		}
 	}
 	f := &figure{Time: "UTC", Dates: true, Panels: p.panels, Views: []view{}, Name: clean(h.sums.Device, nameLength), Fill: p.fills,
@@ -53,6 +53,16 @@ func (h *History) figure(trends [3]*quantity.Trend, latest *filedRow) (*figure, 
 	f.Option, err = p.finish(p.from, p.to, fmt.Sprintf("%d charts over the same time: natural frequency, quality factor and time constant "+
 		"of the device with their uncertainties. Every value stands in the table of entries.", len(p.panels)))
 	return f, err
+}
+
+// limitsOf are the limits of the newest of the entries that has any.
+func limitsOf(latest []*filedRow, what followed) *[2]*float64 {
+	for _, row := range latest {
+		if l := what.limits(row); l != nil {
+			return l
+		}
+	}
+	return nil
 }
 
 // panel draws one quantity: a bar and a point for each entry, mean and limits.

@@ -19,6 +19,7 @@
     return e;
   };
   const when = (ms) => new Date(ms).toISOString().slice(0, 19).replace("T", " ");
+  const names = heads.map((h) => h.textContent);
   const link = (href, text) => {
     const a = element("a");
     a.href = href;
@@ -54,6 +55,7 @@
       const cell = element(first ? "th" : "td", undefined, head.className);
       if (first) cell.scope = "row";
       kinds[as](cell, r, text || sort);
+      if (!first && cell.hasChildNodes()) cell.dataset.label = names[heads.indexOf(head)];
       tr.append(cell);
     }
     return tr;
