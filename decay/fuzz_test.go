@@ -52,7 +52,7 @@ func FuzzAnalyze(f *testing.F) {
 
 // fuzzChannel reads 16-bit samples; mode bits add gaps, uneven stamps, and coarse levels.
 func fuzzChannel(data []byte, mode uint8, scale float64) *capture.Channel {
-	if len(data) > 4000 || math.IsNaN(scale) || math.IsInf(scale, 0) {
+	if len(data) > 1500 || math.IsNaN(scale) || math.IsInf(scale, 0) {
 		return nil
 	}
 	ch := &capture.Channel{Name: "x", Unit: "V", Axis: &capture.Axis{Interval: 1e-6}}
