@@ -96,7 +96,7 @@ func newApp(stdin io.Reader, stdout, stderr io.Writer) *cli.App {
 		Reader:         stdin,
 		Writer:         stdout,
 		ErrWriter:      stderr,
-		Commands:       []*cli.Command{fitCommand(), sweepCommand(), crosscheckCommand(), componentsCommand(), planCommand(), simulateCommand(), watchCommand(), archiveCommand(), demoCommand()},
+		Commands:       []*cli.Command{fitCommand(), sweepCommand(), crosscheckCommand(), componentsCommand(), planCommand(), simulateCommand(), watchCommand(), archiveCommand(), demoCommand(), completionCommand(), manCommand()},
 		Action:         noCommand,
 		OnUsageError:   usageError,
 		ExitErrHandler: func(*cli.Context, error) {}, // run reports

@@ -20,7 +20,11 @@ func archiveCommand() *cli.Command {
 		Usage:     "list or verify what was filed with --archive, or make its index pages anew",
 		UsageText: "dieaway archive list|verify|rebuild [flags] DIR",
 		Description: "list prints every entry, verify recomputes every checksum and names what is altered,\n" +
-			"missing or half-written (exit code 1), and rebuild makes all index pages from the entries.",
+			"missing or half-written (exit code 1), and rebuild makes all index pages from the entries.\n\n" +
+			"Examples:\n" +
+			"   dieaway archive list evidence --device 'loop 07'\n" +
+			"   dieaway archive verify evidence\n" +
+			"   dieaway archive rebuild evidence",
 		Flags: []cli.Flag{
 			&cli.BoolFlag{Name: "json", Usage: "list: print one JSON object per entry", DisableDefaultText: true},
 			&cli.BoolFlag{Name: "csv", Usage: "list: print a table of comma-separated values", DisableDefaultText: true},

@@ -23,7 +23,10 @@ func componentsCommand() *cli.Command {
 		UsageText: "dieaway components [flags] CAPTURE...",
 		Description: "Each capture is a ring-down of the same circuit with another known capacitor across its\n" +
 			"own, or another known resistor in its loop: give the values in the order of the captures,\n" +
-			"with 0 for the circuit as it is. A tolerance makes the result honest: \"0,100p +- 1 %\".",
+			"with 0 for the circuit as it is. A tolerance makes the result honest: \"0,100p +- 1 %\".\n\n" +
+			"Examples:\n" +
+			"   dieaway components --added-capacitance '0, 220p +- 1 %, 470p +- 1 %' node.csv node-220p.csv node-470p.csv\n" +
+			"   dieaway components --added-resistance 0,10,33 --bench loop07.toml ring.csv ring-10.csv ring-33.csv",
 		Flags: append([]cli.Flag{
 			&cli.StringFlag{Name: "added-capacitance", Usage: "the capacitor of each capture, as `0,100p,220p`"},
 			&cli.StringFlag{Name: "added-resistance", Usage: "the resistor of each capture, as `0,10,33`"},

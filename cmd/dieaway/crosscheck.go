@@ -18,7 +18,10 @@ func crosscheckCommand() *cli.Command {
 		Description: "Measures both, compares natural frequency, Q, damping ratio and bandwidth, and says where\n" +
 			"differences come from. With a bench file source and probe of both set-ups are taken out\n" +
 			"and the loss is told apart. The exit code is 5 when they disagree. Flags are those of fit\n" +
-			"and of sweep.",
+			"and of sweep.\n\n" +
+			"Examples:\n" +
+			"   dieaway crosscheck --bench loop07.toml ring.csv sweep.csv -o check.html\n" +
+			"   dieaway crosscheck ring.csv sweep.csv --json",
 		Flags:           crosscheckFlags(),
 		Action:          crosscheck,
 		OnUsageError:    usageError,

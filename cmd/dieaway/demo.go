@@ -31,7 +31,10 @@ func demoCommand() *cli.Command {
 		Usage:     "do the whole job on a built-in capture; writes " + demoPage,
 		UsageText: "dieaway demo [flags]",
 		Description: "Measures the simulated ring-down of " + demoDevice + ", a 125 kHz loop antenna, with the same\n" +
-			"code as fit, prints the summary and writes the page into the current folder.",
+			"code as fit, prints the summary and writes the page into the current folder.\n\n" +
+			"Examples:\n" +
+			"   dieaway demo\n" +
+			"   dieaway demo -o first.html",
 		Flags:           outputFlags(),
 		Action:          demo,
 		OnUsageError:    usageError,

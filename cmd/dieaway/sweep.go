@@ -20,7 +20,11 @@ func sweepCommand() *cli.Command {
 		UsageText: "dieaway sweep [flags] SWEEP...",
 		Description: "Reads each table of a driven sweep, or Touchstone file (\"-\" is standard input), fits the\n" +
 			"resonance in it and prints what it found. Columns are told by their names; where that is\n" +
-			"not so, name them by their heading or their number, counted from 1.",
+			"not so, name them by their heading or their number, counted from 1.\n\n" +
+			"Examples:\n" +
+			"   dieaway sweep sweep.csv -o sweep.html\n" +
+			"   dieaway sweep sweep.csv --across resistor --reference none\n" +
+			"   dieaway sweep antenna.s1p --json",
 		Flags:           sweepFlags(),
 		Action:          sweep,
 		OnUsageError:    usageError,
