@@ -2,6 +2,8 @@ package circuit_test
 
 import (
 	"fmt"
+	"io"
+	"log"
 
 	"dieaway/decay"
 	"dieaway/decay/circuit"
@@ -53,4 +55,27 @@ func ExampleParseBench() {
 	fmt.Println(err)
 	// Output:
 	// loop07.toml: line 2: circuit.inductance: expected a value in H such as "10 mH", found "10 nF", which is in F
+}
+
+// Write the capture of a circuit whose values are known.
+func ExampleSimulation() {
+	bench, err := circuit.ParseBench([]byte(`
+[circuit]
+inductance = "1.62 mH"
+capacitance = "1.0 nF"
+resistor = "80"
+`), "bench.toml")
+	if err != nil {
+		log.Fatal(err)
+	}
+	s := &circuit.Simulation{Bench: bench, Noise: 5e-3, Converter: circuit.Converter{Bits: 8, FullScale: 4}}
+	if err := s.Complete(20e-6, 200e-6); err != nil { // before the trigger, in all
+		log.Fatal(err)
+	}
+	record, err := s.Record()
+	if err != nil {
+		log.Fatal(err)
+	}
+	fmt.Println(len(record.Samples), "samples,", record.Write(io.Discard))
+	// Output: 1000 samples, <nil>
 }
