@@ -204,5 +204,5 @@ func (c *setChart) bars(rows []*SetRow, p spreadOf) {
 		fmt.Fprintf(c, `<rect class="count" x="%g" y="%.1f" width="%.1f" height="%.1f"><title>%d from %s</title></rect>`, barsLeft, c.y(low+step),
 			barsWide*float64(n)/float64(most), c.y(low)-c.y(low+step), n, quantity.Format(low, p.Mean.Unit, 6))
 	}
-	fmt.Fprintf(c, `<text x="%g" y="228">%d at most</text>`, barsLeft, most)
+	fmt.Fprintf(c, `<text x="%g" y="228">longest bar: %d</text>`, barsLeft, most)
 }

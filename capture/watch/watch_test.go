@@ -232,3 +232,29 @@ func TestHandleFails(t *testing.T) {
 		t.Errorf("%v, want %v", err, want)
 	}
 }
+
+// FuzzJournal: any text is read, and what is added after it is read back.
+func FuzzJournal(f *testing.F) {
+	f.Add("12 34 \"a.csv\"\n", "b.csv")
+	f.Add("12 34 \"a.cs", "\n\xff")
+	f.Fuzz(func(t *testing.T, text, file string) {
+		name := filepath.Join(t.TempDir(), "journal")
+		put(t, filepath.Dir(name), "journal", text)
+		j, err := OpenJournal(name, &Folder{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		want := File{file, Stamp{5, -7}}
+		if err := errors.Join(j.Add(want), j.Close()); err != nil {
+			t.Fatal(err)
+		}
+		again := &Folder{}
+		if j, err = OpenJournal(name, again); err != nil {
+			t.Fatal(err)
+		}
+		j.Close()
+		if got := again.done[file]; got != want.Stamp {
+			t.Errorf("%q is read back as %v", file, got)
+		}
+	})
+}

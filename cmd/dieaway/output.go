@@ -17,56 +17,63 @@ type output struct {
 	// name is where the file goes; file.Name() is the same when the place is a
 	// device or a pipe, which is written directly.
 	name string
+	// what is in the file, for messages.
+	what string
 }
 
-// createOutput opens the output name. It refuses a name that is one of inputs,
-// by whatever path or link.
+// createOutput opens the report name. It refuses a name that is one of inputs, by
+// whatever path or link.
 func createOutput(name string, inputs []string) (*output, error) {
 	if name == "-" {
 		return nil, usagef("the report cannot go to standard output: give it a file name")
 	}
+	return createFile("report", name, inputs)
+}
+
+// createFile opens an output of any kind.
+func createFile(what, name string, inputs []string) (*output, error) {
 	there, err := os.Stat(name)
 	switch {
 	case errors.Is(err, fs.ErrNotExist):
-		return createBeside(name, 0o666)
+		return createBeside(what, name, 0o666)
 	case err != nil:
-		return nil, fmt.Errorf("cannot write the report: %w", err)
+		return nil, fmt.Errorf("cannot write the %s: %w", what, err)
 	case there.IsDir():
-		return nil, fmt.Errorf("cannot write the report: %s is a folder, expected the name of a file", name)
+		return nil, fmt.Errorf("cannot write the %s: %s is a folder, expected the name of a file", what, name)
 	}
 	if input, same := sameAsOne(there, inputs); same {
-		return nil, usagef("the report %s would overwrite the input %s", name, input)
+		return nil, usagef("the %s %s would overwrite the input %s", what, name, input)
 	}
 	if !there.Mode().IsRegular() {
 		file, err := os.OpenFile(name, os.O_WRONLY, 0)
 		if err != nil {
-			return nil, fmt.Errorf("cannot write the report: %w", err)
+			return nil, fmt.Errorf("cannot write the %s: %w", what, err)
 		}
-		return &output{file: file, name: name}, nil
+		return &output{file: file, name: name, what: what}, nil
 	}
 	if name, err = filepath.EvalSymlinks(name); err != nil { // a link stays a link
-		return nil, fmt.Errorf("cannot write the report: %w", err)
+		return nil, fmt.Errorf("cannot write the %s: %w", what, err)
 	}
-	return createBeside(name, there.Mode().Perm())
+	return createBeside(what, name, there.Mode().Perm())
 }
 
 // createBeside opens a hidden file in the folder of name, with the permissions
 // perm less those that the user's mask takes away.
-func createBeside(name string, perm fs.FileMode) (*output, error) {
+func createBeside(what, name string, perm fs.FileMode) (*output, error) {
 	folder, base := filepath.Split(name)
 	hidden := fmt.Sprintf("%s.%s.%08x.tmp", folder, base, rand.Uint32())
 	file, err := os.OpenFile(hidden, os.O_WRONLY|os.O_CREATE|os.O_EXCL, perm)
 	if errors.Is(err, fs.ErrNotExist) {
-		return nil, fmt.Errorf("cannot write the report %s: the folder %s does not exist", name, filepath.Clean(folder))
+		return nil, fmt.Errorf("cannot write the %s %s: the folder %s does not exist", what, name, filepath.Clean(folder))
 	}
 	if err != nil {
 		var path *fs.PathError
 		if errors.As(err, &path) {
 			err = path.Err // the hidden name would only puzzle
 		}
-		return nil, fmt.Errorf("cannot write the report %s: %w", name, err)
+		return nil, fmt.Errorf("cannot write the %s %s: %w", what, name, err)
 	}
-	return &output{file: file, name: name}, nil
+	return &output{file: file, name: name, what: what}, nil
 }
 
 // sameAsOne returns the name among inputs that is the file there.
@@ -94,7 +101,7 @@ func (o *output) commit() error {
 	}
 	if err != nil {
 		o.discard()
-		return fmt.Errorf("cannot write the report %s: %w", o.name, err)
+		return fmt.Errorf("cannot write the %s %s: %w", o.what, o.name, err)
 	}
 	return nil
 }

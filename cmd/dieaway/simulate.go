@@ -165,13 +165,13 @@ func writeSimulated(c *cli.Context, b *circuit.Bench, write func(io.Writer) erro
 	if name == "" || name == "-" {
 		return write(c.App.Writer)
 	}
-	out, err := createOutput(name, []string{b.File})
+	out, err := createFile(c.Args().First(), name, []string{b.File})
 	if err != nil {
 		return err
 	}
 	defer out.discard()
 	if err := write(out); err != nil {
-		return fmt.Errorf("cannot write %s: %w", name, err)
+		return fmt.Errorf("cannot write the %s %s: %w", c.Args().First(), name, err)
 	}
 	return out.commit()
 }
