@@ -41,6 +41,9 @@ func (c *CrossCheck) WritePage(w io.Writer) error {
 	if err != nil {
 		return fmt.Errorf("charts of the page: %w", err)
 	}
+	if err := p.embed(c.WriteJSON); err != nil {
+		return err
+	}
 	return p.write(w, "crosscheck.html", p)
 }
 

@@ -2,6 +2,7 @@ package report
 
 import (
 	"bufio"
+	"bytes"
 	"embed"
 	"encoding/json"
 	"fmt"
@@ -33,8 +34,22 @@ type frame struct {
 	// Status names the colour of the heading and stands before Verdict.
 	Status, Verdict string
 	Figures         []*figure
+	// Result is the result as JSON, "" where a page holds none.
+	Result template.JS
 	// More is a script of this kind of page, beside that of the figures.
 	More template.JS
+}
+
+// embed puts the result into the page, so that the evidence can be checked from the
+// page alone.
+func (f *frame) embed(result func(io.Writer) error) error {
+	var text, escaped bytes.Buffer
+	if err := result(&text); err != nil {
+		return err
+	}
+	json.HTMLEscape(&escaped, bytes.TrimSpace(text.Bytes())) // no "</script>" can end it
+	f.Result = template.JS(escaped.String())
+	return nil
 }
 
 // write fills the frame and writes the page p, which holds it, by a template.

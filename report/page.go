@@ -31,6 +31,9 @@ func (r *RingDown) WritePage(w io.Writer) error {
 		return fmt.Errorf("charts of the page: %w", err)
 	}
 	p := r.page(f)
+	if err := p.embed(r.WriteJSON); err != nil {
+		return err
+	}
 	return p.write(w, "ringdown.html", p)
 }
 

@@ -26,6 +26,9 @@ func (r *Sweep) WritePage(w io.Writer) error {
 		return fmt.Errorf("charts of the page: %w", err)
 	}
 	p := r.page(f)
+	if err := p.embed(r.WriteJSON); err != nil {
+		return err
+	}
 	return p.write(w, "sweep.html", p)
 }
 

@@ -1,4 +1,21 @@
 "use strict";
+// save hands a text out as a file.
+const save = (name, type, text) => {
+  const link = document.createElement("a");
+  link.href = `data:${type};charset=utf-8,${encodeURIComponent(text)}`;
+  link.download = name;
+  link.click();
+};
+
+// The result stands in the page; the button hands it out.
+const result = document.getElementById("result");
+document.querySelectorAll(".save").forEach((p) => {
+  p.hidden = !result;
+  p.addEventListener("click", (event) => {
+    if (event.target.closest("button")) save("result.json", "application/json", `${result.textContent}\n`);
+  });
+});
+
 // columns takes a data set from the rows of the page: the values, or for bars the
 // ends of two standard uncertainties each, with a gap behind every bar.
 let rows;
@@ -209,9 +226,28 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     chart.setOption({ title: titles.map(() => ({ show: false })), dataZoom: [{}, { show: true }] });
   };
 
+  // table saves all that is drawn, a line for each point.
+  const quoted = (s) => (/[",\n]/.test(s) ? `"${s.replaceAll('"', '""')}"` : s);
+  const table = () => {
+    const lines = [["chart", "curve", `x (${data.time})`, "value", "unit"].map(quoted).join(",")];
+    const seen = new Set();
+    for (const s of data.option.series) {
+      const { x, y } = s.encode, at = s.datasetIndex || 0, panel = data.panels[s.yAxisIndex || 0];
+      const key = [panel.title, s.name, at, y].join("\n");
+      if (seen.has(key)) continue; // drawn twice, as line and as dots
+      seen.add(key);
+      const { source } = data.option.dataset[at];
+      source[x].forEach((t, i) => {
+        if (source[y][i] !== null) lines.push([quoted(panel.title), quoted(s.name), t, source[y][i], quoted(panel.unit)].join(","));
+      });
+    }
+    return `${lines.join("\r\n")}\r\n`;
+  };
+
   const actions = {
     all: () => zoomTo(0, 100), in: () => move(0.5, 0), out: () => move(2, 0), left: () => move(1, -0.5), right: () => move(1, 0.5),
     select: (b) => select(b.getAttribute("aria-pressed") !== "true"), picture,
+    table: () => save((data.picture || "free-decay.png").replace(/\.png$/, ".csv"), "text/csv", table()),
   };
   const showView = (v, room) => {
     const { min, max } = data.option.xAxis[0];
