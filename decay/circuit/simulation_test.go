@@ -4,10 +4,12 @@ import (
 	"bytes"
 	"math"
 	"math/cmplx"
+	"math/rand/v2"
 	"testing"
 
 	"dieaway/capture"
 	"dieaway/decay"
+	"dieaway/decay/driven"
 	"dieaway/decay/quantity"
 )
 
@@ -362,4 +364,40 @@ func TestComplete(t *testing.T) {
 	if s.Interval != 1e-7 || s.Samples != 2500 || s.Pretrigger != 200 || s.Amplitude != 0 {
 		t.Errorf("%+v", s)
 	}
+}
+
+// TestSimulatedSweepAtTheBound fits simulated sweeps: their scatter is the bound of
+// a driven sweep with magnitude and phase (METHODS A4, derived), sd(Q)/Q =
+// (sigma/A) sqrt(8 df/(pi B)), 1.080 times more for a span of five half-bandwidths
+// either way.
+func TestSimulatedSweepAtTheBound(t *testing.T) {
+	const l, c, q, sigma, points, seeds = 10e-3, 10e-9, 100.0, 0.5, 201, 60
+	b := benchOf(Series, l, c, math.Sqrt(l/c)/q, 0, 0, 0, 0)
+	s := &SweepSimulation{Bench: b, Noise: sigma}
+	f0 := 1 / (2 * math.Pi * math.Sqrt(l*c))
+	var err error
+	if s.Frequencies, err = s.Around(5*f0/q, points); err != nil {
+		t.Fatal(err)
+	}
+	squares := 0.0
+	for seed := range uint64(seeds) {
+		s.Random = rand.New(rand.NewPCG(seed, 4))
+		h, err := s.Sweep()
+		if err != nil {
+			t.Fatal(err)
+		}
+		table := &capture.Sweep{Frequency: s.Frequencies, Part: capture.Capacitor, Unit: "V", Cartesian: true}
+		for _, v := range h {
+			table.Magnitude, table.Phase = append(table.Magnitude, cmplx.Abs(v)), append(table.Phase, cmplx.Phase(v))
+		}
+		r := driven.Analyze(table, driven.Options{})
+		if r.Quantities == nil {
+			t.Fatalf("refused: %v", r.Findings)
+		}
+		off := r.Quantities.Q.Value/q - 1
+		squares += off * off
+	}
+	want := 1.080 * sigma / q * math.Sqrt(8*5/math.Pi/(points-1))
+	// The scatter of a scatter from n values is 1/sqrt(2n): three times that.
+	closeTo(t, "scatter of Q over the bound", math.Sqrt(squares/seeds)/want, 1, 3/math.Sqrt(2*seeds))
 }
