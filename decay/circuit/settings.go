@@ -49,11 +49,11 @@ func (s *Simulation) Complete(before, length float64) error {
 }
 
 // samplesMost keeps a record that nobody can mean from filling the memory.
-const samplesMost = 200_000_000
+const samplesMost = 100_000_000
 
-// count returns the intervals in a time, bounded.
+// count returns the intervals in a time; one more than may be is enough to refuse it.
 func count(time, interval float64) int {
-	return int(math.Max(0, math.Min(samplesMost, math.Round(time/interval))))
+	return int(math.Max(0, math.Min(samplesMost+1, math.Round(time/interval))))
 }
 
 // Record makes the capture, ready to be written.

@@ -82,6 +82,8 @@ func (s *Simulation) check() error {
 		return errors.New("the sampling interval is not above zero")
 	case s.Samples < 1:
 		return errors.New("the record has no samples")
+	case s.Samples > samplesMost:
+		return fmt.Errorf("the record has more than %d samples: record for less time, or sample slower", samplesMost)
 	case s.Pretrigger < 0 || s.Pretrigger >= s.Samples:
 		return fmt.Errorf("%d of %d samples before the trigger leave nothing of the decay", s.Pretrigger, s.Samples)
 	case s.Converter.Bits < 0 || s.Converter.Bits > 32:

@@ -328,6 +328,7 @@ func TestSimulationRefuses(t *testing.T) {
 		"parallel, no way":  func(s *Simulation) { s.Bench.Topology = Parallel },
 		"no interval":       func(s *Simulation) { s.Interval = math.NaN() },
 		"no samples":        func(s *Simulation) { s.Samples = 0 },
+		"too many samples":  func(s *Simulation) { s.Samples = 1 << 40 },
 		"trigger at end":    func(s *Simulation) { s.Pretrigger = 100 },
 		"bits":              func(s *Simulation) { s.Converter.Bits = 40 },
 		"no full scale":     func(s *Simulation) { s.Converter.Bits = 8 },
