@@ -50,6 +50,7 @@ type figure struct {
 	Reduced bool            `json:"reduced"`
 	Picture string          `json:"picture,omitempty"` // file name of an exported picture
 	Dates   bool            `json:"dates,omitempty"`   // the common axis is of dates
+	Bare    bool            `json:"bare,omitempty"`    // no outline of the first curve in the bar that zooms
 	Fill    []fill          `json:"fill,omitempty"`    // data sets that come from the rows of the page
 
 	// Words are those of the tools, Notes the sentences below the charts.

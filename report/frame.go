@@ -8,6 +8,8 @@ import (
 	"fmt"
 	"html/template"
 	"io"
+	"strings"
+	"unicode"
 )
 
 //go:embed web/*.html
@@ -48,8 +50,22 @@ func (f *frame) embed(result func(io.Writer) error) error {
 		return err
 	}
 	json.HTMLEscape(&escaped, bytes.TrimSpace(text.Bytes())) // no "</script>" can end it
-	f.Result = template.JS(escaped.String())
+	f.Result = template.JS(withoutMarks(escaped.String()))
 	return nil
+}
+
+// withoutMarks writes marks that turn the direction of writing as escapes, which
+// mean the same to a reader of JSON and nothing to one of the page's source.
+func withoutMarks(text string) string {
+	var b strings.Builder
+	for _, c := range text {
+		if unicode.Is(unicode.Bidi_Control, c) {
+			fmt.Fprintf(&b, `\u%04x`, c)
+		} else {
+			b.WriteRune(c)
+		}
+	}
+	return b.String()
 }
 
 // write fills the frame and writes the page p, which holds it, by a template.

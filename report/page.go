@@ -31,6 +31,11 @@ func (r *RingDown) WritePage(w io.Writer) error {
 		return fmt.Errorf("charts of the page: %w", err)
 	}
 	p := r.page(f)
+	along, err := r.alongFigures()
+	if err != nil {
+		return fmt.Errorf("charts of the page: %w", err)
+	}
+	p.Figures = append(p.Figures, along...)
 	if err := p.embed(r.WriteJSON); err != nil {
 		return err
 	}
@@ -106,6 +111,8 @@ func (r *RingDown) page(f *figure) *page {
 	if len(res.Decays) == 1 {
 		d := res.Decays[0]
 		p.Facts = append(p.Facts, fact{"gate", gateLine(d)}, fact{"noise", noiseLine(d, r.unit())})
+		p.Facts = append(p.Facts, fact{"fit", fitLine(d)}, fact{"correlation", correlationLine(&d.Quantities)})
+		p.Facts = stated(p.Facts)
 		for _, row := range shapeRows(d) {
 			p.Facts = append(p.Facts, fact{row.Label, row.Quantity.String()})
 		}

@@ -162,6 +162,26 @@ func listed(names []string) string {
 	return strings.Join(names, ", ")
 }
 
+// fitLine says for specialists how the fit came about.
+func fitLine(d *decay.Decay) string {
+	s := plural(d.Used, "sample") + " used, " + d.Stop.String() + " after " + plural(d.Iterations, "step")
+	if ratio := d.ResidualRMS / d.NoiseRMS; !math.IsNaN(ratio) && !math.IsInf(ratio, 0) {
+		s += fmt.Sprintf("; residual over noise %.3f", ratio)
+	}
+	if f := d.NoiseFactor; f > 0 && !math.IsInf(f, 0) {
+		s += fmt.Sprintf("; noise at the ring %.2f times that of white noise of the same rms", f)
+	}
+	return s
+}
+
+// correlationLine is what the covariance of the fit has beside its diagonal.
+func correlationLine(q *decay.Quantities) string {
+	if math.IsNaN(q.Correlation) || math.Abs(q.Correlation) > 1 {
+		return ""
+	}
+	return fmt.Sprintf("%+.3f between decay rate and damped frequency", q.Correlation)
+}
+
 // recordLine says what the record is.
 func (r *RingDown) recordLine() string {
 	a := r.Channel.Axis

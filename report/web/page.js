@@ -128,7 +128,7 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     Object.assign(o.dataZoom[1], {
       ...margin(), height: 26, showDetail: false, brushSelect: false,
       // The outline goes by the number of the point, which is no time in a reduced record.
-      showDataShadow: data.reduced ? false : "auto",
+      showDataShadow: data.reduced || data.bare ? false : "auto",
       borderColor: css("--line"), fillerColor: css("--c-gate"), handleStyle: { color: css("--sheet"), borderColor: css("--soft") },
       moveHandleSize: 6, moveHandleStyle: { color: css("--line") },
       dataBackground: { lineStyle: { color: css("--c-quiet"), width: 0.5 }, areaStyle: { color: css("--line"), opacity: 0.4 } },
