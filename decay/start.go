@@ -133,6 +133,7 @@ func (g *gate) placeStart(s series, p *pyramid, reach int) {
 		g.refit(s, coarse)
 	}
 	g.trim(s)
+	g.leaveLevel(s)
 	g.cutBefore = g.first > 0
 }
 
@@ -153,3 +154,64 @@ func (g *gate) trim(s series) {
 		g.refit(s, coarse)
 	}
 }
+
+const (
+	levelLeast = 8   // samples of a level before the edge that tell it
+	levelFlat  = 2.5 // variance over that of the late noise up to which it is flat
+	levelLeft  = 4   // departure, in noise, at which the ring has left the level
+	levelDoubt = 2   // chi-squared by which an earlier start must do better
+)
+
+// leaveLevel settles the start where a flat level went before. A ring that leaves
+// its level without a kink, as a capacitor voltage does, hardly differs from it at
+// first, and samples of the level that the ring explains within the noise would
+// pull it. Seen from a fit behind the moment when the level is clearly left, every
+// sample before goes to the level or to the ring, whichever explains it better,
+// and in doubt to the level.
+func (g *gate) leaveLevel(s series) {
+	guard := 2 + int(g.fit.period()/4)
+	from := max(0, g.first-guard)
+	if from < levelLeast {
+		return
+	}
+	before := newRing(s.slice(max(0, from-levelSamples), from))
+	sigma := math.Max(g.lateSigma(), s.step/math.Sqrt(12))
+	if before.n < levelLeast || before.aboutMean() > levelFlat*sq(sigma)*float64(before.n) {
+		return
+	}
+	level := before.ref + before.y/float64(before.n)
+	left := from
+	for end := min(g.first+guard, g.last-2*samplesLeast); ; left++ {
+		if left >= end {
+			return
+		}
+		if math.Abs(s.y[left]-level) > levelLeft*sigma && math.Abs(s.y[left+1]-level) > levelLeft*sigma {
+			break
+		}
+	}
+	behind := *g
+	behind.first = left
+	behind.refit(s, coarse)
+	cov, ok := behind.fit.normal.jtj.inverse()
+	if !ok || behind.fit.a <= 0 {
+		return
+	}
+	start, cost, best := left, 0.0, -float64(levelDoubt)
+	for i := left - 1; i >= from; i-- {
+		n := float64(i - left)
+		spread := behind.fit.spread(&cov, n)
+		variance := sq(sigma) * (1 + spread*spread)
+		// What the ring explains worse than the level counts against it.
+		cost += sq(s.y[i]-behind.fit.value(n))/variance + math.Log1p(spread*spread) - sq((s.y[i]-level)/sigma)
+		if cost < best {
+			start, best = i, cost
+		}
+	}
+	if start != g.first {
+		g.first, g.fit = start, behind.fit
+		g.refit(s, coarse)
+	}
+}
+
+// levelSamples bounds the stretch that the level before an edge is taken from.
+const levelSamples = 4096
