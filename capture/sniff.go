@@ -18,7 +18,6 @@ var signatures = []struct {
 	{0, "\xd0\xcf\x11\xe0", "an old binary spreadsheet or document (save it as text: comma-separated values)"},
 	{0, "\x89HDF\r\n\x1a\n", "an HDF5 file"},
 	{0, "\x93NUMPY", "a binary array file"},
-	{0, "MATLAB 5.0 MAT-file", "a binary matrix file"},
 	{0, "RIFF", "a RIFF file (sound or film)"},
 	{0, "7z\xbc\xaf", "a 7z archive (unpack it first)"},
 	{0, "Rar!", "a RAR archive (unpack it first)"},

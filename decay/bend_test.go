@@ -7,7 +7,7 @@ import (
 )
 
 // TestBendLaws checks the closed forms against values derived by quadrature
-// (METHODS, amplitude laws): a = 1, A0 = 1, b or c = 0.2.
+// (derived: amplitude laws): a = 1, A0 = 1, b or c = 0.2.
 func TestBendLaws(t *testing.T) {
 	for _, c := range []struct {
 		law  bendLaw

@@ -15,7 +15,7 @@ type vector struct {
 	sdF, sdTau, sdA, sdPhi, sdC, sdQ  float64
 }
 
-// The bounds follow from the exact Fisher matrix of five parameters (METHODS A3,
+// The bounds follow from the exact Fisher matrix of five parameters (derived values,
 // derived; the theory is Hua and Sarkar 1990, Yao and Pandit 1995).
 var vectors = []vector{
 	{"V1", 1e4, 1e-3, 1, 0.3, 0.02, 0.01, 1e6, 5000, 31.419905, 2.009958e-1, 1.272254e-6, 9.017135e-4, 8.880708e-4, 1.414517e-4, 3.997787e-2},
@@ -73,7 +73,7 @@ func TestBoundIsExact(t *testing.T) {
 }
 
 // TestProspects: the bound of a record that was never made is that of the exact
-// vectors (METHODS A3, derived) at their natural frequency and Q.
+// vectors (derived) at their natural frequency and Q.
 func TestProspects(t *testing.T) {
 	for _, v := range vectors {
 		alpha := 1 / (2 * math.Pi * v.tau)
@@ -91,7 +91,7 @@ func TestProspects(t *testing.T) {
 }
 
 // TestProspectWindows: what a shorter record costs at a fixed sample rate and at a
-// fixed number of samples (METHODS A2, derived, for many cycles and samples).
+// fixed number of samples (derived, for many cycles and samples).
 func TestProspectWindows(t *testing.T) {
 	const f0, q, rate = 1e5, 1e4, 1.7e6
 	tau := q / (math.Pi * f0)

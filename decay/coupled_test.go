@@ -7,7 +7,7 @@ import (
 
 // TestCoupledCircuits integrates two equal series circuits coupled by k, the first
 // charged, and finds both modes in its capacitor voltage. Equal tanks split to
-// f0/sqrt(1+k) and f0/sqrt(1-k) (METHODS, two modes); with the resistance in both
+// f0/sqrt(1+k) and f0/sqrt(1-k) (derived: two modes); with the resistance in both
 // loops the modes decay at R/(2L(1+k)) and R/(2L(1-k)).
 func TestCoupledCircuits(t *testing.T) {
 	const l, c, r, k = 1e-3, 1e-9, 20.0, 0.04

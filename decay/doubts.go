@@ -16,6 +16,13 @@ const weakSNR = 12
 // any margin.
 const sparse = 2.45
 
+const (
+	fewCycles = 2 // in the gate below which a wrong offset or edge hardly shows,
+	// unless the window holds the decay as a whole, in time constants: a heavily
+	// damped ring has no more cycles than that.
+	fullWindow = 3
+)
+
 // shortWindow is the window, in time constants, below which the fall is hardly seen.
 const shortWindow = 0.45
 
@@ -29,7 +36,7 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 			fmt.Sprintf("The record covers %.2g time constants of the decay; Q hangs on a fall of only %s.", u, percent(-math.Expm1(-u))),
 			"Record longer: three to five time constants."))
 	}
-	if d.Cycles < 2 && q.Q.Value > 1 {
+	if d.Cycles < fewCycles && u < fullWindow {
 		out = append(out, warning(capture.FewCycles,
 			fmt.Sprintf("Only %.2g cycles lie in the gate.", d.Cycles),
 			"Record more of the decay, or move the gate so that it holds several cycles."))

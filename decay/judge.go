@@ -55,6 +55,9 @@ func noRing() Finding {
 func judge(s series, g *gate, d *Decay, v noise) (Finding, bool) {
 	why, refuse := noDecay(g, d, v)
 	if !refuse {
+		why, refuse = byChance(s, g, d)
+	}
+	if !refuse {
 		why, refuse = notOscillating(&g.fit, v)
 	} else if fallsOnly(s) {
 		why = bareExponential()
@@ -102,6 +105,35 @@ func (f *ringFit) samplesRinging() float64 {
 		e4 += v * v
 	}
 	return e2 * e2 / e4
+}
+
+const (
+	chanceCycles = 4       // cycles below which coloured noise makes a ring by chance,
+	chanceShare  = 1.0 / 3 // in a part of the record that is no larger than this,
+	chanceRatio  = 4       // of an amplitude no larger than this over the rms of the rest
+)
+
+// byChance refuses a short ring in a record that moves as much elsewhere: in
+// slow noise a stretch that looks like a few cycles is found by looking for it.
+func byChance(s series, g *gate, d *Decay) (Finding, bool) {
+	n := g.last - g.first
+	if !(d.Cycles < chanceCycles) || float64(n) > chanceShare*float64(s.len()) {
+		return Finding{}, false
+	}
+	rest := math.Inf(1)
+	for _, side := range [][2]int{{0, g.first}, {g.last, s.len()}} {
+		if side[1]-side[0] < n {
+			continue
+		}
+		p := newRing(s.slice(side[0], side[1]).thinned(choiceSamples))
+		rest = math.Min(rest, math.Sqrt(p.aboutMean()/float64(max(1, p.n))))
+	}
+	if size := g.fit.size(); math.IsInf(rest, 1) || size > chanceRatio*rest {
+		return Finding{}, false
+	}
+	return fault(capture.NoDecay,
+		fmt.Sprintf("The best candidate is %.2g cycles of %.2g times what the rest of the record moves by: slow noise makes such a stretch by chance.", d.Cycles, g.fit.size()/rest),
+		"Raise the amplitude of the shock or average several decays; set the gate by hand if the ring is known to be there."), true
 }
 
 // energyGain is the energy that the ring explains beyond a constant, in units of

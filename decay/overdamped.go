@@ -21,7 +21,7 @@ func overdampedDecay(s series, timebase float64) (*Decay, []Finding) {
 	v := noiseOf(r, math.Sqrt(best.rss/math.Max(1, float64(best.used-5))))
 	one, ok := fitExponential(best.s)
 	density := sq(v.rms * v.factor(0))
-	if !ok || (one-best.rss)/density < evidence {
+	if !ok || (one-best.rss)/density < evidence || onlyAtTheEdge(s, best.at, density) {
 		return nil, nil
 	}
 	cov := sym{n: 2}
@@ -44,6 +44,21 @@ func overdampedDecay(s series, timebase float64) (*Decay, []Finding) {
 	}
 	d.SNR = 20 * math.Log10(math.Sqrt((one-best.rss)/float64(best.used))/v.rms)
 	return d, []Finding{dampingFinding(&q, best.d, math.Sqrt(cov.At(1, 1)))}
+}
+
+// edgeSamples are left out to see whether the second exponential is more than the
+// corner of an edge.
+const edgeSamples = 4
+
+// onlyAtTheEdge reports whether a few samples behind the onset one exponential is
+// enough: then the second was the edge itself.
+func onlyAtTheEdge(s series, at int, density float64) bool {
+	if at == 0 || s.len()-at < 4*samplesLeast {
+		return false
+	}
+	two, ok := fitSecondOrder(s, at+edgeSamples, s.len())
+	one, okOne := fitExponential(two.s)
+	return !ok || !okOne || (one-two.rss)/density < evidence
 }
 
 // dampingKnown is the relative uncertainty up to which a damping ratio is quoted.

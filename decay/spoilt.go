@@ -12,7 +12,6 @@ var sprintf = fmt.Sprintf
 
 const (
 	railRun     = 3       // samples in a row on a rail that may be clipped
-	railJump    = 3       // steps of the converter that the flank beside such a run takes at least
 	stepSamples = 1 << 13 // samples that tell the steps of a converter
 	glitchSigma = 7       // departure that makes a sample an outlier
 	glitchBlock = 1 << 14 // samples looked at in one go
@@ -23,8 +22,8 @@ const (
 )
 
 // railed returns the samples that lie on the upper or lower end of the range in
-// flat runs with steep flanks: what a limiter or a converter cut off. The top of
-// an oscillation may repeat one level too, but leaves it slowly.
+// runs: what a limiter or a converter may have cut off. The top of an oscillation
+// repeats one level too: whether more was there, the fit without them tells.
 func railed(s series) []int {
 	var out []int
 	y := s.y
@@ -37,7 +36,7 @@ func railed(s series) []int {
 		for j < len(y) && y[j] == rail {
 			j++
 		}
-		if j-i >= railRun && steepFlank(y, i, j, s.step) {
+		if j-i >= railRun {
 			for k := i; k < j; k++ {
 				out = append(out, k)
 			}
@@ -45,15 +44,6 @@ func railed(s series) []int {
 		i = j - 1
 	}
 	return out
-}
-
-// steepFlank reports whether y leaves the run y[i:j] by more than the curvature of
-// a smooth top allows: after a flat top j-i samples wide, of less than a step in
-// height, the next sample is at most (1 + 2/(j-i))^2 steps lower.
-func steepFlank(y []float64, i, j int, step float64) bool {
-	smooth := sq(1+2/float64(j-i)) * step
-	before, after := i > 0 && math.Abs(y[i-1]-y[i]) > railJump*smooth, j < len(y) && math.Abs(y[j]-y[i]) > railJump*smooth
-	return before || after
 }
 
 // stepOf estimates the step of the converter: the smallest difference between

@@ -50,7 +50,7 @@ type jsonRingDown struct {
 	Model      *string           `json:"model"`
 	Quantities *jsonQuantities   `json:"quantities"`
 	Decays     []jsonDecay       `json:"decays"`
-	Modes      []jsonMode        `json:"modes"`
+	Modes      []jsonMode        `json:"modes,omitempty"`
 	Readings   jsonReadings      `json:"readings"`
 	Circuit    *jsonCircuit      `json:"circuit,omitempty"` // with a bench file
 	Limits     *jsonLimits       `json:"limits,omitempty"`  // with limits in it

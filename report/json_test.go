@@ -85,7 +85,7 @@ func TestJSONKeys(t *testing.T) {
 		want []string
 	}{
 		{"", []string{"schema", "status", "file", "sha256", "device", "channel", "unit", "samples", "interval_s", "start_s",
-			"model", "quantities", "decays", "modes", "readings", "findings"}},
+			"model", "quantities", "decays", "readings", "findings"}}, // modes: two-mode only
 		{"quantities", quantities},
 		{"quantities.q", []string{"value", "u"}},
 		{"decays.0", []string{"from_s", "to_s", "cycles", "quantities", "noise_rms", "residual_rms", "snr_db"}},

@@ -46,7 +46,7 @@ func fallen(r, l, c, t float64) float64 {
 }
 
 // TestRingDownAgainstClosedForm: the circuits of OpenStax, University Physics 2
-// (METHODS C1), ringing and overdamped, against the roots of their equation.
+// (derived), ringing and overdamped, against the roots of their equation.
 func TestRingDownAgainstClosedForm(t *testing.T) {
 	for _, w := range []struct{ r, l, c float64 }{
 		{0.2, 4e-3, 2e-6}, {100, 150e-3, 0.25e-6}, {100, 2, 5e-6}, {2, 10e-3, 1.5e-6}, {5, 5e-3, 500e-6},
@@ -97,7 +97,7 @@ func TestParallelAgainstRungeKutta(t *testing.T) {
 }
 
 // TestSimulatedLoading measures simulated ring-downs and wants what is worked out
-// for loads in METHODS D (derived from the characteristic equation).
+// for loads (derived from the characteristic equation).
 func TestSimulatedLoading(t *testing.T) {
 	for _, w := range []struct{ probe, probeC, f0, q, tau float64 }{
 		{10e6, 12e-12, 15905.9616, 98.95177, 1.9802215e-3},
@@ -115,7 +115,7 @@ func TestSimulatedLoading(t *testing.T) {
 	closeTo(t, "Q", q.Q.Value, 16.667, 3e-5)
 }
 
-// TestSimulatedTextbook: OpenStax, University Physics 2 (METHODS C1), exact values.
+// TestSimulatedTextbook: OpenStax, University Physics 2 (derived), exact values.
 func TestSimulatedTextbook(t *testing.T) {
 	for _, w := range []struct{ r, l, c, f0, q float64 }{
 		{0.2, 4e-3, 2e-6, 1779.40636, 223.606798}, {100, 150e-3, 0.25e-6, 821.872592, 7.745967},
@@ -143,7 +143,7 @@ func fitted(t *testing.T, s *Simulation) *decay.Quantities {
 }
 
 // TestAmplitudeLaw follows the envelope of a lossy core: dA/dt = -aA - bA^2
-// (Rayleigh region; METHODS D, derived) with b A0/a = 0.2, at t = 0.5, 1, 2, 3 of 1/a.
+// (Rayleigh region; derived) with b A0/a = 0.2, at t = 0.5, 1, 2, 3 of 1/a.
 func TestAmplitudeLaw(t *testing.T) {
 	const l, c, r = 1e-3, 1e-9, 2.0 // Q 500, 1/a 1 ms
 	const tau = 2 * l / r
@@ -201,7 +201,7 @@ func TestSecondMode(t *testing.T) {
 	}
 }
 
-// TestSimulatedSweep: heights and half-power frequencies of METHODS D (derived).
+// TestSimulatedSweep: heights and half-power frequencies (derived).
 func TestSimulatedSweep(t *testing.T) {
 	for _, w := range []struct{ q, fC, peak, f1, f2 float64 }{
 		{2, .93541435, 2.065591, .78077641, 1.28077641}, {5, .98994949, 5.025189, .90498756, 1.10498756},
@@ -368,7 +368,7 @@ func TestComplete(t *testing.T) {
 }
 
 // TestSimulatedSweepAtTheBound fits simulated sweeps: their scatter is the bound of
-// a driven sweep with magnitude and phase (METHODS A4, derived), sd(Q)/Q =
+// a driven sweep with magnitude and phase (derived), sd(Q)/Q =
 // (sigma/A) sqrt(8 df/(pi B)), 1.080 times more for a span of five half-bandwidths
 // either way.
 func TestSimulatedSweepAtTheBound(t *testing.T) {

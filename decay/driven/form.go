@@ -28,7 +28,7 @@ func (c *curve) at(f float64) (magnitude, phase float64) {
 // relative frequency f0 dH/df0, by the relative Q, Q dH/dQ, and by rest.
 //
 // With x = f/f0 and D = 1 - x^2 + jx/Q the voltage is, in parts of the source's
-// (METHODS: series circuit), across the capacitor 1/D, the coil -x^2/D, the
+// (derived: series circuit), across the capacitor 1/D, the coil -x^2/D, the
 // resistor (jx/Q)/D, and across coil and capacitor together (1 - x^2 + j rest x/Q)/D.
 func (c *curve) form(f float64) (h, byF0, byQ, byRest complex128) {
 	x := f / c.f0

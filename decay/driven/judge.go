@@ -18,7 +18,7 @@ const (
 	halfWidths    = 1.0 // half bandwidths that a sweep must reach to each side
 	rowsInside    = 5   // rows between the half-power points
 	sagNoted      = 0.05
-	etaMost       = 0.03 // rate of the sweep over the square of the bandwidth (METHODS: swept too fast)
+	etaMost       = 0.03 // rate of the sweep over the square of the bandwidth (derived: swept too fast)
 	dwellOnePart  = 4.61 // time constants to settle to 1 %
 	dwellTenth    = 6.91 // and to 0.1 %
 	readingsApart = 0.15

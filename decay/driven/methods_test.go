@@ -8,7 +8,7 @@ import (
 	"dieaway/capture"
 )
 
-// The table of METHODS D: derived there from the impedances, and checked
+// The table is derived from the impedances, and checked
 // numerically.
 func TestTableD(t *testing.T) {
 	for _, w := range []struct{ q, fd, fc, peak, i1, i2, lo, hi, width float64 }{
@@ -58,7 +58,7 @@ func TestTableD(t *testing.T) {
 	}
 }
 
-// OpenStax, University Physics Volume 2 (METHODS C1): the circuits, swept.
+// OpenStax, University Physics Volume 2 (derived): the circuits, swept.
 func TestTextbookCircuits(t *testing.T) {
 	for _, w := range []struct{ r, l, c, f0, q, b float64 }{
 		{0.200, 4e-3, 2e-6, 1779.40636, 223.606798, 7.95775},
@@ -79,7 +79,7 @@ func TestTextbookCircuits(t *testing.T) {
 
 // A whole circuit with the resistance of its source and of its coil. Measured at
 // the source the loop has all of it; divided by the voltage at the circuit the
-// source's share is gone. METHODS D: 10 mH, 10 nF, 10 ohm and a source of 50 ohm
+// source's share is gone (derived): 10 mH, 10 nF, 10 ohm and a source of 50 ohm
 // have Q = 16.667, and 100 without the source.
 func TestSourceResistance(t *testing.T) {
 	s := scene{l: 10e-3, c: 10e-9, resistor: 10, source: 50, across: capture.Capacitor}
@@ -108,7 +108,7 @@ func TestSourceResistance(t *testing.T) {
 	}
 }
 
-// METHODS D: each row that reads both V_L and V_C gives f0, whatever the drive does.
+// Derived: each row that reads both V_L and V_C gives f0, whatever the drive does.
 func TestReactanceRatio(t *testing.T) {
 	s := loop07(20).span(61, 3)
 	sweep := s.sweep(newRand(1))
@@ -130,7 +130,7 @@ func TestReactanceRatio(t *testing.T) {
 	near(t, "f0 of a row", r.Readings.Rows[7], s.f0(), 1e-6)
 }
 
-// METHODS D: a meter with one pole reads low by 0.496 % at f/fm = 0.1 and 10.6 % at
+// Derived: a meter with one pole reads low by 0.496 % at f/fm = 0.1 and 10.6 % at
 // 0.5; corrected for, it changes nothing.
 func TestMeter(t *testing.T) {
 	near(t, "1/10 of the bandwidth", 1-1/math.Hypot(1, 0.1), 0.00496, 1e-5)
@@ -152,7 +152,7 @@ func TestMeter(t *testing.T) {
 	}
 }
 
-// METHODS D: swept too fast, by integrating the envelope of the driven circuit,
+// Derived: swept too fast, by integrating the envelope of the driven circuit,
 // da/dt = -(pi B + j 2 pi (f0 - f(t))) a + pi B, with f(t) rising at eta B^2.
 func TestSweptTooFast(t *testing.T) {
 	const b, f0 = 1.0, 1000.0 // Hz; Q = 1000

@@ -76,7 +76,7 @@ func (f *fitted) joint(cov *mat.SymDense, timebase float64) (*quantity.Joint, er
 }
 
 // peakGain is the response at the peak: Q/sqrt(1 - 1/(4Q^2)) of the source across
-// capacitor and coil, all of it across the resistor (METHODS: series circuit).
+// capacitor and coil, all of it across the resistor (derived: series circuit).
 func (c *curve) peakGain() float64 {
 	x, ok := c.peakAt()
 	if !ok {

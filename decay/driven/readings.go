@@ -130,7 +130,7 @@ func crossing(f, m []float64, at, step int, level float64, part capture.Part) (x
 // Q = sqrt(lo hi)/(hi - lo) exactly. Across the capacitor the frequencies are
 // x^2 = 1 - 1/(2Q^2) -+ (1/Q) sqrt(1 - 1/(4Q^2)); with s = 1/Q^2 and r the ratio of
 // difference and sum of their squares that is s = 2 (1 - 1/sqrt(1 + r^2)). Across
-// the coil the same holds for the reciprocal frequencies (METHODS: series circuit).
+// the coil the same holds for the reciprocal frequencies (derived: series circuit).
 func qOf(lo, hi float64, part capture.Part) (q, bandwidth float64) {
 	if part == capture.Resistor || part == capture.Both {
 		q = math.Sqrt(lo*hi) / (hi - lo)

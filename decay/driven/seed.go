@@ -112,7 +112,7 @@ func score(d *rows, m []float64, c curve) scored {
 }
 
 // peakAt is where the response is greatest (least, for a notch), in parts of f0
-// (METHODS: series circuit); false where it has no peak.
+// (derived: series circuit); false where it has no peak.
 func (c *curve) peakAt() (x float64, ok bool) {
 	switch s := 1 - 1/(2*c.q*c.q); {
 	case c.across == capture.Resistor || c.across == capture.Both:

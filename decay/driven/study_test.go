@@ -93,8 +93,8 @@ func (s scene) bound(t *testing.T) (sdF0, sdQ float64) {
 	return math.Sqrt(cov.At(0, 0)), math.Sqrt(cov.At(1, 1))
 }
 
-// studyCells: what does not say otherwise is enough for the closed forms of
-// METHODS A4, which belong to the resonance curve of a high Q.
+// studyCells: what does not say otherwise is enough for the closed forms,
+// which belong to the resonance curve of a high Q.
 var studyCells = []cell{
 	{q: 200, m: 20, perB: 10, r: 100, across: capture.Resistor},
 	{q: 200, m: 20, perB: 10, r: 50, across: capture.Resistor, phase: true},
@@ -158,7 +158,7 @@ func TestStudyBoundAndCoverage(t *testing.T) {
 	}
 }
 
-// The bound itself: the closed forms of METHODS A4 for the resonance curve at high
+// The bound itself: the closed forms for the resonance curve at high
 // Q, wide and narrow.
 func TestBoundA4(t *testing.T) {
 	for _, w := range []struct {

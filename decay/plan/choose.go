@@ -11,8 +11,8 @@ const (
 	divisions    = 8    // of the screen from top to bottom (common practice)
 	headroom     = 1.1  // of the range over the swing of the ring
 	averagesMost = 1024 // a power of two, as scopes have them (common practice)
-	dither       = 0.5  // steps of noise that make averages see between the steps (METHODS F)
-	ratioLeast   = 5.0  // amplitude over noise from which fits reach the bound (METHODS B)
+	dither       = 0.5  // steps of noise that make averages see between the steps (derived)
+	ratioLeast   = 5.0  // amplitude over noise from which fits reach the bound (derived)
 )
 
 // A comfort is how much of a decay a record holds and how finely.
@@ -75,7 +75,7 @@ func (p *Plan) set(record, rate float64, averages int, fullScale, amplitude floa
 }
 
 // readable returns for how long the ring stays above five steps of the converter,
-// in s, where no noise blurs them: below, its tail is biased (METHODS F).
+// in s, where no noise blurs them: below, its tail is biased (derived).
 func (p *Plan) readable(fullScale, amplitude float64) float64 {
 	step := p.step(fullScale)
 	if p.Wish.Noise >= dither*step {
@@ -115,7 +115,7 @@ func (p *Plan) choose() {
 }
 
 // reserve is what a fit, which has to find the decay first, costs at most over the
-// bound (METHODS B: 0.95 to 1.03 times).
+// bound (derived: 0.95 to 1.03 times).
 const reserve = 1.05
 
 // cheapest returns the setting of the fewest samples with the comfort, and keeps in

@@ -52,7 +52,7 @@ func near(t *testing.T, what string, got, want, tol float64) {
 }
 
 // TestExpected holds what a plan expects against the formula for many cycles and
-// samples (METHODS A1, derived): sd(tau)/tau = (1/R) sqrt(2/(n K(u))).
+// samples (derived): sd(tau)/tau = (1/R) sqrt(2/(n K(u))).
 func TestExpected(t *testing.T) {
 	for _, w := range []Wish{
 		{NaturalFrequency: 125e3, Q: 200, Amplitude: 1, Noise: 5e-3, Want: 1e-3},
@@ -117,7 +117,7 @@ func TestSettingsAreOnTheScope(t *testing.T) {
 }
 
 // TestBestAtFixedMemory: where the memory is the limit, records of about two time
-// constants are best (METHODS A2, derived: u = 2.0175, 1.5 to 3 within 6 %).
+// constants are best (derived: u = 2.0175, 1.5 to 3 within 6 %).
 func TestBestAtFixedMemory(t *testing.T) {
 	p := made(t, Wish{NaturalFrequency: 1e6, Q: 1000, Amplitude: 1, Noise: 0.2, Want: 1e-9, Memory: 10000})
 	if u := p.Setting.TimeConstants; p.Met || u < 1.4 || u > 3.2 {
@@ -125,7 +125,7 @@ func TestBestAtFixedMemory(t *testing.T) {
 	}
 }
 
-// TestLoaded: what source and probe do (METHODS D, derived): 10 mH, 10 nF, 10 ohm
+// TestLoaded: what source and probe do (derived): 10 mH, 10 nF, 10 ohm
 // with 10 Mohm and 12 pF.
 func TestLoaded(t *testing.T) {
 	b := bench(t)

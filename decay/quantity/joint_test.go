@@ -60,7 +60,7 @@ func TestGUMExampleH2(t *testing.T) {
 				t.Fatal(err)
 			}
 			// Values printed in table H.3; uncertainties and correlations to full
-			// precision from METHODS.md C4, derived from the same data. The printed
+			// precision from derived from the same data. The printed
 			// u(X) = 0.295 is 0.2956 rounded down.
 			for i, want := range []Quantity{{Value: 127.732, U: 0.07107141}, {Value: 219.847, U: 0.29558168}, {Value: 254.260, U: 0.23633613}} {
 				near(t, names[i], out.At(i).Value, want.Value, 6e-4)
@@ -115,7 +115,7 @@ func TestJointErrors(t *testing.T) {
 }
 
 func TestEn(t *testing.T) {
-	// (10.3 - 10.0) / sqrt(0.4^2 + 0.3^2) = 0.6, with U = 2u (METHODS.md C7, ISO 13528).
+	// (10.3 - 10.0) / sqrt(0.4^2 + 0.3^2) = 0.6, with U = 2u (derived: ISO 13528).
 	a, b := New(10.3, 0.2, "V"), New(10.0, 0.15, "V")
 	near(t, "En", En(a, b, 0), 0.6, 1e-12)
 	near(t, "En turned round", En(b, a, 0), -0.6, 1e-12)

@@ -19,7 +19,7 @@ func TestGUMExampleH3(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	// To full precision from METHODS.md C5; printed -0.1712(29), 0.00218(67), r = -0.930.
+	// To full precision from derived values; printed -0.1712(29), 0.00218(67), r = -0.930.
 	near(t, "intercept", fit.Intercept, -0.17120379, 5e-9)
 	near(t, "slope", fit.Slope, 0.0021826977, 5e-11)
 	near(t, "u of the intercept", math.Sqrt(fit.VarIntercept), 0.0028776, 5e-8)
