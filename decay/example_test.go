@@ -21,5 +21,5 @@ func Example() {
 	}
 	// Output:
 	// capacitor voltage: good
-	// f0 124.3021(55) kHz, Q 15.795(22)
+	// f0 124.3025(55) kHz, Q 15.805(22)
 }

@@ -55,8 +55,16 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 	if !fixedStart {
 		g.extendBack(s)
 	}
+	g.skipMissing(s)
 	g.refit(s, fine)
 	return g, true
+}
+
+// skipMissing lets the gate begin with a sample that is there.
+func (g *gate) skipMissing(s series) {
+	for g.first < g.last-samplesLeast && math.IsNaN(s.y[g.first]) {
+		g.first++
+	}
 }
 
 // settle moves both ends of the gate to where the decay begins and ends.
