@@ -1,6 +1,7 @@
 package main
 
 import (
+	"slices"
 	"strings"
 
 	"github.com/urfave/cli/v2"
@@ -38,7 +39,16 @@ func flagsFirst(args []string, commands []*cli.Command) ([]string, error) {
 			rest = rest[n:]
 		}
 	}
+	if slices.ContainsFunc(flags, asksForHelp) {
+		// The library would take a file for the name of a topic.
+		return append(args[:2:2], "--help"), nil
+	}
 	return append(append(append(args[:2:2], flags...), "--"), files...), nil
+}
+
+func asksForHelp(arg string) bool {
+	name := strings.TrimLeft(arg, "-")
+	return name != arg && slices.Contains(cli.HelpFlag.Names(), name)
 }
 
 // flagLength returns how many of args, which begin with a flag, belong to it.
@@ -90,7 +100,7 @@ func takesNoValue(flag cli.Flag) bool {
 func unknownFlag(command *cli.Command, arg string) error {
 	name, _, _ := strings.Cut(strings.TrimLeft(arg, "-"), "=")
 	hint := ""
-	if near := cli.SuggestFlag(command.Flags, name, false); near != "" {
+	if near := cli.SuggestFlag(command.Flags, name, false); strings.HasPrefix(near, "--") {
 		hint = "; the nearest is " + near
 	}
 	return usagef("unknown flag %s%s; `dieaway %s --help` lists all", arg, hint, command.Name)

@@ -20,7 +20,7 @@ func TestFlagsFirst(t *testing.T) {
 		{"one dash", []string{"fit", "a.csv", "-from", "2us"}, []string{"fit", "-from", "2us", "--", "a.csv"}},
 		{"standard input", []string{"fit", "-", "--json"}, []string{"fit", "--json", "--", "-"}},
 		{"after two dashes", []string{"fit", "--json", "--", "-o", "--json"}, []string{"fit", "--json", "--", "-o", "--json"}},
-		{"help behind a file", []string{"fit", "a.csv", "-h"}, []string{"fit", "-h", "--", "a.csv"}},
+		{"help behind a file, which is no topic", []string{"fit", "a.csv", "-h"}, []string{"fit", "--help"}},
 		{"value that is a dash", []string{"fit", "-o", "-", "a.csv"}, []string{"fit", "-o", "-", "--", "a.csv"}},
 		{"no command", []string{"a.csv", "b.csv"}, []string{"a.csv", "b.csv"}},
 		{"version", []string{"--version"}, []string{"--version"}},
