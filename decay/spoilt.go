@@ -124,16 +124,26 @@ func (g *gate) glitches(s series) []int {
 		return nil
 	}
 	var out []int
-	for at := 0; at < window.len(); at += glitchBlock {
-		block := window.slice(at, min(at+glitchBlock, window.len()))
+	halves(window.len(), func(first, last int) func() {
+		far := g.far(window, first, last, limit)
+		return func() { out = append(out, far...) }
+	})
+	if float64(len(out)) > math.Max(1, glitchShare*float64(window.len())) {
+		return nil
+	}
+	return out
+}
+
+// far returns the samples of the window from first to last-1 that depart from the
+// fit by more than limit, as samples of the record.
+func (g *gate) far(window series, first, last int, limit float64) (out []int) {
+	for at := first; at < last; at += glitchBlock {
+		block := window.slice(at, min(at+glitchBlock, last))
 		for i, v := range g.fit.residuals(block, window.position(at)) {
 			if math.Abs(v) > limit {
 				out = append(out, g.first+at+i)
 			}
 		}
-	}
-	if float64(len(out)) > math.Max(1, glitchShare*float64(window.len())) {
-		return nil
 	}
 	return out
 }

@@ -9,6 +9,7 @@ import (
 	"html/template"
 	"io"
 	"strings"
+	"sync"
 	"unicode"
 )
 
@@ -25,7 +26,9 @@ var pageJS string
 var echartsJS string
 
 // pageTemplates holds one template for each kind of page, and their parts.
-var pageTemplates = template.Must(template.ParseFS(pageFiles, "web/*.html"))
+var pageTemplates = sync.OnceValue(func() *template.Template {
+	return template.Must(template.ParseFS(pageFiles, "web/*.html"))
+})
 
 // A frame is what all kinds of pages have in common.
 type frame struct {
@@ -82,7 +85,7 @@ func (f *frame) write(w io.Writer, name string, p any) error {
 		g.Data = template.JS(data)
 	}
 	b := bufio.NewWriterSize(w, 1<<16)
-	if err := pageTemplates.ExecuteTemplate(b, name, p); err != nil {
+	if err := pageTemplates().ExecuteTemplate(b, name, p); err != nil {
 		return err
 	}
 	return b.Flush()
