@@ -1,6 +1,7 @@
 package decay
 
 import (
+	"cmp"
 	"math"
 	"slices"
 )
@@ -131,7 +132,7 @@ func (g *gate) candidates(window series, plain *ringFit, model Model) []ringFit 
 // parameters. What it explains beyond the worst of them counts in units of the
 // noise density where its addition lives, as the best of them leaves it.
 func cheapest(list []ringFit) ringFit {
-	byRSS := func(x, y ringFit) int { return compareFloat(x.rss, y.rss) }
+	byRSS := func(x, y ringFit) int { return cmp.Compare(x.rss, y.rss) }
 	least, most := slices.MinFunc(list, byRSS), slices.MaxFunc(list, byRSS)
 	v := noiseOf(least.residuals(least.s, 0), least.sigma())
 	charge := func(f *ringFit) float64 {
@@ -144,7 +145,7 @@ func cheapest(list []ringFit) ringFit {
 		}
 		return c
 	}
-	return slices.MinFunc(list, func(x, y ringFit) int { return compareFloat(charge(&x), charge(&y)) })
+	return slices.MinFunc(list, func(x, y ringFit) int { return cmp.Compare(charge(&x), charge(&y)) })
 }
 
 // addition is the angular frequency of what the fit has beyond one ring.
@@ -153,16 +154,6 @@ func (f *ringFit) addition() float64 {
 		return f.companion.w
 	}
 	return f.w
-}
-
-func compareFloat(x, y float64) int {
-	switch {
-	case x < y:
-		return -1
-	case x > y:
-		return 1
-	}
-	return 0
 }
 
 // extendBack carries the start of a decay of a richer model towards its true

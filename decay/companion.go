@@ -1,6 +1,7 @@
 package decay
 
 import (
+	"cmp"
 	"math"
 	"slices"
 )
@@ -24,7 +25,7 @@ func withCompanion(s series, g *gate) (gate, bool) {
 	if len(list) == 0 {
 		return gate{}, false
 	}
-	best := slices.MinFunc(list, func(x, y ringFit) int { return compareFloat(x.rss, y.rss) })
+	best := slices.MinFunc(list, func(x, y ringFit) int { return cmp.Compare(x.rss, y.rss) })
 	if !decisive(&g.fit, &best) {
 		return gate{}, false
 	}

@@ -119,21 +119,29 @@ func mapped(y []float64, f func(i int, v float64) float64) []float64 {
 	return y
 }
 
-// drivenCircuit integrates y” + 2a y' + w0^2 (y - drive) = 0 by the classical
-// Runge-Kutta method, 20 steps a sample, a1 while the drive is up and a2 while it
-// is down: a series circuit switched between two levels.
+// drivenCircuit is the ring of the kinds, switched between two levels: a1 while
+// the drive is up and a2 while it is down.
 func drivenCircuit(a1, a2 float64, n int, drive func(i int) float64) []float64 {
+	return switchedCircuit(kindW*kindW+kindA*kindA, n, func(i int) (float64, float64) {
+		if d := drive(i); d < 0 {
+			return d, a2
+		}
+		return drive(i), a1
+	})
+}
+
+// switchedCircuit integrates y” + 2a y' + w2 (y - drive) = 0 by the classical
+// Runge-Kutta method, 20 steps a sample, from rest at the first drive: a series
+// circuit whose drive and rate a sample i sets.
+func switchedCircuit(w2 float64, n int, at func(i int) (drive, a float64)) []float64 {
 	const sub = 20
 	h := 1.0 / sub
-	y, v := drive(0), 0.0
+	y, _ := at(0)
+	v := 0.0
 	out := make([]float64, n)
 	for i := range out {
 		out[i] = y
-		d, a := drive(i), a1
-		if d < 0 {
-			a = a2
-		}
-		w2 := kindW*kindW + kindA*kindA
+		d, a := at(i)
 		f := func(y, v float64) float64 { return -2*a*v - w2*(y-d) }
 		for range sub {
 			k1, l1 := v, f(y, v)

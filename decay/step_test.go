@@ -35,27 +35,12 @@ func TestStepStart(t *testing.T) {
 	}
 }
 
-// stepResponse integrates y” + (w0/Q) y' + w0^2 (y - drive) = 0, a drive that
-// falls from one to zero at sample first, by the classical Runge-Kutta method.
+// stepResponse is a circuit whose drive falls from one to zero at sample first.
 func stepResponse(w0, q float64, first, n int) []float64 {
-	const sub = 8
-	h := 1.0 / sub
-	y, v := 1.0, 0.0
-	out := make([]float64, n)
-	f := func(y, v float64) float64 { return -w0/q*v - w0*w0*y }
-	for i := range out {
-		out[i] = y
+	return switchedCircuit(w0*w0, n, func(i int) (drive, a float64) {
 		if i < first {
-			continue
+			return 1, w0 / (2 * q)
 		}
-		for range sub {
-			k1, l1 := v, f(y, v)
-			k2, l2 := v+h/2*l1, f(y+h/2*k1, v+h/2*l1)
-			k3, l3 := v+h/2*l2, f(y+h/2*k2, v+h/2*l2)
-			k4, l4 := v+h*l3, f(y+h*k3, v+h*l3)
-			y += h / 6 * (k1 + 2*k2 + 2*k3 + k4)
-			v += h / 6 * (l1 + 2*l2 + 2*l3 + l4)
-		}
-	}
-	return out
+		return 0, w0 / (2 * q)
+	})
 }

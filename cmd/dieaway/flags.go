@@ -22,6 +22,17 @@ func outputFlags() []cli.Flag {
 	}
 }
 
+// evidenceFlags are the flags of fit and sweep, which measure one thing a file.
+func evidenceFlags() []cli.Flag {
+	return append([]cli.Flag{
+		&cli.StringFlag{Name: "device", Usage: "the `NAME` of what was measured"},
+		archiveFlag(),
+		benchFlag(),
+		&cli.BoolFlag{Name: "strict", Usage: "exit with code 6 when there is a warning", DisableDefaultText: true},
+		&cli.BoolFlag{Name: "explain", Usage: "print what was understood of the file before the result", DisableDefaultText: true},
+	}, outputFlags()...)
+}
+
 // fitFlags are the flags of fit. Texts are plain strings: the library splits
 // slices at commas, and takes NaN for a number.
 func fitFlags() []cli.Flag {
@@ -33,12 +44,7 @@ func fitFlags() []cli.Flag {
 		&cli.StringFlag{Name: "time-unit", Usage: "the `UNIT` of the time column where the file does not tell: s, ms, us, ns or ps"},
 		&cli.StringFlag{Name: "model", Usage: "the `LAW` of the decay: " + strings.Join(models, ", "), Value: "auto"},
 		&cli.StringFlag{Name: "probe", Usage: "multiply voltages by this `FACTOR`, where the scope was set to the wrong probe"},
-		&cli.StringFlag{Name: "device", Usage: "the `NAME` of what was measured"},
-		archiveFlag(),
-		benchFlag(),
-		&cli.BoolFlag{Name: "strict", Usage: "exit with code 6 when there is a warning", DisableDefaultText: true},
-		&cli.BoolFlag{Name: "explain", Usage: "print what was understood of the file before the result", DisableDefaultText: true},
-	}, outputFlags()...)
+	}, evidenceFlags()...)
 }
 
 var (

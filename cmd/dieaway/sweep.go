@@ -41,12 +41,7 @@ func sweepFlags() []cli.Flag {
 		&cli.StringFlag{Name: "across", Usage: "the `PART` that the response is measured across: " + strings.Join(sweepParts, ", ") + " (coil and capacitor together, a notch)"},
 		&cli.StringFlag{Name: "frequency-unit", Usage: "the `UNIT` of the frequency where the file does not tell: " + strings.Join(frequencyUnits, ", ")},
 		&cli.StringFlag{Name: "dwell", Usage: "the `TIME` that the source stays at each frequency before the reading"},
-		&cli.StringFlag{Name: "device", Usage: "the `NAME` of what was measured"},
-		archiveFlag(),
-		benchFlag(),
-		&cli.BoolFlag{Name: "strict", Usage: "exit with code 6 when there is a warning", DisableDefaultText: true},
-		&cli.BoolFlag{Name: "explain", Usage: "print what was understood of the file before the result", DisableDefaultText: true},
-	}, outputFlags()...)
+	}, evidenceFlags()...)
 }
 
 var (
