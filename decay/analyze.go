@@ -245,7 +245,7 @@ func newDecay(s series, g *gate, v noise, unit string, timebase float64) *Decay 
 		NoiseRMS: v.rms, ResidualRMS: math.Sqrt(f.rss / float64(f.n)),
 		SNR:         20 * math.Log10(f.size()/v.rms),
 		NoiseFactor: v.factor(f.w), Used: f.n, Stop: f.stop, Iterations: f.iterations,
-		law: f.law(),
+		law: f.law(), noise: v, left: f.s.holes(),
 	}
 	if cov, ok := f.covariance(v); ok {
 		d.Quantities = quantitiesOf(f.a, f.w, s.dt, &cov, timebase)

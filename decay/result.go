@@ -94,7 +94,9 @@ type Decay struct {
 	Stop       StopReason
 	Iterations int
 
-	law law
+	law   law
+	noise noise
+	left  []int // samples missing or left out of the fit, from First on
 }
 
 // AtStart is what an amplitude-dependent circuit does at its first cycle.
