@@ -61,29 +61,21 @@ func (r *RingDown) drawnDecays() []drawn {
 	return out
 }
 
-// residualBlock is how many residuals are computed in one go.
-const residualBlock = 1 << 13
-
-// residuals returns sample less curve by index. A curve that can do many in one go
-// is asked for blocks: the indices are taken in rising order.
-func (w *drawn) residuals(ch *capture.Channel) func(i int) float64 {
+// residuals returns sample less curve. A curve that can do many in one go does.
+func (w *drawn) residuals(ch *capture.Channel) values {
 	quick, ok := w.curve.(interface {
 		Residuals(ch *capture.Channel, first, n int) []float64
 	})
-	if !ok {
-		return func(i int) float64 {
-			v, _, _ := w.curve.At(ch.Axis.Time(i))
-			return ch.Samples[i] - v
-		}
+	if ok {
+		return func(from, to int) []float64 { return quick.Residuals(ch, from, to-from) }
 	}
-	var block []float64
-	first := 0
-	return func(i int) float64 {
-		if i < first || i >= first+len(block) {
-			first = i
-			block = quick.Residuals(ch, i, min(residualBlock, ch.Axis.N-i))
+	return func(from, to int) []float64 {
+		out := make([]float64, to-from)
+		for i := range out {
+			v, _, _ := w.curve.At(ch.Axis.Time(from + i))
+			out[i] = ch.Samples[from+i] - v
 		}
-		return block[i-first]
+		return out
 	}
 }
 

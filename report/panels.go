@@ -114,7 +114,7 @@ func (p *plot) waveform(r *RingDown, all []drawn, parts []segment) {
 	}
 	p.addPanel("Waveform", caption, p.level.unit, false)
 	ch := r.Channel
-	tr := reduce(ch.Axis, parts, func(i int) float64 { return ch.Samples[i] })
+	tr := reduce(ch.Axis, parts, samplesOf(ch))
 	data := p.addTrace(tr, p.level)
 	p.addSeries(keySamples, "line", data, "v", gates(p.time, all)) // first: the bar below shows its outline
 	for i := range all {

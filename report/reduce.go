@@ -97,17 +97,27 @@ type trace struct{ t, v []float64 }
 
 func (tr *trace) add(t, v float64) { tr.t, tr.v = append(tr.t, t), append(tr.v, v) }
 
-// reduce shows value(i) over the segments. Bins give their smallest and largest
+// values gives the values of a course from sample from up to before sample to, on
+// any core.
+type values func(from, to int) []float64
+
+// samplesOf gives the samples of a channel.
+func samplesOf(ch *capture.Channel) values {
+	return func(from, to int) []float64 { return ch.Samples[from:to] }
+}
+
+// reduce shows a course over the segments. Bins give their smallest and largest
 // value in the order of time; missing values are left out of them.
-func reduce(axis *capture.Axis, parts []segment, value func(i int) float64) trace {
-	var tr trace
-	for _, p := range parts {
-		for i := p.from; i < p.to; i += p.bin {
-			if p.bin == 1 {
-				tr.add(axis.Time(i), value(i))
-				continue
+func reduce(axis *capture.Axis, parts []segment, course values) trace {
+	return inPieces(parts, func(p segment, tr *trace) {
+		if p.bin == 1 {
+			for k, v := range course(p.from, p.to) {
+				tr.add(axis.Time(p.from+k), v)
 			}
-			lo, hi := extremes(i, min(i+p.bin, p.to), value)
+			return
+		}
+		for i := p.from; i < p.to; i += p.bin {
+			lo, hi := extremes(course(i, min(i+p.bin, p.to)))
 			if lo.index < 0 {
 				tr.add(axis.Time(i), math.NaN())
 				continue
@@ -115,13 +125,12 @@ func reduce(axis *capture.Axis, parts []segment, value func(i int) float64) trac
 			if lo.index > hi.index {
 				lo, hi = hi, lo
 			}
-			tr.add(axis.Time(lo.index), lo.value)
+			tr.add(axis.Time(i+lo.index), lo.value)
 			if hi.index != lo.index {
-				tr.add(axis.Time(hi.index), hi.value)
+				tr.add(axis.Time(i+hi.index), hi.value)
 			}
 		}
-	}
-	return tr
+	})
 }
 
 type extreme struct {
@@ -129,12 +138,11 @@ type extreme struct {
 	value float64
 }
 
-// extremes finds the smallest and the largest of value(from..to-1); the indices
-// are -1 when none is a number.
-func extremes(from, to int, value func(i int) float64) (lo, hi extreme) {
+// extremes finds the smallest and the largest of y; the indices are -1 when none is
+// a number.
+func extremes(y []float64) (lo, hi extreme) {
 	lo, hi = extreme{-1, math.Inf(1)}, extreme{-1, math.Inf(-1)}
-	for i := from; i < to; i++ {
-		v := value(i)
+	for i, v := range y {
 		if v < lo.value {
 			lo = extreme{i, v}
 		}
@@ -151,21 +159,20 @@ func extremes(from, to int, value func(i int) float64) (lo, hi extreme) {
 // crests returns the largest |sample - baseline| of each stretch of samples of
 // the given length, at its time: with a stretch of half a cycle, the peaks.
 func crests(ch *capture.Channel, a indexRange, stretch int, baseline func(t float64) float64) trace {
-	var tr trace
-	for i := a.from; i < a.to; i += stretch {
-		end := min(i+stretch, a.to)
-		b := baseline(ch.Axis.Time(i))
-		lo, hi := extremes(i, end, func(k int) float64 { return ch.Samples[k] })
-		if lo.index < 0 {
-			continue
+	return inPieces([]segment{{a, stretch}}, func(p segment, tr *trace) {
+		for i := p.from; i < p.to; i += p.bin {
+			b := baseline(ch.Axis.Time(i))
+			lo, hi := extremes(ch.Samples[i:min(i+p.bin, p.to)])
+			if lo.index < 0 {
+				continue
+			}
+			at := hi
+			if b-lo.value > hi.value-b {
+				at = lo
+			}
+			if v := math.Abs(at.value - b); v > 0 { // nothing on a logarithmic axis
+				tr.add(ch.Axis.Time(i+at.index), v)
+			}
 		}
-		at := hi
-		if b-lo.value > hi.value-b {
-			at = lo
-		}
-		if v := math.Abs(at.value - b); v > 0 { // nothing on a logarithmic axis
-			tr.add(ch.Axis.Time(at.index), v)
-		}
-	}
-	return tr
+	})
 }

@@ -46,7 +46,7 @@ func TestReduceKeepsExtremes(t *testing.T) {
 		}
 		return math.Sin(2 * math.Pi * float64(i) / 40)
 	}
-	tr := reduce(axis, segments(indexRange{0, n}, nil, 500, 1), value)
+	tr := reduce(axis, segments(indexRange{0, n}, nil, 500, 1), each(value))
 	if len(tr.t) > 1000 {
 		t.Errorf("%d points from 500 bins", len(tr.t))
 	}
@@ -64,14 +64,25 @@ func TestReduceKeepsExtremes(t *testing.T) {
 	}
 }
 
+// each makes a course of a function of the index.
+func each(value func(i int) float64) values {
+	return func(from, to int) []float64 {
+		out := make([]float64, to-from)
+		for k := range out {
+			out[k] = value(from + k)
+		}
+		return out
+	}
+}
+
 func TestReduceGap(t *testing.T) {
 	axis := &capture.Axis{N: 100, Interval: 1}
-	tr := reduce(axis, []segment{{indexRange{0, 100}, 10}}, func(i int) float64 {
+	tr := reduce(axis, []segment{{indexRange{0, 100}, 10}}, each(func(i int) float64 {
 		if i >= 20 && i < 40 {
 			return math.NaN()
 		}
 		return float64(i)
-	})
+	}))
 	gaps := 0
 	for _, v := range tr.v {
 		if math.IsNaN(v) {
