@@ -247,10 +247,12 @@ func newDecay(s series, g *gate, v noise, unit string, timebase float64) *Decay 
 		NoiseFactor: v.factor(f.w), Used: f.n, Stop: f.stop, Iterations: f.iterations,
 		law: f.law(), noise: v, left: f.s.holes(),
 	}
-	if cov, ok := f.covariance(v); ok {
+	if full, ok := f.fullCovariance(v); ok {
+		cov := f.ringPart(&full)
 		d.Quantities = quantitiesOf(f.a, f.w, s.dt, &cov, timebase)
 		d.Amplitude, d.Phase, d.Offset = f.shape(&cov, unit)
-		d.AtStart = f.atStart(v, timebase)
+		d.AtStart = f.atStart(&full, timebase)
+		d.Parameters = f.parameters(&full, unit, timebase)
 	}
 	d.Cycles = (d.To - d.From) * d.Quantities.DampedFrequency.Value
 	return d

@@ -194,18 +194,14 @@ func (d *design) bentFit(sol solution, law bendLaw) ringFit {
 
 // atStart returns damped frequency and Q at the first instant of the window, where
 // the rate is a + B and the angular frequency w + G; nil without an amplitude law.
-func (f *ringFit) atStart(v noise, timebase float64) *AtStart {
+func (f *ringFit) atStart(full *sym, timebase float64) *AtStart {
 	if f.bend == nil {
-		return nil
-	}
-	inv, ok := f.fullCovariance(v)
-	if !ok {
 		return nil
 	}
 	cov := sym{n: 2}
 	for i := range 2 {
 		for j := range i + 1 {
-			cov.set(i, j, (inv.At(i, j) + inv.At(i, j+2) + inv.At(i+2, j) + inv.At(i+2, j+2)))
+			cov.set(i, j, full.At(i, j)+full.At(i, j+2)+full.At(i+2, j)+full.At(i+2, j+2))
 		}
 	}
 	q := quantitiesOf(f.a+f.bend.b, f.w+f.bend.g, f.s.dt, &cov, timebase)

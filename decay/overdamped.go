@@ -39,8 +39,9 @@ func overdampedDecay(s series, timebase float64) (*Decay, []Finding) {
 		NoiseRMS: v.rms, ResidualRMS: math.Sqrt(best.rss / float64(best.used)),
 		NoiseFactor: v.factor(0), Used: best.used, Stop: best.stop, Iterations: best.iterations,
 		Amplitude: unknown(""), Phase: unknown("rad"),
-		Offset: quantity.New(best.c, best.uC*math.Sqrt(density), ""),
-		law:    secondOrderLaw{best}, noise: v,
+		Offset:     quantity.New(best.c, best.uC*math.Sqrt(density), ""),
+		Parameters: secondOrderParameters(best.a, best.d, s.dt, &cov, timebase),
+		law:        secondOrderLaw{best}, noise: v,
 	}
 	d.SNR = 20 * math.Log10(math.Sqrt((one-best.rss)/float64(best.used))/v.rms)
 	return d, []Finding{dampingFinding(&q, best.d, math.Sqrt(cov.At(1, 1)))}

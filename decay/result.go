@@ -78,6 +78,10 @@ type Decay struct {
 	// Amplitude (unit of the channel), phase (rad, cosine) and offset refer to From:
 	// y(t) = Offset + Amplitude exp(-(t-From)/tau) cos(2 pi fd (t-From) + Phase).
 	Amplitude, Phase, Offset quantity.Quantity
+	// Parameters are those that were fitted, named as the constants of this package
+	// say, with their covariance and so the full matrix of their correlations; nil
+	// when there is none.
+	Parameters *quantity.Joint
 	// AtStart holds the damped frequency and Q at the first cycle; amplitude model only.
 	AtStart *AtStart
 	// NoiseRMS is the standard deviation of the noise and ResidualRMS the rms of
