@@ -11,6 +11,8 @@ import (
 type clock struct {
 	n               int
 	start, interval float64 // of the least-squares line
+	middle          float64 // its middle, in intervals from the start
+	slopeU          float64 // standard uncertainty of the interval from the print, s
 	off             float64 // bound of the departures from the line, s
 	resolution      float64 // of the print, the coarsest in the record, s
 	least, most     float64 // steps between neighbours
@@ -19,6 +21,10 @@ type clock struct {
 	gaps            []gap
 	lost            int // rows missing in the gaps
 	spans           []span
+
+	stamps []float64 // all of them, where they are not even
+	runs   []run     // the stretches of them without a break
+	ruled  bool      // they lie on a line but for samples that are missing
 }
 
 // A gap is a step of more than one interval.
@@ -76,7 +82,9 @@ func (c *clock) regress() {
 		sxy += s.sxy + float64(s.n)*at*d
 		row += s.n
 	}
+	c.middle = middle
 	c.interval = sxy / sumOfSquares(c.n)
+	c.slopeU = c.slopeError(sumOfSquares(c.n))
 	c.start = origin + sum/float64(c.n) - c.interval*middle
 }
 
@@ -168,11 +176,12 @@ func (c *clock) even() bool {
 	return len(c.gaps) == 0 && c.off <= math.Max(c.resolution, negligible*c.interval)
 }
 
-// slopeError is the standard uncertainty of the interval from the rounding of
-// the stamps, s: q/sqrt(12) each, over n of them; of those that share a printed
-// time the errors go together, and count as one.
-func (c *clock) slopeError() float64 {
-	return c.resolution / math.Sqrt(12*sumOfSquares(c.n)) * math.Sqrt(math.Max(1, c.resolution/c.interval))
+// slopeError is the standard uncertainty of the interval from the rounding of the
+// stamps, s: q/sqrt(12) each, sxx being the sum of the squares of their numbers
+// about the middle; of those that share a printed time the errors go together,
+// and count as one.
+func (c *clock) slopeError(sxx float64) float64 {
+	return c.resolution / math.Sqrt(12*sxx) * math.Sqrt(math.Max(1, c.resolution/c.interval))
 }
 
 // times returns every stamp; a span kept as its line is written out.

@@ -8,6 +8,8 @@ import (
 	"strings"
 	"testing"
 	"time"
+
+	"gonum.org/v1/gonum/stat"
 )
 
 // has asks for a finding of a code and severity with words in its message.
@@ -36,6 +38,7 @@ func TestTimeColumns(t *testing.T) {
 		})
 	}
 	noon := time.Date(2031, 3, 4, 11, 59, 59, 999_900_000, time.UTC)
+	midnight := time.Date(2031, 3, 4, 23, 59, 59, 999_900_000, time.UTC)
 	header := "time,V_C (V)\n"
 	for _, c := range []struct {
 		name, text string
@@ -61,6 +64,10 @@ func TestTimeColumns(t *testing.T) {
 			want{interval: 4e-6, channels: "V_C/V"}},
 		{"twelve hours", header + stamped("1/2/2006 3:04:05.000000 PM", noon, 4*time.Microsecond), want{interval: 4e-6, channels: "V_C/V"}},
 		{"clock time alone", header + stamped("15:04:05.000000", noon, 4*time.Microsecond), want{interval: 4e-6, channels: "V_C/V"}},
+		{"clock time over midnight", header + stamped("15:04:05.000000", midnight, 4*time.Microsecond),
+			want{interval: 4e-6, channels: "V_C/V", findings: "uneven-time", check: has(UnevenTime, Note, "pass midnight", "24 h")}},
+		{"twelve hours over midnight", header + stamped("03:04:05.000000 PM", midnight, 4*time.Microsecond),
+			want{interval: 4e-6, channels: "V_C/V", findings: "uneven-time", check: has(UnevenTime, Note, "pass midnight", "24 h")}},
 		{"date and clock in columns of their own", "date;clock;V_C (V)\n" + strings.ReplaceAll(stamped("2006-01-02;15:04:05.000000", noon, 4*time.Microsecond), ",", ";"),
 			want{interval: 4e-6, channels: "V_C/V", findings: "ignored-columns"}},
 		{"stamps too coarse, interval declared", "delta t,2.500000E-6\ntime,V_C (V)\n" + stamped("1/2/2006 15:04:05.000000", noon, 2500*time.Nanosecond),
@@ -94,15 +101,16 @@ func TestUnevenTime(t *testing.T) {
 	for _, c := range []struct {
 		name     string
 		time     func(i int) float64 // us
+		interval float64             // us; 0: that of the least-squares line
 		findings string
 		check    func(*testing.T, *Capture)
 	}{
-		{"one row missing", func(i int) float64 { return us(i + i/41) }, "missing-samples", has(MissingSamples, Warning, "1 row of time", "before sample 42", "16.8 us")},
-		{"two gaps", func(i int) float64 { return us(i + 5*(i/20)) }, "missing-samples", has(MissingSamples, Warning, "10 rows", "2 gaps", "before sample 21")},
-		{"a stamp repeated", func(i int) float64 { return us(i - i/30) }, "uneven-time", has(UnevenTime, Warning, "1 stamp repeats")},
-		{"jitter", func(i int) float64 { return jitter[i] }, "uneven-time", has(UnevenTime, Note, "steps scatter")},
-		{"much jitter", func(i int) float64 { return us(i) + 0.15*float64(i%2) }, "uneven-time", has(UnevenTime, Warning, "steps scatter")},
-		{"a clock that slows down", func(i int) float64 { return us(i) + 0.001*float64(i*i) }, "uneven-time", has(UnevenTime, Note, "steps")},
+		{"one row missing", func(i int) float64 { return us(i + i/41) }, 0.4, "missing-samples", has(MissingSamples, Warning, "1 row of time", "before sample 42", "16.8 us")},
+		{"two gaps", func(i int) float64 { return us(i + 5*(i/20)) }, 0.4, "missing-samples", has(MissingSamples, Warning, "10 rows", "2 gaps", "before sample 21")},
+		{"a stamp repeated", func(i int) float64 { return us(i - i/30) }, 0.4, "uneven-time", has(UnevenTime, Warning, "1 stamp repeats")},
+		{"jitter", func(i int) float64 { return jitter[i] }, 0, "uneven-time", has(UnevenTime, Note, "steps scatter")},
+		{"much jitter", func(i int) float64 { return us(i) + 0.15*float64(i%2) }, 0, "uneven-time", has(UnevenTime, Warning, "steps scatter")},
+		{"a clock that slows down", func(i int) float64 { return us(i) + 0.001*float64(i*i) }, 0, "uneven-time", has(UnevenTime, Note, "steps")},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			times := make([]float64, rows)
@@ -111,7 +119,15 @@ func TestUnevenTime(t *testing.T) {
 				times[i] = number(s + "e-6")
 				return s + "," + ring(1, i)
 			})
-			understand(t, text, Options{}, want{start: times[0], interval: (times[rows-1] - times[0]) / (rows - 1), times: times,
+			interval := c.interval * 1e-6
+			if interval == 0 {
+				numbers := make([]float64, rows)
+				for i := range numbers {
+					numbers[i] = float64(i)
+				}
+				_, interval = stat.LinearRegression(numbers, times, nil, false)
+			}
+			understand(t, text, Options{}, want{start: times[0], interval: interval, times: times,
 				channels: "V_C/V", findings: c.findings, check: c.check})
 		})
 	}
@@ -121,11 +137,131 @@ func TestUnevenTime(t *testing.T) {
 			times[i] = float64(i+i/41) * 1e-6
 		}
 		text := "time (us),V_C (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%d,%s", i+i/41, ring(1, i)) })
-		understand(t, text, Options{}, want{interval: times[rows-1] / (rows - 1), times: times, channels: "V_C/V",
+		understand(t, text, Options{}, want{interval: 1e-6, times: times, channels: "V_C/V",
 			findings: "missing-samples", check: has(MissingSamples, Warning, "1 row of time missing")})
 		text = "Sample Interval,1e-6\nsample,V_C (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%d,%s", i+i/41, ring(1, i)) })
-		understand(t, text, Options{}, want{interval: times[rows-1] / (rows - 1), times: times, channels: "V_C/V",
+		understand(t, text, Options{}, want{interval: 1e-6, times: times, channels: "V_C/V",
 			findings: "missing-samples", check: has(MissingSamples, Warning, "1 row", "before sample 42")})
+	})
+}
+
+// The interval of a record with breaks is that of its steps, and not its length
+// over its samples.
+func TestNominalInterval(t *testing.T) {
+	for _, c := range []struct {
+		name     string
+		time     func(i int) float64 // us
+		places   int
+		interval float64 // us
+		within   float64 // of it
+		findings string
+		check    func(*testing.T, *Capture)
+	}{
+		{"a row missing in a coarse print", func(i int) float64 { return 4.13 * float64(i+i/200) }, 1, 4.13, 1e-5, "missing-samples", has(MissingSamples, Warning, "1 row")},
+		{"three rows missing in a coarse print", func(i int) float64 { return 4.13 * float64(i+i/100) }, 1, 4.13, 1e-5, "missing-samples", has(MissingSamples, Warning, "3 rows", "3 gaps")},
+		{"bursts far apart", func(i int) float64 { return 4*float64(i%100) + 123457.3*float64(i/100) }, 1, 4, 1e-12, "missing-samples", has(MissingSamples, Warning, "3 gaps")},
+		{"jitter and a row missing", func(i int) float64 { return 4*float64(i+i/200) + 0.1*math.Sin(float64(i*i)) }, 4, 4, 1e-4, "missing-samples uneven-time",
+			has(MissingSamples, Warning, "1 row of time", "before sample 201")},
+		{"a row written twice and a row missing", func(i int) float64 { return 4.1 * float64(i+i/200-i/300) }, 1, 4.1, 1e-12, "missing-samples uneven-time",
+			has(UnevenTime, Warning, "1 stamp repeats")},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			const n = 400
+			stamp := func(i int) string { return strconv.FormatFloat(c.time(i), 'f', c.places, 64) }
+			text := "time (us),V_C (V)\n" + lines(n, func(i int) string { return stamp(i) + "," + ring(1, i) })
+			x, err := Read(strings.NewReader(text), "loop 07.csv", Options{})
+			if err != nil {
+				t.Fatal(err)
+			}
+			var codes []string
+			for _, f := range x.Findings {
+				codes = append(codes, string(f.Code))
+			}
+			if got := strings.Join(codes, " "); got != c.findings {
+				t.Errorf("findings %v, want %s", x.Findings, c.findings)
+			}
+			c.check(t, x)
+			a := x.Channels[0].Axis
+			if math.Abs(a.Interval-c.interval*1e-6) > c.within*a.Interval {
+				t.Errorf("interval %v, want %v us (%s)", a.Interval, c.interval, a.Source)
+			}
+			if a.N != n || len(a.Times) != n {
+				t.Fatalf("%d samples, %d true times", a.N, len(a.Times))
+			}
+			for i, v := range a.Times {
+				if s := number(stamp(i) + "e-6"); math.Abs(v-s) > 0.6*math.Pow10(-c.places-6) {
+					t.Fatalf("time of sample %d is %v, printed %v", i, v, s)
+				}
+			}
+		})
+	}
+}
+
+// A clock that passes midnight in a record of many chunks, twice.
+func TestMidnights(t *testing.T) {
+	const n = 60000
+	first := time.Date(2031, 3, 4, 23, 0, 0, 0, time.UTC)
+	stamp := func(i int) string { return first.Add(time.Duration(i) * 2 * time.Second).Format("15:04:05.000") }
+	text := "time,V_C (V)\n" + lines(n, func(i int) string { return stamp(i) + "," + ring(1, i%500) })
+	c, err := Read(strings.NewReader(text), "loop 07.csv", Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if a := c.Channels[0].Axis; a.N != n || a.Times != nil || a.Start != 0 || a.Interval != 2 {
+		t.Errorf("axis %+v", a)
+	}
+	has(UnevenTime, Note, "48 h")(t, c)
+}
+
+func TestChannelsOfDifferentLength(t *testing.T) {
+	for _, sep := range []string{",", ";", "\t"} {
+		for _, n := range []int{60, 3000, 30000} {
+			for short := range 2 {
+				for _, trimmed := range []bool{false, true} {
+					t.Run(fmt.Sprintf("%q, %d rows, channel %d, trimmed %v", sep, n, short+1, trimmed), func(t *testing.T) {
+						text := differentLengths(sep, n, short, trimmed)
+						c, err := Read(strings.NewReader(text), "loop 07.csv", Options{})
+						if err != nil {
+							t.Fatal(err)
+						}
+						if len(c.Channels) != 2 || len(c.Findings) > 0 {
+							t.Fatalf("%d channels, findings %v", len(c.Channels), c.Findings)
+						}
+						for k, ch := range c.Channels {
+							n, a := n, ch.Axis
+							if k == short {
+								n /= 3
+							}
+							if a.N != n || len(ch.Samples) != n || a.Times != nil || a.Start != 0 || a.Interval != []float64{4e-6, 2e-6}[k] || ch.Unit != "V" {
+								t.Fatalf("%s in %s: %d samples on %+v, want %d", ch.Name, ch.Unit, len(ch.Samples), a, n)
+							}
+							for i, v := range ch.Samples {
+								if v != number(ring(k+1, i%1000)) {
+									t.Fatalf("sample %d of %s is %v", i, ch.Name, v)
+								}
+							}
+						}
+					})
+				}
+			}
+		}
+	}
+}
+
+// differentLengths is a text of two channels with their own times, of which one
+// ends at a third of the rows.
+func differentLengths(sep string, n, short int, trimmed bool) string {
+	header := strings.ReplaceAll("time A (us),A (V),,time B (us),B (V)\n", ",", sep)
+	return header + lines(n, func(i int) string {
+		pair := [2]string{at(i, 4, 1) + sep + ring(1, i%1000), at(i, 2, 1) + sep + ring(2, i%1000)}
+		if i >= n/3 {
+			pair[short] = sep
+		}
+		row := pair[0] + sep + sep + pair[1]
+		if trimmed {
+			row = strings.TrimRight(row, sep)
+		}
+		return row
 	})
 }
 
@@ -158,8 +294,8 @@ func TestLongRecords(t *testing.T) {
 		{"engineering exponents", func(i int) string { return fmt.Sprintf("%.4fE-06", float64(i)*0.4) }, false, "", 4e-7},
 		{"coarse", func(i int) string { return at(i, 1.92e-3, 3) }, false, CoarseTime, 1.92e-3},
 		{"coarser than the interval", func(i int) string { return at(i, 0.3e-3, 3) }, false, CoarseTime, 0.3e-3},
-		{"one row missing", func(i int) string { return at(i+i/40000, 4e-7, 7) }, true, MissingSamples, 4e-7 * n / (n - 1)},
-		{"one row missing of whole numbers", func(i int) string { return at(i+i/40000, 1e-6, 6) }, true, MissingSamples, 1e-6 * n / (n - 1)},
+		{"one row missing", func(i int) string { return at(i+i/40000, 4e-7, 7) }, true, MissingSamples, 4e-7},
+		{"one row missing of whole numbers", func(i int) string { return at(i+i/40000, 1e-6, 6) }, true, MissingSamples, 1e-6},
 		{"a step between two blocks of drift", func(i int) string { return at(i, 4e-7+2e-13*float64(i), 9) }, true, UnevenTime, 4e-7 + 2e-13*(n-1)},
 	} {
 		t.Run(c.name, func(t *testing.T) {

@@ -9,34 +9,55 @@ import (
 
 // build makes the capture from the table.
 func (d *layoutDesign) build(c *Capture, src *source, t *table) *Error {
-	axes := make([]*Axis, d.plan.times)
-	for k := range axes {
-		a, err := d.axis(c, t, k)
-		if err != nil {
-			return err
-		}
-		axes[k] = a
-		for _, other := range axes[:k] {
-			if sameAxis(a, other) {
-				axes[k] = other
-			}
-		}
+	axes, err := d.axes(c, t)
+	if err != nil {
+		return err
 	}
-	if len(axes) == 0 {
-		a, err := d.bareAxis(t.rows)
-		if err != nil {
-			return err
-		}
-		axes = append(axes, a)
-	}
-	d.finishRoles(t)
+	d.finishRoles(t, axes)
 	d.addChannels(c, t, axes)
-	if ch := c.Channels[0]; len(c.Channels) == 1 && t.missing[d.plan.steps[ch.Column-1].to] == t.rows {
-		return &Error{Err: ErrNoData, Column: ch.Column, Found: fmt.Sprintf("%d samples missing or over range", t.rows), Expected: "numbers"}
+	if ch := c.Channels[0]; len(c.Channels) == 1 && t.missing[d.plan.steps[ch.Column-1].to] == len(ch.Samples) {
+		return &Error{Err: ErrNoData, Column: ch.Column, Found: fmt.Sprintf("%d samples missing or over range", len(ch.Samples)), Expected: "numbers"}
 	}
 	d.addFindings(c, t)
 	c.Layout = d.layout(src)
 	return nil
+}
+
+// axes decides the time axis of every time column, or of a file without; nil
+// for a time column of too few stamps beside others.
+func (d *layoutDesign) axes(c *Capture, t *table) ([]*Axis, *Error) {
+	if d.plan.times == 0 {
+		a, err := d.bareAxis(t.rows)
+		return []*Axis{a}, err
+	}
+	axes := make([]*Axis, d.plan.times)
+	most := 0 // stamps of a column with samples beside it
+	for k := range axes {
+		n := 0
+		for _, s := range t.spans[k] {
+			n += s.n
+		}
+		if d.plan.samplesOn(k) {
+			most = max(most, n)
+		}
+		if n < fewestRows {
+			continue
+		}
+		a, err := d.axis(c, t, k)
+		if err != nil {
+			return nil, err
+		}
+		axes[k] = a
+		for _, other := range axes[:k] {
+			if other != nil && sameAxis(a, other) {
+				axes[k] = other
+			}
+		}
+	}
+	if most < fewestRows {
+		return nil, tooFew(most)
+	}
+	return axes, nil
 }
 
 func sameAxis(a, b *Axis) bool {
@@ -52,10 +73,7 @@ func (d *layoutDesign) addChannels(c *Capture, t *table, axes []*Axis) {
 		if col.Role != RoleChannel {
 			continue
 		}
-		ch := &Channel{Number: len(c.Channels) + 1, Column: i + 1, Unit: col.unit.base, Samples: t.values[d.plan.steps[i].to], Axis: axes[0]}
-		if col.time >= 0 {
-			ch.Axis = axes[d.plan.steps[col.time].to]
-		}
+		ch := &Channel{Number: len(c.Channels) + 1, Column: i + 1, Unit: col.unit.base, Samples: t.values[d.plan.steps[i].to], Axis: axes[max(0, d.plan.steps[i].axis)]}
 		if ch.Unit == "" && col.whole && wholeNumbers(ch.Samples) {
 			ch.Unit = "counts"
 		}
@@ -102,7 +120,7 @@ func commonEnd(time, name string) string {
 }
 
 // finishRoles corrects the roles by all values, now that they are known.
-func (d *layoutDesign) finishRoles(t *table) {
+func (d *layoutDesign) finishRoles(t *table, axes []*Axis) {
 	var channels []int
 	for i := range d.columns {
 		if d.columns[i].Role == RoleChannel {
@@ -117,9 +135,17 @@ func (d *layoutDesign) finishRoles(t *table) {
 		}
 	}
 	values := func(i int) []float64 { return t.values[d.plan.steps[i].to] }
+	channels = slices.DeleteFunc(channels, func(i int) bool {
+		s := d.plan.steps[i]
+		short := s.axis >= 0 && axes[s.axis] == nil
+		if short {
+			drop(i, RoleBlank, "%s in it only", plural(len(values(i)), "sample"))
+		}
+		return short
+	})
 	for k, i := range channels {
-		switch v := values(i); {
-		case t.missing[d.plan.steps[i].to] == t.rows:
+		switch v, s := values(i), d.plan.steps[i]; {
+		case t.missing[s.to] == len(v):
 			drop(i, RoleBlank, "not one sample in it can be read")
 		case zerosAndOnes(v) && d.columns[i].whole:
 			drop(i, RoleLogic, "it holds only 0 and 1")
@@ -156,7 +182,7 @@ func (d *layoutDesign) joinPeaks(channels []int, values func(int) []float64) {
 		i, j := channels[k-1], channels[k]
 		a, b := &d.columns[i], &d.columns[j]
 		stem, ok := peakPair(a.Name, b.Name)
-		if !ok || a.Role != RoleChannel || b.Role != RoleChannel {
+		if !ok || a.Role != RoleChannel || b.Role != RoleChannel || d.plan.steps[i].axis != d.plan.steps[j].axis {
 			continue
 		}
 		lo, hi := values(i), values(j)

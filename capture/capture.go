@@ -6,14 +6,14 @@
 // understood in a [Layout], which [Capture.Explain] prints. A text goes through
 // three steps:
 //
-//   - the head of the text decides the layout (detect.go, preamble.go, names.go,
+//   - the head of the text decides the layout (detect.go, shape.go, preamble.go, names.go,
 //     roles.go, timecolumn.go);
 //   - the data pass follows that layout over the whole text, block by block on
-//     all processors, without keeping text (plan.go, scan.go, number.go). Of the
+//     all processors, without keeping text (plan.go, slowrow.go, scan.go, number.go). Of the
 //     time column it keeps a regression, and the stamps only where they do not
 //     lie on a line (span.go);
 //   - all values known, the time axis is decided, roles are corrected, and what
-//     was left out or cannot be trusted is said in findings (axis.go, decide.go,
+//     was left out or cannot be trusted is said in findings (axis.go, decide.go, uneven.go,
 //     build.go, findings.go).
 package capture
 
@@ -58,14 +58,17 @@ type Axis struct {
 	N int
 	// Start is the time of sample 0, in seconds.
 	Start float64
-	// Interval is the mean sampling interval, in seconds, greater than zero.
+	// Interval is the nominal sampling interval, in seconds, greater than zero:
+	// what the stamps rise by from one sample to the next, by least squares,
+	// where none is missing and none is repeated.
 	Interval float64
 	// Times holds the true time of every sample, in seconds, not decreasing;
 	// nil when the samples are uniform: sample i is at Start + i*Interval.
 	Times []float64
 	// IntervalU is the standard uncertainty of Interval from the print of the
 	// stamps, in seconds; 0 for a declared interval, which is taken at its word,
-	// and for stamps that are not even. The clock's own error is not in it.
+	// and for stamps that are not even in spite of missing samples. The clock's
+	// own error is not in it.
 	IntervalU float64
 	// Resolution is the step of the printed times, in seconds; 0 without a time column.
 	Resolution float64

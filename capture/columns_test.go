@@ -36,7 +36,8 @@ func TestColumns(t *testing.T) {
 			return number(ring(ch, i))
 		}
 	}
-	marks := []string{"inf", "-inf", "---", "****", "", "NaN", "OVER", "+Inf", "#N/A", "1e999"}
+	marks := []string{"inf", "-inf", "---", "****", "", "NaN", "OVER", "+Inf", "#N/A", "1e999", "∞", "-∞", "+∞", "OL", "-OL", "OVL",
+		"over", "overflow", "-", "*", "1.#INF", "-1.#IND00", "1.#QNAN0", "#NAME?", "#DIV/0!", ">5.00", "<-5.00 V"}
 	marked := func(ch, i int) bool { return i < len(marks) }
 	for _, c := range []struct {
 		name, text string
@@ -107,7 +108,7 @@ func TestColumns(t *testing.T) {
 				return t0(i) + "," + marks[i]
 			}
 			return t0(i) + "," + ring(1, i)
-		}), want{interval: 0.4e-6, channels: "CH1/V", findings: "missing-samples", value: ringBut(marked), check: has(MissingSamples, Warning, "10 of 60")}},
+		}), want{interval: 0.4e-6, channels: "CH1/V", findings: "missing-samples", value: ringBut(marked), check: has(MissingSamples, Warning, "27 of 60")}},
 		{"a channel that is over range throughout", "time (us),CH1 (V),CH2 (V)\n" + lines(rows, func(i int) string { return t0(i) + "," + ring(1, i) + ",---" }),
 			want{interval: 0.4e-6, channels: "CH1/V", findings: "ignored-columns", check: roles("time channel blank")}},
 		{"comments and blank lines between the samples", "time (us),CH1 (V)\n" + lines(rows, func(i int) string {

@@ -21,16 +21,21 @@ func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
 	}
 	a := &Axis{N: clk.n, Resolution: clk.resolution}
 	decl := d.declared(col)
+	even := clk.even()
+	if !even {
+		clk.nominal()
+	}
 	d.contradiction(c, clk, decl)
-	if clk.even() {
+	if even {
 		clk.straight(a, decl, d.opt.Interval > 0)
 		coarse(c, clk, a)
 	} else {
-		clk.crooked(a)
+		clk.crooked(a, decl, d.opt.Interval > 0)
 		uneven(c, clk, a)
 	}
 	if d.columns[col].kind == kindStamp {
 		a.countFromFirst()
+		midnight(c, clk)
 	}
 	if d.assumed {
 		d.assumed = false // said once
@@ -63,36 +68,40 @@ func (d *layoutDesign) timeColumn(k int) int {
 	return 0
 }
 
-// straight makes the axis of stamps that lie on a line. Of the interval of the
-// regression and the declared one that agrees with it the sharper is taken.
+// straight makes the axis of stamps that lie on a line.
 func (k *clock) straight(a *Axis, decl declared, given bool) {
-	su := k.slopeError()
-	a.Interval = shorten(k.interval, 2*su)
-	a.IntervalU = su
-	a.Source = fmt.Sprintf("time column, regression over %d stamps", k.n)
-	if decl.ok && (given || k.agrees(decl) && decl.half < su) {
+	k.settle(a, fmt.Sprintf("time column, regression over %d stamps", k.n), decl, given)
+	a.Start = k.begin(a)
+}
+
+// settle decides the interval: of that of the regression and the declared one
+// that agrees with it the sharper is taken.
+func (k *clock) settle(a *Axis, source string, decl declared, given bool) {
+	a.Interval, a.IntervalU, a.Source = shorten(k.interval, 2*k.slopeU), k.slopeU, source
+	if decl.ok && (given || k.agrees(decl) && decl.half < k.slopeU) {
 		a.Interval, a.IntervalU = decl.value, 0
 		a.Source = fmt.Sprintf("time column of %d stamps, with the declared interval of %s", k.n, seconds(decl.value))
 	}
-	middle := float64(k.n-1) / 2
-	a.Start = k.start + (k.interval-a.Interval)*middle
-	if first := k.spans[0].first; math.Abs(a.Start-first) <= 0.05*k.resolution+1e-9*k.interval {
-		a.Start = first
+}
+
+// begin is the time of the first sample: on the line about its middle, and the
+// stamp itself where that is the same but for its print.
+func (k *clock) begin(a *Axis) float64 {
+	start := k.start + (k.interval-a.Interval)*k.middle
+	if first := k.spans[0].first; math.Abs(start-first) <= 0.05*k.resolution+1e-9*k.interval {
+		return first
 	}
+	return start
 }
 
 // agrees reports a declared interval that the stamps do not contradict, within
 // what both are printed to.
 func (k *clock) agrees(decl declared) bool {
-	is := k.interval
-	if len(k.gaps) > 0 {
-		is = k.typical
-	}
-	tolerance := math.Max(1.02*decl.half, math.Max(4*k.slopeError(), 1e-6*is))
+	tolerance := math.Max(1.02*decl.half, math.Max(4*k.slopeU, 1e-6*k.interval))
 	if !k.even() {
-		tolerance = math.Max(tolerance, 0.02*is)
+		tolerance = math.Max(tolerance, 0.02*k.interval)
 	}
-	return math.Abs(is-decl.value) <= tolerance
+	return math.Abs(k.interval-decl.value) <= tolerance
 }
 
 func (d *layoutDesign) contradiction(c *Capture, k *clock, decl declared) {
@@ -127,70 +136,12 @@ func coarse(c *Capture, k *clock, a *Axis) {
 		"save the times with more digits if the record is not evenly sampled")
 }
 
-// crooked makes the axis of stamps that are not even: their true times.
-func (k *clock) crooked(a *Axis) {
-	a.Times = k.times()
-	a.Start = a.Times[0]
-	a.Interval = (a.Times[k.n-1] - a.Times[0]) / float64(k.n-1)
-	a.Source = fmt.Sprintf("time column, the %d stamps as they are", k.n)
-}
-
-// uneven says what is uneven: rows missing, stamps repeated, jitter.
-func uneven(c *Capture, k *clock, a *Axis) {
-	said := len(c.Findings)
-	if len(k.gaps) > 0 {
-		g := k.gaps[0]
-		where := fmt.Sprintf("before sample %d at %s", g.row+1, seconds(g.time))
-		if n := len(k.gaps); n > 1 {
-			where = fmt.Sprintf("in %d gaps, the first %s", n, where)
-		}
-		c.note(MissingSamples, Warning, fmt.Sprintf("%s of time missing: %s", plural(k.lost, "row"), where),
-			"save the record again; the fit uses the true times of the samples that are there")
+// midnight says that clock times went over midnight.
+func midnight(c *Capture, k *clock) {
+	if n := k.spans[len(k.spans)-1].days; n > 0 {
+		c.note(UnevenTime, Note, fmt.Sprintf("clock times without a date pass midnight; %d h are added behind it", 24*n),
+			"nothing, unless the rows are out of order")
 	}
-	if k.zeroSteps > 0 && k.resolution < 0.5*k.typical {
-		message := "1 stamp repeats the one before it"
-		if k.zeroSteps > 1 {
-			message = fmt.Sprintf("%d stamps repeat the one before them", k.zeroSteps)
-		}
-		c.note(UnevenTime, Warning, message,
-			"look for rows that were written twice")
-	}
-	rms, worst := k.jitter(a.Times)
-	if worst <= math.Max(k.resolution, 2*negligible*k.typical) {
-		if said == len(c.Findings) { // a drift too slow to show from step to step
-			c.note(UnevenTime, Note, fmt.Sprintf("stamps depart from even sampling by up to %s, %.2g of the interval", seconds(k.off), k.off/a.Interval),
-				"nothing: the fit uses the true times")
-		}
-		return
-	}
-	severity := Note
-	if worst > 0.2*k.typical {
-		severity = Warning
-	}
-	c.note(UnevenTime, severity,
-		fmt.Sprintf("stamps are not even: steps scatter by %.2g %% of the interval of %s, at most by %.2g %%", 100*rms/k.typical, seconds(k.typical), 100*worst/k.typical),
-		"nothing if the sampling is known to jitter: the fit uses the true times")
-}
-
-// jitter is the rms and largest departure of steps from their mean, gaps and
-// repeated stamps left out.
-func (k *clock) jitter(times []float64) (rms, worst float64) {
-	regular := func(d float64) bool { return d > 0 && d <= 1.5*k.typical }
-	sum, n := 0.0, 0
-	for i := 1; i < len(times); i++ {
-		if d := times[i] - times[i-1]; regular(d) {
-			sum += d
-			n++
-		}
-	}
-	mean, squares := sum/float64(max(n, 1)), 0.0
-	for i := 1; i < len(times); i++ {
-		if d := times[i] - times[i-1]; regular(d) {
-			squares += (d - mean) * (d - mean)
-			worst = math.Max(worst, math.Abs(d-mean))
-		}
-	}
-	return math.Sqrt(squares / float64(max(n, 1))), worst
 }
 
 // countFromFirst makes the first sample the zero of a clock time.
@@ -209,16 +160,18 @@ func (d *layoutDesign) indexAxis(c *Capture, k *clock, col int) *Axis {
 	a := &Axis{N: k.n, Start: start,
 		Source: fmt.Sprintf("count of samples in column %d, with the declared interval of %s%s", col+1, seconds(decl.value), source)}
 	if k.even() {
-		a.Interval = decl.value * shorten(k.interval, 2*k.slopeError())
+		a.Interval = decl.value * shorten(k.interval, 2*k.slopeU)
 		return a
 	}
-	k.crooked(a)
+	source = a.Source
+	k.nominal()
+	k.crooked(a, declared{}, false)
 	uneven(c, k, a)
 	first := a.Times[0]
 	for i, n := range a.Times {
 		a.Times[i] = start + (n-first)*decl.value
 	}
-	a.Start, a.Interval = a.Times[0], a.Interval*decl.value
+	a.Start, a.Interval, a.IntervalU, a.Source = a.Times[0], a.Interval*decl.value, 0, source
 	return a
 }
 

@@ -48,8 +48,8 @@ func newDesign(h *head, opt Options) (*layoutDesign, *Error) {
 }
 
 // brokenRow refuses a line below the heading that holds a number where the
-// samples are, and words as well: a row that the search for the first row
-// would pass over without a word.
+// samples are, and words as well, but is neither a comment nor an entry: a row
+// that the search for the first row would pass over without a word.
 func (d *layoutDesign) brokenRow() *Error {
 	h := d.head
 	heading := max(d.heading.namesLine, d.heading.unitsLine)
@@ -58,6 +58,9 @@ func (d *layoutDesign) brokenRow() *Error {
 	}
 	for _, l := range h.lines[heading:h.first] {
 		cells := h.split(l.text, nil)
+		if isComment(l.text) || startsWithKey(cells) {
+			continue
+		}
 		bad, numbers := -1, 0
 		for i, k := range h.kinds[:min(len(h.kinds), len(cells))] {
 			switch got := h.kindOf(cells[i]); {
@@ -73,6 +76,17 @@ func (d *layoutDesign) brokenRow() *Error {
 		}
 	}
 	return nil
+}
+
+// startsWithKey reports a line whose first cell is a key of a preamble.
+func startsWithKey(cells []cell) bool {
+	for _, c := range cells {
+		if !c.blank() {
+			_, _, ok := readKey(toUTF8(c.text))
+			return ok
+		}
+	}
+	return false
 }
 
 // readBeside reads metadata that stand in columns beside the first samples.
@@ -111,7 +125,7 @@ func (d *layoutDesign) makePlan() *Error {
 			if timed || d.plan.times > 0 {
 				continue
 			}
-			*s = step{op: opTime, to: d.plan.times}
+			*s = step{op: opTime, to: d.plan.times, axis: d.plan.times}
 			d.plan.times++
 		case RoleChannel:
 			d.planValue(i)
@@ -120,6 +134,7 @@ func (d *layoutDesign) makePlan() *Error {
 		}
 		d.plan.last = i
 	}
+	d.pair()
 	if d.plan.values == 0 {
 		return &Error{Err: ErrNoData, Found: d.whatThereIs(), Expected: "a column of voltage or current"}
 	}
@@ -127,6 +142,17 @@ func (d *layoutDesign) makePlan() *Error {
 		return d.needInterval()
 	}
 	return nil
+}
+
+// pair tells the columns of samples which stamps go with them.
+func (d *layoutDesign) pair() {
+	for i := range d.columns {
+		if s := &d.plan.steps[i]; s.op == opValue && d.columns[i].time >= 0 {
+			s.axis = d.plan.steps[d.columns[i].time].to
+		} else if s.op == opValue && d.plan.times > 0 {
+			s.axis = 0
+		}
+	}
 }
 
 // whatThereIs names the columns of a table without channels.
@@ -150,13 +176,13 @@ func (d *layoutDesign) planValue(i int) {
 		c.unit = unit{}
 	}
 	c.Unit = unitName(c.unit)
-	d.plan.steps[i] = step{op: opValue, to: d.plan.values, shift: c.unit.exp, quantity: c.kind == kindQuantity}
+	d.plan.steps[i] = step{op: opValue, to: d.plan.values, axis: -1, shift: c.unit.exp, quantity: c.kind == kindQuantity}
 	d.plan.values++
 }
 
 // planTime settles the unit of a time column.
 func (d *layoutDesign) planTime(c *column, s *step) {
-	*s = step{op: opTime, to: d.plan.times, quantity: c.kind == kindQuantity}
+	*s = step{op: opTime, to: d.plan.times, axis: d.plan.times, quantity: c.kind == kindQuantity}
 	d.plan.times++
 	if c.kind == kindStamp {
 		s.op = opClock
@@ -236,6 +262,9 @@ func (d *layoutDesign) needInterval() *Error {
 func (d *layoutDesign) dayFirst(col int) bool {
 	first := true // common in most of the world, and of no weight within a day
 	d.head.eachRow(func(_ line, cells []cell) {
+		if col >= len(cells) {
+			return
+		}
 		p := stampParser{b: cells[col].text}
 		p.number()
 		if p.i++; p.i < len(p.b) {
@@ -251,7 +280,7 @@ func (d *layoutDesign) dayFirst(col int) bool {
 func (d *layoutDesign) firstSecond(col int) int64 {
 	zero, found := int64(0), false
 	d.head.eachRow(func(_ line, cells []cell) {
-		if found {
+		if found || col >= len(cells) {
 			return
 		}
 		if s, ok := parseStamp(cells[col].text, d.plan.dayFirst); ok {

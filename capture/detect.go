@@ -3,9 +3,11 @@ package capture
 import (
 	"bytes"
 	"fmt"
+	"slices"
 )
 
-// How a layout is found, from the head of the text (headSize bytes):
+// How a layout is found, from the head of the text (headSize bytes, or more
+// where the preamble is longer):
 //
 //  1. findShape: cut into lines; for every dialect take the block of like lines
 //     at the end of the head, where the samples are, and keep the dialect that
@@ -18,9 +20,9 @@ import (
 //  5. assignRoles (roles.go): what each column is, and why.
 
 const (
-	headSize   = 256 << 10 // bytes looked at to find the layout
-	blockLines = 64        // lines of the block that decides the dialect
-	roleRows   = 256       // rows looked at to decide roles
+	headSize = 256 << 10 // bytes looked at to find the layout
+	headMost = 8 << 20   // the same where the preamble is longer
+	roleRows = 256       // rows looked at to decide roles
 )
 
 // A line is one line of the head, without its line end.
@@ -39,16 +41,6 @@ type head struct {
 	shape
 	first  int   // index in lines of the first row of samples
 	sample []row // the first rows of samples
-}
-
-// A shape is the dialect of a block of lines and the kind of each column.
-type shape struct {
-	dialect
-	kinds []kind
-	score float64 // numeric cells explained, less half of those that are not
-	rows  int
-	full  []int // rows with something in the column
-	now   []kind
 }
 
 // newHead cuts the head into lines and finds the block of samples.
@@ -74,7 +66,33 @@ func newHead(text []byte, whole bool) (*head, *Error) {
 		h.kinds = append(h.kinds, kindBlank)
 	}
 	h.takeSample()
+	for col, k := range h.kinds {
+		if k == kindBlank {
+			h.kinds[col] = h.endsEarly(col)
+		}
+	}
 	return h, nil
+}
+
+// endsEarly gives the kind of a column that holds numbers from the first row on
+// and is blank from some row on: a channel shorter than others. It is blank for
+// any other; numbers with words to their left are metadata.
+func (h *head) endsEarly(col int) kind {
+	kind, n := kindBlank, 0
+	for row, r := range h.sample {
+		if col >= len(r.cells) || r.cells[col].blank() {
+			continue
+		}
+		k := h.kindOf(r.cells[col])
+		if !k.numeric() || n > 0 && k != kind || n < row || col > 0 && h.kindOf(r.cells[col-1]) == kindText {
+			return kindBlank
+		}
+		kind, n = k, n+1
+	}
+	if n < fewestRows {
+		return kindBlank
+	}
+	return kind
 }
 
 func longLine(number int) *Error {
@@ -112,156 +130,6 @@ func splitLines(text []byte, term byte, whole bool) []line {
 	return lines
 }
 
-// findShape returns the shape that explains the most numbers of the block of
-// like lines at the end; its rows are 0 when no line holds a number.
-func findShape(lines []line) shape {
-	var best shape
-	for _, d := range dialects {
-		if s := d.block(lines); s.rows > 0 && (best.rows == 0 || s.score > best.score) {
-			best = s
-		}
-	}
-	return best
-}
-
-// block finds the best block of like lines near the end of lines: a footer of
-// up to blockLines or a last line that was cut off must not hide it.
-func (d dialect) block(lines []line) shape {
-	var best shape
-	tries := 0
-	for last := len(lines) - 1; last >= max(0, len(lines)-blockLines) && tries < 8; last-- {
-		s := d.blockUpTo(lines[:last+1])
-		if s.rows == 0 {
-			continue
-		}
-		tries++
-		if best.rows == 0 || s.score > best.score {
-			best = s
-		}
-		if s.rows >= blockLines/2 {
-			break
-		}
-	}
-	return best
-}
-
-// blockUpTo grows a block upwards from the last line, as long as lines are alike.
-func (d dialect) blockUpTo(lines []line) shape {
-	s := shape{dialect: d}
-	var cells []cell
-	for i := len(lines) - 1; i >= 0 && s.rows < blockLines; i-- {
-		if cells = d.split(lines[i].text, cells[:0]); allBlank(cells) {
-			if s.rows == 0 {
-				return s // the caller tries the line above
-			}
-			continue
-		}
-		if !s.admit(cells) {
-			break
-		}
-	}
-	for i := range s.kinds {
-		if s.sparse(i) {
-			s.kinds[i] = kindBlank
-		}
-	}
-	return s
-}
-
-// sparse reports a column that is blank in most rows: what stands in it is
-// beside the samples.
-func (s *shape) sparse(col int) bool {
-	return s.rows >= 4 && col < len(s.full) && 4*s.full[col] < s.rows
-}
-
-func allBlank(cells []cell) bool {
-	for _, c := range cells {
-		if !c.blank() {
-			return false
-		}
-	}
-	return true
-}
-
-// admit takes a line into the block when its cells are like the block's.
-func (s *shape) admit(cells []cell) bool {
-	kinds := s.now[:0]
-	numeric, text := 0, 0
-	for _, c := range cells {
-		k := s.kindOf(c)
-		if kinds = append(kinds, k); k.numeric() {
-			numeric++
-		} else if k == kindText {
-			text++
-		}
-	}
-	s.now = kinds
-	if numeric == 0 || s.delim == ' ' && text > numeric {
-		return false
-	}
-	if s.rows > 0 && !s.alike(kinds) {
-		return false
-	}
-	for i, k := range kinds {
-		if i == len(s.kinds) {
-			s.kinds, s.full = append(s.kinds, k), append(s.full, 0)
-		} else if old := s.kinds[i]; old == kindBlank || old == kindMissing && k != kindBlank {
-			s.kinds[i] = k
-		}
-		if k != kindBlank {
-			s.full[i]++
-		}
-	}
-	s.rows++
-	s.score += float64(numeric) - 0.5*float64(text)
-	return true
-}
-
-// alike reports whether kinds contradict the block nowhere. Blank and missing
-// cells fit any column; cells beyond the last may only be blank.
-func (s *shape) alike(kinds []kind) bool {
-	if s.delim == ' ' && len(kinds) != len(s.kinds) {
-		return false
-	}
-	at := func(kinds []kind, i int) kind {
-		if i < len(kinds) {
-			return kinds[i]
-		}
-		return kindBlank
-	}
-	for i := range max(len(kinds), len(s.kinds)) {
-		a, b := at(s.kinds, i), at(kinds, i)
-		free := s.sparse(i) || a == kindBlank || a == kindMissing || b == kindBlank || b == kindMissing
-		if !free && a != b || (i >= len(kinds) || i >= len(s.kinds)) && (a.numeric() || b.numeric()) && !s.sparse(i) {
-			return false
-		}
-	}
-	return true
-}
-
-// fits reports a line that has the block's kind of number, or nothing, in every
-// column of numbers, and a number in at least half of them.
-func (s *shape) fits(cells []cell) bool {
-	found, wanted := 0, 0
-	for i, k := range s.kinds {
-		if !k.numeric() && k != kindMissing {
-			continue
-		}
-		wanted++
-		if i >= len(cells) {
-			return false
-		}
-		switch got := s.kindOf(cells[i]); {
-		case got == k && k.numeric(), got == kindNumber && k == kindMissing:
-			found++
-		case got == kindBlank || got == kindMissing:
-		default:
-			return false
-		}
-	}
-	return found > 0 && 2*found >= wanted
-}
-
 // firstRow is the index of the first row of samples: a line that fits, with
 // the next line that is not blank fitting too.
 func (h *head) firstRow() int {
@@ -270,7 +138,7 @@ func (h *head) firstRow() int {
 	for i, l := range h.lines {
 		cells = h.split(l.text, cells[:0])
 		switch {
-		case allBlank(cells):
+		case h.passed(l.text, cells):
 		case !h.fits(cells):
 			candidate = -1
 		case candidate >= 0:
@@ -288,6 +156,25 @@ func (h *head) firstRow() int {
 // preambleLines are the lines above the first row.
 func (h *head) preambleLines() []line { return h.lines[:h.first] }
 
+// numbersAbove gives the longest run of lines above the first row that hold
+// numbers and nothing else, first and last; a table of another shape.
+func (h *head) numbersAbove() (from, to int) {
+	run := 0
+	for _, l := range h.preambleLines() {
+		cells := h.split(l.text, nil)
+		if allBlank(cells) {
+			continue
+		}
+		if run++; slices.ContainsFunc(cells, func(c cell) bool { return !c.blank() && h.kindOf(c) != kindNumber }) {
+			run = 0
+		}
+		if run > to-from {
+			from, to = l.number-run+1, l.number
+		}
+	}
+	return from, to
+}
+
 // eachRow calls f with the cells of the first rows of samples.
 func (h *head) eachRow(f func(l line, cells []cell)) {
 	for _, r := range h.sample {
@@ -299,6 +186,19 @@ func (h *head) eachRow(f func(l line, cells []cell)) {
 type row struct {
 	line  line
 	cells []cell
+}
+
+// lists reports rows that each begin with another word, as entries of a preamble
+// do: key, value.
+func (h *head) lists() bool {
+	if h.kinds[0] != kindText || len(h.sample) < 2 {
+		return false
+	}
+	keys := map[string]bool{}
+	for _, r := range h.sample {
+		keys[string(r.cells[0].text)] = true
+	}
+	return 2*len(keys) > len(h.sample)
 }
 
 // takeSample cuts the first rows of samples, up to roleRows of them.

@@ -1,6 +1,9 @@
 package capture
 
-import "bytes"
+import (
+	"bytes"
+	"strings"
+)
 
 // A dialect is how a line is cut into cells and how a number is printed.
 type dialect struct {
@@ -153,9 +156,13 @@ func (d dialect) kindOf(c cell) kind {
 }
 
 // number reads a cell as a plain number; a quoted cell may hold thousands
-// separators. It returns the text the number was read from.
+// separators. It returns the text the number was read from. A decimal comma has
+// digits behind it: the comma of "208," parts cells.
 func (d dialect) number(c cell) (decimal, []byte, bool) {
 	n, ok := parseDecimal(c.text, d.mark)
+	if ok && d.mark == ',' && c.text[len(c.text)-1] == ',' {
+		return n, nil, false
+	}
 	if ok || !c.quoted {
 		return n, c.text, ok
 	}
@@ -215,16 +222,26 @@ func (d dialect) quantity(c cell) (decimal, unit, []byte, bool) {
 // missingMark reports a cell that stands for a sample that is missing or
 // beyond the converter's range.
 func missingMark(text []byte) bool {
-	switch text[0] {
-	case '-', '*', '#', '<', '>', '+', '.', '_', 'i', 'I', 'n', 'N', 'o', 'O', 'c', 'C', 'u', 'U', 'm', 'M':
-	default:
+	if strings.IndexByte("-*#<>+._iInNoOcCuUmM1\xe2", text[0]) < 0 {
 		return false
 	}
-	switch string(bytes.ToLower(bytes.TrimLeft(text, "+-<>"))) {
-	case "inf", "infinity", "nan", "na", "n/a", "#n/a", "#num!", "#value!", "#div/0!", "null", "none", "nil",
+	switch word := bytes.ToLower(bytes.TrimLeft(text, "+-<>=")); string(bytes.TrimRight(word, "0")) {
+	case "inf", "infinity", "∞", "nan", "na", "n/a", "#n/a", "null", "none", "nil",
 		"over", "overrange", "overflow", "ovl", "ovr", "ol", "ovld", "under", "underrange", "underflow",
 		"out", "clip", "clipped", "missing", "invalid", "1.#inf", "1.#ind", "1.#qnan":
 		return true
 	}
-	return len(bytes.Trim(text, "-*#.<>_ ")) == 0 && len(text) >= 2
+	switch last := text[len(text)-1]; text[0] {
+	case '#': // the error of a spreadsheet's formula: #DIV/0!, #NAME?
+		return last == '!' || last == '?' || isRule(text)
+	case '<', '>': // a limit in place of a value: >5.00
+		rest := bytes.TrimLeft(text, "<>= ")
+		return len(rest) > 0 && strings.IndexByte("0123456789.-+", rest[0]) >= 0 || isRule(text)
+	}
+	return isRule(text)
+}
+
+// isRule reports nothing but strokes, stars and dots: ---, ****, -.
+func isRule(text []byte) bool {
+	return len(bytes.Trim(text, "-*#.<>_= ")) == 0 && (len(text) > 1 || text[0] == '-' || text[0] == '*')
 }

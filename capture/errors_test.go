@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"compress/gzip"
 	"errors"
+	"fmt"
 	"io"
 	"io/fs"
 	"os"
@@ -60,6 +61,14 @@ func TestBadInput(t *testing.T) {
 		{"row too long", broken(2000, 1502, "600.0,0.1,0.2,0.3"), ErrSyntax, 1502, 0, `line 1502: found a row of 4 cells, expected 3`},
 		{"words between the samples", broken(2000, 1502, "second record"), ErrSyntax, 1502, 1, `line 1502, column 1: found "second record", expected a time as a number`},
 		{"time backwards", broken(2000, 1502, "500.0,0.1,0.2"), ErrBackwards, 1502, 0, `line 1502: time runs backwards: found 500 us after 599.6 us, expected a later time`},
+		{"clock time backwards", "time,V (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("12:00:%02d.5,%s", i%40, ring(1, i)) }),
+			ErrBackwards, 42, 0, "line 42: time runs backwards: found 500 ms after 39.5 s, expected a later time"},
+		{"samples without their time beside others that have it", "time (us),A (V),time (us),B (V)\n" + lines(2000, func(i int) string {
+			if i == 1500 {
+				return at(i, 4, 1) + "," + ring(1, i) + ",," + ring(2, i)
+			}
+			return at(i, 4, 1) + "," + ring(1, i) + "," + at(i, 2, 1) + "," + ring(2, i)
+		}), ErrSyntax, 1502, 3, "line 1502, column 3: found an empty cell, expected a time as a number"},
 		{"two records in one file", strings.Join(good(600), "") + strings.Join(good(600)[1:], ""), ErrBackwards, 602, 0, `line 602: time runs backwards: found 0 s after 239.6 us, expected a later time`},
 		{"cut off in the middle of a row", strings.Join(good(100), "") + "40.0,0.1", ErrSyntax, 102, 0, `line 102: found a row of 2 cells, expected 3`},
 		{"two samples", strings.Join(good(2), ""), ErrTooFew, 0, 0, "too few samples: found 2 rows, expected at least 6: a decay has five unknowns"},
@@ -68,6 +77,8 @@ func TestBadInput(t *testing.T) {
 		{"only a count", "n,CH1\n" + lines(rows, func(i int) string { return at(i, 1, 0) + "," + ring(1, i) }), ErrNoTime, 0, 0, "no time axis: found only a count of samples in column 1, and no sampling interval in the preamble, expected one of them, or --interval"},
 		{"nothing but over-range marks", "time (us),V (V)\n" + lines(rows, func(i int) string { return at(i, 0.4, 1) + ",---" }), ErrNoData, 0, 2, "column 2: no samples: found 60 samples missing or over range, expected numbers"},
 		{"only time", "time (s)\n" + lines(rows, func(i int) string { return at(i, 1, 1) }), ErrNoData, 0, 0, "no samples: found a time column and nothing beside it, expected a column of voltage or current"},
+		{"rows of two numbers below many of one", "# Sampling interval: 4 us\n" + lines(90000, func(i int) string { return ring(1, i%500) }) + "time,V\n" + lines(rows, func(i int) string { return at(i, 4, 1) + "," + ring(1, i) }),
+			ErrSyntax, 90003, 1, `line 90003, column 1: found "0.0,1.78300", expected a number`},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			x, err := Read(strings.NewReader(c.text), "loop 07.csv", Options{})

@@ -31,6 +31,10 @@ func sentence(s string) string {
 func (d *layoutDesign) addFindings(c *Capture, t *table) {
 	d.missing(c, t)
 	d.ignored(c)
+	if from, to := d.head.numbersAbove(); to-from >= 19 {
+		c.note(IgnoredColumns, Note, fmt.Sprintf("lines %d to %d hold numbers too and are not read; the samples begin in line %d", from, to, d.head.lines[d.head.first].number),
+			"split the file if they are a record of their own")
+	}
 }
 
 // missing counts the samples that the file does not hold.
@@ -38,13 +42,13 @@ func (d *layoutDesign) missing(c *Capture, t *table) {
 	for _, ch := range c.Channels {
 		if n := t.missing[d.plan.steps[ch.Column-1].to]; n > 0 {
 			c.note(MissingSamples, Warning,
-				fmt.Sprintf("%d of %d samples of %s are missing or over range, and left out", n, t.rows, ch.Name),
+				fmt.Sprintf("%d of %d samples of %s are missing or over range, and left out", n, len(ch.Samples), ch.Name),
 				"set the vertical scale so that the whole record is on screen")
 		}
 	}
 	col := max(0, firstWithRole(d.columns, RoleChannel))
-	if n := d.preamble.number(meansCount, col, "", unit{}); n.ok && n.value > float64(t.rows) && n.value < 1e12 {
-		c.note(MissingSamples, Note, fmt.Sprintf("the preamble declares %.0f samples, and %d are there", n.value, t.rows),
+	if n := d.preamble.number(meansCount, col, "", unit{}); n.ok && n.value > float64(len(c.Channels[0].Samples)) && n.value < 1e12 {
+		c.note(MissingSamples, Note, fmt.Sprintf("the preamble declares %.0f samples, and %d are there", n.value, len(c.Channels[0].Samples)),
 			"see whether the file was cut off")
 	}
 }
@@ -52,7 +56,6 @@ func (d *layoutDesign) missing(c *Capture, t *table) {
 // ignored lists the columns that are no channels.
 func (d *layoutDesign) ignored(c *Capture) {
 	var parts []string
-	last := len(d.columns) - 1
 	for i := range d.columns {
 		col := &d.columns[i]
 		switch col.Role {
@@ -63,8 +66,8 @@ func (d *layoutDesign) ignored(c *Capture) {
 				continue
 			}
 		case RoleBlank:
-			if i == last && col.Name == "" {
-				continue // a separator at the end of the line
+			if col.Name == "" && col.kind == kindBlank {
+				continue // separators doubled or at the end of the line
 			}
 		}
 		name := ""

@@ -175,6 +175,32 @@ func TestEncodings(t *testing.T) {
 	}
 }
 
+// named asks for the line of the names.
+func named(line int) func(*testing.T, *Capture) {
+	return func(t *testing.T, c *Capture) {
+		t.Helper()
+		if c.Layout.HeaderLine != line {
+			t.Errorf("names in line %d, want %d", c.Layout.HeaderLine, line)
+		}
+	}
+}
+
+// A preamble may be longer than what is read at first.
+func TestLongPreambles(t *testing.T) {
+	const n = 60000 // 1 to 3 MB
+	for name, entry := range map[string]func(i int) string{
+		"comments": func(i int) string { return fmt.Sprintf("# setting %d of the generator, %d", i, 7*i) },
+		"entries":  func(i int) string { return fmt.Sprintf("setting %d,%d", i, 7*i) },
+		"equals":   func(i int) string { return fmt.Sprintf("setting%d=%d", i, 7*i) },
+		"words":    func(i int) string { return "no average, no filter" },
+	} {
+		t.Run(name, func(t *testing.T) {
+			text := lines(n, entry) + "Vertical Units,mV\ntime (us),V_C\n" + lines(rows, func(i int) string { return at(i, 0.4, 1) + "," + ring(1, i) })
+			understand(t, text, Options{}, want{interval: 0.4e-6, channels: "V_C/V", value: scaled(-3), check: named(n + 2)})
+		})
+	}
+}
+
 // Separators, marks and the ways to print a number.
 func TestCells(t *testing.T) {
 	comma := func(s string) string { return strings.ReplaceAll(s, ".", ",") }
@@ -194,11 +220,11 @@ func TestCells(t *testing.T) {
 		{"blanks, units apart in brackets", "Time (us)   V_C (V)\n" + lines(rows, func(i int) string { return at(i, 0.4, 2) + " " + ring(1, i) }),
 			want{interval: 0.4e-6, channels: "V_C/V"}},
 		{"doubled commas", "time (us),,V_C (V),,I (A)\n" + lines(rows, func(i int) string { return at(i, 0.4, 2) + ",," + ring(1, i) + ",," + ring(2, i) }),
-			want{interval: 0.4e-6, channels: "V_C/V I/A", findings: "ignored-columns"}},
+			want{interval: 0.4e-6, channels: "V_C/V I/A"}},
 		{"doubled semicolons", "t;;u\ns;;V\n" + lines(rows, func(i int) string { return comma(at(i, 0.25, 2)) + ";;" + comma(ring(1, i)) }),
-			want{interval: 0.25, channels: "u/V", findings: "ignored-columns"}},
+			want{interval: 0.25, channels: "u/V"}},
 		{"trailing separators", "time (us),V_C (V),,\n" + lines(rows, func(i int) string { return at(i, 0.4, 2) + "," + ring(1, i) + ",," }),
-			want{interval: 0.4e-6, channels: "V_C/V", findings: "ignored-columns"}},
+			want{interval: 0.4e-6, channels: "V_C/V"}},
 		{"padded cells", "  time (us) ,   V_C (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("  %s  ,  %12s ", at(i, 0.4, 2), ring(1, i)) }),
 			want{interval: 0.4e-6, channels: "V_C/V"}},
 		{"quoted cells", `"time (us)","V_C (V)"` + "\n" + lines(rows, func(i int) string { return `"` + at(i, 0.4, 2) + `","` + ring(1, i) + `"` }),
@@ -248,17 +274,28 @@ func TestPreambles(t *testing.T) {
 		{"metadata of two channels side by side",
 			"Record Length,60,,Record Length,60\nVertical Units,V,,Vertical Units,A\nHorizontal Units,s,,Horizontal Units,s\nTIME,CH1,,TIME,CH2\n" +
 				lines(rows, func(i int) string { return pair(i) + ",," + at(i, 4e-6, 6) + "," + ring(2, i) }),
-			Options{}, want{interval: 4e-6, channels: "CH1/V CH2/A", findings: "ignored-columns"}},
+			Options{}, want{interval: 4e-6, channels: "CH1/V CH2/A"}},
 		{"metadata of two channels beside the samples", lines(rows, func(i int) string {
 			left, right := ",", ","
 			if beside := []string{"Source,AA", "Vertical Units,V", "Horizontal Units,s", "Points,60"}; i < len(beside) {
 				left, right = beside[i], strings.Replace(strings.Replace(beside[i], "AA", "BB", 1), ",V", ",A", 1)
 			}
 			return left + ",," + pair(i) + "," + right + ",," + at(i, 4e-6, 6) + "," + ring(2, i)
-		}), Options{}, want{interval: 4e-6, channels: "AA/V BB/A", findings: "ignored-columns"}},
+		}), Options{}, want{interval: 4e-6, channels: "AA/V BB/A"}},
 		{"codes and a sampling period",
 			"Memory depth,60\nSampling Period,4.000us\nScale,1.00V\n" + lines(rows, func(i int) string { return fmt.Sprint(codes(1, i)) }),
 			Options{}, want{interval: 4e-6, channels: "channel_1/counts", value: codes}},
+		{"separators at the end of every line",
+			"Memory depth,60,\nSampling Period,4.000us,\nScale,1.00V,\n" + lines(rows, func(i int) string { return fmt.Sprint(codes(1, i), ",") }),
+			Options{}, want{interval: 4e-6, channels: "channel_1/counts", value: codes}},
+		{"a line of words below the heading", "time (us),V_C (V)\nloop 07 on the bench,second try\n" + lines(rows, func(i int) string { return at(i, 4, 1) + "," + ring(1, i) }),
+			Options{}, want{interval: 4e-6, channels: "V_C/V", check: named(1)}},
+		{"a sentence below names without units", "V_S;V_C\nsampled at 250 kSa/s\n" + lines(rows, func(i int) string { return ring(1, i) + ";" + ring(2, i) }),
+			Options{}, want{interval: 4e-6, channels: "V_S/ V_C/", check: named(1)}},
+		{"words below names and units", "Time,V_C\nus,V\nno average,no filter\n-----,-----\n" + lines(rows, func(i int) string { return at(i, 4, 1) + "," + ring(1, i) }),
+			Options{}, want{interval: 4e-6, channels: "V_C/V", check: named(1)}},
+		{"an entry below the heading", "Time (us),V_C (V)\nPoints,60\n" + lines(rows, func(i int) string { return at(i, 4, 1) + "," + ring(1, i) }),
+			Options{}, want{interval: 4e-6, channels: "V_C/V", check: named(1)}},
 		{"a word that announces the samples", "Seconds per sample,4e-6\nVertical unit,V\nData\n" + lines(rows, func(i int) string { return ring(1, i) }),
 			Options{}, want{interval: 4e-6, channels: "channel_1/V"}},
 		{"a name that is the unit", "Second,Value\n" + lines(rows, pair), Options{}, want{interval: 4e-6, channels: "Value/"}},
@@ -279,7 +316,7 @@ func TestPreambles(t *testing.T) {
 		{"names one column short, unit of time by the interval",
 			"Saved: 2031-03-04 10:11:12\nUnits:(mV)\n,CH1,CH2\nState:,armed,armed\nFrequency:,?,125.0 kHz\nSP:,4.000 uS,4.000 uS\n\n\n" +
 				lines(rows, func(i int) string { return "," + at(i, 4, 3) + "," + ring(1, i) + "," + ring(2, i) }),
-			Options{}, want{interval: 4e-6, channels: "CH1/V CH2/V", value: scaled(-3), findings: "ignored-columns"}},
+			Options{}, want{interval: 4e-6, channels: "CH1/V CH2/V", value: scaled(-3)}},
 		{"unit of time given", "time,V_C\n" + lines(rows, func(i int) string { return at(i, 0.4, 1) + "," + ring(1, i) }),
 			Options{TimeUnit: "ns"}, want{interval: 0.4e-9, channels: "V_C/"}},
 		{"unit of time given for whole numbers", lines(rows, func(i int) string { return at(i, 1, 0) + " " + ring(1, i) }),
@@ -290,6 +327,8 @@ func TestPreambles(t *testing.T) {
 			Options{}, want{interval: 4e-6, channels: "CH1/V"}},
 		{"fewer samples than declared", "Record Length,100\ntime (s),CH1 (V)\n" + lines(rows, pair), Options{},
 			want{interval: 4e-6, channels: "CH1/V", findings: "missing-samples", check: has(MissingSamples, Note, "declares 100 samples, and 60 are there")}},
+		{"numbers of another table above", "# Sampling interval: 4 us\n" + lines(40, func(i int) string { return ring(1, i) }) + lines(rows, func(i int) string { return ring(1, i) + ";" + ring(2, i) }),
+			Options{}, want{interval: 4e-6, channels: "channel_1/ channel_2/", findings: "ignored-columns", check: has(IgnoredColumns, Note, "ines 2 to 41", "begin in line 42")}},
 		{"footer", "time (s),CH1 (V)\n" + lines(rows, pair) + "\nend of record\n", Options{}, want{interval: 4e-6, channels: "CH1/V"}},
 	} {
 		t.Run(c.name, func(t *testing.T) { understand(t, c.text, c.opt, c.w) })

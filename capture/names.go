@@ -14,37 +14,60 @@ type heading struct {
 }
 
 // findNames looks for the names row and the units row in the preamble, from
-// the samples upwards: the nearest line that can name the columns.
+// the samples upwards: of the lines that can name the columns, the one with the
+// most evidence, and of equals the nearest.
 func findNames(h *head, p *preamble) heading {
 	hd := heading{names: make([]string, len(h.kinds)), units: make([]unit, len(h.kinds))}
-	adjacent := true // only blank lines and the units row lie between
-	for i := h.first - 1; i >= 0; i-- {
+	best, found := -1, believed-1
+	below := 0 // lines of words between this one and the samples
+	for i := h.first - 1; i >= 0 && found < certain; i-- {
 		cells := h.headingCells(p, h.lines[i].text)
-		switch {
-		case allBlank(cells):
-		case h.unitsRow(cells):
-			if hd.unitsLine == 0 && adjacent {
+		if ruled(cells) {
+			continue
+		}
+		if h.unitsRow(cells) {
+			if hd.unitsLine == 0 && below < nearby {
 				hd.unitsLine = h.lines[i].number
 				h.place(cells, func(col int, text string) { hd.units[col], _ = parseUnit(text) })
+				below = 0
 			}
-		case h.namesRow(cells, adjacent):
-			hd.namesLine = h.lines[i].number
-			h.place(cells, func(col int, text string) {
-				name, u, ok := splitUnit(text)
-				if !ok {
-					u, ok = unitAsName(text)
-				}
-				if hd.names[col] = name; ok {
-					hd.units[col] = u
-				}
-			})
-			p.readBelow(h, i, cells)
-			return hd
-		default:
-			adjacent = false
+			continue
 		}
+		if e := h.evidence(cells, below); e > found {
+			best, found = i, e
+		}
+		below++
+	}
+	if best >= 0 {
+		hd.name(h, p, best)
 	}
 	return hd
+}
+
+// name takes the names, and the units that stand beside them, from line i.
+func (hd *heading) name(h *head, p *preamble, i int) {
+	cells := h.headingCells(p, h.lines[i].text)
+	hd.namesLine = h.lines[i].number
+	h.place(cells, func(col int, text string) {
+		name, u, ok := splitUnit(text)
+		if !ok {
+			u, ok = unitAsName(text)
+		}
+		if hd.names[col] = name; ok {
+			hd.units[col] = u
+		}
+	})
+	p.readBelow(h, i, cells)
+}
+
+// ruled reports a line of blank cells and strokes, as below a heading.
+func ruled(cells []cell) bool {
+	for _, c := range cells {
+		if !c.blank() && !isRule(c.text) {
+			return false
+		}
+	}
+	return true
 }
 
 // headingCells cuts a line that may be a heading. In a file separated by
@@ -97,12 +120,56 @@ func indexWord(name string) bool {
 	return false
 }
 
-// namesRow reports a line that can name the columns: words, no values, one for
-// each channel at least. It is believed when it stands next to the samples,
-// when it says time, or when its corner is blank as a table's may be.
-func (h *head) namesRow(cells []cell, adjacent bool) bool {
+// How much speaks for a line as the heading.
+const (
+	nearby   = 3 // lines of words with as many between them and the samples do not stand next to them
+	believed = 3 // next to the samples and nothing else
+	certain  = 9 // no other line will have more
+)
+
+// evidence says how much speaks for a line as the names of the columns: that it
+// stands next to the samples, says time, gives units, has a blank corner as a
+// table's may be, has a cell for each column and no sentence in any. It is 0 for
+// a line that cannot name them: words, no values, one for each channel at least.
+func (h *head) evidence(cells []cell, below int) int {
+	if !h.namesRow(cells) {
+		return 0
+	}
+	e := max(0, nearby-below)
+	says, units, sentence, filled := false, false, false, 0
+	for _, c := range cells {
+		if c.blank() {
+			continue
+		}
+		text := toUTF8(c.text)
+		name, u, ok := splitUnit(text)
+		filled++
+		if len(strings.Fields(name)) > 3 {
+			sentence = true
+			continue
+		}
+		says = says || saysTime(text) && (below < nearby || u.base == "s" || exactTimeName(name))
+		units = units || ok
+	}
+	if below >= nearby && !says && !cells[0].blank() {
+		return 0
+	}
+	for _, v := range []struct {
+		is     bool
+		weight int
+	}{
+		{says, 4}, {cells[0].blank(), 3}, {units, 2}, {filled == h.numericColumns(), 1}, {!sentence, 1},
+	} {
+		if v.is {
+			e += v.weight
+		}
+	}
+	return e
+}
+
+// namesRow reports a line that can name the columns.
+func (h *head) namesRow(cells []cell) bool {
 	words, numbers := 0, 0
-	says := false
 	for _, c := range cells {
 		if c.blank() {
 			continue
@@ -120,13 +187,9 @@ func (h *head) namesRow(cells []cell, adjacent bool) bool {
 			return false
 		default:
 			words++
-			says = says || saysTime(text)
 		}
 	}
-	if words == 0 || words+numbers < h.fewestNames() || h.entryLine(cells) || words == 1 && numbers == 0 && sectionWord(cells) {
-		return false
-	}
-	return adjacent || says || cells[0].blank()
+	return words > 0 && words+numbers >= h.fewestNames() && !h.entryLine(cells) && (words > 1 || numbers > 0 || !sectionWord(cells))
 }
 
 // unitAsName reads a name that is a unit itself: seconds, Volt, V. A single A

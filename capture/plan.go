@@ -2,7 +2,6 @@ package capture
 
 import (
 	"bytes"
-	"fmt"
 	"math"
 )
 
@@ -20,6 +19,7 @@ const (
 type step struct {
 	op       op
 	to       int  // index among the values or among the times
+	axis     int  // index among the times of the one that goes with it, -1: none
 	shift    int  // power of ten from the printed unit to the base unit
 	quantity bool // cells carry a unit of their own
 }
@@ -47,7 +47,10 @@ type chunk struct {
 	now     []instant   // the stamps of the row being read
 	cells   []cell      // of the row being read by slowRow
 	rows    int
-	missing []int // for each column of samples
+	partial bool     // the row being read lacks some time columns with their samples
+	absent  []bool   // for each time column, whether it is one of them
+	holes   [][]hole // for each time column, the rows that lack it
+	missing []int    // for each column of samples
 	spans   []span
 	first   int    // line of its first row
 	footer  *Error // the first line that may be a footer
@@ -77,6 +80,9 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 			if c.rows == 0 {
 				c.first = line
 			}
+			if c.partial {
+				c.noteAbsent()
+			}
 			c.rows++
 			p.accept(c, line)
 		}
@@ -97,6 +103,9 @@ func (p *plan) accept(c *chunk, line int) {
 		return
 	}
 	for k := range c.spans {
+		if c.partial && c.absent[k] {
+			continue
+		}
 		s, t := &c.spans[k], &c.now[k]
 		if s.run.goesOn(t) && s.n == s.run.n {
 			s.run.n++
@@ -105,6 +114,7 @@ func (p *plan) accept(c *chunk, line int) {
 			c.err = backwards(line, t.seconds(), s.last)
 		}
 	}
+	c.partial = false
 }
 
 func backwards(line int, t, before float64) *Error {
@@ -185,7 +195,7 @@ func (p *plan) clockCell(c *chunk, s *step, i int) int {
 	if !ok {
 		return -1
 	}
-	c.now[s.to] = t.instant(p.zero)
+	c.now[s.to] = c.spans[s.to].clock(t, p.zero)
 	return end
 }
 
@@ -224,115 +234,4 @@ func (p *plan) lineEnd(b []byte, i int) int {
 		return i + 1
 	}
 	return -1
-}
-
-// slowRow reads a row of any kind, and reports whether it was one. Blank lines
-// and comments are passed over; words at the end of the text are a footer.
-func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
-	text = bytes.TrimRight(text, "\r\x1a")
-	c.cells = p.split(text, c.cells[:0])
-	cells := c.cells
-	if allBlank(cells) || isComment(text) && p.kindOf(cells[0]) == kindText {
-		return false
-	}
-	bad, numbers := p.badCell(cells)
-	if bad != nil {
-		bad.Line = line
-		if numbers > 0 {
-			c.err = bad
-		} else if c.footer == nil {
-			c.footer = bad
-		}
-		return false
-	}
-	for k := 0; k <= p.last; k++ {
-		s := p.steps[k]
-		d, shift, digits, _ := p.decimalOf(cells[k], s)
-		switch s.op {
-		case opValue:
-			v := math.NaN()
-			if digits != nil {
-				v = d.float(shift, digits, p.mark)
-			}
-			if math.IsNaN(v) || math.IsInf(v, 0) {
-				v = math.NaN()
-				c.missing[s.to]++
-			}
-			c.dst[s.to][c.rows] = v
-		case opTime:
-			c.now[s.to] = instant{d: d, real: d.tooLong(), time: d.float(shift, digits, p.mark)}
-			c.now[s.to].d.exp += shift
-		case opClock:
-			t, _ := parseStamp(cells[k].text, p.dayFirst)
-			c.now[s.to] = t.instant(p.zero)
-		}
-	}
-	return true
-}
-
-// decimalOf reads a cell as the step wants it; digits are nil when there is none.
-func (p *plan) decimalOf(x cell, s step) (d decimal, shift int, digits []byte, ok bool) {
-	if x.blank() {
-		return d, 0, nil, s.op == opValue
-	}
-	if d, digits, ok = p.number(x); ok {
-		return d, s.shift, digits, true
-	}
-	if s.quantity {
-		var u unit
-		if d, u, digits, ok = p.quantity(x); ok {
-			return d, u.exp, digits, true
-		}
-	}
-	return d, 0, nil, s.op == opValue && missingMark(x.text)
-}
-
-// badCell returns the first thing wrong with a row, nil if none, and how many
-// of its cells are numbers.
-func (p *plan) badCell(cells []cell) (bad *Error, numbers int) {
-	for k := 0; k <= p.last && k < len(cells); k++ {
-		s := p.steps[k]
-		if s.op == opSkip {
-			continue
-		}
-		var ok, found bool
-		if s.op == opClock {
-			_, ok = parseStamp(cells[k].text, p.dayFirst)
-			found = ok
-		} else {
-			_, _, digits, fine := p.decimalOf(cells[k], s)
-			ok, found = fine, digits != nil
-		}
-		if found {
-			numbers++
-		}
-		if !ok && bad == nil {
-			bad = &Error{Err: ErrSyntax, Column: k + 1, Found: quote(string(cells[k].text)), Expected: s.expects()}
-			if cells[k].blank() {
-				bad.Found = "an empty cell"
-			}
-		}
-	}
-	if bad == nil && (len(cells) <= p.last || p.surplus(cells)) {
-		bad = &Error{Err: ErrSyntax, Found: fmt.Sprintf("a row of %d cells", len(cells)), Expected: fmt.Sprintf("%d", len(p.steps))}
-	}
-	return bad, numbers
-}
-
-func (s step) expects() string {
-	switch s.op {
-	case opTime:
-		return "a time as a number"
-	case opClock:
-		return "a date or clock time"
-	}
-	return "a number"
-}
-
-// surplus reports cells with something in them beyond the last column.
-func (p *plan) surplus(cells []cell) bool {
-	if p.last < len(p.steps)-1 || len(cells) <= len(p.steps) {
-		return false // text may hold separators
-	}
-	return !allBlank(cells[len(p.steps):])
 }

@@ -1,6 +1,7 @@
 package capture
 
 import (
+	"bytes"
 	"fmt"
 	"io"
 	"math"
@@ -67,14 +68,9 @@ func read(r io.Reader, name string, size int64, opt Options) (*Capture, error) {
 	if err != nil {
 		return nil, err
 	}
-	h, err := readHead(src)
+	h, d, err := layOut(src, opt)
 	if err != nil {
 		return nil, err
-	}
-	d, refusal := design(h, opt)
-	if refusal != nil {
-		refusal.File = name
-		return nil, refusal
 	}
 	t, err := d.plan.scan(src, h)
 	if err != nil {
@@ -98,24 +94,37 @@ func read(r io.Reader, name string, size int64, opt Options) (*Capture, error) {
 	return c, nil
 }
 
-// readHead reads the beginning of the text, or all of a short one.
-func readHead(src *source) (*head, error) {
-	room := int64(headSize)
+// layOut reads the beginning of the text, or all of a short one, and finds the
+// layout. Where there is none yet the preamble may be longer: it reads on.
+func layOut(src *source, opt Options) (*head, *layoutDesign, error) {
+	most := int64(headMost)
 	if size := src.size(); size > 0 {
-		room = min(room, 2*size+64) // UTF-16 may grow by half
+		most = min(most, 2*size+64) // UTF-16 may grow by half
 	}
-	buf := make([]byte, room+1)
-	n, whole, err := fill(src.text, buf[:room])
-	if err != nil {
-		return nil, src.readError(err)
+	var text []byte
+	for room := min(most, headSize); ; room = min(most, 4*room) {
+		from := len(text)
+		text = append(make([]byte, 0, room+1), text...)[:room]
+		n, whole, err := fill(src.text, text[from:])
+		text = text[:from+n]
+		if err != nil {
+			return nil, nil, src.readError(err)
+		}
+		if what := foreign(text[:min(len(text), 4096)]); what != "" {
+			return nil, nil, src.notText(what)
+		}
+		h, refusal := newHead(text, whole)
+		var d *layoutDesign
+		if refusal == nil {
+			d, refusal = design(h, opt)
+		}
+		last := whole || room == most || bytes.IndexByte(text, '\n') < 0 && bytes.IndexByte(text, '\r') < 0
+		if refusal == nil && (last || !h.lists()) {
+			return h, d, nil
+		}
+		if last {
+			refusal.File = src.name
+			return nil, nil, refusal
+		}
 	}
-	if what := foreign(buf[:min(n, 4096)]); what != "" {
-		return nil, src.notText(what)
-	}
-	h, refusal := newHead(buf[:n], whole)
-	if refusal != nil {
-		refusal.File = src.name
-		return nil, refusal
-	}
-	return h, nil
 }

@@ -16,6 +16,7 @@ type table struct {
 	values  [][]float64
 	missing []int
 	spans   [][]span // for each time column, in order of the rows
+	holes   [][]hole // for each time column, the rows that lack it
 }
 
 // A scanner reads a text block by block and hands the blocks to workers.
@@ -145,21 +146,27 @@ func (s *scanner) blocks(jobs chan<- *chunk, carry []byte) error {
 
 // finish joins what the workers made, or returns the first error in the text.
 func (s *scanner) finish() (*table, error) {
-	t := &table{missing: make([]int, s.p.values), spans: make([][]span, s.p.times)}
+	t := &table{missing: make([]int, s.p.values), spans: make([][]span, s.p.times), holes: make([][]hole, s.p.times)}
 	if err := s.join(t); err != nil {
 		err.File = s.src.name
 		return nil, err
 	}
 	if t.rows < fewestRows {
-		return nil, &Error{File: s.src.name, Err: ErrTooFew, Found: fmt.Sprintf("%d rows", t.rows),
-			Expected: fmt.Sprintf("at least %d: a decay has five unknowns", fewestRows)}
+		err := tooFew(t.rows)
+		err.File = s.src.name
+		return nil, err
 	}
 	t.values = s.store.gather(t.rows)
+	t.close(s.p)
 	return t, nil
 }
 
 // fewestRows is the least number of samples that can be a capture.
 const fewestRows = 6
+
+func tooFew(rows int) *Error {
+	return &Error{Err: ErrTooFew, Found: plural(rows, "row"), Expected: fmt.Sprintf("at least %d: a decay has five unknowns", fewestRows)}
+}
 
 func (s *scanner) join(t *table) *Error {
 	var footer *Error
@@ -177,13 +184,15 @@ func (s *scanner) join(t *table) *Error {
 			footer = c.footer
 		}
 		for k := range c.spans {
-			if n := len(t.spans[k]); n > 0 && c.rows > 0 && c.spans[k].first < t.spans[k][n-1].last {
+			if c.spans[k].n == 0 {
+				continue
+			}
+			if n := len(t.spans[k]); n > 0 && !c.spans[k].follows(t.spans[k][n-1].last) {
 				return backwards(c.first, c.spans[k].first, t.spans[k][n-1].last)
 			}
-			if c.rows > 0 {
-				t.spans[k] = append(t.spans[k], c.spans[k])
-			}
+			t.spans[k] = append(t.spans[k], c.spans[k])
 		}
+		t.addHoles(c)
 		for k, n := range c.missing {
 			t.missing[k] += n
 		}

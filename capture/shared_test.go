@@ -28,13 +28,13 @@ var sharedCaptures = []struct {
 	channels string // name/unit of each
 	findings string // codes
 }{
-	{file: "r01.csv", sep: ",", time: 3, values: []int{4}, interval: 200e-9, channels: "CH1/V", findings: "ignored-columns"},
-	{file: "r02.csv", sep: ",", time: 3, values: []int{4}, interval: 200e-9, channels: "CH2/V", findings: "ignored-columns"},
+	{file: "r01.csv", sep: ",", time: 3, values: []int{4}, interval: 200e-9, channels: "CH1/V"},
+	{file: "r02.csv", sep: ",", time: 3, values: []int{4}, interval: 200e-9, channels: "CH2/V"},
 	{file: "r03.csv", skip: 5, sep: ",", time: -1, values: []int{1, 2, 3}, interval: 2.5e-6, channels: "V_S/ V_C/ V_R/", findings: "coarse-time"},
 	{file: "r04.txt", skip: 2, sep: "\t", values: []int{1, 3, 5}, interval: 2e-6, channels: "V_S/ V_C/ V_R/", findings: "coarse-time"},
 	{file: "r05.txt", skip: 1, sep: "\t", values: []int{1, 3, 5}, interval: 2e-6, channels: "V_S/ V_C/ V_R/", findings: "coarse-time"},
 	{file: "r06.txt", opt: Options{TimeUnit: "us"}, values: []int{2}, scale: "e-6 ", uneven: true, channels: "channel 1/", findings: "uneven-time ignored-columns"},
-	{file: "r07.csv", skip: 10, sep: ",", time: 1, values: []int{2, 3}, scale: "e-6 e-3", interval: 10e-6, channels: "CH1/V CH2/V", findings: "ignored-columns"},
+	{file: "r07.csv", skip: 10, sep: ",", time: 1, values: []int{2, 3}, scale: "e-6 e-3", interval: 10e-6, channels: "CH1/V CH2/V"},
 	{file: "r08.csv", skip: 2, sep: ",", values: []int{1, 2}, interval: 1.48e-6, channels: "1/V 2/V"},
 	{file: "r09.csv", skip: 2, sep: ",", values: []int{1, 2}, interval: 1e-9, channels: "1/V 2/V"},
 }

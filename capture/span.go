@@ -26,6 +26,8 @@ type span struct {
 	rows      int         // room wanted for the stamps
 	run       progression // of all stamps so far, as long as it lasts
 	even      bool        // the line stands for all stamps
+	undated   bool        // clock times without a date
+	days      int64       // midnights they have passed
 }
 
 // An instant is one stamp: a printed number, its power of ten that of seconds;
@@ -39,6 +41,49 @@ type instant struct {
 // instant is the stamp counted from the whole second zero.
 func (s stamp) instant(zero int64) instant {
 	return instant{real: true, time: s.since(zero), d: decimal{exp: -s.places}}
+}
+
+// clock is the next stamp of the span as an instant: a clock time without a date
+// that is back by nearly a day has passed midnight.
+func (s *span) clock(t stamp, zero int64) instant {
+	if !t.dated {
+		s.undated = true
+		if s.n > 0 {
+			s.days += midnights(s.last, t.since(zero-s.days*secondsOfDay))
+		}
+		zero -= s.days * secondsOfDay
+	}
+	return t.instant(zero)
+}
+
+// midnights is the number of days to add to a clock time for it to come less
+// than an hour after the one before; 0 where that is not so.
+func midnights(before, t float64) int64 {
+	if !(t < before) {
+		return 0
+	}
+	n := math.Ceil((before - t) / secondsOfDay)
+	if t+n*secondsOfDay-before > 3600 {
+		return 0
+	}
+	return int64(n)
+}
+
+// follows reports whether the span comes after the time before, and puts it
+// behind the midnights in between.
+func (s *span) follows(before float64) bool {
+	if s.undated {
+		n := midnights(before, s.first)
+		s.days += n
+		shift := float64(n) * secondsOfDay
+		s.first += shift
+		s.last += shift
+		s.mean += shift
+		for i := range s.stamps {
+			s.stamps[i] += shift
+		}
+	}
+	return s.first >= before
 }
 
 // seconds is the time as a number.

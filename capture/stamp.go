@@ -7,6 +7,7 @@ type stamp struct {
 	second   int64   // whole seconds
 	fraction float64 // of a second
 	places   int     // printed decimal places of the second
+	dated    bool
 }
 
 // since returns the seconds from whole second zero to s.
@@ -34,13 +35,17 @@ func parseStamp(text []byte, dayFirst bool) (stamp, bool) {
 		}
 	}
 	s, ok := p.clock(first)
-	s.second += day * 86400
+	s.second += day * secondsOfDay
+	s.dated = p.dated
 	return s, ok && p.i == len(text)
 }
 
+const secondsOfDay = 86400
+
 type stampParser struct {
-	b []byte
-	i int
+	b     []byte
+	i     int
+	dated bool
 }
 
 // number reads one to four digits.
@@ -95,7 +100,8 @@ func (p *stampParser) date(first int, dayFirst bool) (int64, bool) {
 	if year < 100 {
 		year += 2000
 	}
-	return time.Date(year, time.Month(month), day, 0, 0, 0, 0, time.UTC).Unix() / 86400, true
+	p.dated = true
+	return time.Date(year, time.Month(month), day, 0, 0, 0, 0, time.UTC).Unix() / secondsOfDay, true
 }
 
 // clock reads the rest of a clock time behind its hours.

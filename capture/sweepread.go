@@ -77,7 +77,7 @@ func (s *Sweep) read(src *source, text []byte, opt SweepOptions) error {
 	if isTouchstone(text) {
 		return s.readTouchstone(src, text, opt)
 	}
-	h, err := newHead(text[:min(len(text), headSize)], len(text) <= headSize)
+	h, err := newHead(text[:min(len(text), headMost)], len(text) <= headMost)
 	if err != nil {
 		return err
 	}
@@ -107,7 +107,7 @@ type sweepTable struct {
 func (t *sweepTable) readRows(text []byte) *Error {
 	t.planColumns()
 	lines := splitLines(text, t.head.term, true)[t.head.first:]
-	c := &chunk{now: make([]instant, t.plan.times), missing: make([]int, t.plan.values), dst: make([][]float64, t.plan.values)}
+	c := &chunk{now: make([]instant, t.plan.times), spans: make([]span, t.plan.times), missing: make([]int, t.plan.values), dst: make([][]float64, t.plan.values)}
 	for k := range c.dst {
 		c.dst[k] = make([]float64, len(lines))
 	}
@@ -154,10 +154,10 @@ func (t *sweepTable) planColumns() {
 		c, s := &t.columns[i], &t.plan.steps[i]
 		switch c.kind {
 		case kindNumber, kindQuantity:
-			*s = step{op: opValue, to: t.plan.values, quantity: c.kind == kindQuantity}
+			*s = step{op: opValue, to: t.plan.values, axis: -1, quantity: c.kind == kindQuantity}
 			t.plan.values++
 		case kindStamp:
-			*s = step{op: opClock, to: t.plan.times}
+			*s = step{op: opClock, to: t.plan.times, axis: t.plan.times}
 			t.plan.times++
 			t.plan.dayFirst, t.plan.zero = t.dayFirst(i), t.firstSecond(i)
 			c.unit = unit{base: "s"}

@@ -17,7 +17,7 @@ import (
 // isTouchstone reports a text whose first line that is no comment is an option
 // line with a unit of frequency, or the keyword of version 2.
 func isTouchstone(text []byte) bool {
-	for line := range bytes.Lines(text[:min(len(text), headSize)]) {
+	for line := range bytes.Lines(text) {
 		words := strings.Fields(strings.ToLower(stripBang(string(line))))
 		if len(words) == 0 {
 			continue

@@ -1,0 +1,168 @@
+package capture
+
+const blockLines = 64 // lines of the block that decides the dialect
+
+// A shape is the dialect of a block of lines and the kind of each column.
+type shape struct {
+	dialect
+	kinds []kind
+	score float64 // numeric cells explained, less half of those that are not
+	rows  int
+	full  []int // rows with something in the column
+	now   []kind
+}
+
+// findShape returns the shape that explains the most numbers of the block of
+// like lines at the end; its rows are 0 when no line holds a number.
+func findShape(lines []line) shape {
+	var best shape
+	for _, d := range dialects {
+		if s := d.block(lines); s.rows > 0 && (best.rows == 0 || s.score > best.score) {
+			best = s
+		}
+	}
+	return best
+}
+
+// block finds the best block of like lines near the end of lines: a footer of
+// up to blockLines or a last line that was cut off must not hide it.
+func (d dialect) block(lines []line) shape {
+	var best shape
+	tries := 0
+	for last := len(lines) - 1; last >= max(0, len(lines)-blockLines) && tries < 8; last-- {
+		s := d.blockUpTo(lines[:last+1])
+		if s.rows == 0 {
+			continue
+		}
+		tries++
+		if best.rows == 0 || s.score > best.score {
+			best = s
+		}
+		if s.rows >= blockLines/2 {
+			break
+		}
+	}
+	return best
+}
+
+// blockUpTo grows a block upwards from the last line, as long as lines are alike.
+func (d dialect) blockUpTo(lines []line) shape {
+	s := shape{dialect: d}
+	var cells []cell
+	for i := len(lines) - 1; i >= 0 && s.rows < blockLines; i-- {
+		if cells = d.split(lines[i].text, cells[:0]); d.passed(lines[i].text, cells) {
+			if s.rows == 0 {
+				return s // the caller tries the line above
+			}
+			continue
+		}
+		if !s.admit(cells) {
+			break
+		}
+	}
+	for i := range s.kinds {
+		if s.sparse(i) {
+			s.kinds[i] = kindBlank
+		}
+	}
+	return s
+}
+
+// sparse reports a column that is blank in most rows: what stands in it is
+// beside the samples.
+func (s *shape) sparse(col int) bool {
+	return s.rows >= 4 && col < len(s.full) && 4*s.full[col] < s.rows
+}
+
+// passed reports a line that is passed over wherever it stands: blank, or a comment.
+func (d dialect) passed(text []byte, cells []cell) bool {
+	return allBlank(cells) || isComment(text) && d.kindOf(cells[0]) == kindText
+}
+
+func allBlank(cells []cell) bool {
+	for _, c := range cells {
+		if !c.blank() {
+			return false
+		}
+	}
+	return true
+}
+
+// admit takes a line into the block when its cells are like the block's.
+func (s *shape) admit(cells []cell) bool {
+	kinds := s.now[:0]
+	numeric, text := 0, 0
+	for _, c := range cells {
+		k := s.kindOf(c)
+		if kinds = append(kinds, k); k.numeric() {
+			numeric++
+		} else if k == kindText {
+			text++
+		}
+	}
+	s.now = kinds
+	if numeric == 0 || s.delim == ' ' && text > numeric {
+		return false
+	}
+	if s.rows > 0 && !s.alike(kinds) {
+		return false
+	}
+	for i, k := range kinds {
+		if i == len(s.kinds) {
+			s.kinds, s.full = append(s.kinds, k), append(s.full, 0)
+		} else if old := s.kinds[i]; old == kindBlank || old == kindMissing && k != kindBlank {
+			s.kinds[i] = k
+		}
+		if k != kindBlank {
+			s.full[i]++
+		}
+	}
+	s.rows++
+	s.score += float64(numeric) - 0.5*float64(text)
+	return true
+}
+
+// alike reports whether kinds contradict the block nowhere. Blank and missing
+// cells fit any column; cells beyond the last may only be blank.
+func (s *shape) alike(kinds []kind) bool {
+	if s.delim == ' ' && len(kinds) != len(s.kinds) {
+		return false
+	}
+	at := func(kinds []kind, i int) kind {
+		if i < len(kinds) {
+			return kinds[i]
+		}
+		return kindBlank
+	}
+	for i := range max(len(kinds), len(s.kinds)) {
+		a, b := at(s.kinds, i), at(kinds, i)
+		free := s.sparse(i) || a == kindBlank || a == kindMissing || b == kindBlank || b == kindMissing
+		if !free && a != b || (i >= len(kinds) || i >= len(s.kinds)) && (a.numeric() || b.numeric()) && !s.sparse(i) {
+			return false
+		}
+	}
+	return true
+}
+
+// fits reports a line that has the block's kind of number, or nothing, in every
+// column of numbers, and a number in at least half of them.
+func (s *shape) fits(cells []cell) bool {
+	found, wanted := 0, 0
+	for i, k := range s.kinds {
+		if !k.numeric() && k != kindMissing {
+			continue
+		}
+		wanted++
+		if i >= len(cells) {
+			return false
+		}
+		switch got := s.kindOf(cells[i]); {
+		case got == k && k.numeric(), got == kindNumber && k == kindMissing:
+			found++
+		case got == kindBlank || got == kindMissing:
+		default:
+			return false
+		}
+	}
+	return found > 0 && 2*found >= wanted
+}
