@@ -79,18 +79,18 @@ func lineGain(r []float64) float64 {
 	return most
 }
 
-// bendGain is the drop of the residual that the score of the quadratic law
-// promises: one Gauss-Newton step from no dependence on the amplitude.
+// bendGain is what the quadratic law explains to first order: with E = exp(-an) the
+// amplitude follows E + (B/a)(E^2 - E), so that beside the ring and its derivatives
+// it needs a ring of the same frequency that decays twice as fast.
 func bendGain(f *ringFit) float64 {
-	n, ok := newBent(f.s, quadratic).at([]float64{f.a, f.w, 1e-6 * f.a, 0})
+	p := newPoles(f.s, 2, 0)
+	g := p.gram([]float64{f.a, f.w, 2 * f.a, f.w})
+	fast := p.slot(1)
+	bent, ok := g.project([]int{0, 1, 2, 3, 4, fast, fast + 1}, p.yy)
 	if !ok {
 		return 0
 	}
-	_, gain, ok := reducedStep(&n, 4, 0)
-	if !ok {
-		return 0
-	}
-	return gain
+	return f.rss - bent.rss
 }
 
 // fallGain is what a plain exponential explains beside the ring.

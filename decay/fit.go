@@ -42,6 +42,8 @@ type ringFit struct {
 	stop          StopReason
 	iterations    int
 	normal        normal
+	problem       *poles // that it solves; nil with an amplitude law
+	left          *noise // see noise
 }
 
 // term is a component beside the ring: a second ring, or, with w = 0, a plain
@@ -75,6 +77,11 @@ func fitSum(s series, ring pole, companion *pole, tolerance float64) (ringFit, b
 		p = newPoles(s, 1, 1)
 		theta = append(theta, companion.a)
 	}
+	return p.solve(theta, tolerance)
+}
+
+// solve fits from theta on.
+func (p *poles) solve(theta []float64, tolerance float64) (ringFit, bool) {
 	if p.n < samplesLeast || !(p.yy > 0) {
 		return ringFit{}, false
 	}
@@ -90,6 +97,7 @@ func (r *poles) fit(sol solution) ringFit {
 	f := ringFit{
 		s: r.given, a: sol.theta[0], w: sol.theta[1], c: b[0], p: b[1], q: b[2], ref: r.ref,
 		rss: sol.normal.rss, n: r.n, stop: sol.stop, iterations: sol.iterations, normal: sol.normal,
+		problem: r,
 	}
 	switch {
 	case r.rings == 2:
@@ -106,12 +114,32 @@ func (f *ringFit) places() [5]int {
 	return [5]int{0, 1, k, k + 1, k + 2}
 }
 
+// theta lists the nonlinear parameters of a fit without an amplitude law.
+func (f *ringFit) theta() []float64 {
+	switch c := f.companion; {
+	case c == nil:
+		return []float64{f.a, f.w}
+	case c.w > 0:
+		return []float64{f.a, f.w, c.a, c.w}
+	default:
+		return []float64{f.a, f.w, c.a}
+	}
+}
+
 // companionPole is the start of a fit with the same companion, nil for none.
 func (f *ringFit) companionPole() *pole {
 	if f.companion == nil {
 		return nil
 	}
 	return &pole{f.companion.a, f.companion.w}
+}
+
+// aboutMean is the energy of the window about its mean.
+func (f *ringFit) aboutMean() float64 {
+	if f.problem != nil {
+		return f.problem.aboutMean()
+	}
+	return newRing(f.s).aboutMean()
 }
 
 func (f *ringFit) dof() float64    { return math.Max(1, float64(f.n-f.normal.jtj.n)) }
@@ -143,20 +171,25 @@ func (f *ringFit) value(n float64) float64 {
 // residuals of the samples first to last-1 of s, whose sample 0 is n0 intervals
 // after the start of the fitted window.
 func (f *ringFit) residuals(s series, n0 float64) []float64 {
-	out := make([]float64, s.len())
+	return f.residualsInto(make([]float64, s.len()), s, n0)
+}
+
+// residualsInto does so in out, which has room for them.
+func (f *ringFit) residualsInto(out []float64, s series, n0 float64) []float64 {
+	out = out[:s.len()]
 	if !s.even() || f.bend != nil {
 		for i, v := range s.y {
 			out[i] = v - f.value(n0+s.position(i))
 		}
 		return out
 	}
-	copy(out, s.y)
-	for i := range out {
-		out[i] -= f.offset()
+	offset, m := f.offset(), s.spacing()
+	for i, v := range s.y {
+		out[i] = v - offset
 	}
-	(&term{f.a, f.w, f.p, f.q}).subtract(out, n0)
-	if f.companion != nil {
-		f.companion.subtract(out, n0)
+	(&term{f.a * m, f.w * m, f.p, f.q}).subtract(out, n0/m)
+	if c := f.companion; c != nil {
+		(&term{c.a * m, c.w * m, c.p, c.q}).subtract(out, n0/m)
 	}
 	return out
 }
@@ -231,9 +264,17 @@ func (f *ringFit) plainCovariance(v noise) (sym, bool) {
 
 // noise describes what the fit leaves of its window.
 func (f *ringFit) noise() noise {
+	if f.left == nil {
+		v := f.noiseLeft()
+		f.left = &v
+	}
+	return *f.left
+}
+
+func (f *ringFit) noiseLeft() noise {
 	r := f.residuals(f.s.slice(0, min(f.s.len(), noiseSamples)), 0)
 	v := noiseOf(r, f.sigma())
-	if len(v.ar) == 0 || f.s.len() > unbiasSamples || !f.s.even() {
+	if len(v.ar) == 0 || f.s.len() > unbiasSamples || !f.s.whole() {
 		return v
 	}
 	c, ok := newColoured(f)

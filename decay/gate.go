@@ -22,6 +22,7 @@ const (
 	coreCycles     = 16      // cycles of a first fit, however many samples they take
 	coreMost       = 1 << 15 // samples of a first fit
 	deepWindow     = 1 << 16 // samples from which a gate grows fourfold
+	growRest       = 4       // share of a step below which what is left goes with it
 	tailLimit      = 12      // time constants after which nothing is left to learn
 	breakSigma     = 6       // departure that cannot be noise...
 	breakShare     = 0.03    // ...nor a model that is slightly wrong,
@@ -56,8 +57,7 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 		g.extendBack(s)
 	}
 	g.skipMissing(s)
-	g.refit(s, fine)
-	return g, true
+	return g, g.refit(s, fine)
 }
 
 // skipMissing lets the gate begin with a sample that is there.
@@ -67,15 +67,21 @@ func (g *gate) skipMissing(s series) {
 	}
 }
 
-// settle moves both ends of the gate to where the decay begins and ends.
+// settle moves both ends of the gate to where the decay begins and ends. The start
+// is looked for again where the samples that tell it have come to light only then.
 func (g *gate) settle(s series, p *pyramid, fixedStart, fixedEnd bool) {
-	reach := s.len()
-	for range 2 {
-		if !fixedStart {
-			g.placeStart(s, p, reach)
-		}
+	if !fixedStart {
+		g.placeStart(s, p, s.len())
+	}
+	last := g.last
+	g.growForward(s, fixedEnd)
+	switch window := s.slice(g.first, g.last); {
+	case fixedStart || last == g.last || g.fit.problem.covers(window) && last-g.first >= startWindow(&g.fit):
+	case last-g.first >= startWindow(&g.fit):
+		g.refit(s, coarse)
+	default:
+		g.placeStart(s, p, int(g.fit.period()/2)) // the rest of the decay moves it no further
 		g.growForward(s, fixedEnd)
-		reach = int(g.fit.period() / 2) // the rest of the decay moves it no further
 	}
 }
 
@@ -150,7 +156,7 @@ func (p *pyramid) refine(sd seed) (f ringFit, explained float64, ok bool) {
 	if f, ok = fitRing(window, sd.a*m, sd.w*m, coarse); !ok {
 		return f, 0, false
 	}
-	return f, m * (newRing(window).aboutMean() - f.rss), true
+	return f, m * (f.aboutMean() - f.rss), true
 }
 
 // plateaus tells how much energy is left when a record is cut in three and each
@@ -222,7 +228,10 @@ func (g *gate) growForward(s series, fixedEnd bool) {
 		if step > deepWindow {
 			step *= 3 // so long a window predicts far ahead, and each fit is a few passes
 		}
-		to := min(limit, g.last+step)
+		to := g.last + step
+		if to > limit-step/growRest {
+			to = limit // rather than a last step that adds little
+		}
 		if i, broken := g.breakIn(s, g.last, to); broken && !fixedEnd {
 			g.last, g.cutAfter = i, true
 			return
@@ -233,11 +242,13 @@ func (g *gate) growForward(s series, fixedEnd bool) {
 }
 
 // refit fits the window of the gate, from the last fit and with its model, to
-// tolerance.
-func (g *gate) refit(s series, tolerance float64) {
-	if next, ok := refit(s.slice(g.first, g.last), &g.fit, 0, tolerance); ok {
+// tolerance. It is false, and the fit that of another window, when none can be made.
+func (g *gate) refit(s series, tolerance float64) bool {
+	next, ok := refit(s.slice(g.first, g.last), &g.fit, 0, tolerance)
+	if ok {
 		g.fit = next
 	}
+	return ok
 }
 
 // refit fits window with the model of f, started at its parameters; the window
@@ -245,6 +256,9 @@ func (g *gate) refit(s series, tolerance float64) {
 func refit(window series, f *ringFit, shift, tolerance float64) (ringFit, bool) {
 	if f.bend != nil {
 		return refitBent(window, f, shift, tolerance)
+	}
+	if f.problem.covers(window) {
+		return f.problem.solve(f.theta(), tolerance)
 	}
 	return fitSum(window, pole{f.a, f.w}, f.companionPole(), tolerance)
 }
@@ -259,22 +273,44 @@ func (g *gate) breakIn(s series, from, to int) (int, bool) {
 	}
 	sigma := g.lateSigma()
 	limit := breakSigma*sigma + breakShare*g.fit.size()
-	origin := s.slice(g.first, s.len())
-	held := -breakNeighbour
-	for at := from; at < to; at += glitchBlock {
-		block := s.slice(at, min(at+glitchBlock, to))
-		for i, r := range g.fit.residuals(block, origin.position(at-g.first)) {
-			r = math.Abs(r)
-			if !(r > limit) || r <= limit+breakSigma*sigma*g.fit.spread(&cov, origin.position(at+i-g.first)) {
-				continue
-			}
-			if at+i-held < breakNeighbour {
-				return held, true
-			}
-			held = at + i
+	departs := func(r, n float64) bool {
+		r = math.Abs(r)
+		return r > limit && r > limit+breakSigma*sigma*g.fit.spread(&cov, n)
+	}
+	var held []int // those that depart, up to the first that has another close by
+	halves(to-from, func(first, last int) func() {
+		own := g.departures(s.slice(g.first, s.len()), from+first, from+last, departs)
+		return func() { held = append(held, own...) }
+	})
+	for k := range max(0, len(held)-1) {
+		if neighbours(held[k:]) {
+			return held[k], true
 		}
 	}
 	return to, false
+}
+
+// neighbours reports whether the first two of list stand close to each other.
+func neighbours(list []int) bool { return list[1]-list[0] < breakNeighbour }
+
+// departures lists the samples of the record from first to last-1 whose residual r,
+// n intervals after the start of origin, departs; it ends with the first two that
+// are near each other.
+func (g *gate) departures(origin series, first, last int, departs func(r, n float64) bool) (out []int) {
+	buffer := make([]float64, min(glitchBlock, last-first))
+	for at := first - g.first; at < last-g.first; at += glitchBlock {
+		block := origin.slice(at, min(at+glitchBlock, last-g.first))
+		for i, r := range g.fit.residualsInto(buffer, block, origin.position(at)) {
+			if !departs(r, origin.position(at+i)) {
+				continue
+			}
+			out = append(out, g.first+at+i)
+			if k := len(out); k > 1 && neighbours(out[k-2:]) {
+				return out
+			}
+		}
+	}
+	return out
 }
 
 // spread is the standard deviation of the curve n intervals after its start,

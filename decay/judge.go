@@ -139,7 +139,7 @@ func byChance(s series, g *gate, d *Decay) (Finding, bool) {
 // energyGain is the energy that the ring explains beyond a constant, in units of
 // the noise density where the ring lives.
 func energyGain(f *ringFit, v noise) float64 {
-	return (newRing(f.s).aboutMean() - f.rss) / sq(v.rms*v.factor(f.w))
+	return (f.aboutMean() - f.rss) / sq(v.rms*v.factor(f.w))
 }
 
 // energyNeeded is what the largest of n noise lines explains by chance (twice the
@@ -147,10 +147,13 @@ func energyGain(f *ringFit, v noise) float64 {
 func energyNeeded(n int) float64 { return 2*math.Log(float64(n)) + 20 }
 
 // notOscillating refuses what does not swing: the fit must explain more than a
-// bare exponential does.
+// bare exponential does, and no less than two of them.
 func notOscillating(f *ringFit, v noise) (Finding, bool) {
 	if f.w > heavyRatio*f.a {
 		return Finding{}, false // it swings several times: no exponential does
+	}
+	if twoFallsDo(f) {
+		return bareExponential(), true
 	}
 	e, ok := fitExponential(f.s)
 	if !ok {
@@ -161,6 +164,30 @@ func notOscillating(f *ringFit, v noise) (Finding, bool) {
 		return Finding{}, false
 	}
 	return bareExponential(), true
+}
+
+// twoFallsDo reports whether two exponentials, the response above critical damping,
+// explain the window of a heavily damped ring better than the ring does, or as well
+// as one that needs a companion or an amplitude law for it.
+func twoFallsDo(f *ringFit) bool {
+	window := f.s.thinned(choiceSamples)
+	falls, ok := fitTwoFalls(window)
+	if !ok {
+		return false
+	}
+	ring, left := 0.0, make([]float64, 0, window.len())
+	for i, r := range f.residuals(window, 0) {
+		if r == r {
+			ring += r * r
+			left = append(left, window.y[i]-falls.value(window.position(i)))
+		}
+	}
+	v := noiseOf(left, math.Sqrt(falls.rss/math.Max(1, float64(falls.used-5))))
+	gain := (ring - falls.rss) / sq(v.rms*v.factor(0))
+	if f.companion != nil || f.bend != nil {
+		gain += 2 * oscillateGain
+	}
+	return gain > oscillateGain
 }
 
 func bareExponential() Finding {

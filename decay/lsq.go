@@ -43,16 +43,16 @@ func (s *solution) dof(n int) float64 {
 
 const (
 	iterationCap  = 60
-	fine          = 1e-6  // step of a final fit, in variances: a thousandth of the uncertainty
-	coarse        = 1e-3  // step of a trial
+	fine          = 1e-8  // step left to a final fit, in variances: 1e-4 of the uncertainty
+	coarse        = 1e-3  // step left to a trial
 	roundingFloor = 1e-26 // of the signal's energy: nothing is left to gain
 	roundingSlack = 1e-15 // of the signal's energy: the residual is no better known
 	lambdaLeast   = 1e-7
 	lambdaMost    = 1e9
 )
 
-// minimise starts at theta and follows the damped Gauss-Newton steps down until
-// the square of a step falls below tolerance, in units of the variance.
+// minimise starts at theta and follows the damped Gauss-Newton steps down to where
+// the square of the next one is below tolerance, in units of the variance.
 func minimise(p separable, theta []float64, tolerance float64) solution {
 	s := solution{theta: append([]float64(nil), theta...), stop: Singular}
 	cur, ok := p.at(theta)
@@ -68,7 +68,10 @@ func minimise(p separable, theta []float64, tolerance float64) solution {
 			s.stop = Singular
 			return s
 		}
-		small := gain <= tolerance*s.normal.rss/s.dof(p.size())+floor
+		if gain <= tolerance*s.normal.rss/s.dof(p.size())+floor {
+			s.stop = Converged
+			return s
+		}
 		next := make([]float64, len(theta))
 		for i := range next {
 			next[i] = s.theta[i] + step[i]
@@ -81,13 +84,6 @@ func minimise(p separable, theta []float64, tolerance float64) solution {
 		case ok && trial.rss <= s.normal.rss+slack:
 			s.theta, s.normal = next, trial
 			lambda = shrink(lambda)
-			if small {
-				s.stop = Converged
-				return s
-			}
-		case small:
-			s.stop = Converged
-			return s
 		default:
 			lambda = grow(lambda)
 			if lambda > lambdaMost {

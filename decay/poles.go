@@ -13,6 +13,9 @@ type pole struct{ a, w float64 }
 // at returns the exponential at time n.
 func (z pole) at(n float64) complex128 { return cmplx.Exp(complex(-z.a*n, z.w*n)) }
 
+// over is the exponential counted in steps of m intervals.
+func (z pole) over(m float64) pole { return pole{z.a * m, z.w * m} }
+
 // poles is the least-squares problem of a sum of exponentials about a constant,
 //
 //	y(n) = ref + c + sum_k exp(-a_k n) (p_k cos w_k n + q_k sin w_k n) + sum_l d_l exp(-b_l n)
@@ -31,6 +34,12 @@ type poles struct {
 	y, yy        float64 // sums about ref
 	length       float64 // in intervals
 	missing      []int   // samples that are not there
+	// latest is what at returned last: a fit that goes on where one ended need not
+	// pass over the samples again for its first step.
+	latest struct {
+		theta  []float64
+		normal normal
+	}
 }
 
 func newPoles(s series, rings, falls int) *poles {
@@ -78,6 +87,11 @@ func (p *poles) fillGaps() {
 	}
 }
 
+// covers reports whether the problem is about the samples of s.
+func (p *poles) covers(s series) bool {
+	return p != nil && p.given.len() == s.len() && &p.given.y[0] == &s.y[0] && p.given.stride == s.stride
+}
+
 // newRing is the problem of one ring.
 func newRing(s series) *poles { return newPoles(s, 1, 0) }
 
@@ -88,15 +102,31 @@ func (p *poles) size() int { return p.n }
 
 // at turns theta into normal equations.
 func (p *poles) at(theta []float64) (normal, bool) {
+	if slices.Equal(theta, p.latest.theta) {
+		return p.latest.normal, true
+	}
+	n, ok := p.evaluate(theta)
+	if ok {
+		p.latest.theta, p.latest.normal = theta, n
+	}
+	return n, ok
+}
+
+func (p *poles) evaluate(theta []float64) (normal, bool) {
+	g := p.gram(theta)
+	return p.normal(&g)
+}
+
+// gram sums up the basis at theta.
+func (p *poles) gram(theta []float64) (g gram) {
 	list := p.list(theta)
-	var g gram
 	if p.s.even() {
 		g = p.uniformGram(list)
 		p.takeOut(&g, list)
 	} else {
 		g.accumulate(p.s, p.ref, p.slot(len(list)), func(t float64, f *[parametersMost]float64) { p.basis(list, t, f) })
 	}
-	return p.normal(&g)
+	return g
 }
 
 func (p *poles) list(theta []float64) []pole {
@@ -143,10 +173,22 @@ func (p *poles) isRing(k int) bool { return k < p.rings }
 func (p *poles) uniformGram(list []pole) gram {
 	g := p.innerProducts(list, p.s.len())
 	g.b[0] = p.y
+	m := p.s.spacing()
 	for k, z := range list {
-		p.putProjection(&g, k, projectAll(p.s.y, z, p.ref))
+		sum := projectAll(p.s.y, z.over(m), p.ref)
+		sum[1] *= complex(m, 0)
+		p.putProjection(&g, k, sum)
 	}
 	return g
+}
+
+// moments returns sum n^k z^n over the times of n uniform samples for k = 0, 1, 2.
+func (p *poles) moments(z pole, n int) [3]complex128 {
+	m := p.s.spacing()
+	sum := geometric(z.over(m), n)
+	sum[1] *= complex(m, 0)
+	sum[2] *= complex(m*m, 0)
+	return sum
 }
 
 // innerProducts returns those of the basis over n uniform samples.
@@ -155,11 +197,11 @@ func (p *poles) innerProducts(list []pole, n int) gram {
 	g.g.n = p.slot(len(list))
 	g.g.set(0, 0, float64(n))
 	for k, zk := range list {
-		one := geometric(zk, n)
+		one := p.moments(zk, n)
 		p.putPair(&g, k, -1, one, one)
 		for l, zl := range list[:k+1] {
 			sum, difference := pole{zk.a + zl.a, zk.w + zl.w}, pole{zk.a + zl.a, zk.w - zl.w}
-			p.putPair(&g, k, l, geometric(sum, n), geometric(difference, n))
+			p.putPair(&g, k, l, p.moments(sum, n), p.moments(difference, n))
 		}
 	}
 	return g
@@ -170,7 +212,7 @@ func (p *poles) takeOut(g *gram, list []pole) {
 	var f [parametersMost]float64
 	f[0] = 1
 	for _, i := range p.missing {
-		p.basis(list, float64(i), &f)
+		p.basis(list, p.s.position(i), &f)
 		for a := range g.g.n {
 			for b := range a + 1 {
 				g.g.set(a, b, g.g.At(a, b)-f[a]*f[b])

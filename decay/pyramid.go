@@ -109,12 +109,28 @@ func (p *pyramid) onsets() []int {
 // neighbours in y[first:last].
 func steepest(y []float64, first, last int) int {
 	first, last = max(0, first), min(len(y), last)
-	best, at := -1.0, first
-	for i := first; i+2 < last; i++ {
-		d := math.Max(math.Abs(y[i+1]-y[i]), math.Abs(y[i+2]-y[i]))
-		if d > best {
-			best, at = d, i
+	most, at := -1.0, first
+	halves(max(0, last-2-first), func(from, to int) func() {
+		d, i := largestStep(y[first+from : first+to+2])
+		return func() {
+			if d > most {
+				most, at = d, first+from+i
+			}
+		}
+	})
+	return at
+}
+
+// largestStep returns the largest step of y and the index before it.
+func largestStep(y []float64) (most float64, at int) {
+	most = -1
+	for i := range len(y) - 2 {
+		if d := math.Abs(y[i+1] - y[i]); d > most {
+			most, at = d, i
+		}
+		if d := math.Abs(y[i+2] - y[i]); d > most {
+			most, at = d, i
 		}
 	}
-	return at
+	return most, at
 }

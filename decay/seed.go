@@ -85,16 +85,16 @@ func spectral(y []float64) []seed {
 	c := transform(x)
 	k := 1
 	for i := 1; i < len(c)-1; i++ {
-		if cmplx.Abs(c[i]) > cmplx.Abs(c[k]) {
+		if power(c[i]) > power(c[k]) {
 			k = i
 		}
 	}
 	if k+1 >= len(c) {
 		return nil
 	}
-	share := math.Min(0.999, 2*sq(cmplx.Abs(c[k]))/(float64(n)*energy))
+	share := math.Min(0.999, 2*power(c[k])/(float64(n)*energy))
 	gain := -float64(n) * math.Log(1-share)
-	if k > 1 && cmplx.Abs(c[k-1]) > cmplx.Abs(c[k+1]) {
+	if k > 1 && power(c[k-1]) > power(c[k+1]) {
 		k--
 	}
 	v := func(i int) complex128 { return cmplx.Exp(complex(0, -2*math.Pi*float64(i)/float64(n))) }
@@ -112,34 +112,32 @@ func spectral(y []float64) []seed {
 // damped tries strongly damped rings, which have no line in the spectrum: a bank
 // of frequencies and rates that scale with the window, on at most bankPoints means.
 func damped(y []float64) []seed {
-	y = filled(slices.Clone(y))
 	m := (len(y) + bankPoints - 1) / bankPoints
-	if m > 1 {
-		x := make([]float64, len(y)/m)
-		for i := range x {
-			for _, v := range y[i*m : i*m+m] {
-				x[i] += v / float64(m)
-			}
-		}
-		y = x
+	if slices.ContainsFunc(y, math.IsNaN) {
+		y = filled(slices.Clone(y))
 	}
-	n := float64(len(y))
-	r := newRing(series{y: y, dt: 1})
-	zero := r.aboutMean()
+	x := make([]float64, len(y)/max(1, m))
+	mean := 0.0
+	for i := range x {
+		for _, v := range y[i*m : i*m+m] {
+			x[i] += v / float64(m)
+		}
+		mean += x[i] / float64(len(x))
+	}
+	zero := 0.0
+	for i := range x {
+		x[i] -= mean
+		zero += x[i] * x[i]
+	}
 	if !(zero > 0) {
 		return nil
 	}
+	n := float64(len(x))
 	best := seed{gain: math.Inf(-1)}
-	for _, cycles := range []float64{0.5, 1.2, 3} {
-		for _, u := range []float64{2.5, 6} {
-			a, w := u/n, 2*math.Pi*cycles/n
-			e, ok := r.at([]float64{a, w})
-			if !ok {
-				continue
-			}
-			if gain := n * math.Log(zero/math.Max(e.rss, 1e-12*zero)); gain > best.gain {
-				best = seed{a: a / float64(m), w: w / float64(m), gain: gain * float64(m)}
-			}
+	for _, b := range bank(len(x)) {
+		rss := math.Max(zero-b.explains(x), 1e-12*zero)
+		if gain := n * math.Log(zero/rss); gain > best.gain {
+			best = seed{a: b.a / float64(m), w: b.w / float64(m), gain: gain * float64(m)}
 		}
 	}
 	if math.IsInf(best.gain, -1) {
@@ -173,5 +171,8 @@ func transform(x []float64) []complex128 {
 	defer pool.(*sync.Pool).Put(plan)
 	return plan.Coefficients(nil, x)
 }
+
+// power is the squared magnitude.
+func power(c complex128) float64 { return real(c)*real(c) + imag(c)*imag(c) }
 
 func sq(x float64) float64 { return x * x }

@@ -53,7 +53,13 @@ func span(y []float64) (lo, hi float64, gaps bool) {
 func (s series) len() int { return len(s.y) }
 
 // even reports whether the samples stand at even times, though some may be missing.
-func (s series) even() bool { return s.times == nil && s.stride == 0 }
+func (s series) even() bool { return s.times == nil }
+
+// whole reports whether they stand at every interval of the record.
+func (s series) whole() bool { return s.times == nil && s.stride == 0 }
+
+// spacing is the distance of neighbours in an even series, in intervals.
+func (s series) spacing() float64 { return float64(max(1, s.stride)) }
 
 // slice returns samples first to last-1.
 func (s series) slice(first, last int) series {

@@ -137,9 +137,10 @@ func (g *gate) glitches(s series) []int {
 // far returns the samples of the window from first to last-1 that depart from the
 // fit by more than limit, as samples of the record.
 func (g *gate) far(window series, first, last int, limit float64) (out []int) {
+	buffer := make([]float64, min(glitchBlock, last-first))
 	for at := first; at < last; at += glitchBlock {
 		block := window.slice(at, min(at+glitchBlock, last))
-		for i, v := range g.fit.residuals(block, window.position(at)) {
+		for i, v := range g.fit.residualsInto(buffer, block, window.position(at)) {
 			if math.Abs(v) > limit {
 				out = append(out, g.first+at+i)
 			}

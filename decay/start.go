@@ -3,13 +3,15 @@ package decay
 import "math"
 
 const (
-	startPoints  = 64    // samples per cycle that suffice to place the start coarsely
-	startCycles  = 32    // cycles of the decay that tell the start,
-	trialStep    = 0.1   // step of a fit that is only compared with others, in variances
-	heavyRatio   = 5     // w over a, twice Q, below which a ring counts as heavily damped
-	startSamples = 4096  // or as many samples
-	modelShare   = 0.005 // of the record's rms: what a slightly wrong model may leave
-	trimSigma    = 3     // departure at which a sample on an edge is dropped
+	startPoints  = 16      // samples per cycle that suffice to place the start coarsely
+	startReach   = 4       // samples of a coarse level within which the next one looks
+	startCycles  = 32      // cycles of the decay that tell the start,
+	trialStep    = 0.1     // step of a fit that is only compared with others, in variances
+	heavyRatio   = 5       // w over a, twice Q, below which a ring counts as heavily damped
+	startSamples = 4096    // or as many samples
+	headSamples  = 1 << 15 // samples of a long gate that its start is settled with
+	modelShare   = 0.005   // of the record's rms: what a slightly wrong model may leave
+	trimSigma    = 3       // departure at which a sample on an edge is dropped
 )
 
 // startSearch looks for the first sample of the free decay: the cut s for which
@@ -34,12 +36,14 @@ type trial struct {
 }
 
 func newStartSearch(s series, start, last int, f *ringFit) *startSearch {
-	enough := int(math.Max(startCycles*f.period(), startSamples))
-	s = s.slice(0, min(last, start+enough))
+	s = s.slice(0, min(last, start+startWindow(f)))
 	r := newRing(s)
 	v := r.aboutMean() / float64(max(1, r.n))
 	return &startSearch{s: s, a: f.a, w: f.w, variance: v, floor: sq(modelShare) * v, tried: map[int]trial{}}
 }
+
+// startWindow is how many samples tell the start of the decay that f was fitted to.
+func startWindow(f *ringFit) int { return int(math.Max(startCycles*f.period(), startSamples)) }
 
 // at fits the decay from sample i.
 func (q *startSearch) at(i int) trial {
@@ -104,12 +108,12 @@ func floorPower(n int) int {
 func (g *gate) placeStart(s series, p *pyramid, reach int) {
 	before, a, w := g.first, g.fit.a, g.fit.w
 	k := 0
-	if s.even() {
+	if s.whole() {
 		for k+1 < len(p.levels) && g.fit.period()/float64(scale(k+1)) >= startPoints {
 			k++
 		}
 	}
-	for ; k >= 0; k -= 2 {
+	for {
 		m := float64(scale(k))
 		level := s
 		if k > 0 {
@@ -123,18 +127,41 @@ func (g *gate) placeStart(s series, p *pyramid, reach int) {
 			g.first = at * scale(k)
 			g.fit.a, g.fit.w = t.fit.a/m, t.fit.w/m
 		}
-		if k == 1 {
-			k = 2
+		if k == 0 {
+			break
 		}
+		reach = min(reach, startReach*scale(k))
+		k = max(0, k-2)
 	}
-	if g.first == before && w > heavyRatio*a {
-		g.fit.a, g.fit.w = a, w // the whole window knows them better
+	g.settleStart(s, before, pole{a, w})
+	g.cutBefore = g.first > 0
+}
+
+// settleStart fits the gate from where its start has come to, and moves it by the
+// few samples that the edge and the level before it take. was is the ring that was
+// fitted from the sample before. Of a long gate the first cycles do; the whole is
+// fitted anew only where its start has moved.
+func (g *gate) settleStart(s series, before int, was pole) {
+	head := *g
+	head.last = min(g.last, g.first+max(headSamples, int(startCycles*g.fit.period())))
+	long := head.last < g.last
+	if !long && g.first == before && was.w > heavyRatio*was.a {
+		head.fit.a, head.fit.w = was.a, was.w // the whole window knows them better
 	} else {
+		head.refit(s, coarse)
+	}
+	head.trim(s)
+	head.leaveLevel(s)
+	switch {
+	case !long:
+		*g = head
+	case head.first == before:
+		g.first, g.fit.a, g.fit.w = before, was.a, was.w
+	default:
+		g.first = head.first
+		g.fit.a, g.fit.w = head.fit.a, head.fit.w
 		g.refit(s, coarse)
 	}
-	g.trim(s)
-	g.leaveLevel(s)
-	g.cutBefore = g.first > 0
 }
 
 // trim drops the samples of the edge itself, a few at most, that a finite rise
