@@ -18,10 +18,11 @@ import (
 // the fitted curve over the same samples. About a resonance of long decay it is the
 // Lorentzian A/2 / |alpha + j 2 pi (f - fd)|, A tau/2 high and as wide at half power
 // as the bandwidth alpha/pi; a gate that ends before the ring has died widens it.
-// Measured and fitted differ by the noise alone, where the model is right.
+// Measured and fitted differ by the noise alone, where the model is right: Left is the
+// spectrum of the residual, at the full resolution of the gate.
 type RingSpectrum struct {
-	Frequency        []float64 // Hz, rising
-	Measured, Fitted []float64
+	Frequency              []float64 // Hz, rising
+	Measured, Fitted, Left []float64
 	// Bands are the stretches that are shown, each about one fitted resonance or
 	// about several that lie close.
 	Bands []Band
@@ -67,6 +68,7 @@ func (d *Decay) RingSpectrum(ch *capture.Channel) (*RingSpectrum, error) {
 			out.Frequency = append(out.Frequency, b.from+float64(k)*step)
 			out.Measured = append(out.Measured, cmplx.Abs(measured[k]))
 			out.Fitted = append(out.Fitted, cmplx.Abs(fitted[k]))
+			out.Left = append(out.Left, cmplx.Abs(measured[k]-fitted[k]))
 		}
 		out.Bands = append(out.Bands, Band{first, len(out.Frequency), b.center, b.width})
 		out.Missing = low.missing

@@ -138,11 +138,10 @@ func TestRingSpectrumByDefinition(t *testing.T) {
 	}
 }
 
-// Measured and fitted differ by the noise: the mean square of their difference is
-// half of that of a complex noise of the rms stated, for the magnitude feels only
-// the part along the curve.
+// What is left has the rms stated, and the magnitudes differ by half of its mean
+// square, for they feel only the part along the curve.
 func TestRingSpectrumNoise(t *testing.T) {
-	square, n := 0.0, 0
+	along, left, n := 0.0, 0.0, 0
 	for seed := range uint64(30) {
 		random := normal01(seed)
 		d, ch := measuredRing(t, 20000, 2.5e-8, 100e-6, func(int) float64 { return 0.01 * random() })
@@ -154,13 +153,17 @@ func TestRingSpectrumNoise(t *testing.T) {
 		for i, f := range s.Frequency {
 			// Beside the resonance, where the fit has not taken the noise with it.
 			if math.Abs(f-b.Center[0]) > 2*b.Width[0] {
-				square += sq((s.Measured[i] - s.Fitted[i]) / s.Noise)
+				along += sq((s.Measured[i] - s.Fitted[i]) / s.Noise)
+				left += sq(s.Left[i] / s.Noise)
 				n++
 			}
 		}
 	}
-	if mean := square / float64(n); math.Abs(mean-0.5) > 0.06 {
-		t.Errorf("mean square difference of %g of the noise, want 0.5", mean)
+	if mean := along / float64(n); math.Abs(mean-0.5) > 0.06 {
+		t.Errorf("magnitudes differ by a mean square of %g of the noise, want 0.5", mean)
+	}
+	if mean := left / float64(n); math.Abs(mean-1) > 0.1 {
+		t.Errorf("what is left has a mean square of %g of the noise, want 1", mean)
 	}
 }
 

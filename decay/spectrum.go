@@ -216,3 +216,25 @@ func freedomOf(window []float64, total float64, count, stride int) float64 {
 	}
 	return 2 * float64(count) / sum
 }
+
+// Inside is the share of the lines that lie in the band of white noise.
+func (s *ResidualSpectrum) Inside() float64 {
+	n := 0
+	for i, v := range s.Density {
+		if v >= s.Low[i] && v <= s.High[i] {
+			n++
+		}
+	}
+	return float64(n) / float64(len(s.Density))
+}
+
+// Strongest is the index of the line that stands furthest above its band, or comes
+// closest to its edge.
+func (s *ResidualSpectrum) Strongest() (at int) {
+	for i, v := range s.Density {
+		if v/s.High[i] > s.Density[at]/s.High[at] {
+			at = i
+		}
+	}
+	return at
+}
