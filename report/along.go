@@ -1,37 +1,66 @@
 package report
 
 import (
+	"fmt"
+	"math"
+
 	"github.com/go-echarts/go-echarts/v2/charts"
 
 	"dieaway/decay"
 	"dieaway/decay/quantity"
 )
 
-var (
-	keyLocal  = key{"stretch by stretch, with U (k = 2)", "ring", "samples"}
-	keyQuoted = key{"result", "line", "fit"}
-)
+var keyQuoted = key{"result", "line", "fit"}
+
+// stretchKeys tell a few decays apart, by mark and colour; more share one.
+var stretchKeys = []key{{"", "ring", "samples"}, {"", "cross", "crossing"}, {"", "ring", "peak"}, {"", "cross", "envelope"}}
+
+const stretchName = "stretch by stretch, with U (k = 2)"
 
 const (
-	captionAlong     = "Steady along the decay, within the bars, is what one exponential asks for; a slope is loss or reactance that changes with the amplitude, a wave another mode."
-	captionAmplitude = "The same stretches against the amplitude of the ring, as a magnetic core or a diode is judged by; the result of an amplitude-dependent decay is the limit at the left."
+	captionFrequencyAlong   = "Steady along the decay, within the bars, is what one exponential asks for; a slope is a reactance that changes with the amplitude, a wave another mode."
+	captionQAlong           = "A slope here is loss that changes with the amplitude: a clamp or a core at the first cycles, a source that still feeds the circuit at the last."
+	captionFrequencyAgainst = "The same stretches against the amplitude of the ring, as a magnetic core or a diode is judged by; the result of a decay that depends on it is the limit at the left."
+	captionQAgainst         = "A Q that falls to the right is loss that grows with the amplitude; decays that part here were not loaded alike."
 )
 
 var wordsOfAmplitude = axisWords{"amplitude", "Amplitudes shown in both charts", "All amplitudes", "Smaller", "Larger"}
 
-// alongFigures draw frequency and Q of the first decay against time and against
-// amplitude; none where the decay tells nothing stretch by stretch.
+// A course is what the stretches of one decay say.
+type course struct {
+	key    key
+	points []decay.Local
+}
+
+// courses are those of all decays drawn that tell something stretch by stretch.
+func (r *RingDown) courses() (out []course) {
+	all := r.Result.Decays[:min(len(r.Result.Decays), mostDecays)]
+	for i, d := range all {
+		points := d.Along(r.Channel)
+		if len(points) < 2 {
+			continue
+		}
+		k := stretchKeys[0]
+		k.Name = stretchName
+		if len(all) > 1 && len(all) <= len(stretchKeys) {
+			k = stretchKeys[i]
+			k.Name = fmt.Sprintf("decay %d, %s", i+1, stretchName)
+		}
+		out = append(out, course{k, points})
+	}
+	return out
+}
+
+// alongFigures draw frequency and Q of the decays against time and against
+// amplitude; none where they tell nothing stretch by stretch.
 func (r *RingDown) alongFigures() ([]*figure, error) {
-	if r.refused() || len(r.Result.Decays) == 0 || r.curves != nil {
+	all := r.courses()
+	if len(all) == 0 {
 		return nil, nil
 	}
-	points := r.Result.Decays[0].Along(r.Channel)
-	if len(points) < 2 {
-		return nil, nil
-	}
-	time := &along{points: points, quoted: r.Result.Quantities, unit: "s", caption: captionAlong,
+	time := &along{courses: all, quoted: r.Result.Quantities, unit: "s", captions: [2]string{captionFrequencyAlong, captionQAlong},
 		x: func(l decay.Local) float64 { return l.Time }}
-	amplitude := &along{points: points, quoted: r.Result.Quantities, unit: r.unit(), caption: captionAmplitude,
+	amplitude := &along{courses: all, quoted: r.Result.Quantities, unit: r.unit(), captions: [2]string{captionFrequencyAgainst, captionQAgainst},
 		x: func(l decay.Local) float64 { return l.Amplitude }}
 	a, err := time.figure("along the decay", wordsOfTime)
 	if err != nil {
@@ -49,27 +78,30 @@ func (r *RingDown) alongFigures() ([]*figure, error) {
 	return []*figure{a, b}, nil
 }
 
-// along draws what the stretches of a decay say over one quantity x.
+// along draws what the stretches of decays say over one quantity x.
 type along struct {
 	*plot
-	points        []decay.Local
-	quoted        *decay.Quantities
-	x             func(decay.Local) float64
-	unit, caption string
+	courses  []course
+	quoted   *decay.Quantities
+	x        func(decay.Local) float64
+	unit     string
+	captions [2]string
 }
 
 // figure draws both panels.
 func (a *along) figure(title string, words axisWords) (*figure, error) {
-	xs := make([]float64, len(a.points))
-	for i, l := range a.points {
-		xs[i] = a.x(l)
+	lo, hi := math.Inf(1), math.Inf(-1)
+	for _, c := range a.courses {
+		for _, l := range c.points {
+			lo, hi = min(lo, a.x(l)), max(hi, a.x(l))
+		}
 	}
-	lo, hi, _ := span(xs)
 	room := (hi - lo) / 20
 	lo, hi = lo-room, hi+room
 	a.plot = &plot{Line: charts.NewLine(), time: scaleFor(lo, hi, (hi-lo)/1000, a.unit)}
-	a.panel("Frequency "+title, xs, []float64{lo, hi}, a.quoted.DampedFrequency, func(l decay.Local) quantity.Quantity { return l.DampedFrequency })
-	a.panel("Quality factor "+title, xs, []float64{lo, hi}, a.quoted.Q, func(l decay.Local) quantity.Quantity { return l.Q })
+	ends := []float64{lo, hi}
+	a.panel("Frequency "+title, a.captions[0], ends, a.quoted.DampedFrequency, func(l decay.Local) quantity.Quantity { return l.DampedFrequency })
+	a.panel("Quality factor "+title, a.captions[1], ends, a.quoted.Q, func(l decay.Local) quantity.Quantity { return l.Q })
 	f := &figure{Time: a.time.unit, Panels: a.panels, Words: words, Bare: true}
 	var err error
 	f.Option, err = a.finish(lo, hi, "Two charts: damped frequency and quality factor of stretches of the decay "+title+", with their uncertainties and the result.")
@@ -77,20 +109,25 @@ func (a *along) figure(title string, words axisWords) (*figure, error) {
 }
 
 // panel draws one quantity: bars, points, and the result as a level.
-func (a *along) panel(title string, xs, ends []float64, quoted quantity.Quantity, of func(decay.Local) quantity.Quantity) {
-	var bars, dots trace
-	for i, l := range a.points {
-		q := of(l)
-		dots.add(xs[i], q.Value)
-		bars.add(xs[i], q.Value-2*q.U)
-		bars.add(xs[i], q.Value+2*q.U)
-		bars.add(xs[i], unknown.Value) // a gap
+func (a *along) panel(title, caption string, ends []float64, quoted quantity.Quantity, of func(decay.Local) quantity.Quantity) {
+	bars, dots := make([]trace, len(a.courses)), make([]trace, len(a.courses))
+	lo, hi := math.Inf(1), math.Inf(-1)
+	for i, c := range a.courses {
+		for _, l := range c.points {
+			x, q := a.x(l), of(l)
+			dots[i].add(x, q.Value)
+			bars[i].add(x, q.Value-2*q.U)
+			bars[i].add(x, q.Value+2*q.U)
+			bars[i].add(x, unknown.Value) // a gap
+			lo, hi = min(lo, q.Value-2*q.U), max(hi, q.Value+2*q.U)
+		}
 	}
 	scale := scaleFor(quoted.Value, quoted.Value, 0, quoted.Unit)
-	lo, hi, _ := span(bars.v)
 	scale.places = scaleFor(lo, hi, (hi-lo)/1000, quoted.Unit).places
-	a.addPanel(title, a.caption, scale.unit, false)
-	a.addSeries(keyLocal, "line", a.addTrace(bars, scale), "v")
-	a.addSeries(keyLocal, "scatter", a.addTrace(dots, scale), "v")
+	a.addPanel(title, caption, scale.unit, false)
+	for i, c := range a.courses {
+		a.addSeries(c.key, "line", a.addTrace(bars[i], scale), "v")
+		a.addSeries(c.key, "scatter", a.addTrace(dots[i], scale), "v")
+	}
 	a.addSeries(keyQuoted, "line", a.addTrace(trace{ends, []float64{quoted.Value, quoted.Value}}, scale), "v")
 }

@@ -52,6 +52,10 @@ type figure struct {
 	Dates   bool            `json:"dates,omitempty"`   // the common axis is of dates
 	Bare    bool            `json:"bare,omitempty"`    // no outline of the first curve in the bar that zooms
 	Fill    []fill          `json:"fill,omitempty"`    // data sets that come from the rows of the page
+	// Logarithmic says that the common axis holds logarithms to the base of ten.
+	Logarithmic bool `json:"logarithmic,omitempty"`
+	// Whole says that all of it is shown at first, however narrow the first view.
+	Whole bool `json:"whole,omitempty"`
 
 	// Words are those of the tools, Notes the sentences below the charts.
 	Words axisWords `json:"-"`

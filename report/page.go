@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strings"
 	"time"
 
@@ -31,15 +32,38 @@ func (r *RingDown) WritePage(w io.Writer) error {
 		return fmt.Errorf("charts of the page: %w", err)
 	}
 	p := r.page(f)
-	along, err := r.alongFigures()
+	details, err := r.details(f)
 	if err != nil {
 		return fmt.Errorf("charts of the page: %w", err)
 	}
-	p.Figures = append(p.Figures, along...)
+	p.Figures = append(p.Figures, details...)
 	if err := p.embed(r.WriteJSON); err != nil {
 		return err
 	}
 	return p.write(w, "ringdown.html", p)
+}
+
+// details are the figures behind the first one, f, which tells of those that are
+// not to be had.
+func (r *RingDown) details(f *figure) ([]*figure, error) {
+	s := r.spectraOf()
+	if s == nil {
+		return nil, nil
+	}
+	residual, err := s.residual()
+	if err != nil {
+		return nil, err
+	}
+	along, err := r.alongFigures()
+	if err != nil {
+		return nil, err
+	}
+	ring, err := s.ring()
+	if err != nil {
+		return nil, err
+	}
+	f.Notes = append(f.Notes, s.notes...)
+	return slices.DeleteFunc(slices.Concat([]*figure{residual}, along, []*figure{ring}), func(f *figure) bool { return f == nil }), nil
 }
 
 // A page is what the template shows.
@@ -52,6 +76,9 @@ type page struct {
 	Decays     []decayRow
 	MoreDecays int
 	Modes      [][]row
+	Parameters []parameterRow
+	// ParametersCaption says what the table of them shows.
+	ParametersCaption string
 }
 
 // The evidence is what the page of a ring-down and that of a sweep both show.
@@ -99,6 +126,8 @@ func (r *RingDown) page(f *figure) *page {
 	if len(res.Decays) > 1 {
 		of = fmt.Sprintf(" of decay %d", res.Best+1)
 	}
+	p.Parameters = parameterRows(res.Decays[res.Best].Parameters)
+	p.ParametersCaption = "The parameters of the fit" + of + ", at the start of the gate, with the correlation coefficient of each pair (GUM 5.2.2), −1 to +1: what is to be calculated from two of them needs it beside their uncertainties."
 	p.ReadingsCaption = "What crossings of the baseline and heights of peaks say by themselves, beside the fit" + of + ". In parentheses: the difference in standard uncertainties of the reading."
 	if r.Circuit != nil {
 		p.Circuit, p.Losses = componentRows(r.Circuit), lossRows(r.Circuit.Budget, r.Circuit.Total)
@@ -111,7 +140,7 @@ func (r *RingDown) page(f *figure) *page {
 	if len(res.Decays) == 1 {
 		d := res.Decays[0]
 		p.Facts = append(p.Facts, fact{"gate", gateLine(d)}, fact{"noise", noiseLine(d, r.unit())})
-		p.Facts = append(p.Facts, fact{"fit", fitLine(d)}, fact{"correlation", correlationLine(&d.Quantities)})
+		p.Facts = append(p.Facts, fact{"fit", fitLine(d)})
 		p.Facts = stated(p.Facts)
 		for _, row := range shapeRows(d) {
 			p.Facts = append(p.Facts, fact{row.Label, row.Quantity.String()})

@@ -174,14 +174,6 @@ func fitLine(d *decay.Decay) string {
 	return s
 }
 
-// correlationLine is what the covariance of the fit has beside its diagonal.
-func correlationLine(q *decay.Quantities) string {
-	if math.IsNaN(q.Correlation) || math.Abs(q.Correlation) > 1 {
-		return ""
-	}
-	return fmt.Sprintf("%+.3f between decay rate and damped frequency", q.Correlation)
-}
-
 // recordLine says what the record is.
 func (r *RingDown) recordLine() string {
 	a := r.Channel.Axis

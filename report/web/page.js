@@ -62,6 +62,35 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     return n > -3 && n < 5 ? digits(x, 3) : "10" + [...String(n)].map((c) => "⁻⁰¹²³⁴⁵⁶⁷⁸⁹"["-0123456789".indexOf(c)]).join("");
   };
 
+  // prefixed writes a number in engineering notation.
+  const prefixed = (x, n) => {
+    const k = Math.max(-4, Math.min(3, Math.floor(Math.log10(x) / 3 + 1e-9)));
+    return `${digits(x / 1000 ** k, n)} ${["p", "n", "µ", "m", "", "k", "M", "G"][k + 4]}`;
+  };
+
+  // Some figures have a logarithmic common axis, which holds the logarithms.
+  const plain = (x) => (data.logarithmic ? 10 ** x : x);
+  const atText = (x) => {
+    if (data.dates) return `${new Date(x).toISOString().slice(0, 19).replace("T", " ")} ${data.time}`;
+    return data.logarithmic ? prefixed(plain(x), 4) + data.time : `${digits(x, 9)} ${data.time}`;
+  };
+
+  // steps are the marks between two logarithms: of each decade 1, 2 and 5 or fewer,
+  // or, in a short stretch, even ones.
+  const steps = (lo, hi) => {
+    const all = [];
+    if (hi - lo < 0.7) {
+      const rough = (10 ** hi - 10 ** lo) / 5, power = 10 ** Math.floor(Math.log10(rough));
+      const step = power * [1, 2, 5, 10].find((m) => m * power >= rough);
+      for (let k = Math.ceil(10 ** lo / step); k * step <= 10 ** hi; k++) all.push(Math.log10(k * step));
+      return all;
+    }
+    const marks = hi - lo > 4.5 ? [1] : hi - lo > 2.5 ? [1, 3] : [1, 2, 5];
+    for (let k = Math.floor(lo); k <= hi; k++) for (const m of marks) all.push(k + Math.log10(m));
+    return all.filter((x) => x >= lo && x <= hi);
+  };
+  const marked = (values) => ({ axisTick: { customValues: values }, axisLabel: { customValues: values, showMinLabel: true, showMaxLabel: true } });
+
   // paint replaces "@name" by the colour of that name in the style sheet.
   const paint = (x) => {
     if (typeof x === "string") return x.startsWith("@") ? css(`--c-${x.slice(1)}`) : x;
@@ -79,8 +108,7 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
   // tip lists what stands at the pointer, panel by panel.
   const tip = (params) => {
     if (!params.length) return "";
-    const at = data.dates ? new Date(params[0].axisValue).toISOString().slice(0, 19).replace("T", " ") : digits(params[0].axisValue, 9);
-    let html = `<span class="t">${at} ${escape(data.time)}</span>`;
+    let html = `<span class="t">${escape(atText(params[0].axisValue))}</span>`;
     const rows = new Map();
     for (const p of params) {
       const v = valueOf(p);
@@ -109,10 +137,17 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     const o = paint(JSON.parse(source));
     o.backgroundColor = "transparent";
     o.textStyle = { fontFamily: getComputedStyle(document.body).fontFamily };
-    for (const x of o.xAxis) Object.assign(x, axisStyle(), { nameLocation: "end", nameGap: 0, nameMoveOverlap: false, axisLabel: { ...label(data.dates ? undefined : (v) => digits(v, 9)), showMinLabel: false, showMaxLabel: false } });
+    for (const x of o.xAxis) Object.assign(x, axisStyle(), { nameLocation: "end", nameGap: 0, nameMoveOverlap: false, axisLabel: { ...label(data.dates ? undefined : data.logarithmic ? (v) => prefixed(plain(v), 4).trim() : (v) => digits(v, 9)), showMinLabel: false, showMaxLabel: false } });
     o.xAxis.forEach((x) => Object.assign(x.nameTextStyle, { align: "right", verticalAlign: "top", padding: [1.9 * fontSize(), 0, 0, 0] }));
     o.yAxis.forEach((y) => Object.assign(y, axisStyle(), { nameLocation: "end", nameGap: 12, axisLabel: label((v) => digits(v, 6)) }));
-    o.yAxis.filter((y) => y.type === "log").forEach((y) => { y.axisLabel.formatter = power; });
+    o.yAxis.filter((y) => y.type === "log").forEach((y) => {
+      y.axisLabel.formatter = power;
+      if (y.min > 0) {
+        const at = marked(steps(Math.log10(y.min), Math.log10(y.max)).map((v) => 10 ** v));
+        Object.assign(y.axisTick, at.axisTick);
+        Object.assign(y.axisLabel, at.axisLabel);
+      }
+    });
     o.yAxis.forEach((y) => Object.assign(y.nameTextStyle, { align: "right", padding: [0, 8, 0, 0] }));
     Object.assign(o.tooltip, { formatter: tip, confine: true, backgroundColor: css("--sheet"), borderColor: css("--line"), textStyle: { color: css("--ink") }, padding: [6, 10] });
     o.axisPointer.lineStyle = { color: css("--soft"), type: "solid", width: 1 };
@@ -175,6 +210,15 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
       for (const z of option.dataZoom) Object.assign(z, { start: old.dataZoom[0].start, end: old.dataZoom[0].end });
     }
     chart.setOption(option, { notMerge: true });
+    remark();
+  };
+
+  // remark puts the marks of a logarithmic common axis where it is looked at.
+  const remark = () => {
+    if (!data.logarithmic) return;
+    const { min, max } = data.option.xAxis[0], { start, end } = stretch();
+    const at = (percent) => min + ((max - min) * percent) / 100;
+    chart.setOption({ xAxis: data.option.xAxis.map(() => marked(steps(at(start), at(end)))) });
   };
 
   const zoomTo = (start, end) => chart.dispatchAction({ type: "dataZoom", start: Math.max(0, start), end: Math.min(100, end) });
@@ -238,7 +282,7 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
       seen.add(key);
       const { source } = data.option.dataset[at];
       source[x].forEach((t, i) => {
-        if (source[y][i] !== null) lines.push([quoted(panel.title), quoted(s.name), t, source[y][i], quoted(panel.unit)].join(","));
+        if (source[y][i] !== null) lines.push([quoted(panel.title), quoted(s.name), data.logarithmic ? Number(plain(t).toPrecision(6)) : t, source[y][i], quoted(panel.unit)].join(","));
       });
     }
     return `${lines.join("\r\n")}\r\n`;
@@ -270,13 +314,14 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     chart.dispatchAction({ type: on ? "legendSelect" : "legendUnSelect", name: b.dataset.series });
   });
   chart.on("datazoom", (event) => {
+    remark();
     if (event.batch && tools.querySelector("[data-do=select]").getAttribute("aria-pressed") === "true") select(false);
   });
 
   tools.hidden = false;
   draw();
   // A gate that is a small part of a long record deserves the first look.
-  if (data.views.length) {
+  if (data.views.length && !data.whole) {
     const { min, max } = data.option.xAxis[0];
     const gate = data.views[0];
     if (gate.to - gate.from < 0.4 * (max - min)) showView(gate, 0.12);
