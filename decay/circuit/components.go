@@ -31,6 +31,8 @@ type Components struct {
 	// how many of them are free.
 	ChiSquare float64
 	Degrees   int
+	// Line is what all rows lie on.
+	Line *ComponentLine
 	// Damping is the network that would damp this ring.
 	Damping  DampingNetwork
 	Findings []decay.Finding
@@ -90,6 +92,9 @@ func (f *componentFit) components() (*Components, error) {
 	c := &Components{Inductance: values.At(0), Capacitance: values.At(1), Resistance: values.At(2), Degrees: len(y) - parameters,
 		Damping: dampingNetwork(values, t, f.scene)}
 	c.ChiSquare, c.Rows = chiSquare(y, cov), f.table(y, cov)
+	if c.Line, err = f.line(); err != nil {
+		return nil, err
+	}
 	c.judge(f.resistors())
 	return c, nil
 }
