@@ -7,13 +7,10 @@ import (
 	"dieaway/decay/quantity"
 )
 
-// A parameterRow is a fitted parameter with its value and its correlation with every
-// parameter up to itself; the matrix is symmetric.
+// A parameterRow is a fitted parameter with its value and its correlation with each.
 type parameterRow struct {
 	row
 	Correlations []string
-	// Rest is the number of cells that are left empty behind them.
-	Rest []struct{}
 }
 
 // symbols are the letters of the fitted parameters.
@@ -40,13 +37,13 @@ func parameterRows(p *quantity.Joint) (rows []parameterRow) {
 		return nil
 	}
 	for i := range p.Len() {
-		r := parameterRow{row: symbols[p.Name(i)], Rest: make([]struct{}, p.Len()-1-i)}
+		r := parameterRow{row: symbols[p.Name(i)]}
 		r.Label, r.Quantity = p.Name(i), p.At(i)
 		r.Quantity.Unit = clean(r.Quantity.Unit, unitLength)
-		for k := range i {
+		for k := range p.Len() {
 			r.Correlations = append(r.Correlations, signed(p.Correlation(i, k)))
 		}
-		r.Correlations = append(r.Correlations, "1")
+		r.Correlations[i] = "1"
 		rows = append(rows, r)
 	}
 	return rows

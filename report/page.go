@@ -75,7 +75,7 @@ type page struct {
 	Judgement  *circuit.Judgement
 	Decays     []decayRow
 	MoreDecays int
-	Modes      [][]row
+	Modes      []decayRow
 	Parameters []parameterRow
 	// ParametersCaption says what the table of them shows.
 	ParametersCaption string
@@ -96,7 +96,7 @@ type evidence struct {
 // A fact is a name and what there is to say.
 type fact struct{ Name, Value string }
 
-// A decayRow is one of several decays.
+// A decayRow is one of several decays, or of two modes.
 type decayRow struct {
 	Number int
 	Gate   string
@@ -148,8 +148,8 @@ func (r *RingDown) page(f *figure) *page {
 	} else {
 		p.Decays, p.MoreDecays = decayRows(res.Decays)
 	}
-	for _, m := range res.Modes {
-		p.Modes = append(p.Modes, resultRows(m))
+	for i, m := range res.Modes {
+		p.Modes = append(p.Modes, decayRow{Number: i + 1, Rows: resultRows(m)})
 	}
 	return p
 }

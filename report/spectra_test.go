@@ -197,8 +197,8 @@ func TestParameterRows(t *testing.T) {
 	}
 	letters := map[string]bool{}
 	for i, row := range rows {
-		if len(row.Correlations) != i+1 || row.Correlations[i] != "1" || len(row.Rest) != len(rows)-1-i {
-			t.Errorf("%s: %v and %d", row.Label, row.Correlations, len(row.Rest))
+		if len(row.Correlations) != len(rows) || row.Correlations[i] != "1" || row.Correlations[0] != rows[0].Correlations[i] {
+			t.Errorf("%s: %v", row.Label, row.Correlations)
 		}
 	}
 	for name, s := range symbols {

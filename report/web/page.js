@@ -181,8 +181,10 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     stage.classList.add("drawn");
     stage.style.width = printing ? `${printWidth}px` : "";
     const width = stage.clientWidth;
-    const heights = printing ? [190, 140, 115] : width < 560 ? [210, 190, 160] : [340, 260, 210].map((h) => h * Math.max(1, textSize() / 16));
-    if (heads.length === 1) heights[0] += 40;
+    // On paper two figures share a sheet, but for the one of three charts.
+    const printed = [[180], [145, 125], [190, 140, 115]][heads.length - 1] || [190, 140, 115];
+    const heights = printing ? printed : width < 560 ? [210, 190, 160] : [340, 260, 210].map((h) => h * Math.max(1, textSize() / 16));
+    if (heads.length === 1 && !printing) heights[0] += 40;
     const grids = [];
     let y = 0;
     heads.forEach((head, i) => {
