@@ -6,10 +6,11 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
+	"dieaway/decay/driven"
 	"dieaway/decay/quantity"
 )
 
-// An Analysis is what a ring-down says of the circuit, given a bench file. What
+// An Analysis is what a ring-down or a sweep says of the circuit, given a bench file. What
 // cannot be told is not Known, and the findings say why.
 type Analysis struct {
 	Topology Topology
@@ -60,41 +61,65 @@ type GivenValue struct {
 	En float64
 }
 
-// clock is the input of the ring-down's time base.
-const clock = "clock of the ring-down"
+// The inputs of the time bases.
+const (
+	clock        = "clock of the ring-down"
+	clockOfSweep = "clock of the sweep"
+)
 
 // Analyze works out component values, unloaded resonance and loss budget from the
 // result of a ring-down that was made in the set-up [Bench.RingDown]. The
 // uncertainties of q must contain that set-up's TimebaseU, as those of
 // [decay.Options] do.
 func Analyze(b *Bench, q *decay.Quantities) *Analysis {
-	a := emptyAnalysis(b)
 	s := newScene(b)
-	m := &measured{clock: &s.clock}
-	if !a.feasible(s, q) {
+	w := &sideWork{m: &measured{clock: &s.clock}, at: &s.ringDown, name: "ring-down"}
+	return s.analyze(w, q.DampedFrequency.Known() && q.DecayRate.Known(), func() {
+		s.addRingDown(w.m, q, b.RingDown.TimebaseU)
+		s.add(clock, quantity.New(0, b.RingDown.TimebaseU, ""), &s.clock)
+	})
+}
+
+// AnalyzeSweep does so from the result of a driven sweep that was made in the set-up
+// [Bench.Sweep].
+func AnalyzeSweep(b *Bench, q *driven.Quantities) *Analysis {
+	s := newScene(b)
+	s.withSweep()
+	w := &sideWork{m: &measured{clock: &s.sweepClock}, at: &s.sweep, name: "sweep"}
+	return s.analyze(w, q.NaturalFrequency.Known() && q.Q.Known(), func() {
+		s.addSweep(w.m, q.NaturalFrequency, q.Q, q.Correlation, b.Sweep.TimebaseU)
+		s.add(clockOfSweep, quantity.New(0, b.Sweep.TimebaseU, ""), &s.sweepClock)
+	})
+}
+
+// analyze works out what one measurement says; bind makes inputs of its result.
+func (s *scene) analyze(w *sideWork, rings bool, bind func()) *Analysis {
+	a := emptyAnalysis(s.bench)
+	if !a.feasible(s, w.at, rings) {
 		return a
 	}
-	s.addRingDown(m, q, b.RingDown.TimebaseU)
-	s.add(clock, quantity.New(0, b.RingDown.TimebaseU, ""), &s.clock)
-	if tank := s.tank(m.resonance(), &s.ringDown); !a.possibleIn(tank, s.load(&s.ringDown)) {
+	bind()
+	if tank := s.tank(w.m.resonance(), w.at); !a.possibleIn(tank, s.load(w.at)) {
 		return a
 	}
-	parts := s.partNames(&s.ringDown)
+	parts := s.partNames(w.at)
 	joint, err := s.propagate(analysisResults(parts), func(y []float64) {
-		r := m.resonance()
-		tank := s.tank(r, &s.ringDown)
+		r := w.m.resonance()
+		tank := s.tank(r, w.at)
 		free := tank.Loaded(s.own())
 		y = y[copy(y, []float64{tank.Inductance, tank.Capacitance, tank.Resistance}):]
 		y = y[copy(y, conditionFigures(free)):]
-		s.losses(y, r, tank, &s.ringDown)
+		s.losses(y, r, tank, w.at)
 	})
 	if err != nil { // an uncertainty that is not known
 		a.note("Component values were not worked out: " + err.Error() + ".")
 		return a
 	}
 	a.take(joint, parts)
-	a.compare(s)
-	a.judgeRemainder()
+	a.compare(s, w.name)
+	if f, wrong := negativeRemainder(a.Budget, a.Total, w.name); wrong {
+		a.Findings = append(a.Findings, f)
+	}
 	return a
 }
 
@@ -107,14 +132,14 @@ func emptyAnalysis(b *Bench) *Analysis {
 }
 
 // feasible says in a note why nothing can be worked out.
-func (a *Analysis) feasible(s *scene, q *decay.Quantities) bool {
+func (a *Analysis) feasible(s *scene, at *setup, rings bool) bool {
 	switch {
-	case s.known == nothing && s.load(&s.ringDown) == (Load{}):
+	case s.known == nothing && s.load(at) == (Load{}):
 		return false // nobody asked
 	case s.known == nothing:
 		a.Findings = append(a.Findings, nothingKnown)
 		return false
-	case !q.DampedFrequency.Known() || !q.DecayRate.Known():
+	case !rings:
 		a.note("The circuit does not ring: its component values were not worked out.")
 		return false
 	}
@@ -165,8 +190,8 @@ func (a *Analysis) take(j *quantity.Joint, parts []string) {
 }
 
 // compare holds what the bench file gives beyond the known component against
-// what was found.
-func (a *Analysis) compare(s *scene) {
+// what was found by a measurement.
+func (a *Analysis) compare(s *scene, by string) {
 	b := s.bench
 	for _, g := range []struct {
 		name         string
@@ -178,7 +203,7 @@ func (a *Analysis) compare(s *scene) {
 		}
 		v := GivenValue{g.name, g.given, g.found, quantity.En(g.found, g.given, 0)}
 		a.Given = append(a.Given, v)
-		a.judgeGiven(v)
+		a.judgeGiven(v, by)
 	}
 }
 
@@ -186,11 +211,11 @@ func (a *Analysis) compare(s *scene) {
 // uncertainty before the bench file is doubted: the widest usual tolerance.
 const grossError = 0.2
 
-func (a *Analysis) judgeGiven(v GivenValue) {
+func (a *Analysis) judgeGiven(v GivenValue, by string) {
 	off := v.Found.Value/v.Given.Value - 1
 	if math.Abs(v.En) > 1 || math.IsNaN(v.En) && math.Abs(off) > grossError {
-		a.wrong(fmt.Sprintf("The %s is %s by the ring-down and the %s of the bench file, which gives %s: %+.2g %%.",
-			v.Name, v.Found, a.Known, v.Given, 100*off),
+		a.wrong(fmt.Sprintf("The %s is %s by the %s and the %s of the bench file, which gives %s: %+.2g %%.",
+			v.Name, v.Found, by, a.Known, v.Given, 100*off),
 			"Check both values of the bench file; a coil's own capacitance adds to the capacitor's.")
 	}
 }

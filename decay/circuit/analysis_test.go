@@ -59,6 +59,47 @@ func TestAnalyzeSimulated(t *testing.T) {
 	}
 }
 
+// TestAnalyzeSweep finds the circuit from its sweep, in whose set-up the source is out
+// of the loop and another probe hangs on it; poles and sums are of the impedances.
+func TestAnalyzeSweep(t *testing.T) {
+	sweep := readerSweep()
+	sweep.cp, sweep.rp = 4e-12, 1e6
+	b := reader.bench(sweep)
+	b.Sweep.TimebaseU = 1e-4
+	q := swept(&sweep, 2e-3).Quantities
+	q.NaturalFrequency.U = math.Hypot(q.NaturalFrequency.U, 1e-4*q.NaturalFrequency.Value)
+	a := AnalyzeSweep(b, q)
+	want := (&physical{rf: reader.rf, rc: reader.rc, l: reader.l, c: reader.c}).pole()
+	inside(t, "capacitance", a.Capacitance, reader.c, 1e-3)
+	inside(t, "coil resistance", a.Resistance, reader.rc, 0.01)
+	inside(t, "unloaded f0", a.Unloaded.NaturalFrequency, want.NaturalFrequency, 2e-4)
+	inside(t, "unloaded Q", a.Unloaded.Q, want.Q(), 0.01)
+	inside(t, "probe", lossOf(a, "probe").Resistance, sweep.l/(sweep.rp*(sweep.c+sweep.cp)), 1e-3)
+	sumIsWhole(t, a.Budget)
+	if len(a.Findings) != 0 || lossOf(a, "source").Part != "" {
+		t.Errorf("%+v", a)
+	}
+	// 1e-4 of the clock are 2e-4 of C: with the scatter of f0, that is all there is.
+	scatter := 2e-3 / (2 * q.Q.Value)
+	closeTo(t, "u(C)/C'", a.Capacitance.U/(reader.c+sweep.cp), 2*math.Hypot(1e-4, scatter), 0.01)
+	// A capacitance in the bench file that the sweep contradicts.
+	b.Capacitance = quantity.New(1.2e-9, 1e-11, "F")
+	b.Inductance.U = 1e-4 * b.Inductance.Value
+	a = AnalyzeSweep(b, q)
+	if len(a.Findings) != 1 || !strings.Contains(a.Findings[0].Message, "by the sweep and the inductance of the bench file") {
+		t.Errorf("%v", a.Findings)
+	}
+}
+
+func lossOf(a *Analysis, part string) (l Loss) {
+	for _, l := range a.Budget {
+		if l.Part == part {
+			return l
+		}
+	}
+	return l
+}
+
 func sumIsWhole(t *testing.T, budget []Loss) {
 	t.Helper()
 	sum := 0.0

@@ -111,13 +111,6 @@ func lossesAt(j *quantity.Joint, from int, parts []string) []Loss {
 	return out
 }
 
-// judgeRemainder warns when less than nothing remains for the coil.
-func (a *Analysis) judgeRemainder() {
-	if f, wrong := negativeRemainder(a.Budget, a.Total, "ring-down"); wrong {
-		a.Findings = append(a.Findings, f)
-	}
-}
-
 // negativeRemainder finds fault with a budget whose last part, what remains, is
 // below zero: with its expanded uncertainty, a warning; without it, a note.
 func negativeRemainder(budget []Loss, total Loss, setup string) (f decay.Finding, found bool) {

@@ -113,7 +113,7 @@ func (c *comparer) bind(b *Bench) {
 	if b.Sweep.SharedClock {
 		s.share(&s.clock, &s.sweepClock)
 	} else {
-		s.add("clock of the sweep", quantity.New(0, b.Sweep.TimebaseU, ""), &s.sweepClock)
+		s.add(clockOfSweep, quantity.New(0, b.Sweep.TimebaseU, ""), &s.sweepClock)
 	}
 }
 

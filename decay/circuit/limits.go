@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"dieaway/decay"
+	"dieaway/decay/driven"
 	"dieaway/decay/quantity"
 )
 
@@ -113,6 +114,43 @@ func (l *Limits) Judge(q *decay.Quantities, a *Analysis) *Judgement {
 		}
 	}
 	return j
+}
+
+// JudgeSweep holds the results of a driven sweep against the limits, as Judge does
+// those of a ring-down.
+func (l *Limits) JudgeSweep(q *driven.Quantities, a *Analysis) *Judgement {
+	return l.Judge(ringOf(q), a)
+}
+
+// ringOf is how a circuit rings whose sweep was measured: tau = 1/(pi B) and alpha =
+// pi B with the bandwidth B, and the decrement delta = 2 pi zeta/sqrt(1 - zeta^2).
+func ringOf(q *driven.Quantities) *decay.Quantities {
+	if q == nil {
+		return nil
+	}
+	b, z := q.Bandwidth, q.DampingRatio
+	rest := 1 - z.Value*z.Value
+	return &decay.Quantities{NaturalFrequency: q.NaturalFrequency, DampedFrequency: q.DampedFrequency, Q: q.Q, Bandwidth: b, DampingRatio: z,
+		TimeConstant: quantity.New(1/(math.Pi*b.Value), b.U/(math.Pi*b.Value*b.Value), "s"),
+		DecayRate:    quantity.New(math.Pi*b.Value, math.Pi*b.U, "1/s"),
+		LogDecrement: quantity.New(2*math.Pi*z.Value/math.Sqrt(rest), 2*math.Pi*z.U/(rest*math.Sqrt(rest)), "")}
+}
+
+// JudgeComponents holds components against those of the limits that are on
+// inductance, capacitance and coil resistance; c is nil when they were not found.
+// It returns nil where there are none.
+func (l *Limits) JudgeComponents(c *Components) *Judgement {
+	own := &Limits{Rule: l.Rule}
+	for _, r := range l.Ranges {
+		switch r.Quantity {
+		case "inductance", "capacitance", "coil_resistance":
+			own.Ranges = append(own.Ranges, r)
+		}
+	}
+	if c == nil {
+		return own.Judge(nil, nil)
+	}
+	return own.Judge(&decay.Quantities{}, &Analysis{Inductance: c.Inductance, Capacitance: c.Capacitance, Resistance: c.Resistance})
 }
 
 // verdict decides by the rule. Guarded: a result conforms when result +- U lies

@@ -5,6 +5,7 @@ import (
 	"testing"
 
 	"dieaway/decay"
+	"dieaway/decay/driven"
 	"dieaway/decay/quantity"
 )
 
@@ -71,5 +72,55 @@ func TestJudge(t *testing.T) {
 	}
 	if j := (&Limits{}).Judge(q, nil); j != nil {
 		t.Errorf("a judgement without limits: %v", j)
+	}
+}
+
+// TestJudgeSweep: a sweep is held against all that a ring-down is, with the same
+// relative uncertainties: tau = Q/(pi f0), alpha = pi f0/Q, delta = 2 pi zeta/sqrt(1 -
+// zeta^2) (derived), worked out by hand for f0 = 125 kHz and Q = 25.
+func TestJudgeSweep(t *testing.T) {
+	q := &driven.Quantities{NaturalFrequency: quantity.New(125e3, 2, "Hz"), Q: quantity.New(25, 0.05, ""),
+		Bandwidth: quantity.New(5e3, 10, "Hz"), DampingRatio: quantity.New(0.02, 4e-5, ""), DampedFrequency: quantity.New(124975, 2, "Hz")}
+	for _, c := range []struct {
+		key, unit string
+		want      float64
+	}{{"natural_frequency", "Hz", 125e3}, {"damped_frequency", "Hz", 124975}, {"q", "", 25}, {"bandwidth", "Hz", 5e3},
+		{"damping_ratio", "", 0.02}, {"time_constant", "s", 63.6619772e-6}, {"decay_rate", "1/s", 15707.9633}, {"log_decrement", "", 0.125688846}} {
+		l := Limits{Simple, []Range{{c.key, c.unit, c.want * (1 - 1e-6), c.want * (1 + 1e-6)}}}
+		j := l.JudgeSweep(q, nil)
+		if j.Verdict != Pass {
+			t.Errorf("%s: %+v", c.key, j)
+		}
+		if u := j.Checks[0].Result.Relative(); c.unit != "Hz" && (u < 1.99e-3 || u > 2.01e-3) {
+			t.Errorf("%s: relative uncertainty %g, want 2e-3", c.key, u)
+		}
+	}
+	l := Limits{Guarded, []Range{{"unloaded_q", "", 30, math.NaN()}}}
+	if j := l.JudgeSweep(q, nil); j.Verdict != Undecided {
+		t.Errorf("unloaded Q without a bench file: %+v", j)
+	}
+	if j := l.JudgeSweep(nil, nil); j.Verdict != Undecided {
+		t.Errorf("refused: %+v", j)
+	}
+}
+
+// Components are held against the limits on components, and against no others.
+func TestJudgeComponents(t *testing.T) {
+	c := &Components{Inductance: quantity.New(1.62e-3, 1e-6, "H"), Capacitance: quantity.New(1e-9, 1e-12, "F"), Resistance: quantity.New(15, 0.1, "ohm")}
+	q := Range{"q", "", 30, math.NaN()}
+	coil, resistance := Range{"inductance", "H", 1.6e-3, 1.7e-3}, Range{"coil_resistance", "ohm", math.NaN(), 14}
+	for _, k := range []struct {
+		ranges []Range
+		c      *Components
+		want   Verdict
+		checks int
+	}{{[]Range{q, coil}, c, Pass, 1}, {[]Range{coil, resistance}, c, Fail, 2}, {[]Range{coil}, nil, Undecided, 1}} {
+		l := Limits{Guarded, k.ranges}
+		if j := l.JudgeComponents(k.c); j.Verdict != k.want || len(j.Checks) != k.checks {
+			t.Errorf("%v: %+v, want %s", k.ranges, j, k.want)
+		}
+	}
+	if j := (&Limits{Guarded, []Range{q}}).JudgeComponents(c); j != nil {
+		t.Errorf("a judgement on what components do not tell: %+v", j)
 	}
 }
