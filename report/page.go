@@ -10,7 +10,6 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
-	"dieaway/decay/circuit"
 )
 
 // WritePage writes the evidence as one HTML page that needs no network: what was
@@ -70,9 +69,7 @@ func (r *RingDown) details(f *figure) ([]*figure, error) {
 type page struct {
 	frame
 	evidence
-	Circuit    []fact
-	Losses     []lossRow
-	Judgement  *circuit.Judgement
+	benched
 	Decays     []decayRow
 	MoreDecays int
 	Modes      []decayRow
@@ -111,7 +108,7 @@ func (r *RingDown) page(f *figure) *page {
 		evidence: evidence{Refused: r.refused(), Findings: cleaned(r.Findings()),
 			Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns},
 	}
-	p.Judgement = r.Limits
+	p.benched = benchedOf(r.Circuit, r.Limits)
 	p.Title = p.Heading + " – free decay, " + p.Status
 	record := fact{"record", r.recordLine()}
 	if p.Refused {
@@ -129,9 +126,6 @@ func (r *RingDown) page(f *figure) *page {
 	p.Parameters = parameterRows(res.Decays[res.Best].Parameters)
 	p.ParametersCaption = "The parameters of the fit" + of + ", at the start of the gate, with the correlation coefficient of each pair (GUM 5.2.2), −1 to +1: what is to be calculated from two of them needs it beside their uncertainties."
 	p.ReadingsCaption = "What crossings of the baseline and heights of peaks say by themselves, beside the fit" + of + ". In parentheses: the difference in standard uncertainties of the reading."
-	if r.Circuit != nil {
-		p.Circuit, p.Losses = componentRows(r.Circuit), lossRows(r.Circuit.Budget, r.Circuit.Total)
-	}
 	p.Facts = []fact{{"model", modelName(res)}}
 	if line := r.channelLine(); line != "" {
 		p.Facts = append(p.Facts, fact{"channel", line})
@@ -161,12 +155,6 @@ func decayRows(all []*decay.Decay) (rows []decayRow, more int) {
 	}
 	return rows, len(all) - len(rows)
 }
-
-// LimitRows and LimitVerdict show the judgement.
-func (p *page) LimitRows() []limitRow { return limitRows(p.Judgement) }
-
-// LimitVerdict is the judgement in one line.
-func (p *page) LimitVerdict() string { return verdictOfLimits(p.Judgement) }
 
 // notes says below the charts what is to be known of them.
 func (r *RingDown) notes(f *figure) []string {

@@ -8,6 +8,7 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
+	"dieaway/decay/circuit"
 	"dieaway/decay/driven"
 	"dieaway/decay/quantity"
 )
@@ -24,6 +25,10 @@ type Sweep struct {
 	File string
 	// Device is the name of the circuit under test, "" when nobody gave one.
 	Device string
+	// Circuit is what the result says of the circuit, nil without a bench file.
+	Circuit *circuit.Analysis
+	// Limits is how the result stands to the limits of the bench file, nil without any.
+	Limits *circuit.Judgement
 	// Origin says how the result was made; the page shows it.
 	Origin Origin
 
@@ -54,11 +59,14 @@ func (r *Sweep) sha256() string {
 }
 
 // Findings returns what speaks against the result, gravest first: the findings of
-// the analysis and of the reader, each once. It is not nil.
+// the analysis, of the circuit and of the reader, each once. It is not nil.
 func (r *Sweep) Findings() []capture.Finding {
 	all := []capture.Finding{}
 	if r.Result != nil {
 		all = append(all, r.Result.Findings...)
+	}
+	if r.Circuit != nil {
+		all = append(all, r.Circuit.Findings...)
 	}
 	if r.Table != nil {
 		all = withReader(all, r.Table.Findings)
@@ -112,6 +120,8 @@ type jsonSweep struct {
 	Across     *string              `json:"across"`
 	Quantities *jsonSweepQuantities `json:"quantities"`
 	Readings   jsonSweepReadings    `json:"readings"`
+	Circuit    *jsonCircuit         `json:"circuit,omitempty"` // with a bench file
+	Limits     *jsonLimits          `json:"limits,omitempty"`  // with limits in it
 	Findings   []capture.Finding    `json:"findings"`
 }
 
@@ -149,7 +159,8 @@ func (r *Sweep) WriteJSON(w io.Writer) error {
 
 func (r *Sweep) json() *jsonSweep {
 	out := &jsonSweep{Schema: schemaSweep, Status: r.Status(), File: orNull(r.file()), SHA256: orNull(r.sha256()), Device: orNull(r.Device),
-		Points: len(r.Table.Frequency), Across: r.across(), Findings: r.Findings()}
+		Points: len(r.Table.Frequency), Across: r.across(),
+		Circuit: circuitJSON(r.Circuit), Limits: limitsJSON(r.Limits), Findings: r.Findings()}
 	read := &out.Readings
 	read.HalfPower.Q, read.HalfPower.Bandwidth, read.ReactanceRatio.NaturalFrequency = unknown, unknown, unknown
 	if r.refused() {

@@ -13,6 +13,7 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
+	"dieaway/decay/circuit"
 	"dieaway/decay/driven"
 )
 
@@ -46,7 +47,13 @@ func sweeps() map[string]*Sweep {
 		flat.Frequency = append(flat.Frequency, 1000+float64(i))
 		flat.Magnitude = append(flat.Magnitude, 1+0.01*float64(i*7%5))
 	}
+	benched := &Sweep{Table: table, Result: driven.Analyze(table, driven.Options{}), Device: "loop 07", Origin: origin}
+	if b, err := circuit.ParseBench([]byte(benchText+"[sweep]\nsource_resistance = \"12 +- 0.05\"\n"), "loop07.toml"); err == nil {
+		benched.Circuit = circuit.AnalyzeSweep(b, benched.Result.Quantities)
+		benched.Limits = b.Limits.JudgeSweep(benched.Result.Quantities, benched.Circuit)
+	}
 	return map[string]*Sweep{
+		"sweep-bench":      benched,
 		"sweep":            {Table: table, Result: driven.Analyze(table, driven.Options{}), Device: "loop 07", Origin: origin},
 		"sweep-refused":    {Table: flat, Result: driven.Analyze(flat, driven.Options{}), Origin: origin},
 		"sweep-unreadable": {File: "x.csv", Err: &capture.Error{File: "x.csv", Line: 3, Column: 2, Found: `"a"`, Expected: "a number", Err: capture.ErrSyntax}},

@@ -9,6 +9,7 @@ import (
 type sweepPage struct {
 	frame
 	evidence
+	benched
 }
 
 // WritePage writes the evidence as one HTML page that needs no network, as
@@ -43,6 +44,7 @@ func (r *Sweep) page(f *figure) *sweepPage {
 		evidence: evidence{Refused: r.refused(), Findings: cleaned(r.Findings()), Origin: r.origin(),
 			Layout: layoutFacts(&r.Table.Layout), Columns: r.Table.Layout.Columns},
 	}
+	p.benched = benchedOf(r.Circuit, r.Limits)
 	p.Title = p.Heading + " – driven sweep, " + p.Status
 	if p.Refused {
 		p.Layout = append([]fact{{"sweep", r.rowsLine()}}, p.Layout...)

@@ -28,6 +28,8 @@ func (r *Sweep) WriteSummary(w io.Writer, style Style) error {
 	} else {
 		s.sweep(r)
 	}
+	s.circuit(r.Circuit)
+	s.limits(r.Limits)
 	s.findings(r.Findings())
 	return s.Flush()
 }

@@ -127,12 +127,25 @@ func (j *sweepJob) useSweepBench(b *circuit.Bench) {
 // measure is one sweep to deliver.
 func (j *sweepJob) measure(s source) measured {
 	r := j.sweep(s)
-	m := measured{evidence: r, err: r.Err}
+	j.judge(r)
+	m := measured{evidence: r, err: r.Err, verdict: verdictOf(r.Limits)}
 	if r.Table != nil {
 		m.explain = r.Table.Explain
 		m.files = []measuredFile{{"capture", r.Table.File, r.Table.SHA256}}
 	}
 	return m
+}
+
+// judge works out what the bench file allows to, and holds the sweep against its limits.
+func (j *sweepJob) judge(r *report.Sweep) {
+	b := j.bench
+	if b == nil || r.Result == nil {
+		return
+	}
+	if r.Result.Quantities != nil {
+		r.Circuit = circuit.AnalyzeSweep(b, r.Result.Quantities)
+	}
+	r.Limits = b.Limits.JudgeSweep(r.Result.Quantities, r.Circuit)
 }
 
 // sweep reads and analyses one sweep; what is wrong with it is in its Err.
