@@ -43,6 +43,7 @@ func (d *layoutDesign) axes(c *Capture, t *table) ([]*Axis, *Error) {
 		if n < fewestRows {
 			continue
 		}
+		d.joinPeakRows(c, t, k)
 		a, err := d.axis(c, t, k)
 		if err != nil {
 			return nil, err
@@ -172,61 +173,6 @@ func zerosAndOnes(v []float64) bool {
 		}
 	}
 	return zero && one
-}
-
-// joinPeaks replaces the minimum and maximum columns of peak detection by
-// their mean: a ring that the sampling resolves lies between them, and one that
-// it does not resolve leaves no false envelope.
-func (d *layoutDesign) joinPeaks(channels []int, values func(int) []float64) {
-	for k := 1; k < len(channels); k++ {
-		i, j := channels[k-1], channels[k]
-		a, b := &d.columns[i], &d.columns[j]
-		stem, ok := peakPair(a.Name, b.Name)
-		if !ok || a.Role != RoleChannel || b.Role != RoleChannel || d.plan.steps[i].axis != d.plan.steps[j].axis {
-			continue
-		}
-		lo, hi := values(i), values(j)
-		if !ordered(lo, hi) && !ordered(hi, lo) {
-			continue
-		}
-		for n := range lo {
-			lo[n] = 0.5*lo[n] + 0.5*hi[n]
-		}
-		a.Why = fmt.Sprintf("mean of the minimum and maximum of peak detection in columns %d and %d", i+1, j+1)
-		a.Name = stem
-		b.is(RoleDuplicate, "other end of the peak detection of column %d; the channel is the mean of both", i+1)
-	}
-}
-
-// peakPair reports names that differ at most in words for minimum and maximum,
-// and what they have in common.
-func peakPair(a, b string) (string, bool) {
-	strip := func(name string) string {
-		return strings.Join(slices.DeleteFunc(words(name), func(w string) bool {
-			switch w {
-			case "min", "max", "minimum", "maximum", "low", "high", "lo", "hi", "peak", "detect", "pk", "pkdetect", "peakdetect":
-				return true
-			}
-			return false
-		}), " ")
-	}
-	x := strip(a)
-	if x != strip(b) || a == "" || b == "" {
-		return "", false
-	}
-	if n := strings.Index(strings.ToLower(a), x); x != "" && n >= 0 && n+len(x) <= len(a) {
-		return a[n : n+len(x)], true
-	}
-	return x, true
-}
-
-func ordered(lo, hi []float64) bool {
-	for i := range lo {
-		if lo[i] > hi[i] {
-			return false
-		}
-	}
-	return true
 }
 
 // layout sums up how the file was understood.

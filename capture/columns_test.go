@@ -133,6 +133,61 @@ func peakMean(ch, i int) float64 {
 	return number(ends[0])/2 + number(ends[1])/2
 }
 
+// Minimum and maximum in rows that alternate, at one time or half an interval apart.
+func TestPeakRows(t *testing.T) {
+	end := func(ch, i int) string { return strings.Split(peaks(ch, i/2), ",")[i%2] }
+	swapped := func(ch, i int) string { return strings.Split(peaks(ch, i/2), ",")[1-i%2] }
+	twice := func(i int) string { return at(i/2, 0.4, 1) }
+	header := "time (us),CH1 (V),CH2 (V)\n"
+	joined := want{interval: 0.4e-6, channels: "CH1/V CH2/V", value: peakMean, findings: "uneven-time", check: has(UnevenTime, Note, "minimum and the maximum")}
+	half := joined
+	half.start = 0.1e-6
+	with := joined
+	with.findings = "ignored-columns uneven-time"
+	with.check = roles("time channel channel logic")
+	gone := joined
+	gone.findings = "missing-samples uneven-time"
+	gone.value = func(ch, i int) float64 {
+		if ch == 1 && i == 20 {
+			return math.NaN()
+		}
+		return peakMean(ch, i)
+	}
+	for _, c := range []struct {
+		name string
+		row  func(i int) string
+		w    want
+	}{
+		{"at one time", func(i int) string { return twice(i) + "," + end(1, i) + "," + end(2, i) }, joined},
+		{"the maximum first", func(i int) string { return twice(i) + "," + swapped(1, i) + "," + swapped(2, i) }, joined},
+		{"half an interval apart", func(i int) string { return at(i, 0.2, 1) + "," + end(1, i) + "," + end(2, i) }, half},
+		{"one of them over range", func(i int) string {
+			if i == 41 {
+				return twice(i) + ",over," + end(2, i)
+			}
+			return twice(i) + "," + end(1, i) + "," + end(2, i)
+		}, gone},
+		{"beside logic", func(i int) string { return fmt.Sprintf("%s,%s,%s,%d", twice(i), end(1, i), end(2, i), i/6%2) }, with},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			text := header
+			if strings.HasSuffix(c.name, "logic") {
+				text = strings.Replace(header, "\n", ",D0\n", 1)
+			}
+			understand(t, text+lines(2*rows, c.row), Options{}, c.w)
+		})
+	}
+	t.Run("a ring of 2.1 samples a cycle is none", func(t *testing.T) {
+		ring := func(_, i int) float64 { return math.Exp(-float64(i)/50) * math.Cos(2*math.Pi*float64(i)/2.1) }
+		text := "time (us),V_C (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%s,%v", at(i, 0.4, 1), ring(1, i)) })
+		understand(t, text, Options{}, want{interval: 0.4e-6, channels: "V_C/V", value: ring})
+	})
+	t.Run("a ramp is none", func(t *testing.T) {
+		text := "time (us),V_C (V)\n" + lines(rows, func(i int) string { return at(i, 0.4, 1) + "," + rise(i) })
+		understand(t, text, Options{}, want{interval: 0.4e-6, channels: "V_C/V", value: func(_, i int) float64 { return number(rise(i)) }})
+	})
+}
+
 func TestChannel(t *testing.T) {
 	c, err := Read(strings.NewReader("time (us),V_S (V),V_C (V),3\n"+lines(rows, func(i int) string {
 		return at(i, 0.4, 1) + "," + ring(1, i) + "," + ring(2, i) + "," + ring(3, i)

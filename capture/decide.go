@@ -39,8 +39,11 @@ func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
 	}
 	if d.assumed {
 		d.assumed = false // said once
-		c.note(CoarseTime, Note, "nothing in the file gives the unit of time; seconds are assumed",
-			"give the unit with --time-unit if the times are not seconds")
+		found, severity := "nothing in the file gives the unit of time", Note
+		if d.unknown != "" {
+			found, severity = fmt.Sprintf("the unit of time %s is not known", quote(d.unknown)), Warning
+		}
+		c.note(CoarseTime, severity, found+"; seconds are assumed", "give the unit with --time-unit if the times are not seconds")
 	}
 	a.Source += "; " + d.timeWhy
 	return a, nil
@@ -136,12 +139,18 @@ func coarse(c *Capture, k *clock, a *Axis) {
 		"save the times with more digits if the record is not evenly sampled")
 }
 
-// midnight says that clock times went over midnight.
+// midnight says that clock times went over midnight, or over a full hour.
 func midnight(c *Capture, k *clock) {
-	if n := k.spans[len(k.spans)-1].days; n > 0 {
-		c.note(UnevenTime, Note, fmt.Sprintf("clock times without a date pass midnight; %d h are added behind it", 24*n),
-			"nothing, unless the rows are out of order")
+	last := k.spans[len(k.spans)-1]
+	if last.wraps == 0 {
+		return
 	}
+	what := "a date pass midnight"
+	if last.period < secondsOfDay {
+		what = "hours pass the full hour"
+	}
+	c.note(UnevenTime, Note, fmt.Sprintf("clock times without %s; %d h are added behind it", what, last.wraps*last.period/3600),
+		"nothing, unless the rows are out of order")
 }
 
 // countFromFirst makes the first sample the zero of a clock time.
@@ -157,6 +166,9 @@ func (a *Axis) countFromFirst() {
 func (d *layoutDesign) indexAxis(c *Capture, k *clock, col int) *Axis {
 	decl := d.declared(col)
 	start, source := d.declaredStart(col, decl.value)
+	if first := k.spans[0].first; first < 0 && start == 0 {
+		start, source = first*decl.value, ", counted from the trigger"
+	}
 	a := &Axis{N: k.n, Start: start,
 		Source: fmt.Sprintf("count of samples in column %d, with the declared interval of %s%s", col+1, seconds(decl.value), source)}
 	if k.even() {

@@ -1,6 +1,7 @@
 package capture
 
 import (
+	"bytes"
 	"fmt"
 	"math"
 	"slices"
@@ -19,6 +20,7 @@ type layoutDesign struct {
 	// nothing gave it.
 	timeWhy string
 	assumed bool
+	unknown string // what the file gives as the unit of time, and nobody knows
 }
 
 // design decides the layout of a capture from the head.
@@ -136,7 +138,7 @@ func (d *layoutDesign) makePlan() *Error {
 	}
 	d.pair()
 	if d.plan.values == 0 {
-		return &Error{Err: ErrNoData, Found: d.whatThereIs(), Expected: "a column of voltage or current"}
+		return d.noSamples()
 	}
 	if d.plan.times == 0 || !timed {
 		return d.needInterval()
@@ -155,6 +157,23 @@ func (d *layoutDesign) pair() {
 	}
 }
 
+// noSamples refuses a table without channels. A column of words that begin as
+// numbers do is shown.
+func (d *layoutDesign) noSamples() *Error {
+	for _, r := range d.head.sample {
+		for i, c := range r.cells[:min(len(r.cells), len(d.columns))] {
+			if d.columns[i].Role == RoleText && d.head.kindOf(c) == kindText && bytes.ContainsAny(c.text, "0123456789") {
+				return &Error{Err: ErrSyntax, Line: r.line.number, Column: i + 1, Found: quote(string(c.text)), Expected: "a number"}
+			}
+		}
+	}
+	e := &Error{Err: ErrNoData, Found: d.whatThereIs(), Expected: "a column of voltage or current"}
+	if firstWithRole(d.columns, RoleFrequency) >= 0 {
+		e.Expected = "samples over time, not over frequency"
+	}
+	return e
+}
+
 // whatThereIs names the columns of a table without channels.
 func (d *layoutDesign) whatThereIs() string {
 	if len(d.columns) == 1 {
@@ -171,6 +190,9 @@ func (d *layoutDesign) planValue(i int) {
 	c := &d.columns[i]
 	if c.unit.base == "" && c.kind != kindQuantity {
 		c.unit, _ = d.preamble.valueUnit(i)
+		if _, _, scaled := d.preamble.text(meansScale, i); scaled && c.whole {
+			c.unit = unit{base: "counts"} // the unit is that of codes times the scale
+		}
 	}
 	if c.unit.base == "s" || c.unit.base == "Sa/s" { // the unit of something else
 		c.unit = unit{}
@@ -220,6 +242,9 @@ func (d *layoutDesign) timeUnit(c *column) (unit, string) {
 		return unit{"s", exp}, "unit of time implied by the declared interval of " + seconds(decl.value)
 	}
 	d.assumed = true
+	if _, u := lastBrackets(c.Name); u != "" {
+		d.unknown = u
+	}
 	return unit{base: "s"}, "seconds assumed"
 }
 

@@ -3,6 +3,7 @@ package capture
 import (
 	"bytes"
 	"fmt"
+	"math"
 	"slices"
 )
 
@@ -61,11 +62,18 @@ func newHead(text []byte, whole bool) (*head, *Error) {
 		return nil, h.noData()
 	}
 	h.first = h.firstRow()
+	if h.broken {
+		l := h.lines[h.first]
+		return nil, &Error{Err: ErrSyntax, Line: l.number, Found: quote(string(l.text)) + ", where commas part cells and fractions alike",
+			Expected: "semicolons or tabs between the cells"}
+	}
 	// Metadata may make the first row longer than the others.
 	for n := len(h.split(h.lines[h.first].text, nil)); len(h.kinds) < n; {
 		h.kinds = append(h.kinds, kindBlank)
 	}
 	h.takeSample()
+	h.dropNumbering()
+	h.joinQuoted()
 	for col, k := range h.kinds {
 		if k == kindBlank {
 			h.kinds[col] = h.endsEarly(col)
@@ -95,6 +103,32 @@ func (h *head) endsEarly(col int) kind {
 	return kind
 }
 
+// joinQuoted joins lines above the samples that are one, with line ends in a
+// quoted cell: "Time
+// (us)".
+func (h *head) joinQuoted() {
+	const most = 4
+	var joined []line
+	for i := 0; i < h.first; i++ {
+		l := h.lines[i]
+		for n := 1; n < most && i+n < h.first && h.leavesOpen(l.text); n++ {
+			l.text = append(append(slices.Clip(l.text), ' '), h.lines[i+n].text...)
+			if !h.leavesOpen(l.text) {
+				i += n
+				break
+			}
+		}
+		if h.leavesOpen(l.text) {
+			l = h.lines[i]
+		}
+		joined = append(joined, l)
+	}
+	if len(joined) < h.first {
+		h.lines = append(joined, h.lines[h.first:]...)
+		h.first = len(joined)
+	}
+}
+
 func longLine(number int) *Error {
 	return &Error{Err: ErrSyntax, Line: number, Expected: "the line to end",
 		Found: fmt.Sprintf("more than %d KiB without a line end", headSize>>10)}
@@ -112,6 +146,10 @@ func (h *head) noData() *Error {
 	return e
 }
 
+// lineRest is what a line may end in besides its line end: half of another, and
+// the ends of files.
+const lineRest = "\r\x1a\x00"
+
 // splitLines cuts text at term; a last line without term counts when the text
 // is whole.
 func splitLines(text []byte, term byte, whole bool) []line {
@@ -124,33 +162,100 @@ func splitLines(text []byte, term byte, whole bool) []line {
 			}
 			n = len(text) - at
 		}
-		lines = append(lines, line{bytes.TrimRight(text[at:at+n], "\r\x1a"), len(lines) + 1, at})
+		lines = append(lines, line{bytes.TrimRight(text[at:at+n], lineRest), len(lines) + 1, at})
 		at += n + 1
 	}
 	return lines
 }
 
 // firstRow is the index of the first row of samples: a line that fits, with
-// the next line that is not blank fitting too.
+// lines that fit below it. A few numbers above a heading are none.
 func (h *head) firstRow() int {
 	var cells []cell
-	candidate := -1
+	candidate, rows := -1, 0
 	for i, l := range h.lines {
 		cells = h.split(l.text, cells[:0])
 		switch {
 		case h.passed(l.text, cells):
-		case !h.fits(cells):
-			candidate = -1
-		case candidate >= 0:
-			return candidate
-		default:
-			candidate = i
+		case h.fits(cells):
+			if rows == 0 {
+				candidate = i
+			}
+			if rows++; rows == fewestRows {
+				return candidate
+			}
+		case rows == 1 || h.wordsOnly(cells):
+			candidate, rows = -1, 0
+		case rows > 1:
+			return candidate // the data pass will say what is wrong with this line
 		}
 	}
 	if candidate >= 0 {
 		return candidate
 	}
 	return len(h.lines) - 1
+}
+
+// wordsOnly reports words above all columns of a table of several.
+func (h *head) wordsOnly(cells []cell) bool {
+	for i, k := range h.kinds {
+		if k.numeric() && (i >= len(cells) || h.kindOf(cells[i]) != kindText) {
+			return false
+		}
+	}
+	return h.numericColumns() > 1
+}
+
+// dropNumbering takes a first row away that only numbers the columns, 0, 1, 2 or
+// 1, 2, 3: it breaks the even steps of a column below it.
+func (h *head) dropNumbering() {
+	if len(h.sample) < fewestRows || !h.numbering(h.sample[0].cells) {
+		return
+	}
+	for col := range h.kinds {
+		c := h.look(col)
+		_, even := (&column{values: c.values[1:]}).rises()
+		if step := medianStep(c.values[1:]); even && math.Abs(c.values[1]-c.values[0]-step) > 0.5*step {
+			h.sample = h.sample[1:]
+			h.first = slices.IndexFunc(h.lines, func(l line) bool { return l.number == h.sample[0].line.number })
+			return
+		}
+	}
+}
+
+// numbering reports cells that say 0, 1, 2 or 1, 2, 3, blank ones aside.
+func (h *head) numbering(cells []cell) bool {
+	n, least := 0, 0
+	for _, c := range cells {
+		if c.blank() {
+			continue
+		}
+		d, ok := parseDecimal(c.text, h.mark)
+		if !ok || d.exp != 0 || d.sign != 0 || d.mant > uint64(len(cells)) {
+			return false
+		}
+		if n == 0 {
+			least = int(d.mant)
+		}
+		if int(d.mant) != least+n || least > 1 {
+			return false
+		}
+		n++
+	}
+	return n > 1
+}
+
+// look gives the values of a column in the first rows.
+func (h *head) look(col int) *column {
+	c := &column{kind: h.kinds[col], whole: true}
+	h.eachRow(func(_ line, cells []cell) {
+		if col < len(cells) {
+			c.look(h.dialect, cells[col])
+		} else {
+			c.values = append(c.values, math.NaN())
+		}
+	})
+	return c
 }
 
 // preambleLines are the lines above the first row.

@@ -71,7 +71,7 @@ func ExampleCapture_Explain() {
 }
 
 func ExampleError() {
-	text := strings.Replace(loop07, "2780,75", "2.780,75", 1)
+	text := strings.Replace(loop07, "2780,75", "27 80,75", 1)
 	_, err := capture.Read(strings.NewReader(text), "loop 07.csv", capture.Options{})
 	fmt.Println(err)
 	var e *capture.Error
@@ -79,7 +79,7 @@ func ExampleError() {
 		fmt.Println(e.Line, e.Column, errors.Is(err, capture.ErrSyntax))
 	}
 	// Output:
-	// loop 07.csv: line 8, column 2: found "2.780,75", expected a number
+	// loop 07.csv: line 8, column 2: found "27 80,75", expected a number
 	// 8 2 true
 }
 

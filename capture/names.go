@@ -27,8 +27,7 @@ func findNames(h *head, p *preamble) heading {
 		}
 		if h.unitsRow(cells) {
 			if hd.unitsLine == 0 && below < nearby {
-				hd.unitsLine = h.lines[i].number
-				h.place(cells, func(col int, text string) { hd.units[col], _ = parseUnit(text) })
+				hd.takeUnits(h, p, i)
 				below = 0
 			}
 			continue
@@ -38,10 +37,36 @@ func findNames(h *head, p *preamble) heading {
 		}
 		below++
 	}
+	if best >= 0 && found <= unsaid && h.listed(p, best, found) {
+		best = -1
+	}
 	if best >= 0 {
 		hd.name(h, p, best)
+		if hd.unitsLine == 0 && best > 0 && !slices.ContainsFunc(hd.units, func(u unit) bool { return u.base != "" }) {
+			hd.takeUnits(h, p, best-1)
+		}
 	}
 	return hd
+}
+
+// listed reports a line like the one above it, and both above a column that
+// rises as time does, which no heading fails to say: the last entry of a list.
+func (h *head) listed(p *preamble, i, evidence int) bool {
+	first := slices.IndexFunc(h.kinds, kind.numeric)
+	if i == 0 || first < 0 || h.numericColumns() < 2 {
+		return false
+	}
+	c := h.look(first)
+	rising, even := c.rises()
+	return rising && even && !c.counts() && h.evidence(h.headingCells(p, h.lines[i-1].text), 0) >= evidence
+}
+
+// takeUnits takes line i as the units row, if it is one.
+func (hd *heading) takeUnits(h *head, p *preamble, i int) {
+	if cells := h.headingCells(p, h.lines[i].text); h.unitsRow(cells) {
+		hd.unitsLine = h.lines[i].number
+		h.place(cells, func(col int, text string) { hd.units[col], _ = parseUnit(text) })
+	}
 }
 
 // name takes the names, and the units that stand beside them, from line i.
@@ -68,30 +93,6 @@ func ruled(cells []cell) bool {
 		}
 	}
 	return true
-}
-
-// headingCells cuts a line that may be a heading. In a file separated by
-// blanks a name may hold single blanks, or its unit in brackets stand apart.
-func (h *head) headingCells(p *preamble, text []byte) []cell {
-	if h.delim != ' ' {
-		return p.cellsOf(text)
-	}
-	words := h.split(stripComment(text), nil)
-	var cells []cell
-	for _, w := range words {
-		if n := len(cells); n > 0 && len(w.text) > 1 && (w.text[0] == '(' || w.text[0] == '[') {
-			joined := append(append(append([]byte{}, cells[n-1].text...), ' '), w.text...)
-			cells[n-1] = cell{text: joined}
-			continue
-		}
-		cells = append(cells, w)
-	}
-	if len(cells) != len(h.kinds) {
-		if other := p.cellsOf(text); len(other) == len(h.kinds) {
-			return other
-		}
-	}
-	return cells
 }
 
 // unitsRow reports a line that holds units, and at least one, above columns of
@@ -124,6 +125,7 @@ func indexWord(name string) bool {
 const (
 	nearby   = 3 // lines of words with as many between them and the samples do not stand next to them
 	believed = 3 // next to the samples and nothing else
+	unsaid   = 6 // neither time nor units nor a blank corner
 	certain  = 9 // no other line will have more
 )
 
@@ -137,13 +139,15 @@ func (h *head) evidence(cells []cell, below int) int {
 	}
 	e := max(0, nearby-below)
 	says, units, sentence, filled := false, false, false, 0
-	for _, c := range cells {
+	over := false // a name over a column that holds nothing
+	for col, c := range cells {
 		if c.blank() {
 			continue
 		}
 		text := toUTF8(c.text)
 		name, u, ok := splitUnit(text)
 		filled++
+		over = over || col >= len(h.kinds) || h.kinds[col] == kindBlank
 		if len(strings.Fields(name)) > 3 {
 			sentence = true
 			continue
@@ -151,14 +155,14 @@ func (h *head) evidence(cells []cell, below int) int {
 		says = says || saysTime(text) && (below < nearby || u.base == "s" || exactTimeName(name))
 		units = units || ok
 	}
-	if below >= nearby && !says && !cells[0].blank() {
+	if below >= nearby && !says && !cells[0].blank() || filled > 1 && h.numericColumns() == 1 && over {
 		return 0
 	}
 	for _, v := range []struct {
 		is     bool
 		weight int
 	}{
-		{says, 4}, {cells[0].blank(), 3}, {units, 2}, {filled == h.numericColumns(), 1}, {!sentence, 1},
+		{says, 4}, {cells[0].blank(), 3}, {units, 2}, {filled == h.numericColumns(), 1}, {!sentence, 1}, {!over, 1},
 	} {
 		if v.is {
 			e += v.weight
@@ -169,12 +173,13 @@ func (h *head) evidence(cells []cell, below int) int {
 
 // namesRow reports a line that can name the columns.
 func (h *head) namesRow(cells []cell) bool {
-	words, numbers := 0, 0
+	words, numbers, says := 0, 0, false
 	for _, c := range cells {
 		if c.blank() {
 			continue
 		}
 		text := toUTF8(c.text)
+		says = says || saysTime(text)
 		if strings.HasSuffix(text, ":") || strings.ContainsRune(text, '=') || len(text) > 60 {
 			return false
 		}
@@ -182,14 +187,14 @@ func (h *head) namesRow(cells []cell) bool {
 		case k == kindNumber && strings.IndexByte(text, '.') < 0 && len(text) < 4:
 			numbers++ // a channel that is called 1
 		case k == kindMissing && unicode.IsLetter(rune(text[0])):
-			numbers++ // one that is called out
+			words++ // one that is called out
 		case k != kindText:
 			return false
 		default:
 			words++
 		}
 	}
-	return words > 0 && words+numbers >= h.fewestNames() && !h.entryLine(cells) && (words > 1 || numbers > 0 || !sectionWord(cells))
+	return words > 0 && (numbers == 0 || says || cells[0].blank()) && words+numbers >= h.fewestNames() && !h.entryLine(cells) && (words > 1 || numbers > 0 || !sectionWord(cells))
 }
 
 // unitAsName reads a name that is a unit itself: seconds, Volt, V. A single A
@@ -247,83 +252,4 @@ func (h *head) numericColumns() int {
 		}
 	}
 	return n
-}
-
-// place gives each text of a heading its column: by position; but where the
-// positions miss a column of numbers and the texts are as many as the channels,
-// they name the last columns in order.
-func (h *head) place(cells []cell, set func(col int, text string)) {
-	var numeric []int
-	missed := false
-	for col, k := range h.kinds {
-		if k.numeric() || k == kindMissing {
-			numeric = append(numeric, col)
-			missed = missed || len(numeric) > 1 && (col >= len(cells) || cells[col].blank())
-		}
-	}
-	var texts []string
-	for _, c := range cells {
-		if !c.blank() {
-			texts = append(texts, toUTF8(c.text))
-		}
-	}
-	if missed && len(texts) >= len(numeric)-1 && len(texts) <= len(numeric) && !saysTime(texts[0]) {
-		for i, text := range texts {
-			set(numeric[len(numeric)-len(texts)+i], text)
-		}
-		return
-	}
-	for col, c := range cells {
-		if !c.blank() && col < len(h.kinds) {
-			set(col, toUTF8(c.text))
-		}
-	}
-}
-
-// readBelow reads entries whose key stands in the names row and whose value
-// stands below it, in the units row or the first row of samples.
-func (p *preamble) readBelow(h *head, names int, header []cell) {
-	for col, c := range header {
-		if c.blank() || isDelta(toUTF8(c.text), header) {
-			continue
-		}
-		e, rest, ok := readKey(toUTF8(c.text))
-		if !ok || rest != "" || e.means == meansSource || !h.aside(col) {
-			continue
-		}
-		for _, l := range h.lines[names+1 : min(h.first+2, len(h.lines))] {
-			cells := h.split(l.text, nil)
-			if col < len(cells) && h.kindOf(cells[col]).numeric() {
-				e.line, e.column = l.number, col
-				e.values = []located{{toUTF8(cells[col].text), col}}
-				p.entries = append(p.entries, e)
-				break
-			}
-		}
-	}
-}
-
-// isDelta reports a heading dt beside a heading t: a deviation, no interval.
-func isDelta(text string, header []cell) bool {
-	rest, ok := strings.CutPrefix(text, "d")
-	return ok && slices.ContainsFunc(header, func(c cell) bool { return string(c.text) == rest })
-}
-
-// aside reports a column that is none of samples: it holds a number in the
-// first rows only, or the same number in all of them.
-func (h *head) aside(col int) bool {
-	if col >= len(h.kinds) || !h.kinds[col].numeric() {
-		return true
-	}
-	first, same := "", true
-	h.eachRow(func(_ line, cells []cell) {
-		if col >= len(cells) {
-			return
-		}
-		if first == "" {
-			first = string(cells[col].text)
-		}
-		same = same && first == string(cells[col].text)
-	})
-	return same
 }

@@ -224,8 +224,10 @@ func (p *plan) lineEnd(b []byte, i int) int {
 	if b[i] == p.term {
 		return i + 1
 	}
-	if p.last < len(p.steps)-1 && (b[i] == p.delim || b[i] == ' ' || b[i] == '\t') {
-		return i + bytes.IndexByte(b[i:], p.term) + 1
+	if p.last < len(p.steps)-1 {
+		if next := p.separator(b, i); next >= 0 {
+			return next + bytes.IndexByte(b[next:], p.term) + 1
+		}
 	}
 	for b[i] != p.term && (b[i] == '\r' || b[i] == ' ' || b[i] == p.delim) {
 		i++

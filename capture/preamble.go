@@ -19,6 +19,7 @@ const (
 	meansValueUnit
 	meansSource // name of the channel
 	meansCount  // number of samples
+	meansScale  // what a converter code is worth
 )
 
 // meanings gives the meaning of the keys of preambles, folded.
@@ -28,14 +29,17 @@ func init() {
 	for m, keys := range map[meaning]string{
 		meansInterval: `sampleinterval samplinginterval sampleperiod samplingperiod samplingtime sampletime timeinterval
 			timepersample secondspersample timestep timeincrement timedelta increment xincrement xinc xincr incr horizontalinterval deltat δt dt
-			ts interval sp samplespacing timespacing tinc hresolution timeresolution`,
-		meansRate:      `samplerate samplingrate samplefrequency samplingfrequency samplingfreq fs samplespersecond sr acquisitionrate sampling`,
+			ts interval sp samplespacing timespacing tinc hresolution timeresolution
+			abtastintervall abtastzeit abtastperiode périodeéchantillonnage périodedéchantillonnage`,
+		meansRate: `samplerate samplingrate samplefrequency samplingfrequency samplingfreq fs samplespersecond sr acquisitionrate sampling
+			abtastrate abtastfrequenz fréquencedéchantillonnage`,
 		meansStart:     `start starttime t0 x0 tstart xstart tzero xzero xorigin timeorigin timezero firstsample timeoffirstsample horizontalstart xfirst`,
 		meansTrigger:   `triggerpoint triggersample triggerindex triggerposition pretriggersamples pretriggerpoints`,
 		meansTimeUnit:  `horizontalunits horizontalunit timeunit timeunits xunit xunits timebaseunit unitoftime`,
-		meansValueUnit: `verticalunits verticalunit unit units yunit yunits voltageunit valueunit amplitudeunit channelunit`,
-		meansSource:    `source channel trace channelname tracename signal`,
+		meansValueUnit: `verticalunits verticalunit unit units yunit yunits voltageunit valueunit amplitudeunit channelunit einheit unité`,
+		meansSource:    `source channel trace channelname tracename signal kanal`,
 		meansCount:     `recordlength points samples numberofpoints numberofsamples recordsize memorylength npoints datapoints numpoints`,
+		meansScale:     `ymult ymultiplier yincrement yinc voltspercount voltspercode voltsperlsb voltsperbit vcount vlsb lsb verticalmultiplier countscale`,
 	} {
 		for _, k := range strings.Fields(keys) {
 			meanings[k] = m

@@ -40,7 +40,30 @@ func newColumns(h *head, hd heading) []column {
 			}
 		}
 	})
+	takeUnitColumns(h, cols)
 	return cols
+}
+
+// takeUnitColumns takes the unit of a column from the one behind it, which says
+// it in every row.
+func takeUnitColumns(h *head, cols []column) {
+	for i := 1; i < len(cols); i++ {
+		c, of := &cols[i], &cols[i-1]
+		if c.kind != kindText || c.Name != "" && !strings.HasPrefix(fold(c.Name), "unit") || of.kind != kindNumber || of.unit.base != "" {
+			continue
+		}
+		text, same := "", true
+		h.eachRow(func(_ line, cells []cell) {
+			if i < len(cells) {
+				same = same && (text == "" || text == string(cells[i].text))
+				text = string(cells[i].text)
+			}
+		})
+		if u, ok := parseUnit(toUTF8([]byte(text))); ok && same {
+			of.unit, of.Unit = u, unitName(u)
+			c.is(RoleMetadata, "the unit of column %d in every row", i)
+		}
+	}
 }
 
 // look appends the value of a cell of the first rows.
@@ -51,7 +74,9 @@ func (c *column) look(d dialect, x cell) {
 		c.whole = c.whole && n.exp == 0
 	} else if n, u, text, ok := d.quantity(x); ok && c.kind == kindQuantity {
 		v = n.float(u.exp, text, d.mark)
-		c.unit, c.whole = unit{base: u.base}, false
+		if c.unit.exp, c.whole = 0, false; u.base != "" {
+			c.unit.base = u.base
+		}
 	} else if s, ok := parseStamp(x.text, false); ok && c.kind == kindStamp {
 		v = s.since(0)
 	}
@@ -75,6 +100,7 @@ func assignRoles(h *head, cols []column, interval func(col int) declared) {
 	for i := range cols {
 		c := &cols[i]
 		switch {
+		case c.Role != "":
 		case c.kind == kindBlank && h.metadataBeside(i) && (c.Name == "" || meanings[fold(c.Name)] != meansNothing):
 			c.is(RoleMetadata, "words or numbers beside the first samples only")
 		case c.kind == kindBlank && h.metadataBeside(i):
@@ -87,6 +113,7 @@ func assignRoles(h *head, cols []column, interval func(col int) declared) {
 			c.is(RoleText, "words instead of numbers")
 		}
 	}
+	assignSpectra(cols)
 	assignTime(cols, interval)
 	for i := range cols {
 		if c := &cols[i]; c.Role == "" {
@@ -158,6 +185,9 @@ func assignByName(c *column) {
 	if deviationName(c.Name) {
 		c.is(RoleDeviation, "its name is %q", c.Name)
 	}
+	if segmentName(c.Name) && c.whole {
+		c.is(RoleMetadata, "its name is %q, and it holds whole numbers", c.Name)
+	}
 	if logicName(c.Name) && c.whole {
 		c.is(RoleLogic, "its name is %q, and it holds whole numbers", c.Name)
 	}
@@ -220,6 +250,15 @@ func logicName(name string) bool {
 		return true
 	}
 	return len(w) > 1 && w[0] == 'd' && w[1]-'0' <= 9 && strings.Trim(w, "d0123456789") == "" // D3, D7-D0
+}
+
+// segmentName reports a column that numbers the records of a file.
+func segmentName(name string) bool {
+	switch fold(name) {
+	case "segment", "seg", "segmentnumber", "segmentno", "segmentindex", "frame", "framenumber", "burst", "record", "recordnumber", "acquisition", "event":
+		return true
+	}
+	return false
 }
 
 // assignDeviations finds columns of standard deviations in a table without

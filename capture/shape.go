@@ -1,5 +1,10 @@
 package capture
 
+import (
+	"bytes"
+	"slices"
+)
+
 const blockLines = 64 // lines of the block that decides the dialect
 
 // A shape is the dialect of a block of lines and the kind of each column.
@@ -10,6 +15,10 @@ type shape struct {
 	rows  int
 	full  []int // rows with something in the column
 	now   []kind
+	// loose are the columns that hold words in some rows and numbers in others.
+	loose []bool
+	// broken is true where the mark of the fractions parts cells too.
+	broken bool
 }
 
 // findShape returns the shape that explains the most numbers of the block of
@@ -17,20 +26,50 @@ type shape struct {
 func findShape(lines []line) shape {
 	var best shape
 	for _, d := range dialects {
-		if s := d.block(lines); s.rows > 0 && (best.rows == 0 || s.score > best.score) {
+		if !d.occurs(lines) {
+			continue
+		}
+		s := d.block(lines, nil)
+		if d.delim == ' ' && best.explains() && best.rows >= s.rows {
+			continue // blanks in its cells part thousands
+		}
+		if s.rows > 0 && (best.rows == 0 || s.score > best.score) {
 			best = s
+		}
+	}
+	if loose := best.mixed(lines); loose != nil {
+		best = best.dialect.block(lines, loose)
+	}
+	if best.quotesFractions(lines) {
+		return dialect{',', ','}.block(lines, nil)
+	}
+	if best.partsFractions(lines) {
+		best.broken = true
+		if len(best.kinds) == 2 {
+			return dialect{';', ','}.block(lines, nil)
 		}
 	}
 	return best
 }
 
+// occurs reports a separator that stands in one of the last lines at least. The
+// semicolon is tried in any case, for a single column.
+func (d dialect) occurs(lines []line) bool {
+	return d.delim == ';' || slices.ContainsFunc(lines[max(0, len(lines)-2*blockLines):], func(l line) bool {
+		return bytes.IndexByte(l.text, d.delim) >= 0 || d.delim == ' ' && bytes.IndexByte(l.text, '\t') >= 0
+	})
+}
+
+// explains reports columns that hold numbers and nothing else.
+func (s *shape) explains() bool { return len(s.kinds) > 1 && !slices.Contains(s.kinds, kindText) }
+
 // block finds the best block of like lines near the end of lines: a footer of
 // up to blockLines or a last line that was cut off must not hide it.
-func (d dialect) block(lines []line) shape {
+func (d dialect) block(lines []line, loose []bool) shape {
 	var best shape
 	tries := 0
 	for last := len(lines) - 1; last >= max(0, len(lines)-blockLines) && tries < 8; last-- {
-		s := d.blockUpTo(lines[:last+1])
+		s := d.blockUpTo(lines[:last+1], loose)
 		if s.rows == 0 {
 			continue
 		}
@@ -46,8 +85,8 @@ func (d dialect) block(lines []line) shape {
 }
 
 // blockUpTo grows a block upwards from the last line, as long as lines are alike.
-func (d dialect) blockUpTo(lines []line) shape {
-	s := shape{dialect: d}
+func (d dialect) blockUpTo(lines []line, loose []bool) shape {
+	s := shape{dialect: d, loose: loose}
 	var cells []cell
 	for i := len(lines) - 1; i >= 0 && s.rows < blockLines; i-- {
 		if cells = d.split(lines[i].text, cells[:0]); d.passed(lines[i].text, cells) {
@@ -92,8 +131,11 @@ func allBlank(cells []cell) bool {
 func (s *shape) admit(cells []cell) bool {
 	kinds := s.now[:0]
 	numeric, text := 0, 0
-	for _, c := range cells {
+	for i, c := range cells {
 		k := s.kindOf(c)
+		if i < len(s.loose) && s.loose[i] && k != kindBlank {
+			k = kindText
+		}
 		if kinds = append(kinds, k); k.numeric() {
 			numeric++
 		} else if k == kindText {

@@ -9,7 +9,7 @@ import (
 // slowRow reads a row of any kind, and reports whether it was one. Blank lines
 // and comments are passed over; words at the end of the text are a footer.
 func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
-	text = bytes.TrimRight(text, "\r\x1a")
+	text = bytes.TrimRight(text, lineRest)
 	c.cells = p.split(text, c.cells[:0])
 	cells := c.cells
 	if p.passed(text, cells) {

@@ -80,7 +80,11 @@ func isBinary(head []byte) bool {
 		utf16Unmarked(head, 0) || utf16Unmarked(head, 1) {
 		return false
 	}
-	for _, c := range head {
+	text := bytes.TrimRight(head, "\x00") // room that a file was given and never filled
+	if len(text) == 0 {
+		return len(head) > 0
+	}
+	for _, c := range text {
 		if c < ' ' && c != '\t' && c != '\n' && c != '\r' && c != '\f' && c != '\v' && c != 0x1a {
 			return true
 		}

@@ -26,8 +26,8 @@ type span struct {
 	rows      int         // room wanted for the stamps
 	run       progression // of all stamps so far, as long as it lasts
 	even      bool        // the line stands for all stamps
-	undated   bool        // clock times without a date
-	days      int64       // midnights they have passed
+	period    int64       // of clock times without a date, in seconds
+	wraps     int64       // periods that have passed
 }
 
 // An instant is one stamp: a printed number, its power of ten that of seconds;
@@ -44,26 +44,26 @@ func (s stamp) instant(zero int64) instant {
 }
 
 // clock is the next stamp of the span as an instant: a clock time without a date
-// that is back by nearly a day has passed midnight.
+// that is back by nearly a day, or without hours by nearly an hour, has begun
+// anew.
 func (s *span) clock(t stamp, zero int64) instant {
-	if !t.dated {
-		s.undated = true
+	if s.period = t.period; t.period > 0 {
 		if s.n > 0 {
-			s.days += midnights(s.last, t.since(zero-s.days*secondsOfDay))
+			s.wraps += wraps(s.last, t.since(zero-s.wraps*t.period), t.period)
 		}
-		zero -= s.days * secondsOfDay
+		zero -= s.wraps * t.period
 	}
 	return t.instant(zero)
 }
 
-// midnights is the number of days to add to a clock time for it to come less
-// than an hour after the one before; 0 where that is not so.
-func midnights(before, t float64) int64 {
+// wraps is the number of periods to add to a clock time for it to come shortly
+// after the one before; 0 where that is not so.
+func wraps(before, t float64, period int64) int64 {
 	if !(t < before) {
 		return 0
 	}
-	n := math.Ceil((before - t) / secondsOfDay)
-	if t+n*secondsOfDay-before > 3600 {
+	n := math.Ceil((before - t) / float64(period))
+	if t+n*float64(period)-before > float64(period)/24 {
 		return 0
 	}
 	return int64(n)
@@ -72,10 +72,10 @@ func midnights(before, t float64) int64 {
 // follows reports whether the span comes after the time before, and puts it
 // behind the midnights in between.
 func (s *span) follows(before float64) bool {
-	if s.undated {
-		n := midnights(before, s.first)
-		s.days += n
-		shift := float64(n) * secondsOfDay
+	if s.period > 0 {
+		n := wraps(before, s.first, s.period)
+		s.wraps += n
+		shift := float64(n * s.period)
 		s.first += shift
 		s.last += shift
 		s.mean += shift
@@ -313,9 +313,14 @@ func medianStep(stamps []float64) float64 {
 	if len(stamps) < 2 {
 		return 0
 	}
-	steps := make([]float64, len(stamps)-1)
-	for i := range steps {
-		steps[i] = stamps[i+1] - stamps[i]
+	steps := make([]float64, 0, len(stamps)-1)
+	for i := range stamps[1:] {
+		if d := stamps[i+1] - stamps[i]; !math.IsNaN(d) {
+			steps = append(steps, d)
+		}
+	}
+	if len(steps) == 0 {
+		return 0
 	}
 	slices.Sort(steps)
 	return steps[len(steps)/2]

@@ -1,13 +1,16 @@
 package capture
 
-import "time"
+import (
+	"strings"
+	"time"
+)
 
 // A stamp is a date and clock time, or a clock time alone on day 0.
 type stamp struct {
 	second   int64   // whole seconds
 	fraction float64 // of a second
 	places   int     // printed decimal places of the second
-	dated    bool
+	period   int64   // seconds after which it comes again; 0: it has a date
 }
 
 // since returns the seconds from whole second zero to s.
@@ -15,10 +18,12 @@ func (s stamp) since(zero int64) float64 { return float64(s.second-zero) + s.fra
 
 // parseStamp reads
 //
-//	[date ('T' | blanks)] hours:minutes:seconds[(. | ,)fraction] [AM | PM] [Z | (+ | -)hh:mm]
+//	[date ('T' | blanks)] [hours:]minutes:seconds[(. | , | :)fraction] [AM | PM] [Z | (+ | -)hh:mm]
 //
 // with a date of year-month-day, or of day/month/year, or of month/day/year
-// unless dayFirst; the date's separator is one of "-/.".
+// unless dayFirst; the date's separator is one of "-/.", and the month may be a
+// word. Without hours there must be a fraction, and behind a third colon it has
+// three digits or six.
 func parseStamp(text []byte, dayFirst bool) (stamp, bool) {
 	p := stampParser{b: text}
 	first, ok := p.number()
@@ -35,8 +40,9 @@ func parseStamp(text []byte, dayFirst bool) (stamp, bool) {
 		}
 	}
 	s, ok := p.clock(first)
-	s.second += day * secondsOfDay
-	s.dated = p.dated
+	if s.second += day * secondsOfDay; p.dated {
+		s.period = 0
+	}
 	return s, ok && p.i == len(text)
 }
 
@@ -72,7 +78,11 @@ func (p *stampParser) date(first int, dayFirst bool) (int64, bool) {
 	sep := p.b[p.i]
 	p.i++
 	second, ok := p.number()
-	if !ok || !p.accept(sep) {
+	word := false
+	if !ok {
+		second, word = p.month()
+	}
+	if !ok && !word || !p.accept(sep) {
 		return 0, false
 	}
 	third, ok := p.number()
@@ -88,7 +98,7 @@ func (p *stampParser) date(first int, dayFirst bool) (int64, bool) {
 	year, month, day := third, first, second
 	if first > 31 {
 		year, month, day = first, second, third
-	} else if dayFirst || first > 12 {
+	} else if dayFirst || word || first > 12 {
 		month, day = second, first
 	}
 	if month > 12 {
@@ -104,10 +114,35 @@ func (p *stampParser) date(first int, dayFirst bool) (int64, bool) {
 	return time.Date(year, time.Month(month), day, 0, 0, 0, 0, time.UTC).Unix() / secondsOfDay, true
 }
 
-// clock reads the rest of a clock time behind its hours.
+// month reads the name of a month, in English or German, by its first letters.
+func (p *stampParser) month() (int, bool) {
+	from := p.i
+	for p.i < len(p.b) && (p.b[p.i]|0x20 >= 'a' && p.b[p.i]|0x20 <= 'z' || p.b[p.i] >= 0x80) {
+		p.i++
+	}
+	if p.i-from < 3 {
+		return 0, false
+	}
+	for n, names := range []string{"jan", "feb", "mar mär mrz", "apr", "may mai", "jun", "jul", "aug", "sep", "oct okt", "nov", "dec dez"} {
+		for _, name := range strings.Fields(names) {
+			if strings.HasPrefix(strings.ToLower(toUTF8(p.b[from:p.i])), name) {
+				return n + 1, true
+			}
+		}
+	}
+	return 0, false
+}
+
+// clock reads the rest of a clock time behind its first number.
 func (p *stampParser) clock(hours int) (s stamp, ok bool) {
 	var part [2]int
+	s.period = secondsOfDay
 	for k := range part {
+		if k == 1 && p.i < len(p.b) && (p.b[p.i] == '.' || p.b[p.i] == ',') {
+			hours, part[0], part[1] = 0, hours, part[0]
+			s.period = 3600
+			break
+		}
 		if !p.accept(':') {
 			return s, false
 		}
@@ -115,7 +150,10 @@ func (p *stampParser) clock(hours int) (s stamp, ok bool) {
 			return s, false
 		}
 	}
-	if p.i < len(p.b) && (p.b[p.i] == '.' || p.b[p.i] == ',') {
+	switch left := len(p.b) - p.i; {
+	case left > 0 && (p.b[p.i] == '.' || p.b[p.i] == ','):
+		s.fraction, s.places = p.fractionOf()
+	case (left == 4 || left == 7) && p.b[p.i] == ':':
 		s.fraction, s.places = p.fractionOf()
 	}
 	for p.accept(' ') {

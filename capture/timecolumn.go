@@ -102,14 +102,35 @@ func (c *column) counts() bool {
 	return misses*50 <= len(c.values)
 }
 
+// assignSpectra finds columns of frequencies, and what goes with them: the
+// columns to their right, up to the next one of time.
+func assignSpectra(cols []column) {
+	of := -1
+	for i := range cols {
+		c := &cols[i]
+		if c.Role != "" || !c.kind.numeric() {
+			continue
+		}
+		if rising, even := c.rises(); rising && even && (c.unit.base == "Hz" || len(c.Name) > 1 && nameSays(c.Name, RoleFrequency)) {
+			of = i
+			c.is(RoleFrequency, "its values rise, and its name or unit is that of a frequency")
+		} else if of >= 0 && (c.unit.base == "s" || timeName(c.Name)) {
+			of = -1
+		} else if of >= 0 {
+			c.is(RoleResponse, "it goes with the frequencies of column %d", of+1)
+		}
+	}
+}
+
 // assignTime finds the time columns: those that look most like time. Without
-// names a second one must repeat the first.
+// names a second one must go on as the first does, or every second column must
+// look like time.
 func assignTime(cols []column, interval func(col int) declared) {
 	ranks := make([]int, len(cols))
 	whys := make([]string, len(cols))
 	best, numeric := -1, 0
 	for i := range cols {
-		if !cols[i].kind.numeric() {
+		if !cols[i].kind.numeric() || cols[i].Role != "" {
 			continue
 		}
 		ranks[i], whys[i] = cols[i].timeRank(numeric == 0)
@@ -124,15 +145,44 @@ func assignTime(cols []column, interval func(col int) declared) {
 	if best < 0 || numeric == 1 && ranks[best] < clockTime {
 		return
 	}
+	paired := inPairs(cols, ranks)
 	for i := range cols {
 		switch c := &cols[i]; {
 		case ranks[i] == noTime:
 		case ranks[i] == countTime:
 			c.is(RoleIndex, "%s", whys[i])
-		case ranks[i] == ranks[best] && (i == best || ranks[i] >= clockTime || sameValues(c.values, cols[best].values)):
+		case ranks[i] == ranks[best] && (i == best || ranks[i] >= clockTime || paired || c.goesAs(&cols[best])):
 			c.is(RoleTime, "%s", whys[i])
 		case ranks[i] == clockTime:
 			c.is(RoleText, "clock times beside a time column of numbers")
 		}
 	}
+}
+
+// goesAs reports a column that rises from row to row by as much as another does.
+func (c *column) goesAs(other *column) bool {
+	a, b := medianStep(c.values), medianStep(other.values)
+	return math.Abs(a-b) <= 1e-3*b
+}
+
+// inPairs reports columns without names that alternate between looking like time
+// and not: a time column for each channel, all of like length.
+func inPairs(cols []column, ranks []int) bool {
+	n, first := 0, 0.0
+	for i := range cols {
+		c := &cols[i]
+		if c.Role != "" || !c.kind.numeric() {
+			continue
+		}
+		if (ranks[i] == evenTime) != (n%2 == 0) || ranks[i] != evenTime && ranks[i] != noTime {
+			return false
+		}
+		if step := medianStep(c.values); n == 0 {
+			first = step
+		} else if n%2 == 0 && (step > 100*first || first > 100*step) {
+			return false
+		}
+		n++
+	}
+	return n > 2 && n%2 == 0
 }

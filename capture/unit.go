@@ -3,6 +3,7 @@ package capture
 import (
 	"strings"
 	"unicode"
+	"unicode/utf8"
 )
 
 // A unit is a base unit without prefix and the power of ten of its prefix.
@@ -11,11 +12,12 @@ type unit struct {
 	exp  int
 }
 
+// prefixes; µ is the only one that a change of encoding can spoil.
 var prefixes = []struct {
 	text string
 	exp  int
 }{
-	{"p", -12}, {"n", -9}, {"u", -6}, {"µ", -6}, {"μ", -6}, {"m", -3}, {"k", 3}, {"K", 3}, {"M", 6}, {"G", 9},
+	{"p", -12}, {"n", -9}, {"u", -6}, {"µ", -6}, {"μ", -6}, {"Âµ", -6}, {"?", -6}, {"\ufffd", -6}, {"m", -3}, {"U", -6}, {"N", -9}, {"k", 3}, {"K", 3}, {"M", 6}, {"G", 9},
 	{"pico", -12}, {"nano", -9}, {"micro", -6}, {"milli", -3}, {"kilo", 3}, {"mega", 6}, {"giga", 9},
 }
 
@@ -52,11 +54,22 @@ func parseUnit(text string) (unit, bool) {
 		if !ok {
 			continue
 		}
-		if base := baseUnits[strings.ToLower(rest)]; base != "" && (len(p.text) < 4 || len(rest) > 2) {
-			if p.text == "M" && base == "s" { // no clock counts in megaseconds: milliseconds in capitals
+		if base := baseUnits[strings.ToLower(rest)]; base != "" && (utf8.RuneCountInString(p.text) < 4 || len(rest) > 2) {
+			// No clock counts in megaseconds, no probe in megavolts: milli in capitals.
+			if p.text == "M" && (base == "s" || base == "V" || base == "A") && strings.ToUpper(text) == text {
 				return unit{base, -3}, true
 			}
 			return unit{base, p.exp}, true
+		}
+	}
+	return unit{}, false
+}
+
+// parsePrefix reads a prefix without a unit, as circuit simulators print it: 4.7u.
+func parsePrefix(text string) (unit, bool) {
+	for _, p := range prefixes {
+		if text == p.text && p.exp < 4 {
+			return unit{exp: p.exp}, true
 		}
 	}
 	return unit{}, false
@@ -66,12 +79,9 @@ func parseUnit(text string) (unit, bool) {
 // "CH1 (mV)", "Time[us]", "U / V", "time_us", "t in ms", "in s".
 func splitUnit(text string) (name string, u unit, ok bool) {
 	text = strings.TrimSpace(text)
-	for _, brackets := range []string{"()", "[]"} {
-		open := strings.LastIndexByte(text, brackets[0])
-		if open >= 0 && strings.HasSuffix(text, brackets[1:]) {
-			if u, ok = parseUnit(text[open:]); ok {
-				return strings.TrimSpace(text[:open]), u, true
-			}
+	if before, inside := lastBrackets(text); inside != "" {
+		if u, ok = parseUnit(inside); ok {
+			return before, u, true
 		}
 	}
 	if rest, found := strings.CutPrefix(text, "in "); found {
@@ -91,6 +101,16 @@ func splitUnit(text string) (name string, u unit, ok bool) {
 		}
 	}
 	return text, unit{}, false
+}
+
+// lastBrackets parts a text that ends in brackets.
+func lastBrackets(text string) (before, inside string) {
+	for _, pair := range []string{"()", "[]"} {
+		if open := strings.LastIndexByte(text, pair[0]); open >= 0 && strings.HasSuffix(text, pair[1:]) {
+			return strings.TrimSpace(text[:open]), strings.TrimSpace(text[open+1 : len(text)-1])
+		}
+	}
+	return text, ""
 }
 
 // timeName reports a name that says time.
