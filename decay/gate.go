@@ -3,7 +3,6 @@ package decay
 import (
 	"cmp"
 	"math"
-	"sort"
 )
 
 // gate is the stretch of a record that one free decay fills, and the fit to it.
@@ -42,6 +41,9 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 	}
 	g := first
 	g.settle(s, p, fixedStart, fixedEnd)
+	if !fixedStart {
+		p.behindDrive(s, &first, &g, fixedEnd)
+	}
 	g.cutCoarseTail(s)
 	if g.misfits(s) && !g.coarse {
 		if two, ok := withCompanion(s, &first); ok {
@@ -83,132 +85,6 @@ func (g *gate) settle(s series, p *pyramid, fixedStart, fixedEnd bool) {
 		g.placeStart(s, p, int(g.fit.period()/2)) // the rest of the decay moves it no further
 		g.growForward(s, fixedEnd)
 	}
-}
-
-// firstFit refines the best seeds of every onset and keeps the likeliest account
-// of the whole record: a constant, then the ring in its window, then a constant.
-func firstFit(s series, p *pyramid, fixedStart bool) (gate, bool) {
-	var best gate
-	least := math.Inf(1)
-	levels := newPlateaus(p)
-	onsets := p.onsets()
-	if fixedStart {
-		onsets = onsets[:1]
-	}
-	for _, o := range onsets {
-		var done []seed
-		for _, sd := range p.seeds(o) {
-			if len(done) == seedsTried {
-				break
-			}
-			if similar(sd, done) {
-				continue
-			}
-			done = append(done, sd)
-			f, explained, ok := p.refine(sd)
-			if !ok {
-				continue
-			}
-			if left := levels.left(sd.first, sd.last) - explained; left < least {
-				least = left
-				m := f.s.dt / s.dt
-				f.a, f.w = f.a/m, f.w/m
-				best = gate{first: p.sample(s, sd.first), last: p.sample(s, sd.last), fit: f}
-			}
-		}
-	}
-	if math.IsInf(least, 1) {
-		return best, false
-	}
-	core := max(coreMost, int(math.Min(coreCycles*best.fit.period(), float64(s.len()))))
-	best.last = min(best.last, best.first+core)
-	f, ok := fitRing(s.slice(best.first, best.last), best.fit.a, best.fit.w, coarse)
-	if ok {
-		best.fit = f
-	}
-	return best, ok
-}
-
-// similar reports whether a seed of the same window adds nothing to those done.
-func similar(s seed, done []seed) bool {
-	for _, d := range done {
-		if s.first == d.first && s.last == d.last && math.Abs(s.w-d.w) < 0.05*d.w && math.Abs(s.a-d.a) < 0.3*d.a {
-			return true
-		}
-	}
-	return false
-}
-
-// refine fits the seed's window on the finest level that keeps it short, and
-// returns the energy that the ring explains there beyond a constant, in units of
-// samples of level 0.
-func (p *pyramid) refine(sd seed) (f ringFit, explained float64, ok bool) {
-	k := 0
-	for k+1 < len(p.levels) && (sd.last-sd.first)/scale(k) > coreMost {
-		k++
-	}
-	m := float64(scale(k))
-	level := p.levels[k]
-	window := level.slice(sd.first/scale(k), min(sd.last/scale(k), level.len()))
-	if sd.w*m > math.Pi {
-		return f, 0, false
-	}
-	if f, ok = fitRing(window, sd.a*m, sd.w*m, coarse); !ok {
-		return f, 0, false
-	}
-	return f, m * (f.aboutMean() - f.rss), true
-}
-
-// plateaus tells how much energy is left when a record is cut in three and each
-// part is taken as constant.
-type plateaus struct {
-	block    int
-	sum, sqs []float64 // running sums over blocks
-}
-
-const plateauBlocks = 1 << 16
-
-func newPlateaus(p *pyramid) *plateaus {
-	y := p.levels[0].y
-	block := (len(y) + plateauBlocks - 1) / plateauBlocks
-	n := (len(y) + block - 1) / block
-	out := &plateaus{block: block, sum: make([]float64, n+1), sqs: make([]float64, n+1)}
-	ref := y[len(y)/2]
-	halves(n, func(first, last int) func() {
-		for i := first; i < last; i++ {
-			out.sum[i+1], out.sqs[i+1], _ = sums(y[i*block:min(len(y), (i+1)*block)], ref)
-		}
-		return func() {}
-	})
-	for i := range n {
-		out.sum[i+1] += out.sum[i]
-		out.sqs[i+1] += out.sqs[i]
-	}
-	return out
-}
-
-// left is the energy about the means of what lies before first, between, and from last on.
-func (p *plateaus) left(first, last int) float64 {
-	n := len(p.sum) - 1
-	i, j := min(first/p.block, n), min((last+p.block-1)/p.block, n)
-	return p.about(0, i) + p.about(i, j) + p.about(j, n)
-}
-
-func (p *plateaus) about(i, j int) float64 {
-	if i >= j {
-		return 0
-	}
-	s := p.sum[j] - p.sum[i]
-	return p.sqs[j] - p.sqs[i] - s*s/float64((j-i)*p.block)
-}
-
-// sample converts an index of level 0 to one of s.
-func (p *pyramid) sample(s series, i int) int {
-	if s.times == nil {
-		return min(i, s.len())
-	}
-	t := p.levels[0].t0 + float64(i)*s.dt
-	return sort.SearchFloat64s(s.times, t-0.5*s.dt)
 }
 
 // growForward extends the gate, doubling it, until the record ends, the decay has
@@ -348,6 +224,12 @@ func (g *gate) lateRMS() float64 {
 		}
 	}
 	return math.Sqrt(sum / float64(max(1, n)))
+}
+
+// scatter is the noise of single samples from a converter of the given step, in whose
+// late samples a robust measure may see nothing but one level.
+func (g *gate) scatter(step float64) float64 {
+	return max(g.lateSigma(), g.lateRMS(), step/math.Sqrt(12))
 }
 
 // late returns the residual of the second half, of at most noiseSamples samples.

@@ -200,7 +200,7 @@ func bareExponential() Finding {
 // for most of what moves in the record.
 func fallsOnly(s series) bool {
 	p := newPyramid(s)
-	levels := newPlateaus(p)
+	levels := p.plateaus()
 	total := levels.left(0, s.len())
 	for _, o := range p.onsets() {
 		if s.len()-o < 2*samplesLeast {

@@ -11,6 +11,7 @@ import (
 // where the ring has a handful of samples per cycle, however deep the record is.
 type pyramid struct {
 	levels []series
+	flat   *plateaus // see plateaus
 }
 
 const pyramidRatio = 4

@@ -151,7 +151,9 @@ func (g *gate) settleStart(s series, before int, was pole) {
 		head.refit(s, coarse)
 	}
 	head.trim(s)
-	head.leaveLevel(s)
+	if !head.leaveLevel(s) {
+		head.leaveDrive(s)
+	}
 	switch {
 	case !long:
 		*g = head
@@ -194,23 +196,23 @@ const (
 // first, and samples of the level that the ring explains within the noise would
 // pull it. Seen from a fit behind the moment when the level is clearly left, every
 // sample before goes to the level or to the ring, whichever explains it better,
-// and in doubt to the level.
-func (g *gate) leaveLevel(s series) {
+// and in doubt to the level. It is false where there was no such level.
+func (g *gate) leaveLevel(s series) bool {
 	guard := 2 + int(g.fit.period()/4)
 	from := max(0, g.first-guard)
 	if from < levelLeast {
-		return
+		return false
 	}
 	before := newRing(s.slice(max(0, from-levelSamples), from))
-	sigma := math.Max(g.lateSigma(), s.step/math.Sqrt(12))
+	sigma := g.scatter(s.step)
 	if before.n < levelLeast || before.aboutMean() > levelFlat*sq(sigma)*float64(before.n) {
-		return
+		return false
 	}
 	level := before.ref + before.y/float64(before.n)
 	left := from
 	for end := min(g.first+guard, g.last-2*samplesLeast); ; left++ {
 		if left >= end {
-			return
+			return true
 		}
 		if math.Abs(s.y[left]-level) > levelLeft*sigma && math.Abs(s.y[left+1]-level) > levelLeft*sigma {
 			break
@@ -221,7 +223,7 @@ func (g *gate) leaveLevel(s series) {
 	behind.refit(s, coarse)
 	cov, ok := behind.fit.normal.jtj.inverse()
 	if !ok || behind.fit.a <= 0 {
-		return
+		return true
 	}
 	start, cost, best := left, 0.0, -float64(levelDoubt)
 	for i := left - 1; i >= from; i-- {
@@ -238,6 +240,7 @@ func (g *gate) leaveLevel(s series) {
 		g.first, g.fit = start, behind.fit
 		g.refit(s, coarse)
 	}
+	return true
 }
 
 // levelSamples bounds the stretch that the level before an edge is taken from.
