@@ -57,6 +57,11 @@ type figure struct {
 	// Whole says that all of it is shown at first, however narrow the first view.
 	Whole bool `json:"whole,omitempty"`
 
+	// Names are of the places 1, 2, ... of the common axis.
+	Names []string `json:"names,omitempty"`
+	// Low says that the charts need little height.
+	Low bool `json:"low,omitempty"`
+
 	// Words are those of the tools, Notes the sentences below the charts.
 	Words axisWords `json:"-"`
 	Notes []string  `json:"-"`

@@ -4,8 +4,11 @@ import (
 	"bytes"
 	"encoding/csv"
 	"fmt"
+	"slices"
 	"strings"
 	"testing"
+
+	"github.com/chromedp/chromedp"
 
 	"dieaway/decay/circuit"
 	"dieaway/decay/quantity"
@@ -63,14 +66,29 @@ func TestSetPage(t *testing.T) {
 		t.Fatal(err)
 	}
 	page := out.String()
-	if strings.Contains(page, "<script>alert") || strings.Contains(page, "NaN") || strings.Contains(page, "ZgotmplZ") {
+	if strings.Contains(page, "<script>alert") || strings.Contains(scripts.ReplaceAllString(page, "$1$2"), "NaN") || strings.Contains(page, "ZgotmplZ") {
 		t.Error("a file's name got into the page as it is, or a number is none")
 	}
-	if n := strings.Count(page, `<circle class="point`); n != 33 { // three quantities of eleven
-		t.Errorf("%d points, want 33", n)
+	set := coils()
+	figures, err := set.figures(set.judge())
+	if err != nil {
+		t.Fatal(err)
 	}
-	if n := strings.Count(page, `<path class="limit"`); n != 2 {
-		t.Errorf("%d limits, want 2", n)
+	want := []string{"Natural frequency", "Quality factor", "Time constant", "Distribution of the natural frequency",
+		"Distribution of the quality factor", "Distribution of the time constant"}
+	if got := titles(figures); !slices.Equal(got, want) {
+		t.Errorf("charts %q", got)
+	}
+	var keys []string
+	for _, k := range figures[0].Panels[1].Keys {
+		keys = append(keys, k.Name)
+	}
+	if want := []string{setKinds[0].key.Name, setKinds[2].key.Name, "mean", "limits"}; !slices.Equal(keys, want) {
+		t.Errorf("Q shows %q, want %q", keys, want)
+	}
+	q := set.judge()[1]
+	if n := sum(set.counted(q)); n != 11 {
+		t.Errorf("%g captures are counted, want 11", n)
 	}
 	if err := (&Set{}).WritePage(&out); err == nil {
 		t.Error("a page of nothing")
@@ -79,4 +97,36 @@ func TestSetPage(t *testing.T) {
 	if err := one.WritePage(&out); err != nil {
 		t.Error(err)
 	}
+}
+
+func sum(x []float64) (s float64) {
+	for _, v := range x {
+		s += v
+	}
+	return s
+}
+
+// The charts of a set are drawn, name the capture that the pointer is at, and none
+// is wider than a phone.
+func TestSetInBrowser(t *testing.T) {
+	p := open(t, browser(t), coils(), 1280, 900, "light")
+	if n := eval[int](p, `document.querySelectorAll("figure.charts canvas").length`); n != 4 {
+		t.Errorf("%d figures are drawn, want 4", n)
+	}
+	for i, share := range eval[[]float64](p, inked) {
+		if share < 0.003 {
+			t.Errorf("panel %d is empty: %g of it is drawn", i+1, share)
+		}
+	}
+	eval[any](p, theChart+`.dispatchAction({type: "showTip", x: 200, y: 250}), null`)
+	p.do(rest)
+	if tip := eval[string](p, `document.querySelector("#chart .tip").innerText`); !strings.Contains(tip, "loop0") || !strings.Contains(tip, "± 0.02 kHz") {
+		t.Errorf("tooltip %q", tip)
+	}
+	eval[any](p, theChart+`.dispatchAction({type: "hideTip"}), null`)
+	p.do(chromedp.EmulateViewport(360, 800), rest)
+	if n := eval[float64](p, overflow); n > 0 {
+		t.Errorf("%g pixels wider than a window of 360: %s", n, eval[string](p, `[...document.querySelectorAll("main *")].filter((e) => e.getBoundingClientRect().right > 361).map((e) => e.outerHTML.slice(0, 120)).slice(0, 8).join("\n")`))
+	}
+	p.quiet()
 }

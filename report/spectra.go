@@ -105,12 +105,12 @@ func (s *spectra) residual() (*figure, error) {
 	if err != nil {
 		return nil, err
 	}
-	f.Logarithmic, f.Notes = true, []string{residualLine(x, s.r.unit())}
+	f.Logarithmic, f.Notes = true, []string{densityLine(x, s.r.unit())}
 	return f, nil
 }
 
-// residualLine says in numbers what the chart shows.
-func residualLine(x *decay.ResidualSpectrum, unit string) string {
+// densityLine says in numbers what the chart shows.
+func densityLine(x *decay.ResidualSpectrum, unit string) string {
 	k := x.Strongest()
 	which := "No line stands above it"
 	if x.Density[k] > x.High[k] {

@@ -71,6 +71,7 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
   // Some figures have a logarithmic common axis, which holds the logarithms.
   const plain = (x) => (data.logarithmic ? 10 ** x : x);
   const atText = (x) => {
+    if (data.names) return `${x}: ${data.names[x - 1] || ""}`;
     if (data.dates) return `${new Date(x).toISOString().slice(0, 19).replace("T", " ")} ${data.time}`;
     return data.logarithmic ? prefixed(plain(x), 4) + data.time : `${digits(x, 9)} ${data.time}`;
   };
@@ -105,21 +106,33 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     return Array.isArray(p.value) ? p.value[y] : p.value[p.dimensionNames[y]];
   };
 
+  // valuesText writes the values of one name: of a point on a bar its value with the
+  // half of the bar, else up to two different ones.
+  const valuesText = ({ line, scatter }) => {
+    const [y] = scatter, lo = Math.min(...line), hi = Math.max(...line);
+    if (line.length === 2 && scatter.length === 1 && y > lo && y < hi) return `${digits(y, 7)} ± ${digits((hi - lo) / 2, 2)}`;
+    return [...new Set([...line, ...scatter].map((v) => digits(v, 5)))].slice(0, 2).join(" and ");
+  };
+
   // tip lists what stands at the pointer, panel by panel.
   const tip = (params) => {
     if (!params.length) return "";
     let html = `<span class="t">${escape(atText(params[0].axisValue))}</span>`;
-    const rows = new Map();
+    const rows = new Map(), panels = new Map(); // panels by name
     for (const p of params) {
       const v = valueOf(p);
       if (typeof v !== "number" || Number.isNaN(v)) continue;
-      const text = digits(v, 5);
-      const row = rows.get(p.seriesName) || { unit: data.panels[p.axisIndex].unit, texts: [] };
-      if (!row.texts.includes(text)) row.texts.push(text);
-      rows.set(p.seriesName, row);
+      const id = `${p.axisIndex} ${p.seriesName}`;
+      const row = rows.get(id) || { name: p.seriesName, panel: data.panels[p.axisIndex], line: [], scatter: [] };
+      row[p.seriesType].push(v);
+      rows.set(id, row);
+      panels.set(row.name, (panels.get(row.name) || new Set()).add(row.panel));
     }
-    for (const [name, row] of rows) {
-      html += `<span>${escape(name)}</span><b class="v">${escape(row.texts.slice(0, 2).join(" and "))} ${escape(row.unit)}</b>`;
+    const apart = [...panels.values()].some((s) => s.size > 1); // one name in several charts
+    let title = "";
+    for (const row of rows.values()) {
+      if (apart && row.panel.title !== title) html += `<span class="t">${escape((title = row.panel.title))}</span>`;
+      html += `<span>${escape(row.name)}</span><b class="v">${escape(valuesText(row))} ${escape(row.panel.unit)}</b>`;
     }
     return `<div class="tip">${html}</div>`;
   };
@@ -182,9 +195,9 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     stage.style.width = printing ? `${printWidth}px` : "";
     const width = stage.clientWidth;
     // On paper two figures share a sheet, but for the one of three charts.
-    const printed = [[180], [145, 125], [190, 140, 115]][heads.length - 1] || [190, 140, 115];
+    const printed = [[data.low ? 90 : 180], [145, 125], [170, 130, 105]][heads.length - 1] || [170, 130, 105];
     const heights = printing ? printed : width < 560 ? [210, 190, 160] : [340, 260, 210].map((h) => h * Math.max(1, textSize() / 16));
-    if (heads.length === 1 && !printing) heights[0] += 40;
+    if (heads.length === 1 && !printing) heights[0] += data.low ? -100 : 40;
     const grids = [];
     let y = 0;
     heads.forEach((head, i) => {
