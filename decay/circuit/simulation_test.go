@@ -4,12 +4,10 @@ import (
 	"bytes"
 	"math"
 	"math/cmplx"
-	"math/rand/v2"
 	"testing"
 
 	"dieaway/capture"
 	"dieaway/decay"
-	"dieaway/decay/driven"
 	"dieaway/decay/quantity"
 )
 
@@ -140,95 +138,6 @@ func fitted(t *testing.T, s *Simulation) *decay.Quantities {
 		t.Fatalf("refused: %v", r.Findings)
 	}
 	return r.Quantities
-}
-
-// TestAmplitudeLaw follows the envelope of a lossy core: dA/dt = -aA - bA^2
-// (Rayleigh region; derived) with b A0/a = 0.2, at t = 0.5, 1, 2, 3 of 1/a.
-func TestAmplitudeLaw(t *testing.T) {
-	const l, c, r = 1e-3, 1e-9, 2.0 // Q 500, 1/a 1 ms
-	const tau = 2 * l / r
-	s := &Simulation{Bench: benchOf(Series, l, c, r, 0, 0, 0, 0), Interval: tau / 2, Samples: 8, Amplitude: 1, LossGrowth: 0.2}
-	run, err := s.begin()
-	if err != nil {
-		t.Fatal(err)
-	}
-	for _, w := range []struct{ at, amplitude float64 }{{0.5, .5622825}, {1, .3265905}, {2, .1153819}, {3, .0418364}} {
-		run.advance(w.at * tau)
-		if a := run.x.amplitude(); math.Abs(a-w.amplitude) > 2e-3*w.amplitude { // first order in 1/Q
-			t.Errorf("amplitude %.7f after %g time constants, want %.7f", a, w.at, w.amplitude)
-		}
-	}
-}
-
-// TestFrequencyShift: the ring of a lossy core is slow while it is strong.
-func TestFrequencyShift(t *testing.T) {
-	const l, c, r = 1e-3, 1e-9, 20.0
-	f0 := 1 / (2 * math.Pi * math.Sqrt(l*c))
-	s := &Simulation{Bench: benchOf(Series, l, c, r, 0, 0, 0, 0), Interval: 1 / f0 / 400, Samples: 12000, Amplitude: 1, FrequencyShift: -0.01}
-	y := simulated(t, s)
-	// The amplitude is exp(-pi n/Q) after n cycles, and the shift in proportion to it.
-	for _, w := range []struct{ first, last int }{{0, 800}, {10000, 12000}} {
-		got, n := 400/crossings(y[w.first:w.last])-1, float64(w.first+w.last)/800
-		if want := -0.01 * math.Exp(-math.Pi*n/50); math.Abs(got-want) > 2e-4 {
-			t.Errorf("shift %g after %g cycles, want about %g", got, n, want)
-		}
-	}
-}
-
-// crossings returns the mean period in samples between zeros that fall.
-func crossings(y []float64) float64 {
-	var at []float64
-	for i := 1; i < len(y); i++ {
-		if y[i-1] > 0 && y[i] <= 0 {
-			at = append(at, float64(i-1)+y[i-1]/(y[i-1]-y[i]))
-		}
-	}
-	return (at[len(at)-1] - at[0]) / float64(len(at)-1)
-}
-
-// TestSecondMode adds the closed forms of two rings.
-func TestSecondMode(t *testing.T) {
-	const l, c, r, interval = 1e-3, 1e-9, 20.0, 2e-7
-	f2, q2 := 190e3, 33.0
-	s := &Simulation{Bench: benchOf(Series, l, c, r, 0, 0, 0, 0), Interval: interval, Samples: 900, Amplitude: 1,
-		Second: &SecondMode{Frequency: f2, Q: q2, Strength: 0.3}}
-	w2 := 2 * math.Pi * f2
-	for i, y := range simulated(t, s) {
-		at := float64(i) * interval
-		if want := fallen(r, l, c, at) + 0.3*fallen(w2/q2, 1, 1/(w2*w2), at); math.Abs(y-want) > 1e-9 {
-			t.Fatalf("sample %d is %.12f, want %.12f", i, y, want)
-		}
-	}
-}
-
-// TestSimulatedSweep: heights and half-power frequencies (derived).
-func TestSimulatedSweep(t *testing.T) {
-	for _, w := range []struct{ q, fC, peak, f1, f2 float64 }{
-		{2, .93541435, 2.065591, .78077641, 1.28077641}, {5, .98994949, 5.025189, .90498756, 1.10498756},
-		{50, .99989999, 50.002500, .99005000, 1.01005000}, {100, .99997500, 100.001250, .99501250, 1.00501250},
-	} {
-		const l, c = 10e-3, 10e-9
-		r := math.Sqrt(l/c) / w.q
-		f0 := 1 / (2 * math.Pi * math.Sqrt(l*c))
-		b := benchOf(Series, l, c, r, 0, 0, 0, 0)
-		gain := func(part capture.Part, x float64) float64 {
-			h, err := (&SweepSimulation{Bench: b, Frequencies: []float64{x * f0}, Across: part}).Sweep()
-			if err != nil {
-				t.Fatal(err)
-			}
-			return cmplx.Abs(h[0])
-		}
-		closeTo(t, "V_C at f0", gain(capture.Capacitor, 1), w.q, 1e-9)
-		closeTo(t, "V_L at f0", gain(capture.Inductor, 1), w.q, 1e-9)
-		closeTo(t, "V_R at f0", gain(capture.Resistor, 1), 1, 1e-9)
-		closeTo(t, "peak of V_C", gain("", w.fC), w.peak, 1e-6)
-		closeTo(t, "half power below", gain(capture.Resistor, w.f1), math.Sqrt(0.5), 1e-6)
-		closeTo(t, "half power above", gain(capture.Resistor, w.f2), math.Sqrt(0.5), 1e-6)
-		closeTo(t, "V_L/V_C", gain(capture.Inductor, 1.1)/gain(capture.Capacitor, 1.1), 1.21, 1e-9)
-		if notch := gain(capture.Both, 1); notch > 1e-9 {
-			t.Errorf("coil and capacitor together have %g at f0, want 0", notch)
-		}
-	}
 }
 
 // TestSimulatedNoise: standard deviation and correlation of neighbours; the
@@ -365,40 +274,4 @@ func TestComplete(t *testing.T) {
 	if s.Interval != 1e-7 || s.Samples != 2500 || s.Pretrigger != 200 || s.Amplitude != 0 {
 		t.Errorf("%+v", s)
 	}
-}
-
-// TestSimulatedSweepAtTheBound fits simulated sweeps: their scatter is the bound of
-// a driven sweep with magnitude and phase (derived), sd(Q)/Q =
-// (sigma/A) sqrt(8 df/(pi B)), 1.080 times more for a span of five half-bandwidths
-// either way.
-func TestSimulatedSweepAtTheBound(t *testing.T) {
-	const l, c, q, sigma, points, seeds = 10e-3, 10e-9, 100.0, 0.5, 201, 60
-	b := benchOf(Series, l, c, math.Sqrt(l/c)/q, 0, 0, 0, 0)
-	s := &SweepSimulation{Bench: b, Noise: sigma}
-	f0 := 1 / (2 * math.Pi * math.Sqrt(l*c))
-	var err error
-	if s.Frequencies, err = s.Around(5*f0/q, points); err != nil {
-		t.Fatal(err)
-	}
-	squares := 0.0
-	for seed := range uint64(seeds) {
-		s.Random = rand.New(rand.NewPCG(seed, 4))
-		h, err := s.Sweep()
-		if err != nil {
-			t.Fatal(err)
-		}
-		table := &capture.Sweep{Frequency: s.Frequencies, Part: capture.Capacitor, Unit: "V", Cartesian: true}
-		for _, v := range h {
-			table.Magnitude, table.Phase = append(table.Magnitude, cmplx.Abs(v)), append(table.Phase, cmplx.Phase(v))
-		}
-		r := driven.Analyze(table, driven.Options{})
-		if r.Quantities == nil {
-			t.Fatalf("refused: %v", r.Findings)
-		}
-		off := r.Quantities.Q.Value/q - 1
-		squares += off * off
-	}
-	want := 1.080 * sigma / q * math.Sqrt(8*5/math.Pi/(points-1))
-	// The scatter of a scatter from n values is 1/sqrt(2n): three times that.
-	closeTo(t, "scatter of Q over the bound", math.Sqrt(squares/seeds)/want, 1, 3/math.Sqrt(2*seeds))
 }
