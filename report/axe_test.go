@@ -39,18 +39,23 @@ func TestAccessible(t *testing.T) {
 	refused := loop07().ringDown()
 	refused.Result.Status, refused.Result.Quantities = "refused", nil
 	for name, page := range map[string]interface{ WritePage(io.Writer) error }{
-		"ring-down": loop07().ringDown(), "refused": refused, "devices": inventedDevices(t), "history": inventedHistory(t, "loop 07", 12),
+		"ring-down": measuredLoop(0.004, 0.1), "refused": refused, "several": measuredDecays(2), "two modes": records()["two-mode"],
+		"sweep": sweeps()["sweep"], "sweep refused": sweeps()["sweep-refused"], "cross-check": demoCheck(t, true), "set": coils(),
+		"devices": inventedDevices(t), "history": inventedHistory(t, "loop 07", 12),
 	} {
 		p := open(t, browser(t), page, 1280, 900, "light")
 		p.do(chromedp.Evaluate[chromedp.Void](script))
-		for _, scheme := range []string{"light", "dark"} {
-			p.do(p.scheme(scheme), rest)
+		for _, look := range []struct {
+			scheme string
+			width  int64
+		}{{"light", 1280}, {"dark", 1280}, {"light", 360}} {
+			p.do(p.scheme(look.scheme), chromedp.EmulateViewport(look.width, 900), rest)
 			found, err := chromedp.Run(p.ctx, chromedp.Evaluate[string](axeRun, func(e *runtime.EvaluateParams) { e.AwaitPromise = new(true) }))
 			if err != nil {
 				t.Fatal(err)
 			}
 			if found != "" {
-				t.Errorf("%s, %s:\n%s", name, scheme, strings.TrimSpace(found))
+				t.Errorf("%s, %s, %d pixels:\n%s", name, look.scheme, look.width, strings.TrimSpace(found))
 			}
 		}
 	}

@@ -20,16 +20,46 @@ type Components struct {
 	// RingDowns are the captures in their order and Added the part of each.
 	RingDowns []*RingDown
 	Added     []quantity.Quantity
-	// Result is nil when Err says why there is none.
-	Result *circuit.Components
-	Err    error
+	// Result is nil when a capture could not be read, or when Refusal says why there
+	// is none.
+	Result  *circuit.Components
+	Refusal error
+	// Limits is how the result stands to the limits of the bench file, nil without any.
+	Limits *circuit.Judgement
 	// Device is the name of the circuit, "" when nobody gave one.
 	Device string
+	// Origin says how the result was made; the page shows it.
+	Origin Origin
 }
 
-// Status is the worst of the captures and of the components.
+// Err says which captures could not be read, and why; nil when all were.
+func (c *Components) Err() error {
+	var all error
+	for _, r := range c.RingDowns {
+		switch {
+		case all == nil:
+			all = r.Err
+		case r.Err != nil:
+			all = fmt.Errorf("%w; %w", all, r.Err)
+		}
+	}
+	return all
+}
+
+func (c *Components) check() error {
+	if len(c.RingDowns) != len(c.Added) || c.Err() == nil && c.Result == nil && c.Refusal == nil {
+		return errors.New("report: components without a result or a reason for none")
+	}
+	return nil
+}
+
+// Status is the worst of the captures and of the components; "" when a capture could
+// not be read.
 func (c *Components) Status() decay.Status {
-	if c.Result == nil {
+	switch {
+	case c.Err() != nil:
+		return ""
+	case c.Result == nil:
 		return decay.Refused
 	}
 	return statusOf(decay.Good, c.Findings())
@@ -50,7 +80,7 @@ func (c *Components) Findings() []capture.Finding {
 
 type jsonComponents struct {
 	Schema      string             `json:"schema"`
-	Status      decay.Status       `json:"status"`
+	Status      string             `json:"status"`
 	Device      *string            `json:"device"`
 	Inductance  quantity.Quantity  `json:"inductance_h"`
 	Capacitance quantity.Quantity  `json:"capacitance_f"`
@@ -59,18 +89,22 @@ type jsonComponents struct {
 	ChiSquare   number             `json:"chi_square"`
 	Degrees     int                `json:"degrees_of_freedom"`
 	Damping     *jsonDamping       `json:"damping_network"`
+	Limits      *jsonLimits        `json:"limits,omitempty"` // with limits in the bench file
 	Findings    []capture.Finding  `json:"findings"`
 	Error       *jsonError         `json:"error,omitempty"`
 }
 
 type jsonComponentRow struct {
 	File             *string           `json:"file"`
+	SHA256           *string           `json:"sha256"`
 	Added            number            `json:"added"`
 	AddedU           number            `json:"added_u"`
 	NaturalFrequency quantity.Quantity `json:"natural_frequency_hz"`
 	DecayRate        quantity.Quantity `json:"decay_rate_per_s"`
 	Residual         number            `json:"residual"`
 	ResidualU        number            `json:"residual_u"`
+	Other            number            `json:"other_residual"`
+	OtherU           number            `json:"other_residual_u"`
 }
 
 type jsonDamping struct {
@@ -80,66 +114,84 @@ type jsonDamping struct {
 	Q           number            `json:"q"`
 }
 
-type jsonError struct {
-	Message string `json:"message"`
-}
-
 // WriteJSON writes the components as one line of JSON, schema
-// dieaway.components.v1. Without a result its numbers are null.
+// dieaway.components.v1. Without a result its numbers are null, and the error says why.
 func (c *Components) WriteJSON(w io.Writer) error {
-	if c.Result == nil && c.Err == nil {
-		return errors.New("report: components without a result or an error")
+	if err := c.check(); err != nil {
+		return err
 	}
-	out := &jsonComponents{Schema: schemaComponents, Status: c.Status(), Device: orNull(c.Device), Rows: []jsonComponentRow{},
-		Inductance: unknown, Capacitance: unknown, Resistance: unknown, ChiSquare: number(unknown.Value), Findings: c.Findings()}
+	out := &jsonComponents{Schema: schemaComponents, Status: string(c.Status()), Device: orNull(c.Device), Rows: []jsonComponentRow{},
+		Inductance: unknown, Capacitance: unknown, Resistance: unknown, ChiSquare: number(unknown.Value),
+		Limits: limitsJSON(c.Limits), Findings: c.Findings()}
 	for i, r := range c.RingDowns {
 		out.Rows = append(out.Rows, c.rowJSON(i, r))
+	}
+	reason := c.Refusal
+	if err := c.Err(); err != nil {
+		out.Status, reason = "unreadable", err
 	}
 	if res := c.Result; res != nil {
 		out.Inductance, out.Capacitance, out.Resistance = res.Inductance, res.Capacitance, res.Resistance
 		out.ChiSquare, out.Degrees = number(res.ChiSquare), res.Degrees
 		out.Damping = &jsonDamping{res.Damping.Resistance, res.Damping.Capacitance, res.Damping.Most, number(res.Damping.Q)}
 	} else {
-		out.Error = &jsonError{c.Err.Error()}
+		e := errorJSON(reason)
+		out.Error = &e
 	}
 	return writeLine(w, out)
 }
 
 func (c *Components) rowJSON(i int, r *RingDown) jsonComponentRow {
-	row := jsonComponentRow{File: orNull(r.file()), Added: number(c.Added[i].Value), AddedU: number(c.Added[i].U),
-		NaturalFrequency: unknown, DecayRate: unknown, Residual: number(unknown.Value), ResidualU: number(unknown.U)}
+	row := jsonComponentRow{File: orNull(r.file()), SHA256: orNull(r.sha256()), Added: number(c.Added[i].Value), AddedU: number(c.Added[i].U),
+		NaturalFrequency: unknown, DecayRate: unknown}
+	residual, other := unknown, unknown
 	if r.Result != nil && !r.refused() {
 		row.NaturalFrequency, row.DecayRate = r.Result.Quantities.NaturalFrequency, r.Result.Quantities.DecayRate
 	}
 	if c.Result != nil {
-		row.Residual, row.ResidualU = number(c.Result.Rows[i].Residual.Value), number(c.Result.Rows[i].Residual.U)
+		residual, other = c.Result.Rows[i].Residual, c.Result.Rows[i].Other
 	}
+	row.Residual, row.ResidualU, row.Other, row.OtherU = number(residual.Value), number(residual.U), number(other.Value), number(other.U)
 	return row
+}
+
+// componentResults are the values found, and the resistor that would damp the ring.
+func componentResults(r *circuit.Components) []row {
+	return []row{
+		{"inductance", "L", "", "", r.Inductance}, {"own capacitance", "C", "", "", r.Capacitance},
+		{"series resistance", "R", "", "", r.Resistance}, {"resistor to damp it", "R", "", "d", r.Damping.Resistance}}
 }
 
 // WriteSummary writes the components for people: the values, a line for each
 // capture, the damping network that follows, and the findings.
 func (c *Components) WriteSummary(w io.Writer, style Style) error {
+	if err := c.check(); err != nil {
+		return err
+	}
 	s := newSummary(w, style)
+	if err := c.Err(); err != nil {
+		s.unreadable(err)
+		return s.Flush()
+	}
 	s.status(c.Status(), c.verdict())
 	s.item("  ", prefixed(c.Device)+plural(len(c.RingDowns), "capture"))
-	s.WriteString("\n")
 	if r := c.Result; r != nil {
-		for _, row := range []row{
-			{"inductance", "L", "", "", r.Inductance}, {"own capacitance", "C", "", "", r.Capacitance},
-			{"series resistance", "R", "", "", r.Resistance}} {
+		s.WriteString("\n")
+		for _, row := range componentResults(r)[:3] {
 			s.quantity(row)
 		}
 		s.componentRows(c)
-		s.damping(&r.Damping)
+		s.WriteString("\n")
+		s.item(label("to damp it"), dampingLine(&r.Damping))
 	}
+	s.limits(c.Limits)
 	s.findings(c.Findings())
 	return s.Flush()
 }
 
 func (c *Components) verdict() string {
 	if c.Result == nil {
-		return clean(c.Err.Error(), 0)
+		return clean(c.Refusal.Error(), 0)
 	}
 	return verdictOf(c.Findings())
 }
@@ -150,19 +202,26 @@ func (s *summary) componentRows(c *Components) {
 	for i, row := range c.Result.Rows {
 		off := row.Residual
 		fmt.Fprintf(s, "  %s %s %s %s %s\n", pad(row.Added.String(), 14), pad(row.NaturalFrequency.String(), 21),
-			pad(row.DecayRate.String(), 19), pad(quantity.Percent(off.Value), 10), fmt.Sprintf("%+.1f", off.Value/off.U))
+			pad(row.DecayRate.String(), 19), pad(quantity.Percent(off.Value), 10), inU(off))
 		s.item("    ", clean(c.RingDowns[i].file(), nameLength))
 	}
-	s.item(label("residuals"), fmt.Sprintf("chi-square %.3g with %s of freedom", c.Result.ChiSquare, plural(c.Result.Degrees, "degree")))
+	s.item(label("residuals"), chiSquareLine(c.Result))
 }
 
-// damping writes the network for a node that rings when it should not.
-func (s *summary) damping(d *circuit.DampingNetwork) {
-	s.WriteString("\n")
+// inU is a residual in units of its standard uncertainty.
+func inU(q quantity.Quantity) string { return fmt.Sprintf("%+.1f", round(q.Value/q.U, 1)) }
+
+// chiSquareLine says how well the captures go together.
+func chiSquareLine(r *circuit.Components) string {
+	return fmt.Sprintf("chi-square %.3g with %s of freedom", r.ChiSquare, plural(r.Degrees, "degree"))
+}
+
+// dampingLine says which network damps a node that rings when it should not.
+func dampingLine(d *circuit.DampingNetwork) string {
 	left := "nothing rings any more"
 	if d.Q > 0 {
 		left = fmt.Sprintf("a Q of %.2g is left", d.Q)
 	}
-	s.item(label("to damp it"), fmt.Sprintf("%s in series with %s to %s across the capacitance that rings; with the smaller one %s",
-		quantity.Format(d.Resistance.Value, "ohm", 3), quantity.Format(d.Capacitance.Value, "F", 3), quantity.Format(d.Most.Value, "F", 3), left))
+	return fmt.Sprintf("%s in series with %s to %s across the capacitance that rings; with the smaller one %s",
+		quantity.Format(d.Resistance.Value, "ohm", 3), quantity.Format(d.Capacitance.Value, "F", 3), quantity.Format(d.Most.Value, "F", 3), left)
 }

@@ -11,7 +11,7 @@ type Filed struct {
 	// Name is the entry's folder, beside the page.
 	Name string
 	Made time.Time
-	// Kind is "ringdown", "sweep", "crosscheck" or "unknown", Status the verdict on
+	// Kind is "ringdown", "sweep", "crosscheck", "components" or "unknown", Status the verdict on
 	// the result, Verdict that on its limits ("" without any), File what was measured.
 	Kind, Status, Verdict, File string
 	// The quantities in Hz, 1 and s; unknown when withheld.

@@ -107,16 +107,28 @@ type jsonReadings struct {
 }
 
 type jsonUnreadable struct {
-	Schema string  `json:"schema"`
-	Status string  `json:"status"`
-	File   *string `json:"file"`
-	SHA256 *string `json:"sha256"`
-	Device *string `json:"device"`
-	Error  struct {
-		Message string `json:"message"`
-		Line    *int   `json:"line"`
-		Column  *int   `json:"column"`
-	} `json:"error"`
+	Schema string    `json:"schema"`
+	Status string    `json:"status"`
+	File   *string   `json:"file"`
+	SHA256 *string   `json:"sha256"`
+	Device *string   `json:"device"`
+	Error  jsonError `json:"error"`
+}
+
+// A jsonError says why there is no result, and where in the file that is.
+type jsonError struct {
+	Message string `json:"message"`
+	Line    *int   `json:"line"`
+	Column  *int   `json:"column"`
+}
+
+func errorJSON(err error) jsonError {
+	out := jsonError{Message: err.Error()}
+	var e *capture.Error
+	if errors.As(err, &e) {
+		out.Line, out.Column = placeOrNull(e.Line), placeOrNull(e.Column)
+	}
+	return out
 }
 
 // A number is null in JSON when it is not finite.
@@ -183,13 +195,7 @@ func readingsJSON(r decay.Readings) (out jsonReadings) {
 
 // unreadable says why there is no result; the schema is that of the result.
 func unreadable(schema, file, sha256, device string, err error) *jsonUnreadable {
-	out := &jsonUnreadable{Schema: schema, Status: "unreadable", File: orNull(file), SHA256: orNull(sha256), Device: orNull(device)}
-	out.Error.Message = err.Error()
-	var e *capture.Error
-	if errors.As(err, &e) {
-		out.Error.Line, out.Error.Column = placeOrNull(e.Line), placeOrNull(e.Column)
-	}
-	return out
+	return &jsonUnreadable{Schema: schema, Status: "unreadable", File: orNull(file), SHA256: orNull(sha256), Device: orNull(device), Error: errorJSON(err)}
 }
 
 func orNull(s string) *string {

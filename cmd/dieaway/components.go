@@ -1,10 +1,10 @@
 package main
 
 import (
-	"bufio"
 	"context"
 	"errors"
 	"fmt"
+	"io"
 	"math"
 	"strings"
 
@@ -14,6 +14,7 @@ import (
 	"dieaway/decay/circuit"
 	"dieaway/decay/quantity"
 	"dieaway/report"
+	"dieaway/report/archive"
 )
 
 func componentsCommand() *cli.Command {
@@ -26,29 +27,24 @@ func componentsCommand() *cli.Command {
 			"with 0 for the circuit as it is. A tolerance makes the result honest: \"0,100p +- 1 %\".\n\n" +
 			"Examples:\n" +
 			"   dieaway components --added-capacitance '0, 220p +- 1 %, 470p +- 1 %' node.csv node-220p.csv node-470p.csv\n" +
-			"   dieaway components --added-resistance 0,10,33 --bench loop07.toml ring.csv ring-10.csv ring-33.csv",
+			"   dieaway components --added-resistance 0,10,33 --bench loop07.toml -o coil.html ring.csv ring-10.csv ring-33.csv",
 		Flags: append([]cli.Flag{
 			&cli.StringFlag{Name: "added-capacitance", Usage: "the capacitor of each capture, as `0,100p,220p`"},
 			&cli.StringFlag{Name: "added-resistance", Usage: "the resistor of each capture, as `0,10,33`"},
-		}, without(fitFlags(), "report", "archive", "explain")...),
+		}, fitFlags()...),
 		Action:          components,
 		OnUsageError:    usageError,
 		HideHelpCommand: true,
 	}
 }
 
-// without returns flags but for those named.
-func without(flags []cli.Flag, names ...string) (out []cli.Flag) {
-	for _, f := range flags {
-		keep := true
-		for _, n := range names {
-			keep = keep && f.Names()[0] != n
-		}
-		if keep {
-			out = append(out, f)
-		}
-	}
-	return out
+// A componentsJob is a job over all captures at once.
+type componentsJob struct {
+	*job
+	circuit   *circuit.Bench // nil without one
+	captures  []source
+	added     []quantity.Quantity
+	resistors bool
 }
 
 func components(c *cli.Context) error {
@@ -60,32 +56,21 @@ func components(c *cli.Context) error {
 	if err := checkFiles("capture", files); err != nil {
 		return err
 	}
-	added, resistors, err := parseAdded(c, len(files))
-	if err != nil {
+	k := &componentsJob{job: j}
+	if k.added, k.resistors, err = parseAdded(c, len(files)); err != nil {
 		return err
 	}
-	bench, err := parseBench(c)
-	if err != nil {
+	if k.circuit, err = parseBench(c); err != nil {
 		return err
 	}
-	j.useBench(bench)
+	j.inputs = files
+	j.useBench(k.circuit)
 	j.bench = nil // it belongs to the circuit without the added parts
 	for _, name := range files {
-		j.sources = append(j.sources, j.source(name))
+		k.captures = append(k.captures, j.source(name))
 	}
-	out := &report.Components{Added: added, Device: j.device}
-	code, err := j.measureAll(c.Context, out)
-	if err != nil {
-		return err
-	}
-	if out.Err == nil {
-		out.Result, out.Err = circuit.FindComponents(bench, addedRows(out, resistors))
-		if out.Err != nil {
-			say(j.stderr, out.Err)
-			code = exitRefused
-		}
-	}
-	return j.deliverComponents(out, code)
+	j.sources = k.captures[:1] // all of them make one result
+	return j.runAll(c.Context, "captures", func(source) measured { return k.measure(c.Context) })
 }
 
 // parseAdded reads the values of the added parts, one for each of n captures.
@@ -116,31 +101,53 @@ func parseAdded(c *cli.Context, n int) (values []quantity.Quantity, resistors bo
 	return values, resistors, nil
 }
 
-// measureAll reads and analyses all captures; the error is that of an interrupt,
-// the code that of the worst capture, and what is missing is in the result's Err.
-func (j *job) measureAll(ctx context.Context, out *report.Components) (code int, err error) {
-	work := startAhead(ctx, j.sources, j.ringDown)
-	var bad []string
-	for i, s := range j.sources {
+// measure reads and analyses all captures and finds the components.
+func (k *componentsJob) measure(ctx context.Context) measured {
+	k.read.Progress = nil // of several files at once
+	out := &report.Components{Added: k.added, Device: k.device, Origin: k.origin}
+	m := measured{evidence: out}
+	work := startAhead(ctx, k.captures, k.ringDown)
+	var explain []func(io.Writer) error
+	for i := range k.captures {
 		r, ok := work.next(ctx, i)
 		if !ok {
-			return exitFailed, errors.New("interrupted")
+			m.err = errors.New("interrupted")
+			return m
 		}
 		work.done()
-		if r.Err != nil {
-			say(j.stderr, r.Err)
+		one := ofRingDown(r)
+		for _, f := range one.files {
+			f.kind = archive.KindOf(f.kind, i)
+			m.files = append(m.files, f)
 		}
-		if r.Err != nil || r.Status() == decay.Refused {
-			bad = append(bad, s.name)
-			code = max(code, j.exitCode(ofRingDown(r)))
-		}
+		explain = append(explain, one.explain)
 		out.RingDowns = append(out.RingDowns, r)
 	}
-	if len(bad) > 0 {
-		out.Err = fmt.Errorf("no components: every capture is needed, and there is no result of %s", strings.Join(bad, ", "))
-		say(j.stderr, out.Err)
+	if m.err = out.Err(); m.err != nil {
+		return m
 	}
-	return code, nil
+	m.explain = inTurn(explain...)
+	k.find(out)
+	m.verdict = verdictOf(out.Limits)
+	return m
+}
+
+// find works out the components of captures that were read.
+func (k *componentsJob) find(out *report.Components) {
+	var without []string
+	for i, r := range out.RingDowns {
+		if r.Status() == decay.Refused {
+			without = append(without, k.captures[i].name)
+		}
+	}
+	if len(without) > 0 {
+		out.Refusal = fmt.Errorf("every capture is needed, and there is no result of %s", strings.Join(without, ", "))
+	} else {
+		out.Result, out.Refusal = circuit.FindComponents(k.circuit, addedRows(out, k.resistors))
+	}
+	if k.circuit != nil {
+		out.Limits = k.circuit.Limits.JudgeComponents(out.Result)
+	}
 }
 
 func addedRows(c *report.Components, resistors bool) (rows []circuit.Added) {
@@ -153,25 +160,4 @@ func addedRows(c *report.Components, resistors bool) (rows []circuit.Added) {
 		rows = append(rows, row)
 	}
 	return rows
-}
-
-func (j *job) deliverComponents(c *report.Components, code int) error {
-	out := bufio.NewWriter(j.stdout)
-	var err error
-	switch {
-	case j.json:
-		err = c.WriteJSON(out)
-	case !j.quiet && c.Result != nil:
-		err = c.WriteSummary(out, j.style)
-	}
-	if err = errors.Join(err, out.Flush()); err != nil {
-		return err
-	}
-	if j.strict && c.Status() == decay.Doubtful {
-		code = max(code, exitWarning)
-	}
-	if code != exitDone {
-		return &exitError{Code: code}
-	}
-	return nil
 }

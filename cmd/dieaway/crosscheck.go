@@ -31,8 +31,8 @@ func crosscheckCommand() *cli.Command {
 
 // crosscheckFlags are those of fit and of sweep, each once.
 func crosscheckFlags() []cli.Flag {
-	flags := without(fitFlags(), "explain")
-	for _, f := range without(sweepFlags(), "explain") {
+	flags := fitFlags()
+	for _, f := range sweepFlags() {
 		if !slices.ContainsFunc(flags, func(g cli.Flag) bool { return g.Names()[0] == f.Names()[0] }) {
 			flags = append(flags, f)
 		}
@@ -79,6 +79,7 @@ func (j *sweepJob) crosscheck(ring, sweep source) measured {
 		return m
 	}
 	m.files = append(fileOf(r.RingDown.Capture), measuredFile{"sweep", r.Sweep.Table.File, r.Sweep.Table.SHA256})
+	m.explain = inTurn(r.RingDown.Capture.Explain, r.Sweep.Table.Explain)
 	r.Check = circuit.Compare(j.bench, r.RingDown.Result, r.Sweep.Result)
 	m.verdict = verdictOf(r.RingDown.Limits)
 	if r.Check.Compared() && !r.Check.Agrees {

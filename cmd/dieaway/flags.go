@@ -47,6 +47,11 @@ func fitFlags() []cli.Flag {
 	}, evidenceFlags()...)
 }
 
+// without returns flags but for those named.
+func without(flags []cli.Flag, names ...string) []cli.Flag {
+	return slices.DeleteFunc(flags, func(f cli.Flag) bool { return slices.Contains(names, f.Names()[0]) })
+}
+
 var (
 	models    = []string{"auto", string(decay.Exponential), string(decay.Amplitude), string(decay.TwoMode)}
 	timeUnits = []string{"s", "ms", "us", "ns", "ps"}

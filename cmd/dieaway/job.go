@@ -14,7 +14,7 @@ import (
 	"dieaway/report"
 )
 
-// A job is what one command line asks for: the same for fit and demo.
+// A job is what one command line asks for: the same for all commands that measure.
 type job struct {
 	sources  []source
 	read     capture.Options
@@ -57,8 +57,8 @@ func (j *job) source(name string) source {
 	}}
 }
 
-// A measured is one file with its result, and what is needed to deliver it: the
-// same for ring-downs, sweeps and cross-checks.
+// A measured is one result with its files, and what is needed to deliver it: the
+// same for ring-downs, sweeps, cross-checks and components.
 type measured struct {
 	evidence
 	err     error // why there is no result
@@ -83,6 +83,21 @@ func ofRingDown(r *report.RingDown) measured {
 		m.explain = r.Capture.Explain
 	}
 	return m
+}
+
+// inTurn explains several files, one after the other.
+func inTurn(all ...func(io.Writer) error) func(io.Writer) error {
+	return func(out io.Writer) error {
+		for i, explain := range all {
+			if i > 0 {
+				fmt.Fprintln(out)
+			}
+			if err := explain(out); err != nil {
+				return err
+			}
+		}
+		return nil
+	}
 }
 
 func verdictOf(j *circuit.Judgement) circuit.Verdict {

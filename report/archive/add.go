@@ -46,7 +46,7 @@ type Entry struct {
 
 // A Source is one file that was measured.
 type Source struct {
-	// Kind is the stem of its name in the entry, "capture" or "sweep".
+	// Kind is the stem of its name in the entry, "capture" or "sweep"; see [KindOf].
 	Kind string
 	// Name is the file's name as it was given, for its ending.
 	Name string
@@ -54,6 +54,15 @@ type Source struct {
 	SHA256 string
 	// Open returns those bytes.
 	Open func() (io.ReadCloser, error)
+}
+
+// KindOf is the kind of file number i (from 0) of several of one kind: "capture",
+// "capture-2", "capture-3".
+func KindOf(kind string, i int) string {
+	if i == 0 {
+		return kind
+	}
+	return fmt.Sprintf("%s-%d", kind, i+1)
 }
 
 // Add files an entry of the device in the archive dir, which it makes when it is

@@ -108,6 +108,9 @@ func (r *Record) take(o object) {
 			q = inner
 		}
 	}
+	if rows := o.objects("rows"); r.File == "" && len(rows) > 0 { // components hold a row for each capture
+		r.File, r.SHA256 = rows[0].text("file"), rows[0].text("sha256")
+	}
 	r.NaturalFrequency = q.quantity("natural_frequency_hz", "Hz")
 	r.Q = q.quantity("q", "")
 	r.TimeConstant = q.quantity("time_constant_s", "s")
@@ -115,9 +118,7 @@ func (r *Record) take(o object) {
 
 // takeLimits reads the limits of the three quantities that are followed.
 func (r *Record) takeLimits(limits object) {
-	var checks []object
-	_ = json.Unmarshal(limits["checks"], &checks)
-	for _, c := range checks {
+	for _, c := range limits.objects("checks") {
 		limit := report.Limits{Min: c.number("min"), Max: c.number("max")}
 		switch c.text("quantity") {
 		case "natural_frequency_hz":
@@ -144,6 +145,11 @@ type object map[string]json.RawMessage
 func (o object) object(key string) (inner object) {
 	_ = json.Unmarshal(o[key], &inner)
 	return inner
+}
+
+func (o object) objects(key string) (all []object) {
+	_ = json.Unmarshal(o[key], &all)
+	return all
 }
 
 func (o object) text(key string) (s string) {

@@ -130,26 +130,19 @@ func (v *verifier) file(path, want string) {
 	}
 }
 
-// capture makes sure that the capture is the one that was measured.
+// capture makes sure that what was measured are the files that the entry's name and
+// its result are of.
 func (v *verifier) capture(path string, sums map[string]string) {
-	name := ""
-	for _, n := range sortedKeys(sums) {
-		if strings.HasPrefix(n, "capture.") {
-			name = n
-		}
-	}
+	name := fileOfKind(sums, "capture")
 	if name == "" {
 		v.problem(filepath.Join(path, sumsName), "altered", "it lists no capture")
 		return
 	}
-	_, head, _ := parseName(filepath.Base(path))
-	file := filepath.Join(v.dir, path, name)
-	stored, err := digestOf(file)
-	if err != nil {
+	stored, inner := v.digests(filepath.Join(path, name))
+	if stored == "" {
 		return // said already
 	}
-	inner, _ := contentDigest(file) // "" of what is not compressed text
-	if !strings.HasPrefix(stored, head) && !strings.HasPrefix(inner, head) {
+	if _, head, _ := parseName(filepath.Base(path)); !strings.HasPrefix(stored, head) && !strings.HasPrefix(inner, head) {
 		v.problem(filepath.Join(path, name), "altered", "it is not the capture that the entry is named after: SHA-256 %s", inner)
 	}
 	text, err := os.ReadFile(filepath.Join(v.dir, path, resultName))
@@ -158,9 +151,45 @@ func (v *verifier) capture(path string, sums map[string]string) {
 	}
 	var o object
 	_ = json.Unmarshal(text, &o)
-	if want := o.text("sha256"); want != "" && want != stored && want != inner {
-		v.problem(filepath.Join(path, resultName), "altered", "it is the result of another capture: SHA-256 %s", want)
+	measured := measuredFiles(o)
+	for _, kind := range sortedKeys(measured) {
+		want := measured[kind]
+		if name := fileOfKind(sums, kind); want != "" && name != "" {
+			if stored, inner := v.digests(filepath.Join(path, name)); stored != "" && want != stored && want != inner {
+				v.problem(filepath.Join(path, resultName), "altered", "it is the result of another %s: SHA-256 %s", kind, want)
+			}
+		}
 	}
+}
+
+// digests are those of a file and of what it holds compressed, "" where there is none.
+func (v *verifier) digests(path string) (stored, inner string) {
+	stored, _ = digestOf(filepath.Join(v.dir, path))
+	inner, _ = contentDigest(filepath.Join(v.dir, path))
+	return stored, inner
+}
+
+// fileOfKind returns the name of a file that was measured, "" without one.
+func fileOfKind(sums map[string]string, kind string) (name string) {
+	for _, n := range sortedKeys(sums) {
+		if strings.HasPrefix(n, kind+".") {
+			name = n
+		}
+	}
+	return name
+}
+
+// measuredFiles are the digests of the files that a result says it is of, by their
+// kind: a cross-check is of two, components of several captures.
+func measuredFiles(o object) map[string]string {
+	files := map[string]string{"capture": o.text("sha256")}
+	if ring := o.object("ringdown"); ring != nil {
+		files["capture"], files["sweep"] = ring.text("sha256"), o.object("sweep").text("sha256")
+	}
+	for i, row := range o.objects("rows") {
+		files[KindOf("capture", i)] = row.text("sha256")
+	}
+	return files
 }
 
 // readSums reads the checksums of an entry by file name.

@@ -1,6 +1,9 @@
 package archive
 
 import (
+	"crypto/sha256"
+	"fmt"
+	"io"
 	"os"
 	"path/filepath"
 	"strings"
@@ -65,6 +68,44 @@ func TestVerifyNamesForgery(t *testing.T) {
 	v, err := Verify(dir)
 	if err != nil || len(v.Problems) != 1 || v.Problems[0].What != "altered" || !strings.HasSuffix(v.Problems[0].Path, "capture.csv.gz") {
 		t.Errorf("%+v, %v", v, err)
+	}
+}
+
+// TestVerifyNamesExchanged: one of several files that were measured is exchanged, with its
+// checksum; the result, of a cross-check or of components, is of another file.
+func TestVerifyNamesExchanged(t *testing.T) {
+	for second, result := range map[string]string{
+		"sweep":     `{"schema":"dieaway.crosscheck.v1","status":"good","ringdown":{"sha256":%[1]q},"sweep":{"sha256":%[2]q}}`,
+		"capture-2": `{"schema":"dieaway.components.v1","status":"good","rows":[{"file":"a.csv","sha256":%[1]q},{"file":"b.csv","sha256":%[2]q}]}`,
+	} {
+		dir := t.TempDir()
+		e, other := entryOf("loop", 0), entryOf("loop", 1)
+		also := other.Sources[0]
+		also.Kind = second
+		e.Sources = append(e.Sources, also)
+		e.Result = func(w io.Writer) error {
+			_, err := fmt.Fprintf(w, result, e.Sources[0].SHA256, also.SHA256)
+			return err
+		}
+		folder, err := Add(dir, "loop", e)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if v, err := Verify(dir); err != nil || len(v.Problems) != 0 || v.Files != 4 {
+			t.Fatalf("%s: %+v, %v", second, v, err)
+		}
+		name := second + ".csv.gz"
+		old, changed := readFile(t, folder, name), readFile(t, folder, "capture.csv.gz")
+		sums := strings.Replace(string(readFile(t, folder, "SHA256SUMS")), fmt.Sprintf("%x  %s", sha256.Sum256(old), name), fmt.Sprintf("%x  %s", sha256.Sum256(changed), name), 1)
+		for name, text := range map[string][]byte{name: changed, "SHA256SUMS": []byte(sums)} {
+			if err := os.WriteFile(filepath.Join(folder, name), text, 0o666); err != nil {
+				t.Fatal(err)
+			}
+		}
+		v, err := Verify(dir)
+		if err != nil || len(v.Problems) != 1 || v.Problems[0].What != "altered" || !strings.Contains(v.Problems[0].Why, "the result of another "+second) {
+			t.Errorf("%s: %+v, %v", second, v, err)
+		}
 	}
 }
 
