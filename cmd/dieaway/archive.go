@@ -138,6 +138,9 @@ func (j *job) keep(m measured) error {
 
 // again opens a file that was measured once more.
 func (j *job) again(name string) func() (io.ReadCloser, error) {
+	if j.builtIn != nil {
+		return func() (io.ReadCloser, error) { return io.NopCloser(bytes.NewReader(j.builtIn)), nil }
+	}
 	if name != "-" {
 		return func() (io.ReadCloser, error) { return os.Open(name) }
 	}

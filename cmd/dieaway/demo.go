@@ -31,11 +31,13 @@ func demoCommand() *cli.Command {
 		Usage:     "do the whole job on a built-in capture; writes " + demoPage,
 		UsageText: "dieaway demo [flags]",
 		Description: "Measures the simulated ring-down of " + demoDevice + ", a 125 kHz loop antenna, with the same\n" +
-			"code as fit, prints the summary and writes the page into the current folder.\n\n" +
+			"code as fit, prints the summary and writes the page into the current folder. The flags are\n" +
+			"those of fit that do not name what is in the file.\n\n" +
 			"Examples:\n" +
 			"   dieaway demo\n" +
-			"   dieaway demo -o first.html",
-		Flags:           outputFlags(),
+			"   dieaway demo -o first.html\n" +
+			"   dieaway demo --device 'my first loop' --archive evidence",
+		Flags:           evidenceFlags(),
 		Action:          demo,
 		OnUsageError:    usageError,
 		HideHelpCommand: true,
@@ -53,7 +55,15 @@ func demo(c *cli.Context) error {
 	if j.page == "" {
 		j.page = demoPage
 	}
-	j.device = demoDevice
+	b, err := parseBench(c)
+	if err != nil {
+		return err
+	}
+	j.useBench(b)
+	if j.device == "" {
+		j.device = demoDevice
+	}
+	j.builtIn = loop07
 	j.sources = []source{{demoFile, func(opt capture.Options) (*capture.Capture, error) {
 		return capture.Read(bytes.NewReader(loop07), demoFile, opt)
 	}}}

@@ -22,7 +22,7 @@ func outputFlags() []cli.Flag {
 	}
 }
 
-// evidenceFlags are the flags of fit and sweep, which measure one thing a file.
+// evidenceFlags are the flags of every command whose result is evidence to keep.
 func evidenceFlags() []cli.Flag {
 	return append([]cli.Flag{
 		&cli.StringFlag{Name: "device", Usage: "the `NAME` of what was measured"},

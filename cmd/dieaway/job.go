@@ -27,6 +27,7 @@ type job struct {
 	page     string         // name of the page of evidence, "" for none
 	archive  string         // folder to file results in, "" for none
 	piped    *bytes.Buffer  // what came from standard input, for the archive
+	builtIn  []byte         // what is measured in place of a file, likewise
 	json     bool
 	quiet    bool
 	strict   bool
