@@ -58,7 +58,7 @@ func (d *layoutDesign) brokenRow() *Error {
 	if heading == 0 {
 		return nil
 	}
-	for _, l := range h.lines[heading:h.first] {
+	for _, l := range h.lines[h.index(heading)+1 : h.first] {
 		cells := h.split(l.text, nil)
 		if isComment(l.text) || startsWithKey(cells) {
 			continue
@@ -275,6 +275,11 @@ func (d *layoutDesign) needInterval() *Error {
 	col := max(0, slices.IndexFunc(d.columns, func(c column) bool { return c.Role == RoleChannel }))
 	if d.declared(col).ok {
 		return nil
+	}
+	for _, m := range []meaning{meansInterval, meansRate} {
+		if v, line := d.preamble.find(m); v != "" {
+			return &Error{Err: ErrNoTime, Line: line, Found: quote(v) + " for the sampling interval or rate", Expected: "a number greater than zero with its unit, or --interval"}
+		}
 	}
 	found := "no time column"
 	if i := firstWithRole(d.columns, RoleIndex); i >= 0 {

@@ -217,7 +217,7 @@ func (h *head) dropNumbering() {
 		_, even := (&column{values: c.values[1:]}).rises()
 		if step := medianStep(c.values[1:]); even && math.Abs(c.values[1]-c.values[0]-step) > 0.5*step {
 			h.sample = h.sample[1:]
-			h.first = slices.IndexFunc(h.lines, func(l line) bool { return l.number == h.sample[0].line.number })
+			h.first = h.index(h.sample[0].line.number)
 			return
 		}
 	}
@@ -256,6 +256,12 @@ func (h *head) look(col int) *column {
 		}
 	})
 	return c
+}
+
+// index is the place in lines of the line with a number.
+func (h *head) index(number int) int {
+	i, _ := slices.BinarySearchFunc(h.lines, number, func(l line, n int) int { return l.number - n })
+	return i
 }
 
 // preambleLines are the lines above the first row.

@@ -66,6 +66,11 @@ func texts() []string {
 		"time\tV\tremark\n" + lines(8, func(i int) string { return at(i, 4, 3) + "us\t--- \t\"a\tb\"" }),
 		"t,a,b,c\n" + lines(8, func(i int) string { return `"1,00` + at(i, 1, 0) + `.5",1,0,` }),
 		"CH1\n\r\r\n" + lines(8, func(i int) string { return "17" }),
+		"a (us),A,b (us),B\n" + lines(12, func(i int) string { return short(i) + []string{"," + short(i), ",,", ""}[i/5] }),
+		"\"t\n(us)\",\"V\n(mV)\"\n" + lines(8, func(i int) string { return "[" + at(i, 1.5, 1) + ", \u22121.2D-3]," }),
+		"t;V\n" + lines(40, func(i int) string { return "23:59:59," + at(7+i/2, 1, 0) + ";" + at(i%2, 1.5, 1) }),
+		"0,1\n" + lines(8, func(i int) string { return "\"" + at(i, 1, 0) + ".000,5\";1 234,5 mV" }),
+		"t V\n" + lines(8, func(i int) string { return at(i, 1, 0) + ",5 us 0" + at(i, 1, 0) + ",25 mV" }),
 		"1 0.1 2 0.3\n2 0.1 3 0.4\n3 0.1 1 0.2\n4 0.1 2 0.3\n5 0.1 3 0.4\n6 0.1 1 0.2\n",
 		"\x1f\x8b\x08\x00", "PK\x03\x04", "%PDF", "", "\n\n", "a,b\n", "1\n", ",,,\n,,,\n", "time,V\n1,2\n1,3\n0,4\n",
 	}

@@ -195,6 +195,16 @@ func (p *preamble) text(m meaning, col int) (string, unit, bool) {
 	return best.text, u, true
 }
 
+// find returns the first value of an entry, and its line.
+func (p *preamble) find(m meaning) (string, int) {
+	for i := range p.entries {
+		if e := &p.entries[i]; e.means == m && len(e.values) > 0 {
+			return e.values[0].text, e.line
+		}
+	}
+	return "", 0
+}
+
 // A declared number is a value the preamble gives, in SI units, and half a
 // unit of its last printed digit.
 type declared struct {

@@ -136,10 +136,11 @@ func (t *sweepTable) readRows(text []byte) *Error {
 // row of numbers: the second row of a short table, with a word in it.
 func (t *sweepTable) brokenSecond() *Error {
 	n := t.heading.namesLine
-	if n < 2 || !t.head.fits(t.head.split(t.head.lines[n-2].text, nil)) {
+	at := t.head.index(n)
+	if n == 0 || at == 0 || !t.head.fits(t.head.split(t.head.lines[at-1].text, nil)) {
 		return nil
 	}
-	for i, c := range t.head.split(t.head.lines[n-1].text, nil) {
+	for i, c := range t.head.split(t.head.lines[at].text, nil) {
 		if t.head.kindOf(c) == kindText {
 			return &Error{Err: ErrSyntax, Line: n, Column: i + 1, Found: quote(string(c.text)), Expected: "a number"}
 		}
