@@ -62,9 +62,14 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 	if b := g.fit.bend; b != nil {
 		out = append(out, dependsOnAmplitude(d, b))
 	}
-	if v.factor(g.fit.w) > 1.5 {
+	switch dense := v.factor(g.fit.w); {
+	case dense > 2 && d.Cycles < chanceCycles:
+		out = append(out, warning(capture.ColouredNoise,
+			fmt.Sprintf("The noise is %.2g times as dense at the ring's frequency as white noise of the same size, and there are %.2g cycles: slow noise may pass for so short a ring, or pull it.", dense, d.Cycles),
+			"Raise the amplitude of the shock or average several decays, and compare two captures."))
+	case dense > 1.5:
 		out = append(out, note(capture.ColouredNoise,
-			fmt.Sprintf("The noise is %.2g times as dense at the ring's frequency as white noise of the same size; the uncertainties allow for it.", v.factor(g.fit.w)),
+			fmt.Sprintf("The noise is %.2g times as dense at the ring's frequency as white noise of the same size; the uncertainties allow for it.", dense),
 			"Nothing to do; a lower bandwidth limit does not help, a stronger ring does."))
 	}
 	return out
