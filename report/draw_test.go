@@ -236,14 +236,15 @@ func TestPageWithoutScript(t *testing.T) {
 func TestPagePrints(t *testing.T) {
 	ctx := browser(t)
 	for name, size := range map[string]chromedp.PaperSize{"A4": chromedp.PaperA4, "Letter": chromedp.PaperLetter} {
-		p := open(t, ctx, doubtful(loop07().ringDown()), 1400, 900, "dark")
+		p := open(t, ctx, measuredLoop(0.004, 0), 1400, 900, "dark")
 		eval[any](p, `window.printed = [],
 			addEventListener("beforeprint", () => printed.push(document.querySelector("#chart canvas").clientWidth, getComputedStyle(document.documentElement).getPropertyValue("--ink").trim())), null`)
 		pdf, err := chromedp.Run(p.ctx, chromedp.PrintToPDF(chromedp.PDFPaper(size), chromedp.PDFPrintBackground(), chromedp.PDFOutlineAndTagged()))
 		if err != nil {
 			t.Fatal(err)
 		}
-		for _, heading := range []string{"loop 07", "Result", "Findings", "Charts", "Waveform", "Envelope, logarithmic", "Residual", "How it was made"} {
+		for _, heading := range []string{"loop 07", "Result", "Findings", "Charts", "Waveform", "Envelope, logarithmic", "Residual",
+			"Spectrum of the residual", "Quality factor along the decay", "Spectrum of the ring", "The fit in detail", "How it was made"} {
 			if !bytes.Contains(pdf, []byte("("+heading+")")) {
 				t.Errorf("%s: the outline of the print has no %q", name, heading)
 			}

@@ -24,7 +24,7 @@ var (
 	keyLimits = key{"limits of the latest", "dash", "fit"}
 )
 
-const captionHistory = "Points should scatter about the mean about as far as their bars reach, without a slope; a point far off deserves a look at its page."
+const captionHistory = "Points should scatter about the mean as far as their bars reach, without a slope; one far off deserves a look at its page."
 
 // manyEntries is from how many entries the points are drawn in one go.
 const manyEntries = 2000
@@ -47,7 +47,7 @@ func (h *History) figure(trends [3]*quantity.Trend, latest []*filedRow) (*figure
 			p.panel(i, trends[i], limitsOf(latest, what))
 		}
 	}
-	f := &figure{Time: "UTC", Dates: true, Bare: true, Panels: p.panels, Views: []view{}, Name: clean(h.sums.Device, nameLength), Fill: p.fills,
+	f := &figure{Time: "UTC", Dates: true, Bare: true, Low: true, Panels: p.panels, Views: []view{}, Name: clean(h.sums.Device, nameLength), Fill: p.fills,
 		Picture: "history.png", Words: axisWords{"time", "Time shown in all charts", "All entries", "Earlier", "Later"}}
 	var err error
 	f.Option, err = p.finish(p.from, p.to, fmt.Sprintf("%d charts over the same time: natural frequency, quality factor and time constant "+

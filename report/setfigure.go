@@ -76,7 +76,7 @@ func (s *Set) run(spreads []spreadOf) (*figure, error) {
 			p.addLevel(keySetLimits, ends, v, scale)
 		}
 	}
-	f := &figure{Time: "", Panels: p.panels, Views: []view{}, Bare: true, Name: clean(s.Heading, nameLength), Picture: "run-charts.png",
+	f := &figure{Panels: p.panels, Views: []view{}, Bare: true, Low: true, Name: clean(s.Heading, nameLength), Picture: "run-charts.png",
 		Words: axisWords{"captures", "Captures shown in all charts", "All captures", "Earlier", "Later"}}
 	for _, r := range s.Rows {
 		f.Names = append(f.Names, clean(r.File, nameLength))

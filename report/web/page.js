@@ -86,7 +86,7 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
       for (let k = Math.ceil(10 ** lo / step); k * step <= 10 ** hi; k++) all.push(Math.log10(k * step));
       return all;
     }
-    const marks = hi - lo > 4.5 ? [1] : hi - lo > 2.5 ? [1, 3] : [1, 2, 5];
+    const marks = hi - lo > 4.5 ? [1] : hi - lo > 2.5 ? [1, 3] : hi - lo > 1.3 ? [1, 2, 5] : [1, 1.5, 2, 3, 5, 7];
     for (let k = Math.floor(lo); k <= hi; k++) for (const m of marks) all.push(k + Math.log10(m));
     return all.filter((x) => x >= lo && x <= hi);
   };
@@ -194,8 +194,8 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
     stage.classList.add("drawn");
     stage.style.width = printing ? `${printWidth}px` : "";
     const width = stage.clientWidth;
-    // On paper two figures share a sheet, but for the one of three charts.
-    const printed = [[data.low ? 90 : 180], [145, 125], [170, 130, 105]][heads.length - 1] || [170, 130, 105];
+    // On paper two figures share a sheet, but for the one of three charts; low ones go below a table.
+    const printed = (data.low ? [[90], [100, 85], [110, 90, 85]] : [[180], [145, 125], [170, 130, 105]])[heads.length - 1];
     const heights = printing ? printed : width < 560 ? [210, 190, 160] : [340, 260, 210].map((h) => h * Math.max(1, textSize() / 16));
     if (heads.length === 1 && !printing) heights[0] += data.low ? -100 : 40;
     const grids = [];
