@@ -211,14 +211,7 @@ func (t *term) subtract(y []float64, n0 float64) {
 // covariance returns the covariance of (a, w, c, p, q) for noise v.
 func (f *ringFit) covariance(v noise) (cov sym, ok bool) {
 	full, ok := f.fullCovariance(v)
-	cov.n = 5
-	where := f.places()
-	for i, a := range where {
-		for j, b := range where {
-			cov.set(i, j, full.At(a, b))
-		}
-	}
-	return cov, ok
+	return f.ringPart(&full), ok
 }
 
 // fullCovariance returns the covariance of all parameters: in white noise the
