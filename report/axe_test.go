@@ -41,6 +41,7 @@ func TestAccessible(t *testing.T) {
 	for name, page := range map[string]interface{ WritePage(io.Writer) error }{
 		"ring-down": measuredLoop(0.004, 0.1), "refused": refused, "several": measuredDecays(2), "two modes": records()["two-mode"],
 		"sweep": sweeps()["sweep"], "sweep refused": sweeps()["sweep-refused"], "cross-check": demoCheck(t, true), "set": coils(),
+		"components": inventedComponents(t, false), "components refused": refusedComponents(t), "plan": plans(t)["plan"],
 		"devices": inventedDevices(t), "history": inventedHistory(t, "loop 07", 12),
 	} {
 		p := open(t, browser(t), page, 1280, 900, "light")

@@ -16,7 +16,13 @@ import (
 const schemaPlan = "dieaway.plan.v1"
 
 // Plan shows what to set on a scope.
-type Plan struct{ *plan.Plan }
+type Plan struct {
+	*plan.Plan
+	// Device is the name of what is to be measured, "" when nobody gave one.
+	Device string
+	// Origin says how the plan was made; the page shows it.
+	Origin Origin
+}
 
 // Status is refused when the wish cannot be met.
 func (p Plan) Status() decay.Status {
@@ -29,6 +35,7 @@ func (p Plan) Status() decay.Status {
 type jsonPlan struct {
 	Schema       string            `json:"schema"`
 	Status       decay.Status      `json:"status"`
+	Device       *string           `json:"device"`
 	Met          bool              `json:"met"`
 	Want         number            `json:"want_relative_u_q"`
 	Natural      number            `json:"natural_frequency_hz"`
@@ -84,7 +91,7 @@ type jsonResonance struct {
 
 // WriteJSON writes the plan as one line of JSON, schema dieaway.plan.v1.
 func (p Plan) WriteJSON(w io.Writer) error {
-	out := &jsonPlan{Schema: schemaPlan, Status: p.Status(), Met: p.Met, Want: number(p.Wish.Want),
+	out := &jsonPlan{Schema: schemaPlan, Status: p.Status(), Device: orNull(p.Device), Met: p.Met, Want: number(p.Wish.Want),
 		Natural: number(p.Ring.NaturalFrequency), Q: number(p.Ring.Q()), jsonSetting: settingJSON(&p.Setting),
 		Pretrigger: number(p.Setting.Pretrigger()), Settle: number(p.Settle), Edge: number(p.EdgeMost),
 		Alternatives: []jsonAlternative{}, Findings: append([]capture.Finding{}, p.Findings...)}
@@ -115,20 +122,29 @@ func resonanceJSON(r circuit.Resonance) jsonResonance {
 func (p Plan) WriteSummary(w io.Writer, style Style) error {
 	s := newSummary(w, style)
 	s.status(p.Status(), p.verdict())
+	if p.Device != "" {
+		s.item("  ", clean(p.Device, nameLength))
+	}
 	s.WriteString("\n")
-	s.item(label("the ring"), fmt.Sprintf("%s, Q %.4g, %s that falls to 1/e in %s", format(p.Ring.NaturalFrequency, "Hz"), p.Ring.Q(),
-		format(p.Wish.Amplitude, "V"), format(p.Ring.TimeConstant(), "s")))
-	s.forecast(p.Forecast)
+	s.item(label("the ring"), p.ringLine())
+	for _, r := range forecastRows(p.Forecast) {
+		if r.Name != withBoth { // that is the ring
+			s.item(label(r.Name), r.line())
+		}
+	}
 	if e := p.Setting.Expected; e != nil {
-		s.setting(&p.Setting)
+		s.WriteString("\n")
+		for _, f := range settingFacts(&p.Setting) {
+			s.item(label(f.Name), f.Value)
+		}
 		s.WriteString("\n")
 		for _, row := range resultRows(e)[:4] {
 			s.quantity(row)
 		}
 	}
 	s.WriteString("\n")
-	s.item(label("source"), fmt.Sprintf("stands still for %s, then falls within %s", format2(p.Settle, "s"), format2(p.EdgeMost, "s")))
-	s.alternatives(p.Alternatives)
+	s.item(label("source"), p.sourceLine())
+	s.alternatives(p.alternativeRows())
 	s.findings(p.Findings)
 	return s.Flush()
 }
@@ -144,31 +160,59 @@ func (p Plan) verdict() string {
 func format(x float64, unit string) string  { return quantity.Format(x, unit, 4) }
 func format2(x float64, unit string) string { return quantity.Format(x, unit, 2) }
 
-// forecast tells what source and probe do to the circuit.
-func (s *summary) forecast(f *circuit.Forecast) {
+// ringLine says what will be recorded.
+func (p Plan) ringLine() string {
+	return fmt.Sprintf("%s, Q %.4g, %s that falls to 1/e in %s", format(p.Ring.NaturalFrequency, "Hz"), p.Ring.Q(),
+		format(p.Wish.Amplitude, "V"), format(p.Ring.TimeConstant(), "s"))
+}
+
+// sourceLine says what the source has to do.
+func (p Plan) sourceLine() string {
+	return fmt.Sprintf("stands still for %s, then falls within %s", format2(p.Settle, "s"), format2(p.EdgeMost, "s"))
+}
+
+// A forecastRow says how the circuit rings with something connected; the shifts are
+// those from the circuit by itself, "" of itself.
+type forecastRow struct{ Name, F, Q, FShift, QShift string }
+
+func (r forecastRow) line() string {
+	s := r.F + ", Q " + r.Q
+	if r.FShift != "" {
+		s += " (" + r.FShift + ", " + r.QShift + ")"
+	}
+	return s
+}
+
+const withBoth = "with both"
+
+// forecastRows tell what source and probe do to the circuit; none without a forecast.
+func forecastRows(f *circuit.Forecast) (rows []forecastRow) {
 	if f == nil {
-		return
+		return nil
 	}
 	for _, line := range []struct {
 		name string
 		r    circuit.Resonance
-	}{{"by itself", f.Free}, {"with source", f.Source}, {"with probe", f.Probe}} {
-		text := fmt.Sprintf("%s, Q %.4g", quantity.Format(line.r.NaturalFrequency, "Hz", 6), line.r.Q())
+	}{{"by itself", f.Free}, {"with source", f.Source}, {"with probe", f.Probe}, {withBoth, f.Loaded}} {
+		row := forecastRow{Name: line.name, F: quantity.Format(line.r.NaturalFrequency, "Hz", 6), Q: fmt.Sprintf("%.4g", line.r.Q())}
 		if line.r != f.Free {
-			text += fmt.Sprintf(" (%+.2g %%, %+.2g %%)", 100*(line.r.NaturalFrequency/f.Free.NaturalFrequency-1), 100*(line.r.Q()/f.Free.Q()-1))
+			row.FShift = fmt.Sprintf("%+.2g %%", 100*(line.r.NaturalFrequency/f.Free.NaturalFrequency-1))
+			row.QShift = fmt.Sprintf("%+.2g %%", 100*(line.r.Q()/f.Free.Q()-1))
 		}
-		s.item(label(line.name), text)
+		rows = append(rows, row)
 	}
+	return rows
 }
 
-// setting writes what to set.
-func (s *summary) setting(set *plan.Setting) {
-	s.WriteString("\n")
-	s.item(label("record"), fmt.Sprintf("%s, of which %s before the trigger: %.2g time constants, %.3g cycles",
-		format(set.Record, "s"), format(set.Pretrigger(), "s"), set.TimeConstants, set.Cycles))
-	s.item(label("sample rate"), fmt.Sprintf("%s/s: %s, %.3g in a cycle", trimHertz(set.SampleRate), plural(set.Samples, "sample"), set.PerCycle))
-	s.item(label("averages"), averages(set.Averages))
-	s.item(label("vertical range"), fmt.Sprintf("%s, %s a division of eight; %s of noise", format(set.FullScale, "V"), format(set.FullScale/8, "V"), quantity.Format(set.Noise, "V", 3)))
+// settingFacts say what to set.
+func settingFacts(set *plan.Setting) []fact {
+	return []fact{
+		{"record", fmt.Sprintf("%s, of which %s before the trigger: %.2g time constants, %.3g cycles",
+			format(set.Record, "s"), format(set.Pretrigger(), "s"), set.TimeConstants, set.Cycles)},
+		{"sample rate", fmt.Sprintf("%s/s: %s, %.3g in a cycle", trimHertz(set.SampleRate), plural(set.Samples, "sample"), set.PerCycle)},
+		{"averages", averages(set.Averages)},
+		{"vertical range", fmt.Sprintf("%s, %s a division of eight; %s of noise", format(set.FullScale, "V"), format(set.FullScale/8, "V"), quantity.Format(set.Noise, "V", 3))},
+	}
 }
 
 func averages(n int) string {
@@ -184,15 +228,14 @@ func trimHertz(rate float64) string {
 	return s[:len(s)-len("Hz")] + "S"
 }
 
-// alternatives tabulates what else there is.
-func (s *summary) alternatives(all []plan.Alternative) {
-	if len(all) == 0 {
+// alternatives writes what else there is.
+func (s *summary) alternatives(rows []alternativeRow) {
+	if len(rows) == 0 {
 		return
 	}
 	s.WriteString("\n  instead                               record    rate       samples  averages  u of Q\n")
-	for _, a := range all {
-		fmt.Fprintf(s, "  %s %s %s %s %s %8d  %s\n", pad(a.Verdict, 7), pad(a.Change, 29), pad(format(a.Record, "s"), 9), pad(trimHertz(a.SampleRate)+"/s", 10),
-			padLeft(group(a.Samples), 7), a.Averages, quantity.Percent(a.Expected.Q.Relative()))
+	for _, a := range rows {
+		fmt.Fprintf(s, "  %s %s %s %s %s %8s  %s\n", pad(a.Verdict, 7), pad(a.Change, 29), pad(a.Record, 9), pad(a.Rate, 10), padLeft(a.Samples, 7), a.Averages, a.U)
 		s.item("          ", a.Reason)
 	}
 }

@@ -1,8 +1,6 @@
 package main
 
 import (
-	"bufio"
-
 	"github.com/urfave/cli/v2"
 
 	"dieaway/decay/plan"
@@ -20,8 +18,8 @@ func planCommand() *cli.Command {
 			"and probe will do to them is told too, and either may be left to its components.\n\n" +
 			"Examples:\n" +
 			"   dieaway plan --natural-frequency 125k --q 40 --amplitude 1V --bits 8 --noise 3mV\n" +
-			"   dieaway plan --bench loop07.toml --amplitude 1V --noise 8mV --bits 8 --want 0.2% --memory 10k",
-		Flags: []cli.Flag{
+			"   dieaway plan --bench loop07.toml --amplitude 1V --noise 8mV --bits 8 --want 0.2% --memory 10k -o plan.html",
+		Flags: append([]cli.Flag{
 			&cli.StringFlag{Name: "natural-frequency", Usage: "expected, in `HERTZ`"},
 			&cli.StringFlag{Name: "q", Usage: "the expected quality factor, a `NUMBER`"},
 			&cli.StringFlag{Name: "amplitude", Usage: "of the ring when the source lets go, in `VOLTS`"},
@@ -30,10 +28,7 @@ func planCommand() *cli.Command {
 			&cli.StringFlag{Name: "full-scale", Usage: "range of the converter from end to end in `VOLTS` (default: what holds the ring)"},
 			&cli.StringFlag{Name: "want", Usage: "wanted relative standard uncertainty of Q, a `SHARE`", Value: "0.1%"},
 			&cli.StringFlag{Name: "memory", Usage: "samples that a record may have, a `NUMBER`", Value: "100k"},
-			benchFlag(),
-			&cli.BoolFlag{Name: "json", Usage: "print one JSON object and nothing else", DisableDefaultText: true},
-			&cli.BoolFlag{Name: "quiet", Usage: "print nothing but errors", DisableDefaultText: true},
-		},
+		}, without(evidenceFlags(), "archive", "explain")...),
 		Action:          planAction,
 		OnUsageError:    usageError,
 		HideHelpCommand: true,
@@ -48,25 +43,19 @@ func planAction(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
+	j, err := parseJob(c)
+	if err != nil {
+		return err
+	}
 	p, err := plan.Make(w)
 	if err != nil {
 		return usagef("%w", err)
 	}
-	out := bufio.NewWriter(c.App.Writer)
-	shown := report.Plan{Plan: p}
-	switch {
-	case c.Bool("json"):
-		err = shown.WriteJSON(out)
-	case !c.Bool("quiet"):
-		err = shown.WriteSummary(out, styleOf(c.App.Writer))
-	}
-	if err == nil {
-		err = out.Flush()
-	}
-	if err == nil && !p.Met {
-		return &exitError{Code: exitRefused}
-	}
-	return err
+	j.useBench(w.Bench)
+	j.sources = make([]source, 1) // of nothing: it is a wish that is looked at
+	return j.runAll(c.Context, "plans", func(source) measured {
+		return measured{evidence: report.Plan{Plan: p, Device: j.device, Origin: j.origin}}
+	})
 }
 
 func parseWish(c *cli.Context) (w plan.Wish, err error) {
