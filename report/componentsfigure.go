@@ -125,9 +125,8 @@ func (p *componentPlot) straight(from, to float64, s axisScale) {
 		}
 		p.addSeries(part.key, "line", p.addTrace(tr, s), "v")
 	}
-	thin := charts.WithSeriesOpts(func(s *charts.SingleSeries) { s.LineStyle.Width = 0.8 })
-	p.addSeries(keyStraightU, "line", p.addTrace(upper, s), "v", thin)
-	p.addSeries(keyStraightU, "line", p.addTrace(lower, s), "v", thin)
+	p.addSeries(keyStraightU, "line", p.addTrace(upper, s), "v", width(0.8))
+	p.addSeries(keyStraightU, "line", p.addTrace(lower, s), "v", width(0.8))
 }
 
 // beside draws the figure that the parts should not move, and the residuals.
@@ -213,8 +212,7 @@ func (p *plot) barred(k key, x, y []quantity.Quantity, s axisScale) {
 // view is a stretch of the common axis with some room.
 func (p *componentPlot) view(name string, from, to float64) view {
 	room := (to - from) / 10
-	at := func(x float64) number { return number(round(x*p.time.factor, p.time.places)) }
-	return view{name, at(from - room), at(to + room)}
+	return view{name, p.at(from - room), p.at(to + room)}
 }
 
 func (p *componentPlot) close(f *figure, from, to float64, description string) error {
