@@ -28,7 +28,7 @@ const (
 	captionFreqOver   = "Added resistors should not move the frequency: points that leave the curve mean that something else changed, the inductance of a resistor or the leads."
 	captionOffBy      = "How far each capture lies off the components, in standard uncertainties u of its own: nearly all should lie between the lines."
 	noteShunt         = "The conductance across the capacitor that the bench file tells of is taken out of these points."
-	linePoints        = 200
+	linePoints        = 400
 	barPoints         = 9 // of a bar along the common axis: a zoom cuts it between two of them
 )
 
@@ -82,7 +82,7 @@ func (p *componentPlot) own() quantity.Quantity {
 // line draws the captures and their line.
 func (p *componentPlot) line() (*figure, error) {
 	own := p.own()
-	from, to := min(-own.Value, p.lo), p.hi
+	from, to := min(-own.Value, p.lo), max(-own.Value, p.hi)
 	room := (to - from) / 25
 	from, to = from-room, to+room
 	p.time = scaleFor(from, to, (to-from)/20000, own.Unit)
@@ -109,22 +109,25 @@ func (p *componentPlot) line() (*figure, error) {
 
 // straight draws the line, solid where captures carry it, and its uncertainty.
 func (p *componentPlot) straight(from, to float64, s axisScale) {
-	var upper, lower trace
-	for _, x := range between(from, to, linePoints) {
+	own := p.own() // where the line is looked at more closely
+	all := merge(between(from, to, linePoints), between(max(from, -own.Value-4*own.U), min(to, -own.Value+4*own.U), linePoints/4))
+	var upper, lower, inside, beyond trace
+	for _, x := range merge(all, []float64{p.lo, p.hi}) {
 		q := p.At(x)
 		upper.add(x, q.Value+2*q.U)
 		lower.add(x, q.Value-2*q.U)
-	}
-	for _, part := range []struct {
-		key      key
-		from, to float64
-	}{{keyStraight, p.lo, p.hi}, {keyExtension, from, p.lo}, {keyExtension, p.hi, to}} {
-		var tr trace
-		for _, x := range between(part.from, part.to, linePoints) {
-			tr.add(x, p.At(x).Value)
+		if x >= p.lo && x <= p.hi {
+			inside.add(x, q.Value)
 		}
-		p.addSeries(part.key, "line", p.addTrace(tr, s), "v")
+		if x <= p.lo || x >= p.hi {
+			beyond.add(x, q.Value)
+		}
+		if x == p.lo {
+			beyond.add(x, unknown.Value) // a gap
+		}
 	}
+	p.addSeries(keyStraight, "line", p.addTrace(inside, s), "v")
+	p.addSeries(keyExtension, "line", p.addTrace(beyond, s), "v")
 	p.addSeries(keyStraightU, "line", p.addTrace(upper, s), "v", width(0.8))
 	p.addSeries(keyStraightU, "line", p.addTrace(lower, s), "v", width(0.8))
 }
