@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"io"
+	"strings"
 
 	"dieaway/capture"
 	"dieaway/decay/quantity"
@@ -13,6 +14,7 @@ type componentsPage struct {
 	frame
 	benched
 	Refused           bool
+	Why               string // there is no result, a sentence
 	Headline, Results []row
 	Facts             []fact
 	Findings          []capture.Finding
@@ -75,7 +77,12 @@ func (c *Components) page() (*componentsPage, error) {
 		p.Layouts = append(p.Layouts, captureLayout{fmt.Sprintf("How capture %d was read", i+1), append(stated([]fact{
 			{"file", clean(r.file(), longName)}, {"channel", clean(r.Channel.Name, longName)}, {"record", r.recordLine()}}), r.layout()...)})
 	}
-	if c.Result != nil {
+	if c.Result == nil {
+		p.Why = upperFirst(p.Verdict)
+		if !strings.HasSuffix(p.Why, "?") {
+			p.Why += "."
+		}
+	} else {
 		p.Results = componentResults(c.Result)
 		p.Headline = p.Results
 		p.Facts = c.facts()
