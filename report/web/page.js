@@ -31,8 +31,8 @@ const columns = (f) => {
   return { t, v };
 };
 
-// Each figure of the page has its own charts, data and tools.
-document.querySelectorAll("figure.charts").forEach((figure) => {
+// begin draws a figure: each has its own charts, data and tools.
+const begin = (figure) => {
   const data = JSON.parse(document.getElementById(`data${figure.dataset.figure}`).textContent);
   // A figure over the entries of an archive is drawn from the rows of the page.
   (data.fill || []).forEach((f) => { data.option.dataset[f.dataset].source = columns(f); });
@@ -358,4 +358,13 @@ document.querySelectorAll("figure.charts").forEach((figure) => {
   addEventListener("beforeprint", () => print(true));
   addEventListener("afterprint", () => print(false));
   matchMedia("print").addEventListener("change", (event) => print(event.matches));
-});
+};
+
+// The first figure is drawn at once, the others when it can be seen, or before they are printed.
+const waiting = [...document.querySelectorAll("figure.charts")];
+const next = () => {
+  if (waiting.length) begin(waiting.shift());
+  if (waiting.length) setTimeout(next);
+};
+addEventListener("beforeprint", () => waiting.splice(0).forEach(begin));
+next();
