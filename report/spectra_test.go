@@ -111,6 +111,21 @@ func TestSpectraFigures(t *testing.T) {
 	}
 }
 
+// With all of its charts the page of a long record stays below its limit.
+func TestPageSizeMeasured(t *testing.T) {
+	l := loop07()
+	l.samples, l.interval = 1_000_000, 500e-12
+	r := l.ringDown()
+	r.curves, r.Result = nil, decay.Analyze(r.Channel, decay.Options{})
+	for name, r := range map[string]*RingDown{"long": r, "many": measuredDecays(mostDecays)} {
+		page := pageOf(t, r)
+		t.Logf("%s: %d bytes", name, len(page))
+		if len(page) > mostBytes || strings.Count(page, `<figure class="charts"`) != 5 {
+			t.Errorf("%s: %d bytes, %d figures", name, len(page), strings.Count(page, `<figure class="charts"`))
+		}
+	}
+}
+
 // Where there is no spectrum the page says why.
 func TestSpectraWithheldOnPage(t *testing.T) {
 	r := measuredLoop(0.004, 0)
