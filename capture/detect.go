@@ -92,6 +92,9 @@ func (h *head) endsEarly(col int) kind {
 			continue
 		}
 		k := h.kindOf(r.cells[col])
+		if k == kindMissing && n > 0 {
+			k = kind
+		}
 		if !k.numeric() || n > 0 && k != kind || n < row || col > 0 && h.kindOf(r.cells[col-1]) == kindText {
 			return kindBlank
 		}
@@ -169,28 +172,36 @@ func splitLines(text []byte, term byte, whole bool) []line {
 }
 
 // firstRow is the index of the first row of samples: a line that fits, with
-// lines that fit below it. A few numbers above a heading are none.
+// lines that fit below it. A few numbers above the heading are none.
 func (h *head) firstRow() int {
 	var cells []cell
-	candidate, rows := -1, 0
-	for i, l := range h.lines {
+	first, candidate, rows := -1, -1, 0
+	for i := 0; i < len(h.lines) && rows < fewestRows; i++ {
+		l := h.lines[i]
 		cells = h.split(l.text, cells[:0])
 		switch {
 		case h.passed(l.text, cells):
+			if isComment(l.text) && h.wordsOnly(h.split(stripComment(l.text), cells[:0])) {
+				first, rows = -1, 0
+			}
 		case h.fits(cells):
 			if rows == 0 {
 				candidate = i
 			}
-			if rows++; rows == fewestRows {
-				return candidate
+			rows++
+		case h.wordsOnly(cells):
+			first, rows = -1, 0
+		default:
+			if rows > 1 && first < 0 {
+				first = candidate // unless a heading follows, the data pass says what is wrong here
 			}
-		case rows == 1 || h.wordsOnly(cells):
-			candidate, rows = -1, 0
-		case rows > 1:
-			return candidate // the data pass will say what is wrong with this line
+			rows = 0
 		}
 	}
-	if candidate >= 0 {
+	switch {
+	case first >= 0:
+		return first
+	case rows > 0:
 		return candidate
 	}
 	return len(h.lines) - 1

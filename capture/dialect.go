@@ -91,8 +91,9 @@ func (d dialect) cut(line []byte, i int) (cell, int) {
 	if i < len(line) && line[i] == '"' {
 		if end := closingQuote(line, i+1); end >= 0 {
 			c := cell{text: bytes.TrimSpace(unquote(line[i+1 : end])), quoted: true}
-			_, next := d.cutPlain(line, end+1)
-			return c, next
+			if rest, next := d.cutPlain(line, end+1); rest.blank() {
+				return c, next
+			}
 		}
 	}
 	return d.cutPlain(line, i)

@@ -60,27 +60,34 @@ func splitWide(text []byte) []cell {
 }
 
 // place gives each text of a heading its column: by position; but where the
-// positions miss a column of numbers and the texts are as many as the channels,
-// they name the last columns in order.
+// cells are fewer than the columns, and the texts as many as the columns of
+// numbers or as the channels, they name the last of these in order. Between
+// blanks, where a blank cell is none, other texts have no place.
 func (h *head) place(cells []cell, set func(col int, text string)) {
 	var numeric []int
-	missed := false
 	for col, k := range h.kinds {
 		if k.numeric() || k == kindMissing {
 			numeric = append(numeric, col)
-			missed = missed || len(numeric) > 1 && (col >= len(cells) || cells[col].blank())
 		}
 	}
 	var texts []string
-	for _, c := range cells {
+	width := 0
+	for col, c := range cells {
 		if !c.blank() {
-			texts = append(texts, toUTF8(c.text))
+			texts, width = append(texts, toUTF8(c.text)), col+1
 		}
 	}
-	if missed && len(texts) >= len(numeric)-1 && len(texts) <= len(numeric) && (!saysTime(texts[0]) || h.countsRows(numeric[0])) {
+	if len(numeric) == 0 {
+		return
+	}
+	short := width <= numeric[len(numeric)-1] && len(texts) >= len(numeric)-1 && len(texts) <= len(numeric)
+	if short && (len(texts) == len(numeric) || !saysTime(texts[0]) || h.countsRows(numeric[0])) && (h.delim == ' ' || len(cells) < len(h.kinds)) {
 		for i, text := range texts {
 			set(numeric[len(numeric)-len(texts)+i], text)
 		}
+		return
+	}
+	if h.delim == ' ' && len(texts) < len(h.kinds) {
 		return
 	}
 	for col, c := range cells {

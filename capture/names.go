@@ -184,7 +184,7 @@ func (h *head) namesRow(cells []cell) bool {
 			return false
 		}
 		switch k := h.kindOf(c); {
-		case k == kindNumber && strings.IndexByte(text, '.') < 0 && len(text) < 4:
+		case k == kindNumber && strings.IndexByte(text, '.') < 0 && len(text) < 3:
 			numbers++ // a channel that is called 1
 		case k == kindMissing && unicode.IsLetter(rune(text[0])):
 			words++ // one that is called out
@@ -206,6 +206,9 @@ func unitAsName(text string) (unit, bool) {
 
 // saysTime reports a heading that says time by its name or unit.
 func saysTime(text string) bool {
+	if u, ok := parseUnit(text); ok {
+		return u.base == "s"
+	}
 	name, u, _ := splitUnit(text)
 	return timeName(name) || u.base == "s"
 }

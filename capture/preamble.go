@@ -154,9 +154,18 @@ func (p *preamble) cellsOf(text []byte) []cell {
 	return d.split(text, nil)
 }
 
+// stripComment takes off the comment mark of a line, and keeps the cells: behind
+// the mark a separator ends a blank one.
 func stripComment(text []byte) []byte {
-	if isComment(text) {
-		return bytes.TrimLeft(text, "#%/!; \t\"")
+	if !isComment(text) {
+		return text
+	}
+	text = bytes.TrimLeft(text, " \t")
+	quote := bytes.HasPrefix(text, []byte{'"'})
+	text = bytes.TrimLeft(bytes.TrimLeft(text, "\""), "#%/!")
+	text = bytes.TrimLeft(text, " ")
+	if quote {
+		return append([]byte{'"'}, text...)
 	}
 	return text
 }
@@ -222,17 +231,39 @@ func (p *preamble) number(m meaning, col int, base string, def unit) declared {
 	if u.base == "" {
 		u = def
 	}
-	c := cell{text: []byte(strings.TrimSpace(text)), quoted: true}
-	n, digits, ok := p.d.number(c)
-	if !ok {
-		if n, u, digits, ok = p.d.quantity(c); !ok {
+	for _, d := range []dialect{p.d, p.d.otherMark()} {
+		c := cell{text: []byte(strings.TrimSpace(text)), quoted: true}
+		n, digits, ok := d.number(c)
+		own := u
+		if !ok {
+			n, own, digits, ok = d.quantity(c)
+		}
+		if !ok || own.base != "" && own.base != base {
+			continue
+		}
+		// With a prefix there is no need for thousands, and a count has no fractions.
+		if p.d.ambiguous(c.text) && own.exp == 0 && m != meansCount {
 			return declared{}
 		}
+		return declared{n.float(own.exp, digits, d.mark), 0.5 * math.Pow10(n.exp+own.exp), true}
 	}
-	if u.base != "" && u.base != base {
-		return declared{}
+	return declared{}
+}
+
+// ambiguous reports 1,234 where the decimal mark is a point, or 1.234 where it is
+// a comma: a thousand, or a number printed with the other mark.
+func (d dialect) ambiguous(text []byte) bool {
+	_, groups := dropGroups(text, string(d.otherMark().mark))
+	return groups == 2 && bytes.IndexByte(text, d.mark) < 0
+}
+
+// otherMark is the dialect with the other decimal mark: a preamble need not be
+// printed as the samples are.
+func (d dialect) otherMark() dialect {
+	if d.mark == ',' {
+		return dialect{d.delim, '.'}
 	}
-	return declared{n.float(u.exp, digits, p.d.mark), 0.5 * math.Pow10(n.exp+u.exp), true}
+	return dialect{d.delim, ','}
 }
 
 // interval returns the sampling interval that the preamble declares for a

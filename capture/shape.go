@@ -11,7 +11,7 @@ const blockLines = 64 // lines of the block that decides the dialect
 type shape struct {
 	dialect
 	kinds []kind
-	score float64 // numeric cells explained, less half of those that are not
+	score float64 // numeric cells explained, less half of those that are not, and more of those that a number may be torn in
 	rows  int
 	full  []int // rows with something in the column
 	now   []kind
@@ -130,7 +130,7 @@ func allBlank(cells []cell) bool {
 // admit takes a line into the block when its cells are like the block's.
 func (s *shape) admit(cells []cell) bool {
 	kinds := s.now[:0]
-	numeric, text := 0, 0
+	numeric, text, torn := 0, 0, 0
 	for i, c := range cells {
 		k := s.kindOf(c)
 		if i < len(s.loose) && s.loose[i] && k != kindBlank {
@@ -140,6 +140,9 @@ func (s *shape) admit(cells []cell) bool {
 			numeric++
 		} else if k == kindText {
 			text++
+			if first, last := c.text[0], c.text[len(c.text)-1]; first-'0' <= 9 || last-'0' <= 9 {
+				torn++
+			}
 		}
 	}
 	s.now = kinds
@@ -160,7 +163,7 @@ func (s *shape) admit(cells []cell) bool {
 		}
 	}
 	s.rows++
-	s.score += float64(numeric) - 0.5*float64(text)
+	s.score += float64(numeric) - 0.5*float64(text) - 0.25*float64(torn)
 	return true
 }
 

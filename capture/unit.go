@@ -107,7 +107,7 @@ func splitUnit(text string) (name string, u unit, ok bool) {
 func lastBrackets(text string) (before, inside string) {
 	for _, pair := range []string{"()", "[]"} {
 		if open := strings.LastIndexByte(text, pair[0]); open >= 0 && strings.HasSuffix(text, pair[1:]) {
-			return strings.TrimSpace(text[:open]), strings.TrimSpace(text[open+1 : len(text)-1])
+			return strings.TrimRight(text[:open], " _"), strings.TrimSpace(text[open+1 : len(text)-1])
 		}
 	}
 	return text, ""
