@@ -63,7 +63,8 @@ func (g *gate) misfits(s series) bool {
 	if energyGain(&f, v) < energyNeeded(f.n) {
 		return true
 	}
-	return lineGain(r) > suspicion || bendGain(&f)/density > suspicion || fallGain(&f)/sq(v.rms*v.factor(0)) > suspicion
+	bend, _ := slightBend(&f)
+	return lineGain(r) > suspicion || bend/density > suspicion || fallGain(&f)/sq(v.rms*v.factor(0)) > suspicion
 }
 
 // lineGain is what the strongest line of the residual explains beyond chance, in
@@ -79,23 +80,27 @@ func lineGain(r []float64) float64 {
 	return most
 }
 
-// bendGain is what the quadratic law explains to first order: with E = exp(-an) the
+// slightBend is what the quadratic law explains to first order, and by how much rate
+// and angular frequency at small amplitude then differ. With E = exp(-an) the
 // amplitude follows E + (B/a)(E^2 - E), so that beside the ring and its derivatives
-// it needs a ring of the same frequency that decays twice as fast.
-func bendGain(f *ringFit) float64 {
-	p := newPoles(f.s, 2, 0)
+// by a and w the curve needs a ring of the same frequency that decays twice as fast.
+func slightBend(f *ringFit) (gain float64, by [2]float64) {
+	p := f.problem.alike(2, 0)
 	g := p.gram([]float64{f.a, f.w, 2 * f.a, f.w})
 	fast := p.slot(1)
 	bent, ok := g.project([]int{0, 1, 2, 3, 4, fast, fast + 1}, p.yy)
 	if !ok {
-		return 0
+		return 0, by
 	}
-	return f.rss - bent.rss
+	// The derivatives are -p nC - q nS by a and q nC - p nS by w.
+	nc, ns, size := bent.beta[3], bent.beta[4], f.p*f.p+f.q*f.q
+	by = [2]float64{-(nc*f.p + ns*f.q) / size, (nc*f.q - ns*f.p) / size}
+	return f.rss - bent.rss, by
 }
 
 // fallGain is what a plain exponential explains beside the ring.
 func fallGain(f *ringFit) float64 {
-	p := newPoles(f.s, 1, 1)
+	p := f.problem.alike(1, 1)
 	most := 0.0
 	for _, u := range []float64{0.7, 3, 10} {
 		if n, ok := p.at([]float64{f.a, f.w, u / p.length}); ok {

@@ -59,8 +59,11 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 	if c := g.fit.companion; c != nil {
 		out = append(out, g.besides(c))
 	}
-	if b := g.fit.bend; b != nil {
-		out = append(out, dependsOnAmplitude(d, b))
+	switch b := g.fit.bend; {
+	case b != nil:
+		out = append(out, dependsOnAmplitude(d, &g.fit))
+	case g.fit.rival != nil:
+		out = append(out, g.fit.mayBend())
 	}
 	switch dense := v.factor(g.fit.w); {
 	case dense > 2 && d.Cycles < chanceCycles:
@@ -101,11 +104,15 @@ func (g *gate) besides(c *term) Finding {
 	}
 }
 
-func dependsOnAmplitude(d *Decay, b *bend) Finding {
+func dependsOnAmplitude(d *Decay, f *ringFit) Finding {
 	q, at := &d.Quantities, d.AtStart
+	law := f.bend.law.String()
+	if f.rival != nil {
+		law += ", or another law that explains as much: the uncertainties span both"
+	}
 	return warning(capture.AmplitudeDependent,
 		fmt.Sprintf("Loss and frequency depend on the amplitude: from %s and Q %s at the first cycle to %s and Q %s as the ring dies; %s.",
-			at.DampedFrequency, at.Q, q.DampedFrequency, q.Q, b.law),
+			at.DampedFrequency, at.Q, q.DampedFrequency, q.Q, law),
 		"Quote the small-signal values with the amplitude they hold for, and compare with other measurements at the same amplitude only.")
 }
 

@@ -44,6 +44,7 @@ type ringFit struct {
 	normal        normal
 	problem       *poles // that it solves; nil with an amplitude law
 	left          *noise // see noise
+	rival         *rival // a model that the samples do not rule out, or nil
 }
 
 // term is a component beside the ring: a second ring, or, with w = 0, a plain
@@ -218,13 +219,14 @@ func (f *ringFit) covariance(v noise) (cov sym, ok bool) {
 // inverse of J'J times the variance, in coloured noise the sandwich, or, for long
 // windows, the inverse scaled by the density where each parameter lives: at the
 // ring's frequency, for the offset at zero. It is widened for what is not known
-// of the noise.
+// of the noise, and for a model that the samples do not rule out.
 func (f *ringFit) fullCovariance(v noise) (sym, bool) {
 	cov, ok := f.plainCovariance(v)
 	k := sq(widening(v.freedom(f.w, cov.n)))
 	for i := range cov.v {
 		cov.v[i] *= k
 	}
+	f.rival.widen(&cov)
 	return cov, ok
 }
 

@@ -59,7 +59,9 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 		g.extendBack(s)
 	}
 	g.skipMissing(s)
-	return g, g.refit(s, fine)
+	ok = g.refit(s, fine)
+	g.fit.rival = g.fit.findRival()
+	return g, ok
 }
 
 // skipMissing lets the gate begin with a sample that is there.

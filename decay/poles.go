@@ -87,6 +87,14 @@ func (p *poles) fillGaps() {
 	}
 }
 
+// alike is the problem of another number of exponentials about the same samples.
+func (p *poles) alike(rings, falls int) *poles {
+	out := *p
+	out.rings, out.falls = rings, falls
+	out.latest.theta = nil
+	return &out
+}
+
 // covers reports whether the problem is about the samples of s.
 func (p *poles) covers(s series) bool {
 	return p != nil && p.given.len() == s.len() && &p.given.y[0] == &s.y[0] && p.given.stride == s.stride

@@ -1,0 +1,87 @@
+package decay
+
+import (
+	"fmt"
+	"math"
+
+	"dieaway/capture"
+	"dieaway/decay/quantity"
+)
+
+// rivalGain is the chi-squared between two models below which the better one is no
+// sure thing, and above which the lesser one is still worth a word: two parameters
+// more explain as much by chance in one record of four hundred.
+const rivalGain = 12
+
+// rival is what separates a fit from another model that its samples do not rule
+// out: the differences of the nonlinear parameters, in their order. The uncertainty
+// of the fit takes them in as one standard deviation.
+type rival struct {
+	by   []float64
+	gain float64 // chi-squared by which the other model is better, or worse if negative
+}
+
+// findRival looks for such a model.
+func (f *ringFit) findRival() *rival {
+	switch {
+	case f.companion != nil:
+		return nil
+	case f.bend != nil:
+		return f.otherLaw()
+	}
+	v := f.noise()
+	gain, by := slightBend(f)
+	if gain /= sq(v.rms * v.factor(f.w)); gain < rivalGain {
+		return nil
+	}
+	return &rival{by[:], gain}
+}
+
+// otherLaw compares the two laws of an amplitude that falls smoothly.
+func (f *ringFit) otherLaw() *rival {
+	other := quadratic
+	switch f.bend.law {
+	case quadratic:
+		other = cubic
+	case constant:
+		return nil
+	}
+	window := f.s.thinned(choiceSamples)
+	own, ok := refitBent(window, f, 0, coarse)
+	second, found := fitBent(window, other, f.a, f.w, coarse)
+	if !ok || !found {
+		return nil
+	}
+	v := noiseOf(own.residuals(window, 0), own.sigma())
+	gain := (own.rss - second.rss) / sq(v.rms*v.factor(f.w))
+	if gain < -rivalGain {
+		return nil
+	}
+	return &rival{[]float64{second.a - own.a, second.w - own.w, second.bend.b - own.bend.b, second.bend.g - own.bend.g}, gain}
+}
+
+// widen adds the difference to a covariance of the fit's parameters.
+func (p *rival) widen(cov *sym) {
+	if p == nil {
+		return
+	}
+	for i, x := range p.by {
+		for j, y := range p.by[:i+1] {
+			cov.set(i, j, cov.At(i, j)+x*y)
+		}
+	}
+}
+
+// mayBend says that one ring accounts for the samples, but a slightly bent one does
+// so better.
+func (f *ringFit) mayBend() Finding {
+	a, w := f.a+f.rival.by[0], f.w+f.rival.by[1]
+	say := note
+	if f.rival.gain > evidence {
+		say = warning
+	}
+	return say(capture.AmplitudeDependent,
+		fmt.Sprintf("A weak dependence on the amplitude is not ruled out: with one, the ring would have %s and Q %.4g at small amplitude. The uncertainties span both.",
+			quantity.Format(w/(2*math.Pi*f.s.dt), "Hz", 6), math.Hypot(a, w)/(2*a)),
+		"Capture once more at half the amplitude, or average several decays: the two then part or agree.")
+}
