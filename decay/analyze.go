@@ -73,11 +73,10 @@ type analysis struct {
 func (a *analysis) gates() {
 	if rails := railed(a.s); len(rails) > 0 {
 		free := a.s.without(rails)
-		if found := findDecays(free, a.opt); len(found) > 0 {
-			if n, excess := found[0].beyond(a.s, rails); n > 0 && excess > math.Max(a.s.step, 2*found[0].fit.sigma()) {
-				a.s, a.found = free, found
-				a.findings = append(a.findings, clippedFinding(n, excess, found[0].fit.size()))
-			}
+		found := findDecays(free, a.opt)
+		if cut, ok := cutOff(found, a.s, rails); ok {
+			a.s, a.found = free, found
+			a.findings = append(a.findings, cut)
 		}
 	}
 	if len(a.found) == 0 {

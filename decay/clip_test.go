@@ -27,6 +27,29 @@ func TestClippedLevel(t *testing.T) {
 	}
 }
 
+// TestClippedLater: a square wave whose second edges ring beyond the range is named
+// although the first decay is whole, and no decay is measured in pieces.
+func TestClippedLater(t *testing.T) {
+	const edges, between, step = 6, 2500, 1.0 / 128
+	y := drivenCircuit(kindA, kindA, edges*between, func(i int) float64 { return float64((i/between + 1) % 2) })
+	for seed := range uint64(10) {
+		rng := rand.New(rand.NewPCG(seed, 77))
+		x := make([]float64, len(y))
+		for i, v := range y {
+			v = step * math.Round((v+0.3*step*rng.NormFloat64())/step)
+			x[i] = math.Max(-1.3, math.Min(1.3, v))
+		}
+		r := Analyze(channel(x, 0, 1), Options{})
+		if r.Quantities == nil || !has(r, "clipped") {
+			t.Fatalf("seed %d: %s, %v", seed, r.Status, r.Findings)
+		}
+		if n := len(r.Decays); n != edges-1 {
+			t.Errorf("seed %d: %d decays behind %d edges", seed, n, edges-1)
+		}
+		within(t, "Q", r.Quantities.Q.Value, kindQ, 4*r.Quantities.Q.U)
+	}
+}
+
 // TestSlowNoise: strongly coloured noise alone, up to what is all but a random walk,
 // gives no decay that passes as good, and hardly any that is measured at all.
 func TestSlowNoise(t *testing.T) {

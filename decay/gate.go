@@ -12,6 +12,8 @@ type gate struct {
 	// cutBefore and cutAfter tell that something else (an edge) bounds the gate,
 	// not the record.
 	cutBefore, cutAfter bool
+	// rank is 0 for the decay that the search found first, and more for others.
+	rank int
 	// coarse tells that nothing blurs the steps of the converter.
 	coarse bool
 }
@@ -59,9 +61,14 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 		g.extendBack(s)
 	}
 	g.skipMissing(s)
-	ok = g.refit(s, fine)
+	return g, g.finish(s)
+}
+
+// finish fits the gate for good.
+func (g *gate) finish(s series) bool {
+	ok := g.refit(s, fine)
 	g.fit.rival = g.fit.findRival()
-	return g, ok
+	return ok
 }
 
 // skipMissing lets the gate begin with a sample that is there.

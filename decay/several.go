@@ -36,7 +36,7 @@ func findDecays(s series, opt Options) []gate {
 		}
 		return []gate{g} // for the judge to say what is wrong with it
 	}
-	return slices.Concat(decaysLike(&g, s, 0, g.first, opt.Model), []gate{g}, decaysLike(&g, s, g.last, s.len(), opt.Model))
+	return joined(s, slices.Concat(decaysLike(&g, s, 0, g.first, opt.Model), []gate{g}, decaysLike(&g, s, g.last, s.len(), opt.Model)))
 }
 
 // decaysLike finds the decays of the circuit of g in samples from to to-1.
@@ -48,11 +48,36 @@ func decaysLike(g *gate, s series, from, to int, model Model) []gate {
 	if !ok {
 		return nil
 	}
-	next.first, next.last = next.first+from, next.last+from
-	if next.runsInto(g, s) || g.runsInto(&next, s) {
-		return nil
-	}
+	next.first, next.last, next.rank = next.first+from, next.last+from, g.rank+1
 	return slices.Concat(decaysLike(g, s, from, next.first, model), []gate{next}, decaysLike(g, s, next.last, to, model))
+}
+
+// joined makes one of neighbouring gates, in order of time, that hold parts of the
+// same decay: an edge or clipped samples may have led to a cut between them.
+func joined(s series, list []gate) []gate {
+	var out []gate
+	for i := range list {
+		g := &list[i]
+		n := len(out)
+		if n == 0 || !out[n-1].runsInto(g, s) {
+			out = append(out, *g)
+			continue
+		}
+		if whole, ok := out[n-1].upTo(g, s); ok {
+			out[n-1] = whole
+		} else if g.rank < out[n-1].rank {
+			out[n-1] = *g // the model does not follow the decay all the way
+		}
+	}
+	return out
+}
+
+// upTo is the gate carried on to the end of other; false when the fit then leaves more.
+func (g *gate) upTo(other *gate, s series) (gate, bool) {
+	whole := *g
+	whole.last, whole.cutAfter = other.last, other.cutAfter
+	ok := whole.finish(s)
+	return whole, ok && whole.fit.sigma() <= sigmaGrowth*math.Max(g.fit.sigma(), other.fit.sigma())
 }
 
 // runsInto reports whether the ring of g, continued, is that of other: then the

@@ -109,10 +109,23 @@ func (g *gate) beyond(s series, list []int) (count int, excess float64) {
 	return count, sum / float64(count)
 }
 
-func clippedFinding(count int, excess, size float64) Finding {
+// cutOff tells whether any of the decays, found without the railed samples, runs past
+// the rail where they were, and says so.
+func cutOff(found []gate, s series, rails []int) (Finding, bool) {
+	count, short := 0, 0.0
+	for i := range found {
+		g := &found[i]
+		if n, excess := g.beyond(s, rails); n > 0 && excess > math.Max(s.step, 2*g.fit.sigma()) {
+			count += n
+			short += float64(n) * excess / g.fit.size()
+		}
+	}
+	if count == 0 {
+		return Finding{}, false
+	}
 	return warning(capture.Clipped,
-		sprintf("%d samples of the decay are cut off at the end of the range, %s of the amplitude short on average; they were left out of the fit.", count, percent(excess/size)),
-		"Use a larger vertical range, or move the offset, and capture again.")
+		sprintf("%d samples of the decay are cut off at the end of the range, %s of the amplitude short on average; they were left out of the fit.", count, percent(short/float64(count))),
+		"Use a larger vertical range, or move the offset, and capture again."), true
 }
 
 // glitches returns the samples of the gate that stand alone far off the fit.
