@@ -45,17 +45,7 @@ func (c *Components) WritePage(w io.Writer) error {
 	if err := c.check(); err != nil {
 		return err
 	}
-	if err := c.Err(); err != nil {
-		return fmt.Errorf("no page of a file that could not be read: %w", err)
-	}
-	p, err := c.page()
-	if err != nil {
-		return fmt.Errorf("charts of the page: %w", err)
-	}
-	if err := p.embed(c.WriteJSON); err != nil {
-		return err
-	}
-	return p.write(w, "components.html", p)
+	return writeSheet(w, "components.html", c.Err(), c.page, c.WriteJSON)
 }
 
 func (c *Components) page() (*componentsPage, error) {

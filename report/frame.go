@@ -57,6 +57,28 @@ func (f *frame) embed(result func(io.Writer) error) error {
 	return nil
 }
 
+// A sheet is what a page shows: a frame with more in it.
+type sheet interface {
+	embed(result func(io.Writer) error) error
+	write(w io.Writer, name string, p any) error
+}
+
+// writeSheet fills the template of the given name with a result and embeds the result
+// in it. unread is the reason why a file could not be read.
+func writeSheet[S sheet](w io.Writer, name string, unread error, fill func() (S, error), result func(io.Writer) error) error {
+	if unread != nil {
+		return fmt.Errorf("no page of a file that could not be read: %w", unread)
+	}
+	p, err := fill()
+	if err != nil {
+		return fmt.Errorf("charts of the page: %w", err)
+	}
+	if err := p.embed(result); err != nil {
+		return err
+	}
+	return p.write(w, name, p)
+}
+
 // withoutMarks writes marks that turn the direction of writing as escapes, which
 // mean the same to a reader of JSON and nothing to one of the page's source.
 func withoutMarks(text string) string {

@@ -23,23 +23,19 @@ func (r *RingDown) WritePage(w io.Writer) error {
 	if err := r.check(); err != nil {
 		return err
 	}
-	if r.Err != nil {
-		return fmt.Errorf("no page of a file that could not be read: %w", r.Err)
-	}
+	return writeSheet(w, "ringdown.html", r.Err, r.sheet, r.WriteJSON)
+}
+
+// sheet is the page with all its figures.
+func (r *RingDown) sheet() (*page, error) {
 	f, err := r.figure()
 	if err != nil {
-		return fmt.Errorf("charts of the page: %w", err)
+		return nil, err
 	}
 	p := r.page(f)
 	details, err := r.details(f)
-	if err != nil {
-		return fmt.Errorf("charts of the page: %w", err)
-	}
 	p.Figures = append(p.Figures, details...)
-	if err := p.embed(r.WriteJSON); err != nil {
-		return err
-	}
-	return p.write(w, "ringdown.html", p)
+	return p, err
 }
 
 // details are the figures behind the first one, f, which tells of those that are

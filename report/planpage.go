@@ -38,14 +38,7 @@ func (p Plan) alternativeRows() (rows []alternativeRow) {
 // WritePage writes the plan as one HTML page that needs no network: what to set, what
 // to expect, how that changes with record and sample rate, and what else there is.
 func (p Plan) WritePage(w io.Writer) error {
-	page, err := p.page()
-	if err != nil {
-		return fmt.Errorf("charts of the page: %w", err)
-	}
-	if err := page.embed(p.WriteJSON); err != nil {
-		return err
-	}
-	return page.write(w, "plan.html", page)
+	return writeSheet(w, "plan.html", nil, p.page, p.WriteJSON)
 }
 
 func (p Plan) page() (*planPage, error) {

@@ -19,21 +19,14 @@ func (r *Sweep) WritePage(w io.Writer) error {
 	if err := r.check(); err != nil {
 		return err
 	}
-	if r.Err != nil {
-		return fmt.Errorf("no page of a file that could not be read: %w", r.Err)
-	}
-	f, err := r.figure()
-	if err != nil {
-		return fmt.Errorf("charts of the page: %w", err)
-	}
-	p := r.page(f)
-	if err := p.embed(r.WriteJSON); err != nil {
-		return err
-	}
-	return p.write(w, "sweep.html", p)
+	return writeSheet(w, "sweep.html", r.Err, r.page, r.WriteJSON)
 }
 
-func (r *Sweep) page(f *figure) *sweepPage {
+func (r *Sweep) page() (*sweepPage, error) {
+	f, err := r.figure()
+	if err != nil {
+		return nil, err
+	}
 	heading := clean(r.file(), nameLength)
 	if r.Device != "" {
 		heading = clean(r.Device, nameLength)
@@ -48,14 +41,14 @@ func (r *Sweep) page(f *figure) *sweepPage {
 	p.Title = p.Heading + " – driven sweep, " + p.Status
 	if p.Refused {
 		p.Layout = append([]fact{{"sweep", r.rowsLine()}}, p.Layout...)
-		return p
+		return p, nil
 	}
 	p.Results = sweepRows(r.Result)
 	p.Headline = p.Results[:4]
 	p.Facts = r.facts()
 	p.Readings = sweepComparisons(r.Result)
 	p.ReadingsCaption = "What peak and half-power points say by themselves, corrected for what the response was measured across, beside the fit. In parentheses: the difference in standard uncertainties of the reading."
-	return p
+	return p, nil
 }
 
 // what says in one line what was measured.
