@@ -62,18 +62,34 @@ func (p *plan) lacks(c *chunk, n int) bool {
 	return false
 }
 
-// noteAbsent books the row that was read among the holes.
-func (c *chunk) noteAbsent() {
+// acceptPart is accept for a row that lacks a time column: the row is booked among
+// its holes.
+func (p *plan) acceptPart(c *chunk, line int) {
+	if c.footer != nil {
+		c.err = c.footer
+		return
+	}
+	if c.rows == 0 {
+		c.first = line
+	}
 	for k, gone := range c.absent {
-		if !gone {
-			continue
-		}
-		if h := c.holes[k]; len(h) > 0 && h[len(h)-1].to == c.rows {
+		switch h := c.holes[k]; {
+		case !gone:
+			s, t := &c.spans[k], &c.now[k]
+			if s.run.goesOn(t) && s.n == s.run.n {
+				s.run.n++
+				s.n++
+			} else if !s.add(t) {
+				c.err = backwards(line, t.seconds(), s.last)
+			}
+		case len(h) > 0 && h[len(h)-1].to == c.rows:
 			h[len(h)-1].to++
-		} else {
+		default:
 			c.holes[k] = append(h, hole{c.rows, c.rows + 1})
 		}
 	}
+	c.rows++
+	c.partial = false
 }
 
 // addHoles takes the holes of a chunk whose rows begin behind those of the table.

@@ -18,10 +18,10 @@ const (
 // A step is what the data pass does with the cells of one column.
 type step struct {
 	op       op
+	quantity bool // cells carry a unit of their own
 	to       int  // index among the values or among the times
 	axis     int  // index among the times of the one that goes with it, -1: none
 	shift    int  // power of ten from the printed unit to the base unit
-	quantity bool // cells carry a unit of their own
 }
 
 // A plan is the fixed layout that the data pass follows.
@@ -74,14 +74,15 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 			end := i + bytes.IndexByte(c.text[i:], p.term)
 			ok = p.slowRow(c, c.text[i:end], line)
 			next = end + 1
+			if ok && c.partial {
+				p.acceptPart(c, line)
+				ok = false // it is booked
+			}
 		}
 		i = next
 		if ok {
 			if c.rows == 0 {
 				c.first = line
-			}
-			if c.partial {
-				c.noteAbsent()
 			}
 			c.rows++
 			p.accept(c, line)
@@ -103,9 +104,6 @@ func (p *plan) accept(c *chunk, line int) {
 		return
 	}
 	for k := range c.spans {
-		if c.partial && c.absent[k] {
-			continue
-		}
 		s, t := &c.spans[k], &c.now[k]
 		if s.run.goesOn(t) && s.n == s.run.n {
 			s.run.n++
@@ -114,7 +112,6 @@ func (p *plan) accept(c *chunk, line int) {
 			c.err = backwards(line, t.seconds(), s.last)
 		}
 	}
-	c.partial = false
 }
 
 func backwards(line int, t, before float64) *Error {
@@ -195,7 +192,11 @@ func (p *plan) clockCell(c *chunk, s *step, i int) int {
 	if !ok {
 		return -1
 	}
-	c.now[s.to] = c.spans[s.to].clock(t, p.zero)
+	zero := p.zero
+	if t.period > 0 {
+		zero = c.spans[s.to].anew(t, zero)
+	}
+	c.now[s.to] = t.instant(zero)
 	return end
 }
 

@@ -53,7 +53,11 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 			c.now[s.to].d.exp += shift
 		case opClock:
 			t, _ := parseStamp(cells[k].text, p.dayFirst)
-			c.now[s.to] = c.spans[s.to].clock(t, p.zero)
+			zero := p.zero
+			if t.period > 0 {
+				zero = c.spans[s.to].anew(t, zero)
+			}
+			c.now[s.to] = t.instant(zero)
 		}
 	}
 	return true

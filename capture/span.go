@@ -40,20 +40,17 @@ type instant struct {
 
 // instant is the stamp counted from the whole second zero.
 func (s stamp) instant(zero int64) instant {
-	return instant{real: true, time: s.since(zero), d: decimal{exp: -s.places}}
+	return instant{real: true, time: s.since(zero), d: decimal{exp: -int(s.places)}}
 }
 
-// clock is the next stamp of the span as an instant: a clock time without a date
-// that is back by nearly a day, or without hours by nearly an hour, has begun
-// anew.
-func (s *span) clock(t stamp, zero int64) instant {
-	if s.period = t.period; t.period > 0 {
-		if s.n > 0 {
-			s.wraps += wraps(s.last, t.since(zero-s.wraps*t.period), t.period)
-		}
-		zero -= s.wraps * t.period
+// anew is the zero that the next clock time without a date counts from: one that
+// is back by nearly a day, or without hours by nearly an hour, has begun anew.
+func (s *span) anew(t stamp, zero int64) int64 {
+	s.period = int64(t.period)
+	if s.n > 0 {
+		s.wraps += wraps(s.last, t.since(zero-s.wraps*s.period), s.period)
 	}
-	return t.instant(zero)
+	return zero - s.wraps*s.period
 }
 
 // wraps is the number of periods to add to a clock time for it to come shortly

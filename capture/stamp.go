@@ -9,8 +9,8 @@ import (
 type stamp struct {
 	second   int64   // whole seconds
 	fraction float64 // of a second
-	places   int     // printed decimal places of the second
-	period   int64   // seconds after which it comes again; 0: it has a date
+	places   int32   // printed decimal places of the second
+	period   int32   // seconds after which it comes again; 0: it has a date
 }
 
 // since returns the seconds from whole second zero to s.
@@ -135,26 +135,28 @@ func (p *stampParser) month() (int, bool) {
 
 // clock reads the rest of a clock time behind its first number.
 func (p *stampParser) clock(hours int) (s stamp, ok bool) {
-	var part [2]int
+	if !p.accept(':') {
+		return s, false
+	}
+	minutes, ok := p.number()
+	if !ok || minutes > 60 {
+		return s, false
+	}
+	seconds := minutes
 	s.period = secondsOfDay
-	for k := range part {
-		if k == 1 && p.i < len(p.b) && (p.b[p.i] == '.' || p.b[p.i] == ',') {
-			hours, part[0], part[1] = 0, hours, part[0]
-			s.period = 3600
-			break
-		}
-		if !p.accept(':') {
+	if p.accept(':') {
+		if seconds, ok = p.number(); !ok || seconds > 60 {
 			return s, false
 		}
-		if part[k], ok = p.number(); !ok || part[k] > 60 {
-			return s, false
-		}
+	} else {
+		hours, minutes = 0, hours
+		s.period = 3600
 	}
 	switch left := len(p.b) - p.i; {
-	case left > 0 && (p.b[p.i] == '.' || p.b[p.i] == ','):
+	case left > 0 && (p.b[p.i] == '.' || p.b[p.i] == ','), (left == 4 || left == 7) && p.b[p.i] == ':':
 		s.fraction, s.places = p.fractionOf()
-	case (left == 4 || left == 7) && p.b[p.i] == ':':
-		s.fraction, s.places = p.fractionOf()
+	case s.period == 3600:
+		return s, false
 	}
 	for p.accept(' ') {
 	}
@@ -167,12 +169,12 @@ func (p *stampParser) clock(hours int) (s stamp, ok bool) {
 		}
 		p.i += 2
 	}
-	s.second = int64(hours)*3600 + int64(part[0])*60 + int64(part[1])
+	s.second = int64(hours*3600 + minutes*60 + seconds)
 	return s, hours < 25 && p.zone(&s)
 }
 
 // fractionOf reads .056435 as a fraction and its number of places.
-func (p *stampParser) fractionOf() (float64, int) {
+func (p *stampParser) fractionOf() (float64, int32) {
 	p.i++
 	first, m := p.i, uint64(0)
 	for p.i < len(p.b) && p.b[p.i]-'0' <= 9 {
@@ -182,7 +184,7 @@ func (p *stampParser) fractionOf() (float64, int) {
 		p.i++
 	}
 	places := min(p.i-first, 18)
-	return decimal{mant: m}.float(-places, nil, '.'), places
+	return decimal{mant: m}.float(-places, nil, '.'), int32(places)
 }
 
 // zone reads Z or +hh:mm and takes it off s.

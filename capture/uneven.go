@@ -22,6 +22,9 @@ type run struct {
 // missing between the runs.
 func (k *clock) nominal() {
 	k.stamps = k.times()
+	if len(k.gaps) == 0 && !k.repeats() {
+		return // one run: the regression is done
+	}
 	k.cut()
 	sxy, sxx := 0.0, 0.0
 	for _, r := range k.runs {
@@ -38,7 +41,7 @@ func (k *clock) nominal() {
 	}
 	k.interval = sxy / sxx
 	k.slopeU = k.slopeError(sxx)
-	if len(k.runs) > 1 && k.count() {
+	if k.count() {
 		k.line()
 	}
 }
