@@ -189,7 +189,7 @@ func (d *layoutDesign) whatThereIs() string {
 func (d *layoutDesign) planValue(i int) {
 	c := &d.columns[i]
 	if c.unit.base == "" && c.kind != kindQuantity {
-		c.unit, _ = d.preamble.valueUnit(i)
+		c.unit, _ = d.preamble.valueUnit(i, d.plan.values)
 		if _, _, scaled := d.preamble.text(meansScale, i); scaled && c.whole {
 			c.unit = unit{base: "counts"} // the unit is that of codes times the scale
 		}

@@ -290,8 +290,15 @@ func (p *preamble) timeUnit(col int) unit {
 	return unit{}
 }
 
-// valueUnit is the unit of the samples of a column that the preamble names.
-func (p *preamble) valueUnit(col int) (unit, bool) {
+// valueUnit is the unit of the samples of a column that the preamble names. A list
+// behind the key, "Units: V, A", is that of the channels in order, of which the
+// column is one.
+func (p *preamble) valueUnit(col, channel int) (unit, bool) {
+	for _, e := range p.entries {
+		if e.means == meansValueUnit && len(e.values) > 1 && e.values[0].column == e.column && channel < len(e.values) {
+			return parseUnit(e.values[channel].text)
+		}
+	}
 	text, u, ok := p.text(meansValueUnit, col)
 	if !ok {
 		return unit{}, false
