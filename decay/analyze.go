@@ -71,21 +71,31 @@ type analysis struct {
 // gates finds the decays, and finds them anew without the samples that a limiter
 // cut off or that stand alone far off the first fit.
 func (a *analysis) gates() {
-	if rails := railed(a.s); len(rails) > 0 {
-		free := a.s.without(rails)
-		found := findDecays(free, a.opt)
-		if cut, ok := cutOff(found, a.s, rails); ok {
-			a.s, a.found = free, found
-			a.findings = append(a.findings, cut)
-		}
-	}
-	if len(a.found) == 0 {
-		a.found = findDecays(a.s, a.opt)
+	a.found = findDecays(a.s, a.opt)
+	if rails := railed(a.s); maybeClipped(a.found, a.s, rails) {
+		a.dropClipped(rails)
 	}
 	a.dropGlitches()
 	if len(a.found) > 0 && a.found[0].coarse {
 		a.findings = append(a.findings, a.found[0].coarseFinding(a.s.step))
 	}
+}
+
+// dropClipped leaves out the railed samples, and those in their shadow, where a fit
+// without them runs past the rail.
+func (a *analysis) dropClipped(rails []int) {
+	free := a.s.without(rails)
+	found := findDecays(free, a.opt)
+	cut, ok := cutOff(found, a.s, rails)
+	if !ok {
+		return
+	}
+	free = free.without(shadowed(found, a.s, rails))
+	if again := findDecays(free, a.opt); len(again) > 0 {
+		found = again
+	}
+	a.s, a.found = free, found
+	a.findings = append(a.findings, cut)
 }
 
 func (a *analysis) dropGlitches() {

@@ -63,7 +63,7 @@ func (g *gate) misfits(s series) bool {
 	if energyGain(&f, v) < energyNeeded(f.n) {
 		return true
 	}
-	bend, _ := slightBend(&f)
+	bend, _ := bendGain(&f)
 	return lineGain(r) > suspicion || bend/density > suspicion || fallGain(&f)/sq(v.rms*v.factor(0)) > suspicion
 }
 
@@ -80,34 +80,45 @@ func lineGain(r []float64) float64 {
 	return most
 }
 
-// slightBend is what the quadratic law explains to first order, and by how much rate
-// and angular frequency at small amplitude then differ. With E = exp(-an) the
-// amplitude follows E + (B/a)(E^2 - E), so that beside the ring and its derivatives
-// by a and w the curve needs a ring of the same frequency that decays twice as fast.
-func slightBend(f *ringFit) (gain float64, by [2]float64) {
-	p := f.problem.alike(2, 0)
-	g := p.gram([]float64{f.a, f.w, 2 * f.a, f.w})
-	fast := p.slot(1)
-	bent, ok := g.project([]int{0, 1, 2, 3, 4, fast, fast + 1}, p.yy)
-	if !ok {
-		return 0, by
-	}
-	// The derivatives are -p nC - q nS by a and q nC - p nS by w.
-	nc, ns, size := bent.beta[3], bent.beta[4], f.p*f.p+f.q*f.q
-	by = [2]float64{-(nc*f.p + ns*f.q) / size, (nc*f.q - ns*f.p) / size}
-	return f.rss - bent.rss, by
-}
+// fallRates are the rates of the exponentials that are tried beside a ring, per
+// length of the window: from a baseline that drifts to the corner of an edge.
+var fallRates = []float64{0.7, 3, 10, 40}
 
 // fallGain is what a plain exponential explains beside the ring.
 func fallGain(f *ringFit) float64 {
-	p := f.problem.alike(1, 1)
 	most := 0.0
-	for _, u := range []float64{0.7, 3, 10} {
-		if n, ok := p.at([]float64{f.a, f.w, u / p.length}); ok {
-			most = math.Max(most, f.rss-n.rss)
-		}
+	for _, u := range fallRates {
+		gain, _ := f.beside(pole{a: u / f.problem.length})
+		most = math.Max(most, gain)
 	}
 	return most
+}
+
+// bendGain is what the quadratic law explains to first order. With E = exp(-an) the
+// amplitude follows E + (B/a)(E^2 - E), so that beside the ring and its derivatives
+// by a and w the curve needs a ring of the same frequency that decays twice as fast.
+func bendGain(f *ringFit) (gain float64, by [2]float64) { return f.beside(pole{2 * f.a, f.w}) }
+
+// beside is what another exponential explains to first order, and by how much rate
+// and angular frequency of the ring then differ.
+func (f *ringFit) beside(other pole) (gain float64, by [2]float64) {
+	theta, more := []float64{f.a, f.w, other.a}, []int{5}
+	p := f.problem.alike(1, 1)
+	if other.w > 0 {
+		theta, more = append(theta, other.w), []int{5, 6}
+		p = f.problem.alike(2, 0)
+	}
+	g := p.gram(theta)
+	ring := []int{0, 1, 2, 3, 4} // the constant, the ring and its derivatives
+	alone, ok := g.project(ring, p.yy)
+	both, okBoth := g.project(append(ring, more...), p.yy)
+	if !ok || !okBoth {
+		return 0, by
+	}
+	// The derivatives are -p nC - q nS by a and q nC - p nS by w.
+	nc, ns, size := both.beta[3], both.beta[4], f.p*f.p+f.q*f.q
+	by = [2]float64{-(nc*f.p + ns*f.q) / size, (nc*f.q - ns*f.p) / size}
+	return alone.rss - both.rss, by
 }
 
 // candidates fits the models that come into question.
@@ -165,9 +176,6 @@ func (f *ringFit) addition() float64 {
 // beginning: one plain ring departs from its large early swings, so that the gate
 // found with it may begin too late.
 func (g *gate) extendBack(s series) {
-	if g.fit.bend == nil && g.fit.companion == nil {
-		return
-	}
 	step := max(1, int(g.fit.period()/8))
 	most := sigmaGrowth * g.fit.sigma()
 	for g.first > 0 {

@@ -73,7 +73,7 @@ func companionStarts(f *ringFit, r []float64) [][2]pole {
 	ring := pole{f.a, f.w}
 	length := f.s.position(f.s.len() - 1)
 	var out [][2]pole
-	for _, u := range []float64{0.7, 3, 10} {
+	for _, u := range fallRates {
 		out = append(out, [2]pole{ring, {a: u / length}})
 	}
 	var done []seed

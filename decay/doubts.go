@@ -63,7 +63,7 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 	case b != nil:
 		out = append(out, dependsOnAmplitude(d, &g.fit))
 	case g.fit.rival != nil:
-		out = append(out, g.fit.mayBend())
+		out = append(out, g.fit.undecided())
 	}
 	switch dense := v.factor(g.fit.w); {
 	case dense > 2 && d.Cycles < chanceCycles:

@@ -57,8 +57,9 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 		model = cmp.Or(model, open)
 	}
 	g.chooseModel(s, model)
-	if !fixedStart {
+	if !fixedStart && (g.fit.bend != nil || g.fit.companion != nil) {
 		g.extendBack(s)
+		g.leaveDrive(s)
 	}
 	g.skipMissing(s)
 	return g, g.finish(s)

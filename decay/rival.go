@@ -19,6 +19,7 @@ const rivalGain = 12
 type rival struct {
 	by   []float64
 	gain float64 // chi-squared by which the other model is better, or worse if negative
+	fall bool    // the other model has an exponential beside the ring
 }
 
 // findRival looks for such a model.
@@ -30,11 +31,20 @@ func (f *ringFit) findRival() *rival {
 		return f.otherLaw()
 	}
 	v := f.noise()
-	gain, by := slightBend(f)
-	if gain /= sq(v.rms * v.factor(f.w)); gain < rivalGain {
+	gain, by := bendGain(f)
+	best := rival{by: by[:], gain: gain / sq(v.rms*v.factor(f.w))}
+	if f.s.len() < parallelFrom { // in a long window an exponential as weak pulls nothing
+		for _, u := range fallRates {
+			gain, by := f.beside(pole{a: u / f.problem.length})
+			if gain /= sq(v.rms * v.factor(0)); gain > best.gain {
+				best = rival{by[:], gain, true}
+			}
+		}
+	}
+	if best.gain < rivalGain {
 		return nil
 	}
-	return &rival{by[:], gain}
+	return &best
 }
 
 // otherLaw compares the two laws of an amplitude that falls smoothly.
@@ -57,7 +67,7 @@ func (f *ringFit) otherLaw() *rival {
 	if gain < -rivalGain {
 		return nil
 	}
-	return &rival{[]float64{second.a - own.a, second.w - own.w, second.bend.b - own.bend.b, second.bend.g - own.bend.g}, gain}
+	return &rival{by: []float64{second.a - own.a, second.w - own.w, second.bend.b - own.bend.b, second.bend.g - own.bend.g}, gain: gain}
 }
 
 // widen adds the difference to a covariance of the fit's parameters.
@@ -72,16 +82,21 @@ func (p *rival) widen(cov *sym) {
 	}
 }
 
-// mayBend says that one ring accounts for the samples, but a slightly bent one does
-// so better.
-func (f *ringFit) mayBend() Finding {
+// undecided says that one ring accounts for the samples, but that its rival does so
+// better.
+func (f *ringFit) undecided() Finding {
 	a, w := f.a+f.rival.by[0], f.w+f.rival.by[1]
 	say := note
 	if f.rival.gain > evidence {
 		say = warning
 	}
+	then := fmt.Sprintf("with one, the ring would have %s and Q %.4g", quantity.Format(w/(2*math.Pi*f.s.dt), "Hz", 6), math.Hypot(a, w)/(2*a))
+	if f.rival.fall {
+		return say(capture.BaselineDrift,
+			fmt.Sprintf("An exponential beside the ring, of a baseline that recovers or of an edge that is not over, is not ruled out: %s. The uncertainties span both.", then),
+			"Let the record hold more of the level behind the decay, or set the gate a little later.")
+	}
 	return say(capture.AmplitudeDependent,
-		fmt.Sprintf("A weak dependence on the amplitude is not ruled out: with one, the ring would have %s and Q %.4g at small amplitude. The uncertainties span both.",
-			quantity.Format(w/(2*math.Pi*f.s.dt), "Hz", 6), math.Hypot(a, w)/(2*a)),
+		fmt.Sprintf("A weak dependence on the amplitude is not ruled out: %s at small amplitude. The uncertainties span both.", then),
 		"Capture once more at half the amplitude, or average several decays: the two then part or agree.")
 }

@@ -11,7 +11,6 @@ import (
 var sprintf = fmt.Sprintf
 
 const (
-	railRun     = 3       // samples in a row on a rail that may be clipped
 	stepSamples = 1 << 13 // samples that tell the steps of a converter
 	glitchSigma = 7       // departure that makes a sample an outlier
 	glitchBlock = 1 << 14 // samples looked at in one go
@@ -20,31 +19,6 @@ const (
 	manySteps   = 50      // amplitude in steps from which rounding hardly moves the result
 	ditherLeast = 0.4     // noise in steps from which a converter counts as dithered
 )
-
-// railed returns the samples that lie on the upper or lower end of the range in
-// runs: what a limiter or a converter may have cut off. The top of an oscillation
-// repeats one level too: whether more was there, the fit without them tells.
-func railed(s series) []int {
-	var out []int
-	y := s.y
-	for i := 0; i < len(y); i++ {
-		rail := y[i]
-		if rail != s.hi && rail != s.lo {
-			continue
-		}
-		j := i
-		for j < len(y) && y[j] == rail {
-			j++
-		}
-		if j-i >= railRun {
-			for k := i; k < j; k++ {
-				out = append(out, k)
-			}
-		}
-		i = j - 1
-	}
-	return out
-}
 
 // stepOf estimates the step of the converter: the smallest difference between
 // levels that the samples take, provided that all others are multiples of it; 0
@@ -85,47 +59,6 @@ func (s series) without(list []int) series {
 		out.y[i] = math.NaN()
 	}
 	return out
-}
-
-// beyond reports whether a fit that never saw the railed samples runs past the
-// rail there: then they were cut off.
-func (g *gate) beyond(s series, list []int) (count int, excess float64) {
-	sum := 0.0
-	for _, i := range list {
-		if i < g.first || i >= g.last {
-			continue
-		}
-		n := (s.time(i) - s.time(g.first)) / s.dt
-		d := g.fit.value(n) - s.y[i]
-		if s.y[i] < g.fit.offset() {
-			d = -d
-		}
-		sum += d
-		count++
-	}
-	if count == 0 {
-		return 0, 0
-	}
-	return count, sum / float64(count)
-}
-
-// cutOff tells whether any of the decays, found without the railed samples, runs past
-// the rail where they were, and says so.
-func cutOff(found []gate, s series, rails []int) (Finding, bool) {
-	count, short := 0, 0.0
-	for i := range found {
-		g := &found[i]
-		if n, excess := g.beyond(s, rails); n > 0 && excess > math.Max(s.step, 2*g.fit.sigma()) {
-			count += n
-			short += float64(n) * excess / g.fit.size()
-		}
-	}
-	if count == 0 {
-		return Finding{}, false
-	}
-	return warning(capture.Clipped,
-		sprintf("%d samples of the decay are cut off at the end of the range, %s of the amplitude short on average; they were left out of the fit.", count, percent(short/float64(count))),
-		"Use a larger vertical range, or move the offset, and capture again."), true
 }
 
 // glitches returns the samples of the gate that stand alone far off the fit.
