@@ -7,9 +7,8 @@ import (
 	"testing"
 )
 
-// burst is the response of a resonant circuit to a burst of drive that lasts from
-// start for length seconds, by the classical Runge-Kutta steps of
-// y” + 2 alpha y' + omega0^2 y = omega0^2 sin(omega t + phase); its peak is 1.
+// burst is what a resonant circuit does in answer to a burst of drive that lasts from
+// start for length seconds; its peak is 1.
 type burst struct {
 	f0, q                float64 // of the circuit
 	drive, phase         float64 // Hz, rad
@@ -18,26 +17,18 @@ type burst struct {
 
 func (b *burst) samples(n int, dt float64, rng *rand.Rand) []float64 {
 	const steps = 16 // a sample
-	w := 2 * math.Pi * b.f0
-	slope := func(t, x, v float64) (dx, dv float64) {
-		force := 0.0
-		if t >= b.start && t < b.start+b.length {
-			force = math.Sin(2*math.Pi*b.drive*(t-b.start) + b.phase)
+	r := &resonator{w: 2 * math.Pi * b.f0 * dt, q: b.q, drive: func(t float64) float64 {
+		if t = t*dt - b.start; t < 0 || t >= b.length {
+			return 0
 		}
-		return v, w*w*(force-x) - w/b.q*v
-	}
-	y := make([]float64, n)
-	x, v, h, peak := 0.0, 0.0, dt/steps, 0.0
+		return math.Sin(2*math.Pi*b.drive*t + b.phase)
+	}}
+	y, peak := make([]float64, n), 0.0
 	for i := range y {
-		y[i] = x
-		peak = math.Max(peak, math.Abs(x))
+		y[i] = r.x
+		peak = math.Max(peak, math.Abs(r.x))
 		for k := range steps {
-			t := float64(i)*dt + float64(k)*h
-			x1, v1 := slope(t, x, v)
-			x2, v2 := slope(t+h/2, x+h/2*x1, v+h/2*v1)
-			x3, v3 := slope(t+h/2, x+h/2*x2, v+h/2*v2)
-			x4, v4 := slope(t+h, x+h*x3, v+h*v3)
-			x, v = x+h/6*(x1+2*x2+2*x3+x4), v+h/6*(v1+2*v2+2*v3+v4)
+			r.advance(float64(i)+float64(k)/steps, 1.0/steps)
 		}
 	}
 	for i := range y {

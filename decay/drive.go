@@ -6,7 +6,7 @@ const (
 	driveGuard  = 0.5   // cycles behind the start where a source has surely fallen silent
 	driveMean   = 0.125 // cycles that departures from the ring are averaged over,
 	driveMargin = 0.125 // and cycles left out behind the last of them
-	driveSigma  = 3     // departure of that mean, in its own uncertainty, that tells a source
+	driveSigma  = 3.5   // departure of that mean, in its own uncertainty, that tells a source
 	driveEdge   = 8     // departure of single samples, in noise, of an edge
 )
 
@@ -16,7 +16,9 @@ const (
 // the ring explains within the noise, would pull it. Seen from a fit that begins
 // later, backwards, the source shows by departures that have one sign for a part of
 // a cycle. An edge stands out by itself, and its place is known already.
-func (g *gate) leaveDrive(s series) {
+// Behind a level only what is in the gate counts, a pulse that is not over: where the
+// level ends is known better.
+func (g *gate) leaveDrive(s series, level bool) {
 	period := g.fit.period()
 	mean := max(1, int(driveMean*period))
 	behind := *g
@@ -38,11 +40,14 @@ func (g *gate) leaveDrive(s series) {
 		n := origin.position(i-g.first+mean) - start
 		return s.y[i] - behind.fit.value(n), sigma * behind.fit.spread(&cov, n)
 	}
-	if r, spread := departs(g.first - 1); math.Abs(r) > driveEdge*math.Hypot(sigma, spread) {
+	last := g.first - mean
+	if level {
+		last = g.first
+	} else if r, spread := departs(g.first - 1); math.Abs(r) > driveEdge*math.Hypot(sigma, spread) {
 		return
 	}
 	sum, n := 0.0, 0
-	for i := behind.first - 1; i >= g.first-mean; i-- {
+	for i := behind.first - 1; i >= last; i-- {
 		r, spread := departs(i)
 		if r == r {
 			sum, n = sum+r, n+1
@@ -56,7 +61,7 @@ func (g *gate) leaveDrive(s series) {
 			behind.first = min(behind.first, i+mean+int(driveMargin*period))
 			break
 		}
-		if i == g.first-mean {
+		if i == last {
 			return // nothing but the ring
 		}
 	}

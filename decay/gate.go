@@ -59,7 +59,7 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 	g.chooseModel(s, model)
 	if !fixedStart && (g.fit.bend != nil || g.fit.companion != nil) {
 		g.extendBack(s)
-		g.leaveDrive(s)
+		g.leaveDrive(s, false)
 	}
 	g.skipMissing(s)
 	return g, g.finish(s)

@@ -151,9 +151,7 @@ func (g *gate) settleStart(s series, before int, was pole) {
 		head.refit(s, coarse)
 	}
 	head.trim(s)
-	if !head.leaveLevel(s) {
-		head.leaveDrive(s)
-	}
+	head.leaveDrive(s, head.leaveLevel(s))
 	switch {
 	case !long:
 		*g = head
