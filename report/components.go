@@ -34,13 +34,21 @@ type Components struct {
 
 // Err says which captures could not be read, and why; nil when all were.
 func (c *Components) Err() error {
-	var all error
+	var all []error
 	for _, r := range c.RingDowns {
+		all = append(all, r.Err)
+	}
+	return allOf(all...)
+}
+
+// allOf says all errors in one line; nil when there is none.
+func allOf(errs ...error) (all error) {
+	for _, err := range errs {
 		switch {
 		case all == nil:
-			all = r.Err
-		case r.Err != nil:
-			all = fmt.Errorf("%w; %w", all, r.Err)
+			all = err
+		case err != nil:
+			all = fmt.Errorf("%w; %w", all, err)
 		}
 	}
 	return all

@@ -27,7 +27,7 @@ type CrossCheck struct {
 }
 
 // Err says which of the two could not be read, and why; nil when both were.
-func (c *CrossCheck) Err() error { return errors.Join(c.RingDown.Err, c.Sweep.Err) }
+func (c *CrossCheck) Err() error { return allOf(c.RingDown.Err, c.Sweep.Err) }
 
 func (c *CrossCheck) check() error {
 	if c.RingDown == nil || c.Sweep == nil || c.Err() == nil && c.Check == nil {

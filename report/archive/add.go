@@ -11,6 +11,7 @@ package archive
 import (
 	"bufio"
 	"bytes"
+	"cmp"
 	"compress/gzip"
 	"crypto/sha256"
 	"encoding/hex"
@@ -139,7 +140,7 @@ func (m *mark) fill(temp, home string, e *Entry) (name string, err error) {
 	if name, err = place(temp, home, e); err != nil {
 		return "", err
 	}
-	return name, errors.Join(syncFolder(home), syncFolder(filepath.Dir(home)))
+	return name, cmp.Or(syncFolder(home), syncFolder(filepath.Dir(home)))
 }
 
 func check(e *Entry) error {
@@ -190,14 +191,14 @@ func write(folder string, e *Entry) error {
 			return err
 		}
 	}
-	if err := errors.Join(put(resultName, e.Result), put(reportName, e.Report)); err != nil {
+	if err := cmp.Or(put(resultName, e.Result), put(reportName, e.Report)); err != nil {
 		return err
 	}
 	err := writeFile(filepath.Join(folder, sumsName), nil, func(w io.Writer) error {
 		_, err := io.WriteString(w, sums.String())
 		return err
 	})
-	return errors.Join(err, syncFolder(folder))
+	return cmp.Or(err, syncFolder(folder))
 }
 
 // writeFile writes a new file, counts its bytes into sum, and makes it durable.
@@ -218,7 +219,7 @@ func writeFile(name string, sum hash.Hash, fill func(io.Writer) error) error {
 	if err == nil {
 		err = f.Sync()
 	}
-	err = errors.Join(err, f.Close())
+	err = cmp.Or(err, f.Close())
 	var path *fs.PathError
 	if errors.As(err, &path) { // "write …/.20…tmp/report.html: no space left": the name says nothing
 		return fmt.Errorf("%s: %w", filepath.Base(name), path.Err)

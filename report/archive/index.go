@@ -1,6 +1,7 @@
 package archive
 
 import (
+	"cmp"
 	"errors"
 	"fmt"
 	"io"
@@ -62,10 +63,16 @@ func mustBeArchive(dir string) error {
 	if err != nil {
 		return err
 	}
+	var unread error
 	for _, folder := range folders {
-		if names, err := namesOf(filepath.Join(dir, folder)); err == nil && len(names) > 0 {
+		names, err := namesOf(filepath.Join(dir, folder))
+		if len(names) > 0 {
 			return nil
 		}
+		unread = cmp.Or(unread, err)
+	}
+	if unread != nil {
+		return unread
 	}
 	return fmt.Errorf("%s is not an archive: no folder in it holds an entry", dir)
 }
@@ -197,7 +204,7 @@ func writePage(folder string, fill func(io.Writer) error) error {
 	if err != nil {
 		return err
 	}
-	err = errors.Join(fill(f), f.Close())
+	err = cmp.Or(fill(f), f.Close())
 	if err == nil {
 		err = os.Rename(temp, filepath.Join(folder, indexName))
 	}

@@ -183,9 +183,11 @@ func (o object) quantity(key, unit string) quantity.Quantity {
 }
 
 // List returns all entries, device by device and oldest first, from the entries
-// themselves. A folder without any entry is an archive without any; a name that is
-// no folder is an error.
+// themselves. A folder without any entry is no archive, which is an error.
 func List(dir string) ([]*Record, error) {
+	if err := mustBeArchive(dir); err != nil {
+		return nil, err
+	}
 	devices, err := devicesOf(dir)
 	if err != nil {
 		return nil, err
