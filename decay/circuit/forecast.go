@@ -25,10 +25,10 @@ func (b *Bench) Forecast(f0, q float64) (*Forecast, error) {
 	if f0 == 0 || q == 0 {
 		r := whole.Loaded(own)
 		if math.IsNaN(r.NaturalFrequency) {
-			return nil, errors.New("the bench file gives no inductance or no capacitance under [circuit]: give natural frequency and Q")
+			return nil, errors.New("the bench file gives no inductance or no capacitance under [circuit]: give them, or natural frequency and Q")
 		}
 		if q == 0 && !b.CoilResistance.Known() {
-			return nil, errors.New("the bench file gives no coil_resistance under [circuit]: give Q")
+			return nil, errors.New("the bench file gives no coil_resistance under [circuit]: give it, or Q")
 		}
 		if f0 == 0 {
 			f0 = r.NaturalFrequency

@@ -2,7 +2,6 @@ package circuit
 
 import (
 	"bufio"
-	"errors"
 	"fmt"
 	"io"
 	"math"
@@ -42,7 +41,7 @@ func (s *SweepSimulation) Sweep() ([]complex128, error) {
 		return nil, fmt.Errorf("all parts of a parallel circuit have the voltage of the capacitor: it has none across the %s", s.Across)
 	}
 	if s.Across == capture.Resistor && net.fitted == 0 {
-		return nil, errors.New("the bench file gives no fitted resistor to measure across")
+		return nil, s.Bench.lacks("circuit.resistor is not given: there is none to measure across")
 	}
 	rng := s.Random
 	if rng == nil {

@@ -81,7 +81,7 @@ func (s *Simulation) check() error {
 	case !(s.Interval > 0) || math.IsInf(s.Interval, 0):
 		return errors.New("the sampling interval is not above zero")
 	case s.Samples < 1:
-		return errors.New("the record has no samples")
+		return errors.New("the record has no samples: record for longer, or sample faster")
 	case s.Samples > samplesMost:
 		return fmt.Errorf("the record has more than %d samples: record for less time, or sample slower", samplesMost)
 	case s.Pretrigger < 0 || s.Pretrigger >= s.Samples:
@@ -93,9 +93,11 @@ func (s *Simulation) check() error {
 	case !(s.Noise >= 0):
 		return errors.New("the noise is negative")
 	case !(math.Abs(s.NoiseCorrelation) < 1):
-		return errors.New("the correlation of the noise is not between -1 and 1")
-	case !(s.LossGrowth >= 0) || !(math.Abs(s.FrequencyShift) < 0.5):
-		return errors.New("expected a growth of loss that is not negative, and a shift of frequency below a half")
+		return fmt.Errorf("a correlation of the noise of %g: expected a number between -1 and 1", s.NoiseCorrelation)
+	case !(s.LossGrowth >= 0):
+		return fmt.Errorf("a growth of loss of %g %%: expected none below zero", 100*s.LossGrowth)
+	case !(math.Abs(s.FrequencyShift) < 0.5):
+		return fmt.Errorf("a shift of frequency of %g %%: expected less than 50 %% up or down", 100*s.FrequencyShift)
 	}
 	return nil
 }

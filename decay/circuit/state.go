@@ -35,11 +35,14 @@ type network struct {
 	parallel                              bool
 }
 
+// lacks is the error of a bench file that does not say enough for a simulation.
+func (b *Bench) lacks(what string) error { return &BenchError{File: b.File, Err: errors.New(what)} }
+
 // newNetwork returns the state equation of the bench's circuit in a set-up.
 func newNetwork(b *Bench, at *Setup) (*network, error) {
 	l, c := b.Inductance, b.Capacitance
 	if !l.Known() || !c.Known() {
-		return nil, errors.New("the bench file gives no inductance or no capacitance under [circuit]: a simulated circuit needs both")
+		return nil, b.lacks("inductance or capacitance under [circuit] is not given: a simulated circuit needs both")
 	}
 	n := &network{inductance: l.Value, capacitance: c.Value + orZero(at.ProbeCapacitance),
 		coil: orZero(b.CoilResistance), fitted: orZero(b.Resistor), parallel: b.Topology == Parallel}
@@ -47,7 +50,7 @@ func newNetwork(b *Bench, at *Setup) (*network, error) {
 	source, probe := orZero(at.SourceResistance), inverse(orZero(at.ProbeResistance))
 	if n.parallel {
 		if !(source > 0) {
-			return nil, errors.New("the bench file gives no source_resistance: nothing drives the parallel circuit")
+			return nil, b.lacks("source_resistance is not given: nothing drives the parallel circuit")
 		}
 		across := inverse(source) + inverse(n.fitted) + probe
 		n.a[0] = [4]float64{-n.coil / n.inductance, w}
@@ -59,7 +62,7 @@ func newNetwork(b *Bench, at *Setup) (*network, error) {
 		n.b[0] = w
 	}
 	if !(n.trace() < 0) {
-		return nil, errors.New("nothing in the bench file takes power, so the circuit would ring for ever: give resistor, coil_resistance or source_resistance")
+		return nil, b.lacks("nothing takes power, so the circuit would ring for ever: give resistor, coil_resistance or source_resistance")
 	}
 	return n, nil
 }
