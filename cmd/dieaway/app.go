@@ -6,10 +6,14 @@ import (
 	"fmt"
 	"io"
 	"os"
+	"strconv"
+	"strings"
 	"unicode"
 	"unicode/utf8"
 
 	"github.com/urfave/cli/v2"
+
+	"dieaway/report"
 )
 
 // Exit codes: scripts depend on them. With several files the highest wins.
@@ -78,9 +82,10 @@ func conclude(stderr io.Writer, err error) int {
 	return code
 }
 
-// say prints one message to people: not a result.
+// say prints one message to people, on one line: not a result. Names of files in
+// it may hold anything.
 func say(stderr io.Writer, message any) {
-	fmt.Fprintln(stderr, "dieaway:", message)
+	fmt.Fprintln(stderr, "dieaway:", report.Clean(fmt.Sprint(message), 0))
 }
 
 func newApp(stdin io.Reader, stdout, stderr io.Writer) *cli.App {
@@ -114,7 +119,15 @@ func noCommand(c *cli.Context) error {
 	if _, err := os.Stat(name); err == nil {
 		return usagef("the command comes first, found the file %s: `dieaway fit %[1]s` measures it", name)
 	}
-	return usagef("unknown command %s; the nearest is %s, and `dieaway help` lists all", name, cli.SuggestCommand(c.App.Commands, name))
+	return usagef("unknown command %s%s; `dieaway help` lists all", name, nearest(name, cli.SuggestCommand(c.App.Commands, name)))
+}
+
+// found names the arguments of a command for a message.
+func found(c *cli.Context) string {
+	if !c.Args().Present() {
+		return "nothing"
+	}
+	return strconv.Quote(strings.Join(c.Args().Slice(), " "))
 }
 
 // usageError replaces the library's, which prints the whole help to standard output.

@@ -5,7 +5,6 @@ import (
 	"fmt"
 	"io"
 	"os"
-	"strings"
 
 	"github.com/urfave/cli/v2"
 
@@ -42,11 +41,20 @@ func archiveAction(c *cli.Context) error {
 	action, dir := actions[c.Args().First()], c.Args().Get(1)
 	switch {
 	case action == nil || c.Args().Len() != 2 || dir == "":
-		return usagef("expected `dieaway archive list DIR`, `verify DIR` or `rebuild DIR`, found %q", strings.Join(c.Args().Slice(), " "))
+		return usagef("expected `dieaway archive list DIR`, `verify DIR` or `rebuild DIR`, found %s", found(c))
 	case c.Bool("json") && c.Bool("csv"):
 		return usagef("--json and --csv are two forms of one list: take one of them")
 	}
-	return action(c, dir)
+	v := &values{c: c}
+	v.filled("device")
+	return firstOf(
+		func() error { return onlyFlagsOf(c, c.Args().First()) },
+		func() error { return v.err },
+		func() error {
+			_, err := interruptible(c.Context, func() (struct{}, error) { return struct{}{}, action(c, dir) })
+			return err
+		},
+	)
 }
 
 func listArchive(c *cli.Context, dir string) error {
@@ -57,7 +65,7 @@ func listArchive(c *cli.Context, dir string) error {
 	if c.IsSet("device") {
 		all = ofDevice(all, c.String("device"))
 		if len(all) == 0 {
-			return fmt.Errorf("the archive %s has no entry of the device %s", dir, c.String("device"))
+			return fmt.Errorf("the archive %s has no entry of the device %q", dir, c.String("device"))
 		}
 	}
 	write := archive.WriteTable

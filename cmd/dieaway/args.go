@@ -1,10 +1,12 @@
 package main
 
 import (
+	"os"
 	"slices"
 	"strings"
 
 	"github.com/urfave/cli/v2"
+	"github.com/xrash/smetrics"
 )
 
 // flagsFirst reorders the arguments of a command so that flags may stand before
@@ -98,12 +100,36 @@ func takesNoValue(flag cli.Flag) bool {
 }
 
 func unknownFlag(command *cli.Command, arg string) error {
-	name, _, _ := strings.Cut(strings.TrimLeft(arg, "-"), "=")
-	hint := ""
-	if near := cli.SuggestFlag(command.Flags, name, false); strings.HasPrefix(near, "--") {
-		hint = "; the nearest is " + near
+	if _, err := os.Stat(arg); err == nil {
+		return usagef("%s is no flag: write ./%[1]s for the file of that name", arg)
 	}
-	return usagef("unknown flag %s%s; `dieaway %s --help` lists all", arg, hint, command.Name)
+	name, _, _ := strings.Cut(strings.TrimLeft(arg, "-"), "=")
+	return usagef("unknown flag %s%s; `dieaway %s --help` lists all", arg, nearest(name, cli.SuggestFlag(command.Flags, name, false)), command.Name)
+}
+
+// alike is the least likeness (Jaro and Winkler) of a word and what it may be a slip of.
+const alike = 0.78
+
+// nearest returns the part of a message that says what an unknown word may have
+// been meant for; "" where the library's candidate is not like it.
+func nearest(word, candidate string) string {
+	if smetrics.JaroWinkler(strings.ToLower(word), strings.TrimLeft(candidate, "-"), 0.7, 4) < alike {
+		return ""
+	}
+	return "; the nearest is " + candidate
+}
+
+// onlyFlagsOf refuses flags that are for another action of the command, as their
+// usage says: they would be ignored.
+func onlyFlagsOf(c *cli.Context, action string) error {
+	for _, f := range c.Command.Flags {
+		of, _, only := strings.Cut(f.(cli.DocGenerationFlag).GetUsage(), ": ")
+		actions := strings.Split(of, ", ")
+		if name := f.Names()[0]; only && c.IsSet(name) && slices.Contains(choices[c.Command.Name], actions[0]) && !slices.Contains(actions, action) {
+			return usagef("--%s is for `dieaway %s %s`", name, c.Command.Name, strings.Join(actions, "` or `dieaway "+c.Command.Name+" "))
+		}
+	}
+	return nil
 }
 
 // unknownGlobal refuses a flag in the place of the command, but for the few

@@ -32,7 +32,7 @@ func completionCommand() *cli.Command {
 // choices are the words that an argument or the value of a flag may be.
 var choices = map[string][]string{
 	"simulate": {"ringdown", "sweep"}, "archive": {"list", "verify", "rebuild"}, "completion": shells,
-	"--model": models, "--time-unit": timeUnits, "--across": parts, "--frequency-unit": {"Hz", "kHz", "MHz", "GHz"},
+	"--model": models, "--time-unit": timeUnits, "--across": parts, "--frequency-unit": frequencyUnits,
 }
 
 // A completed is a command as the scripts need it.
@@ -51,7 +51,7 @@ type completedFlag struct {
 func completion(c *cli.Context) error {
 	shell := c.Args().First()
 	if c.Args().Len() != 1 || choiceOf(shells, shell) == "" {
-		return usagef("expected `dieaway completion` with one of %s, found %q", strings.Join(shells, ", "), strings.Join(c.Args().Slice(), " "))
+		return usagef("expected `dieaway completion` with one of %s, found %s", strings.Join(shells, ", "), found(c))
 	}
 	t, err := template.New("").Funcs(template.FuncMap{"join": strings.Join, "quote": quoteWords}).ParseFS(completionFiles, "completion/*.tmpl")
 	if err != nil {

@@ -2,7 +2,6 @@ package main
 
 import (
 	"context"
-	"errors"
 	"fmt"
 	"io"
 	"math"
@@ -88,12 +87,12 @@ func parseAdded(c *cli.Context, n int) (values []quantity.Quantity, resistors bo
 			return nil, false, usagef("--%s: %w", flag, err)
 		}
 		if q.Value < 0 {
-			return nil, false, usagef("--%s %s: expected values that are not negative", flag, strings.TrimSpace(text))
+			return nil, false, unexpected(flag, strings.TrimSpace(text), "values that are not negative")
 		}
 		values = append(values, q)
 	}
 	if len(values) != n {
-		return nil, false, usagef("--%s has %d values for %d captures: give one for each, 0 for the circuit as it is", flag, len(values), n)
+		return nil, false, usagef("--%s: expected one value for each capture, 0 for the circuit as it is, found values %d, captures %d", flag, len(values), n)
 	}
 	if n < 2 {
 		return nil, false, usagef("one capture does not tell coil and capacitance apart: give at least two, with different parts added")
@@ -111,7 +110,7 @@ func (k *componentsJob) measure(ctx context.Context) measured {
 	for i := range k.captures {
 		r, ok := work.next(ctx, i)
 		if !ok {
-			m.err = errors.New("interrupted")
+			m.err = errInterrupted
 			return m
 		}
 		work.done()

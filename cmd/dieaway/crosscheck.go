@@ -1,7 +1,6 @@
 package main
 
 import (
-	"fmt"
 	"slices"
 
 	"github.com/urfave/cli/v2"
@@ -47,7 +46,7 @@ func crosscheck(c *cli.Context) error {
 	}
 	files := c.Args().Slice()
 	if len(files) != 2 {
-		return usagef("expected a capture and a sweep, found %d files: `dieaway crosscheck CAPTURE SWEEP`", len(files))
+		return usagef("expected `dieaway crosscheck CAPTURE SWEEP`, found %s", found(c))
 	}
 	// One page holds both.
 	if err := checkFiles("capture", files); err != nil {
@@ -66,15 +65,7 @@ func crosscheck(c *cli.Context) error {
 // crosscheck measures both files and compares them.
 func (j *sweepJob) crosscheck(ring, sweep source) measured {
 	r := &report.CrossCheck{RingDown: j.ringDown(ring), Sweep: j.sweep(sweep), Device: j.device, Origin: j.origin}
-	m := measured{evidence: r}
-	switch a, b := r.RingDown.Err, r.Sweep.Err; {
-	case a != nil && b != nil:
-		m.err = fmt.Errorf("%w; %w", a, b)
-	case a != nil:
-		m.err = a
-	case b != nil:
-		m.err = b
-	}
+	m := measured{evidence: r, err: r.Err()}
 	if m.err != nil {
 		return m
 	}

@@ -10,7 +10,6 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
-	"dieaway/decay/quantity"
 )
 
 // outputFlags are the flags of every command that measures.
@@ -78,10 +77,10 @@ func parseJob(c *cli.Context) (*job, error) {
 	if j.json && j.explain {
 		return nil, usagef("--json prints nothing but JSON: take --explain by itself")
 	}
-	for _, name := range []string{"report", "channel", "device", "archive"} {
-		if c.IsSet(name) && c.String(name) == "" {
-			return nil, usagef("--%s is empty", name)
-		}
+	v := &values{c: c}
+	v.filled("report", "channel", "device", "archive")
+	if v.err != nil {
+		return nil, v.err
 	}
 	return j, firstOf(
 		func() error { return parseRead(c, &j.read) },
@@ -100,57 +99,27 @@ func firstOf(steps ...func() error) error {
 }
 
 func parseRead(c *cli.Context, opt *capture.Options) error {
-	interval, err := parseTime(c, "interval")
-	if err != nil {
-		return err
-	}
-	if interval != nil {
-		if *interval <= 0 {
-			return usagef("--interval %s: expected a time greater than zero", c.String("interval"))
-		}
-		opt.Interval = *interval
-	}
-	opt.TimeUnit = c.String("time-unit")
-	if c.IsSet("time-unit") && !slices.Contains(timeUnits, opt.TimeUnit) {
-		return usagef("--time-unit %s: expected one of %s", opt.TimeUnit, strings.Join(timeUnits, ", "))
-	}
-	return nil
+	v := &values{c: c}
+	v.take("interval", "s", &opt.Interval, above0)
+	v.word("time-unit", timeUnits, &opt.TimeUnit)
+	return v.err
 }
 
 func parseAnalysis(c *cli.Context, opt *decay.Options) error {
-	var err error
-	if opt.From, err = parseTime(c, "from"); err != nil {
-		return err
-	}
-	if opt.To, err = parseTime(c, "to"); err != nil {
-		return err
-	}
-	if opt.From != nil && opt.To != nil && *opt.From >= *opt.To {
+	v := &values{c: c}
+	opt.From, opt.To = v.time("from"), v.time("to")
+	model := models[0]
+	v.word("model", models, &model)
+	switch {
+	case v.err != nil:
+		return v.err
+	case opt.From != nil && opt.To != nil && *opt.From >= *opt.To:
 		return usagef("--from %s is not before --to %s", c.String("from"), c.String("to"))
 	}
-	model := c.String("model")
-	if c.IsSet("model") && !slices.Contains(models, model) {
-		return usagef("--model %s: expected one of %s", model, strings.Join(models, ", "))
-	}
-	if model != "auto" {
+	if model != models[0] {
 		opt.Model = decay.Model(model)
 	}
 	return nil
-}
-
-// parseTime returns the time of a flag in seconds, nil when it is not given.
-func parseTime(c *cli.Context, name string) (*float64, error) {
-	if !c.IsSet(name) {
-		return nil, nil
-	}
-	t, err := quantity.Parse(c.String(name), "s")
-	if err != nil {
-		return nil, usagef("--%s: %w", name, err)
-	}
-	if !math.IsNaN(t.U) {
-		return nil, usagef("--%s %s: expected a time without an uncertainty", name, c.String(name))
-	}
-	return &t.Value, nil
 }
 
 func parseProbe(c *cli.Context, factor *float64) error {
@@ -160,7 +129,7 @@ func parseProbe(c *cli.Context, factor *float64) error {
 	text := c.String("probe")
 	x, err := strconv.ParseFloat(text, 64)
 	if err != nil || math.IsInf(x, 0) || !(x > 0) { // nor NaN
-		return usagef("--probe %s: expected a factor greater than zero, for example 10", text)
+		return unexpected("probe", text, "a factor above zero such as 10")
 	}
 	*factor = x
 	return nil

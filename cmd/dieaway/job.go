@@ -35,6 +35,7 @@ type job struct {
 	origin   report.Origin
 	style    report.Style
 	many     *many // nil for one capture
+	printed  bool  // there is a summary above
 
 	stdin          io.Reader
 	stdout, stderr io.Writer
@@ -137,7 +138,7 @@ func (j *job) runAll(ctx context.Context, things string, measure func(source) me
 	for i := range j.sources {
 		r, ok := work.next(ctx, i)
 		if !ok {
-			return errors.New("interrupted")
+			return errInterrupted
 		}
 		bar.clear()
 		code, err := j.deliver(r, page, i)
@@ -160,7 +161,7 @@ func (j *job) ringDown(s source) *report.RingDown {
 	r := &report.RingDown{File: s.name, Device: j.device, Origin: j.origin}
 	c, err := s.open(j.read)
 	if err != nil {
-		r.Err = err
+		r.Err = takenForCapture(err, s.name)
 		return r
 	}
 	scaleVoltages(c, j.probe)
@@ -205,17 +206,18 @@ func (j *job) deliver(r measured, page *output, i int) (int, error) {
 	if r.err != nil {
 		say(j.stderr, r.err)
 	}
-	if page != nil && r.err == nil {
-		if err := j.file(r, page); err != nil {
-			return exitFailed, err
-		}
-	}
 	code := j.exitCode(r)
-	if j.archive != "" && r.err == nil {
-		if err := j.keep(r); err != nil { // the result is good all the same
+	filed := func(err error) {
+		if err != nil { // the result is good all the same
 			say(j.stderr, err)
 			code = max(code, exitFailed)
 		}
+	}
+	if page != nil && r.err == nil {
+		filed(j.file(r, page))
+	}
+	if j.archive != "" && r.err == nil {
+		filed(j.keep(r))
 	}
 	out := bufio.NewWriter(j.stdout)
 	if err := j.print(out, r, i); err != nil {
@@ -253,9 +255,10 @@ func (j *job) print(out io.Writer, r measured, i int) error {
 	if r.err != nil || j.quiet && !j.explain {
 		return nil
 	}
-	if i > 0 {
+	if j.printed {
 		fmt.Fprintln(out)
 	}
+	j.printed = true
 	if j.explain {
 		if err := r.explain(out); err != nil {
 			return err

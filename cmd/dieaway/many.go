@@ -2,6 +2,7 @@ package main
 
 import (
 	"bufio"
+	"cmp"
 	"context"
 	"errors"
 	"io"
@@ -49,8 +50,7 @@ func (j *job) runMany(ctx context.Context, csv bool) error {
 		out.row = r.Row(pictures)
 		return out
 	})
-	var exit *exitError
-	if ended != nil && !errors.As(ended, &exit) {
+	if ended != nil && codeOf(ended) == exitDone {
 		return ended
 	}
 	if err := m.finish(); err != nil {
@@ -58,10 +58,20 @@ func (j *job) runMany(ctx context.Context, csv bool) error {
 	}
 	if page != nil {
 		if err := m.file(page, name); err != nil {
-			return err
+			say(j.stderr, err)
+			return &exitError{Code: max(codeOf(ended), exitFailed)}
 		}
 	}
 	return ended
+}
+
+// codeOf returns the exit code of an error that has said all there is to say, else exitDone.
+func codeOf(err error) int {
+	var exit *exitError
+	if errors.As(err, &exit) && exit.Err == nil {
+		return exit.Code
+	}
+	return exitDone
 }
 
 // print writes the row of source number i.
@@ -91,12 +101,12 @@ func (m *many) finish() error {
 	case !m.j.json && !m.j.quiet:
 		err = m.set.WriteSummary(out, m.j.style)
 	}
-	return errors.Join(err, out.Flush())
+	return cmp.Or(err, out.Flush())
 }
 
 func (m *many) file(page *output, name string) error {
 	out := bufio.NewWriter(page)
-	if err := errors.Join(m.set.WritePage(out), out.Flush()); err != nil {
+	if err := cmp.Or(m.set.WritePage(out), out.Flush()); err != nil {
 		return err
 	}
 	if err := page.commit(); err != nil {

@@ -1,8 +1,11 @@
 package main
 
 import (
+	"bytes"
+	"cmp"
 	"errors"
 	"fmt"
+	"io"
 	"io/fs"
 	"math/rand/v2"
 	"os"
@@ -21,13 +24,32 @@ type output struct {
 	what string
 }
 
-// createOutput opens the report name. It refuses a name that is one of inputs, by
-// whatever path or link.
+// createOutput opens the page of evidence name. It refuses a name that is one of
+// inputs, by whatever path or link, and one of a file that is no page: a capture
+// that stands where the name of the page belongs would be lost.
 func createOutput(name string, inputs []string) (*output, error) {
 	if name == "-" {
 		return nil, usagef("the report cannot go to standard output: give it a file name")
 	}
-	return createFile("report", name, inputs)
+	o, err := createFile("report", name, inputs)
+	if err == nil && !o.direct() && holdsOther(name) {
+		o.discard()
+		return nil, usagef("the report %s would overwrite a file that is no page: give another name, or remove it first", name)
+	}
+	return o, err
+}
+
+// holdsOther reports whether a file is there and holds something that is no page.
+func holdsOther(name string) bool {
+	f, err := os.Open(name)
+	if err != nil {
+		return false
+	}
+	defer f.Close()
+	head := make([]byte, 64)
+	n, _ := io.ReadFull(f, head)
+	text := bytes.ToLower(bytes.TrimSpace(head[:n]))
+	return n > 0 && !bytes.HasPrefix(text, []byte("<!doctype html")) && !bytes.HasPrefix(text, []byte("<html"))
 }
 
 // createFile opens an output of any kind.
@@ -66,14 +88,11 @@ func createBeside(what, name string, perm fs.FileMode) (*output, error) {
 	if errors.Is(err, fs.ErrNotExist) {
 		return nil, fmt.Errorf("cannot write the %s %s: the folder %s does not exist", what, name, filepath.Clean(folder))
 	}
+	o := &output{file: file, name: name, what: what}
 	if err != nil {
-		var path *fs.PathError
-		if errors.As(err, &path) {
-			err = path.Err // the hidden name would only puzzle
-		}
-		return nil, fmt.Errorf("cannot write the %s %s: %w", what, name, err)
+		return nil, o.fault(err)
 	}
-	return &output{file: file, name: name, what: what}, nil
+	return o, nil
 }
 
 // sameAsOne returns the name among inputs that is the file there.
@@ -86,30 +105,50 @@ func sameAsOne(there fs.FileInfo, inputs []string) (string, bool) {
 	return "", false
 }
 
-func (o *output) Write(p []byte) (int, error) { return o.file.Write(p) }
+// direct reports whether the place is written directly.
+func (o *output) direct() bool { return o.file.Name() == o.name }
+
+// fault says that the output cannot be written, and why.
+func (o *output) fault(err error) error {
+	if err == nil {
+		return nil
+	}
+	var path *fs.PathError
+	var link *os.LinkError
+	switch { // the hidden name would only puzzle
+	case errors.As(err, &path):
+		err = path.Err
+	case errors.As(err, &link):
+		err = link.Err
+	}
+	return fmt.Errorf("cannot write the %s %s: %w", o.what, o.name, err)
+}
+
+func (o *output) Write(p []byte) (int, error) {
+	n, err := o.file.Write(p)
+	return n, o.fault(err)
+}
 
 // commit makes the file appear under its name.
 func (o *output) commit() error {
-	direct := o.file.Name() == o.name
 	var err error
-	if !direct {
+	if !o.direct() {
 		err = o.file.Sync() // the name must never stand for a file that a power cut emptied
 	}
-	err = errors.Join(err, o.file.Close())
-	if err == nil && !direct {
+	err = cmp.Or(err, o.file.Close())
+	if err == nil && !o.direct() {
 		err = os.Rename(o.file.Name(), o.name)
 	}
 	if err != nil {
 		o.discard()
-		return fmt.Errorf("cannot write the %s %s: %w", o.what, o.name, err)
 	}
-	return nil
+	return o.fault(err)
 }
 
 // discard leaves no trace of the file; after commit it does nothing.
 func (o *output) discard() {
 	o.file.Close()
-	if o.file.Name() != o.name {
+	if !o.direct() {
 		os.Remove(o.file.Name())
 	}
 }

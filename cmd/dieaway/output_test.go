@@ -8,6 +8,9 @@ import (
 	"testing"
 )
 
+// page is how every page begins.
+const page = "<!doctype html>"
+
 func TestOutputAppearsWhole(t *testing.T) {
 	name := filepath.Join(t.TempDir(), "page.html")
 	out := mustCreate(t, name)
@@ -26,19 +29,19 @@ func TestOutputAppearsWhole(t *testing.T) {
 
 func TestDiscardKeepsWhatWasThere(t *testing.T) {
 	name := filepath.Join(t.TempDir(), "page.html")
-	write(t, name, "of yesterday")
+	write(t, name, page+"of yesterday")
 	out := mustCreate(t, name)
 	if _, err := out.Write([]byte("half")); err != nil {
 		t.Fatal(err)
 	}
 	out.discard()
-	checkFolder(t, name, "of yesterday")
+	checkFolder(t, name, page+"of yesterday")
 }
 
 func TestOutputKeepsPermissionsAndLinks(t *testing.T) {
 	folder := t.TempDir()
 	name, link := filepath.Join(folder, "page.html"), filepath.Join(t.TempDir(), "latest.html")
-	write(t, name, "of yesterday")
+	write(t, name, page+"of yesterday")
 	if err := errors.Join(os.Chmod(name, 0o640), os.Symlink(name, link)); err != nil {
 		t.Fatal(err)
 	}

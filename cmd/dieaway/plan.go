@@ -1,9 +1,13 @@
 package main
 
 import (
+	"fmt"
+	"strings"
+
 	"github.com/urfave/cli/v2"
 
 	"dieaway/decay/plan"
+	"dieaway/decay/quantity"
 	"dieaway/report"
 )
 
@@ -67,9 +71,12 @@ func parseWish(c *cli.Context) (w plan.Wish, err error) {
 	v.whole("bits", &w.Bits, 1, 32)
 	v.take("full-scale", "V", &w.FullScale, above0)
 	v.take("want", "", &w.Want, above0)
-	v.whole("memory", &w.Memory, 50, 1e10)
+	v.whole("memory", &w.Memory, 50, 10_000_000_000)
 	if v.err != nil {
 		return w, v.err
+	}
+	if err := checkWant(c, w.Want); err != nil {
+		return w, err
 	}
 	if !c.IsSet("amplitude") {
 		return w, usagef("plan needs the amplitude of the ring: give --amplitude, for example 1V")
@@ -82,4 +89,17 @@ func parseWish(c *cli.Context) (w plan.Wish, err error) {
 	}
 	w.Bench, err = parseBench(c)
 	return w, err
+}
+
+// checkWant refuses a share that is none to plan for, and says what a bare number
+// was taken for: 0.1 is not 0.1 %.
+func checkWant(c *cli.Context, want float64) error {
+	text := c.String("want")
+	switch {
+	case want >= 0.5:
+		return unexpected("want", text, "a share below 50 % such as 0.1%")
+	case c.IsSet("want") && !strings.ContainsAny(text, "%p") && !c.Bool("quiet"):
+		say(c.App.ErrWriter, fmt.Sprintf("--want %s is taken as %s; for %[1]s %% write %[1]s%%", text, quantity.Percent(want)))
+	}
+	return nil
 }

@@ -1,18 +1,15 @@
 package main
 
 import (
-	"fmt"
+	"errors"
 	"io"
 	"math"
-	"math/rand/v2"
-	"slices"
 	"strings"
 
 	"github.com/urfave/cli/v2"
 
 	"dieaway/capture"
 	"dieaway/decay/circuit"
-	"dieaway/decay/quantity"
 )
 
 func simulateCommand() *cli.Command {
@@ -64,7 +61,7 @@ func simulate(c *cli.Context) error {
 	kind := c.Args().First()
 	switch {
 	case c.Args().Len() != 1 || kind != "ringdown" && kind != "sweep":
-		return usagef("expected `dieaway simulate ringdown` or `dieaway simulate sweep`, found %q", strings.Join(c.Args().Slice(), " "))
+		return usagef("expected `dieaway simulate ringdown` or `dieaway simulate sweep`, found %s", found(c))
 	case !c.IsSet("bench"):
 		return usagef("simulate needs the circuit: give --bench FILE")
 	}
@@ -72,25 +69,13 @@ func simulate(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	if err := checkKind(c, kind); err != nil {
+	if err := onlyFlagsOf(c, kind); err != nil {
 		return err
 	}
 	if kind == "sweep" {
 		return simulateSweep(c, b)
 	}
 	return simulateRingDown(c, b)
-}
-
-// checkKind refuses flags of the other kind: they would be ignored.
-func checkKind(c *cli.Context, kind string) error {
-	for _, f := range simulateFlags() {
-		name := f.Names()[0]
-		of, _, only := strings.Cut(f.(*cli.StringFlag).Usage, ": ")
-		if c.IsSet(name) && only && slices.Contains([]string{"ringdown", "sweep"}, of) && of != kind {
-			return usagef("--%s is for `dieaway simulate %s`", name, of)
-		}
-	}
-	return nil
 }
 
 func simulateRingDown(c *cli.Context, b *circuit.Bench) error {
@@ -124,37 +109,35 @@ func simulateRingDown(c *cli.Context, b *circuit.Bench) error {
 		before = share * length
 	}
 	if err := s.Complete(before, length); err != nil {
-		return usagef("%s: %w", b.File, err)
+		return unusable(err)
 	}
-	r, err := s.Record()
+	r, err := interruptible(c.Context, s.Record)
 	if err != nil {
-		return usagef("%s: %w", b.File, err)
+		return unusable(err)
 	}
 	return writeSimulated(c, b, r.Write)
 }
 
 func simulateSweep(c *cli.Context, b *circuit.Bench) error {
-	s := &circuit.SweepSimulation{Bench: b, Across: capture.Part(c.String("across"))}
-	if c.IsSet("across") && !slices.Contains(parts, c.String("across")) {
-		return usagef("--across %s: expected one of %s", c.String("across"), strings.Join(parts, ", "))
-	}
+	s := &circuit.SweepSimulation{Bench: b}
 	span, points := 0.0, 61
 	v := &values{c: c}
+	v.word("across", parts, (*string)(&s.Across))
 	v.take("amplitude", "V", &s.Source, above0)
 	v.take("noise", "V", &s.Noise, atLeast0)
 	v.take("span", "Hz", &span, above0)
-	v.whole("points", &points, 5, 1e7)
+	v.whole("points", &points, 5, 10_000_000)
 	s.Random = v.random()
 	if v.err != nil {
 		return v.err
 	}
 	var err error
 	if s.Frequencies, err = s.Around(span, points); err != nil {
-		return usagef("%s: %w", b.File, err)
+		return unusable(err)
 	}
-	response, err := s.Sweep()
+	response, err := interruptible(c.Context, s.Sweep)
 	if err != nil {
-		return usagef("%s: %w", b.File, err)
+		return unusable(err)
 	}
 	return writeSimulated(c, b, func(w io.Writer) error { return s.Write(w, response) })
 }
@@ -163,117 +146,24 @@ func simulateSweep(c *cli.Context, b *circuit.Bench) error {
 func writeSimulated(c *cli.Context, b *circuit.Bench, write func(io.Writer) error) error {
 	name := c.String("report")
 	if name == "" || name == "-" {
-		return write(c.App.Writer)
+		return write(interruptibleWriter{c.Context, c.App.Writer})
 	}
-	out, err := createFile(c.Args().First(), name, []string{b.File})
+	what := map[string]string{"ringdown": "capture", "sweep": "sweep"}[c.Args().First()]
+	out, err := createFile(what, name, []string{b.File})
 	if err != nil {
 		return err
 	}
 	defer out.discard()
-	if err := write(out); err != nil {
-		return fmt.Errorf("cannot write the %s %s: %w", c.Args().First(), name, err)
+	if err := write(interruptibleWriter{c.Context, out}); err != nil {
+		return err
 	}
 	return out.commit()
 }
 
-// Values reads flags that are quantities; it keeps the first error.
-type values struct {
-	c   *cli.Context
-	err error
-}
-
-// A domain is what a value may be.
-type domain string
-
-const (
-	anything domain = ""
-	atLeast0 domain = "a value that is not negative"
-	above0   domain = "a value above zero"
-)
-
-// take reads the flag, when it is set, as a value in unit.
-func (v *values) take(name, unit string, to *float64, within domain) {
-	if v.err != nil || !v.c.IsSet(name) {
-		return
+// unusable is the error of a circuit or of settings that cannot be simulated.
+func unusable(err error) error {
+	if errors.Is(err, errInterrupted) {
+		return err
 	}
-	x, err := v.quantity(name, v.c.String(name), unit)
-	switch {
-	case err != nil:
-		v.err = err
-	case within == above0 && !(x > 0), within == atLeast0 && !(x >= 0):
-		v.err = usagef("--%s %s: expected %s", name, v.c.String(name), within)
-	default:
-		*to = x
-	}
-}
-
-func (v *values) quantity(name, text, unit string) (float64, error) {
-	q, err := quantity.Parse(text, unit)
-	if err != nil {
-		return 0, usagef("--%s: %w", name, err)
-	}
-	if !math.IsNaN(q.U) {
-		return 0, usagef("--%s %s: expected a value without an uncertainty", name, text)
-	}
-	return q.Value, nil
-}
-
-// whole reads a whole number from lo to hi.
-func (v *values) whole(name string, to *int, lo, hi float64) {
-	x := float64(*to)
-	v.take(name, "", &x, anything)
-	if v.err == nil && v.c.IsSet(name) && !(x >= lo && x <= hi && x == math.Trunc(x)) {
-		v.err = usagef("--%s %s: expected a whole number from %g to %g", name, v.c.String(name), lo, hi)
-	}
-	*to = int(x)
-}
-
-// pretrigger returns the time before the trigger, or NaN and the share of the record.
-func (v *values) pretrigger(share *float64) float64 {
-	const name = "pretrigger"
-	before := math.NaN()
-	if !strings.HasSuffix(strings.TrimSpace(v.c.String(name)), "%") {
-		v.take(name, "s", &before, atLeast0)
-		return before
-	}
-	v.take(name, "", share, atLeast0)
-	switch {
-	case v.err != nil:
-	case *share >= 1:
-		v.err = usagef("--pretrigger %s leaves nothing of the decay", v.c.String(name))
-	case !v.c.IsSet("record"):
-		v.err = usagef("--pretrigger %s is a share of the record: give --record too, or a time", v.c.String(name))
-	}
-	return before
-}
-
-func (v *values) secondMode() *circuit.SecondMode {
-	const name = "second-mode"
-	if v.err != nil || !v.c.IsSet(name) {
-		return nil
-	}
-	m := &circuit.SecondMode{}
-	words := strings.Split(v.c.String(name), ",")
-	if len(words) != 3 {
-		v.err = usagef("--second-mode %s: expected frequency, Q and strength, for example 190k,33,0.3", v.c.String(name))
-		return nil
-	}
-	for i, to := range []*float64{&m.Frequency, &m.Q, &m.Strength} {
-		x, err := v.quantity(name, words[i], []string{"Hz", "", ""}[i])
-		if err == nil && !(x > 0) {
-			err = usagef("--second-mode %s: expected values above zero", v.c.String(name))
-		}
-		if err != nil {
-			v.err = err
-			return nil
-		}
-		*to = x
-	}
-	return m
-}
-
-func (v *values) random() *rand.Rand {
-	seed := 1
-	v.whole("seed", &seed, 0, 1<<53)
-	return rand.New(rand.NewPCG(uint64(seed), 1))
+	return usagef("%w", err)
 }

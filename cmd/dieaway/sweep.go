@@ -2,7 +2,6 @@ package main
 
 import (
 	"errors"
-	"slices"
 	"strings"
 
 	"github.com/urfave/cli/v2"
@@ -38,16 +37,13 @@ func sweepFlags() []cli.Flag {
 		&cli.StringFlag{Name: "response", Usage: "the `COLUMN` of the response; of a Touchstone file the parameter, S21 or Z11 for example"},
 		&cli.StringFlag{Name: "reference", Usage: "the `COLUMN` of the source's voltage, measured at the circuit, which divides the response; none for no division"},
 		&cli.StringFlag{Name: "phase", Usage: "the `COLUMN` of the phase"},
-		&cli.StringFlag{Name: "across", Usage: "the `PART` that the response is measured across: " + strings.Join(sweepParts, ", ") + " (coil and capacitor together, a notch)"},
+		&cli.StringFlag{Name: "across", Usage: "the `PART` that the response is measured across: " + strings.Join(parts, ", ") + " (coil and capacitor together, a notch)"},
 		&cli.StringFlag{Name: "frequency-unit", Usage: "the `UNIT` of the frequency where the file does not tell: " + strings.Join(frequencyUnits, ", ")},
 		&cli.StringFlag{Name: "dwell", Usage: "the `TIME` that the source stays at each frequency before the reading"},
 	}, evidenceFlags()...)
 }
 
-var (
-	sweepParts     = []string{string(capture.Capacitor), string(capture.Inductor), string(capture.Resistor), string(capture.Both)}
-	frequencyUnits = []string{"Hz", "kHz", "MHz", "GHz"}
-)
+var frequencyUnits = []string{"Hz", "kHz", "MHz", "GHz"}
 
 // A sweepJob is a job over sweeps instead of captures.
 type sweepJob struct {
@@ -84,32 +80,13 @@ func parseSweepJob(c *cli.Context) (*sweepJob, error) {
 	}
 	j := &sweepJob{job: base}
 	j.table = capture.SweepOptions{Frequency: c.String("frequency"), Response: c.String("response"),
-		Reference: c.String("reference"), Phase: c.String("phase"), FrequencyUnit: c.String("frequency-unit")}
-	for _, name := range []string{"frequency", "response", "reference", "phase", "across"} {
-		if c.IsSet(name) && c.String(name) == "" {
-			return nil, usagef("--%s is empty", name)
-		}
-	}
-	if c.IsSet("frequency-unit") && !slices.Contains(frequencyUnits, j.table.FrequencyUnit) {
-		return nil, usagef("--frequency-unit %s: expected one of %s", j.table.FrequencyUnit, strings.Join(frequencyUnits, ", "))
-	}
-	if across := c.String("across"); across != "" {
-		if !slices.Contains(sweepParts, across) {
-			return nil, usagef("--across %s: expected one of %s", across, strings.Join(sweepParts, ", "))
-		}
-		j.driven.Across = capture.Part(across)
-	}
-	dwell, err := parseTime(c, "dwell")
-	if err != nil {
-		return nil, err
-	}
-	if dwell != nil {
-		if *dwell <= 0 {
-			return nil, usagef("--dwell %s: expected a time greater than zero", c.String("dwell"))
-		}
-		j.driven.Dwell = *dwell
-	}
-	return j, nil
+		Reference: c.String("reference"), Phase: c.String("phase")}
+	v := &values{c: c}
+	v.filled("frequency", "response", "reference", "phase")
+	v.word("frequency-unit", frequencyUnits, &j.table.FrequencyUnit)
+	v.word("across", parts, (*string)(&j.driven.Across))
+	v.take("dwell", "s", &j.driven.Dwell, above0)
+	return j, v.err
 }
 
 // useSweepBench takes from the bench file what it says of the sweep.
@@ -160,7 +137,7 @@ func (j *sweepJob) sweep(s source) *report.Sweep {
 	if errors.Is(err, capture.ErrNoColumn) {
 		err = &exitError{Code: exitUsage, Err: err}
 	}
-	if r.Err = err; err != nil {
+	if r.Err = takenForSweep(err, s.name); err != nil {
 		return r
 	}
 	r.Result = driven.Analyze(r.Table, j.driven)

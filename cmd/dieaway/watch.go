@@ -3,7 +3,9 @@ package main
 import (
 	"bufio"
 	"context"
+	"errors"
 	"fmt"
+	"io/fs"
 	"os"
 	"path/filepath"
 	"regexp"
@@ -70,12 +72,15 @@ func watchAction(c *cli.Context) error {
 func parseWatch(c *cli.Context) (*watcher, error) {
 	dir := c.Args().First()
 	if c.Args().Len() != 1 || dir == "" {
-		return nil, usagef("watch takes one folder, found %d arguments", c.Args().Len())
+		return nil, usagef("expected `dieaway watch DIR`, found %s", found(c))
 	}
-	if info, err := os.Stat(dir); err == nil && !info.IsDir() {
-		return nil, usagef("%s is a file: `dieaway fit %[1]s` measures it", dir)
-	} else if err != nil {
+	switch info, err := os.Stat(dir); {
+	case errors.Is(err, fs.ErrNotExist):
+		return nil, fmt.Errorf("the folder %s does not exist", dir)
+	case err != nil:
 		return nil, err
+	case !info.IsDir():
+		return nil, usagef("%s is a file: `dieaway fit %[1]s` measures it", dir)
 	}
 	j, err := parseJob(c)
 	if err != nil {
@@ -126,7 +131,7 @@ func parsePattern(c *cli.Context) (*regexp.Regexp, error) {
 	case err != nil:
 		return nil, usagef("--device-from: %w", err)
 	case p.SubexpIndex("device") < 0:
-		return nil, usagef("--device-from %s: expected a group device, for example '(?P<device>[^_]+)_'", text)
+		return nil, unexpected("device-from", text, "a pattern with a group device such as '(?P<device>[^_]+)_'")
 	case c.IsSet("device"):
 		return nil, usagef("--device and --device-from both name the device: take one of them")
 	}
@@ -145,7 +150,7 @@ func parsePause(c *cli.Context, name string) (time.Duration, error) {
 	}
 	v.take(name, "s", &x, above0)
 	if v.err == nil && !(x >= 0.01 && x <= 86400) {
-		v.err = usagef("--%s %s: expected a time from 10 ms to a day", name, c.String(name))
+		v.err = unexpected(name, c.String(name), "a time from 10 ms to a day")
 	}
 	return time.Duration(x * float64(time.Second)), v.err
 }
