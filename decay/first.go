@@ -31,6 +31,7 @@ func (p *pyramid) behindLoudest(s series, g *gate) (gate, bool) {
 		return gate{}, false
 	}
 	later, ok := p.likeliest(s, []int{quiet})
+	later.reach = int(loudReach * g.fit.period())
 	return later, ok && later.falls()
 }
 
@@ -48,7 +49,7 @@ func (p *pyramid) behindDrive(s series, first, g *gate, fixedEnd bool) {
 	}
 	grown := later
 	grown.settle(s, p, false, fixedEnd)
-	if grown.cost(s) < g.cost(s)-companionMargin {
+	if grown.explains() && !g.explains() || grown.cost(s) < g.cost(s)-companionMargin {
 		*first, *g = later, grown
 	}
 }
@@ -67,6 +68,7 @@ func (g *gate) falls() bool {
 
 const (
 	loudShare = 0.7 // of the largest energy of a cycle, that the loudest part has throughout
+	loudReach = 3   // cycles between the end of the loudest part and where a source fell silent
 	loudCells = 1 << 16
 )
 

@@ -12,6 +12,8 @@ type gate struct {
 	// cutBefore and cutAfter tell that something else (an edge) bounds the gate,
 	// not the record.
 	cutBefore, cutAfter bool
+	// reach is how far the start may be off, in samples; 0: any distance.
+	reach int
 	// rank is 0 for the decay that the search found first, and more for others.
 	rank int
 	// coarse tells that nothing blurs the steps of the converter.
@@ -47,6 +49,7 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 		p.behindDrive(s, &first, &g, fixedEnd)
 	}
 	g.cutCoarseTail(s)
+	plain := g
 	if g.misfits(s) && !g.coarse {
 		if two, ok := withCompanion(s, &first); ok {
 			two.settleBoth(s, fixedStart, fixedEnd)
@@ -62,7 +65,10 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 		g.leaveDrive(s, false)
 	}
 	g.skipMissing(s)
-	return g, g.finish(s)
+	if !g.finish(s) {
+		return plain, plain.finish(s)
+	}
+	return g, true
 }
 
 // finish fits the gate for good.
@@ -83,7 +89,7 @@ func (g *gate) skipMissing(s series) {
 // is looked for again where the samples that tell it have come to light only then.
 func (g *gate) settle(s series, p *pyramid, fixedStart, fixedEnd bool) {
 	if !fixedStart {
-		g.placeStart(s, p, s.len())
+		g.placeStart(s, p, cmp.Or(g.reach, s.len()))
 	}
 	last := g.last
 	g.growForward(s, fixedEnd)

@@ -110,7 +110,8 @@ func (f *ringFit) samplesRinging() float64 {
 const (
 	chanceCycles = 4       // cycles below which coloured noise makes a ring by chance,
 	chanceShare  = 1.0 / 3 // in a part of the record that is no larger than this,
-	chanceRatio  = 4       // of an amplitude no larger than this over the rms of the rest
+	chanceRatio  = 4       // of an amplitude no larger than this over the rms of the rest,
+	chanceSNR    = 50      // nor than this over what the fit leaves
 )
 
 // byChance refuses a short ring in a record that moves as much elsewhere: in
@@ -128,7 +129,7 @@ func byChance(s series, g *gate, d *Decay) (Finding, bool) {
 		p := newRing(s.slice(side[0], side[1]).thinned(choiceSamples))
 		rest = math.Min(rest, math.Sqrt(p.aboutMean()/float64(max(1, p.n))))
 	}
-	if size := g.fit.size(); math.IsInf(rest, 1) || size > chanceRatio*rest {
+	if size := g.fit.size(); math.IsInf(rest, 1) || size > chanceRatio*rest || size > chanceSNR*g.fit.sigma() {
 		return Finding{}, false
 	}
 	return fault(capture.NoDecay,
