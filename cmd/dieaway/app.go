@@ -18,14 +18,25 @@ import (
 
 // Exit codes: scripts depend on them. With several files the highest wins.
 const (
-	exitDone       = 0
-	exitFailed     = 1 // input, output or internal error
-	exitUsage      = 2
-	exitUnreadable = 3 // not a capture
-	exitRefused    = 4 // no decay that can be measured
-	exitOutside    = 5 // outside the limits, or ring-down and sweep disagree
-	exitWarning    = 6 // a warning, with --strict
+	exitDone = iota
+	exitFailed
+	exitUsage
+	exitUnreadable
+	exitRefused
+	exitOutside
+	exitWarning
 )
+
+// exitCodes says what each code means, in their order.
+var exitCodes = []string{
+	exitDone:       "done",
+	exitFailed:     "a file could not be opened or written, or the program was interrupted",
+	exitUsage:      "the command line or the bench file is wrong",
+	exitUnreadable: "a file is no capture or sweep that can be read",
+	exitRefused:    "refused: no decay or resonance that can be measured; a plan that cannot be met",
+	exitOutside:    "outside the limits, or ring-down and sweep disagree",
+	exitWarning:    "with --strict: there is a warning",
+}
 
 // An exitError ends the program with a code. A nil Err means that all there is
 // to say has been said.
@@ -92,11 +103,13 @@ func newApp(stdin io.Reader, stdout, stderr io.Writer) *cli.App {
 	cli.VersionFlag = &cli.BoolFlag{Name: "version", Usage: "print the version and the revision it was built from", DisableDefaultText: true}
 	cli.SuggestDidYouMeanTemplate = "%s"
 	cli.VersionPrinter = func(c *cli.Context) { fmt.Fprintln(c.App.Writer, "dieaway", c.App.Version) }
-	return &cli.App{
-		Name:           "dieaway",
-		HelpName:       "dieaway",
-		Usage:          "frequency, time constant and Q of a resonant circuit from the way its ringing dies away",
-		UsageText:      "dieaway COMMAND [flags] [FILE...]",
+	app := &cli.App{
+		Name:      "dieaway",
+		HelpName:  "dieaway",
+		Usage:     "frequency, time constant and Q of a resonant circuit from the way its ringing dies away",
+		UsageText: "dieaway COMMAND [flags] [FILE...]",
+		Description: "Flags may stand before or after the files; a file named - is standard input. Results go to\n" +
+			"standard output, messages to standard error. `dieaway man` tells the exit codes.",
 		Version:        version(),
 		Reader:         stdin,
 		Writer:         stdout,
@@ -106,6 +119,11 @@ func newApp(stdin io.Reader, stdout, stderr io.Writer) *cli.App {
 		OnUsageError:   usageError,
 		ExitErrHandler: func(*cli.Context, error) {}, // run reports
 	}
+	app.Setup()
+	help := app.Command("help") // the library's, which speaks otherwise
+	help.Usage, help.UsageText = "list the commands, or print the help of one", "dieaway help [COMMAND]"
+	help.Description = "Examples:\n   dieaway help\n   dieaway help fit"
+	return app
 }
 
 // noCommand runs when the first argument is no command.

@@ -2,7 +2,6 @@ package main
 
 import (
 	"embed"
-	"fmt"
 	"strings"
 	"text/template"
 
@@ -53,7 +52,7 @@ func completion(c *cli.Context) error {
 	if c.Args().Len() != 1 || choiceOf(shells, shell) == "" {
 		return usagef("expected `dieaway completion` with one of %s, found %s", strings.Join(shells, ", "), found(c))
 	}
-	t, err := template.New("").Funcs(template.FuncMap{"join": strings.Join, "quote": quoteWords}).ParseFS(completionFiles, "completion/*.tmpl")
+	t, err := template.New("").Funcs(template.FuncMap{"join": strings.Join, "quote": quoteWords}).ParseFS(completionFiles, "completion/"+shell+".tmpl")
 	if err != nil {
 		return err
 	}
@@ -98,28 +97,4 @@ func completedFlagOf(f cli.Flag) completedFlag {
 // quoteWords writes a text in single quotes for a shell.
 func quoteWords(s string) string {
 	return "'" + strings.ReplaceAll(s, "'", `'\''`) + "'"
-}
-
-func manCommand() *cli.Command {
-	return &cli.Command{
-		Name:            "man",
-		Usage:           "print the manual page",
-		UsageText:       "dieaway man",
-		Description:     "Examples:\n   dieaway man | man -l -\n   dieaway man > /usr/local/share/man/man1/dieaway.1",
-		Action:          man,
-		OnUsageError:    usageError,
-		HideHelpCommand: true,
-	}
-}
-
-func man(c *cli.Context) error {
-	if c.Args().Present() {
-		return usagef("man takes no argument, found %s", c.Args().First())
-	}
-	text, err := c.App.ToManWithSection(1)
-	if err != nil {
-		return fmt.Errorf("manual page: %w", err)
-	}
-	_, err = fmt.Fprint(c.App.Writer, text)
-	return err
 }

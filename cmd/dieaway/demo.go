@@ -31,8 +31,8 @@ func demoCommand() *cli.Command {
 		Usage:     "do the whole job on a built-in capture; writes " + demoPage,
 		UsageText: "dieaway demo [flags]",
 		Description: "Measures the simulated ring-down of " + demoDevice + ", a 125 kHz loop antenna, with the same\n" +
-			"code as fit, prints the summary and writes the page into the current folder. The flags are\n" +
-			"those of fit that do not name what is in the file.\n\n" +
+			"code as fit, prints the summary and writes the page into the current folder. It takes\n" +
+			"the flags of fit that say what to do with a result.\n\n" +
 			"Examples:\n" +
 			"   dieaway demo\n" +
 			"   dieaway demo -o first.html\n" +
