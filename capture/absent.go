@@ -64,11 +64,8 @@ func (p *plan) lacks(c *chunk, n int) bool {
 
 // acceptPart is accept for a row that lacks a time column: the row is booked among
 // its holes.
-func (p *plan) acceptPart(c *chunk, line int) {
-	if c.footer != nil {
-		c.err = c.footer
-		return
-	}
+func (p *plan) acceptPart(c *chunk, at, line int) {
+	fell := false
 	if c.rows == 0 {
 		c.first = line
 	}
@@ -80,7 +77,8 @@ func (p *plan) acceptPart(c *chunk, line int) {
 				s.run.n++
 				s.n++
 			} else if !s.add(t) {
-				c.err = backwards(line, t.seconds(), s.last)
+				p.fell(c, k, at, line)
+				fell = true
 			}
 		case len(h) > 0 && h[len(h)-1].to == c.rows:
 			h[len(h)-1].to++
@@ -90,6 +88,9 @@ func (p *plan) acceptPart(c *chunk, line int) {
 	}
 	c.rows++
 	c.partial = false
+	if c.footer != nil {
+		c.between(fell)
+	}
 }
 
 // addHoles takes the holes of a chunk whose rows begin behind those of the table.

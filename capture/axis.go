@@ -61,6 +61,27 @@ func newClock(spans []span) *clock {
 	return c
 }
 
+// stretch makes seconds of stamps that were read in a unit of so many.
+func stretch(spans []span, unit float64) {
+	for i := range spans {
+		s := &spans[i]
+		s.unit = unit
+		for _, t := range []*float64{&s.first, &s.last, &s.mean, &s.slope, &s.sxy, &s.off, &s.least, &s.most} {
+			*t *= unit
+		}
+		for j := range s.stamps {
+			s.stamps[j] *= unit
+		}
+	}
+}
+
+// exact says that the stamps were not rounded: a count of samples is what it is.
+func exact(spans []span) {
+	for i := range spans {
+		spans[i].exp, spans[i].digits = math.MinInt32, 0
+	}
+}
+
 func (c *clock) steps(least, most float64, zero, n int) {
 	if n > 0 {
 		c.least, c.most = math.Min(c.least, least), math.Max(c.most, most)

@@ -19,7 +19,7 @@ func (d *layoutDesign) build(c *Capture, src *source, t *table) *Error {
 		return &Error{Err: ErrNoData, Column: ch.Column, Found: fmt.Sprintf("%d samples missing or over range", len(ch.Samples)), Expected: "numbers"}
 	}
 	d.addFindings(c, t)
-	c.Layout = d.layout(src)
+	c.Layout = d.layout(src, t.footer)
 	return nil
 }
 
@@ -27,8 +27,8 @@ func (d *layoutDesign) build(c *Capture, src *source, t *table) *Error {
 // for a time column of too few stamps beside others.
 func (d *layoutDesign) axes(c *Capture, t *table) ([]*Axis, *Error) {
 	if d.plan.times == 0 {
-		a, err := d.bareAxis(t.rows)
-		return []*Axis{a}, err
+		a := d.bareAxis(t.rows)
+		return []*Axis{a}, a.possible(0)
 	}
 	axes := make([]*Axis, d.plan.times)
 	most := 0 // stamps of a column with samples beside it
@@ -45,6 +45,9 @@ func (d *layoutDesign) axes(c *Capture, t *table) ([]*Axis, *Error) {
 		}
 		d.joinPeakRows(c, t, k)
 		a, err := d.axis(c, t, k)
+		if err == nil {
+			err = a.possible(d.timeColumn(k) + 1)
+		}
 		if err != nil {
 			return nil, err
 		}
@@ -61,6 +64,32 @@ func (d *layoutDesign) axes(c *Capture, t *table) ([]*Axis, *Error) {
 	return axes, nil
 }
 
+// A record that is longer than thirty years, or sampled faster than light crosses an
+// atom, was not captured: its times are no times, or their unit is another.
+const (
+	longestRecord    = 1e9   // s
+	shortestInterval = 1e-18 // s
+)
+
+// possible refuses an axis that no record can have; column is that of its stamps,
+// from 1, or 0.
+func (a *Axis) possible(column int) *Error {
+	e := &Error{Err: ErrNoTime, Column: column}
+	switch length := a.Time(a.N-1) - a.Start; {
+	case math.IsNaN(length) || math.IsInf(length, 0):
+		e.Found, e.Expected = "stamps beyond all numbers", "times in seconds or parts of them"
+	case !(length <= longestRecord):
+		e.Found = fmt.Sprintf("%d samples over %.3g s", a.N, length)
+		e.Expected = fmt.Sprintf("a record of %g s at most", longestRecord)
+	case !(a.Interval >= shortestInterval):
+		e.Found = fmt.Sprintf("samples %.3g s apart", a.Interval)
+		e.Expected = fmt.Sprintf("%g s at least", shortestInterval)
+	default:
+		return nil
+	}
+	return e
+}
+
 func sameAxis(a, b *Axis) bool {
 	if a.N != b.N || a.Start != b.Start || a.Interval != b.Interval || (a.Times == nil) != (b.Times == nil) {
 		return false
@@ -75,9 +104,7 @@ func (d *layoutDesign) addChannels(c *Capture, t *table, axes []*Axis) {
 			continue
 		}
 		ch := &Channel{Number: len(c.Channels) + 1, Column: i + 1, Unit: col.unit.base, Samples: t.values[d.plan.steps[i].to], Axis: axes[max(0, d.plan.steps[i].axis)]}
-		if ch.Unit == "" && col.whole && wholeNumbers(ch.Samples) {
-			ch.Unit = "counts"
-		}
+		col.scaleCodes(ch)
 		ch.Name = d.channelName(i, ch.Number)
 		c.Channels = append(c.Channels, ch)
 	}
@@ -176,7 +203,7 @@ func zerosAndOnes(v []float64) bool {
 }
 
 // layout sums up how the file was understood.
-func (d *layoutDesign) layout(src *source) Layout {
+func (d *layoutDesign) layout(src *source, footer *Error) Layout {
 	l := Layout{
 		Encoding: src.encoding, Compressed: src.compressed,
 		Preamble: d.head.lines[d.head.first].number - 1, HeaderLine: d.heading.namesLine, UnitsLine: d.heading.unitsLine,
@@ -184,6 +211,9 @@ func (d *layoutDesign) layout(src *source) Layout {
 	}
 	if top := min(positive(l.HeaderLine, l.FirstLine), positive(l.UnitsLine, l.FirstLine)); top > 0 {
 		l.Preamble = top - 1
+	}
+	if footer != nil {
+		l.FooterLine = footer.Line
 	}
 	if len(d.columns) == 1 {
 		l.Delimiter = "none"

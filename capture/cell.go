@@ -83,6 +83,22 @@ func (d dialect) quantity(c cell) (decimal, unit, []byte, bool) {
 	return n, u, text[:end], ok
 }
 
+// ofKind reads a number with a unit that is one only where it must be a time or a
+// rate: 2 min, 2.5 M.
+func (d dialect) ofKind(c cell, base string) (n decimal, u unit, digits []byte, ok bool) {
+	n, end := scanCell(c.text, d.mark)
+	if end < 0 {
+		return n, u, nil, false
+	}
+	switch rest := toUTF8(bytes.TrimSpace(c.text[end:])); {
+	case base == "s":
+		u, ok = longTimes[strings.ToLower(rest)]
+	case base == "Sa/s" && (rest == "M" || rest == "G"):
+		u, ok = parseUnit(rest + base)
+	}
+	return n, u, c.text[:end], ok
+}
+
 // missingMark reports a cell that stands for a sample that is missing or
 // beyond the converter's range.
 func missingMark(text []byte) bool {

@@ -9,9 +9,17 @@ import (
 // said of it.
 func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
 	col := d.timeColumn(k)
+	decl := d.declared(col)
+	switch c := &d.columns[col]; {
+	case c.unit.many > 0:
+		stretch(t.spans[k], c.unit.many)
+	case c.Role == RoleIndex:
+		stretch(t.spans[k], decl.value)
+		exact(t.spans[k])
+	}
 	clk := newClock(t.spans[k])
 	if clk.spans[len(clk.spans)-1].last <= clk.spans[0].first {
-		if decl := d.declared(col); decl.ok {
+		if decl.ok {
 			return d.frozenAxis(c, clk, col, decl), nil
 		}
 		return nil, &Error{Err: ErrNoTime, Column: col + 1, Found: seconds(clk.start) + " in every row", Expected: "a time that rises"}
@@ -20,7 +28,6 @@ func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
 		return d.indexAxis(c, clk, col), nil
 	}
 	a := &Axis{N: clk.n, Resolution: clk.resolution}
-	decl := d.declared(col)
 	even := clk.even()
 	if !even {
 		clk.nominal()
@@ -161,34 +168,40 @@ func (a *Axis) countFromFirst() {
 	a.Start = 0
 }
 
-// indexAxis makes the axis of a column that counts the samples, and of the
-// declared start and interval.
+// indexAxis makes the axis of a column that counts the samples, from zero or one,
+// and of the declared start and interval; the stamps of k are the numbers times
+// the interval.
 func (d *layoutDesign) indexAxis(c *Capture, k *clock, col int) *Axis {
 	decl := d.declared(col)
 	start, source := d.declaredStart(col, decl.value)
-	if first := k.spans[0].first; first < 0 && start == 0 {
-		start, source = first*decl.value, ", counted from the trigger"
+	switch first := k.spans[0].first; {
+	case first < 0 && start == 0:
+		start, source = first, ", counted from the trigger"
+	case first > 1.5*decl.value:
+		start += first
 	}
-	a := &Axis{N: k.n, Start: start,
-		Source: fmt.Sprintf("count of samples in column %d, with the declared interval of %s%s", col+1, seconds(decl.value), source)}
-	if k.even() {
-		a.Interval = decl.value * shorten(k.interval, 2*k.slopeU)
-		return a
+	a := &Axis{N: k.n, Start: start}
+	source = fmt.Sprintf("count of samples in column %d, with the declared interval of %s%s", col+1, seconds(decl.value), source)
+	if !k.even() {
+		k.nominal()
+		k.crooked(a, declared{}, false)
+		uneven(c, k, a)
+		for i, first := 0, a.Times[0]; i < len(a.Times); i++ {
+			a.Times[i] = start + (a.Times[i] - first)
+		}
+		a.Start = start
 	}
-	source = a.Source
-	k.nominal()
-	k.crooked(a, declared{}, false)
-	uneven(c, k, a)
-	first := a.Times[0]
-	for i, n := range a.Times {
-		a.Times[i] = start + (n-first)*decl.value
+	every := math.Max(1, math.Round(k.interval/decl.value))
+	a.Interval, a.IntervalU, a.Source = every*decl.value, 0, source
+	if every > 1 && d.columns[col].mayCount() {
+		c.note(CoarseTime, Note, fmt.Sprintf("the numbers of column %d rise by %g and have no unit; they are taken for the numbers of the samples, %s apart",
+			col+1, every, seconds(decl.value)), "give the unit with --time-unit if they are times")
 	}
-	a.Start, a.Interval, a.IntervalU, a.Source = a.Times[0], a.Interval*decl.value, 0, source
 	return a
 }
 
 // bareAxis makes the axis of a file without a time column.
-func (d *layoutDesign) bareAxis(rows int) (*Axis, *Error) {
+func (d *layoutDesign) bareAxis(rows int) *Axis {
 	col := max(0, firstWithRole(d.columns, RoleChannel))
 	decl := d.declared(col)
 	start, source := d.declaredStart(col, decl.value)
@@ -197,7 +210,7 @@ func (d *layoutDesign) bareAxis(rows int) (*Axis, *Error) {
 		from = "given"
 	}
 	return &Axis{N: rows, Start: start, Interval: decl.value,
-		Source: fmt.Sprintf("no time column; interval of %s (%s)%s", seconds(decl.value), from, source)}, nil
+		Source: fmt.Sprintf("no time column; interval of %s (%s)%s", seconds(decl.value), from, source)}
 }
 
 // declaredStart is the time of the first sample as the preamble gives it,

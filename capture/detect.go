@@ -40,8 +40,9 @@ type head struct {
 	term  byte // the byte that ends a line
 	lines []line
 	shape
-	first  int   // index in lines of the first row of samples
-	sample []row // the first rows of samples
+	wrapped bool  // every line is in quotes as a whole
+	first   int   // index in lines of the first row of samples
+	sample  []row // the first rows of samples
 }
 
 // newHead cuts the head into lines and finds the block of samples.
@@ -58,6 +59,7 @@ func newHead(text []byte, whole bool) (*head, *Error) {
 		return nil, longLine(1)
 	}
 	h.shape = findShape(h.lines)
+	h.unwrap()
 	if h.rows == 0 {
 		return nil, h.noData()
 	}

@@ -69,7 +69,11 @@ func (l Layout) lines() string {
 	if l.UnitsLine > 0 {
 		parts = append(parts, fmt.Sprintf("units in line %d", l.UnitsLine))
 	}
-	return strings.Join(append(parts, fmt.Sprintf("samples from line %d on", l.FirstLine)), ", ")
+	parts = append(parts, fmt.Sprintf("samples from line %d on", l.FirstLine))
+	if l.FooterLine > 0 {
+		parts = append(parts, fmt.Sprintf("words from line %d on are not read", l.FooterLine))
+	}
+	return strings.Join(parts, ", ")
 }
 
 func (col Column) describe() string {

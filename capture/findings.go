@@ -2,6 +2,7 @@ package capture
 
 import (
 	"fmt"
+	"math"
 	"slices"
 	"strconv"
 	"strings"
@@ -47,7 +48,11 @@ func (d *layoutDesign) missing(c *Capture, t *table) {
 		}
 	}
 	col := max(0, firstWithRole(d.columns, RoleChannel))
-	if n := d.preamble.number(meansCount, col, "", unit{}); n.ok && n.value > float64(len(c.Channels[0].Samples)) && n.value < 1e12 {
+	every := 1.0 // so many are counted for each that is there
+	if i := firstWithRole(d.columns, RoleIndex); i >= 0 && d.plan.steps[i].op == opTime {
+		every = math.Round(c.Channels[0].Axis.Interval / d.declared(i).value)
+	}
+	if n := d.preamble.number(meansCount, col, "", unit{}); n.ok && n.value > every*float64(len(c.Channels[0].Samples)) && n.value < 1e12 {
 		c.note(MissingSamples, Note, fmt.Sprintf("the preamble declares %.0f samples, and %d are there", n.value, len(c.Channels[0].Samples)),
 			"see whether the file was cut off")
 	}

@@ -13,6 +13,9 @@ type Layout struct {
 	HeaderLine, UnitsLine int
 	// FirstLine is the line of the first sample, counted from 1.
 	FirstLine int
+	// FooterLine is the line below the samples from which on words stand that are
+	// not read; 0 where there are none.
+	FooterLine int
 	// Delimiter is the separator in words, for example "comma".
 	Delimiter string
 	// DecimalMark is "." or ",".

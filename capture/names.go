@@ -65,7 +65,7 @@ func (h *head) listed(p *preamble, i, evidence int) bool {
 func (hd *heading) takeUnits(h *head, p *preamble, i int) {
 	if cells := h.headingCells(p, h.lines[i].text); h.unitsRow(cells) {
 		hd.unitsLine = h.lines[i].number
-		h.place(cells, func(col int, text string) { hd.units[col], _ = parseUnit(text) })
+		h.place(cells, func(col int, text string) { hd.units[col], _ = unitBeside("time", text) })
 	}
 }
 
@@ -103,9 +103,9 @@ func (h *head) unitsRow(cells []cell) bool {
 		if c.blank() || col >= len(h.kinds) || !h.kinds[col].numeric() {
 			continue
 		}
-		if isUnit(toUTF8(c.text)) {
+		if text := toUTF8(c.text); isUnit(text) {
 			found++
-		} else if !indexWord(toUTF8(c.text)) {
+		} else if _, long := parseTimeUnit(text); !long && !indexWord(text) {
 			return false
 		}
 	}
@@ -115,7 +115,8 @@ func (h *head) unitsRow(cells []cell) bool {
 // indexWord reports a name of a column that counts the samples.
 func indexWord(name string) bool {
 	switch fold(name) {
-	case "sequence", "seq", "index", "idx", "sample", "samples", "point", "points", "no", "nr", "n", "number", "count", "samplenumber", "":
+	case "sequence", "seq", "index", "idx", "sample", "samples", "point", "points", "no", "nr", "n", "number", "count", "row", "rows",
+		"samplenumber", "sampleno", "samplenr", "sampleindex", "pointnumber", "pointno", "rownumber", "":
 		return true
 	}
 	return false
@@ -201,6 +202,9 @@ func (h *head) namesRow(cells []cell) bool {
 // is the first of several channels rather than a current.
 func unitAsName(text string) (unit, bool) {
 	u, ok := parseUnit(text)
+	if !ok && len(text) > 3 { // min may be the least of something
+		u, ok = parseTimeUnit(text)
+	}
 	return u, ok && (u.base == "V" || len(text) > 2 || u.base == "s" && len(text) > 1)
 }
 

@@ -22,12 +22,16 @@ type step struct {
 	to       int  // index among the values or among the times
 	axis     int  // index among the times of the one that goes with it, -1: none
 	shift    int  // power of ten from the printed unit to the base unit
+	column   int  // of a time column, from 0
+	printed  bool // its stamps are shown as they are printed
+	parts    *stampParts
 }
 
 // A plan is the fixed layout that the data pass follows.
 type plan struct {
 	dialect
 	term     byte
+	wrapped  bool // every line is in quotes as a whole
 	steps    []step
 	last     int // the last column that is not skipped
 	values   int // number of columns of samples
@@ -52,8 +56,10 @@ type chunk struct {
 	holes   [][]hole // for each time column, the rows that lack it
 	missing []int    // for each column of samples
 	spans   []span
-	first   int    // line of its first row
-	footer  *Error // the first line that may be a footer
+	first   int // line of its first row
+	falls   []fall
+	ends    [][2]string // for each time column, the first stamp and the last for people
+	footer  *Error      // the first line that may be a footer
 	err     *Error
 }
 
@@ -68,6 +74,7 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 	}
 	line := c.line
 	for i := 0; i < len(c.text); line++ {
+		at := i
 		next := p.fastRow(c, i)
 		ok := next >= 0
 		if !ok {
@@ -75,7 +82,7 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 			ok = p.slowRow(c, c.text[i:end], line)
 			next = end + 1
 			if ok && c.partial {
-				p.acceptPart(c, line)
+				p.acceptPart(c, at, line)
 				ok = false // it is booked
 			}
 		}
@@ -85,37 +92,36 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 				c.first = line
 			}
 			c.rows++
-			p.accept(c, line)
+			p.accept(c, at, line)
 		}
 		if c.err != nil {
-			return
+			break
 		}
 	}
 	for k := range c.spans {
 		c.spans[k].finish()
 	}
+	p.keepEnds(c)
 }
 
-// accept takes in the stamps of a row. It refuses a row whose time is before
-// that of the row above, and rows below what was taken for a footer.
-func (p *plan) accept(c *chunk, line int) {
-	if c.footer != nil {
-		c.err = c.footer
-		return
-	}
+// accept takes in the stamps of the row that starts at text[at], and notes where its
+// time is before that of the row above. It refuses other rows below what was taken
+// for a footer.
+func (p *plan) accept(c *chunk, at, line int) {
+	fell := false
 	for k := range c.spans {
 		s, t := &c.spans[k], &c.now[k]
 		if s.run.goesOn(t) && s.n == s.run.n {
 			s.run.n++
 			s.n++
 		} else if !s.add(t) {
-			c.err = backwards(line, t.seconds(), s.last)
+			p.fell(c, k, at, line)
+			fell = true
 		}
 	}
-}
-
-func backwards(line int, t, before float64) *Error {
-	return &Error{Err: ErrBackwards, Line: line, Found: seconds(t) + " after " + seconds(before), Expected: "a later time"}
+	if c.footer != nil {
+		c.between(fell)
+	}
 }
 
 // fastRow reads the row that starts at text[i] and returns where the next line
@@ -184,6 +190,9 @@ func (p *plan) skipCell(b []byte, i int) int {
 
 // clockCell reads a date or clock time; -1 when there is none.
 func (p *plan) clockCell(c *chunk, s *step, i int) int {
+	if s.parts != nil {
+		return -1
+	}
 	b, end := c.text, i
 	for b[end] != p.delim && b[end] != p.term && b[end] != '\r' {
 		end++

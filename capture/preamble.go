@@ -6,47 +6,6 @@ import (
 	"strings"
 )
 
-// A meaning is what an entry of a preamble tells.
-type meaning int
-
-const (
-	meansNothing meaning = iota
-	meansInterval
-	meansRate
-	meansStart
-	meansTrigger // index of the sample at time zero
-	meansTimeUnit
-	meansValueUnit
-	meansSource // name of the channel
-	meansCount  // number of samples
-	meansScale  // what a converter code is worth
-)
-
-// meanings gives the meaning of the keys of preambles, folded.
-var meanings = map[string]meaning{}
-
-func init() {
-	for m, keys := range map[meaning]string{
-		meansInterval: `sampleinterval samplinginterval sampleperiod samplingperiod samplingtime sampletime timeinterval
-			timepersample secondspersample timestep timeincrement timedelta increment xincrement xinc xincr incr horizontalinterval deltat δt dt
-			ts interval sp samplespacing timespacing tinc hresolution timeresolution
-			abtastintervall abtastzeit abtastperiode périodeéchantillonnage périodedéchantillonnage`,
-		meansRate: `samplerate samplingrate samplefrequency samplingfrequency samplingfreq fs samplespersecond sr acquisitionrate sampling
-			abtastrate abtastfrequenz fréquencedéchantillonnage`,
-		meansStart:     `start starttime t0 x0 tstart xstart tzero xzero xorigin timeorigin timezero firstsample timeoffirstsample horizontalstart xfirst`,
-		meansTrigger:   `triggerpoint triggersample triggerindex triggerposition pretriggersamples pretriggerpoints`,
-		meansTimeUnit:  `horizontalunits horizontalunit timeunit timeunits xunit xunits timebaseunit unitoftime`,
-		meansValueUnit: `verticalunits verticalunit unit units yunit yunits voltageunit valueunit amplitudeunit channelunit einheit unité`,
-		meansSource:    `source channel trace channelname tracename signal kanal`,
-		meansCount:     `recordlength points samples numberofpoints numberofsamples recordsize memorylength npoints datapoints numpoints`,
-		meansScale:     `ymult ymultiplier yincrement yinc voltspercount voltspercode voltsperlsb voltsperbit vcount vlsb lsb verticalmultiplier countscale`,
-	} {
-		for _, k := range strings.Fields(keys) {
-			meanings[k] = m
-		}
-	}
-}
-
 // An entry is one thing a preamble tells.
 type entry struct {
 	means  meaning
@@ -87,8 +46,9 @@ func (p *preamble) readLine(number int, cells []cell) {
 			continue
 		}
 		if open == nil {
-			if rate, ok := p.findRate(text); ok {
-				p.entries = append(p.entries, entry{means: meansRate, line: number, column: col, values: []located{{rate, col}}})
+			if e, value, ok := p.findTold(text); ok {
+				e.line, e.column, e.values = number, col, []located{{value, col}}
+				p.entries = append(p.entries, e)
 			}
 		} else {
 			open.values = append(open.values, located{text, col})
@@ -96,47 +56,24 @@ func (p *preamble) readLine(number int, cells []cell) {
 	}
 }
 
-// findRate looks for a sampling rate in a sentence: its unit tells.
-func (p *preamble) findRate(text string) (string, bool) {
+// findTold looks for a sampling rate or the worth of a code in a sentence: the unit
+// tells.
+func (p *preamble) findTold(text string) (e entry, value string, ok bool) {
 	w := strings.Fields(text)
 	for i := range w {
 		for _, try := range []string{w[i], strings.Join(w[i:min(i+2, len(w))], " ")} {
-			if _, u, _, ok := p.d.quantity(cell{text: []byte(strings.TrimRight(try, ".;)"))}); ok && u.base == "Sa/s" {
-				return strings.TrimRight(try, ".;)"), true
+			try = strings.TrimRight(try, ".;)")
+			if _, u, _, ok := p.d.quantity(cell{text: []byte(try)}); ok && u.base == "Sa/s" {
+				return entry{means: meansRate}, try, true
+			}
+			if _, end := scanCell([]byte(try), p.d.mark); end > 0 {
+				if e, ok := perKey(try[end:]); ok && e.means == meansScale {
+					return e, try[:end], true
+				}
 			}
 		}
 	}
-	return "", false
-}
-
-// readKey reads "key", "key: value", "key = value" and "key value", the key
-// with or without its unit in brackets.
-func readKey(text string) (e entry, rest string, ok bool) {
-	key := text
-	if i := strings.IndexAny(text, ":="); i > 0 {
-		key, rest = text[:i], strings.TrimSpace(text[i+1:])
-	}
-	for {
-		name, u, _ := splitUnit(key)
-		if m := meanings[fold(name)]; m != meansNothing && len(strings.TrimSpace(name)) < 40 {
-			return entry{means: m, unit: u}, rest, true
-		}
-		// Shorten a free text by its last word, which may be the value.
-		i := strings.LastIndexByte(strings.TrimSpace(key), ' ')
-		if i < 0 || rest != "" && key == text {
-			return entry{}, "", false
-		}
-		rest = strings.TrimSpace(key[i:] + " " + rest)
-		key = key[:i]
-		if !strings.ContainsAny(rest[:1], "0123456789+-.") && !isUnit(rest) {
-			return entry{}, "", false
-		}
-	}
-}
-
-func isUnit(text string) bool {
-	_, ok := parseUnit(text)
-	return ok
+	return e, "", false
 }
 
 // cellsOf cuts a line of the preamble. A comment mark is dropped; a line that
@@ -176,11 +113,18 @@ func isComment(text []byte) bool {
 	return len(text) > 0 && (text[0] == '#' || text[0] == '%' || text[0] == '!' || bytes.HasPrefix(text, []byte("//")))
 }
 
-// text returns the value of an entry for the column col (from 0): the one that
-// stands in that column, else the nearest to its left, else the first.
+// text returns the value of an entry for the column col (from 0), and the unit of
+// its key.
 func (p *preamble) text(m meaning, col int) (string, unit, bool) {
-	var best *located
-	var u unit
+	if e, v := p.best(m, col); e != nil {
+		return v.text, e.unit, true
+	}
+	return "", unit{}, false
+}
+
+// best returns the value for the column col (from 0): the one that stands in that
+// column, else the nearest to its left, else the first; nil where there is none.
+func (p *preamble) best(m meaning, col int) (of *entry, best *located) {
 	rank := func(l *located) int {
 		if l.column <= col {
 			return 1000000 - (col - l.column)
@@ -194,14 +138,11 @@ func (p *preamble) text(m meaning, col int) (string, unit, bool) {
 		}
 		for j := range e.values {
 			if v := &e.values[j]; best == nil || rank(v) > rank(best) {
-				best, u = v, e.unit
+				of, best = e, v
 			}
 		}
 	}
-	if best == nil {
-		return "", u, false
-	}
-	return best.text, u, true
+	return of, best
 }
 
 // find returns the first value of an entry, and its line.
@@ -215,28 +156,34 @@ func (p *preamble) find(m meaning) (string, int) {
 }
 
 // A declared number is a value the preamble gives, in SI units, and half a
-// unit of its last printed digit.
+// unit of its last printed digit; base is its unit, "" where none is given.
 type declared struct {
 	value, half float64
 	ok          bool
+	base        string
+	line        int
 }
 
 // number returns the value of an entry as a number in base units; a value
 // without a unit of its own has that of its key, else the default.
 func (p *preamble) number(m meaning, col int, base string, def unit) declared {
-	text, u, ok := p.text(m, col)
-	if !ok {
+	e, v := p.best(m, col)
+	if e == nil {
 		return declared{}
 	}
+	u := e.unit
 	if u.base == "" {
 		u = def
 	}
 	for _, d := range []dialect{p.d, p.d.otherMark()} {
-		c := cell{text: []byte(strings.TrimSpace(text)), quoted: true}
+		c := cell{text: []byte(strings.TrimSpace(v.text)), quoted: true}
 		n, digits, ok := d.number(c)
 		own := u
 		if !ok {
 			n, own, digits, ok = d.quantity(c)
+		}
+		if !ok {
+			n, own, digits, ok = d.ofKind(c, base)
 		}
 		if !ok || own.base != "" && own.base != base {
 			continue
@@ -245,7 +192,8 @@ func (p *preamble) number(m meaning, col int, base string, def unit) declared {
 		if p.d.ambiguous(c.text) && own.exp == 0 && m != meansCount {
 			return declared{}
 		}
-		return declared{n.float(own.exp, digits, d.mark), 0.5 * math.Pow10(n.exp+own.exp), true}
+		many := max(own.many, 1)
+		return declared{many * n.float(own.exp, digits, d.mark), 0.5 * many * math.Pow10(n.exp+own.exp), true, own.base, e.line}
 	}
 	return declared{}
 }
@@ -274,7 +222,8 @@ func (p *preamble) interval(col int) declared {
 	}
 	for _, base := range []string{"Sa/s", "Hz"} {
 		if d := p.number(meansRate, col, base, unit{base: base}); d.ok && d.value > 0 {
-			return declared{1 / d.value, d.half / (d.value * d.value), true}
+			d.value, d.half = 1/d.value, d.half/(d.value*d.value)
+			return d
 		}
 	}
 	return declared{}
@@ -283,7 +232,7 @@ func (p *preamble) interval(col int) declared {
 // timeUnit is the unit of time the preamble names, without base when it names none.
 func (p *preamble) timeUnit(col int) unit {
 	if text, _, ok := p.text(meansTimeUnit, col); ok {
-		if u, ok := parseUnit(text); ok && u.base == "s" {
+		if u, ok := parseTimeUnit(text); ok {
 			return u
 		}
 	}

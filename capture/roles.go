@@ -11,10 +11,13 @@ import (
 type column struct {
 	Column
 	kind   kind
-	unit   unit      // base "" when nothing names it
-	values []float64 // of the first rows, as printed (quantities in base units); NaN where there is none
-	whole  bool      // all of them are printed without fraction and exponent
-	time   int       // index of the column with the time of this one, -1: none
+	unit   unit        // base "" when nothing names it
+	values []float64   // of the first rows, as printed (quantities in base units); NaN where there is none
+	whole  bool        // all of them are printed without fraction and exponent
+	time   int         // index of the column with the time of this one, -1: none
+	parts  *stampParts // columns that go with this one of clock times
+	part   bool        // it is one of them
+	codes  *codeScale  // what its whole numbers are worth, nil where nothing says it
 }
 
 func (c *column) is(r Role, why string, args ...any) {
@@ -41,6 +44,7 @@ func newColumns(h *head, hd heading) []column {
 		}
 	})
 	takeUnitColumns(h, cols)
+	joinStamps(h, cols)
 	return cols
 }
 
@@ -85,6 +89,12 @@ func (c *column) look(d dialect, x cell) {
 
 // unitName writes a unit with its prefix.
 func unitName(u unit) string {
+	switch u.many {
+	case minute.many:
+		return "min"
+	case hour.many:
+		return "h"
+	}
 	for _, p := range prefixes {
 		if p.exp == u.exp && u.base != "" {
 			return p.text + u.base
@@ -126,10 +136,10 @@ func assignRoles(h *head, cols []column, interval func(col int) declared) {
 	}
 	assignDeviations(cols)
 	for i, last := 0, -1; i < len(cols); i++ {
-		switch cols[i].Role {
-		case RoleTime:
+		switch {
+		case cols[i].Role == RoleTime && !cols[i].part:
 			last = i
-		case "":
+		case cols[i].Role == "":
 			cols[i].is(RoleChannel, "numbers")
 			cols[i].time = last
 		}
@@ -144,7 +154,7 @@ func assignRoles(h *head, cols []column, interval func(col int) declared) {
 
 func firstWithRole(cols []column, r Role) int {
 	for i := range cols {
-		if cols[i].Role == r {
+		if cols[i].Role == r && !cols[i].part {
 			return i
 		}
 	}

@@ -17,6 +17,7 @@ type table struct {
 	missing []int
 	spans   [][]span // for each time column, in order of the rows
 	holes   [][]hole // for each time column, the rows that lack it
+	footer  *Error   // the first line of words below the samples
 }
 
 // A scanner reads a text block by block and hands the blocks to workers.
@@ -169,28 +170,15 @@ func tooFew(rows int) *Error {
 }
 
 func (s *scanner) join(t *table) *Error {
-	var footer *Error
+	r := records{first: make([]float64, s.p.times), ends: make([]string, s.p.times)}
 	for _, c := range s.chunks {
-		if c.err != nil {
-			if footer != nil && c.rows > 0 {
-				return footer
-			}
-			return c.err
-		}
-		if c.rows > 0 && footer != nil {
-			return footer
-		}
-		if footer == nil {
-			footer = c.footer
+		if err := r.add(c, t); err != nil {
+			return err
 		}
 		for k := range c.spans {
-			if c.spans[k].n == 0 {
-				continue
+			if c.spans[k].n > 0 {
+				t.spans[k] = append(t.spans[k], c.spans[k])
 			}
-			if n := len(t.spans[k]); n > 0 && !c.spans[k].follows(t.spans[k][n-1].last) {
-				return backwards(c.first, c.spans[k].first, t.spans[k][n-1].last)
-			}
-			t.spans[k] = append(t.spans[k], c.spans[k])
 		}
 		t.addHoles(c)
 		for k, n := range c.missing {
@@ -198,5 +186,6 @@ func (s *scanner) join(t *table) *Error {
 		}
 		t.rows += c.rows
 	}
-	return nil
+	t.footer = r.footer
+	return r.refusal()
 }

@@ -4,12 +4,17 @@ import (
 	"bytes"
 	"fmt"
 	"math"
+	"slices"
+	"unicode"
 )
 
 // slowRow reads a row of any kind, and reports whether it was one. Blank lines
 // and comments are passed over; words at the end of the text are a footer.
 func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 	text = bytes.TrimRight(text, lineRest)
+	if p.wrapped {
+		text, _ = unwrap(text)
+	}
 	c.cells = p.split(text, c.cells[:0])
 	cells := c.cells
 	if p.passed(text, cells) {
@@ -21,7 +26,7 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 	bad, numbers := p.badCell(c, cells)
 	if bad != nil {
 		bad.Line = line
-		if numbers > 0 || !wordy(text) {
+		if numbers > 0 && !p.closes(cells, bad.Column-1) || !wordy(text) {
 			c.err = bad
 		} else if c.footer == nil {
 			c.footer = bad
@@ -52,7 +57,7 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 			c.now[s.to] = instant{d: d, real: d.tooLong(), time: d.float(shift, digits, p.mark)}
 			c.now[s.to].d.exp += shift
 		case opClock:
-			t, _ := parseStamp(cells[k].text, p.dayFirst)
+			t, _ := p.stamp(cells, k, s.parts, p.dayFirst)
 			zero := p.zero
 			if t.period > 0 {
 				zero = c.spans[s.to].anew(t, zero)
@@ -61,6 +66,17 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 		}
 	}
 	return true
+}
+
+// closes reports a row whose first cell is a word in place of a number, in column
+// bad: Mean, 0.01. Below the samples it is a footer, numbers or not.
+func (p *plan) closes(cells []cell, bad int) bool {
+	first := slices.IndexFunc(cells, func(c cell) bool { return !c.blank() })
+	if bad < 0 || first != bad || p.kindOf(cells[first]) != kindText {
+		return false
+	}
+	word := []rune(toUTF8(cells[first].text))
+	return len(word) > 1 && unicode.IsLetter(word[0]) && unicode.IsLetter(word[1])
 }
 
 // wordy reports a line with anything in it that no row of numbers has.
@@ -95,7 +111,7 @@ func (p *plan) badCell(c *chunk, cells []cell) (bad *Error, numbers int) {
 		}
 		var ok, found bool
 		if s.op == opClock {
-			_, ok = parseStamp(cells[k].text, p.dayFirst)
+			_, ok = p.stamp(cells, k, s.parts, p.dayFirst)
 			found = ok
 		} else {
 			_, _, digits, fine := p.decimalOf(cells[k], s)
@@ -108,6 +124,8 @@ func (p *plan) badCell(c *chunk, cells []cell) (bad *Error, numbers int) {
 			bad = &Error{Err: ErrSyntax, Column: k + 1, Found: quote(string(cells[k].text)), Expected: s.expects()}
 			if cells[k].blank() {
 				bad.Found = "an empty cell"
+			} else if s.op == opClock {
+				bad.Found = s.parts.shown(cells, k)
 			}
 		}
 	}

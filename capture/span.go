@@ -28,6 +28,7 @@ type span struct {
 	even      bool        // the line stands for all stamps
 	period    int64       // of clock times without a date, in seconds
 	wraps     int64       // periods that have passed
+	unit      float64     // seconds for which a printed 1 stands, where they are none; else 0
 }
 
 // An instant is one stamp: a printed number, its power of ten that of seconds;
@@ -142,14 +143,11 @@ func (s *span) add(t *instant) bool {
 	}
 	s.exp = min(s.exp, t.d.exp)
 	s.digits = max(s.digits, t.d.mant)
-	v := t.seconds()
+	v, before := t.seconds(), s.last
 	s.stamps = append(s.stamps, v)
 	s.n++
-	if s.n > 1 && v < s.last {
-		return false
-	}
 	s.last = v
-	return true
+	return s.n == 1 || v >= before
 }
 
 // value is the stamp number i of the progression.
@@ -332,12 +330,16 @@ const negligible = 3e-4
 // the step of its last place; one printed to significant digits, which shows
 // trailing zeros or drops them, has that of the digits there.
 func (s *span) resolution(digits uint64, exp int) float64 {
-	t := math.Max(math.Abs(s.first), math.Abs(s.last))
+	t, unit := math.Max(math.Abs(s.first), math.Abs(s.last)), 1.0
+	if s.unit > 0 {
+		unit = s.unit
+	}
 	q := math.Pow10(exp)
 	if digits > 0 && t > 0 {
 		shown := math.Floor(math.Log10(float64(digits))) + 1
-		q = math.Max(q, math.Pow(10, math.Floor(math.Log10(t))+1-shown))
+		q = math.Max(q, math.Pow(10, math.Floor(math.Log10(t/unit))+1-shown))
 	}
+	q *= unit
 	// Nothing is finer than the float64 itself.
 	return math.Max(q, 4*(math.Nextafter(t, math.Inf(1))-t))
 }

@@ -23,7 +23,7 @@ func (t *sweepTable) build(s *Sweep, src *source, opt SweepOptions) error {
 	t.deviation(s)
 	t.reference(s, opt)
 	t.others(s)
-	s.Layout = t.layout(src)
+	s.Layout = t.layout(src, t.footer)
 	s.say()
 	return nil
 }
@@ -43,7 +43,7 @@ func (c *column) scaled() []float64 {
 		if c.unit.exp < 0 {
 			out[i] /= math.Pow10(-c.unit.exp)
 		} else {
-			out[i] *= math.Pow10(c.unit.exp)
+			out[i] *= c.unit.times()
 		}
 	}
 	return out

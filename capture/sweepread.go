@@ -99,7 +99,8 @@ func (s *Sweep) read(src *source, text []byte, opt SweepOptions) error {
 // has one for each of lines, as printed; NaN where there is none.
 type sweepTable struct {
 	*layoutDesign
-	lines []int
+	lines  []int
+	footer *Error // the first line of words below the rows
 }
 
 // readRows reads every column of numbers of the table. A sweep is short, so
@@ -126,6 +127,7 @@ func (t *sweepTable) readRows(text []byte) *Error {
 			t.take(c, l.number)
 		}
 	}
+	t.footer = c.footer
 	if n := len(t.lines); n < sweepRows {
 		return &Error{Err: ErrTooFew, Found: plural(n, "row"), Expected: fmt.Sprintf("at least %d: a resonance has four unknowns", sweepRows)}
 	}
@@ -150,7 +152,7 @@ func (t *sweepTable) brokenSecond() *Error {
 
 // planColumns makes every column with numbers a column of values.
 func (t *sweepTable) planColumns() {
-	t.plan = plan{dialect: t.head.dialect, term: t.head.term, steps: make([]step, len(t.columns))}
+	t.plan = plan{dialect: t.head.dialect, term: t.head.term, wrapped: t.head.wrapped, steps: make([]step, len(t.columns))}
 	for i := range t.columns {
 		c, s := &t.columns[i], &t.plan.steps[i]
 		switch c.kind {
@@ -158,9 +160,9 @@ func (t *sweepTable) planColumns() {
 			*s = step{op: opValue, to: t.plan.values, axis: -1, quantity: c.kind == kindQuantity}
 			t.plan.values++
 		case kindStamp:
-			*s = step{op: opClock, to: t.plan.times, axis: t.plan.times}
+			*s = step{to: t.plan.times, axis: t.plan.times, column: i}
 			t.plan.times++
-			t.plan.dayFirst, t.plan.zero = t.dayFirst(i), t.firstSecond(i)
+			t.planClock(c, s)
 			c.unit = unit{base: "s"}
 		case kindText:
 			c.is(RoleText, "words instead of numbers")

@@ -14,8 +14,9 @@ const (
 	namedTime // its name or unit says time
 )
 
-// timeRank says how much a column looks like time, and why.
-func (c *column) timeRank(first bool) (int, string) {
+// timeRank says how much a column looks like time, and why; first is the first
+// column of numbers, and decl the declared sampling interval.
+func (c *column) timeRank(first bool, decl declared) (int, string) {
 	if c.kind == kindStamp {
 		return clockTime, "dates or clock times"
 	}
@@ -30,8 +31,12 @@ func (c *column) timeRank(first bool) (int, string) {
 	switch {
 	case c.unit.base == "s" && (rising || timeName(c.Name)):
 		return namedTime, "its unit is " + unitName(c.unit)
-	case c.counts() && (!says || weakTimeName(c.Name) || fold(c.Name) == "xaxis"):
+	case c.counts() && (!says || c.mayCount()):
 		return countTime, "whole numbers that count the samples"
+	case c.Name != "" && indexWord(c.Name) && c.stride(2) > 0:
+		return countTime, fmt.Sprintf("its name is %q, and its whole numbers rise by %g from row to row", c.Name, c.stride(2))
+	case first && c.mayCount() && decl.ok && c.stride(50) > 0 && !decl.like(c.stride(50)):
+		return countTime, fmt.Sprintf("whole numbers that rise by %g, which in no unit of time is the declared interval", c.stride(50))
 	case says:
 		return namedTime, fmt.Sprintf("its name is %q", c.Name)
 	case rising && (even || first) && c.Name == "":
@@ -76,7 +81,7 @@ func (c *column) rises() (rising, even bool) {
 // each other, as those of a slowly rising voltage are.
 func (c *column) belies(decl declared) bool {
 	step := medianStep(c.values)
-	if _, like := decl.scaleOf(step); like || !decl.ok {
+	if !decl.ok || decl.like(step) {
 		return false
 	}
 	steady := 0
@@ -89,17 +94,30 @@ func (c *column) belies(decl declared) bool {
 }
 
 // counts reports whole numbers that rise by one from row to row.
-func (c *column) counts() bool {
+func (c *column) counts() bool { return c.stride(50) == 1 }
+
+// stride is what whole numbers rise by from row to row, all but one in so many; 0
+// where they do not. Of a count of samples it is more than 1 where only every so
+// many is kept.
+func (c *column) stride(many int) float64 {
 	if !c.whole || c.kind != kindNumber || len(c.values) < 2 {
-		return false
+		return 0
 	}
-	misses := 0
+	step, misses := medianStep(c.values), 0
 	for i, v := range c.values[1:] {
-		if v-c.values[i] != 1 {
+		if v-c.values[i] != step {
 			misses++
 		}
 	}
-	return misses*50 <= len(c.values)
+	if misses*many > len(c.values) || !(step > 0) {
+		return 0
+	}
+	return step
+}
+
+// mayCount reports a column whose name does not forbid that it counts the samples.
+func (c *column) mayCount() bool {
+	return c.Name == "" || weakTimeName(c.Name) || fold(c.Name) == "xaxis"
 }
 
 // assignSpectra finds columns of frequencies, and what goes with them: the
@@ -133,7 +151,7 @@ func assignTime(cols []column, interval func(col int) declared) {
 		if !cols[i].kind.numeric() || cols[i].Role != "" {
 			continue
 		}
-		ranks[i], whys[i] = cols[i].timeRank(numeric == 0)
+		ranks[i], whys[i] = cols[i].timeRank(numeric == 0, interval(i))
 		if ranks[i] == evenTime && cols[i].belies(interval(i)) {
 			ranks[i] = noTime // a channel that happens to rise
 		}

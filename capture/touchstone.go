@@ -84,7 +84,7 @@ func (s *Sweep) readTouchstone(src *source, text []byte, opt SweepOptions) error
 	if opt.Frequency+opt.Reference+opt.Phase != "" {
 		return fmt.Errorf("%w: a Touchstone file has one frequency and no reference; only the response can be chosen, S11 for example", ErrNoColumn)
 	}
-	t := &touchstone{unit: unit{"Hz", 9}, parameter: "S", format: "MA", resistance: 50, matrix: "full"}
+	t := &touchstone{unit: unit{base: "Hz", exp: 9}, parameter: "S", format: "MA", resistance: 50, matrix: "full"}
 	for i, l := range splitLines(text, '\n', true) {
 		if done, err := t.line(stripBang(toUTF8(l.text)), i+1); err != nil {
 			return err
@@ -133,7 +133,7 @@ func (t *touchstone) optionLine(words []string, number int) error {
 		kind, _ := touchstoneWord(words[i])
 		switch kind {
 		case 'f':
-			t.unit = unit{"Hz", map[string]int{"hz": 0, "khz": 3, "mhz": 6, "ghz": 9}[words[i]]}
+			t.unit = unit{base: "Hz", exp: map[string]int{"hz": 0, "khz": 3, "mhz": 6, "ghz": 9}[words[i]]}
 		case 'p':
 			t.parameter = strings.ToUpper(words[i])
 		case 'c':

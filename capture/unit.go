@@ -1,6 +1,7 @@
 package capture
 
 import (
+	"math"
 	"strings"
 	"unicode"
 	"unicode/utf8"
@@ -10,6 +11,41 @@ import (
 type unit struct {
 	base string // "s", "V", "A", "Hz", "Sa/s", "counts", …
 	exp  int
+	many float64 // how many of the base unit it is besides: 60 for a minute; 0 stands for 1
+}
+
+// times is the number of base units that the unit is.
+func (u unit) times() float64 {
+	if u.many > 0 {
+		return u.many * math.Pow10(u.exp)
+	}
+	return math.Pow10(u.exp)
+}
+
+// longTimes are the units of time of more than a second. Beside a name for anything
+// but time they mean something else: CH1 min, H.
+var longTimes = map[string]unit{
+	"min": minute, "mins": minute, "minute": minute, "minutes": minute,
+	"h": hour, "hr": hour, "hrs": hour, "hour": hour, "hours": hour,
+}
+
+var minute, hour = unit{base: "s", many: 60}, unit{base: "s", many: 3600}
+
+// parseTimeUnit reads a unit where one of time is meant.
+func parseTimeUnit(text string) (unit, bool) {
+	if u, ok := longTimes[strings.ToLower(strings.TrimSpace(strings.Trim(strings.TrimSpace(text), "()[]")))]; ok {
+		return u, true
+	}
+	u, ok := parseUnit(text)
+	return u, ok && u.base == "s"
+}
+
+// unitBeside reads a unit that stands beside a name.
+func unitBeside(name, text string) (unit, bool) {
+	if u, ok := parseUnit(text); ok || !timeName(name) && meanings[fold(name)] != meansInterval {
+		return u, ok
+	}
+	return parseTimeUnit(text)
 }
 
 // prefixes; µ is the only one that a change of encoding can spoil.
@@ -26,7 +62,8 @@ var baseUnits = map[string]string{
 	"s": "s", "sec": "s", "secs": "s", "second": "s", "seconds": "s",
 	"v": "V", "volt": "V", "volts": "V", "a": "A", "amp": "A", "amps": "A", "ampere": "A", "amperes": "A",
 	"hz": "Hz", "hertz": "Hz", "sa/s": "Sa/s", "s/s": "Sa/s", "sps": "Sa/s", "samples/s": "Sa/s", "pts/s": "Sa/s",
-	"samples/second": "Sa/s", "samples per second": "Sa/s", "w": "W", "watt": "W", "ohm": "ohm", "ohms": "ohm", "ω": "ohm",
+	"samples/second": "Sa/s", "samples/sec": "Sa/s", "samples per second": "Sa/s", "sample/s": "Sa/s", "s/sec": "Sa/s", "sa/sec": "Sa/s",
+	"points/s": "Sa/s", "points/second": "Sa/s", "1/s": "Sa/s", "w": "W", "watt": "W", "ohm": "ohm", "ohms": "ohm", "ω": "ohm",
 }
 
 // plainUnits take no prefix.
@@ -51,15 +88,18 @@ func parseUnit(text string) (unit, bool) {
 	}
 	for _, p := range prefixes {
 		rest, ok := strings.CutPrefix(text, p.text)
+		if !ok && len(p.text) > 3 { // Milliseconds
+			rest, ok = strings.CutPrefix(lower, p.text)
+		}
 		if !ok {
 			continue
 		}
 		if base := baseUnits[strings.ToLower(rest)]; base != "" && (utf8.RuneCountInString(p.text) < 4 || len(rest) > 2) {
 			// No clock counts in megaseconds, no probe in megavolts: milli in capitals.
 			if p.text == "M" && (base == "s" || base == "V" || base == "A") && strings.ToUpper(text) == text {
-				return unit{base, -3}, true
+				return unit{base: base, exp: -3}, true
 			}
-			return unit{base, p.exp}, true
+			return unit{base: base, exp: p.exp}, true
 		}
 	}
 	return unit{}, false
@@ -80,12 +120,12 @@ func parsePrefix(text string) (unit, bool) {
 func splitUnit(text string) (name string, u unit, ok bool) {
 	text = strings.TrimSpace(text)
 	if before, inside := lastBrackets(text); inside != "" {
-		if u, ok = parseUnit(inside); ok {
+		if u, ok = unitBeside(before, inside); ok {
 			return before, u, true
 		}
 	}
 	if rest, found := strings.CutPrefix(text, "in "); found {
-		if u, ok = parseUnit(rest); ok {
+		if u, ok = unitBeside("time", rest); ok {
 			return "", u, true
 		}
 	}
@@ -94,7 +134,7 @@ func splitUnit(text string) (name string, u unit, ok bool) {
 			// V_C and TimeV_S are names, time_us and ch1_mV are name and unit:
 			// after an underscore only a unit with prefix, or the second after
 			// a word for time, is believed.
-			u, ok = parseUnit(text[i+len(sep):])
+			u, ok = unitBeside(text[:i], text[i+len(sep):])
 			if ok && (sep != "_" || u.exp != 0 || u.base == "s" && exactTimeName(text[:i])) {
 				return strings.TrimSpace(text[:i]), u, true
 			}

@@ -1,0 +1,81 @@
+package capture
+
+import "strings"
+
+// A meaning is what an entry of a preamble tells.
+type meaning int
+
+const (
+	meansNothing meaning = iota
+	meansInterval
+	meansRate
+	meansStart
+	meansTrigger // index of the sample at time zero
+	meansTimeUnit
+	meansValueUnit
+	meansSource // name of the channel
+	meansCount  // number of samples
+	meansScale  // what a converter code is worth
+	meansDivision
+	meansDivisionCodes
+	meansZeroCode
+)
+
+// meanings gives the meaning of the keys of preambles, folded.
+var meanings = map[string]meaning{}
+
+func init() {
+	for m, keys := range map[meaning]string{
+		meansInterval: `sampleinterval samplinginterval sampleperiod samplingperiod samplingtime sampletime timeinterval
+			timepersample secondspersample timestep timeincrement timedelta increment xincrement xinc xincr incr horizontalinterval deltat δt dt
+			ts interval sp samplespacing timespacing tinc hresolution timeresolution
+			abtastintervall abtastzeit abtastperiode périodeéchantillonnage périodedéchantillonnage`,
+		meansRate: `samplerate samplingrate samplefrequency samplingfrequency samplingfreq fs samplespersecond sr acquisitionrate sampling
+			abtastrate abtastfrequenz fréquencedéchantillonnage`,
+		meansStart:     `start starttime t0 x0 tstart xstart tzero xzero xorigin timeorigin timezero firstsample timeoffirstsample horizontalstart xfirst`,
+		meansTrigger:   `triggerpoint triggersample triggerindex triggerposition pretriggersamples pretriggerpoints`,
+		meansTimeUnit:  `horizontalunits horizontalunit timeunit timeunits xunit xunits timebaseunit unitoftime`,
+		meansValueUnit: `verticalunits verticalunit unit units yunit yunits voltageunit valueunit amplitudeunit channelunit einheit unité`,
+		meansSource:    `source channel trace channelname tracename signal kanal`,
+		meansCount:     `recordlength points samples numberofpoints numberofsamples recordsize memorylength npoints datapoints numpoints`,
+		meansScale:     `ymult ymultiplier yincrement yinc lsb lsbsize verticalmultiplier countscale`,
+		meansZeroCode:  `zerocode zerocount zerocounts codeofzero codeatzero countsatzero zerovoltcode zerovoltcount zerolevelcode zerolevelcount zerolsb`,
+	} {
+		for _, k := range strings.Fields(keys) {
+			meanings[k] = m
+		}
+	}
+}
+
+// readKey reads "key", "key: value", "key = value" and "key value", the key
+// with or without its unit in brackets.
+func readKey(text string) (e entry, rest string, ok bool) {
+	key := text
+	if i := strings.IndexAny(text, ":="); i > 0 {
+		key, rest = text[:i], strings.TrimSpace(text[i+1:])
+	}
+	for {
+		name, u, _ := splitUnit(key)
+		if m := meanings[fold(name)]; m != meansNothing && len(strings.TrimSpace(name)) < 40 {
+			return entry{means: m, unit: u}, rest, true
+		}
+		if e, ok := perKey(key); ok {
+			return e, rest, true
+		}
+		// Shorten a free text by its last word, which may be the value.
+		i := strings.LastIndexByte(strings.TrimSpace(key), ' ')
+		if i < 0 || rest != "" && key == text {
+			return entry{}, "", false
+		}
+		rest = strings.TrimSpace(key[i:] + " " + rest)
+		key = key[:i]
+		if !strings.ContainsAny(rest[:1], "0123456789+-.") && !isUnit(rest) {
+			return entry{}, "", false
+		}
+	}
+}
+
+func isUnit(text string) bool {
+	_, ok := parseUnit(text)
+	return ok
+}

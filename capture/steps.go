@@ -1,0 +1,156 @@
+package capture
+
+// How the roles of columns become the steps of the data pass.
+
+// makePlan turns roles into steps of the data pass.
+func (d *layoutDesign) makePlan() *Error {
+	// A unit of time makes a count of samples a time.
+	if i := firstWithRole(d.columns, RoleIndex); i >= 0 && d.opt.TimeUnit != "" && !d.declared(i).ok && firstWithRole(d.columns, RoleTime) < 0 {
+		d.columns[i].is(RoleTime, "whole numbers, and a unit of time is given")
+		for k := range d.columns {
+			d.columns[k].time = i
+		}
+	}
+	d.plan = plan{dialect: d.head.dialect, term: d.head.term, wrapped: d.head.wrapped, steps: make([]step, len(d.columns))}
+	timed := firstWithRole(d.columns, RoleTime) >= 0
+	for i := range d.columns {
+		c, s := &d.columns[i], &d.plan.steps[i]
+		switch {
+		case c.part: // the clock time beside it is read with it
+		case c.Role == RoleTime:
+			d.planTime(c, s)
+		case c.Role == RoleIndex:
+			if timed || d.plan.times > 0 {
+				continue
+			}
+			*s = step{op: opTime, to: d.plan.times, axis: d.plan.times, column: i, printed: true}
+			d.plan.times++
+		case c.Role == RoleChannel:
+			d.planValue(i)
+		default:
+			continue
+		}
+		d.plan.last = i
+	}
+	d.pair()
+	if d.plan.values == 0 {
+		return d.noSamples()
+	}
+	if d.plan.times == 0 || !timed {
+		return d.needInterval()
+	}
+	return nil
+}
+
+// pair tells the columns of samples which stamps go with them.
+func (d *layoutDesign) pair() {
+	for i := range d.columns {
+		if s := &d.plan.steps[i]; s.op == opValue && d.columns[i].time >= 0 {
+			s.axis = d.plan.steps[d.columns[i].time].to
+		} else if s.op == opValue && d.plan.times > 0 {
+			s.axis = 0
+		}
+	}
+}
+
+func (d *layoutDesign) planValue(i int) {
+	c := &d.columns[i]
+	if c.unit.base == "" && c.kind != kindQuantity {
+		c.unit, _ = d.preamble.valueUnit(i, d.plan.values)
+	}
+	if told := c.unit; c.kind == kindNumber && c.whole && (c.Unit == "" || told.base == "counts") {
+		if s, ok := d.preamble.codes(i, told); ok {
+			c.codes, c.unit = &s, unit{base: "counts"} // the unit is that of codes times the scale
+		}
+	}
+	if c.unit.base == "s" || c.unit.base == "Sa/s" { // the unit of something else
+		c.unit = unit{}
+	}
+	c.Unit = unitName(c.unit)
+	d.plan.steps[i] = step{op: opValue, to: d.plan.values, axis: -1, shift: c.unit.exp, quantity: c.kind == kindQuantity}
+	d.plan.values++
+}
+
+// planTime settles the unit of a time column.
+func (d *layoutDesign) planTime(c *column, s *step) {
+	*s = step{op: opTime, to: d.plan.times, axis: d.plan.times, quantity: c.kind == kindQuantity, column: c.Number - 1}
+	d.plan.times++
+	if c.kind == kindStamp {
+		d.planClock(c, s)
+		d.timeWhy = "dates or clock times, counted from the first"
+		return
+	}
+	if c.kind == kindQuantity {
+		d.timeWhy = "each stamp has its unit"
+		return
+	}
+	c.unit, d.timeWhy = d.timeUnit(c)
+	c.Unit = unitName(c.unit)
+	s.shift = c.unit.exp
+	s.printed = c.unit.many > 0
+}
+
+// planClock settles what a column of clock times counts from.
+func (d *layoutDesign) planClock(c *column, s *step) {
+	s.op, s.parts, s.printed = opClock, c.parts, true
+	d.plan.dayFirst = d.dayFirst(s)
+	d.plan.zero = d.firstSecond(s)
+}
+
+// timeUnit looks for the unit of a time column: the caller's word, the header,
+// the preamble, the declared interval against the steps of the column; seconds
+// when nothing gives it.
+func (d *layoutDesign) timeUnit(c *column) (unit, string) {
+	if d.opt.TimeUnit != "" {
+		if u, ok := parseUnit(d.opt.TimeUnit); ok && u.base == "s" {
+			return u, "unit of time given"
+		}
+	}
+	if c.unit.base == "s" {
+		return c.unit, "unit of time in the header"
+	}
+	if u := d.preamble.timeUnit(c.Number - 1); u.base == "s" {
+		return u, "unit of time in the preamble"
+	}
+	decl := d.declared(c.Number - 1)
+	if exp, ok := decl.scaleOf(medianStep(c.values)); ok {
+		return unit{base: "s", exp: exp}, "unit of time implied by the declared interval of " + seconds(decl.value)
+	}
+	d.assumed = true
+	if _, u := lastBrackets(c.Name); u != "" {
+		d.unknown = u
+	}
+	return unit{base: "s"}, "seconds assumed"
+}
+
+// dayFirst reports dates whose first number cannot be a month.
+func (d *layoutDesign) dayFirst(s *step) bool {
+	first := true // common in most of the world, and of no weight within a day
+	d.head.eachRow(func(_ line, cells []cell) {
+		if s.column >= len(cells) {
+			return
+		}
+		p := stampParser{b: s.parts.text(cells, s.column)}
+		p.number()
+		if p.i++; p.i < len(p.b) {
+			if n, ok := p.number(); ok && n > 12 && n < 32 {
+				first = false
+			}
+		}
+	})
+	return first
+}
+
+// firstSecond is the whole second of the first stamp of a column.
+func (d *layoutDesign) firstSecond(s *step) int64 {
+	zero, found := int64(0), false
+	d.head.eachRow(func(_ line, cells []cell) {
+		if found || s.column >= len(cells) {
+			return
+		}
+		if t, ok := d.head.stamp(cells, s.column, s.parts, d.plan.dayFirst); ok {
+			zero, found = t.second, true
+		}
+	})
+	return zero
+}
