@@ -86,8 +86,11 @@ func parseAdded(c *cli.Context, n int) (values []quantity.Quantity, resistors bo
 		if err != nil {
 			return nil, false, usagef("--%s: %w", flag, err)
 		}
-		if q.Value < 0 {
-			return nil, false, unexpected(flag, strings.TrimSpace(text), "values that are not negative")
+		switch text = strings.TrimSpace(text); {
+		case q.Value < 0:
+			return nil, false, unexpected(flag, text, "values that are not negative")
+		case !resistors && q.Value >= circuit.CapacitanceMost:
+			return nil, false, unexpected(flag, text, "values in F below 1, such as 100p")
 		}
 		values = append(values, q)
 	}

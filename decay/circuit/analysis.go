@@ -112,7 +112,7 @@ func (s *scene) analyze(w *sideWork, rings bool, bind func()) *Analysis {
 		s.losses(y, r, tank, w.at)
 	})
 	if err != nil { // an uncertainty that is not known
-		a.note("Component values were not worked out: " + err.Error() + ".")
+		a.note("Component values were not worked out: an uncertainty of the result is not known.")
 		return a
 	}
 	a.take(joint, parts)
@@ -134,7 +134,7 @@ func emptyAnalysis(b *Bench) *Analysis {
 // feasible says in a note why nothing can be worked out.
 func (a *Analysis) feasible(s *scene, at *setup, rings bool) bool {
 	switch {
-	case s.known == nothing && s.load(at) == (Load{}):
+	case s.known == nothing && s.load(at) == (Load{}) && !s.bench.Limits.ofCircuit():
 		return false // nobody asked
 	case s.known == nothing:
 		a.Findings = append(a.Findings, nothingKnown)
@@ -147,7 +147,7 @@ func (a *Analysis) feasible(s *scene, at *setup, rings bool) bool {
 }
 
 var nothingKnown = decay.Finding{Code: capture.Loading, Severity: capture.Note,
-	Message: "The bench file gives none of inductance, capacitance and coil_resistance: what source and probe do cannot be worked out.",
+	Message: "The bench file gives none of inductance, capacitance and coil_resistance: neither component values nor what source and probe do can be worked out.",
 	Remedy:  "Give one of them under [circuit]."}
 
 func (a *Analysis) note(message string) {

@@ -234,3 +234,32 @@ func TestWrongBench(t *testing.T) {
 		}
 	}
 }
+
+// TestShare: no digits that nobody measured, neither of the rounding of a sum that is
+// whole by its nature nor of values that count as exact.
+func TestShare(t *testing.T) {
+	for _, c := range []struct {
+		share quantity.Quantity
+		want  string
+	}{
+		{quantity.New(1, 2.6e-14, ""), "100 %"},
+		{quantity.New(50.0/53, 0, ""), "94.34 %"},
+		{quantity.New(0.6246, 0.0064, ""), "62.46(64) %"},
+	} {
+		if got := Share(c.share); got != c.want {
+			t.Errorf("%g ± %g: got %q, want %q", c.share.Value, c.share.U, got, c.want)
+		}
+	}
+}
+
+// TestLimitsAsk: limits on what only components tell say why they are undecided.
+func TestLimitsAsk(t *testing.T) {
+	b, err := ParseBench([]byte("[limits]\nunloaded_q = { min = 30 }\n"), "b")
+	if err != nil {
+		t.Fatal(err)
+	}
+	q := &decay.Quantities{DampedFrequency: quantity.New(125e3, 1, "Hz"), DecayRate: quantity.New(1e4, 1, "1/s")}
+	if a := Analyze(b, q); len(a.Findings) != 1 || a.Findings[0].Code != capture.Loading {
+		t.Errorf("found %+v, want a note of loading", a.Findings)
+	}
+}

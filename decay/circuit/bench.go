@@ -76,6 +76,9 @@ func (e *BenchError) Unwrap() error { return e.Err }
 
 // ReadBench reads a bench file. An error of its contents is a [*BenchError].
 func ReadBench(name string) (*Bench, error) {
+	if info, err := os.Stat(name); err == nil && info.IsDir() {
+		return nil, fmt.Errorf("bench file: %s is a folder, expected a file", name)
+	}
 	text, err := os.ReadFile(name)
 	if err != nil {
 		return nil, fmt.Errorf("bench file: %w", err)

@@ -3,6 +3,7 @@ package circuit
 import (
 	"errors"
 	"math"
+	"strings"
 	"testing"
 
 	"github.com/google/go-cmp/cmp"
@@ -59,6 +60,18 @@ func TestParseBench(t *testing.T) {
 	}
 }
 
+// TestBenchOfOtherEditors: a byte-order mark and line ends CR LF change nothing.
+func TestBenchOfOtherEditors(t *testing.T) {
+	want, err := ParseBench([]byte(loop07), "b")
+	if err != nil {
+		t.Fatal(err)
+	}
+	got, err := ParseBench([]byte("\ufeff"+strings.ReplaceAll(loop07, "\n", "\r\n")), "b")
+	if diff := cmp.Diff(want, got, cmpopts.EquateNaNs()); diff != "" || err != nil {
+		t.Errorf("%v, -want +got:\n%s", err, diff)
+	}
+}
+
 // TestBenchErrors: one line each, with file, line, key, what was found and expected.
 func TestBenchErrors(t *testing.T) {
 	for _, c := range []struct{ text, want string }{
@@ -69,7 +82,7 @@ func TestBenchErrors(t *testing.T) {
 		{"[circut]\n", `b.toml: line 1: circut: unknown key; known here: circuit, device, limits, ringdown, sweep`},
 		{"inductance = \"10 mH\"\n", `b.toml: line 1: inductance: unknown key; known here: circuit, device, limits, ringdown, sweep`},
 		{"[limits]\nq = { minimum = \"30\" }\n", `b.toml: line 2: limits.q.minimum: unknown key; known here: max, min`},
-		{"[limits]\nq = \"30\"\n", `b.toml: line 2: limits.q: expected a table, found "30"`},
+		{"[limits]\nq = \"30\"\n", `b.toml: line 2: limits.q: expected { min = …, max = … }, or one of them, found "30"`},
 		{"[limits]\nq = {}\n", `b.toml: line 2: limits.q: gives neither min nor max`},
 		{"[limits]\nq = { min = \"40\", max = \"30\" }\n", `b.toml: line 2: limits.q: min 40 is above max 30: nothing can pass`},
 		{"[limits]\n[limits.natural_frequency]\nmax = \"124k\"\nmin = \"126k\"\n",
@@ -77,8 +90,8 @@ func TestBenchErrors(t *testing.T) {
 		{"[limits]\nq = { min = \"30 +- 1\" }\n", `b.toml: line 2: limits.q.min: expected a limit without an uncertainty, found "30 +- 1"`},
 		{"[limits]\nrule = \"strict\"\n", `b.toml: line 2: limits.rule: expected "guarded" or "simple", found "strict"`},
 		{"[circuit]\ntopology = \"star\"\n", `b.toml: line 2: circuit.topology: expected "series" or "parallel", found "star"`},
-		{"[circuit]\ncapacitance = \"0\"\n", `b.toml: line 2: circuit.capacitance: expected a value above zero`},
-		{"[circuit]\nresistor = -15\n", `b.toml: line 2: circuit.resistor: expected a value that is not negative`},
+		{"[circuit]\ncapacitance = \"0\"\n", `b.toml: line 2: circuit.capacitance: expected a value above zero, found "0"`},
+		{"[circuit]\nresistor = -15\n", `b.toml: line 2: circuit.resistor: expected a value that is not negative, found -15`},
 		{"[circuit]\nresistor = true\n", `b.toml: line 2: circuit.resistor: expected a value in quotes, found true`},
 		{"[circuit]\nresistor = [15]\n", `b.toml: line 2: circuit.resistor: expected a value in quotes, found a list`},
 		{"[circuit]\nresistor = nan\n", `b.toml: line 2: circuit.resistor: expected a value in ohm such as "4k7", found "nan", which does not begin with a number`},
@@ -86,14 +99,16 @@ func TestBenchErrors(t *testing.T) {
 			`b.toml: line 3: circuit.resistor: 0 ohm across a parallel circuit is a short circuit: leave out what is not connected`},
 		{"[sweep]\nsource_resistance = \"0\"\n[circuit]\ntopology = \"parallel\"\n",
 			`b.toml: line 2: sweep.source_resistance: 0 ohm across a parallel circuit is a short circuit: leave out what is not connected`},
-		{"[ringdown]\nprobe_resistance = \"0\"\n", `b.toml: line 2: ringdown.probe_resistance: expected a value above zero`},
+		{"[ringdown]\nprobe_resistance = \"0\"\n", `b.toml: line 2: ringdown.probe_resistance: expected a value above zero, found "0"`},
 		{"[ringdown]\ntimebase = \"20 us\"\n", `b.toml: line 2: ringdown.timebase: expected a relative uncertainty such as "20 ppm" or "+- 50 ppm", found "20 us"`},
-		{"[ringdown]\ntimebase = \"20\"\n", `b.toml: line 2: ringdown.timebase: "20" is no uncertainty of a clock: expected 0 to 10 %`},
+		{"[ringdown]\ntimebase = \"20\"\n", `b.toml: line 2: ringdown.timebase: expected a relative uncertainty below 10 %, such as "20 ppm", found "20"`},
 		{"[ringdown]\ntimebase = \"shared\"\n", `b.toml: line 2: ringdown.timebase: expected a relative uncertainty such as "20 ppm" or "+- 50 ppm", found "shared"`},
 		{"[sweep]\ntimebase = \"shared\"\n", `b.toml: line 2: sweep.timebase: "shared" with the ring-down, and [ringdown] gives no timebase`},
 		{"[device]\nname = 7\n", `b.toml: line 2: device.name: expected a name in quotes, found 7`},
-		{"[circuit]\ncapacitance = \"1 nF\"\ncapacitance = \"2 nF\"\n", `b.toml: line 3: key capacitance is already defined`},
-		{"[circuit]\ninductance = 1.62 mH\n", `b.toml: line 2: expected newline but got U+006D 'm'`},
+		{"[circuit]\ncapacitance = \"1 nF\"\ncapacitance = \"2 nF\"\n", `b.toml: line 3: TOML: key capacitance is already defined`},
+		{"[circuit]\ninductance = 1.62 mH\n", `b.toml: line 2: TOML: expected newline but got U+006D 'm'; a value with its unit stands in quotes, as "1.62 mH"`},
+		{"[ringdown]\nprobe_capacitance = 12\n", `b.toml: line 2: ringdown.probe_capacitance: expected a value below 1 F such as "47 nF", found 12`},
+		{"\xff\xfe[\x00", `b.toml: found UTF-16 text, expected UTF-8: save it in that encoding`},
 	} {
 		b, err := ParseBench([]byte(c.text), "b.toml")
 		if err == nil {

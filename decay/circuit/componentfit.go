@@ -41,6 +41,8 @@ func (f *componentFit) other(i int) int {
 	return 2*i + 1
 }
 
+var errNoneRingsSo = errors.New("no coil and capacitor were found that ring like all captures: check the added values, their kind and their order")
+
 // fit iterates until nothing moves.
 func (f *componentFit) fit() error {
 	for range 100 {
@@ -48,7 +50,7 @@ func (f *componentFit) fit() error {
 			return err
 		}
 	}
-	return errors.New("no coil and capacitor were found that ring like all captures: is the order of the added values that of the captures?")
+	return errNoneRingsSo
 }
 
 // allowScatter looks whether the captures agree in what the added parts should not
@@ -219,7 +221,7 @@ func (f *componentFit) linearise() (y []float64, cov *mat.SymDense, jacobian *ma
 	n := 2 * len(f.rows)
 	joint, err := f.scene.propagate(f.residualNames(), f.residuals)
 	if err != nil {
-		return nil, nil, nil, fmt.Errorf("components: %w", err)
+		return nil, nil, nil, errNoneRingsSo // with such parts nothing rings at all
 	}
 	y = make([]float64, n)
 	cov = mat.NewSymDense(n, nil)

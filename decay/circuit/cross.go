@@ -74,9 +74,9 @@ func Compare(b *Bench, ringDown *decay.Result, sweep *driven.Result) *CrossCheck
 	}
 	c.bind(b)
 	c.plan()
-	if err := c.compute(); err != nil {
+	if c.compute() != nil {
 		c.Findings = append(c.Findings, decay.Finding{Code: capture.Loading, Severity: capture.Warning,
-			Message: "The two cannot be compared: " + err.Error() + ".", Remedy: "Look at the findings of ring-down and sweep."})
+			Message: "The two cannot be compared: an uncertainty of one of them is not known.", Remedy: "Look at the findings of ring-down and sweep."})
 		return c.CrossCheck
 	}
 	c.judge()

@@ -54,8 +54,8 @@ func TestCompareSimulated(t *testing.T) {
 	inside(t, "ring-down predicted", c.Sweep.Predicted.NaturalFrequency, ring.pole().NaturalFrequency, 1e-4)
 	text := strings.Join(c.Explanations, "\n")
 	for _, want := range []string{
-		"The source resistance of 50 Ω takes 62.", "The probe shifts f0 by -0.", "of the loss in the ring-down",
-		"The voltage across the capacitor is greatest", "below f0", "With source and probe taken out", "they agree"} {
+		"The source resistance of 50 Ω takes 62.", "The probe shifts f_0 by -0.", "of the loss in the ring-down",
+		"The voltage across the capacitor is greatest", "below f_0", "With source and probe taken out", "they agree"} {
 		if !strings.Contains(text, want) {
 			t.Errorf("no explanation with %q in:\n%s", want, text)
 		}
@@ -69,7 +69,7 @@ func TestProbeShift(t *testing.T) {
 	r, _ := physicalResult(&p)
 	c := Compare(p.bench(p), r, swept(&p, 1e-4))
 	text := strings.Join(c.Explanations, "\n")
-	if want := "The probe shifts f0 by -599 ppm and Q by -1.05 % in the ring-down."; !strings.Contains(text, want) {
+	if want := "The probe shifts f_0 by -599 ppm and Q by -1.05 % in the ring-down."; !strings.Contains(text, want) {
 		t.Errorf("no %q in:\n%s", want, text)
 	}
 }
@@ -217,7 +217,7 @@ func TestExplanations(t *testing.T) {
 	for _, want := range []string{
 		"The loss depends on the amplitude, and the two ran at different amplitudes: the ring-down has a Q of 15.00(20) in its first cycle and 22.",
 		"The sweep was too fast, which widens the curve and lowers its Q: The rate is 0.3 bandwidths squared.\n",
-		"The voltage across the coil is greatest 511 ppm above f0"} {
+		"The voltage across the coil is greatest 511 ppm above f_0"} {
 		if !strings.Contains(text, want) {
 			t.Errorf("no %q in:\n%s", want, text)
 		}

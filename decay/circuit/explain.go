@@ -38,7 +38,7 @@ func (c *comparer) say(s string) {
 func (c *comparer) explainMeasured() string {
 	q, _ := c.comparison(AsMeasured, "q")
 	f, _ := c.comparison(AsMeasured, "natural_frequency_hz")
-	s := fmt.Sprintf("as measured, Q is %s by the ring-down and %s by the sweep (E_n %s), f0 %s and %s (E_n %s)",
+	s := fmt.Sprintf("as measured, Q is %s by the ring-down and %s by the sweep (E_n %s), f_0 %s and %s (E_n %s)",
 		q.RingDown, q.Sweep, figure(q.En), f.RingDown, f.Sweep, figure(f.En))
 	if c.Decisive == AsMeasured {
 		return s + ": they " + agreement(c.Agrees) + c.sameLoad()
@@ -69,14 +69,17 @@ func (c *comparer) explainSource(w *sideWork) string {
 	for _, l := range w.Budget {
 		if l.Part == partSource {
 			return fmt.Sprintf("the source resistance of %s takes %s of the loss in the %s",
-				quantity.Format(w.at.source, "ohm", 4), share(l.Share), w.name)
+				quantity.Format(w.at.source, "ohm", 4), Share(l.Share), w.name)
 		}
 	}
 	return ""
 }
 
-// share is a share of the loss in percent.
-func share(q quantity.Quantity) string {
+// Share is a share of the loss in percent, for people.
+func Share(q quantity.Quantity) string {
+	if q.U == 0 {
+		return quantity.Format(100*q.Value, "%", 4) // digits that nobody measured
+	}
 	return quantity.New(100*q.Value, 100*q.U, "%").String()
 }
 
@@ -88,7 +91,7 @@ func (c *comparer) explainProbe(w *sideWork) string {
 	}
 	r := w.m.resonance()
 	without := c.scene.tank(r, w.at).Loaded(source.Plus(resistor))
-	return fmt.Sprintf("the probe shifts f0 by %s and Q by %s in the %s",
+	return fmt.Sprintf("the probe shifts f_0 by %s and Q by %s in the %s",
 		signed(r.NaturalFrequency/without.NaturalFrequency-1), signed(r.Q()/without.Q()-1), w.name)
 }
 
@@ -112,8 +115,8 @@ func (c *comparer) explainPeak() string {
 	if shift > 0 {
 		side = "above"
 	}
-	return fmt.Sprintf("the voltage across the %s is greatest %s %s f0, at %s: the peak of the curve is not the natural frequency",
-		part, strings.TrimLeft(signed(math.Abs(shift)), "+"), side, quantity.Format(q.PeakFrequency.Value, "Hz", 6))
+	return fmt.Sprintf("the voltage across the %s is greatest %s %s f_0, at %s: the peak of the curve is not the natural frequency",
+		part, strings.TrimLeft(signed(math.Abs(shift)), "+"), side, q.PeakFrequency)
 }
 
 func (c *comparer) explainAmplitude() string {
@@ -152,7 +155,7 @@ func (c *comparer) explainUnloaded() string {
 		s = "less than no loss remains on one side"
 	}
 	f, _ := c.comparison(Unloaded, "natural_frequency_hz")
-	return fmt.Sprintf("with source and probe taken out, %s, f0 %s and %s (E_n %s): they %s",
+	return fmt.Sprintf("with source and probe taken out, %s, f_0 %s and %s (E_n %s): they %s",
 		s, f.RingDown, f.Sweep, figure(f.En), agreement(c.Agrees))
 }
 

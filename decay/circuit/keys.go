@@ -10,6 +10,10 @@ import (
 	"dieaway/decay/quantity"
 )
 
+// CapacitanceMost is the capacitance in F from which on a value is refused: nothing
+// that rings has so much, and 12 for 12 pF is a slip of the pen.
+const CapacitanceMost = 1
+
 // A setter takes the value of one key.
 type setter func(e entry) error
 
@@ -66,27 +70,30 @@ func name(to *string) setter {
 }
 
 // value reads a quantity in unit that keeps within the range.
-func value(to *quantity.Quantity, unit string, within func(x float64) error) setter {
+func value(to *quantity.Quantity, unit string, within func(x float64, e entry) error) setter {
 	return func(e entry) error {
 		q, err := e.quantity(unit)
 		if err == nil {
-			err = within(q.Value)
+			err = within(q.Value, e)
+		}
+		if err == nil && unit == "F" && q.Value >= CapacitanceMost {
+			err = fmt.Errorf("expected a value below %g F such as \"47 nF\", found %s", float64(CapacitanceMost), e.shown())
 		}
 		*to = q
 		return err
 	}
 }
 
-func aboveZero(x float64) error {
+func aboveZero(x float64, e entry) error {
 	if !(x > 0) {
-		return errors.New("expected a value above zero")
+		return fmt.Errorf("expected a value above zero, found %s", e.shown())
 	}
 	return nil
 }
 
-func notNegative(x float64) error {
+func notNegative(x float64, e entry) error {
 	if !(x >= 0) {
-		return errors.New("expected a value that is not negative")
+		return fmt.Errorf("expected a value that is not negative, found %s", e.shown())
 	}
 	return nil
 }
@@ -121,7 +128,7 @@ func timebase(to *Setup) setter {
 		case !math.IsNaN(q.U):
 			return fmt.Errorf(`expected one figure such as "20 ppm" or "+- 50 ppm", found %s`, e.shown())
 		case !(q.Value >= 0 && q.Value < 0.1):
-			return fmt.Errorf("%s is no uncertainty of a clock: expected 0 to 10 %%", e.shown())
+			return fmt.Errorf("expected a relative uncertainty below 10 %%, such as \"20 ppm\", found %s", e.shown())
 		}
 		to.TimebaseU = q.Value / divisor
 		return nil

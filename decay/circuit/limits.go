@@ -3,6 +3,8 @@ package circuit
 import (
 	"fmt"
 	"math"
+	"slices"
+	"strings"
 
 	"dieaway/decay"
 	"dieaway/decay/driven"
@@ -142,8 +144,7 @@ func ringOf(q *driven.Quantities) *decay.Quantities {
 func (l *Limits) JudgeComponents(c *Components) *Judgement {
 	own := &Limits{Rule: l.Rule}
 	for _, r := range l.Ranges {
-		switch r.Quantity {
-		case "inductance", "capacitance", "coil_resistance":
+		if r.ofComponent() {
 			own.Ranges = append(own.Ranges, r)
 		}
 	}
@@ -180,6 +181,17 @@ func (r Range) verdict(q quantity.Quantity, rule Rule) Verdict {
 	return Undecided
 }
 
+// ofCircuit reports whether there is a limit on what only the circuit's components tell.
+func (l *Limits) ofCircuit() bool {
+	return slices.ContainsFunc(l.Ranges, func(r Range) bool {
+		return r.ofComponent() || strings.HasPrefix(r.Quantity, "unloaded_")
+	})
+}
+
+func (r Range) ofComponent() bool {
+	return r.Quantity == "inductance" || r.Quantity == "capacitance" || r.Quantity == "coil_resistance"
+}
+
 // rule takes the name of a rule.
 func (l *Limits) rule(e entry) error {
 	l.Rule = Rule(e.text)
@@ -193,7 +205,10 @@ func (l *Limits) rule(e entry) error {
 func (l *Limits) begin(k limitKey) setter {
 	return func(e entry) error {
 		l.rangeOf(k)
-		return table(e)
+		if e.kind != kindTable {
+			return fmt.Errorf("expected { min = …, max = … }, or one of them, found %s", e.shown())
+		}
+		return nil
 	}
 }
 

@@ -1,6 +1,7 @@
 package circuit
 
 import (
+	"bytes"
 	"errors"
 	"strconv"
 	"strings"
@@ -42,6 +43,10 @@ func (e entry) shown() string {
 // readEntries returns the keys of a TOML text in their order, tables included.
 // The library's decoder checks the text; its syntax tree knows the lines.
 func readEntries(text []byte) ([]entry, *BenchError) {
+	text = bytes.TrimPrefix(text, []byte("\ufeff")) // of editors that mark UTF-8
+	if bytes.HasPrefix(text, []byte("\xff\xfe")) || bytes.HasPrefix(text, []byte("\xfe\xff")) {
+		return nil, &BenchError{Err: errors.New("found UTF-16 text, expected UTF-8: save it in that encoding")}
+	}
 	var whole map[string]any
 	if err := toml.Unmarshal(text, &whole); err != nil {
 		return nil, syntaxError(err)
@@ -70,7 +75,11 @@ func readEntries(text []byte) ([]entry, *BenchError) {
 }
 
 func syntaxError(err error) *BenchError {
-	out := &BenchError{Err: errors.New(strings.TrimPrefix(err.Error(), "toml: "))}
+	text := "TOML: " + strings.TrimPrefix(err.Error(), "toml: ")
+	if strings.Contains(text, "strings must be quoted") || strings.Contains(text, "expected newline but got") {
+		text += `; a value with its unit stands in quotes, as "1.62 mH"`
+	}
+	out := &BenchError{Err: errors.New(text)}
 	var decode *toml.DecodeError
 	if errors.As(err, &decode) {
 		out.Line, _ = decode.Position()
