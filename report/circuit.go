@@ -112,7 +112,7 @@ func lossRows(budget []circuit.Loss, total circuit.Loss) []lossRow {
 	var out []lossRow
 	for _, l := range append(budget[:len(budget):len(budget)], total) {
 		row := lossRow{Part: l.Part, Resistance: l.Resistance.String(), Q: l.Q.String(),
-			Share: quantity.New(100*l.Share.Value, 100*l.Share.U, "%").String()}
+			Share: circuit.Share(l.Share)}
 		row.Percent = math.Round(1000*math.Max(0, math.Min(1, l.Share.Value))) / 10
 		if l.Part == total.Part {
 			row.Share = "100 %"

@@ -36,7 +36,12 @@ func (s *summary) paint(text, color string) string {
 }
 
 // label pads the name of a line of the summary.
-func label(name string) string { return "  " + pad(name, labelWidth-2) }
+func label(name string) string {
+	if len(name) > labelWidth-3 {
+		name += " "
+	}
+	return "  " + pad(name, labelWidth-2)
+}
 
 func isLabel(head string) bool { return visible(head) == labelWidth && strings.HasPrefix(head, "  ") }
 

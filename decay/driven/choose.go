@@ -108,7 +108,7 @@ func unsure(d *rows, all []*fitted) (f *fitted, why string, guessed bool) {
 		others += partName(o.across)
 		most = math.Max(most, math.Abs(o.f0/f.f0-1))
 	}
-	return f, fmt.Sprintf("%s: %s would do as well, and move f0 by up to %s", how, others, quantity.Percent(most)), true
+	return f, fmt.Sprintf("%s: %s would do as well, and move f_0 by up to %s", how, others, quantity.Percent(most)), true
 }
 
 // partName names a part in a sentence.

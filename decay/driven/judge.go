@@ -50,13 +50,13 @@ func (f *fitted) noResonance(d *rows, q *Quantities) (decay.Finding, bool) {
 	case gain < need && side == "":
 		return finding(capture.WeakSignal, capture.Fault,
 			"No resonance stands out: a response without one follows the rows as well.",
-			"Check the column of the response, and that the resonance lies inside of the sweep; raise the drive."), true
+			"Check the column of the response, and that the resonance lies inside the sweep; raise the drive."), true
 	case gain < need || f.f0 < lo || f.f0 > hi:
 		if side == "" {
 			side = "has no resonance"
 		}
 		return finding(capture.NarrowSweep, capture.Fault,
-			fmt.Sprintf("The response %s from %s to %s: the resonance is not inside of the sweep.", side, quantity.Format(lo, "Hz", 5), quantity.Format(hi, "Hz", 5)),
+			fmt.Sprintf("The response %s from %s to %s: the resonance is not inside the sweep.", side, quantity.Format(lo, "Hz", 5), quantity.Format(hi, "Hz", 5)),
 			"Sweep to both sides of the resonance."), true
 	case q == nil || !(q.Q.Relative() < refuseQ):
 		return finding(capture.WeakSignal, capture.Fault,
@@ -270,7 +270,7 @@ func disagreement(r *Result) (all []decay.Finding) {
 	f0, ratio := r.Quantities.NaturalFrequency, r.Readings.ReactanceRatio
 	if apart := math.Abs(ratio.Value - f0.Value); ratio.Known() && apart > 0.01*f0.Value && apart > 4*math.Hypot(ratio.U, f0.U) {
 		all = append(all, finding(capture.ReadingsDisagree, capture.Warning,
-			fmt.Sprintf("V_L and V_C are equal at %s, and the fit has f0 = %s.", ratio, f0),
+			fmt.Sprintf("V_L and V_C are equal at %s, and the fit has f_0 = %s.", ratio, f0),
 			"Check the columns of V_L and V_C: the resistance of the coil is in V_L, and a probe may load one of them."))
 	}
 	return all

@@ -38,7 +38,7 @@ func TestGuess(t *testing.T) {
 			s.noise = 3
 		}
 		r := Analyze(s.span(41, 3).sweep(newRand(8)), Options{})
-		if r.Across != w.want || !strings.Contains(r.Why, w.why) || !strings.Contains(r.Why, "move f0 by up to") {
+		if r.Across != w.want || !strings.Contains(r.Why, w.why) || !strings.Contains(r.Why, "move f_0 by up to") {
 			t.Errorf("across the %s: %q, %s", w.part, r.Across, r.Why)
 		}
 	}

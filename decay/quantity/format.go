@@ -123,9 +123,9 @@ func (q Quantity) plain() string {
 }
 
 // hasDigits reports whether u is one that decides the digits of the value: known,
-// not zero, and not below what a float64 resolves.
+// not zero, and not below what is left of a float64 behind a propagation.
 func (q Quantity) hasDigits() bool {
-	return q.knownU() && q.U > 0 && q.U >= 1e-15*math.Abs(q.Value) && q.U > 1e-300
+	return q.knownU() && q.U > 0 && q.U >= 1e-12*math.Abs(q.Value) && q.U > 1e-300
 }
 
 // A layout says how a value and its uncertainty are laid out together.

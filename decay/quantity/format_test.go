@@ -48,6 +48,7 @@ func TestString(t *testing.T) {
 		{New(0.5, math.Inf(1), "V"), "500 mV"},
 		{New(0.5, -1, "V"), "500 mV"},
 		{New(1e9, 1e-12, "Hz"), "1 GHz"},
+		{New(100, 6.1e-12, "%"), "100 %"}, // what a propagation leaves of nothing
 		{New(0, 0, "V"), "0 V"},
 		{New(nan, 1, "V"), "unknown"},
 		{New(math.Inf(-1), 1, "V"), "unknown"},
