@@ -63,8 +63,10 @@ func (g *gate) misfits(s series) bool {
 	if energyGain(&f, v) < energyNeeded(f.n) {
 		return true
 	}
-	bend, _ := bendGain(&f)
-	return lineGain(r) > suspicion || bend/density > suspicion || fallGain(&f)/sq(v.rms*v.factor(0)) > suspicion
+	// A bent ring leaves waves that look like coloured noise: its gain counts in units
+	// of what it leaves itself. In noise that is coloured the evidence decides.
+	bend := f.beside(f.bent())
+	return lineGain(r) > suspicion || bend.gain > suspicion*math.Min(density, bend.left/float64(f.n)) || fallGain(&f)/sq(v.rms*v.factor(0)) > suspicion
 }
 
 // lineGain is what the strongest line of the residual explains beyond chance, in
@@ -88,20 +90,24 @@ var fallRates = []float64{0.7, 3, 10, 40}
 func fallGain(f *ringFit) float64 {
 	most := 0.0
 	for _, u := range fallRates {
-		gain, _ := f.beside(pole{a: u / f.problem.length})
-		most = math.Max(most, gain)
+		most = math.Max(most, f.beside(pole{a: u / f.problem.length}).gain)
 	}
 	return most
 }
 
-// bendGain is what the quadratic law explains to first order. With E = exp(-an) the
-// amplitude follows E + (B/a)(E^2 - E), so that beside the ring and its derivatives
-// by a and w the curve needs a ring of the same frequency that decays twice as fast.
-func bendGain(f *ringFit) (gain float64, by [2]float64) { return f.beside(pole{2 * f.a, f.w}) }
+// bent is the exponential that the quadratic law adds to first order. With
+// E = exp(-an) the amplitude follows E + (B/a)(E^2 - E), so that beside the ring and
+// its derivatives by a and w the curve needs a ring of the same frequency that decays
+// twice as fast.
+func (f *ringFit) bent() pole { return pole{2 * f.a, f.w} }
 
-// beside is what another exponential explains to first order, and by how much rate
-// and angular frequency of the ring then differ.
-func (f *ringFit) beside(other pole) (gain float64, by [2]float64) {
+// An addition is what another exponential does beside the ring, to first order.
+type addition struct {
+	gain, left float64    // what it explains of the residual sum of squares, and what is left
+	by         [2]float64 // by how much rate and angular frequency of the ring then differ
+}
+
+func (f *ringFit) beside(other pole) (out addition) {
 	theta, more := []float64{f.a, f.w, other.a}, []int{5}
 	p := f.problem.alike(1, 1)
 	if other.w > 0 {
@@ -113,12 +119,11 @@ func (f *ringFit) beside(other pole) (gain float64, by [2]float64) {
 	alone, ok := g.project(ring, p.yy)
 	both, okBoth := g.project(append(ring, more...), p.yy)
 	if !ok || !okBoth {
-		return 0, by
+		return addition{left: f.rss}
 	}
 	// The derivatives are -p nC - q nS by a and q nC - p nS by w.
 	nc, ns, size := both.beta[3], both.beta[4], f.p*f.p+f.q*f.q
-	by = [2]float64{-(nc*f.p + ns*f.q) / size, (nc*f.q - ns*f.p) / size}
-	return alone.rss - both.rss, by
+	return addition{alone.rss - both.rss, both.rss, [2]float64{-(nc*f.p + ns*f.q) / size, (nc*f.q - ns*f.p) / size}}
 }
 
 // candidates fits the models that come into question.

@@ -31,13 +31,13 @@ func (f *ringFit) findRival() *rival {
 		return f.otherLaw()
 	}
 	v := f.noise()
-	gain, by := bendGain(f)
-	best := rival{by: by[:], gain: gain / sq(v.rms*v.factor(f.w))}
+	bend := f.beside(f.bent())
+	best := rival{by: bend.by[:], gain: bend.gain / sq(v.rms*v.factor(f.w))}
 	if f.s.len() < parallelFrom { // in a long window an exponential as weak pulls nothing
 		for _, u := range fallRates {
-			gain, by := f.beside(pole{a: u / f.problem.length})
-			if gain /= sq(v.rms * v.factor(0)); gain > best.gain {
-				best = rival{by[:], gain, true}
+			fall := f.beside(pole{a: u / f.problem.length})
+			if gain := fall.gain / sq(v.rms*v.factor(0)); gain > best.gain {
+				best = rival{fall.by[:], gain, true}
 			}
 		}
 	}

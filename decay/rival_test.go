@@ -69,3 +69,25 @@ func TestRivalsAreCovered(t *testing.T) {
 		}
 	}
 }
+
+// What one ring leaves of a bent one is not put down to coloured noise, though it
+// looks like that where a cycle has few samples.
+func TestBentIsNoColouredNoise(t *testing.T) {
+	const cycle, q, level = 13.0, 20.0, 300
+	w := 2 * math.Pi / cycle
+	a := w / (2 * q)
+	ring := lossy(int(4/a), a, w, 0.2*a, -0.01*w, func(u float64) float64 { return u * u }, func(u float64) float64 { return u })
+	for _, before := range []int{0, level} {
+		y := append(make([]float64, before), ring...)
+		for i := range before {
+			y[i] = ring[0]
+		}
+		for _, snr := range []float64{100, 300} {
+			for seed := range uint64(10) {
+				if r := Analyze(channel(withNoise(y, 1/snr, seed), 0, 1), Options{}); r.Model != Amplitude {
+					t.Errorf("amplitude over noise %g, %d samples before, seed %d: %s, %v", snr, before, seed, r.Model, r.Findings)
+				}
+			}
+		}
+	}
+}
