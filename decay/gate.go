@@ -18,6 +18,8 @@ type gate struct {
 	rank int
 	// coarse tells that nothing blurs the steps of the converter.
 	coarse bool
+	// cutCoarse tells that the tail was cut for that.
+	cutCoarse bool
 }
 
 const (

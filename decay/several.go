@@ -72,8 +72,12 @@ func joined(s series, list []gate) []gate {
 	return out
 }
 
-// upTo is the gate carried on to the end of other; false when the fit then leaves more.
+// upTo is the gate carried on to the end of other; false when the fit then leaves more,
+// or when it was cut because its tail is coarse.
 func (g *gate) upTo(other *gate, s series) (gate, bool) {
+	if g.cutCoarse {
+		return *g, false
+	}
 	whole := *g
 	whole.last, whole.cutAfter = other.last, other.cutAfter
 	ok := whole.finish(s)

@@ -116,7 +116,7 @@ func (g *gate) cutCoarseTail(s series) {
 		return
 	}
 	if n := math.Log(g.fit.size()/(levelsTail*s.step)) / g.fit.a; n > 2*samplesLeast && n < float64(g.last-g.first) {
-		g.last = g.first + int(n)
+		g.last, g.cutCoarse = g.first+int(n), true
 		g.refit(s, coarse)
 	}
 }
