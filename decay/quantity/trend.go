@@ -45,6 +45,10 @@ type lineMoments struct {
 func (m *lineMoments) add(x, y, w float64) {
 	m.N++
 	m.W += w
+	if m.N == 1 { // exactly: the way from zero to a date is long
+		m.X, m.Y = x, y
+		return
+	}
 	dx, dy := x-m.X, y-m.Y
 	m.X += dx * w / m.W
 	m.Y += dy * w / m.W

@@ -102,3 +102,19 @@ func TestTrendErrorRate(t *testing.T) {
 		}
 	}
 }
+
+// TestTrendOfSeconds: measurements seconds apart, in milliseconds since 1970 and with
+// weights of 1e14, have the trend that they have when time begins with the first
+// (the straight line does not care where time begins).
+func TestTrendOfSeconds(t *testing.T) {
+	const begin = 1796126304958
+	var late, early []float64
+	var q []Quantity
+	for i, tau := range []float64{40.31e-6, 40.53e-6, 40.56e-6, 40.39e-6, 40.26e-6} {
+		early, late = append(early, 1137*float64(i)), append(late, begin+1137*float64(i))
+		q = append(q, New(tau, 0.1e-6+1e-9*float64(i), "s"))
+	}
+	got, want := trendOf(late, q), trendOf(early, q)
+	near(t, "change", got.Change.Value, want.Change.Value, 1e-6)
+	near(t, "u of the change", got.Change.U, want.Change.U, 1e-6)
+}
