@@ -13,7 +13,7 @@ type benched struct {
 func benchedOf(a *circuit.Analysis, j *circuit.Judgement) benched {
 	b := benched{Judgement: j}
 	if a != nil {
-		b.Circuit, b.Losses = componentRows(a), lossRows(a.Budget, a.Total)
+		b.Circuit, b.Losses = onPage(componentRows(a)), lossRows(a.Budget, a.Total)
 	}
 	return b
 }

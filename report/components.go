@@ -201,7 +201,7 @@ func (c *Components) verdict() string {
 	if c.Result == nil {
 		return clean(c.Refusal.Error(), 0)
 	}
-	return verdictOf(c.Findings())
+	return verdictOf(c.Findings()) + limitsToo(c.Limits)
 }
 
 // componentRows writes a line for each capture.
@@ -211,7 +211,7 @@ func (s *summary) componentRows(c *Components) {
 		off := row.Residual
 		fmt.Fprintf(s, "  %s %s %s %s %s\n", pad(row.Added.String(), 14), pad(row.NaturalFrequency.String(), 21),
 			pad(row.DecayRate.String(), 19), pad(quantity.Percent(off.Value), 10), inU(off))
-		s.item("    ", clean(c.RingDowns[i].file(), nameLength))
+		s.item("    ", fileName(c.RingDowns[i].file(), nameLength))
 	}
 	s.item(label("residuals"), chiSquareLine(c.Result))
 }

@@ -65,7 +65,7 @@ func (c *Components) page() (*componentsPage, error) {
 	p.Title = p.Heading + " – components, " + p.Status
 	for i, r := range c.RingDowns {
 		p.Layouts = append(p.Layouts, captureLayout{fmt.Sprintf("How capture %d was read", i+1), append(stated([]fact{
-			{"file", clean(r.file(), longName)}, {"channel", clean(r.Channel.Name, longName)}, {"record", r.recordLine()}}), r.layout()...)})
+			{"file", fileName(r.file(), longName)}, {"channel", clean(r.Channel.Name, longName)}, {"record", r.recordLine()}}), r.layout()...)})
 	}
 	if c.Result == nil {
 		p.Why = upperFirst(p.Verdict)
@@ -109,7 +109,7 @@ func (c *Components) facts() []fact {
 
 func (c *Components) pageRows() (rows []componentPageRow) {
 	for i, r := range c.RingDowns {
-		row := componentPageRow{Name: clean(r.file(), longName), Added: c.Added[i].String(), Picture: pictureOf(r.Channel.Samples)}
+		row := componentPageRow{Name: fileName(r.file(), longName), Added: c.Added[i].String(), Picture: pictureOf(r.Channel.Samples)}
 		if !r.refused() {
 			row.NaturalFrequency, row.DecayRate = r.Result.Quantities.NaturalFrequency.String(), r.Result.Quantities.DecayRate.String()
 		}

@@ -215,5 +215,5 @@ func (c *CrossCheck) verdict() string {
 	if c.Status() == decay.Doubtful {
 		s += "; " + verdictOf(c.Findings())
 	}
-	return s
+	return s + limitsToo(c.RingDown.Limits)
 }

@@ -17,6 +17,7 @@ type crossPage struct {
 	Explanations               []string
 	Budgets                    []budgetTable
 	Findings                   []capture.Finding
+	benched                    // the limits, which the ring-down is held against
 	Origin                     []fact
 	CaptureLayout, SweepLayout []fact
 }
@@ -49,11 +50,14 @@ func (c *CrossCheck) page() (*crossPage, error) {
 	p := &crossPage{
 		frame: frame{Kind: "Ring-down and driven sweep of a resonant circuit", Heading: c.heading(),
 			What: upperFirst(c.RingDown.source()) + "; " + c.Sweep.source() + ".", Status: status, Verdict: c.verdict(), Figures: figures},
-		Refused: !c.Check.Compared(), Findings: cleaned(c.Findings()), Explanations: c.Check.Explanations,
-		Tables: agreementTables(c.Check), Facts: predictionFacts(c.Check), Origin: c.origin(),
-		CaptureLayout: c.RingDown.layout(), SweepLayout: layoutFacts(&c.Sweep.Table.Layout),
+		Refused: !c.Check.Compared(), Findings: cleaned(c.Findings()),
+		Tables: agreementTables(c.Check), Facts: onPage(predictionFacts(c.Check)), Origin: c.origin(),
+		benched: benchedOf(nil, c.RingDown.Limits), CaptureLayout: c.RingDown.layout(), SweepLayout: layoutFacts(&c.Sweep.Table.Layout),
 	}
 	p.Title = p.Heading + " – ring-down and sweep, " + status
+	for _, e := range c.Check.Explanations {
+		p.Explanations = append(p.Explanations, subscripts.Replace(e))
+	}
 	for _, b := range []budgetTable{
 		{"ring-loss", "Where the loss sits in the ring-down", lossRows(c.Check.RingDown.Budget, c.Check.RingDown.Total)},
 		{"sweep-loss", "Where the loss sits in the sweep", lossRows(c.Check.Sweep.Budget, c.Check.Sweep.Total)},
@@ -92,12 +96,12 @@ func (c *CrossCheck) heading() string {
 	if c.Device != "" {
 		return clean(c.Device, nameLength)
 	}
-	return clean(c.RingDown.file(), nameLength) + " and " + clean(c.Sweep.file(), nameLength)
+	return fileName(c.RingDown.file(), nameLength) + " and " + fileName(c.Sweep.file(), nameLength)
 }
 
 func (c *CrossCheck) origin() []fact {
-	return c.Origin.facts(fact{"capture", clean(c.RingDown.file(), longName)}, fact{"SHA-256 of the capture", c.RingDown.sha256()},
-		fact{"sweep", clean(c.Sweep.file(), longName)}, fact{"SHA-256 of the sweep", c.Sweep.sha256()},
+	return c.Origin.facts(fact{"capture", fileName(c.RingDown.file(), longName)}, fact{"SHA-256 of the capture", c.RingDown.sha256()},
+		fact{"sweep", fileName(c.Sweep.file(), longName)}, fact{"SHA-256 of the sweep", c.Sweep.sha256()},
 		fact{"device", clean(c.Device, longName)})
 }
 

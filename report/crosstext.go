@@ -8,7 +8,8 @@ import (
 )
 
 // WriteSummary writes the cross-check for people: verdict, both measurements side
-// by side in each condition, where the loss sits, the explanations and the findings.
+// by side in each condition, where the loss sits, how the ring-down keeps its limits,
+// the explanations and the findings.
 func (c *CrossCheck) WriteSummary(w io.Writer, style Style) error {
 	if err := c.check(); err != nil {
 		return err
@@ -25,6 +26,7 @@ func (c *CrossCheck) WriteSummary(w io.Writer, style Style) error {
 	s.predictions(c.Check)
 	s.budgetOf("ring-down", c.Check.RingDown)
 	s.budgetOf("sweep", c.Check.Sweep)
+	s.limits(c.RingDown.Limits)
 	if len(c.Check.Explanations) > 0 {
 		s.WriteString("\n")
 	}

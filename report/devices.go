@@ -213,7 +213,7 @@ func (d *Devices) WritePage(w io.Writer) error {
 	p.What = fmt.Sprintf("%s of %s.", plural(d.sums.Entries, "measurement"), plural(d.sums.Devices, "device"))
 	p.Status, p.Verdict = "good", "the latest result of every device"
 	if n := d.sums.Wanting; n > 0 {
-		p.Status, p.Verdict = "doubtful", fmt.Sprintf("%s whose latest result is not good or outside the limits", plural(n, "device"))
+		p.Status, p.Verdict = "doubtful", fmt.Sprintf("%s whose latest result is not good, or is outside the limits", plural(n, "device"))
 	}
 	return p.write(w, "devices.html", p)
 }

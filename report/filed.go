@@ -52,7 +52,7 @@ type filedRow struct {
 // row is the measurement for the page; texts from outside are made safe to show.
 func (f *Filed) row() *filedRow {
 	r := &filedRow{Name: f.Name, Made: f.Made.UnixMilli(), Kind: clean(f.Kind, nameLength), Status: clean(f.Status, nameLength),
-		Verdict: clean(f.Verdict, nameLength), File: clean(f.File, nameLength)}
+		Verdict: clean(f.Verdict, nameLength), File: fileName(f.File, nameLength)}
 	r.F, r.FU, r.FT = numbersOf(f.NaturalFrequency)
 	r.Q, r.QU, r.QT = numbersOf(f.Q)
 	r.T, r.TU, r.TT = numbersOf(f.TimeConstant)

@@ -172,6 +172,20 @@ type firstFiled struct {
 	When string
 }
 
+// KindName is the kind of measurement for people.
+func (f firstFiled) KindName() string { return KindName(f.Kind) }
+
+// KindName names a kind of measurement, as [Filed] has it, for people.
+func KindName(kind string) string {
+	switch kind {
+	case "ringdown":
+		return "ring-down"
+	case "crosscheck":
+		return "cross-check"
+	}
+	return kind
+}
+
 // WritePage writes the device's history as one HTML page that needs no network:
 // mean and change, charts over time, and a table of all entries that is sorted and
 // filtered in the page. It is meant to stand beside the folders of the entries.
@@ -191,7 +205,7 @@ func (h *History) WritePage(w io.Writer) error {
 		RowSet:  h.rows,
 	}
 	if v := first[0].Verdict; v != "" {
-		p.Verdict += ", limits: " + v
+		p.Verdict += "; limits: " + v
 	}
 	p.Title = p.Heading + " – history"
 	if len(p.Trends) > 0 {
@@ -213,7 +227,7 @@ func whenOf(ms int64) string { return time.UnixMilli(ms).UTC().Format(time.DateT
 // what says which time the history covers.
 func (h *History) what() string {
 	first, last := time.UnixMilli(h.sums.First).UTC(), time.UnixMilli(h.sums.Last).UTC()
-	if h.sums.N == 1 {
+	if first.Format(time.DateOnly) == last.Format(time.DateOnly) {
 		return "Measured on " + first.Format(time.DateOnly) + "."
 	}
 	return fmt.Sprintf("Measured from %s to %s.", first.Format(time.DateOnly), last.Format(time.DateOnly))

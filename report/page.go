@@ -173,7 +173,7 @@ func (r *RingDown) heading() string {
 	if r.Device != "" {
 		return clean(r.Device, nameLength)
 	}
-	return clean(r.file(), nameLength)
+	return fileName(r.file(), nameLength)
 }
 
 // what says in one line what was measured.
@@ -201,7 +201,7 @@ const longName = 400
 
 // origin says how the result was made.
 func (r *RingDown) origin() []fact {
-	return r.Origin.facts(fact{"file", clean(r.file(), longName)}, fact{"SHA-256", r.sha256()},
+	return r.Origin.facts(fact{"file", fileName(r.file(), longName)}, fact{"SHA-256", r.sha256()},
 		fact{"device", clean(r.Device, longName)}, fact{"channel", clean(r.Channel.Name, longName)})
 }
 
@@ -233,7 +233,7 @@ func layoutFacts(l *capture.Layout, first ...fact) []fact {
 	}
 	return stated(append(first, fact{"encoding", clean(encoding, nameLength)},
 		fact{"names", line(l.HeaderLine)}, fact{"units", line(l.UnitsLine)}, fact{"first sample", line(l.FirstLine)},
-		fact{"delimiter", clean(l.Delimiter, nameLength)}, fact{"decimal mark", clean(l.DecimalMark, nameLength)}))
+		fact{"separator", clean(l.Delimiter, nameLength)}, fact{"decimal mark", clean(l.DecimalMark, nameLength)}))
 }
 
 // cleaned returns findings whose texts, which may quote the file, are safe to show.

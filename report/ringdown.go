@@ -89,7 +89,7 @@ func (r *RingDown) source() string {
 	if !strings.HasPrefix(strings.ToLower(name), "channel") {
 		name = "channel " + name
 	}
-	return name + " of " + clean(r.file(), nameLength)
+	return name + " of " + fileName(r.file(), nameLength)
 }
 
 // unit is the channel's unit, safe to show.

@@ -7,6 +7,7 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
+	"dieaway/decay/circuit"
 	"dieaway/decay/quantity"
 )
 
@@ -187,7 +188,15 @@ func (r *RingDown) verdict() string {
 	if r.refused() {
 		return "no decay that can be measured: the numbers are withheld"
 	}
-	return verdictOf(r.Findings())
+	return verdictOf(r.Findings()) + limitsToo(r.Limits)
+}
+
+// limitsToo is what a verdict says of the limits, "" without any.
+func limitsToo(j *circuit.Judgement) string {
+	if j == nil {
+		return ""
+	}
+	return "; limits: " + string(j.Verdict)
 }
 
 // verdictOf says in one line what findings do to numbers that are given.

@@ -144,7 +144,7 @@ func (r *SetRow) WriteSummary(w io.Writer, style Style) error {
 		}
 		s.WriteString(pad(text, c.width) + " ")
 	}
-	s.WriteString(pad(string(r.Verdict), 10) + " " + clean(r.File, nameLength))
+	s.WriteString(pad(string(r.Verdict), 10) + " " + fileName(r.File, nameLength))
 	if len(r.Codes) > 0 {
 		s.WriteString("  " + strings.Join(r.Codes, " "))
 	}
@@ -170,7 +170,7 @@ func (s *Set) WriteSummary(w io.Writer, style Style) error {
 		out.WriteString(trimRight(fmt.Sprintf("  %-18s %s %s %s %s", p.label, pad(p.Mean.String(), 22), relative(p.Between), relative(p.Within), relative(p.Own))) + "\n")
 	}
 	for _, r := range s.outliers() {
-		out.item("  outlier: ", fmt.Sprintf("%s, by its %s", clean(r.File, nameLength), strings.Join(r.Outlier, ", ")))
+		out.item("  outlier: ", fmt.Sprintf("%s, by its %s", fileName(r.File, nameLength), strings.Join(r.Outlier, ", ")))
 	}
 	return out.Flush()
 }

@@ -79,7 +79,7 @@ func (s *Set) run(spreads []spreadOf) (*figure, error) {
 	f := &figure{Panels: p.panels, Views: []view{}, Bare: true, Low: true, Name: clean(s.Heading, nameLength), Picture: "run-charts.png",
 		Words: axisWords{"captures", "Captures shown in all charts", "All captures", "Earlier", "Later"}}
 	for _, r := range s.Rows {
-		f.Names = append(f.Names, clean(r.File, nameLength))
+		f.Names = append(f.Names, fileName(r.File, nameLength))
 	}
 	var err error
 	f.Option, err = p.finish(ends[0], ends[1], "Run charts: each capture's natural frequency, quality factor and time constant in their order, "+

@@ -5,9 +5,12 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strings"
 	"time"
 
+	"dieaway/decay"
+	"dieaway/decay/circuit"
 	"dieaway/decay/quantity"
 )
 
@@ -38,11 +41,11 @@ func (s *Set) WritePage(w io.Writer) error {
 		return errors.New("report: a set without any capture")
 	}
 	p := &setPage{frame: frame{Kind: "Free decays of several captures", Heading: clean(s.Heading, nameLength),
-		Status: string(s.Status()), Verdict: "is the worst of them", What: s.counts() + "."}}
+		Status: string(s.Status()), Verdict: s.verdict(), What: s.counts() + "."}}
 	if p.Heading == "" {
 		p.Heading = plural(len(s.Rows), "capture")
 	}
-	p.Title = p.Heading + " – " + plural(len(s.Rows), "capture")
+	p.Title = p.Heading + " – free decays, " + p.Status
 	var spreads []spreadOf
 	for _, spread := range s.judge() {
 		if spread.Spread != nil {
@@ -70,6 +73,20 @@ func (s *Set) WritePage(w io.Writer) error {
 	return p.write(w, "set.html", p)
 }
 
+// verdict says what is to be said of the worst of them.
+func (s *Set) verdict() string {
+	v := "is the worst of them"
+	if s.Status() == decay.Good {
+		v = "nothing speaks against the numbers of any"
+	}
+	for _, worst := range []circuit.Verdict{circuit.Fail, circuit.Undecided, circuit.Pass} {
+		if slices.ContainsFunc(s.Rows, func(r *SetRow) bool { return r.Verdict == worst }) {
+			return v + "; limits: " + string(worst)
+		}
+	}
+	return v
+}
+
 func rowForPeople(r *SetRow) setRow {
 	text := func(q quantity.Quantity) string {
 		if !q.Known() {
@@ -81,7 +98,7 @@ func rowForPeople(r *SetRow) setRow {
 	if r.Err != "" {
 		why = clean(r.Err, longName)
 	}
-	return setRow{r, text(r.NaturalFrequency), text(r.Q), text(r.TimeConstant), clean(r.File, longName), r.word(), why, r.picture}
+	return setRow{r, text(r.NaturalFrequency), text(r.Q), text(r.TimeConstant), fileName(r.File, longName), r.word(), why, r.picture}
 }
 
 func shown(p spreadOf) setSpread {

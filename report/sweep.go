@@ -91,7 +91,7 @@ func (r *Sweep) verdict() string {
 	if r.refused() {
 		return "no resonance that can be measured: the numbers are withheld"
 	}
-	return verdictOf(r.Findings())
+	return verdictOf(r.Findings()) + limitsToo(r.Limits)
 }
 
 // source names response and file, safe to show.
@@ -100,7 +100,7 @@ func (r *Sweep) source() string {
 	if name == "" {
 		name = "response"
 	}
-	return name + " of " + clean(r.file(), nameLength)
+	return name + " of " + fileName(r.file(), nameLength)
 }
 
 func (r *Sweep) unit() string { return clean(r.Result.Unit, unitLength) }

@@ -27,7 +27,7 @@ func (r *Sweep) page() (*sweepPage, error) {
 	if err != nil {
 		return nil, err
 	}
-	heading := clean(r.file(), nameLength)
+	heading := fileName(r.file(), nameLength)
 	if r.Device != "" {
 		heading = clean(r.Device, nameLength)
 	}
@@ -61,6 +61,6 @@ func (r *Sweep) what() string {
 }
 
 func (r *Sweep) origin() []fact {
-	return r.Origin.facts(fact{"file", clean(r.file(), longName)}, fact{"SHA-256", r.sha256()},
+	return r.Origin.facts(fact{"file", fileName(r.file(), longName)}, fact{"SHA-256", r.sha256()},
 		fact{"device", clean(r.Device, longName)}, fact{"response", clean(r.Table.Name, longName)})
 }

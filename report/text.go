@@ -118,6 +118,25 @@ func span(x []float64) (lo, hi float64, ok bool) {
 	return lo, hi, lo <= hi
 }
 
+// subscripts writes the symbols of a text as a page can show them.
+var subscripts = strings.NewReplacer("f_0", "f₀", "E_n", "Eₙ")
+
+// onPage returns facts with their symbols as a page can show them.
+func onPage(facts []fact) (out []fact) {
+	for _, f := range facts {
+		out = append(out, fact{f.Name, subscripts.Replace(f.Value)})
+	}
+	return out
+}
+
+// fileName is the name of a file for people, cut to most runes.
+func fileName(name string, most int) string {
+	if name == "-" {
+		return "standard input"
+	}
+	return clean(name, most)
+}
+
 // Clean makes a text from outside safe to print on a terminal and cuts it to most
 // runes; 0 cuts nothing.
 func Clean(s string, most int) string { return clean(s, most) }

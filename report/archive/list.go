@@ -95,10 +95,10 @@ func WriteTable(w io.Writer, all []*Record) error {
 			}
 			folder = r.Folder
 			fmt.Fprintf(out, "%s, in %s\n", report.Clean(r.Device, 60), folder)
-			fmt.Fprintf(out, "  %-19s  %-10s  %-8s  %-9s  %-21s %-14s time constant\n", "measured (UTC)", "kind", "result", "limits", "natural frequency", "Q")
+			fmt.Fprintf(out, "  %-19s  %-11s  %-8s  %-9s  %-21s %-14s time constant\n", "measured (UTC)", "kind", "result", "limits", "natural frequency", "Q")
 		}
-		line := fmt.Sprintf("  %-19s  %-10s  %-8s  %-9s  %-21s %-14s %s", r.Made.UTC().Format(time.DateTime),
-			report.Clean(r.Kind, 12), report.Clean(r.Status, 12), report.Clean(r.Verdict, 12), shown(r.NaturalFrequency), shown(r.Q), shown(r.TimeConstant))
+		line := fmt.Sprintf("  %-19s  %-11s  %-8s  %-9s  %-21s %-14s %s", r.Made.UTC().Format(time.DateTime),
+			report.Clean(report.KindName(r.Kind), 12), report.Clean(r.Status, 12), report.Clean(r.Verdict, 12), shown(r.NaturalFrequency), shown(r.Q), shown(r.TimeConstant))
 		fmt.Fprintln(out, strings.TrimRight(line, " "))
 		if r.Err != nil {
 			fmt.Fprintf(out, "    %s\n", report.Clean(r.Err.Error(), 0))

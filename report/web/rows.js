@@ -37,12 +37,16 @@
     return svg;
   };
 
+  // A row's text under a key; kinds of measurement go by their names.
+  const kindNames = { ringdown: "ring-down", crosscheck: "cross-check" };
+  const said = (r, key) => (key === "k" && kindNames[r.k]) || (r[key] ?? "");
+
   // Each kind of column fills its cell from a row.
   const kinds = {
     entry: (cell, r) => cell.append(link(`${encodeURIComponent(r.n)}/report.html`, when(r.t))),
     device: (cell, r) => cell.append(link(`${encodeURIComponent(r.p)}/index.html`, r.d)),
     time: (cell, r) => cell.append(when(r.t)),
-    text: (cell, r, key) => cell.append(element("bdi", r[key] || "")),
+    text: (cell, r, key) => cell.append(element("bdi", said(r, key))),
     number: (cell, r, key) => cell.append(String(r[key] ?? "")),
     word: (cell, r, key) => r[key] && cell.append(element("strong", r[key], /^[a-z]+$/.test(r[key]) ? r[key] : "")),
     trend: (cell, r) => cell.append(...(r.g ? [spark(r.g)] : []), r.dr || ""),
@@ -71,7 +75,7 @@
 
   // What a row is searched by.
   const keys = ["d", "n", "k", "s", "v", "c", "ft", "qt", "at", "dr"];
-  const text = (r) => (r.text ||= keys.map((k) => r[k] ?? "").join(" ").toLowerCase() + " " + when(r.t));
+  const text = (r) => (r.text ||= keys.map((k) => said(r, k)).join(" ").toLowerCase() + " " + when(r.t));
   const compare = (key, sign) => (a, b) => {
     const x = a[key], y = b[key];
     if (x === undefined || y === undefined || x === "" || y === "") return (x === undefined || x === "") - (y === undefined || y === "");
