@@ -249,7 +249,7 @@ func seconds(t float64) string {
 	for _, u := range []struct {
 		name string
 		size float64
-	}{{"s", 1}, {"ms", 1e-3}, {"us", 1e-6}, {"ns", 1e-9}, {"ps", 1e-12}} {
+	}{{"s", 1}, {"ms", 1e-3}, {"µs", 1e-6}, {"ns", 1e-9}, {"ps", 1e-12}} {
 		if a >= u.size*0.9999999 || u.name == "ps" {
 			return fmt.Sprintf("%.6g %s", t/u.size, u.name)
 		}

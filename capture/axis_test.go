@@ -71,17 +71,17 @@ func TestTimeColumns(t *testing.T) {
 		{"date and clock in columns of their own", "date;clock;V_C (V)\n" + strings.ReplaceAll(stamped("2006-01-02;15:04:05.000000", noon, 4*time.Microsecond), ",", ";"),
 			want{interval: 4e-6, channels: "V_C/V"}},
 		{"stamps too coarse, interval declared", "delta t,2.500000E-6\ntime,V_C (V)\n" + stamped("1/2/2006 15:04:05.000000", noon, 2500*time.Nanosecond),
-			want{interval: 2.5e-6, channels: "V_C/V", findings: "coarse-time", check: has(CoarseTime, Note, "printed to 1 us", "2.5 us")}},
+			want{interval: 2.5e-6, channels: "V_C/V", findings: "coarse-time", check: has(CoarseTime, Note, "printed to 1 µs", "2.5 µs")}},
 		{"stamps that never change, interval declared", "delta t,2.5E-6\ntime,V_C (V)\n" + stamped("1/2/2006 15:04:05", noon.Truncate(time.Second), 2500*time.Nanosecond),
 			want{interval: 2.5e-6, channels: "V_C/V", findings: "coarse-time", check: has(CoarseTime, Note, "never change")}},
 		{"stamps that change once, interval declared", "Sample interval,4E-6\ntime (s),V_C (V)\n" + lines(rows, func(i int) string { return at(i, 4e-6, 4) + "," + ring(1, i) }),
-			want{interval: 4e-6, channels: "V_C/V", findings: "coarse-time", check: has(CoarseTime, Note, "printed to 100 us")}},
+			want{interval: 4e-6, channels: "V_C/V", findings: "coarse-time", check: has(CoarseTime, Note, "printed to 100 µs")}},
 		{"printed to 1 ms, 1.92 ms a sample", "time (s),V_C (V)\n" + lines(rows, func(i int) string { return ms(float64(i)*1.92e-3) + "," + ring(1, i) }),
 			want{interval: 1.92e-3, channels: "V_C/V", findings: "coarse-time", check: has(CoarseTime, Warning, "printed to 1 ms")}},
 		{"printed to 1 ms, rate declared", "Sample rate,520.833333 Hz\ntime (s),V_C (V)\n" + lines(rows, func(i int) string { return ms(float64(i)*1.92e-3) + "," + ring(1, i) }),
 			want{interval: 1 / 520.833333, channels: "V_C/V", findings: "coarse-time", check: has(CoarseTime, Note, "printed to 1 ms")}},
 		{"interval of the preamble contradicts", "Sample Interval,8e-6\ntime (s),V_C (V)\n" + lines(rows, func(i int) string { return at(i, 4e-6, 6) + "," + ring(1, i) }),
-			want{interval: 4e-6, channels: "V_C/V", findings: "coarse-time", check: has(CoarseTime, Warning, "declares 8 us", "4 us apart")}},
+			want{interval: 4e-6, channels: "V_C/V", findings: "coarse-time", check: has(CoarseTime, Warning, "declares 8 µs", "4 µs apart")}},
 		{"a time column for each channel", "TimeV_S\tAmplitudeV_S\tTimeV_C\tAmplitudeV_C\t\t\r\n\r\n" + lines(rows, func(i int) string {
 			return at(i, 4e-6, 6) + "\t" + ring(1, i) + "\t" + at(i, 4e-6, 6) + "\t" + ring(2, i)
 		}), want{interval: 4e-6, channels: "V_S/ V_C/", findings: "coarse-time"}},
@@ -105,7 +105,7 @@ func TestUnevenTime(t *testing.T) {
 		findings string
 		check    func(*testing.T, *Capture)
 	}{
-		{"one row missing", func(i int) float64 { return us(i + i/41) }, 0.4, "missing-samples", has(MissingSamples, Warning, "1 row of time", "before sample 42", "16.8 us")},
+		{"one row missing", func(i int) float64 { return us(i + i/41) }, 0.4, "missing-samples", has(MissingSamples, Warning, "1 row of time", "before sample 42", "16.8 µs")},
 		{"two gaps", func(i int) float64 { return us(i + 5*(i/20)) }, 0.4, "missing-samples", has(MissingSamples, Warning, "10 rows", "2 gaps", "before sample 21")},
 		{"a stamp repeated", func(i int) float64 { return us(i - i/30) }, 0.4, "uneven-time", has(UnevenTime, Warning, "1 stamp repeats")},
 		{"jitter", func(i int) float64 { return jitter[i] }, 0, "uneven-time", has(UnevenTime, Note, "steps scatter")},

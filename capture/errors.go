@@ -47,10 +47,18 @@ func (e *Error) Unwrap() error { return e.Err }
 func (e *Error) Error() string {
 	var b strings.Builder
 	if e.File != "" {
-		b.WriteString(e.File + ": ")
+		b.WriteString(shownFile(e.File) + ": ")
 	}
 	b.WriteString(e.Reason())
 	return b.String()
+}
+
+// shownFile is the name of a file in a message.
+func shownFile(name string) string {
+	if name == "-" {
+		return "standard input"
+	}
+	return name
 }
 
 // Reason is the error without the name of the file.

@@ -60,7 +60,7 @@ func TestBadInput(t *testing.T) {
 		{"row too short", broken(2000, 1502, "600.0,0.1"), ErrSyntax, 1502, 0, `line 1502: found a row of 2 cells, expected 3`},
 		{"row too long", broken(2000, 1502, "600.0,0.1,0.2,0.3"), ErrSyntax, 1502, 0, `line 1502: found a row of 4 cells, expected 3`},
 		{"words between the samples", broken(2000, 1502, "second record"), ErrSyntax, 1502, 1, `line 1502, column 1: found "second record", expected a time as a number`},
-		{"time backwards", broken(2000, 1502, "500.0,0.1,0.2"), ErrBackwards, 1502, 0, `line 1502: time runs backwards: found 500 us after 599.6 us, expected a later time`},
+		{"time backwards", broken(2000, 1502, "500.0,0.1,0.2"), ErrBackwards, 1502, 0, `line 1502: time runs backwards: found 500 µs after 599.6 µs, expected a later time`},
 		{"clock time backwards", "time,V (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("12:00:%02d.5,%s", i%40, ring(1, i)) }),
 			ErrBackwards, 42, 0, `line 42: time runs backwards: found "12:00:00.5" after "12:00:39.5"; the time begins anew once, expected one record: cut the file before this line`},
 		{"samples without their time beside others that have it", "time (us),A (V),time (us),B (V)\n" + lines(2000, func(i int) string {
@@ -69,7 +69,7 @@ func TestBadInput(t *testing.T) {
 			}
 			return at(i, 4, 1) + "," + ring(1, i) + "," + at(i, 2, 1) + "," + ring(2, i)
 		}), ErrSyntax, 1502, 3, "line 1502, column 3: found an empty cell, expected a time as a number"},
-		{"two records in one file", strings.Join(good(600), "") + strings.Join(good(600)[1:], ""), ErrBackwards, 602, 0, `line 602: time runs backwards: found 0 s after 239.6 us; the time begins anew once, expected one record: cut the file before this line`},
+		{"two records in one file", strings.Join(good(600), "") + strings.Join(good(600)[1:], ""), ErrBackwards, 602, 0, `line 602: time runs backwards: found 0 s after 239.6 µs; the time begins anew once, expected one record: cut the file before this line`},
 		{"cut off in the middle of a row", strings.Join(good(100), "") + "40.0,0.1", ErrSyntax, 102, 0, `line 102: found a row of 2 cells, expected 3`},
 		{"two samples", strings.Join(good(2), ""), ErrTooFew, 0, 0, "too few samples: found 2 rows, expected at least 6: a decay has five unknowns"},
 		{"the same time throughout", "time (s),V (V)\n" + strings.Repeat("1.5,0.25\n", 20), ErrNoTime, 0, 1, "column 1: no time axis: found 1.5 s in every row, expected a time that rises"},
@@ -79,7 +79,7 @@ func TestBadInput(t *testing.T) {
 		{"a driven sweep", "Frequency (kHz),V_C (dB)\n" + lines(rows, func(i int) string { return fmt.Sprint(100+i) + "," + ring(1, i) }), ErrNoData, 0, 0, "no samples: found columns of frequency, response, expected samples over time, not over frequency"},
 		{"decimal commas between commas", "t,V_C\n" + lines(rows, func(i int) string { return comma(fourth(i)) + "," + comma(ring(1, i)) }), ErrSyntax, 2, 0, `line 2: found "0,0,1,78300", where commas part cells and fractions alike, expected semicolons or tabs between the cells`},
 		{"words behind the numbers of a column", "time (us),V_C\n" + lines(rows, func(i int) string { return fourth(i) + "," + ring(1, i) + " V?" }), ErrSyntax, 2, 2, `line 2, column 2: found "1.78300 V?", expected a number`},
-		{"segments that each begin at zero", "Segment,Time (us),V_C\n" + lines(rows, func(i int) string { return fmt.Sprint(i/30, ",", fourth(i%30), ",", ring(1, i)) }), ErrBackwards, 32, 0, "line 32: time runs backwards: found 0 s after 116 us; the time begins anew once, expected one record: cut the file before this line"},
+		{"segments that each begin at zero", "Segment,Time (us),V_C\n" + lines(rows, func(i int) string { return fmt.Sprint(i/30, ",", fourth(i%30), ",", ring(1, i)) }), ErrBackwards, 32, 0, "line 32: time runs backwards: found 0 s after 116 µs; the time begins anew once, expected one record: cut the file before this line"},
 		{"only a count", "n,CH1\n" + lines(rows, func(i int) string { return at(i, 1, 0) + "," + ring(1, i) }), ErrNoTime, 0, 0, "no time axis: found only a count of samples in column 1, and no sampling interval in the preamble, expected one of them, or --interval"},
 		{"nothing but over-range marks", "time (us),V (V)\n" + lines(rows, func(i int) string { return at(i, 0.4, 1) + ",---" }), ErrNoData, 0, 2, "column 2: no samples: found 60 samples missing or over range, expected numbers"},
 		{"only time", "time (s)\n" + lines(rows, func(i int) string { return at(i, 1, 1) }), ErrNoData, 0, 0, "no samples: found a time column and nothing beside it, expected a column of voltage or current"},

@@ -65,7 +65,7 @@ func ExampleCapture_Explain() {
 	//   column 2   channel "V_C" in mV: numbers
 	//   column 3   text "state": a few cells only hold anything
 	//   channel 1  "V_C" in V, 8 samples
-	//   time       V_C: 8 samples from 0 s, every 2 us, even, printed to 100 ns (time column, regression over 8 stamps; unit of time in the header)
+	//   time       V_C: 8 samples from 0 s, every 2 µs, even, printed to 100 ns (time column, regression over 8 stamps; unit of time in the header)
 	//   warning    missing-samples: 1 of 8 samples of V_C are missing or over range, and left out.
 	//   note       ignored-columns: Columns not read as channels: 3 "state" (text: a few cells only hold anything).
 }

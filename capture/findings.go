@@ -12,10 +12,15 @@ import (
 
 // note adds a finding; what two time columns have in common is said once.
 func (c *Capture) note(code Code, s Severity, message, remedy string) {
-	f := Finding{code, s, sentence(message), sentence(remedy)}
+	f := newFinding(code, s, message, remedy)
 	if !slices.Contains(c.Findings, f) {
 		c.Findings = append(c.Findings, f)
 	}
+}
+
+// newFinding makes sentences of message and remedy.
+func newFinding(code Code, s Severity, message, remedy string) Finding {
+	return Finding{code, s, sentence(message), sentence(remedy)}
 }
 
 // sentence begins with a capital and ends with a full stop.

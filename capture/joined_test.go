@@ -67,7 +67,7 @@ func TestBrokenStampsInColumns(t *testing.T) {
 				return fmt.Sprintf("2031-03-04,12:00:%02d,%d,%s", i/10, i%10*100, ring(1, i))
 			})
 			_, err := Read(strings.NewReader(text), "-", Options{})
-			if err == nil || err.Error() != "-: "+c.message {
+			if err == nil || err.Error() != "standard input: "+c.message {
 				t.Errorf("%v, want %s", err, c.message)
 			}
 		})

@@ -27,20 +27,32 @@ type Options struct {
 // gives an [*Error]; a file that cannot be read gives the system's error, and
 // options that make no sense a plain one.
 func ReadFile(name string, opt Options) (*Capture, error) {
-	f, err := os.Open(name)
+	f, size, err := open(name)
 	if err != nil {
 		return nil, err
 	}
 	defer f.Close()
-	info, err := f.Stat()
-	if err != nil {
-		return nil, err
+	return read(f, name, size, opt)
+}
+
+// open opens a file and returns its size, 0 where that is not known.
+func open(name string) (f *os.File, size int64, err error) {
+	if f, err = os.Open(name); err != nil {
+		return nil, 0, err
 	}
-	size := int64(0)
-	if info.Mode().IsRegular() {
+	info, err := f.Stat()
+	switch {
+	case err != nil:
+	case info.IsDir():
+		err = fmt.Errorf("%s is a folder, expected a file", name)
+	case info.Mode().IsRegular():
 		size = info.Size()
 	}
-	return read(f, name, size, opt)
+	if err != nil {
+		f.Close()
+		return nil, 0, err
+	}
+	return f, size, nil
 }
 
 // Read reads a capture from r; name stands for it in messages.

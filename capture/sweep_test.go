@@ -105,7 +105,7 @@ func TestSweepErrors(t *testing.T) {
 		{"phase without magnitude", rowsOf("f,phase\n", "1,2", "2,3"), SweepOptions{}, "expected a magnitude", ErrNoData, 0, 0},
 		{"one column", rowsOf("f\n", "1", "2"), SweepOptions{}, "expected a magnitude", ErrNoData, 0, 0},
 		{"no frequency", rowsOf("out\n", "-1", "-2"), SweepOptions{}, "expected one of frequency", ErrNoData, 0, 0},
-		{"missing column", rowsOf("f,out\n", "1,2", "2,3"), SweepOptions{Response: "V_C"}, `no such column for the response as "V_C"; there are 1 "f", 2 "out"`, ErrNoColumn, 0, 0},
+		{"missing column", rowsOf("f,out\n", "1,2", "2,3"), SweepOptions{Response: "V_C"}, `bad.csv: no such column: expected "V_C" for the response, found 1 "f", 2 "out"`, ErrNoColumn, 0, 0},
 		{"column of words", rowsOf("f,out,note\n", "1,2,a", "2,3,b"), SweepOptions{Response: "note"}, "column 3 of the table holds words", ErrNoColumn, 0, 0},
 		{"one column for two things", rowsOf("f,out\n", "1,2", "2,3"), SweepOptions{Response: "out", Phase: "out"}, "is the response already", ErrNoColumn, 0, 0},
 		{"no table", "nothing here\n", SweepOptions{}, "without a row of numbers", ErrNoData, 0, 0},

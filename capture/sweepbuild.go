@@ -287,8 +287,8 @@ func (s *Sweep) say() {
 		}
 	}
 	if len(parts) > 0 {
-		s.Findings = append(s.Findings, Finding{IgnoredColumns, Note, "columns not fitted: " + strings.Join(parts, ", "),
-			"nothing, unless one of them is the response or the reference: name it with --response or --reference"})
+		s.Findings = append(s.Findings, newFinding(IgnoredColumns, Note, "columns not fitted: "+strings.Join(parts, ", "),
+			"nothing, unless one of them is the response or the reference: name it with --response or --reference"))
 	}
 	missing := 0
 	for _, v := range s.Magnitude {
@@ -297,9 +297,9 @@ func (s *Sweep) say() {
 		}
 	}
 	if missing > 0 {
-		s.Findings = append(s.Findings, Finding{MissingSamples, Warning,
+		s.Findings = append(s.Findings, newFinding(MissingSamples, Warning,
 			fmt.Sprintf("%d of %s have no value of the response, and are left out", missing, plural(len(s.Magnitude), "row")),
-			"measure these frequencies again"})
+			"measure these frequencies again"))
 	}
 }
 

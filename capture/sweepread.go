@@ -4,7 +4,6 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"os"
 	"slices"
 	"strings"
 )
@@ -22,7 +21,7 @@ const (
 // that cannot be a sweep gives an [*Error], a column that is not there an error
 // that wraps [ErrNoColumn].
 func ReadSweepFile(name string, opt SweepOptions) (*Sweep, error) {
-	f, err := os.Open(name)
+	f, _, err := open(name)
 	if err != nil {
 		return nil, err
 	}
@@ -49,8 +48,11 @@ func ReadSweep(r io.Reader, name string, opt SweepOptions) (*Sweep, error) {
 	}
 	err = s.read(src, text, opt)
 	var refusal *Error
-	if errors.As(err, &refusal) {
+	switch {
+	case errors.As(err, &refusal):
 		refusal.File = name
+	case err != nil:
+		err = fmt.Errorf("%s: %w", shownFile(name), err)
 	}
 	if err != nil {
 		return nil, err
@@ -204,7 +206,7 @@ func (t *sweepTable) asked(what, name string) (int, error) {
 			return i, nil
 		}
 	}
-	return 0, fmt.Errorf("%w for the %s as %q; there are %s", ErrNoColumn, what, name, t.listed())
+	return 0, fmt.Errorf("%w: expected %q for the %s, found %s", ErrNoColumn, name, what, t.listed())
 }
 
 // listed names the columns for a message.

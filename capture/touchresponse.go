@@ -78,7 +78,7 @@ func (t *touchstone) responseOf(name string) (func(record []float64) complex128,
 		return func(r []float64) complex128 { return t.element(r, i, k) }, nil
 	}
 	if !valid || t.ports != 1 {
-		return nil, fmt.Errorf("%w for the response as %q: the file holds %s parameters of %s, S21 for example is that from port 1 to port 2",
+		return nil, fmt.Errorf("%w: expected %q for the response, found %s parameters of %s, where S21 for example is that from port 1 to port 2",
 			ErrNoColumn, name, t.parameter, plural(t.ports, "port"))
 	}
 	return func(r []float64) complex128 { return t.convert(t.element(r, 1, 1), name[0]) }, nil

@@ -18,7 +18,7 @@ func TestDecimatedCounts(t *testing.T) {
 	noted.findings, noted.check = "coarse-time", has(CoarseTime, Note, "column 1 rise by 10", "numbers of the samples, 400 ns apart")
 	us.check = roles("time channel")
 	gap := ch1
-	gap.findings, gap.check = "missing-samples", has(MissingSamples, Warning, "2 rows of time missing: before sample 31 at 128 us")
+	gap.findings, gap.check = "missing-samples", has(MissingSamples, Warning, "2 rows of time missing: before sample 31 at 128 µs")
 	for i := range rows {
 		gap.times = append(gap.times, float64(i+2*(i/30))*4e-6)
 	}
@@ -44,7 +44,7 @@ func TestDecimatedCounts(t *testing.T) {
 		{"two steps by turns", "Sample Interval,4e-7\nSample,CH1 (V)\n" + lines(rows, func(i int) string { return fmt.Sprint(i/2*20+i%2*8) + "," + ring(1, i) }), Options{}, twice},
 	})
 	_, err := Read(strings.NewReader("Sample,CH1 (V)\n"+lines(rows, count(0, 10))), "-", Options{})
-	if want := "-: no time axis: found only a count of samples in column 1, and no sampling interval in the preamble, expected one of them, or --interval"; err == nil || err.Error() != want {
+	if want := "standard input: no time axis: found only a count of samples in column 1, and no sampling interval in the preamble, expected one of them, or --interval"; err == nil || err.Error() != want {
 		t.Errorf("%v, want %s", err, want)
 	}
 }
@@ -124,7 +124,7 @@ func TestImpossibleAxes(t *testing.T) {
 			switch {
 			case c.want == "" && err != nil:
 				t.Error(err)
-			case c.want != "" && (err == nil || !strings.HasPrefix(err.Error(), "-: "+c.want)):
+			case c.want != "" && (err == nil || !strings.HasPrefix(err.Error(), "standard input: "+c.want)):
 				t.Errorf("%v, want %s", err, c.want)
 			}
 		})
@@ -154,7 +154,7 @@ func TestWrappedLines(t *testing.T) {
 		t.Errorf("%v", err)
 	}
 	_, err := Read(strings.NewReader(`"Time (us),CH1 (V)"`+"\n"+lines(rows, pair)+`"1000,x7"`+"\n"), "-", Options{})
-	if want := `-: line 62, column 2: found "x7", expected a number`; err == nil || err.Error() != want {
+	if want := `standard input: line 62, column 2: found "x7", expected a number`; err == nil || err.Error() != want {
 		t.Errorf("%v, want %s", err, want)
 	}
 }
