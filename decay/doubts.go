@@ -33,7 +33,7 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 	u := (d.To - d.From) * q.DecayRate.Value
 	if u < shortWindow {
 		out = append(out, warning(capture.ShortRecord,
-			fmt.Sprintf("The record covers %.2g time constants of the decay; Q hangs on a fall of only %s.", u, percent(-math.Expm1(-u))),
+			fmt.Sprintf("The record covers %.2g time constants of the decay; Q rests on a fall of only %s.", u, percent(-math.Expm1(-u))),
 			"Record longer: three to five time constants."))
 	}
 	if d.Cycles < fewCycles && u < fullWindow {
@@ -68,12 +68,12 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 	switch dense := v.factor(g.fit.w); {
 	case dense > 2 && d.Cycles < chanceCycles:
 		out = append(out, warning(capture.ColouredNoise,
-			fmt.Sprintf("The noise is %.2g times as dense at the ring's frequency as white noise of the same size, and there are %.2g cycles: slow noise may pass for so short a ring, or pull it.", dense, d.Cycles),
+			fmt.Sprintf("The noise is %s times as dense at the ring's frequency as white noise of the same size, and there are %.2g cycles: slow noise may pass for so short a ring, or pull it.", figure(dense, 2), d.Cycles),
 			"Raise the amplitude of the shock or average several decays, and compare two captures."))
 	case dense > 1.5:
 		out = append(out, note(capture.ColouredNoise,
-			fmt.Sprintf("The noise is %.2g times as dense at the ring's frequency as white noise of the same size; the uncertainties allow for it.", dense),
-			"Nothing to do; a lower bandwidth limit does not help, a stronger ring does."))
+			fmt.Sprintf("The noise is %s times as dense at the ring's frequency as white noise of the same size; the uncertainties allow for it.", figure(dense, 2)),
+			"Nothing; a lower bandwidth limit does not help, a stronger ring does."))
 	}
 	return out
 }
@@ -88,7 +88,7 @@ func (g *gate) besides(c *term) Finding {
 		return note(capture.BaselineDrift,
 			fmt.Sprintf("The ring sits on a baseline that moves exponentially, by %s of the ring's amplitude with a time constant of %s; it was fitted along.",
 				percent(share), quantity.Format(f.s.dt/c.a, "s", 3)),
-			"Nothing to do if the coupling explains it (AC coupling, a clamp that recovers); otherwise look for what still feeds the circuit.")
+			"Nothing, if the coupling explains it (AC coupling, a clamp that recovers); otherwise look for what still feeds the circuit.")
 	case tone && math.Abs(c.w-f.w) < 2*f.a:
 		return warning(capture.DriveOn,
 			fmt.Sprintf("A steady tone of %s, %s of the ring's amplitude, stays within the width of the resonance: the source still drives the circuit.", frequency, percent(share)),
@@ -117,7 +117,10 @@ func dependsOnAmplitude(d *Decay, f *ringFit) Finding {
 }
 
 // percent prints a ratio as a percentage with its sign dropped.
-func percent(x float64) string { return fmt.Sprintf("%.3g %%", 100*math.Abs(x)) }
+func percent(x float64) string { return quantity.Format(100*math.Abs(x), "%", 3) }
+
+// figure is a pure number with digits significant digits and without an exponent.
+func figure(x float64, digits int) string { return quantity.Format(x, "", digits) }
 
 // compareReadings holds the classical readings against the fit. They are averages
 // over the decay: where frequency and damping move along it, or two rings beat,

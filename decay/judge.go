@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"dieaway/capture"
+	"dieaway/decay/quantity"
 )
 
 const (
@@ -19,9 +20,14 @@ const (
 func unfit(s series, first, last int) (Finding, bool) {
 	w := s.slice(min(first, s.len()), max(min(first, s.len()), last))
 	n := w.count()
+	if w.len() == 0 && s.len() > 0 {
+		return fault(capture.NoDecay,
+			fmt.Sprintf("No sample lies in the gate: the record runs from %s to %s.", quantity.Format(s.time(0), "s", 6), quantity.Format(s.time(s.len()-1), "s", 6)),
+			"Set the gate inside the record."), true
+	}
 	if n < samplesLeast {
 		return fault(capture.NoDecay,
-			fmt.Sprintf("only %d samples lie in the gate; at least %d are needed to fit a decay.", n, samplesLeast),
+			fmt.Sprintf("Only %d samples lie in the gate; at least %d are needed to fit a decay.", n, samplesLeast),
 			"Widen the gate, or capture more samples of the decay."), true
 	}
 	if s.lo == s.hi {
@@ -73,7 +79,7 @@ func noDecay(g *gate, d *Decay, v noise) (Finding, bool) {
 	}
 	if gain, need := energyGain(f, v), energyNeeded(f.s.len()); gain < need {
 		return fault(capture.NoDecay,
-			fmt.Sprintf("No decay stands out of the noise: the best fit explains %.3g times the noise, and chance alone explains up to %.3g in %d samples.", gain, need, f.n),
+			fmt.Sprintf("No decay stands out of the noise: the best fit explains %s times the noise, and chance alone explains up to %s in %s samples.", figure(gain, 3), figure(need, 3), quantity.Count(f.n)),
 			"Raise the amplitude of the shock or average several decays; check that the channel is the one that rings."), true
 	}
 	if n := f.samplesRinging(); n < ringingLeast {
@@ -89,7 +95,7 @@ func noDecay(g *gate, d *Decay, v noise) (Finding, bool) {
 	}
 	if rate < decaySigma*u {
 		return fault(capture.DriveOn,
-			fmt.Sprintf("The amplitude does not fall within the record: its rate is %s, which is not told from zero.", q.DecayRate),
+			fmt.Sprintf("The amplitude does not fall in the gate: its rate is %s, which cannot be told from zero.", q.DecayRate),
 			"Switch the source off for the capture, or, if it is off, record longer: at least a fifth of the time constant, better three."), true
 	}
 	return Finding{}, false
@@ -133,7 +139,7 @@ func byChance(s series, g *gate, d *Decay) (Finding, bool) {
 		return Finding{}, false
 	}
 	return fault(capture.NoDecay,
-		fmt.Sprintf("The best candidate is %.2g cycles of %.2g times what the rest of the record moves by: slow noise makes such a stretch by chance.", d.Cycles, g.fit.size()/rest),
+		fmt.Sprintf("The best candidate is %.2g cycles of %s times what the rest of the record moves by: slow noise makes such a stretch by chance.", d.Cycles, figure(g.fit.size()/rest, 2)),
 		"Raise the amplitude of the shock or average several decays; set the gate by hand if the ring is known to be there."), true
 }
 

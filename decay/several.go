@@ -244,10 +244,10 @@ func (c *combined) widened() sym {
 func severalDecays(n int, c *combined) []Finding {
 	out := []Finding{note(capture.SeveralDecays,
 		sprintf("The record holds %d decays; each was fitted, and the result combines them by their uncertainties.", n),
-		"Nothing to do; set the gate to quote one of them alone.")}
+		"Nothing; set the gate to quote one of them alone.")}
 	if c.disagree() {
 		out = append(out, warning(capture.DecaysDisagree,
-			sprintf("The decays of the record differ by more than their uncertainties: chi-squared %.3g for %d degrees of freedom; the uncertainty was widened by %.2g.", c.chi2, c.degree, c.birge),
+			sprintf("The decays of the record differ by more than their uncertainties: chi-squared %s with %d degrees of freedom; the uncertainty was multiplied by %s.", figure(c.chi2, 3), c.degree, figure(c.birge, 2)),
 			"Compare the decays one by one with the gate: the two edges may load the circuit differently, or it drifts."))
 	}
 	return out

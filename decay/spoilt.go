@@ -6,6 +6,7 @@ import (
 	"slices"
 
 	"dieaway/capture"
+	"dieaway/decay/quantity"
 )
 
 var sprintf = fmt.Sprintf
@@ -95,16 +96,12 @@ func (g *gate) far(window series, first, last int, limit float64) (out []int) {
 	return out
 }
 
-func samplesLie(n int) string {
-	if n == 1 {
-		return "One sample lies"
-	}
-	return sprintf("%d samples lie", n)
-}
-
 func glitchFinding(n int) Finding {
-	return note(capture.OutlierSamples,
-		sprintf("%s far off the decay, more than %d times the noise; left out of the fit.", samplesLie(n), glitchSigma),
+	message := sprintf("%s samples lie far off the decay, more than %d times the noise; they were left out of the fit.", quantity.Count(n), glitchSigma)
+	if n == 1 {
+		message = sprintf("One sample lies far off the decay, more than %d times the noise; it was left out of the fit.", glitchSigma)
+	}
+	return note(capture.OutlierSamples, message,
 		"Look at the residual: single spikes come from interference or a converter that slips.")
 }
 
@@ -123,7 +120,7 @@ func (g *gate) cutCoarseTail(s series) {
 
 func (g *gate) coarseFinding(step float64) Finding {
 	size := g.fit.size()
-	message := sprintf("The amplitude is %.3g steps of the converter and what is left only %.2g: no noise blurs the steps; the tail below %d steps was left out.", size/step, g.lateRMS()/step, levelsTail)
+	message := sprintf("The amplitude is %s steps of the converter and what is left only %s: no noise blurs the steps; the tail below %d steps was left out.", figure(size/step, 3), figure(g.lateRMS()/step, 2), levelsTail)
 	remedy := "Use a smaller vertical range, more bits, or average so that noise of half a step blurs the levels."
 	if size > manySteps*step {
 		return note(capture.CoarseLevels, message, remedy)
