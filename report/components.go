@@ -221,7 +221,7 @@ func inU(q quantity.Quantity) string { return fmt.Sprintf("%+.1f", round(q.Value
 
 // chiSquareLine says how well the captures go together.
 func chiSquareLine(r *circuit.Components) string {
-	return fmt.Sprintf("chi-square %.3g with %s of freedom", r.ChiSquare, plural(r.Degrees, "degree"))
+	return fmt.Sprintf("chi-squared %.3g with %s of freedom", r.ChiSquare, plural(r.Degrees, "degree"))
 }
 
 // dampingLine says which network damps a node that rings when it should not.

@@ -162,7 +162,7 @@ func format2(x float64, unit string) string { return quantity.Format(x, unit, 2)
 
 // ringLine says what will be recorded.
 func (p Plan) ringLine() string {
-	return fmt.Sprintf("%s, Q %.4g, %s that falls to 1/e in %s", format(p.Ring.NaturalFrequency, "Hz"), p.Ring.Q(),
+	return fmt.Sprintf("%s, Q %s, %s that falls to 1/e in %s", format(p.Ring.NaturalFrequency, "Hz"), format(p.Ring.Q(), ""),
 		format(p.Wish.Amplitude, "V"), format(p.Ring.TimeConstant(), "s"))
 }
 
@@ -194,7 +194,7 @@ func forecastRows(f *circuit.Forecast) (rows []forecastRow) {
 		name string
 		r    circuit.Resonance
 	}{{"by itself", f.Free}, {"with source", f.Source}, {"with probe", f.Probe}, {withBoth, f.Loaded}} {
-		row := forecastRow{Name: line.name, F: quantity.Format(line.r.NaturalFrequency, "Hz", 6), Q: fmt.Sprintf("%.4g", line.r.Q())}
+		row := forecastRow{Name: line.name, F: quantity.Format(line.r.NaturalFrequency, "Hz", 6), Q: format(line.r.Q(), "")}
 		if line.r != f.Free {
 			row.FShift = fmt.Sprintf("%+.2g %%", 100*(line.r.NaturalFrequency/f.Free.NaturalFrequency-1))
 			row.QShift = fmt.Sprintf("%+.2g %%", 100*(line.r.Q()/f.Free.Q()-1))
@@ -207,9 +207,9 @@ func forecastRows(f *circuit.Forecast) (rows []forecastRow) {
 // settingFacts say what to set.
 func settingFacts(set *plan.Setting) []fact {
 	return []fact{
-		{"record", fmt.Sprintf("%s, of which %s before the trigger: %.2g time constants, %.3g cycles",
-			format(set.Record, "s"), format(set.Pretrigger(), "s"), set.TimeConstants, set.Cycles)},
-		{"sample rate", fmt.Sprintf("%s/s: %s, %.3g in a cycle", trimHertz(set.SampleRate), plural(set.Samples, "sample"), set.PerCycle)},
+		{"record", fmt.Sprintf("%s, of which %s before the trigger: %s time constants, %s cycles",
+			format(set.Record, "s"), format(set.Pretrigger(), "s"), format2(set.TimeConstants, ""), quantity.Format(set.Cycles, "", 3))},
+		{"sample rate", fmt.Sprintf("%s/s: %s, %s in a cycle", trimHertz(set.SampleRate), plural(set.Samples, "sample"), quantity.Format(set.PerCycle, "", 3))},
 		{"averages", averages(set.Averages)},
 		{"vertical range", fmt.Sprintf("%s, %s a division of eight; %s of noise", format(set.FullScale, "V"), format(set.FullScale/8, "V"), quantity.Format(set.Noise, "V", 3))},
 	}

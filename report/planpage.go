@@ -29,7 +29,7 @@ type alternativeRow struct {
 // alternativeRows tabulates what else there is.
 func (p Plan) alternativeRows() (rows []alternativeRow) {
 	for _, a := range p.Alternatives {
-		rows = append(rows, alternativeRow{a.Verdict, a.Change, format(a.Record, "s"), trimHertz(a.SampleRate) + "/s", group(a.Samples),
+		rows = append(rows, alternativeRow{a.Verdict, a.Change, format(a.Record, "s"), trimHertz(a.SampleRate) + "/s", quantity.Count(a.Samples),
 			fmt.Sprint(a.Averages), quantity.Percent(a.Expected.Q.Relative()), a.Reason})
 	}
 	return rows

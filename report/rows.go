@@ -114,7 +114,7 @@ func modelName(r *decay.Result) string {
 	case decay.Amplitude:
 		return "a decay whose loss and frequency depend on the amplitude; the result is the limit of small amplitude"
 	case decay.TwoMode:
-		return "two damped modes; the result is that of the stronger one"
+		return "two damped modes; the result is that of the one with more energy"
 	case decay.Overdamped:
 		return "an overdamped return, which does not ring"
 	default:
@@ -223,17 +223,5 @@ func plural(n int, noun string) string {
 	if n == 1 {
 		return "1 " + noun
 	}
-	return group(n) + " " + noun + "s"
-}
-
-// group writes n with a thin gap between groups of three digits from five digits up.
-func group(n int) string {
-	s := fmt.Sprint(n)
-	if len(s) < 5 {
-		return s
-	}
-	for i := len(s) - 3; i > 0; i -= 3 {
-		s = s[:i] + " " + s[i:]
-	}
-	return s
+	return quantity.Count(n) + " " + noun + "s"
 }

@@ -147,8 +147,8 @@ func worst(rows []Row, residual func(r *Row) quantity.Quantity) (at int, most fl
 func (c *Components) judge(resistors bool) {
 	if i, n := worst(c.Rows, func(r *Row) quantity.Quantity { return r.Residual }); n > farOff {
 		c.Findings = append(c.Findings, decay.Finding{Code: capture.Outliers, Severity: capture.Warning,
-			Message: fmt.Sprintf("Capture %d, with %s added, lies %s off the components found, %.3g times its uncertainty.",
-				i+1, c.Rows[i].Added, signed(c.Rows[i].Residual.Value), n),
+			Message: fmt.Sprintf("Capture %d, with %s added, lies %s off the components found, %s times its uncertainty.",
+				i+1, c.Rows[i].Added, signed(c.Rows[i].Residual.Value), quantity.Format(n, "", 3)),
 			Remedy: "Check the part that was added and the order of the values, and give the tolerance of the parts (100p +- 1 %)."})
 	}
 	if i, n := worst(c.Rows, func(r *Row) quantity.Quantity { return r.Other }); n > farOff {
@@ -166,13 +166,13 @@ func (c *Components) judge(resistors bool) {
 func otherFinding(resistors bool, i int, n float64, r *Row) decay.Finding {
 	if resistors {
 		return decay.Finding{Code: capture.Outliers, Severity: capture.Warning,
-			Message: fmt.Sprintf("Capture %d, with %s added, rings %s off the others, %.3g times its uncertainty, and a resistor does not do that.",
-				i+1, r.Added, signed(r.Other.Value), n),
+			Message: fmt.Sprintf("Capture %d, with %s added, rings %s off the others, %s times its uncertainty, and a resistor does not do that.",
+				i+1, r.Added, signed(r.Other.Value), quantity.Format(n, "", 3)),
 			Remedy: "Look for what else changed: the resistor's own inductance, the leads, the probe."}
 	}
 	return decay.Finding{Code: capture.Outliers, Severity: capture.Note,
-		Message: fmt.Sprintf("The loss is not the same in all captures: capture %d, with %s added, dies away %s off the resistance found, %.3g times its uncertainty. The resistance is a mean, and its uncertainty covers that.",
-			i+1, r.Added, signed(r.Other.Value), n),
+		Message: fmt.Sprintf("The loss is not the same in all captures: capture %d, with %s added, dies away %s off the resistance found, %s times its uncertainty. The resistance is a mean, and its uncertainty covers that.",
+			i+1, r.Added, signed(r.Other.Value), quantity.Format(n, "", 3)),
 		Remedy: "Nothing for inductance and capacitance; loss that changes with frequency (skin effect, core) does that, and so do losses of the added capacitors."}
 }
 

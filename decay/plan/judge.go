@@ -26,7 +26,7 @@ func (p *Plan) add(code capture.Code, severity capture.Severity, message, remedy
 }
 
 func (p *Plan) note(message string) {
-	p.add(capture.Loading, capture.Note, upper(message)+".", "Give one of them, or quote the result as that of the circuit as it is connected.")
+	p.add(capture.Loading, capture.Note, upper(message)+".", "Mend the bench file, or quote the result as that of the circuit as it is connected.")
 }
 
 // judge says what will speak against the record.
@@ -61,8 +61,8 @@ func (p *Plan) judge() {
 func (p *Plan) refuse() {
 	s := &p.Setting
 	if ratio := p.Wish.Amplitude / s.Noise; ratio < ratioLeast {
-		p.add(capture.WeakSignal, capture.Fault, fmt.Sprintf("Even %d averages leave a ring of %s only %.2g times above the noise of %s.", s.Averages, volts(p.Wish.Amplitude), ratio, volts(s.Noise)),
-			fmt.Sprintf("Shock %.2g times harder, or use a smaller range.", ratioLeast/ratio))
+		p.add(capture.WeakSignal, capture.Fault, fmt.Sprintf("Even %d averages leave a ring of %s only %s times above the noise of %s.", s.Averages, volts(p.Wish.Amplitude), times(ratio), volts(s.Noise)),
+			fmt.Sprintf("Shock %s times harder, or use a smaller range.", times(ratioLeast/ratio)))
 		return
 	}
 	code := capture.WeakSignal
@@ -70,19 +70,22 @@ func (p *Plan) refuse() {
 		code = capture.ShortRecord
 	}
 	lack := s.relative() / p.Wish.Want
-	p.add(code, capture.Fault, fmt.Sprintf("No setting gives Q to %s: with %d samples and %d averages it is %s at best.", quantity.Percent(p.Wish.Want), p.Wish.Memory, averagesMost, quantity.Percent(s.relative())),
-		fmt.Sprintf("Ask for less, shock %.2g times harder, use a smaller range, or %.2g times the memory.", lack, lack*lack))
+	p.add(code, capture.Fault, fmt.Sprintf("No setting gives Q to %s: with %s samples and %d averages it is %s at best.", quantity.Percent(p.Wish.Want), quantity.Count(p.Wish.Memory), averagesMost, quantity.Percent(s.relative())),
+		fmt.Sprintf("Ask for less, shock %s times harder, use a smaller range, or %s times the memory.", times(lack), times(lack*lack)))
 }
 
 // tooSmall says that the memory holds no record of the decay.
 func (p *Plan) tooSmall() {
 	c := comforts[len(comforts)-1]
 	need := c.timeConstants * p.Ring.TimeConstant() / (1 - before) * c.perCycle * p.Ring.DampedFrequency()
-	p.add(capture.ShortRecord, capture.Fault, fmt.Sprintf("A memory of %d samples holds too little of a decay with a Q of %.3g: it takes about %.2g samples to tell frequency and damping.", p.Wish.Memory, p.Ring.Q(), 2*need),
+	p.add(capture.ShortRecord, capture.Fault, fmt.Sprintf("A memory of %s samples holds too little of a decay with a Q of %s: it takes about %s samples to tell frequency and damping.",
+		quantity.Count(p.Wish.Memory), quantity.Format(p.Ring.Q(), "", 3), times(2*need)),
 		"Use more memory, or mix the ring down to a lower frequency.")
 }
 
 func volts(x float64) string { return quantity.Format(x, "V", 3) }
+
+func times(x float64) string { return quantity.Format(x, "", 2) }
 
 func upper(s string) string {
 	if s == "" {

@@ -100,6 +100,19 @@ func Format(x float64, unit string, digits int) string {
 	return withUnit(trimZeros(s), p.symbol, unit)
 }
 
+// Count returns a whole number with a gap between groups of three digits from five
+// digits up: "10 000".
+func Count(n int) string {
+	s := strconv.Itoa(n)
+	if len(s) < 5 {
+		return s
+	}
+	for i := len(s) - 3; i > 0; i -= 3 {
+		s = s[:i] + " " + s[i:]
+	}
+	return s
+}
+
 // Scale returns what to multiply numbers up to x with so that they read well in
 // engineering notation, and the unit they are in then: 2e-5 s are Scale's 1e6
 // and "µs". For axes and tables whose numbers share a unit.
