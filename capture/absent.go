@@ -64,8 +64,7 @@ func (p *plan) lacks(c *chunk, n int) bool {
 
 // acceptPart is accept for a row that lacks a time column: the row is booked among
 // its holes.
-func (p *plan) acceptPart(c *chunk, at, line int) {
-	fell := false
+func (p *plan) acceptPart(c *chunk, line int) {
 	if c.rows == 0 {
 		c.first = line
 	}
@@ -77,8 +76,7 @@ func (p *plan) acceptPart(c *chunk, at, line int) {
 				s.run.n++
 				s.n++
 			} else if !s.add(t) {
-				p.fell(c, k, at, line)
-				fell = true
+				c.fallen, c.err = append(c.fallen, k), errFell
 			}
 		case len(h) > 0 && h[len(h)-1].to == c.rows:
 			h[len(h)-1].to++
@@ -89,7 +87,7 @@ func (p *plan) acceptPart(c *chunk, at, line int) {
 	c.rows++
 	c.partial = false
 	if c.footer != nil {
-		c.between(fell)
+		c.between()
 	}
 }
 

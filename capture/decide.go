@@ -44,13 +44,16 @@ func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
 		a.countFromFirst()
 		midnight(c, clk)
 	}
-	if d.assumed {
-		d.assumed = false // said once
+	if d.assumed != "" {
 		found, severity := "nothing in the file gives the unit of time", Note
+		if d.columns[col].unit != (unit{base: "s"}) {
+			severity = Warning
+		}
 		if d.unknown != "" {
 			found, severity = fmt.Sprintf("the unit of time %s is not known", quote(d.unknown)), Warning
 		}
-		c.note(CoarseTime, severity, found+"; seconds are assumed", "give the unit with --time-unit if the times are not seconds")
+		c.note(CoarseTime, severity, found+"; "+d.assumed, "give the unit with --time-unit if it is another")
+		d.assumed = "" // said once
 	}
 	a.Source += "; " + d.timeWhy
 	return a, nil

@@ -16,10 +16,10 @@ type layoutDesign struct {
 	columns  []column
 	plan     plan
 	opt      Options
-	// timeWhy says where the unit of time came from; assumed is true when
-	// nothing gave it.
+	// timeWhy says where the unit of time came from; assumed is what was taken
+	// when nothing gave it.
 	timeWhy string
-	assumed bool
+	assumed string
 	unknown string // what the file gives as the unit of time, and nobody knows
 }
 
@@ -38,7 +38,9 @@ func design(h *head, opt Options) (*layoutDesign, *Error) {
 func newDesign(h *head, opt Options) (*layoutDesign, *Error) {
 	d := &layoutDesign{head: h, opt: opt, preamble: preamble{d: h.dialect}}
 	for _, l := range h.preambleLines() {
-		d.preamble.readLine(l.number, d.preamble.cellsOf(l.text))
+		cells := d.preamble.cellsOf(l.text)
+		d.preamble.readLine(l.number, cells)
+		d.preamble.readBelow(l.number-1, cells)
 	}
 	d.readBeside()
 	d.heading = findNames(h, &d.preamble)
@@ -167,6 +169,11 @@ func (d *layoutDesign) declared(col int) declared {
 // needInterval refuses a file without time whose interval nothing gives.
 func (d *layoutDesign) needInterval() *Error {
 	col := max(0, slices.IndexFunc(d.columns, func(c column) bool { return c.Role == RoleChannel }))
+	if d.opt.Interval == 0 {
+		if err := d.preamble.quarrel(col); err != nil {
+			return err
+		}
+	}
 	if d.declared(col).ok {
 		return nil
 	}

@@ -183,7 +183,7 @@ func (h *head) firstRow() int {
 		cells = h.split(l.text, cells[:0])
 		switch {
 		case h.passed(l.text, cells):
-			if isComment(l.text) && h.wordsOnly(h.split(stripComment(l.text), cells[:0])) {
+			if isComment(l.text) && h.wordsOnly(h.split(stripComment(l.text), cells[:0])) || h.numericColumns() == 1 && isEntry(l.text) {
 				first, rows = -1, 0
 			}
 		case h.fits(cells):

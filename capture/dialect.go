@@ -60,17 +60,20 @@ func (d dialect) split(line []byte, cells []cell) []cell {
 }
 
 // undress takes off what programs put around the numbers of a row: (1.5, 2.5),
-// [1.5, 2.5], or 1.5, 2.5;
+// [1.5, 2.5], [[1.5 2.5], or 1.5, 2.5;
 func (d dialect) undress(line []byte) []byte {
 	n := len(line)
 	if n < 2 || line[n-1]-'0' <= 9 {
 		return line
 	}
-	bare := bytes.TrimRight(line, " \t,;")
-	if m := len(bare); m > 1 {
-		switch string([]byte{bare[0], bare[m-1]}) {
-		case "[]", "()", "{}":
-			return bare[1 : m-1]
+	bare := bytes.Trim(line, " \t,;")
+	if m := len(bare); m > 1 && bytes.IndexByte([]byte("[({"), bare[0]) >= 0 && bytes.IndexByte([]byte("])}"), bare[m-1]) >= 0 {
+		inner := bytes.TrimRight(bytes.TrimLeft(bare, "[({ \t"), "])} \t")
+		if !bytes.ContainsAny(inner, "])}") {
+			return inner
+		}
+		if bare = bare[1 : m-1]; bytes.IndexAny(bare, "])}") > bytes.IndexAny(bare, "[({") {
+			return bare // its names have brackets of their own
 		}
 	}
 	if last := line[n-1]; (last == ';' || last == ',') && last != d.delim && last != d.mark && bytes.IndexByte(line, last) == n-1 {

@@ -102,9 +102,9 @@ func (h *head) countsRows(col int) bool {
 	return h.look(col).counts()
 }
 
-// readBelow reads entries whose key stands in the names row and whose value
+// readBelowNames reads entries whose key stands in the names row and whose value
 // stands below it, in the units row or the first row of samples.
-func (p *preamble) readBelow(h *head, names int, header []cell) {
+func (p *preamble) readBelowNames(h *head, names int, header []cell) {
 	for col, c := range header {
 		if c.blank() || isDelta(toUTF8(c.text), header) {
 			continue

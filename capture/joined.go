@@ -1,7 +1,6 @@
 package capture
 
 import (
-	"bytes"
 	"math"
 	"slices"
 	"strings"
@@ -10,31 +9,30 @@ import (
 // A stamp may stand in several columns: a date, a clock time, AM or PM, and a
 // fraction of the second.
 
-// stampParts are the columns, from 0, that belong to the clock time between or
-// beside them; -1 where there is none.
+// stampParts are the columns, from 0, whose texts make a date and clock time, and
+// what stands between them when they are joined.
 type stampParts struct {
-	date, noon, fraction int
-	shift                int // power of ten of the fraction's unit in seconds
+	columns  []int
+	between  string // a byte for each column but the last
+	fraction int    // column of a fraction of the second, -1: none
+	shift    int    // power of ten of the fraction's unit in seconds
 }
 
-// all are the columns that there are.
-func (s *stampParts) all() []int {
-	return slices.DeleteFunc([]int{s.date, s.noon, s.fraction}, func(i int) bool { return i < 0 })
-}
-
-// stampText is the date and clock time of a row whose clock time is in column k:
-// the words of several columns are joined by a blank.
+// text is the date and clock time of a row; without parts it stands in column k.
 func (s *stampParts) text(cells []cell, k int) []byte {
 	if s == nil {
 		return cells[k].text
 	}
-	var words [][]byte
-	for _, i := range []int{s.date, k, s.noon} {
-		if i >= 0 && i < len(cells) {
-			words = append(words, cells[i].text)
+	var joined []byte
+	for n, i := range s.columns {
+		if n > 0 {
+			joined = append(joined, s.between[n-1])
+		}
+		if i < len(cells) {
+			joined = append(joined, cells[i].text...)
 		}
 	}
-	return bytes.Join(words, []byte{' '})
+	return joined
 }
 
 // shown is the stamp as it is printed.
@@ -66,36 +64,115 @@ func (d dialect) stamp(cells []cell, k int, s *stampParts, dayFirst bool) (stamp
 
 // joinStamps finds the columns that belong to those of clock times.
 func joinStamps(h *head, cols []column) {
+	joinCalendar(h, cols)
 	for k := range cols {
 		if cols[k].kind != kindStamp {
 			continue
 		}
-		s := &stampParts{date: -1, noon: -1, fraction: -1}
-		if !h.every(k, func(text []byte) bool { t, _ := parseStamp(text, false); return t.period == 0 }) {
-			s.date = h.beside(cols, k, isDate)
+		s := cols[k].parts
+		if s == nil {
+			s = h.wordsBeside(cols, k)
 		}
-		next := max(k, s.date) + 1
-		if next < len(cols) && h.beside(cols, next-1, isNoon) == next {
-			s.noon = next
-			next++
-		}
-		if next < len(cols) && h.isFraction(cols, k, next, s) {
+		s.fraction = -1
+		h.join(cols, k, s)
+		if next := max(k, s.columns[len(s.columns)-1]) + 1; next < len(cols) && h.isFraction(cols, k, next, s) {
 			s.fraction = next
+			h.join(cols, k, s)
 		}
-		if len(s.all()) == 0 {
-			continue
+		if len(s.columns) == 1 && s.fraction < 0 {
+			cols[k].parts = nil
 		}
-		cols[k].parts = s
-		for _, i := range s.all() {
+	}
+}
+
+// wordsBeside finds date and AM or PM beside the clock times of column k.
+func (h *head) wordsBeside(cols []column, k int) *stampParts {
+	s := &stampParts{columns: []int{k}}
+	last := k
+	if !h.every(k, func(text []byte) bool { t, _ := parseStamp(text, false); return t.period == 0 }) {
+		if date := h.beside(cols, k, isDate); date >= 0 {
+			s.columns, s.between = []int{date, k}, " "
+			last = max(last, date)
+		}
+	}
+	if noon := last + 1; noon < len(cols) && h.beside(cols, last, isNoon) == noon {
+		s.columns, s.between = append(s.columns, noon), s.between+" "
+	}
+	return s
+}
+
+// join makes the columns of s parts of the stamps of column k.
+func (h *head) join(cols []column, k int, s *stampParts) {
+	cols[k].kind, cols[k].parts = kindStamp, s
+	for _, i := range append([]int{s.fraction}, s.columns...) {
+		if i >= 0 && i != k {
 			cols[i].part = true
 			cols[i].is(RoleTime, "it goes with the clock times of column %d", k+1)
 		}
-		for i, r := range h.sample {
-			if t, ok := h.stamp(r.cells, k, s, false); ok && k < len(r.cells) {
-				cols[k].values[i] = t.since(0)
-			}
+	}
+	for i, r := range h.sample {
+		cols[k].values[i] = math.NaN()
+		if t, ok := h.stamp(r.cells, k, s, false); ok && k < len(r.cells) {
+			cols[k].values[i] = t.since(0)
 		}
 	}
+}
+
+// calendar are the names of columns of numbers that make a date or a clock time, in
+// order, each with its largest number.
+var calendar = []struct {
+	names string
+	most  float64
+}{
+	{" year yyyy ", 9999}, {" month mon mm ", 12}, {" day dd ", 31},
+	{" hour hours hr hh h ", 24}, {" minute minutes min mm m ", 60}, {" second seconds sec ss s ", 61},
+}
+
+// joinCalendar finds hours, minutes and seconds in columns of their own, with year,
+// month and day before them or a date, and dates and times as numbers: 20310304,
+// 115930.
+func joinCalendar(h *head, cols []column) {
+	is := func(i, field int) bool {
+		c := &cols[i]
+		lo, hi := extremes(c.values)
+		return c.kind == kindNumber && c.Role == "" && strings.Contains(calendar[field].names, " "+fold(c.Name)+" ") &&
+			lo >= 0 && hi <= calendar[field].most && (c.whole || field == 5)
+	}
+	three := func(i, field int) bool {
+		return i >= 0 && i+2 < len(cols) && is(i, field) && is(i+1, field+1) && is(i+2, field+2)
+	}
+	for i := range cols {
+		switch {
+		case three(i, 3) && three(i-3, 0):
+			h.join(cols, i+2, &stampParts{columns: []int{i - 3, i - 2, i - 1, i, i + 1, i + 2}, between: "-- ::", fraction: -1})
+		case three(i, 3):
+			s := &stampParts{columns: []int{i, i + 1, i + 2}, between: "::", fraction: -1}
+			if date := h.beside(cols, i, isDate); date == i-1 && date >= 0 {
+				s.columns, s.between = append([]int{date}, s.columns...), " "+s.between
+			}
+			h.join(cols, i+2, s)
+		case i > 0 && (dateName(cols[i-1].Name) || cols[i-1].Name == "") && h.compact(cols, i-1, i):
+			h.join(cols, i, &stampParts{columns: []int{i - 1, i}, between: " ", fraction: -1})
+		}
+	}
+}
+
+// compact reports columns of numbers that are dates and clock times without strokes.
+func (h *head) compact(cols []column, date, clock int) bool {
+	if cols[date].kind != kindNumber || cols[clock].kind != kindNumber || !cols[date].whole {
+		return false
+	}
+	s := &stampParts{columns: []int{date, clock}, between: " ", fraction: -1}
+	good, rising, last := 0, 0, math.Inf(-1)
+	h.eachRow(func(_ line, cells []cell) {
+		if t, ok := h.stamp(cells, clock, s, false); ok {
+			if good++; t.since(0) > last {
+				rising++
+			}
+			last = t.since(0)
+		}
+	})
+	return few(len(h.sample)-good, len(h.sample)) && few(good-rising, good)
 }
 
 // every reports that the cells of a column in the first rows are as asked, all but

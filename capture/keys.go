@@ -1,6 +1,9 @@
 package capture
 
-import "strings"
+import (
+	"bytes"
+	"strings"
+)
 
 // A meaning is what an entry of a preamble tells.
 type meaning int
@@ -19,6 +22,7 @@ const (
 	meansDivision
 	meansDivisionCodes
 	meansZeroCode
+	meansOther // nothing that is wanted
 )
 
 // meanings gives the meaning of the keys of preambles, folded.
@@ -27,18 +31,19 @@ var meanings = map[string]meaning{}
 func init() {
 	for m, keys := range map[meaning]string{
 		meansInterval: `sampleinterval samplinginterval sampleperiod samplingperiod samplingtime sampletime timeinterval
-			timepersample secondspersample timestep timeincrement timedelta increment xincrement xinc xincr incr horizontalinterval deltat δt dt
+			timepersample secondspersample timestep timeincrement timedelta increment xincrement xinc xincr incr horizontalinterval deltat δt dt deltax xdelta
 			ts interval sp samplespacing timespacing tinc hresolution timeresolution
 			abtastintervall abtastzeit abtastperiode périodeéchantillonnage périodedéchantillonnage`,
 		meansRate: `samplerate samplingrate samplefrequency samplingfrequency samplingfreq fs samplespersecond sr acquisitionrate sampling
 			abtastrate abtastfrequenz fréquencedéchantillonnage`,
 		meansStart:     `start starttime t0 x0 tstart xstart tzero xzero xorigin timeorigin timezero firstsample timeoffirstsample horizontalstart xfirst`,
 		meansTrigger:   `triggerpoint triggersample triggerindex triggerposition pretriggersamples pretriggerpoints`,
-		meansTimeUnit:  `horizontalunits horizontalunit timeunit timeunits xunit xunits timebaseunit unitoftime`,
-		meansValueUnit: `verticalunits verticalunit unit units yunit yunits voltageunit valueunit amplitudeunit channelunit einheit unité`,
+		meansTimeUnit:  `horizontalunits horizontalunit timeunit timeunits xunit xunits timebaseunit unitoftime xunitlabel`,
+		meansValueUnit: `verticalunits verticalunit unit units yunit yunits voltageunit valueunit amplitudeunit channelunit yunitlabel unitlabel einheit unité`,
 		meansSource:    `source channel trace channelname tracename signal kanal`,
 		meansCount:     `recordlength points samples numberofpoints numberofsamples recordsize memorylength npoints datapoints numpoints`,
 		meansScale:     `ymult ymultiplier yincrement yinc lsb lsbsize verticalmultiplier countscale`,
+		meansOther:     `xdimension ydimension xquantity yquantity dimension`,
 		meansZeroCode:  `zerocode zerocount zerocounts codeofzero codeatzero countsatzero zerovoltcode zerovoltcount zerolevelcode zerolevelcount zerolsb`,
 	} {
 		for _, k := range strings.Fields(keys) {
@@ -73,6 +78,13 @@ func readKey(text string) (e entry, rest string, ok bool) {
 			return entry{}, "", false
 		}
 	}
+}
+
+// isEntry reports a comment that tells something as preambles do: # rows: 60. Where no
+// time falls, it is all that tells the next table from the rows above.
+func isEntry(text []byte) bool {
+	key, _, found := bytes.Cut(stripComment(text), []byte{':'})
+	return found && isComment(text) && len(key) > 1 && len(key) < 30 && key[0]|0x20 >= 'a' && key[0]|0x20 <= 'z'
 }
 
 func isUnit(text string) bool {

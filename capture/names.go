@@ -22,7 +22,7 @@ func findNames(h *head, p *preamble) heading {
 	below := 0 // lines of words between this one and the samples
 	for i := h.first - 1; i >= 0 && found < certain; i-- {
 		cells := h.headingCells(p, h.lines[i].text)
-		if ruled(cells) {
+		if ruled(cells) || h.numericColumns() == 1 && isEntry(h.lines[i].text) {
 			continue
 		}
 		if h.unitsRow(cells) {
@@ -82,7 +82,7 @@ func (hd *heading) name(h *head, p *preamble, i int) {
 			hd.units[col] = u
 		}
 	})
-	p.readBelow(h, i, cells)
+	p.readBelowNames(h, i, cells)
 }
 
 // ruled reports a line of blank cells and strokes, as below a heading.
@@ -139,7 +139,7 @@ func (h *head) evidence(cells []cell, below int) int {
 		return 0
 	}
 	e := max(0, nearby-below)
-	says, units, sentence, filled := false, false, false, 0
+	says, units, sentence, filled, times := false, false, false, 0, 0
 	over := false // a name over a column that holds nothing
 	for col, c := range cells {
 		if c.blank() {
@@ -153,8 +153,14 @@ func (h *head) evidence(cells []cell, below int) int {
 			sentence = true
 			continue
 		}
+		if col > 0 && saysTime(text) {
+			times++
+		}
 		says = says || saysTime(text) && (below < nearby || u.base == "s" || exactTimeName(name))
 		units = units || ok
+	}
+	if times > 1 && times == filled-1 {
+		return 0 // a kind of axis, and that of each channel
 	}
 	if below >= nearby && !says && !cells[0].blank() || filled > 1 && h.numericColumns() == 1 && over {
 		return 0
@@ -181,7 +187,8 @@ func (h *head) namesRow(cells []cell) bool {
 		}
 		text := toUTF8(c.text)
 		says = says || saysTime(text)
-		if strings.HasSuffix(text, ":") || strings.ContainsRune(text, '=') || len(text) > 60 {
+		if _, value, _ := strings.Cut(text, ":"); strings.HasSuffix(text, ":") || strings.ContainsRune(text, '=') || len(text) > 60 ||
+			h.kindOf(cell{text: []byte(strings.TrimSpace(value))}).numeric() {
 			return false
 		}
 		switch k := h.kindOf(c); {

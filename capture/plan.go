@@ -22,20 +22,26 @@ type step struct {
 	to       int  // index among the values or among the times
 	axis     int  // index among the times of the one that goes with it, -1: none
 	shift    int  // power of ten from the printed unit to the base unit
-	column   int  // of a time column, from 0
-	printed  bool // its stamps are shown as they are printed
-	parts    *stampParts
+}
+
+// A stampColumn is a time column.
+type stampColumn struct {
+	column  int         // from 0
+	printed bool        // its stamps are shown to people as they are printed
+	parts   *stampParts // columns that are read with it, nil for none
 }
 
 // A plan is the fixed layout that the data pass follows.
 type plan struct {
 	dialect
 	term     byte
-	wrapped  bool // every line is in quotes as a whole
+	wrapped  bool     // every line is in quotes as a whole
+	headings []string // lines that may stand between the rows again, on every page
 	steps    []step
-	last     int // the last column that is not skipped
-	values   int // number of columns of samples
-	times    int // number of time columns
+	last     int           // the last column that is not skipped
+	values   int           // number of columns of samples
+	times    int           // number of time columns
+	stamps   []stampColumn // for each time column
 	dayFirst bool
 	zero     int64 // whole second that clock times are counted from
 }
@@ -56,7 +62,8 @@ type chunk struct {
 	holes   [][]hole // for each time column, the rows that lack it
 	missing []int    // for each column of samples
 	spans   []span
-	first   int // line of its first row
+	first   int   // line of its first row
+	fallen  []int // the time columns that fell in the row being read
 	falls   []fall
 	ends    [][2]string // for each time column, the first stamp and the last for people
 	footer  *Error      // the first line that may be a footer
@@ -82,7 +89,7 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 			ok = p.slowRow(c, c.text[i:end], line)
 			next = end + 1
 			if ok && c.partial {
-				p.acceptPart(c, at, line)
+				p.acceptPart(c, line)
 				ok = false // it is booked
 			}
 		}
@@ -92,9 +99,9 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 				c.first = line
 			}
 			c.rows++
-			p.accept(c, at, line)
+			p.accept(c)
 		}
-		if c.err != nil {
+		if c.err != nil && !p.fell(c, at, line) {
 			break
 		}
 	}
@@ -104,23 +111,20 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 	p.keepEnds(c)
 }
 
-// accept takes in the stamps of the row that starts at text[at], and notes where its
-// time is before that of the row above. It refuses other rows below what was taken
-// for a footer.
-func (p *plan) accept(c *chunk, at, line int) {
-	fell := false
+// accept takes in the stamps of a row. Where its time is before that of the row above
+// errFell says so.
+func (p *plan) accept(c *chunk) {
 	for k := range c.spans {
 		s, t := &c.spans[k], &c.now[k]
 		if s.run.goesOn(t) && s.n == s.run.n {
 			s.run.n++
 			s.n++
 		} else if !s.add(t) {
-			p.fell(c, k, at, line)
-			fell = true
+			c.fallen, c.err = append(c.fallen, k), errFell
 		}
 	}
 	if c.footer != nil {
-		c.between(fell)
+		c.between()
 	}
 }
 
@@ -190,7 +194,7 @@ func (p *plan) skipCell(b []byte, i int) int {
 
 // clockCell reads a date or clock time; -1 when there is none.
 func (p *plan) clockCell(c *chunk, s *step, i int) int {
-	if s.parts != nil {
+	if p.stamps[s.to].parts != nil {
 		return -1
 	}
 	b, end := c.text, i

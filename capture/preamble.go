@@ -2,6 +2,7 @@ package capture
 
 import (
 	"bytes"
+	"fmt"
 	"math"
 	"strings"
 )
@@ -13,6 +14,7 @@ type entry struct {
 	column int // of the key, from 0
 	unit   unit
 	values []located
+	weak   bool // its unit tells, and not its key
 }
 
 // A located value is a text and the column it stands in, from 0.
@@ -47,7 +49,7 @@ func (p *preamble) readLine(number int, cells []cell) {
 		}
 		if open == nil {
 			if e, value, ok := p.findTold(text); ok {
-				e.line, e.column, e.values = number, col, []located{{value, col}}
+				e.line, e.column, e.values, e.weak = number, col, []located{{value, col}}, true
 				p.entries = append(p.entries, e)
 			}
 		} else {
@@ -137,7 +139,7 @@ func (p *preamble) best(m meaning, col int) (of *entry, best *located) {
 			continue
 		}
 		for j := range e.values {
-			if v := &e.values[j]; best == nil || rank(v) > rank(best) {
+			if v := &e.values[j]; best == nil || of.weak && !e.weak || of.weak == e.weak && rank(v) > rank(best) {
 				of, best = e, v
 			}
 		}
@@ -220,6 +222,11 @@ func (p *preamble) interval(col int) declared {
 	if d := p.number(meansInterval, col, "s", p.timeUnit(col)); d.ok && d.value > 0 {
 		return d
 	}
+	return p.rate(col)
+}
+
+// rate is the sampling interval that the preamble declares as a rate.
+func (p *preamble) rate(col int) declared {
 	for _, base := range []string{"Sa/s", "Hz"} {
 		if d := p.number(meansRate, col, base, unit{base: base}); d.ok && d.value > 0 {
 			d.value, d.half = 1/d.value, d.half/(d.value*d.value)
@@ -227,6 +234,57 @@ func (p *preamble) interval(col int) declared {
 		}
 	}
 	return declared{}
+}
+
+// quarrel refuses an interval and a rate that contradict each other, and rates of
+// which no key tells the right one.
+func (p *preamble) quarrel(col int) *Error {
+	all := []declared{p.number(meansInterval, col, "s", p.timeUnit(col)), p.rate(col)}
+	if best, _ := p.best(meansRate, col); best != nil && best.weak {
+		for _, e := range p.entries {
+			if one := (&preamble{d: p.d, entries: []entry{e}}); e.means == meansRate {
+				all = append(all, one.rate(col))
+			}
+		}
+	}
+	var first declared
+	for _, d := range all {
+		if !d.ok || d.value <= 0 {
+			continue
+		}
+		if !first.ok {
+			first = d
+		}
+		if math.Abs(d.value-first.value) > 0.01*first.value {
+			return &Error{Err: ErrNoTime, Line: d.line, Found: fmt.Sprintf("a sampling interval of %s here and of %s in line %d", seconds(d.value), seconds(first.value), first.line),
+				Expected: "one interval, or --interval"}
+		}
+	}
+	return nil
+}
+
+// readBelow reads a line of values below a line of nothing but keys: start, increment.
+func (p *preamble) readBelow(above int, cells []cell) {
+	var keys []*entry
+	for i := range p.entries {
+		if e := &p.entries[i]; e.line == above {
+			if keys = append(keys, e); len(e.values) > 0 || e.column >= len(cells) || cells[e.column].blank() {
+				return
+			}
+		}
+	}
+	filled := 0
+	for _, c := range cells {
+		if !c.blank() {
+			filled++
+		}
+	}
+	if len(keys) < 2 || filled != len(keys) {
+		return
+	}
+	for _, e := range keys {
+		e.values = []located{{toUTF8(cells[e.column].text), e.column}}
+	}
 }
 
 // timeUnit is the unit of time the preamble names, without base when it names none.

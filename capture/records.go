@@ -21,46 +21,48 @@ type fall struct {
 // mostFalls in a block of text are no beginnings of records any more.
 const mostFalls = 256
 
-// fell books that the stamp of time column k falls in the row that starts at text[at].
-func (p *plan) fell(c *chunk, k, at, line int) {
-	s := p.timeStep(k)
-	stamps := c.spans[k].stamps
-	f := fall{line: line, column: k, t: c.now[k].seconds(), before: stamps[len(stamps)-2]}
-	found, after := seconds(f.t), seconds(f.before)
-	if s.printed {
-		found, _ = p.stampAt(c.text[at:], s)
-		after = p.stampBefore(c.text[:at], s)
+// errFell stands for the fall of a row that is not booked yet.
+var errFell = &Error{Err: ErrBackwards}
+
+// fell books the falls of the row that starts at text[at]; it reports false for any
+// other error.
+func (p *plan) fell(c *chunk, at, line int) bool {
+	if c.err != errFell {
+		return false
 	}
-	f.shown = found + " after " + after
-	if c.falls = append(c.falls, f); len(c.falls) > mostFalls {
+	for _, k := range c.fallen {
+		s := c.spans[k].stamps
+		f := fall{line: line, column: k, t: c.now[k].seconds(), before: s[len(s)-2]}
+		found, after := seconds(f.t), seconds(f.before)
+		if p.stamps[k].printed {
+			found, _ = p.stampAt(c.text[at:], k)
+			after = p.stampBefore(c.text[:at], k)
+		}
+		f.shown = found + " after " + after
+		c.falls = append(c.falls, f)
+	}
+	c.fallen, c.err = c.fallen[:0], nil
+	if len(c.falls) > mostFalls {
+		k := c.falls[0].column
 		r := records{falls: c.falls[:1], first: make([]float64, k+1)}
 		r.first[k] = math.NaN()
 		c.err = r.refusal()
 	}
+	return c.err == nil
 }
 
 // between decides what words with a row below them are: the heading of the next
 // record where the time falls, else they break the table.
-func (c *chunk) between(fell bool) {
-	if !fell {
+func (c *chunk) between() {
+	if c.err == nil {
 		c.err = c.footer
 	}
 	c.footer = nil
 }
 
-// timeStep is the step of the time column k.
-func (p *plan) timeStep(k int) *step {
-	for i := range p.steps {
-		if s := &p.steps[i]; (s.op == opTime || s.op == opClock) && s.to == k {
-			return s
-		}
-	}
-	return &step{}
-}
-
 // stampAt shows the stamp of the line that text starts with as it is printed, and
 // reports whether there is one.
-func (p *plan) stampAt(text []byte, s *step) (string, bool) {
+func (p *plan) stampAt(text []byte, k int) (string, bool) {
 	if end := bytes.IndexByte(text, p.term); end >= 0 {
 		text = text[:end]
 	}
@@ -68,23 +70,24 @@ func (p *plan) stampAt(text []byte, s *step) (string, bool) {
 		text, _ = unwrap(text)
 	}
 	cells := p.split(text, nil)
-	if s.column >= len(cells) {
+	col, parts := p.stamps[k].column, p.stamps[k].parts
+	if col >= len(cells) {
 		return "", false
 	}
-	if s.op == opClock {
-		_, ok := p.stamp(cells, s.column, s.parts, p.dayFirst)
-		return s.parts.shown(cells, s.column), ok
+	if p.steps[col].op == opClock {
+		_, ok := p.stamp(cells, col, parts, p.dayFirst)
+		return parts.shown(cells, col), ok
 	}
-	_, _, digits, _ := p.decimalOf(cells[s.column], *s)
-	return quote(string(cells[s.column].text)), digits != nil
+	_, _, digits, _ := p.decimalOf(cells[col], p.steps[col])
+	return quote(string(cells[col].text)), digits != nil
 }
 
 // stampBefore shows the last stamp in text.
-func (p *plan) stampBefore(text []byte, s *step) string {
+func (p *plan) stampBefore(text []byte, k int) string {
 	for len(text) > 0 {
 		text = text[:len(text)-1]
 		from := bytes.LastIndexByte(text, p.term) + 1
-		if shown, ok := p.stampAt(text[from:], s); ok {
+		if shown, ok := p.stampAt(text[from:], k); ok {
 			return shown
 		}
 		text = text[:from]
@@ -96,18 +99,17 @@ func (p *plan) stampBefore(text []byte, s *step) string {
 func (p *plan) keepEnds(c *chunk) {
 	c.ends = make([][2]string, p.times)
 	for k := range c.ends {
-		s := p.timeStep(k)
-		if !s.printed || c.spans[k].n == 0 {
+		if !p.stamps[k].printed || c.spans[k].n == 0 {
 			c.ends[k] = [2]string{seconds(c.spans[k].first), seconds(c.spans[k].last)}
 			continue
 		}
 		for text := c.text; len(text) > 0; text = text[bytes.IndexByte(text, p.term)+1:] {
-			if shown, ok := p.stampAt(text, s); ok {
+			if shown, ok := p.stampAt(text, k); ok {
 				c.ends[k][0] = shown
 				break
 			}
 		}
-		c.ends[k][1] = p.stampBefore(c.text, s)
+		c.ends[k][1] = p.stampBefore(c.text, k)
 	}
 }
 

@@ -89,18 +89,22 @@ func (c *column) look(d dialect, x cell) {
 
 // unitName writes a unit with its prefix.
 func unitName(u unit) string {
-	switch u.many {
-	case minute.many:
+	switch u {
+	case minute:
 		return "min"
-	case hour.many:
+	case hour:
 		return "h"
+	case day:
+		return "d"
+	case unit{base: u.base}:
+		return u.base
 	}
 	for _, p := range prefixes {
-		if p.exp == u.exp && u.base != "" {
+		if p.exp == u.exp && u.base != "" && u.many == 0 {
 			return p.text + u.base
 		}
 	}
-	return u.base
+	return fmt.Sprintf("%g %s", u.times(), u.base)
 }
 
 // assignRoles gives every column its role, from its name, unit and first

@@ -154,6 +154,10 @@ func (s *scanner) finish() (*table, error) {
 	}
 	if t.rows < fewestRows {
 		err := tooFew(t.rows)
+		if n := len(s.p.steps); n > 8*t.rows {
+			err.Found += fmt.Sprintf(" of %d cells", n)
+			err.Expected += "; samples must stand below each other"
+		}
 		err.File = s.src.name
 		return nil, err
 	}

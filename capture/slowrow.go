@@ -17,7 +17,10 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 	}
 	c.cells = p.split(text, c.cells[:0])
 	cells := c.cells
-	if p.passed(text, cells) {
+	if p.passed(text, cells) || slices.Contains(p.headings, string(text)) {
+		if p.times == 0 && isEntry(text) && c.footer == nil {
+			c.footer = &Error{Err: ErrSyntax, Line: line, Found: quote(string(text)), Expected: "a number"}
+		}
 		return false
 	}
 	if !p.findAbsent(c, cells) {
@@ -57,7 +60,7 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 			c.now[s.to] = instant{d: d, real: d.tooLong(), time: d.float(shift, digits, p.mark)}
 			c.now[s.to].d.exp += shift
 		case opClock:
-			t, _ := p.stamp(cells, k, s.parts, p.dayFirst)
+			t, _ := p.stamp(cells, k, p.stamps[s.to].parts, p.dayFirst)
 			zero := p.zero
 			if t.period > 0 {
 				zero = c.spans[s.to].anew(t, zero)
@@ -111,7 +114,7 @@ func (p *plan) badCell(c *chunk, cells []cell) (bad *Error, numbers int) {
 		}
 		var ok, found bool
 		if s.op == opClock {
-			_, ok = p.stamp(cells, k, s.parts, p.dayFirst)
+			_, ok = p.stamp(cells, k, p.stamps[s.to].parts, p.dayFirst)
 			found = ok
 		} else {
 			_, _, digits, fine := p.decimalOf(cells[k], s)
@@ -125,7 +128,7 @@ func (p *plan) badCell(c *chunk, cells []cell) (bad *Error, numbers int) {
 			if cells[k].blank() {
 				bad.Found = "an empty cell"
 			} else if s.op == opClock {
-				bad.Found = s.parts.shown(cells, k)
+				bad.Found = p.stamps[s.to].parts.shown(cells, k)
 			}
 		}
 	}

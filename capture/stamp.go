@@ -1,6 +1,8 @@
 package capture
 
 import (
+	"bytes"
+	"strconv"
 	"strings"
 	"time"
 )
@@ -18,24 +20,36 @@ func (s stamp) since(zero int64) float64 { return float64(s.second-zero) + s.fra
 
 // parseStamp reads
 //
-//	[date ('T' | blanks)] [hours:]minutes:seconds[(. | , | :)fraction] [AM | PM] [Z | (+ | -)hh:mm]
+//	[date ('T' | blanks)] [hours:]minutes:seconds[(. | , | :)fraction] [AM | PM] [zone]
 //
 // with a date of year-month-day, or of day/month/year, or of month/day/year
 // unless dayFirst; the date's separator is one of "-/.", and the month may be a
 // word. Without hours there must be a fraction, and behind a third colon it has
-// three digits or six.
+// three digits or six. A zone is Z, +hh:mm or its letters. In place of a date there may
+// be a count of days, 0 days 12:00:00, and all of it may be without strokes.
 func parseStamp(text []byte, dayFirst bool) (stamp, bool) {
 	p := stampParser{b: text}
+	before := p.accept('-') // days before
 	first, ok := p.number()
 	if !ok {
-		return stamp{}, false
+		if before {
+			return stamp{}, false
+		}
+		return p.compact()
 	}
 	var day int64
 	if p.i < len(text) && (text[p.i] == '-' || text[p.i] == '/' || text[p.i] == '.') {
-		if day, ok = p.date(first, dayFirst); !ok {
+		if day, ok = p.date(first, dayFirst); !ok || before {
 			return stamp{}, false
 		}
 		if first, ok = p.number(); !ok {
+			return stamp{}, false
+		}
+	} else if before || p.i < len(text) && text[p.i] == ' ' {
+		if day = int64(first); before {
+			day = -day
+		}
+		if first, ok = p.days(); !ok {
 			return stamp{}, false
 		}
 	}
@@ -47,6 +61,42 @@ func parseStamp(text []byte, dayFirst bool) (stamp, bool) {
 }
 
 const secondsOfDay = 86400
+
+// days reads what stands between a count of days and a clock time, and the first
+// number of this: 0 days 12:00:00.
+func (p *stampParser) days() (int, bool) {
+	rest, ok := bytes.CutPrefix(p.b[p.i:], []byte(" day"))
+	if !ok {
+		return 0, false
+	}
+	rest = bytes.TrimLeft(bytes.TrimPrefix(rest, []byte("s")), " ,+")
+	p.i, p.dated = len(p.b)-len(rest), true
+	return p.number()
+}
+
+// compact reads 20310304T115930.5Z, of which the T may be a blank or a stroke.
+func (p *stampParser) compact() (s stamp, ok bool) {
+	n := digitsAt(p.b, 0)
+	if n != 8 || len(p.b) < 10 || strings.IndexByte("Tt _-", p.b[8]) < 0 {
+		return s, false
+	}
+	date, _ := strconv.Atoi(string(p.b[:8]))
+	p.i = 9 + digitsAt(p.b, 9)
+	if p.i == 9 || p.i > 15 {
+		return s, false
+	}
+	clock, _ := strconv.Atoi(string(p.b[9:p.i]))
+	year, month, day := date/10000, date/100%100, date%100
+	hour, minute, second := clock/10000, clock/100%100, clock%100
+	if year < 1900 || month < 1 || month > 12 || day < 1 || day > 31 || hour > 24 || minute > 59 || second > 60 {
+		return s, false
+	}
+	s.second = time.Date(year, time.Month(month), day, hour, minute, second, 0, time.UTC).Unix()
+	if p.i < len(p.b) && (p.b[p.i] == '.' || p.b[p.i] == ',') {
+		s.fraction, s.places = p.fractionOf()
+	}
+	return s, p.zone(&s) && p.i == len(p.b)
+}
 
 type stampParser struct {
 	b     []byte
@@ -189,7 +239,11 @@ func (p *stampParser) fractionOf() (float64, int32) {
 
 // zone reads Z or +hh:mm and takes it off s.
 func (p *stampParser) zone(s *stamp) bool {
-	if p.accept('Z') || p.accept('z') || p.i == len(p.b) {
+	if p.i == len(p.b) {
+		return true
+	}
+	if letters := len(p.b) - p.i; letters < 6 && len(bytes.Trim(p.b[p.i:], "ABCDEFGHIJKLMNOPQRSTUVWXYZz")) == 0 {
+		p.i = len(p.b) // a zone that all stamps share changes nothing
 		return true
 	}
 	sign := int64(1)

@@ -1,5 +1,7 @@
 package capture
 
+import "math"
+
 // How the roles of columns become the steps of the data pass.
 
 // makePlan turns roles into steps of the data pass.
@@ -23,14 +25,19 @@ func (d *layoutDesign) makePlan() *Error {
 			if timed || d.plan.times > 0 {
 				continue
 			}
-			*s = step{op: opTime, to: d.plan.times, axis: d.plan.times, column: i, printed: true}
-			d.plan.times++
+			d.planStamps(s, stampColumn{column: i, printed: true})
 		case c.Role == RoleChannel:
 			d.planValue(i)
 		default:
 			continue
 		}
 		d.plan.last = i
+	}
+	if timed {
+		d.plan.headings = d.headingLines()
+		if err := d.tidy(); err != nil {
+			return err
+		}
 	}
 	d.pair()
 	if d.plan.values == 0 {
@@ -40,6 +47,17 @@ func (d *layoutDesign) makePlan() *Error {
 		return d.needInterval()
 	}
 	return nil
+}
+
+// headingLines are the lines of names and of units.
+func (d *layoutDesign) headingLines() []string {
+	var lines []string
+	for _, n := range []int{d.heading.namesLine, d.heading.unitsLine} {
+		if n > 0 {
+			lines = append(lines, string(d.head.lines[d.head.index(n)].text))
+		}
+	}
+	return lines
 }
 
 // pair tells the columns of samples which stamps go with them.
@@ -73,28 +91,37 @@ func (d *layoutDesign) planValue(i int) {
 
 // planTime settles the unit of a time column.
 func (d *layoutDesign) planTime(c *column, s *step) {
-	*s = step{op: opTime, to: d.plan.times, axis: d.plan.times, quantity: c.kind == kindQuantity, column: c.Number - 1}
-	d.plan.times++
 	if c.kind == kindStamp {
 		d.planClock(c, s)
 		d.timeWhy = "dates or clock times, counted from the first"
 		return
 	}
+	at := d.planStamps(s, stampColumn{column: c.Number - 1})
 	if c.kind == kindQuantity {
+		s.quantity = true
 		d.timeWhy = "each stamp has its unit"
 		return
 	}
 	c.unit, d.timeWhy = d.timeUnit(c)
 	c.Unit = unitName(c.unit)
 	s.shift = c.unit.exp
-	s.printed = c.unit.many > 0
+	at.printed = c.unit.many > 0
+}
+
+// planStamps makes the step of one more time column.
+func (d *layoutDesign) planStamps(s *step, at stampColumn) *stampColumn {
+	*s = step{op: opTime, to: d.plan.times, axis: d.plan.times}
+	d.plan.stamps = append(d.plan.stamps, at)
+	d.plan.times++
+	return &d.plan.stamps[len(d.plan.stamps)-1]
 }
 
 // planClock settles what a column of clock times counts from.
 func (d *layoutDesign) planClock(c *column, s *step) {
-	s.op, s.parts, s.printed = opClock, c.parts, true
-	d.plan.dayFirst = d.dayFirst(s)
-	d.plan.zero = d.firstSecond(s)
+	at := d.planStamps(s, stampColumn{c.Number - 1, true, c.parts})
+	s.op = opClock
+	d.plan.dayFirst = d.dayFirst(at)
+	d.plan.zero = d.firstSecond(at)
 }
 
 // timeUnit looks for the unit of a time column: the caller's word, the header,
@@ -112,19 +139,53 @@ func (d *layoutDesign) timeUnit(c *column) (unit, string) {
 	if u := d.preamble.timeUnit(c.Number - 1); u.base == "s" {
 		return u, "unit of time in the preamble"
 	}
+	if u, why := c.calendarUnit(); u.base == "s" {
+		d.assumed = why
+		return u, unitName(u) + " assumed"
+	}
 	decl := d.declared(c.Number - 1)
 	if exp, ok := decl.scaleOf(medianStep(c.values)); ok {
 		return unit{base: "s", exp: exp}, "unit of time implied by the declared interval of " + seconds(decl.value)
 	}
-	d.assumed = true
+	d.assumed = "seconds are assumed"
 	if _, u := lastBrackets(c.Name); u != "" {
 		d.unknown = u
 	}
 	return unit{base: "s"}, "seconds assumed"
 }
 
+// calendarUnit is the unit of numbers without one that look like dates: so many
+// milliseconds or less since 1970, or under a heading that says date the days of a
+// spreadsheet; and what is said of it.
+func (c *column) calendarUnit() (unit, string) {
+	for _, v := range c.values {
+		if math.IsNaN(v) {
+			continue
+		}
+		for _, exp := range []int{-3, -6, -9} {
+			if s := v * math.Pow10(exp); s > 5e8 && s < 5e9 { // 1985 to 2128
+				return unit{base: "s", exp: exp}, unitName(unit{base: "s", exp: exp}) + " since 1970 are assumed"
+			}
+		}
+		if v > 20000 && v < 100000 && dateName(c.Name) {
+			return day, "days are assumed, as spreadsheets count dates"
+		}
+		break
+	}
+	return unit{}, ""
+}
+
+// dateName reports a name that says date.
+func dateName(name string) bool {
+	switch fold(name) {
+	case "date", "datetime", "dateandtime", "datum", "datumzeit", "fecha", "data", "day":
+		return true
+	}
+	return false
+}
+
 // dayFirst reports dates whose first number cannot be a month.
-func (d *layoutDesign) dayFirst(s *step) bool {
+func (d *layoutDesign) dayFirst(s *stampColumn) bool {
 	first := true // common in most of the world, and of no weight within a day
 	d.head.eachRow(func(_ line, cells []cell) {
 		if s.column >= len(cells) {
@@ -142,7 +203,7 @@ func (d *layoutDesign) dayFirst(s *step) bool {
 }
 
 // firstSecond is the whole second of the first stamp of a column.
-func (d *layoutDesign) firstSecond(s *step) int64 {
+func (d *layoutDesign) firstSecond(s *stampColumn) int64 {
 	zero, found := int64(0), false
 	d.head.eachRow(func(_ line, cells []cell) {
 		if found || s.column >= len(cells) {

@@ -162,8 +162,6 @@ func (t *sweepTable) planColumns() {
 			*s = step{op: opValue, to: t.plan.values, axis: -1, quantity: c.kind == kindQuantity}
 			t.plan.values++
 		case kindStamp:
-			*s = step{to: t.plan.times, axis: t.plan.times, column: i}
-			t.plan.times++
 			t.planClock(c, s)
 			c.unit = unit{base: "s"}
 		case kindText:

@@ -26,26 +26,18 @@ func (u unit) times() float64 {
 // but time they mean something else: CH1 min, H.
 var longTimes = map[string]unit{
 	"min": minute, "mins": minute, "minute": minute, "minutes": minute,
-	"h": hour, "hr": hour, "hrs": hour, "hour": hour, "hours": hour,
+	"h": hour, "hr": hour, "hrs": hour, "hour": hour, "hours": hour, "d": day, "day": day, "days": day,
 }
 
-var minute, hour = unit{base: "s", many: 60}, unit{base: "s", many: 3600}
+var minute, hour, day = unit{base: "s", many: 60}, unit{base: "s", many: 3600}, unit{base: "s", many: secondsOfDay}
 
 // parseTimeUnit reads a unit where one of time is meant.
 func parseTimeUnit(text string) (unit, bool) {
-	if u, ok := longTimes[strings.ToLower(strings.TrimSpace(strings.Trim(strings.TrimSpace(text), "()[]")))]; ok {
+	if u, ok := longTimes[strings.ToLower(strings.TrimSpace(strings.Trim(strings.TrimSpace(text), "()[]<>{}")))]; ok {
 		return u, true
 	}
 	u, ok := parseUnit(text)
 	return u, ok && u.base == "s"
-}
-
-// unitBeside reads a unit that stands beside a name.
-func unitBeside(name, text string) (unit, bool) {
-	if u, ok := parseUnit(text); ok || !timeName(name) && meanings[fold(name)] != meansInterval {
-		return u, ok
-	}
-	return parseTimeUnit(text)
 }
 
 // prefixes; µ is the only one that a change of encoding can spoil.
@@ -60,7 +52,7 @@ var prefixes = []struct {
 // baseUnits gives the SI symbol of what files write.
 var baseUnits = map[string]string{
 	"s": "s", "sec": "s", "secs": "s", "second": "s", "seconds": "s",
-	"v": "V", "volt": "V", "volts": "V", "a": "A", "amp": "A", "amps": "A", "ampere": "A", "amperes": "A",
+	"v": "V", "volt": "V", "volts": "V", "vdc": "V", "vac": "V", "a": "A", "amp": "A", "amps": "A", "ampere": "A", "amperes": "A",
 	"hz": "Hz", "hertz": "Hz", "sa/s": "Sa/s", "s/s": "Sa/s", "sps": "Sa/s", "samples/s": "Sa/s", "pts/s": "Sa/s",
 	"samples/second": "Sa/s", "samples/sec": "Sa/s", "samples per second": "Sa/s", "sample/s": "Sa/s", "s/sec": "Sa/s", "sa/sec": "Sa/s",
 	"points/s": "Sa/s", "points/second": "Sa/s", "1/s": "Sa/s", "w": "W", "watt": "W", "ohm": "ohm", "ohms": "ohm", "ω": "ohm",
@@ -75,7 +67,7 @@ var plainUnits = map[string]string{
 
 // parseUnit reads a unit as files write it: V, mV, (mV), [µs], Volt, uS, MSa/s.
 func parseUnit(text string) (unit, bool) {
-	text = strings.TrimSpace(strings.Trim(strings.TrimSpace(text), "()[]"))
+	text = strings.TrimSpace(strings.Trim(strings.TrimSpace(text), "()[]<>{}"))
 	if text == "" || len(text) > 20 {
 		return unit{}, false
 	}
@@ -115,44 +107,6 @@ func parsePrefix(text string) (unit, bool) {
 	return unit{}, false
 }
 
-// splitUnit parts a name as printed in a header into name and unit:
-// "CH1 (mV)", "Time[us]", "U / V", "time_us", "t in ms", "in s".
-func splitUnit(text string) (name string, u unit, ok bool) {
-	text = strings.TrimSpace(text)
-	if before, inside := lastBrackets(text); inside != "" {
-		if u, ok = unitBeside(before, inside); ok {
-			return before, u, true
-		}
-	}
-	if rest, found := strings.CutPrefix(text, "in "); found {
-		if u, ok = unitBeside("time", rest); ok {
-			return "", u, true
-		}
-	}
-	for _, sep := range []string{" / ", "/", " in ", ", ", "_"} {
-		if i := strings.LastIndex(text, sep); i > 0 {
-			// V_C and TimeV_S are names, time_us and ch1_mV are name and unit:
-			// after an underscore only a unit with prefix, or the second after
-			// a word for time, is believed.
-			u, ok = unitBeside(text[:i], text[i+len(sep):])
-			if ok && (sep != "_" || u.exp != 0 || u.base == "s" && exactTimeName(text[:i])) {
-				return strings.TrimSpace(text[:i]), u, true
-			}
-		}
-	}
-	return text, unit{}, false
-}
-
-// lastBrackets parts a text that ends in brackets.
-func lastBrackets(text string) (before, inside string) {
-	for _, pair := range []string{"()", "[]"} {
-		if open := strings.LastIndexByte(text, pair[0]); open >= 0 && strings.HasSuffix(text, pair[1:]) {
-			return strings.TrimRight(text[:open], " _"), strings.TrimSpace(text[open+1 : len(text)-1])
-		}
-	}
-	return text, ""
-}
-
 // timeName reports a name that says time.
 func timeName(name string) bool {
 	w := fold(name)
@@ -162,7 +116,7 @@ func timeName(name string) bool {
 // exactTimeName reports a name that says time and nothing else.
 func exactTimeName(name string) bool {
 	switch fold(name) {
-	case "time", "times", "t", "x", "xaxis", "sec", "s", "zeit", "temps", "tiempo", "timebase", "timestamp", "clock", "second", "seconds":
+	case "time", "times", "t", "x", "xaxis", "xvalue", "xvalues", "sec", "s", "zeit", "temps", "tiempo", "timebase", "timestamp", "clock", "second", "seconds":
 		return true
 	}
 	return false
@@ -171,7 +125,7 @@ func exactTimeName(name string) bool {
 // weakTimeName reports a name that says time only when the values rise too.
 func weakTimeName(name string) bool {
 	switch fold(name) {
-	case "t", "x", "s":
+	case "t", "x", "s", "xvalue", "xvalues":
 		return true
 	}
 	return false
