@@ -18,6 +18,14 @@ func benchedOf(a *circuit.Analysis, j *circuit.Judgement) benched {
 	return b
 }
 
+// verdictOnLimits is "" without limits.
+func (b *benched) verdictOnLimits() circuit.Verdict {
+	if b.Judgement == nil {
+		return ""
+	}
+	return b.Judgement.Verdict
+}
+
 // LimitRows are the checks of the judgement.
 func (b *benched) LimitRows() []limitRow { return limitRows(b.Judgement) }
 

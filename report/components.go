@@ -181,7 +181,7 @@ func (c *Components) WriteSummary(w io.Writer, style Style) error {
 		s.unreadable(err)
 		return s.Flush()
 	}
-	s.status(c.Status(), c.verdict())
+	s.status(c.Status(), c.verdict(), c.Limits)
 	s.item("  ", prefixed(c.Device)+plural(len(c.RingDowns), "capture"))
 	if r := c.Result; r != nil {
 		s.WriteString("\n")
@@ -201,7 +201,7 @@ func (c *Components) verdict() string {
 	if c.Result == nil {
 		return clean(c.Refusal.Error(), 0)
 	}
-	return verdictOf(c.Findings()) + limitsToo(c.Limits)
+	return verdictOf(c.Findings())
 }
 
 // componentRows writes a line for each capture.

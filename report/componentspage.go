@@ -59,6 +59,7 @@ func (c *Components) page() (*componentsPage, error) {
 		benched: benchedOf(nil, c.Limits), Refused: c.Result == nil, Findings: cleaned(c.Findings()),
 		Rows: c.pageRows(), Origin: c.origin(),
 	}
+	p.judge(p.verdictOnLimits())
 	if p.Heading == "" {
 		p.Heading = plural(len(c.RingDowns), "capture") + " with parts added"
 	}

@@ -11,6 +11,9 @@ import (
 	"strings"
 	"sync"
 	"unicode"
+
+	"dieaway/decay"
+	"dieaway/decay/circuit"
 )
 
 //go:embed web/*.html
@@ -111,4 +114,18 @@ func (f *frame) write(w io.Writer, name string, p any) error {
 		return err
 	}
 	return b.Flush()
+}
+
+// judge makes the verdict on limits part of the heading: what fails is no good page,
+// however good its numbers.
+func (f *frame) judge(limits circuit.Verdict) {
+	switch {
+	case limits == "" || f.Status == string(decay.Refused):
+	case limits == circuit.Fail:
+		f.Status, f.Verdict = string(limits), "outside the limits; "+f.Status+": "+f.Verdict
+	case limits == circuit.Undecided && f.Status == string(decay.Good):
+		f.Status, f.Verdict = string(limits), "not decided by the limits; "+f.Status+": "+f.Verdict
+	default:
+		f.Verdict += "; limits: " + string(limits)
+	}
 }

@@ -8,6 +8,7 @@ import (
 	"io"
 	"time"
 
+	"dieaway/decay/circuit"
 	"dieaway/decay/quantity"
 )
 
@@ -204,7 +205,11 @@ func (h *History) WritePage(w io.Writer) error {
 		Caption: "Each entry holds its page of evidence, the result as JSON, the capture and their checksums.",
 		RowSet:  h.rows,
 	}
-	if v := first[0].Verdict; v != "" {
+	switch v := first[0].Verdict; v {
+	case "":
+	case string(circuit.Fail):
+		p.Status, p.Verdict = v, "outside the limits "+p.Verdict
+	default:
 		p.Verdict += "; limits: " + v
 	}
 	p.Title = p.Heading + " – history"

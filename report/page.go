@@ -105,6 +105,7 @@ func (r *RingDown) page(f *figure) *page {
 			Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns},
 	}
 	p.benched = benchedOf(r.Circuit, r.Limits)
+	p.judge(p.verdictOnLimits())
 	p.Title = p.Heading + " – free decay, " + p.Status
 	record := fact{"record", r.recordLine()}
 	if p.Refused {

@@ -121,7 +121,7 @@ func resonanceJSON(r circuit.Resonance) jsonResonance {
 // WriteSummary writes the plan for people.
 func (p Plan) WriteSummary(w io.Writer, style Style) error {
 	s := newSummary(w, style)
-	s.status(p.Status(), p.verdict())
+	s.status(p.Status(), p.verdict(), nil)
 	if p.Device != "" {
 		s.item("  ", clean(p.Device, nameLength))
 	}

@@ -19,7 +19,7 @@ var (
 )
 
 const (
-	captionPlanRecord = "Behind two to three time constants the ring has died, and a longer record at one rate tells hardly more; where the memory is full, the best record is about two of them long."
+	captionPlanRecord = "After two to three time constants the ring has died, and a longer record at one rate tells hardly more; where the memory is full, the best record is about two of them long."
 	captionPlanRate   = "Four times as many samples of one record halve the uncertainty, as long as each has noise of its own."
 	planPoints        = 240 // of a course
 	// planReach is how many times the uncertainty of the plan, up and down, the charts show.
@@ -39,7 +39,7 @@ func (p Plan) figures() ([]*figure, error) {
 		return nil, nil
 	}
 	record := &planPlot{p: p, time: axisScale{factor: 1, unit: "τ", places: 4}, x: func(s *plan.Setting) float64 { return s.TimeConstants },
-		title: "Uncertainty of Q against the record behind the trigger", caption: captionPlanRecord,
+		title: "Uncertainty of Q against the record after the trigger", caption: captionPlanRecord,
 		courses: []planCourse{{keyPlanRate, c.Record}, {keyPlanFull, c.Full}}, steps: c.RecordSteps}
 	rate := &planPlot{p: p, time: axisScale{factor: 1, unit: "S/s", places: 6}, x: func(s *plan.Setting) float64 { return math.Log10(s.SampleRate) },
 		title: "Uncertainty of Q against the sample rate", caption: captionPlanRate,

@@ -188,7 +188,7 @@ func (r *RingDown) verdict() string {
 	if r.refused() {
 		return "no decay that can be measured: the numbers are withheld"
 	}
-	return verdictOf(r.Findings()) + limitsToo(r.Limits)
+	return verdictOf(r.Findings())
 }
 
 // limitsToo is what a verdict says of the limits, "" without any.

@@ -130,3 +130,27 @@ func TestSetInBrowser(t *testing.T) {
 	}
 	p.quiet()
 }
+
+// TestSetHeading: the heading is the worst that is to be said of any capture, limits
+// included: numbers can be good and the device not.
+func TestSetHeading(t *testing.T) {
+	s := coils()
+	s.Rows = s.Rows[:10]
+	for _, c := range []struct {
+		verdict circuit.Verdict
+		want    string
+	}{
+		{circuit.Pass, "<strong>good</strong> <span>nothing speaks against the numbers of any; limits: pass</span>"},
+		{circuit.Undecided, "<strong>undecided</strong> <span>not decided by the limits; good: nothing speaks"},
+		{circuit.Fail, "<strong>fail</strong> <span>outside the limits; good: nothing speaks"},
+	} {
+		s.Rows[3].Verdict = c.verdict
+		var page bytes.Buffer
+		if err := s.WritePage(&page); err != nil {
+			t.Fatal(err)
+		}
+		if !strings.Contains(page.String(), c.want) {
+			t.Errorf("%s: no %q on the page", c.verdict, c.want)
+		}
+	}
+}

@@ -42,6 +42,7 @@ func (s *Set) WritePage(w io.Writer) error {
 	}
 	p := &setPage{frame: frame{Kind: "Free decays of several captures", Heading: clean(s.Heading, nameLength),
 		Status: string(s.Status()), Verdict: s.verdict(), What: s.counts() + "."}}
+	p.judge(s.limits())
 	if p.Heading == "" {
 		p.Heading = plural(len(s.Rows), "capture")
 	}
@@ -75,16 +76,20 @@ func (s *Set) WritePage(w io.Writer) error {
 
 // verdict says what is to be said of the worst of them.
 func (s *Set) verdict() string {
-	v := "is the worst of them"
 	if s.Status() == decay.Good {
-		v = "nothing speaks against the numbers of any"
+		return "nothing speaks against the numbers of any"
 	}
+	return "is the worst of them"
+}
+
+// limits is the worst verdict on the limits, "" without any.
+func (s *Set) limits() circuit.Verdict {
 	for _, worst := range []circuit.Verdict{circuit.Fail, circuit.Undecided, circuit.Pass} {
 		if slices.ContainsFunc(s.Rows, func(r *SetRow) bool { return r.Verdict == worst }) {
-			return v + "; limits: " + string(worst)
+			return worst
 		}
 	}
-	return v
+	return ""
 }
 
 func rowForPeople(r *SetRow) setRow {

@@ -7,6 +7,7 @@ import (
 
 	"dieaway/capture"
 	"dieaway/decay"
+	"dieaway/decay/circuit"
 	"dieaway/decay/quantity"
 )
 
@@ -61,14 +62,17 @@ func (s *summary) unreadable(err error) {
 }
 
 func (s *summary) head(r *RingDown) {
-	s.status(r.Status(), r.verdict())
+	s.status(r.Status(), r.verdict(), r.Limits)
 	s.item("  ", prefixed(r.Device)+r.source())
 	s.WriteString("\n")
 }
 
-// status writes the verdict on a whole result.
-func (s *summary) status(status decay.Status, verdict string) {
+// status writes the verdict on a whole result; limits is nil without any.
+func (s *summary) status(status decay.Status, verdict string, limits *circuit.Judgement) {
 	color := map[decay.Status]string{decay.Good: green, decay.Doubtful: yellow, decay.Refused: red}[status]
+	if status != decay.Refused {
+		verdict += limitsToo(limits)
+	}
 	s.item(s.paint(string(status), color)+": ", verdict)
 }
 

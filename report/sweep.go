@@ -91,7 +91,7 @@ func (r *Sweep) verdict() string {
 	if r.refused() {
 		return "no resonance that can be measured: the numbers are withheld"
 	}
-	return verdictOf(r.Findings()) + limitsToo(r.Limits)
+	return verdictOf(r.Findings())
 }
 
 // source names response and file, safe to show.

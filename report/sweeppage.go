@@ -38,6 +38,7 @@ func (r *Sweep) page() (*sweepPage, error) {
 			Layout: layoutFacts(&r.Table.Layout), Columns: r.Table.Layout.Columns},
 	}
 	p.benched = benchedOf(r.Circuit, r.Limits)
+	p.judge(p.verdictOnLimits())
 	p.Title = p.Heading + " – driven sweep, " + p.Status
 	if p.Refused {
 		p.Layout = append([]fact{{"sweep", r.rowsLine()}}, p.Layout...)

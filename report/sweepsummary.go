@@ -17,7 +17,7 @@ func (r *Sweep) WriteSummary(w io.Writer, style Style) error {
 		s.unreadable(r.Err)
 		return s.Flush()
 	}
-	s.status(r.Status(), r.verdict())
+	s.status(r.Status(), r.verdict(), r.Limits)
 	s.item("  ", prefixed(r.Device)+r.source())
 	s.WriteString("\n")
 	if r.refused() {
