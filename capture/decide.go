@@ -159,7 +159,7 @@ func midnight(c *Capture, k *clock) {
 	if last.period < secondsOfDay {
 		what = "hours pass the full hour"
 	}
-	c.note(UnevenTime, Note, fmt.Sprintf("clock times without %s; %d h are added behind it", what, last.wraps*last.period/3600),
+	c.note(UnevenTime, Note, fmt.Sprintf("clock times without %s; %d h are added after it", what, last.wraps*last.period/3600),
 		"nothing, unless the rows are out of order")
 }
 

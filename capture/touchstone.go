@@ -142,7 +142,7 @@ func (t *touchstone) optionLine(words []string, number int) error {
 			i++
 			r, err := strconv.ParseFloat(wordAt(words, i), 64)
 			if err != nil || !(r > 0) {
-				return &Error{Err: ErrSyntax, Line: number, Found: quote(wordAt(words, i)), Expected: "the reference resistance behind R"}
+				return &Error{Err: ErrSyntax, Line: number, Found: quote(wordAt(words, i)), Expected: "the reference resistance after R"}
 			}
 			t.resistance = r
 		default:

@@ -91,7 +91,7 @@ func noDecay(g *gate, d *Decay, v noise) (Finding, bool) {
 	if rate < -decaySigma*u {
 		return fault(capture.NoDecay,
 			fmt.Sprintf("The oscillation grows, by %s a cycle: this is no free decay.", percent(math.Expm1(-q.LogDecrement.Value))),
-			"Remove what feeds the circuit (an oscillating amplifier, a drive that is still building up) or set the gate behind it."), true
+			"Remove what feeds the circuit (an oscillating amplifier, a drive that is still building up), or begin the gate after it."), true
 	}
 	if rate < decaySigma*u {
 		return fault(capture.DriveOn,

@@ -94,7 +94,7 @@ func (f *ringFit) undecided() Finding {
 	if f.rival.fall {
 		return say(capture.BaselineDrift,
 			fmt.Sprintf("An exponential beside the ring, of a baseline that recovers or of an edge that is not over, is not ruled out: %s. The uncertainties span both.", then),
-			"Let the record hold more of the level behind the decay, or set the gate a little later.")
+			"Let the record hold more of the level after the decay, or set the gate a little later.")
 	}
 	return say(capture.AmplitudeDependent,
 		fmt.Sprintf("A weak dependence on the amplitude is not ruled out: %s at small amplitude. The uncertainties span both.", then),
