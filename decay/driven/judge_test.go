@@ -184,6 +184,8 @@ func TestFindings(t *testing.T) {
 		{"clean", noisy(50).span(61, 3).sweep(newRand(1)), Options{}, "good"},
 		{"narrow", noisy(50).span(61, 0.8).sweep(newRand(1)), Options{Across: capture.Capacitor}, "doubtful narrow-sweep"},
 		{"sparse", noisy(50).span(12, 4).sweep(newRand(1)), Options{Across: capture.Capacitor}, "doubtful sparse-sweep"},
+		// One row in a bandwidth and a half: a half-power width read from it would be wrong by a third.
+		{"so sparse that no half-power width is read", noisy(50).linear(9, f0-6.2*b, f0+5.8*b).sweep(newRand(1)), Options{Across: capture.Capacitor}, "doubtful sparse-sweep"},
 		{"below the peak", noisy(50).linear(61, f0-6*b, f0-2*b).sweep(newRand(1)), Options{}, "refused narrow-sweep"},
 		{"above the peak", noisy(50).linear(61, f0+2*b, f0+6*b).sweep(newRand(1)), Options{}, "refused narrow-sweep"},
 		{"flat", flat, Options{}, "refused weak-signal"},

@@ -63,10 +63,12 @@ func merged(f, m, u []float64) (fs, ms, us []float64) {
 }
 
 // readHalfPower reads peak and half-power frequencies, and returns the rows that
-// it read them from.
+// it read them from. It reads nothing where so few rows stand between the half-power
+// points that a parabola and straight lines do not follow the curve.
 func readHalfPower(f, m []float64, part capture.Part) (h halfPower, used []int) {
 	nan := math.NaN()
-	h = halfPower{nan, nan, nan, nan, nan, nan}
+	nothing := halfPower{nan, nan, nan, nan, nan, nan}
+	h = nothing
 	at := extreme(m, part)
 	if at == 0 || at == len(f)-1 {
 		return h, nil
@@ -83,8 +85,12 @@ func readHalfPower(f, m []float64, part capture.Part) (h halfPower, used []int) 
 	if h.lower, row = crossing(f, m, at, -1, level, part); row >= 0 {
 		used = append(used, row, row+1)
 	}
+	first := row
 	if h.upper, row = crossing(f, m, at, 1, level, part); row >= 0 {
 		used = append(used, row, row-1)
+	}
+	if first >= 0 && row >= 0 && row-first-1 < rowsInside {
+		return nothing, nil
 	}
 	h.q, h.bandwidth = qOf(h.lower, h.upper, part)
 	return h, distinctRows(used)
