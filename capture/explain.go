@@ -5,6 +5,7 @@ import (
 	"io"
 	"slices"
 	"strings"
+	"unicode"
 )
 
 // Explain writes what the reader understood of the file: encoding, preamble,
@@ -48,7 +49,12 @@ func (l *Layout) explain(b *strings.Builder, file, sha256 string) {
 	if l.Compressed {
 		encoding += ", compressed with gzip"
 	}
-	fmt.Fprintf(b, "%s\n", file)
+	fmt.Fprintf(b, "%s\n", strings.Map(func(c rune) rune {
+		if unicode.IsControl(c) { // would drive a terminal
+			return unicode.ReplacementChar
+		}
+		return c
+	}, shownFile(file)))
 	fmt.Fprintf(b, "  text       %s\n", encoding)
 	fmt.Fprintf(b, "  SHA-256    %s\n", sha256)
 	fmt.Fprintf(b, "  lines      %s\n", l.lines())

@@ -138,7 +138,10 @@ func (j *job) keep(m measured) error {
 		e.Sources = append(e.Sources, archive.Source{Kind: f.kind, Name: f.name, SHA256: f.sha256, Open: j.again(f.name)})
 	}
 	folder, err := archive.Add(j.archive, j.device, e)
-	if err == nil && !j.quiet && !j.json {
+	switch {
+	case err != nil && len(j.sources) != 1: // which of several
+		return fmt.Errorf("%s: %w", m.files[0].name, err)
+	case err == nil && !j.quiet && !j.json:
 		say(j.stderr, "filed "+folder)
 	}
 	return err
