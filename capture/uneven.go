@@ -166,7 +166,7 @@ func uneven(c *Capture, k *clock, a *Axis) {
 	}
 	c.note(UnevenTime, severity,
 		fmt.Sprintf("stamps are not even: steps scatter by %.2g %% of the interval of %s, at most by %.2g %%", 100*rms/k.typical, seconds(k.typical), 100*worst/k.typical),
-		"nothing if the sampling is known to jitter: the fit uses the true times")
+		"nothing, if the sampling is known to jitter: the fit uses the true times")
 }
 
 // jitter is the rms and largest departure of steps from their mean, gaps and

@@ -121,7 +121,7 @@ func (g *gate) cutCoarseTail(s series) {
 func (g *gate) coarseFinding(step float64) Finding {
 	size := g.fit.size()
 	message := sprintf("The amplitude is %s steps of the converter and what is left only %s: no noise blurs the steps; the tail below %d steps was left out.", figure(size/step, 3), figure(g.lateRMS()/step, 2), levelsTail)
-	remedy := "Use a smaller vertical range, more bits, or average so that noise of half a step blurs the levels."
+	remedy := "Use a smaller vertical range or more bits; noise of half a step would blur the levels."
 	if size > manySteps*step {
 		return note(capture.CoarseLevels, message, remedy)
 	}

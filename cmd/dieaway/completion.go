@@ -80,6 +80,13 @@ func completedCommands(commands []*cli.Command) (out []completed) {
 		}
 		out = append(out, k)
 	}
+	for i := range out {
+		if out[i].Name == "help" {
+			for _, k := range out {
+				out[i].Words = append(out[i].Words, k.Name)
+			}
+		}
+	}
 	return out
 }
 

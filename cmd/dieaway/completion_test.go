@@ -26,7 +26,7 @@ func TestBashCompletes(t *testing.T) {
 	script := printed(t, "completion", "bash")
 	for _, w := range []struct{ typed, want string }{
 		{"dieaway cr", "crosscheck"}, {"dieaway fit --mo", "--model"}, {"dieaway fit --model two", "two-mode"},
-		{"dieaway simulate s", "sweep"}, {"dieaway archive re", "rebuild"}, {"dieaway completion z", "zsh"},
+		{"dieaway simulate s", "sweep"}, {"dieaway archive re", "rebuild"}, {"dieaway completion z", "zsh"}, {"dieaway help cr", "crosscheck"},
 		{"dieaway plan --natural", "--natural-frequency"}, {"dieaway fit completion_tes", "completion_test.go"},
 	} {
 		words := strings.Fields(w.typed)
