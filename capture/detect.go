@@ -222,7 +222,7 @@ func (h *head) wordsOnly(cells []cell) bool {
 // dropNumbering takes a first row away that only numbers the columns, 0, 1, 2 or
 // 1, 2, 3: it breaks the even steps of a column below it.
 func (h *head) dropNumbering() {
-	if len(h.sample) < fewestRows || !h.numbering(h.sample[0].cells) {
+	if len(h.sample) < fewestRows || !h.numbering(h.sample[0].cells) || h.first > 0 && h.wordsOnly(h.split(h.lines[h.first-1].text, nil)) {
 		return
 	}
 	for col := range h.kinds {

@@ -22,6 +22,7 @@ const (
 	meansDivision
 	meansDivisionCodes
 	meansZeroCode
+	meansFrequencyUnit
 	meansOther // nothing that is wanted
 )
 
@@ -36,15 +37,16 @@ func init() {
 			abtastintervall abtastzeit abtastperiode périodeéchantillonnage périodedéchantillonnage`,
 		meansRate: `samplerate samplingrate samplefrequency samplingfrequency samplingfreq fs samplespersecond sr acquisitionrate sampling
 			abtastrate abtastfrequenz fréquencedéchantillonnage`,
-		meansStart:     `start starttime t0 x0 tstart xstart tzero xzero xorigin timeorigin timezero firstsample timeoffirstsample horizontalstart xfirst`,
-		meansTrigger:   `triggerpoint triggersample triggerindex triggerposition pretriggersamples pretriggerpoints`,
-		meansTimeUnit:  `horizontalunits horizontalunit timeunit timeunits xunit xunits timebaseunit unitoftime xunitlabel`,
-		meansValueUnit: `verticalunits verticalunit unit units yunit yunits voltageunit valueunit amplitudeunit channelunit yunitlabel unitlabel einheit unité`,
-		meansSource:    `source channel trace channelname tracename signal kanal`,
-		meansCount:     `recordlength points samples numberofpoints numberofsamples recordsize memorylength npoints datapoints numpoints`,
-		meansScale:     `ymult ymultiplier yincrement yinc lsb lsbsize verticalmultiplier countscale`,
-		meansOther:     `xdimension ydimension xquantity yquantity dimension`,
-		meansZeroCode:  `zerocode zerocount zerocounts codeofzero codeatzero countsatzero zerovoltcode zerovoltcount zerolevelcode zerolevelcount zerolsb`,
+		meansStart:         `start starttime t0 x0 tstart xstart tzero xzero xorigin timeorigin timezero firstsample timeoffirstsample horizontalstart xfirst`,
+		meansTrigger:       `triggerpoint triggersample triggerindex triggerposition pretriggersamples pretriggerpoints`,
+		meansTimeUnit:      `horizontalunits horizontalunit timeunit timeunits xunit xunits timebaseunit unitoftime xunitlabel`,
+		meansValueUnit:     `verticalunits verticalunit unit units yunit yunits voltageunit valueunit amplitudeunit channelunit yunitlabel unitlabel einheit unité`,
+		meansSource:        `source channel trace channelname tracename signal kanal`,
+		meansCount:         `recordlength points samples numberofpoints numberofsamples recordsize memorylength npoints datapoints numpoints`,
+		meansScale:         `ymult ymultiplier yincrement yinc lsb lsbsize verticalmultiplier countscale`,
+		meansFrequencyUnit: `frequencyunit frequencyunits unitoffrequency frequenzeinheit`,
+		meansOther:         `xdimension ydimension xquantity yquantity dimension`,
+		meansZeroCode:      `zerocode zerocount zerocounts codeofzero codeatzero countsatzero zerovoltcode zerovoltcount zerolevelcode zerolevelcount zerolsb`,
 	} {
 		for _, k := range strings.Fields(keys) {
 			meanings[k] = m

@@ -153,7 +153,7 @@ func (h *head) evidence(cells []cell, below int) int {
 			sentence = true
 			continue
 		}
-		if col > 0 && saysTime(text) {
+		if col > 0 && timeName(name) {
 			times++
 		}
 		says = says || saysTime(text) && (below < nearby || u.base == "s" || exactTimeName(name))

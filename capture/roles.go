@@ -89,7 +89,7 @@ func (c *column) look(d dialect, x cell) {
 
 // unitName writes a unit with its prefix.
 func unitName(u unit) string {
-	switch u {
+	switch u.level = 0; u {
 	case minute:
 		return "min"
 	case hour:
@@ -255,7 +255,7 @@ func small(u, values []float64) bool {
 }
 
 func words(name string) []string {
-	return strings.FieldsFunc(strings.ToLower(name), func(r rune) bool { return strings.ContainsRune(" _-.,()[]/:", r) })
+	return strings.FieldsFunc(strings.ToLower(name), func(r rune) bool { return strings.ContainsRune(" _-.,()[]{}<>/:", r) })
 }
 
 func logicName(name string) bool {
@@ -284,7 +284,7 @@ func assignDeviations(cols []column) {
 		if cols[i].Name != "" {
 			return
 		}
-		if cols[i].kind == kindNumber {
+		if cols[i].kind == kindNumber && cols[i].Role != RoleIndex {
 			numeric = append(numeric, i)
 		}
 	}

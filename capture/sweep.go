@@ -19,7 +19,7 @@ type Sweep struct {
 	Magnitude  []float64
 	Unit, Name string
 	// Decibels is true when the magnitude was printed in dB: its scatter is then
-	// in proportion to it.
+	// in proportion to it. Without Unit it is a ratio; levels (dBV, dBm) have one.
 	Decibels bool
 	// Phase of the response in radians, not unwrapped; Cartesian is true when it
 	// and Magnitude come from real and imaginary parts, whose scatter is alike.

@@ -102,7 +102,8 @@ func (s *Sweep) read(src *source, text []byte, opt SweepOptions) error {
 type sweepTable struct {
 	*layoutDesign
 	lines  []int
-	footer *Error // the first line of words below the rows
+	pairs  []complexPair // real and imaginary parts of the response, and of the source
+	footer *Error        // the first line of words below the rows
 }
 
 // readRows reads every column of numbers of the table. A sweep is short, so

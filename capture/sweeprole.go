@@ -2,7 +2,6 @@ package capture
 
 import (
 	"fmt"
-	"math"
 	"slices"
 	"strings"
 )
@@ -12,7 +11,7 @@ import (
 
 // sweepWords are the words of a name that give its column a role.
 var sweepWords = map[Role][]string{
-	RoleFrequency: {"f", "freq", "frequency", "frequencies", "hz", "khz", "mhz", "ghz", "frequenz", "fréquence"},
+	RoleFrequency: {"f", "freq", "frequency", "frequencies", "hz", "khz", "mhz", "ghz", "frequenz", "fréquence", "omega", "ω", "kreisfrequenz"},
 	RolePhase:     {"pha", "phase", "phi", "φ", "deg", "degree", "degrees", "°", "rad", "radian", "radians", "angle", "arg", "theta", "θ"},
 	RoleReal:      {"re", "real"},
 	RoleImaginary: {"im", "imag", "imaginary"},
@@ -81,11 +80,11 @@ func (c *column) sweepUnit() {
 	if fold(c.Name) == "amp" || fold(c.Name) == "a" {
 		c.unit, c.Unit = unit{}, ""
 	}
-	if c.unit.base != "" && c.unit.base != "s" {
+	if c.unit.base != "" && c.unit.base != "s" || strings.Contains(strings.ReplaceAll(strings.ToLower(c.Name), "π", "pi"), "pi rad") {
 		return
 	}
 	for _, w := range strings.FieldsFunc(c.Name, func(r rune) bool { return strings.ContainsRune(" _-.,()[]/:", r) }) {
-		if u, ok := parseUnit(w); ok && slices.Contains([]string{"Hz", "dB", "deg", "rad"}, u.base) {
+		if u, ok := parseUnit(w); ok && (u.base == "Hz" || turns[u.base] > 0 || decibels[u.base] > 0) {
 			c.unit, c.Unit = u, unitName(u)
 			return
 		}
@@ -100,7 +99,10 @@ func (t *sweepTable) assign(opt SweepOptions) error {
 	if err := t.assignAsked(opt); err != nil {
 		return err
 	}
-	t.assignNamed()
+	if err := t.assignNamed(); err != nil {
+		return err
+	}
+	t.assignCount()
 	assignDeviations(t.columns)
 	if firstWithRole(t.columns, RoleFrequency) < 0 {
 		if err := t.guessFrequency(); err != nil {
@@ -136,7 +138,7 @@ func (t *sweepTable) assignAsked(opt SweepOptions) error {
 
 // assignNamed gives roles by unit and name to columns that have none. Response
 // and reference are weighed against each other later.
-func (t *sweepTable) assignNamed() {
+func (t *sweepTable) assignNamed() error {
 	taken := func(r Role) bool { return firstWithRole(t.columns, r) >= 0 }
 	for i := range t.columns {
 		c := &t.columns[i]
@@ -150,81 +152,46 @@ func (t *sweepTable) assignNamed() {
 			c.is(RoleDeviation, "its name is %q", c.Name)
 		case of >= 0:
 			c.is(RoleDeviation, "its name is %q beside %q", c.Name, t.columns[of].Name)
-		case (c.unit.base == "Hz" || nameSays(c.Name, RoleFrequency)) && !taken(RoleFrequency):
+		case (c.unit.base == "Hz" || c.unit.base == "rad/s" || nameSays(c.Name, RoleFrequency)) && !taken(RoleFrequency):
 			c.is(RoleFrequency, "its name is %q", c.Name)
-		case (c.unit.base == "deg" || c.unit.base == "rad" || nameSays(c.Name, RolePhase)) && !taken(RolePhase):
+		case (turns[c.unit.base] > 0 || nameSays(c.Name, RolePhase)) && !taken(RolePhase):
 			c.is(RolePhase, "its name is %q", c.Name)
-		case c.unit.base == "s" || exactTimeName(c.Name) && fold(c.Name) != "x":
+		case t.isClock(i):
 			c.is(RoleTime, "its name is %q", c.Name)
-		case nameSays(c.Name, RoleReal) && !taken(RoleReal) && !taken(RoleResponse):
-			c.is(RoleReal, "its name is %q", c.Name)
-		case nameSays(c.Name, RoleImaginary) && !taken(RoleImaginary) && !taken(RoleResponse):
-			c.is(RoleImaginary, "its name is %q", c.Name)
 		case c.Name != "" && indexWord(c.Name) && c.whole:
 			c.is(RoleIndex, "its name is %q", c.Name)
 		}
 	}
-}
-
-// guessFrequency takes the first column of numbers, if they differ and are not all negative.
-func (t *sweepTable) guessFrequency() error {
+	if taken(RoleFrequency) {
+		if err := t.assignComplex(); err != nil {
+			return err
+		}
+	}
 	for i := range t.columns {
-		c := &t.columns[i]
-		if c.Role != "" {
-			continue
+		if c := &t.columns[i]; c.Role == "" && c.unit.base == "s" {
+			c.is(RoleMetadata, "a time that does not rise from row to row; not used")
 		}
-		if lo, hi := extremes(c.values); hi > max(lo, 0) {
-			c.is(RoleFrequency, "no column is named so, and it is the first of numbers")
-			return nil
-		}
-		break
 	}
-	return &Error{Err: ErrNoData, Found: "the columns " + t.listed(), Expected: "one of frequency, or --frequency"}
+	return nil
 }
 
-func extremes(v []float64) (lo, hi float64) {
-	lo, hi = math.Inf(1), math.Inf(-1)
-	for _, x := range v {
-		if !math.IsNaN(x) {
-			lo, hi = min(lo, x), max(hi, x)
-		}
-	}
-	return lo, hi
-}
-
-// assignUnnamed reads a table of three columns without names whose third is no
-// deviation as frequency, response and phase.
-func (t *sweepTable) assignUnnamed() {
-	var free []int
-	for i := range t.columns {
-		c := &t.columns[i]
-		if c.Name != "" {
-			return
-		}
-		if c.Role == "" {
-			free = append(free, i)
-		}
-	}
-	if len(free) != 2 {
-		return
-	}
-	c := &t.columns[free[1]]
-	if lo, hi := extremes(c.values); lo < 0 && hi <= 360 && lo >= -360 {
-		c.is(RolePhase, "no names; the third column, and its numbers are negative")
-	}
+// isClock reports a column of times that rise from row to row.
+func (t *sweepTable) isClock(i int) bool {
+	c := &t.columns[i]
+	rising, _ := c.rises()
+	return rising && (c.unit.base == "s" || exactTimeName(c.Name) && !weakTimeName(c.Name) || fold(c.Name) == "t")
 }
 
 // pickResponse chooses the response among the columns left, if real and
 // imaginary parts are not the response.
 func (t *sweepTable) pickResponse() {
-	re, im := firstWithRole(t.columns, RoleReal), firstWithRole(t.columns, RoleImaginary)
-	if firstWithRole(t.columns, RoleResponse) >= 0 || re >= 0 && im >= 0 {
+	if firstWithRole(t.columns, RoleResponse) >= 0 || len(t.pairs) > 0 {
 		return
 	}
-	best, rank := -1, 0
+	best, rank := -1, 0.0
 	for i := range t.columns {
 		if c := &t.columns[i]; c.Role == "" {
-			if r := c.responseRank(); r > rank {
+			if r := c.responseRank() + c.meanRank(); r > rank {
 				best, rank = i, r
 			}
 		}
@@ -234,7 +201,7 @@ func (t *sweepTable) pickResponse() {
 	}
 	c := &t.columns[best]
 	switch {
-	case rank >= rankNamed:
+	case c.responseRank() >= rankNamed || c.meanRank() > 0:
 		c.is(RoleResponse, "its name is %q", c.Name)
 	default:
 		c.is(RoleResponse, "the first column of numbers beside the frequency")
@@ -250,7 +217,15 @@ const (
 	rankRatio  = 5 // divided by the source already
 )
 
-func (c *column) responseRank() int {
+// meanRank puts a mean before what it is the mean of.
+func (c *column) meanRank() float64 {
+	if slices.ContainsFunc(words(c.Name), func(w string) bool { return slices.Contains([]string{"mean", "average", "avg", "mittelwert"}, w) }) {
+		return 0.5
+	}
+	return 0
+}
+
+func (c *column) responseRank() float64 {
 	switch {
 	case c.unit.base == "dB" || isRatio(c.Name) || slices.Contains([]string{"amp", "db"}, fold(c.Name)):
 		return rankRatio

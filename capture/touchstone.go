@@ -18,7 +18,7 @@ import (
 // line with a unit of frequency, or the keyword of version 2.
 func isTouchstone(text []byte) bool {
 	for line := range bytes.Lines(text) {
-		words := strings.Fields(strings.ToLower(stripBang(string(line))))
+		words := strings.Fields(strings.ToLower(strings.Replace(stripBang(string(line)), "#", "# ", 1)))
 		if len(words) == 0 {
 			continue
 		}

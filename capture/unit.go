@@ -12,6 +12,8 @@ type unit struct {
 	base string // "s", "V", "A", "Hz", "Sa/s", "counts", …
 	exp  int
 	many float64 // how many of the base unit it is besides: 60 for a minute; 0 stands for 1
+	// level is how a voltage was read, as a part of its peak: 2 of Vpp; 0: nothing says it.
+	level float64
 }
 
 // times is the number of base units that the unit is.
@@ -55,14 +57,19 @@ var baseUnits = map[string]string{
 	"v": "V", "volt": "V", "volts": "V", "vdc": "V", "vac": "V", "a": "A", "amp": "A", "amps": "A", "ampere": "A", "amperes": "A",
 	"hz": "Hz", "hertz": "Hz", "sa/s": "Sa/s", "s/s": "Sa/s", "sps": "Sa/s", "samples/s": "Sa/s", "pts/s": "Sa/s",
 	"samples/second": "Sa/s", "samples/sec": "Sa/s", "samples per second": "Sa/s", "sample/s": "Sa/s", "s/sec": "Sa/s", "sa/sec": "Sa/s",
-	"points/s": "Sa/s", "points/second": "Sa/s", "1/s": "Sa/s", "w": "W", "watt": "W", "ohm": "ohm", "ohms": "ohm", "ω": "ohm",
+	"points/s": "Sa/s", "points/second": "Sa/s", "1/s": "Sa/s", "w": "W", "watt": "W", "watts": "W",
+	"rad": "rad", "radian": "rad", "radians": "rad", "deg": "deg", "degree": "deg", "degrees": "deg",
+	"rad/s": "rad/s", "rad/sec": "rad/s", "radian/s": "rad/s", "radians/s": "rad/s", "radians per second": "rad/s",
+	"siemens": "S", "ohm": "ohm", "ohms": "ohm", "ω": "ohm",
 }
 
 // plainUnits take no prefix.
 var plainUnits = map[string]string{
 	"count": "counts", "counts": "counts", "code": "counts", "codes": "counts", "lsb": "counts", "adc": "counts",
 	"raw": "counts", "digits": "counts", "adc counts": "counts", "adc codes": "counts", "div": "div", "%": "%",
-	"db": "dB", "deg": "deg", "°": "deg", "degree": "deg", "degrees": "deg", "rad": "rad", "usec": "", "c": "",
+	"°": "deg", "grad": "deg", "gon": "gon", "cycle": "cycles", "cycles": "cycles", "turn": "cycles", "turns": "cycles", "rev": "cycles",
+	"db": "dB", "decibel": "dB", "decibels": "dB", "dbm": "dBm", "dbv": "dBV", "dbmv": "dBmV", "dbuv": "dBuV", "dbµv": "dBuV", "dbu": "dBu",
+	"dbc": "dBc", "dbfs": "dBFS", "dbr": "dBr", "percent": "%", "usec": "", "c": "",
 }
 
 // parseUnit reads a unit as files write it: V, mV, (mV), [µs], Volt, uS, MSa/s.
@@ -94,6 +101,36 @@ func parseUnit(text string) (unit, bool) {
 			return unit{base: base, exp: p.exp}, true
 		}
 	}
+	if over, under, found := strings.Cut(text, "/"); found {
+		return ratioUnit(over, under)
+	}
+	return levelUnit(text)
+}
+
+// ratioUnit is the unit of a voltage over a voltage or a current over a current: mV/V.
+func ratioUnit(over, under string) (unit, bool) {
+	a, ok := parseUnit(over)
+	b, too := parseUnit(under)
+	if !ok || !too || a.base != b.base || a.base != "V" && a.base != "A" {
+		return unit{}, false
+	}
+	return unit{base: "1", exp: a.exp - b.exp}, true
+}
+
+// levels are words for how a voltage was read, as parts of the peak.
+var levels = map[string]float64{"pp": 2, "p-p": 2, "vpp": 2, "pkpk": 2, "pk-pk": 2, "peaktopeak": 2, "p2p": 2, "rms": 1 / math.Sqrt2, "vrms": 1 / math.Sqrt2,
+	"eff": 1 / math.Sqrt2, "peak": 1, "pk": 1, "vpk": 1, "vp": 1}
+
+// levelUnit reads a unit of voltage or current that says how it was read: mVpp, V rms.
+func levelUnit(text string) (unit, bool) {
+	for word, level := range levels {
+		if n := len(text) - len(word); n > 0 && word[0] != 'v' && strings.EqualFold(text[n:], word) {
+			if u, ok := parseUnit(strings.TrimRight(text[:n], " _-")); ok && (u.base == "V" || u.base == "A") && u.level == 0 {
+				u.level = level
+				return u, true
+			}
+		}
+	}
 	return unit{}, false
 }
 
@@ -116,7 +153,7 @@ func timeName(name string) bool {
 // exactTimeName reports a name that says time and nothing else.
 func exactTimeName(name string) bool {
 	switch fold(name) {
-	case "time", "times", "t", "x", "xaxis", "xvalue", "xvalues", "sec", "s", "zeit", "temps", "tiempo", "timebase", "timestamp", "clock", "second", "seconds":
+	case "time", "times", "t", "x", "xaxis", "xvalue", "xvalues", "sec", "s", "zeit", "temps", "tiempo", "timebase", "timestamp", "clock", "second", "seconds", "elapsed":
 		return true
 	}
 	return false

@@ -31,7 +31,7 @@ func (d *rows) len() int { return len(d.f) }
 // newRows takes the rows that have a frequency, a response and, if there is a
 // column of them, a phase; divides by the reference, or corrects for the meter.
 func newRows(s *capture.Sweep, opt Options) *rows {
-	d := &rows{cartesian: s.Cartesian, decibels: s.Decibels, ratio: s.Decibels || s.Reference != nil, unit: s.Unit}
+	d := &rows{cartesian: s.Cartesian, decibels: s.Decibels, ratio: s.Decibels && s.Unit == "" || s.Reference != nil, unit: s.Unit}
 	for i, f := range s.Frequency {
 		if f > 0 && s.Magnitude[i] >= 0 && !math.IsInf(s.Magnitude[i], 0) && (s.Phase == nil || finite(s.Phase[i])) && (s.Reference == nil || s.Reference[i] > 0) {
 			d.from = append(d.from, i)
