@@ -23,15 +23,16 @@ type gate struct {
 }
 
 const (
-	seedsTried     = 4       // per onset
-	coreCycles     = 16      // cycles of a first fit, however many samples they take
-	coreMost       = 1 << 15 // samples of a first fit
-	deepWindow     = 1 << 16 // samples from which a gate grows fourfold
-	growRest       = 4       // share of a step below which what is left goes with it
-	tailLimit      = 12      // time constants after which nothing is left to learn
-	breakSigma     = 6       // departure that cannot be noise...
-	breakShare     = 0.03    // ...nor a model that is slightly wrong,
-	breakNeighbour = 4       // if another such sample stands less than this apart
+	seedsTried     = 4        // per onset
+	coreCycles     = 16       // cycles of a first fit, however many samples they take
+	coreMost       = 1 << 15  // samples of a first fit
+	deepWindow     = 1 << 16  // samples from which a gate grows fourfold
+	growRest       = 4        // share of a step below which what is left goes with it
+	tailLimit      = 12       // time constants after which nothing is left to learn
+	breakSigma     = 6        // departure that cannot be noise...
+	breakShare     = 0.03     // ...nor a model that is slightly wrong,
+	breakMargin    = 1.0 / 16 // cycles left out before the samples leave the fit
+	breakNeighbour = 4        // if another such sample stands less than this apart
 )
 
 // findGate finds the free decay in s: where it begins, after the edge that
@@ -127,12 +128,24 @@ func (g *gate) growForward(s series, fixedEnd bool) {
 			to = limit // rather than a last step that adds little
 		}
 		if i, broken := g.breakIn(s, g.last, to); broken && !fixedEnd {
-			g.last, g.cutAfter = i, true
+			g.last, g.cutAfter = max(g.last, g.lastBefore(s, i)), true
 			return
 		}
 		g.last = to
 		g.refit(s, coarse)
 	}
+}
+
+// lastBefore goes back from a break to where the samples begin to leave the fit, on
+// the side where they break, and a little further.
+func (g *gate) lastBefore(s series, at int) int {
+	origin, sigma := s.slice(g.first, s.len()), g.lateSigma()
+	residual := func(i int) float64 { return s.y[i] - g.fit.value(origin.position(i-g.first)) }
+	side := math.Copysign(1, residual(at))
+	for at > g.last && residual(at-1)*side > sigma {
+		at--
+	}
+	return at - int(breakMargin*g.fit.period())
 }
 
 // refit fits the window of the gate, from the last fit and with its model, to
