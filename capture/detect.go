@@ -97,7 +97,7 @@ func (h *head) endsEarly(col int) kind {
 		if k == kindMissing && n > 0 {
 			k = kind
 		}
-		if !k.numeric() || n > 0 && k != kind || n < row || col > 0 && h.kindOf(r.cells[col-1]) == kindText {
+		if !k.numeric() || n > 0 && k != kind || n < row || col > 0 && h.kindOf(r.cells[col-1]) == kindText && !isDate(r.cells[col-1].text) {
 			return kindBlank
 		}
 		kind, n = k, n+1

@@ -178,13 +178,16 @@ func (h *head) compact(cols []column, date, clock int) bool {
 // every reports that the cells of a column in the first rows are as asked, all but
 // a few that may be broken.
 func (h *head) every(col int, as func(text []byte) bool) bool {
-	not := 0
+	not, filled := 0, 0
 	h.eachRow(func(_ line, cells []cell) {
-		if col >= len(cells) || cells[col].blank() || !as(cells[col].text) {
+		if col >= len(cells) || cells[col].blank() { // of a channel that ends early
+			return
+		}
+		if filled++; !as(cells[col].text) {
 			not++
 		}
 	})
-	return few(not, len(h.sample))
+	return filled >= min(fewestRows, len(h.sample)) && few(not, filled)
 }
 
 // few of the first rows may be broken: the data pass says so.
@@ -194,7 +197,7 @@ func few(broken, rows int) bool { return 20*broken <= rows }
 // asked; -1 if there is none.
 func (h *head) beside(cols []column, k int, as func(text []byte) bool) int {
 	for _, i := range []int{k - 1, k + 1} {
-		if i >= 0 && i < len(cols) && cols[i].kind == kindText && cols[i].Role == "" && h.every(i, as) {
+		if i >= 0 && i < len(cols) && (cols[i].kind == kindText || cols[i].kind == kindBlank) && cols[i].Role == "" && h.every(i, as) {
 			return i
 		}
 	}
@@ -273,6 +276,10 @@ func (h *head) goesOn(cols []column, k int, fractions []float64, shift int) (ris
 	clock, unit := cols[k].values, math.Pow10(shift)
 	sums := make([]float64, len(clock))
 	var falls, odd, seconds, steady int
+	for len(clock) > 0 && math.IsNaN(clock[len(clock)-1]) {
+		clock = clock[:len(clock)-1] // a channel that ends early
+	}
+	sums = sums[:len(clock)]
 	for i, t := range clock {
 		f := fractions[i] * unit
 		if sums[i] = t + f; !(f >= 0 && f < 1) || i > 0 && !(sums[i] > sums[i-1]) {

@@ -24,6 +24,10 @@ type mixture struct {
 	short          int  // rows of the second channel, where it has a time column
 	last           bool // the time column is the last
 	stamped        bool // times are dates and clock times
+	parted         int  // in so many columns
+	counted        bool // no times, but a count of which every tenth is kept
+	wrapped        bool // every line is in quotes
+	long           bool // times in minutes
 	attached       bool // numbers have their units behind them
 	trailing       bool // a separator at the end of every line
 	hash           bool // the heading is a comment
@@ -91,9 +95,19 @@ func (m *mixture) choose() {
 	m.last = m.timed && !m.own && m.heading > 0 && m.some(6)
 	m.attached = !blanks && m.heading > 0 && m.some(6)
 	m.stamped = m.timed && m.heading > 0 && !blanks && !m.attached && m.some(5)
+	if m.parted = 1; m.stamped && m.heading < 5 {
+		m.parted += m.IntN(3)
+	}
+	m.counted = !m.timed && m.heading > 0 && m.some(2)
+	m.wrapped = m.some(8)
+	m.long = m.timed && !m.stamped && !m.attached && m.heading > 0 && m.some(6)
 	m.trailing = !blanks && m.some(4)
 	m.hash = m.heading > 0 && m.heading < 5 && !blanks && m.some(6)
 	m.left, m.leftNames = m.aside("left")
+	if m.counted {
+		m.left = append(m.left, func(i int) string { return fmt.Sprint(10 * i) })
+		m.leftNames = append(m.leftNames, m.one("Sample", "Index", "Point"))
+	}
 	m.right, m.rightNames = m.aside("right")
 	if !m.own {
 		m.between, m.betweenNames = m.aside("between")
@@ -129,6 +143,9 @@ func (m *mixture) compare(c *Capture) error {
 	scale, start := 1e-6, 0.0
 	if m.heading == 0 {
 		scale = 1
+	}
+	if m.long {
+		scale = 60
 	}
 	interval := 4 * scale
 	if !m.timed {

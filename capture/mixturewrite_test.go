@@ -44,7 +44,24 @@ func (m *mixture) write() {
 		m.line(cells...)
 	}
 	if m.some(8) {
-		m.line("end of record")
+		footer := "end of record"
+		if m.timed && len(m.left) == 0 && m.some(2) {
+			footer = "Mean" + m.sep + m.number("0.5")
+		}
+		m.line(footer)
+	}
+	if m.wrapped {
+		lines := strings.Split(m.text.String(), m.end)
+		m.text.Reset()
+		for i, l := range lines {
+			if l != "" {
+				l = `"` + strings.ReplaceAll(l, `"`, `""`) + `"`
+			}
+			if i > 0 {
+				m.text.WriteString(m.end)
+			}
+			m.text.WriteString(l)
+		}
 	}
 }
 
@@ -52,9 +69,16 @@ func (m *mixture) write() {
 func (m *mixture) when(row int, gone bool) string {
 	switch {
 	case gone:
-		return ""
+		return strings.Repeat(m.sep, m.parted-1)
 	case m.stamped:
-		return m.number(time.Date(2031, 3, 4, 11, 59, 59, 999_900_000, time.UTC).Add(time.Duration(row) * 4 * time.Microsecond).Format("2006-01-02 15:04:05.000000"))
+		t := time.Date(2031, 3, 4, 11, 59, 59, 999_900_000, time.UTC).Add(time.Duration(row) * 4 * time.Microsecond)
+		switch m.parted {
+		case 2:
+			return t.Format("2006-01-02") + m.sep + m.number(t.Format("15:04:05.000000"))
+		case 3:
+			return t.Format("2006-01-02") + m.sep + t.Format("15:04:05") + m.sep + fmt.Sprint(t.Nanosecond()/1000)
+		}
+		return m.number(t.Format("2006-01-02 15:04:05.000000"))
 	}
 	return m.number(m.attach(fmt.Sprintf("%.1f", float64(row-9)*4), "us"))
 }
@@ -103,10 +127,20 @@ func (m *mixture) number(printed string) string {
 
 func (m *mixture) preamble() {
 	if !m.timed && m.heading > 0 {
-		m.line(m.one("Sample Interval: 4 us", "# Sampling interval = 4.0 us", "sampled at 250 kSa/s", "Sampling Period"+m.sep+"4us", "dt = 4e-6"))
+		if m.counted {
+			m.line(m.one("Sample Interval: 400 ns", "# Sampling interval = 0.4 us", "sampled at 2.5 MSa/s", "Sampling Period"+m.sep+"400ns", "dt = 4e-7"))
+		} else {
+			m.line(m.one("Sample Interval: 4 us", "# Sampling interval = 4.0 us", "sampled at 250 kSa/s", "Sampling Period"+m.sep+"4us", "dt = 4e-6"))
+		}
 	}
 	for range m.IntN(4) * m.IntN(8) {
-		switch m.IntN(7) {
+		switch m.IntN(10) {
+		case 7:
+			m.line(m.one("Horizontal Scale: 50 us", "Time per division"+m.sep+"50us", "Time Base 50 us/div"))
+		case 8:
+			m.line(m.one("Volts per division", "V/div"), "0.5")
+		case 9:
+			m.line("Record Length", fmt.Sprint(m.n))
 		case 0:
 			m.line("Model", m.one("bench 3", "bench 4"))
 		case 1:
@@ -161,13 +195,13 @@ func (m *mixture) head() {
 			plain(m.betweenNames)
 		}
 		if m.timed && !m.last && (k == 0 || m.own) {
-			add(m.one("Time", "t", "TIME"), "us")
+			m.timeNames(add)
 		}
 		add(m.names[k], m.units[k])
 	}
 	plain(m.rightNames)
 	if m.last {
-		add("Time", "us")
+		m.timeNames(add)
 	}
 	if m.hash {
 		m.text.WriteString("# ")
@@ -175,6 +209,24 @@ func (m *mixture) head() {
 	m.line(names...)
 	if m.heading == 5 && !m.attached {
 		m.line(units...)
+	}
+}
+
+// timeNames adds the names of the columns of times.
+func (m *mixture) timeNames(add func(name, unit string)) {
+	if m.parted > 1 {
+		add("Date", "")
+	}
+	unit := "us"
+	if m.long {
+		unit = "min"
+	}
+	if m.parted > 1 || m.stamped {
+		unit = ""
+	}
+	add(m.one("Time", "t", "TIME"), unit)
+	if m.parted > 2 {
+		add("us", "")
 	}
 }
 

@@ -56,6 +56,9 @@ func (h *head) listed(p *preamble, i, evidence int) bool {
 	if i == 0 || first < 0 || h.numericColumns() < 2 {
 		return false
 	}
+	if cells := h.headingCells(p, h.lines[i].text); first < len(cells) && !cells[first].blank() && indexWord(toUTF8(cells[first].text)) {
+		return false // it says that the column counts
+	}
 	c := h.look(first)
 	rising, even := c.rises()
 	return rising && even && !c.counts() && h.evidence(h.headingCells(p, h.lines[i-1].text), 0) >= evidence
@@ -181,11 +184,14 @@ func (h *head) evidence(cells []cell, below int) int {
 // namesRow reports a line that can name the columns.
 func (h *head) namesRow(cells []cell) bool {
 	words, numbers, says := 0, 0, false
-	for _, c := range cells {
+	for i, c := range cells {
 		if c.blank() {
 			continue
 		}
 		text := toUTF8(c.text)
+		if _, _, rate := per(text); i > 0 && h.kindOf(cells[i-1]) == kindNumber && (rate || isUnit(text)) {
+			return false // so many of a unit
+		}
 		says = says || saysTime(text)
 		if _, value, _ := strings.Cut(text, ":"); strings.HasSuffix(text, ":") || strings.ContainsRune(text, '=') || len(text) > 60 ||
 			h.kindOf(cell{text: []byte(strings.TrimSpace(value))}).numeric() {

@@ -20,7 +20,7 @@ func splitUnit(text string) (name string, u unit, ok bool) {
 			return "", u, true
 		}
 	}
-	for _, sep := range []string{" / ", "/", " in ", ", ", " - ", ": ", "_", ".", "-", " "} {
+	for _, sep := range []string{" / ", " in ", "/", ", ", " - ", ": ", "_", ".", "-", " "} {
 		i := strings.LastIndex(text, sep)
 		if i <= 0 || strings.ContainsAny(text[i:], ")]}>") && !strings.ContainsAny(text[i:], "([{<") { // within brackets
 			continue

@@ -36,6 +36,7 @@ type plan struct {
 	dialect
 	term     byte
 	wrapped  bool     // every line is in quotes as a whole
+	words    []bool   // columns that hold words
 	headings []string // lines that may stand between the rows again, on every page
 	steps    []step
 	last     int           // the last column that is not skipped

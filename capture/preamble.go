@@ -65,12 +65,14 @@ func (p *preamble) findTold(text string) (e entry, value string, ok bool) {
 	for i := range w {
 		for _, try := range []string{w[i], strings.Join(w[i:min(i+2, len(w))], " ")} {
 			try = strings.TrimRight(try, ".;)")
-			if _, u, _, ok := p.d.quantity(cell{text: []byte(try)}); ok && u.base == "Sa/s" {
-				return entry{means: meansRate}, try, true
-			}
-			if _, end := scanCell([]byte(try), p.d.mark); end > 0 {
-				if e, ok := perKey(try[end:]); ok && e.means == meansScale {
-					return e, try[:end], true
+			for _, d := range []dialect{p.d, p.d.otherMark()} {
+				if _, u, _, ok := d.quantity(cell{text: []byte(try)}); ok && u.base == "Sa/s" {
+					return entry{means: meansRate}, try, true
+				}
+				if _, end := scanCell([]byte(try), d.mark); end > 0 {
+					if e, ok := perKey(try[end:]); ok && e.means == meansScale {
+						return e, try[:end], true
+					}
 				}
 			}
 		}
@@ -112,6 +114,9 @@ func stripComment(text []byte) []byte {
 // isComment reports a line that starts with a comment mark.
 func isComment(text []byte) bool {
 	text = bytes.TrimLeft(text, " \t\"")
+	if len(text) > 1 && text[0] == '%' && bytes.IndexByte([]byte(",;\t|"), text[1]) >= 0 {
+		return false // the unit of the first column
+	}
 	return len(text) > 0 && (text[0] == '#' || text[0] == '%' || text[0] == '!' || bytes.HasPrefix(text, []byte("//")))
 }
 

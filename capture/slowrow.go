@@ -29,7 +29,7 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 	bad, numbers := p.badCell(c, cells)
 	if bad != nil {
 		bad.Line = line
-		if numbers > 0 && !p.closes(cells, bad.Column-1) || !wordy(text) {
+		if numbers > 0 && !p.closes(cells) || !wordy(text) {
 			c.err = bad
 		} else if c.footer == nil {
 			c.footer = bad
@@ -71,11 +71,11 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 	return true
 }
 
-// closes reports a row whose first cell is a word in place of a number, in column
-// bad: Mean, 0.01. Below the samples it is a footer, numbers or not.
-func (p *plan) closes(cells []cell, bad int) bool {
+// closes reports a row whose first cell is a word where the table has none: Mean,
+// 0.01. Below the samples it is a footer, numbers or not.
+func (p *plan) closes(cells []cell) bool {
 	first := slices.IndexFunc(cells, func(c cell) bool { return !c.blank() })
-	if bad < 0 || first != bad || p.kindOf(cells[first]) != kindText {
+	if first < 0 || p.kindOf(cells[first]) != kindText || first < len(p.words) && p.words[first] {
 		return false
 	}
 	word := []rune(toUTF8(cells[first].text))

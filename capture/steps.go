@@ -14,6 +14,7 @@ func (d *layoutDesign) makePlan() *Error {
 		}
 	}
 	d.plan = plan{dialect: d.head.dialect, term: d.head.term, wrapped: d.head.wrapped, steps: make([]step, len(d.columns))}
+	d.plan.words = d.head.words()
 	timed := firstWithRole(d.columns, RoleTime) >= 0
 	for i := range d.columns {
 		c, s := &d.columns[i], &d.plan.steps[i]
@@ -47,6 +48,15 @@ func (d *layoutDesign) makePlan() *Error {
 		return d.needInterval()
 	}
 	return nil
+}
+
+// words tells the columns that hold words.
+func (h *head) words() []bool {
+	words := make([]bool, len(h.kinds))
+	for i, k := range h.kinds {
+		words[i] = k == kindText
+	}
+	return words
 }
 
 // headingLines are the lines of names and of units.

@@ -84,19 +84,29 @@ func (t *sweepTable) deviation(s *Sweep) {
 	}
 }
 
-// owner is the column that a column of deviations belongs to.
+// owner is the column that a column of deviations belongs to: by its name; else the
+// next to its left, unless its unit is that of the only other one with such numbers.
 func (t *sweepTable) owner(i int) int {
 	if of := deviationOf(t.columns, i); of >= 0 {
 		return of
 	}
-	for k := i - 1; k >= 0; k-- {
-		switch t.columns[k].Role {
+	left, alike, n := -1, -1, 0
+	for k := range t.columns {
+		switch c := &t.columns[k]; c.Role {
 		case RoleDeviation, RoleBlank, RoleText:
 		default:
-			return k
+			if k < i {
+				left = k
+			}
+			if unit := t.columns[i].unit.base; unit != "" && unit == c.unit.base {
+				alike, n = k, n+1
+			}
 		}
 	}
-	return -1
+	if n == 1 {
+		return alike
+	}
+	return left
 }
 
 // level is how the voltage of a column was read, 0 when nothing says it.

@@ -155,7 +155,7 @@ func (t *sweepTable) brokenSecond() *Error {
 
 // planColumns makes every column with numbers a column of values.
 func (t *sweepTable) planColumns() {
-	t.plan = plan{dialect: t.head.dialect, term: t.head.term, wrapped: t.head.wrapped, steps: make([]step, len(t.columns))}
+	t.plan = plan{dialect: t.head.dialect, term: t.head.term, wrapped: t.head.wrapped, words: t.head.words(), steps: make([]step, len(t.columns))}
 	for i := range t.columns {
 		c, s := &t.columns[i], &t.plan.steps[i]
 		switch c.kind {
