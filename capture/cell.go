@@ -13,12 +13,15 @@ const (
 	kindNumber        // 1.25E-06
 	kindQuantity      // 4.000us
 	kindStamp         // 5/7/2021 12:00:47.056
+	kindZero          // 0, with or without a unit; while the kind of a column is looked for
 	kindMissing       // ---, inf
 	kindText
 )
 
 // numeric reports a kind that has a value.
-func (k kind) numeric() bool { return k == kindNumber || k == kindQuantity || k == kindStamp }
+func (k kind) numeric() bool {
+	return k == kindNumber || k == kindQuantity || k == kindStamp || k == kindZero
+}
 
 // kindOf classifies a cell.
 func (d dialect) kindOf(c cell) kind {
@@ -81,6 +84,21 @@ func (d dialect) quantity(c cell) (decimal, unit, []byte, bool) {
 		u, ok = parsePrefix(toUTF8(rest))
 	}
 	return n, u, text[:end], ok
+}
+
+// isZero reports a cell of nothing but zeros: no unit makes a difference to it.
+func isZero(c cell) bool {
+	zero := false
+	for _, b := range c.text {
+		switch b {
+		case '0':
+			zero = true
+		case '+', '-', '.', ',':
+		default:
+			return false
+		}
+	}
+	return zero
 }
 
 // ofKind reads a number with a unit that is one only where it must be a time or a

@@ -166,13 +166,32 @@ func (d *layoutDesign) declared(col int) declared {
 	return d.preamble.interval(col)
 }
 
+// doubtInterval refuses a declared interval that may not be that of the samples.
+func (d *layoutDesign) doubtInterval(col int) *Error {
+	if n := d.preamble.number(meansSegments, col, "", unit{}); n.ok && n.value > 1 {
+		return &Error{Err: ErrNoTime, Line: n.line, Found: fmt.Sprintf("%.0f segments, and no time column that shows where they begin", n.value), Expected: "one record"}
+	}
+	if d.opt.Interval > 0 {
+		return nil
+	}
+	if err := d.preamble.quarrel(col); err != nil {
+		return err
+	}
+	first := d.declared(col)
+	n := d.preamble.number(meansDecimation, col, "", unit{})
+	index := firstWithRole(d.columns, RoleIndex)
+	if n.ok && n.value > 1 && first.ok && (index < 0 || d.columns[index].stride(2) != n.value) {
+		return &Error{Err: ErrNoTime, Line: n.line, Found: fmt.Sprintf("a decimation of %g, which the sampling interval of %s in line %d may or may not include", n.value, seconds(first.value), first.line),
+			Expected: "--interval"}
+	}
+	return nil
+}
+
 // needInterval refuses a file without time whose interval nothing gives.
 func (d *layoutDesign) needInterval() *Error {
 	col := max(0, slices.IndexFunc(d.columns, func(c column) bool { return c.Role == RoleChannel }))
-	if d.opt.Interval == 0 {
-		if err := d.preamble.quarrel(col); err != nil {
-			return err
-		}
+	if err := d.doubtInterval(col); err != nil {
+		return err
 	}
 	if d.declared(col).ok {
 		return nil

@@ -36,6 +36,7 @@ func sentence(s string) string {
 // addFindings says what is missing and what was left out.
 func (d *layoutDesign) addFindings(c *Capture, t *table) {
 	d.missing(c, t)
+	d.parted(c, t)
 	d.ignored(c)
 	if from, to := d.head.numbersAbove(); to-from >= 19 {
 		c.note(IgnoredColumns, Note, fmt.Sprintf("lines %d to %d hold numbers too and are not read; the samples begin in line %d", from, to, d.head.lines[d.head.first].number),
@@ -60,6 +61,15 @@ func (d *layoutDesign) missing(c *Capture, t *table) {
 	if n := d.preamble.number(meansCount, col, "", unit{}); n.ok && n.value > every*float64(len(c.Channels[0].Samples)) && n.value < 1e12 {
 		c.note(MissingSamples, Note, fmt.Sprintf("the preamble declares %.0f samples, and %d are there", n.value, len(c.Channels[0].Samples)),
 			"see whether the file was cut off")
+	}
+}
+
+// parted says that blank lines part samples whose time nothing gives.
+func (d *layoutDesign) parted(c *Capture, t *table) {
+	blanks := slices.DeleteFunc(slices.Compact(t.blanks), func(row int) bool { return row == 0 || row == t.rows })
+	if n := len(blanks); n > 0 && n < t.rows/4 {
+		c.note(UnevenTime, Warning, fmt.Sprintf("blank lines part the samples in %s, first before sample %d; they are read as one record without a break", plural(n, "place"), blanks[0]+1),
+			"cut the file there if each part is a record of its own")
 	}
 }
 

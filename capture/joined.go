@@ -134,9 +134,11 @@ var calendar = []struct {
 func joinCalendar(h *head, cols []column) {
 	is := func(i, field int) bool {
 		c := &cols[i]
+		if c.kind != kindNumber || c.Role != "" || !c.whole && field != 5 || !strings.Contains(calendar[field].names, " "+fold(c.Name)+" ") {
+			return false
+		}
 		lo, hi := extremes(c.values)
-		return c.kind == kindNumber && c.Role == "" && strings.Contains(calendar[field].names, " "+fold(c.Name)+" ") &&
-			lo >= 0 && hi <= calendar[field].most && (c.whole || field == 5)
+		return lo >= 0 && hi <= calendar[field].most
 	}
 	three := func(i, field int) bool {
 		return i >= 0 && i+2 < len(cols) && is(i, field) && is(i+1, field+1) && is(i+2, field+2)

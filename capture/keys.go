@@ -23,7 +23,9 @@ const (
 	meansDivisionCodes
 	meansZeroCode
 	meansFrequencyUnit
-	meansOther // nothing that is wanted
+	meansSegments   // number of records in the file
+	meansDecimation // samples taken for each that is kept
+	meansOther      // nothing that is wanted
 )
 
 // meanings gives the meaning of the keys of preambles, folded.
@@ -32,7 +34,7 @@ var meanings = map[string]meaning{}
 func init() {
 	for m, keys := range map[meaning]string{
 		meansInterval: `sampleinterval samplinginterval sampleperiod samplingperiod samplingtime sampletime timeinterval
-			timepersample secondspersample timestep timeincrement timedelta increment xincrement xinc xincr incr horizontalinterval deltat δt dt deltax xdelta
+			timepersample secondspersample timestep timeincrement timedelta increment xincrement xinc xincr incr horizontalinterval xinterval xstep xspacing deltat δt dt deltax xdelta
 			ts interval sp samplespacing timespacing tinc hresolution timeresolution
 			abtastintervall abtastzeit abtastperiode périodeéchantillonnage périodedéchantillonnage`,
 		meansRate: `samplerate samplingrate samplefrequency samplingfrequency samplingfreq fs samplespersecond sr acquisitionrate sampling
@@ -45,6 +47,8 @@ func init() {
 		meansCount:         `recordlength points samples numberofpoints numberofsamples recordsize memorylength npoints datapoints numpoints`,
 		meansScale:         `ymult ymultiplier yincrement yinc lsb lsbsize verticalmultiplier countscale`,
 		meansFrequencyUnit: `frequencyunit frequencyunits unitoffrequency frequenzeinheit`,
+		meansSegments:      `segments numberofsegments segmentcount nsegments numsegments frames numberofframes framecount numframes`,
+		meansDecimation:    `decimation decimationfactor downsampling downsample downsamplingfactor subsampling`,
 		meansOther:         `xdimension ydimension xquantity yquantity dimension`,
 		meansZeroCode:      `zerocode zerocount zerocounts codeofzero codeatzero countsatzero zerovoltcode zerovoltcount zerolevelcode zerolevelcount zerolsb`,
 	} {

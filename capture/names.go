@@ -76,6 +76,7 @@ func (hd *heading) takeUnits(h *head, p *preamble, i int) {
 func (hd *heading) name(h *head, p *preamble, i int) {
 	cells := h.headingCells(p, h.lines[i].text)
 	hd.namesLine = h.lines[i].number
+	p.entries = slices.DeleteFunc(p.entries, func(e entry) bool { return e.line == hd.namesLine && !e.weak }) // names, not keys
 	h.place(cells, func(col int, text string) {
 		name, u, ok := splitUnit(text)
 		if !ok {
@@ -185,12 +186,12 @@ func (h *head) evidence(cells []cell, below int) int {
 func (h *head) namesRow(cells []cell) bool {
 	words, numbers, says := 0, 0, false
 	for i, c := range cells {
-		if c.blank() {
-			continue
-		}
 		text := toUTF8(c.text)
 		if _, _, rate := per(text); i > 0 && h.kindOf(cells[i-1]) == kindNumber && (rate || isUnit(text)) {
 			return false // so many of a unit
+		}
+		if c.blank() || h.delim != ' ' && i < len(h.kinds) && len(cells) >= len(h.kinds) && h.kinds[i] == kindBlank && h.numericColumns() > 1 {
+			continue // what stands above nothing names nothing
 		}
 		says = says || saysTime(text)
 		if _, value, _ := strings.Cut(text, ":"); strings.HasSuffix(text, ":") || strings.ContainsRune(text, '=') || len(text) > 60 ||

@@ -7,7 +7,7 @@ import "strings"
 // splitUnit parts a name as printed in a header into name and unit:
 // "CH1 (mV)", "Time[us]", "U / V", "time_us", "t in ms", "in s", "(us) time".
 func splitUnit(text string) (name string, u unit, ok bool) {
-	text = strings.TrimSpace(text)
+	text = strings.Trim(strings.TrimSpace(text), "'‘’“”„«»")
 	for _, part := range []func(string) (string, string){lastBrackets, firstBrackets} {
 		if name, inside := part(text); inside != "" {
 			if u, ok = unitBeside(name, inside); ok {

@@ -36,6 +36,7 @@ type plan struct {
 	dialect
 	term     byte
 	wrapped  bool     // every line is in quotes as a whole
+	slow     bool     // no row is one for fastRow
 	words    []bool   // columns that hold words
 	headings []string // lines that may stand between the rows again, on every page
 	steps    []step
@@ -62,6 +63,7 @@ type chunk struct {
 	absent  []bool   // for each time column, whether it is one of them
 	holes   [][]hole // for each time column, the rows that lack it
 	missing []int    // for each column of samples
+	blanks  []int    // rows above each blank line, where nothing gives the time
 	spans   []span
 	first   int   // line of its first row
 	fallen  []int // the time columns that fell in the row being read
@@ -82,8 +84,10 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 	}
 	line := c.line
 	for i := 0; i < len(c.text); line++ {
-		at := i
-		next := p.fastRow(c, i)
+		at, next := i, -1
+		if !p.slow {
+			next = p.fastRow(c, i)
+		}
 		ok := next >= 0
 		if !ok {
 			end := i + bytes.IndexByte(c.text[i:], p.term)
@@ -195,9 +199,6 @@ func (p *plan) skipCell(b []byte, i int) int {
 
 // clockCell reads a date or clock time; -1 when there is none.
 func (p *plan) clockCell(c *chunk, s *step, i int) int {
-	if p.stamps[s.to].parts != nil {
-		return -1
-	}
 	b, end := c.text, i
 	for b[end] != p.delim && b[end] != p.term && b[end] != '\r' {
 		end++

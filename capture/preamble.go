@@ -56,6 +56,29 @@ func (p *preamble) readLine(number int, cells []cell) {
 			open.values = append(open.values, located{text, col})
 		}
 	}
+	for i := range p.entries {
+		if e := &p.entries[i]; e.line == number {
+			e.mend()
+		}
+	}
+}
+
+// mend joins values that a comma tore: 250,000 Sa/s and 4,00E-06. Those of several
+// channels have no zeros in front of their digits, and units of their own.
+func (e *entry) mend() {
+	for i := len(e.values) - 1; i > 0; i-- {
+		a, b := &e.values[i-1], e.values[i]
+		digits := digitsAt([]byte(b.text), 0)
+		rest := b.text[digits:]
+		whole := len(a.text) > 0 && digitsAt([]byte(strings.TrimLeft(a.text, "+-")), 0) == len(strings.TrimLeft(a.text, "+-"))
+		thousands := digits == 3 && len(a.text) < 4 && (b.text[0] == '0' || rest != "" && rest[0] != '.' && b.column == a.column+1)
+		exponent := digits > 0 && rest != "" && rest[0]|0x20 == 'e' && b.column == a.column+1
+		if !whole || !thousands && !exponent {
+			continue
+		}
+		a.text += "," + b.text
+		e.values = append(e.values[:i], e.values[i+1:]...)
+	}
 }
 
 // findTold looks for a sampling rate or the worth of a code in a sentence: the unit
@@ -182,8 +205,12 @@ func (p *preamble) number(m meaning, col int, base string, def unit) declared {
 	if u.base == "" {
 		u = def
 	}
+	text := []byte(strings.TrimSpace(v.text))
+	if plain, groups := dropGroups(text, ","); groups > 2 {
+		text = plain
+	}
 	for _, d := range []dialect{p.d, p.d.otherMark()} {
-		c := cell{text: []byte(strings.TrimSpace(v.text)), quoted: true}
+		c := cell{text: text, quoted: true}
 		n, digits, ok := d.number(c)
 		own := u
 		if !ok {
@@ -241,28 +268,29 @@ func (p *preamble) rate(col int) declared {
 	return declared{}
 }
 
-// quarrel refuses an interval and a rate that contradict each other, and rates of
-// which no key tells the right one.
+// quarrel refuses intervals and rates that contradict each other: of which no key
+// tells the right one, or of several channels.
 func (p *preamble) quarrel(col int) *Error {
-	all := []declared{p.number(meansInterval, col, "s", p.timeUnit(col)), p.rate(col)}
-	if best, _ := p.best(meansRate, col); best != nil && best.weak {
-		for _, e := range p.entries {
-			if one := (&preamble{d: p.d, entries: []entry{e}}); e.means == meansRate {
-				all = append(all, one.rate(col))
-			}
-		}
-	}
+	best, _ := p.best(meansRate, col)
 	var first declared
-	for _, d := range all {
-		if !d.ok || d.value <= 0 {
+	for _, e := range p.entries {
+		if e.means != meansInterval && e.means != meansRate || e.weak && (best == nil || !best.weak) {
 			continue
 		}
-		if !first.ok {
-			first = d
-		}
-		if math.Abs(d.value-first.value) > 0.01*first.value {
-			return &Error{Err: ErrNoTime, Line: d.line, Found: fmt.Sprintf("a sampling interval of %s here and of %s in line %d", seconds(d.value), seconds(first.value), first.line),
-				Expected: "one interval, or --interval"}
+		for _, v := range e.values {
+			one := e
+			one.values = []located{v}
+			d := (&preamble{d: p.d, entries: []entry{one}}).interval(col)
+			if !d.ok {
+				continue
+			}
+			if !first.ok {
+				first = d
+			}
+			if math.Abs(d.value-first.value) > 0.01*first.value {
+				return &Error{Err: ErrNoTime, Line: d.line, Found: fmt.Sprintf("a sampling interval of %s beside one of %s in line %d", seconds(d.value), seconds(first.value), first.line),
+					Expected: "one interval, or --interval"}
+			}
 		}
 	}
 	return nil

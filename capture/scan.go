@@ -18,6 +18,7 @@ type table struct {
 	spans   [][]span // for each time column, in order of the rows
 	holes   [][]hole // for each time column, the rows that lack it
 	footer  *Error   // the first line of words below the samples
+	blanks  []int    // rows above each blank line, where nothing gives the time
 }
 
 // A scanner reads a text block by block and hands the blocks to workers.
@@ -185,6 +186,9 @@ func (s *scanner) join(t *table) *Error {
 			}
 		}
 		t.addHoles(c)
+		for _, n := range c.blanks {
+			t.blanks = append(t.blanks, t.rows+n)
+		}
 		for k, n := range c.missing {
 			t.missing[k] += n
 		}

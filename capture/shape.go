@@ -99,9 +99,11 @@ func (d dialect) blockUpTo(lines []line, loose []bool) shape {
 			break
 		}
 	}
-	for i := range s.kinds {
+	for i, k := range s.kinds {
 		if s.sparse(i) {
 			s.kinds[i] = kindBlank
+		} else if k == kindZero {
+			s.kinds[i] = kindNumber
 		}
 	}
 	return s
@@ -136,6 +138,9 @@ func (s *shape) admit(cells []cell) bool {
 		if i < len(s.loose) && s.loose[i] && k != kindBlank {
 			k = kindText
 		}
+		if k == kindNumber && isZero(c) {
+			k = kindZero
+		}
 		if kinds = append(kinds, k); k.numeric() {
 			numeric++
 		} else if k == kindText {
@@ -155,7 +160,7 @@ func (s *shape) admit(cells []cell) bool {
 	for i, k := range kinds {
 		if i == len(s.kinds) {
 			s.kinds, s.full = append(s.kinds, k), append(s.full, 0)
-		} else if old := s.kinds[i]; old == kindBlank || old == kindMissing && k != kindBlank {
+		} else if old := s.kinds[i]; old == kindBlank || (old == kindMissing || old == kindZero) && k != kindBlank && k != kindMissing {
 			s.kinds[i] = k
 		}
 		if k != kindBlank {
@@ -182,6 +187,7 @@ func (s *shape) alike(kinds []kind) bool {
 	for i := range max(len(kinds), len(s.kinds)) {
 		a, b := at(s.kinds, i), at(kinds, i)
 		free := s.sparse(i) || a == kindBlank || a == kindMissing || b == kindBlank || b == kindMissing
+		free = free || a == kindZero && (b == kindNumber || b == kindQuantity) || b == kindZero && (a == kindNumber || a == kindQuantity)
 		if !free && a != b || (i >= len(kinds) || i >= len(s.kinds)) && (a.numeric() || b.numeric()) && !s.sparse(i) {
 			return false
 		}
@@ -202,7 +208,7 @@ func (s *shape) fits(cells []cell) bool {
 			return false
 		}
 		switch got := s.kindOf(cells[i]); {
-		case got == k && k.numeric(), got == kindNumber && k == kindMissing:
+		case got == k && k.numeric(), got == kindNumber && k == kindMissing, got == kindNumber && k == kindQuantity && isZero(cells[i]):
 			found++
 		case got == kindBlank || got == kindMissing:
 		default:

@@ -139,8 +139,8 @@ func TestShapesRefused(t *testing.T) {
 			"line 62: time runs backwards: found 0 s after 236 µs; the time begins anew once, expected one record: cut the file before this line"},
 		{"samples in rows", strings.Repeat("0.25,", 60) + "0\n" + strings.Repeat("0.5,", 60) + "0\n", Options{Interval: 1}, "too few samples: found 2 rows of 61 cells, expected at least 6: a decay has five unknowns; samples must stand below each other"},
 		{"two vectors", "# name: t\n# rows: 60\n" + column(s) + "\n# name: v\n# rows: 60\n" + column(func(i int) string { return ring(1, i) }), Options{Interval: 1}, `line 64: found "# name: v", expected a number`},
-		{"an interval and a rate", "Sample Interval: 4 us\nSample Rate: 1 MSa/s\nCH1 (V)\n" + column(func(i int) string { return ring(1, i) }), Options{}, "line 2: no time axis: found a sampling interval of 1 µs here and of 4 µs in line 1, expected one interval, or --interval"},
-		{"two rates", "ADC clock 1 GSa/s\ndisplay 250 kSa/s\nCH1 (V)\n" + column(func(i int) string { return ring(1, i) }), Options{}, "line 2: no time axis: found a sampling interval of 4 µs here and of 1 ns in line 1, expected one interval, or --interval"},
+		{"an interval and a rate", "Sample Interval: 4 us\nSample Rate: 1 MSa/s\nCH1 (V)\n" + column(func(i int) string { return ring(1, i) }), Options{}, "line 2: no time axis: found a sampling interval of 1 µs beside one of 4 µs in line 1, expected one interval, or --interval"},
+		{"two rates", "ADC clock 1 GSa/s\ndisplay 250 kSa/s\nCH1 (V)\n" + column(func(i int) string { return ring(1, i) }), Options{}, "line 2: no time axis: found a sampling interval of 4 µs beside one of 1 ns in line 1, expected one interval, or --interval"},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			_, err := Read(strings.NewReader(c.text), "-", c.opt)

@@ -18,6 +18,9 @@ func (p *plan) slowRow(c *chunk, text []byte, line int) bool {
 	c.cells = p.split(text, c.cells[:0])
 	cells := c.cells
 	if p.passed(text, cells) || slices.Contains(p.headings, string(text)) {
+		if p.times == 0 && allBlank(cells) {
+			c.blanks = append(c.blanks, c.rows)
+		}
 		if p.times == 0 && isEntry(text) && c.footer == nil {
 			c.footer = &Error{Err: ErrSyntax, Line: line, Found: quote(string(text)), Expected: "a number"}
 		}
@@ -92,7 +95,7 @@ func (p *plan) decimalOf(x cell, s step) (d decimal, shift int, digits []byte, o
 	if x.blank() {
 		return d, 0, nil, s.op == opValue
 	}
-	if d, digits, ok = p.number(x); ok {
+	if d, digits, ok = p.number(x); ok && (!s.quantity || isZero(x)) {
 		return d, s.shift, digits, true
 	}
 	if s.quantity {
@@ -139,6 +142,9 @@ func (p *plan) badCell(c *chunk, cells []cell) (bad *Error, numbers int) {
 }
 
 func (s step) expects() string {
+	if s.quantity {
+		return "a number with its unit"
+	}
 	switch s.op {
 	case opTime:
 		return "a time as a number"

@@ -1,6 +1,9 @@
 package capture
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // How the roles of columns become the steps of the data pass.
 
@@ -40,6 +43,8 @@ func (d *layoutDesign) makePlan() *Error {
 			return err
 		}
 	}
+	d.plan.slow = d.plan.wrapped || slices.ContainsFunc(d.plan.steps, func(s step) bool { return s.quantity }) ||
+		slices.ContainsFunc(d.plan.stamps, func(s stampColumn) bool { return s.parts != nil })
 	d.pair()
 	if d.plan.values == 0 {
 		return d.noSamples()

@@ -3,6 +3,7 @@ package capture
 import (
 	"fmt"
 	"math"
+	"strings"
 )
 
 // How much a column looks like time.
@@ -37,6 +38,8 @@ func (c *column) timeRank(first bool, decl declared) (int, string) {
 		return countTime, fmt.Sprintf("its name is %q, and its whole numbers rise by %g from row to row", c.Name, c.stride(2))
 	case first && c.mayCount() && decl.ok && c.stride(50) > 0 && !decl.like(c.stride(50)):
 		return countTime, fmt.Sprintf("whole numbers that rise by %g, which in no unit of time is the declared interval", c.stride(50))
+	case countUnit(c.Name) && c.stride(2) > 0:
+		return countTime, fmt.Sprintf("its name is %q, and whole numbers that rise by %g", c.Name, c.stride(2))
 	case says:
 		return namedTime, fmt.Sprintf("its name is %q", c.Name)
 	case rising && (even || first) && c.Name == "":
@@ -45,6 +48,16 @@ func (c *column) timeRank(first bool, decl declared) (int, string) {
 		return evenTime, "the first column of numbers, and it rises in even steps"
 	}
 	return noTime, ""
+}
+
+// countUnit reports a name whose unit is samples: time (samples).
+func countUnit(name string) bool {
+	_, inside := lastBrackets(name)
+	switch strings.ToLower(inside) {
+	case "samples", "sample", "sa", "pts", "points", "point", "index":
+		return true
+	}
+	return false
 }
 
 // rises reports values that hardly ever fall and end above their start, and

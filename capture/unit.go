@@ -49,6 +49,7 @@ var prefixes = []struct {
 }{
 	{"p", -12}, {"n", -9}, {"u", -6}, {"µ", -6}, {"μ", -6}, {"Âµ", -6}, {"?", -6}, {"\ufffd", -6}, {"m", -3}, {"U", -6}, {"N", -9}, {"k", 3}, {"K", 3}, {"M", 6}, {"G", 9},
 	{"pico", -12}, {"nano", -9}, {"micro", -6}, {"milli", -3}, {"kilo", 3}, {"mega", 6}, {"giga", 9},
+	{"мк", -6}, {"м", -3}, {"н", -9}, {"к", 3}, {"М", 6}, {"毫", -3}, {"微", -6}, {"纳", -9},
 }
 
 // baseUnits gives the SI symbol of what files write.
@@ -60,7 +61,7 @@ var baseUnits = map[string]string{
 	"points/s": "Sa/s", "points/second": "Sa/s", "1/s": "Sa/s", "w": "W", "watt": "W", "watts": "W",
 	"rad": "rad", "radian": "rad", "radians": "rad", "deg": "deg", "degree": "deg", "degrees": "deg",
 	"rad/s": "rad/s", "rad/sec": "rad/s", "radian/s": "rad/s", "radians/s": "rad/s", "radians per second": "rad/s",
-	"siemens": "S", "ohm": "ohm", "ohms": "ohm", "ω": "ohm",
+	"siemens": "S", "с": "s", "в": "V", "а": "A", "гц": "Hz", "秒": "s", "伏": "V", "安": "A", "ohm": "ohm", "ohms": "ohm", "ω": "ohm",
 }
 
 // plainUnits take no prefix.
@@ -123,6 +124,9 @@ var levels = map[string]float64{"pp": 2, "p-p": 2, "vpp": 2, "pkpk": 2, "pk-pk":
 
 // levelUnit reads a unit of voltage or current that says how it was read: mVpp, V rms.
 func levelUnit(text string) (unit, bool) {
+	if strings.IndexByte("pksfPKSF", text[len(text)-1]) < 0 { // the last letters of the words
+		return unit{}, false
+	}
 	for word, level := range levels {
 		if n := len(text) - len(word); n > 0 && word[0] != 'v' && strings.EqualFold(text[n:], word) {
 			if u, ok := parseUnit(strings.TrimRight(text[:n], " _-")); ok && (u.base == "V" || u.base == "A") && u.level == 0 {
@@ -153,7 +157,7 @@ func timeName(name string) bool {
 // exactTimeName reports a name that says time and nothing else.
 func exactTimeName(name string) bool {
 	switch fold(name) {
-	case "time", "times", "t", "x", "xaxis", "xvalue", "xvalues", "sec", "s", "zeit", "temps", "tiempo", "timebase", "timestamp", "clock", "second", "seconds", "elapsed":
+	case "time", "times", "t", "x", "xaxis", "xvalue", "xvalues", "sec", "s", "zeit", "temps", "tiempo", "timebase", "timestamp", "clock", "second", "seconds", "elapsed", "время", "时间", "時間":
 		return true
 	}
 	return false
