@@ -6,15 +6,15 @@
 // understood in a [Layout], which [Capture.Explain] prints. A text goes through
 // three steps:
 //
-//   - the head of the text decides the layout (detect.go, shape.go, preamble.go, names.go,
-//     roles.go, timecolumn.go);
+//   - the head of the text decides the layout (detect.go, shape.go, preamble.go, keys.go,
+//     names.go, nameunit.go, roles.go, timecolumn.go, joined.go, steps.go);
 //   - the data pass follows that layout over the whole text, block by block on
 //     all processors, without keeping text (plan.go, slowrow.go, scan.go, number.go). Of the
 //     time column it keeps a regression, and the stamps only where they do not
-//     lie on a line (span.go);
+//     lie on a line (span.go); where the time falls, it finds the records (records.go);
 //   - all values known, the time axis is decided, roles are corrected, and what
 //     was left out or cannot be trusted is said in findings (axis.go, decide.go, uneven.go,
-//     build.go, findings.go).
+//     codes.go, build.go, findings.go).
 package capture
 
 import "math"

@@ -72,6 +72,16 @@ func texts() []string {
 		"0,1\n" + lines(8, func(i int) string { return "\"" + at(i, 1, 0) + ".000,5\";1 234,5 mV" }),
 		"t V\n" + lines(8, func(i int) string { return at(i, 1, 0) + ",5 us 0" + at(i, 1, 0) + ",25 mV" }),
 		"1 0.1 2 0.3\n2 0.1 3 0.4\n3 0.1 1 0.2\n4 0.1 2 0.3\n5 0.1 3 0.4\n6 0.1 1 0.2\n",
+		"Sample Rate,2,500,000 Sa/s\nDecimation,10\nmV/count,20\nSample,CH1\n" + lines(8, func(i int) string { return at(i, 10, 0) + ",1" + at(i, 1, 0) }),
+		"Date,Time,ms,V\n" + lines(8, func(i int) string { return "2031-03-04,12:00:0" + at(i/2, 1, 0) + "," + at(i%2, 500, 0) + ",1.5" }),
+		"Year,Month,Day,Hour,Minute,Second,V\n" + lines(8, func(i int) string { return "2031,3,4,12,0," + at(i, 1, 0) + ",1.5" }),
+		"\"t (min),V\"\n" + lines(8, func(i int) string { return "\"" + at(i, 1, 1) + ",1.5\"" }) + "\"Mean,1.5\"\n",
+		"t,V\n" + lines(8, func(i int) string { return at(i, 1, 0) + ",1.5" }) + "t,V\n" + lines(8, func(i int) string { return at(i, 1, 0) + ",1.5" }),
+		"t,V\n" + lines(8, func(i int) string {
+			return "-1 days +23:59:5" + at(i, 1, 0) + ",0\n20310304T12000" + at(i, 1, 0) + "Z,1mV"
+		}),
+		"t,ch,V\n" + lines(8, func(i int) string { return at(i, 1, 0) + ",A,1.5\n" + at(i, 1, 0) + ",B,1.5" }),
+		"# name: t\n1\n2\n3\n4\n5\n6\n\n# name: v\n1\n2\n3\n4\n5\n6\n",
 		"\x1f\x8b\x08\x00", "PK\x03\x04", "%PDF", "", "\n\n", "a,b\n", "1\n", ",,,\n,,,\n", "time,V\n1,2\n1,3\n0,4\n",
 	}
 }

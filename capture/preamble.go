@@ -33,6 +33,7 @@ type preamble struct {
 // readLine takes in the cells of one line of metadata.
 func (p *preamble) readLine(number int, cells []cell) {
 	var open *entry
+	before := len(p.entries)
 	for col, c := range cells {
 		if c.blank() {
 			continue
@@ -56,10 +57,8 @@ func (p *preamble) readLine(number int, cells []cell) {
 			open.values = append(open.values, located{text, col})
 		}
 	}
-	for i := range p.entries {
-		if e := &p.entries[i]; e.line == number {
-			e.mend()
-		}
+	for i := range p.entries[before:] {
+		p.entries[before+i].mend()
 	}
 }
 
@@ -299,7 +298,7 @@ func (p *preamble) quarrel(col int) *Error {
 // readBelow reads a line of values below a line of nothing but keys: start, increment.
 func (p *preamble) readBelow(above int, cells []cell) {
 	var keys []*entry
-	for i := range p.entries {
+	for i := len(p.entries) - 1; i >= 0 && p.entries[i].line >= above; i-- {
 		if e := &p.entries[i]; e.line == above {
 			if keys = append(keys, e); len(e.values) > 0 || e.column >= len(cells) || cells[e.column].blank() {
 				return

@@ -125,6 +125,12 @@ func TestTouchstoneTwoPorts(t *testing.T) {
 }
 
 func FuzzReadSweep(f *testing.F) {
+	for _, head := range []string{
+		"omega (krad/s),X (V),Y (V),std (%)\n", "f,CH1 re,CH1 im,CH2 re\n", "f,level (dBm),phase (cycles),Vin (mVpp)\n", "log f,insertion loss (dB),delay (s),t\n", "",
+	} {
+		f.Add(head + lines(8, func(i int) string { return "1" + at(i, 1, 0) + ".5,2.5,0.25,1" }))
+		f.Add(head + lines(8, func(i int) string { return at(i, 1, 0) + ",-2.5,0.25,1%" }))
+	}
 	f.Add("f,out\n1,2\n2,3\n3,4\n4,3\n5,2\n")
 	f.Add("# GHz S MA R 50\n1 0.5 10\n2 0.4 20\n3 0.5 30\n4 0.4 20\n5 0.5 30\n")
 	f.Add("[Version] 2.0\n# Hz Y DB\n[Number of Ports] 2\n[Matrix Format] Upper\n[Network Data]\n1 2 3 4\n5 6 7\n")
