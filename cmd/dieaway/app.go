@@ -64,11 +64,15 @@ const arguments = "arguments"
 
 // run is the whole program: args[0] is its name. It returns the exit code.
 func run(ctx context.Context, args []string, stdin io.Reader, stdout, stderr io.Writer) int {
-	app := newApp(stdin, stdout, stderr)
+	out := &standardOutput{Writer: stdout}
+	app := newApp(stdin, out, stderr)
 	app.Metadata = map[string]any{arguments: args[1:]}
 	ordered, err := flagsFirst(args, app.Commands)
 	if err == nil {
 		err = app.RunContext(ctx, ordered)
+	}
+	if err == nil {
+		err = out.err
 	}
 	return conclude(stderr, err)
 }

@@ -12,9 +12,27 @@ import (
 	"dieaway/report"
 )
 
+// A standardOutput remembers why it could not be written: the library prints help
+// and version without looking.
+type standardOutput struct {
+	io.Writer
+	err error // the first
+}
+
+func (o *standardOutput) Write(p []byte) (int, error) {
+	n, err := o.Writer.Write(p)
+	if o.err == nil {
+		o.err = err
+	}
+	return n, err
+}
+
 // styleOf returns how a summary is to look on stdout: plain, or in the width and
 // with the colours of a terminal, unless NO_COLOR is set to anything.
 func styleOf(stdout io.Writer) report.Style {
+	if out, ok := stdout.(*standardOutput); ok {
+		stdout = out.Writer
+	}
 	file, ok := stdout.(*os.File)
 	if !ok || !term.IsTerminal(int(file.Fd())) {
 		return report.Style{}
