@@ -1,6 +1,7 @@
 package report
 
 import (
+	"cmp"
 	"encoding/csv"
 	"fmt"
 	"io"
@@ -201,29 +202,27 @@ func (s *Set) counts() string {
 	return plural(len(s.Rows), "capture") + ": " + strings.Join(words, ", ")
 }
 
-// csvHead are the columns of WriteCSV, the units in their names.
-var csvHead = []string{"file", "sha256", "status", "device", "channel", "model", "natural_frequency_hz", "u_natural_frequency_hz",
-	"damped_frequency_hz", "u_damped_frequency_hz", "time_constant_s", "u_time_constant_s", "q", "u_q", "snr_db", "limits", "findings", "error"}
+// WriteCSVHead writes the heading of a table with comma and decimal point (RFC
+// 4180), the units in the names of its columns, that [SetRow.WriteCSV] continues.
+func WriteCSVHead(w io.Writer) error {
+	return writeCSV(w, "file", "sha256", "status", "device", "channel", "model", "natural_frequency_hz", "u_natural_frequency_hz",
+		"damped_frequency_hz", "u_damped_frequency_hz", "time_constant_s", "u_time_constant_s", "q", "u_q", "snr_db", "limits", "findings", "error")
+}
 
-// WriteCSV writes the set as a table with comma and decimal point (RFC 4180), one
-// row for each file; what is not known is left empty.
-func (s *Set) WriteCSV(w io.Writer) error {
+// WriteCSV writes the row of one file; what is not known is left empty.
+func (r *SetRow) WriteCSV(w io.Writer) error {
+	cells := []string{r.File, r.SHA256, r.word(), r.Device, r.Channel, r.Model}
+	for _, q := range []quantity.Quantity{r.NaturalFrequency, r.DampedFrequency, r.TimeConstant, r.Q} {
+		cells = append(cells, csvNumber(q.Value), csvNumber(q.U))
+	}
+	return writeCSV(w, append(cells, csvNumber(r.SNR), string(r.Verdict), strings.Join(r.Codes, " "), r.Err)...)
+}
+
+func writeCSV(w io.Writer, cells ...string) error {
 	out := csv.NewWriter(w)
-	if err := out.Write(csvHead); err != nil {
-		return err
-	}
-	for _, r := range s.Rows {
-		cells := []string{r.File, r.SHA256, r.word(), r.Device, r.Channel, r.Model}
-		for _, q := range []quantity.Quantity{r.NaturalFrequency, r.DampedFrequency, r.TimeConstant, r.Q} {
-			cells = append(cells, csvNumber(q.Value), csvNumber(q.U))
-		}
-		cells = append(cells, csvNumber(r.SNR), string(r.Verdict), strings.Join(r.Codes, " "), r.Err)
-		if err := out.Write(cells); err != nil {
-			return err
-		}
-	}
+	err := out.Write(cells)
 	out.Flush()
-	return out.Error()
+	return cmp.Or(err, out.Error())
 }
 
 func csvNumber(x float64) string {

@@ -2,6 +2,7 @@ package report
 
 import (
 	"bytes"
+	"cmp"
 	"encoding/csv"
 	"fmt"
 	"slices"
@@ -48,7 +49,11 @@ func TestSetSummary(t *testing.T) {
 // TestSetCSV reads the table back.
 func TestSetCSV(t *testing.T) {
 	var out bytes.Buffer
-	if err := coils().WriteCSV(&out); err != nil {
+	err := WriteCSVHead(&out)
+	for _, r := range coils().Rows {
+		err = cmp.Or(err, r.WriteCSV(&out))
+	}
+	if err != nil {
 		t.Fatal(err)
 	}
 	rows, err := csv.NewReader(&out).ReadAll()

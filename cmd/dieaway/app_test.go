@@ -3,10 +3,12 @@ package main
 import (
 	"bytes"
 	"context"
+	"encoding/csv"
 	"errors"
 	"io"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 )
 
@@ -25,6 +27,27 @@ func TestInterrupt(t *testing.T) {
 	}
 	if entries, err := os.ReadDir(folder); err != nil || len(entries) > 0 {
 		t.Errorf("left behind: %v, %v", entries, err)
+	}
+}
+
+// TestInterruptKeepsRows: the rows of files that were measured before an interrupt
+// stand, whole.
+func TestInterruptKeepsRows(t *testing.T) {
+	name := filepath.Join(t.TempDir(), "loop07.csv")
+	write(t, name, string(loop07))
+	stdin, typed := io.Pipe()
+	defer typed.Close()
+	ctx, cancel := context.WithCancel(t.Context())
+	stdout, stderr, code := &shared{}, &shared{}, make(chan int)
+	go func() { code <- run(ctx, []string{"dieaway", "fit", "--csv", name, name, "-"}, stdin, stdout, stderr) }()
+	lines(t, stdout, stderr, 3)
+	cancel()
+	if got := <-code; got != exitFailed || stderr.String() != "dieaway: interrupted\n" {
+		t.Errorf("exit code %d, stderr %q", got, stderr)
+	}
+	rows, err := csv.NewReader(strings.NewReader(stdout.String())).ReadAll()
+	if err != nil || len(rows) != 3 || rows[0][0] != "file" || rows[1][0] != name || rows[2][2] != "good" {
+		t.Errorf("rows %q, %v", rows, err)
 	}
 }
 

@@ -77,31 +77,30 @@ func codeOf(err error) int {
 // print writes the row of source number i.
 func (m *many) print(out io.Writer, r measured, i int) error {
 	m.set.Rows = append(m.set.Rows, r.row)
+	head, row := m.set.WriteHead, func(w io.Writer) error { return r.row.WriteSummary(w, m.j.style) }
 	switch {
 	case m.j.json:
 		return r.WriteJSON(out)
-	case m.csv || m.j.quiet:
+	case m.csv:
+		head, row = report.WriteCSVHead, r.row.WriteCSV
+	case m.j.quiet:
 		return nil
 	}
 	if i == 0 {
-		if err := m.set.WriteHead(out); err != nil {
+		if err := head(out); err != nil {
 			return err
 		}
 	}
-	return r.row.WriteSummary(out, m.j.style)
+	return row(out)
 }
 
 // finish writes what can be told when all rows are there.
 func (m *many) finish() error {
-	out := bufio.NewWriter(m.j.stdout)
-	var err error
-	switch {
-	case m.csv:
-		err = m.set.WriteCSV(out)
-	case !m.j.json && !m.j.quiet:
-		err = m.set.WriteSummary(out, m.j.style)
+	if m.csv || m.j.json || m.j.quiet {
+		return nil
 	}
-	return cmp.Or(err, out.Flush())
+	out := bufio.NewWriter(m.j.stdout)
+	return cmp.Or(m.set.WriteSummary(out, m.j.style), out.Flush())
 }
 
 func (m *many) file(page *output, name string) error {
