@@ -28,7 +28,8 @@ func watchCommand() *cli.Command {
 		Description: "Measures each capture in the folder once it has stopped growing, prints one line for it and\n" +
 			"files it with --archive, until it is interrupted. The device's name is that of the folder, or\n" +
 			"comes from the file's name. The hidden file " + journalName + " in the folder remembers what was done:\n" +
-			"started again, it goes on from there. A file that is replaced is measured again.\n\n" +
+			"started again, it goes on from there. A file that is replaced is measured again. To be\n" +
+			"interrupted is the normal end: the exit code is the highest of the captures since the start.\n\n" +
 			"Examples:\n" +
 			"   dieaway watch --bench loop07.toml --bell incoming\n" +
 			"   dieaway watch --archive evidence --device-from '(?P<device>[^_]+)_' incoming\n" +
@@ -52,6 +53,7 @@ type watcher struct {
 	journal *watch.Journal // nil where the folder cannot be written
 	pattern *regexp.Regexp // nil: the folder's name is the device
 	bell    bool
+	codes   map[string]int // what the last measurement of each file means, by its name
 }
 
 func watchAction(c *cli.Context) error {
@@ -66,7 +68,22 @@ func watchAction(c *cli.Context) error {
 	if !w.quiet && !w.json {
 		say(w.stderr, "watching "+w.folder.Dir+"; interrupt to stop")
 	}
-	return w.folder.Run(c.Context, w.handle)
+	if err := w.folder.Run(c.Context, w.handle); err != nil {
+		return err
+	}
+	return w.ended()
+}
+
+// ended is what all captures together mean for the caller: the highest code wins.
+func (w *watcher) ended() error {
+	worst := exitDone
+	for _, code := range w.codes {
+		worst = max(worst, code)
+	}
+	if worst != exitDone {
+		return &exitError{Code: worst}
+	}
+	return nil
 }
 
 func parseWatch(c *cli.Context) (*watcher, error) {
@@ -86,7 +103,7 @@ func parseWatch(c *cli.Context) (*watcher, error) {
 	if err != nil {
 		return nil, err
 	}
-	w := &watcher{job: j, folder: &watch.Folder{Dir: dir, Accept: mayBeCapture}, bell: c.Bool("bell")}
+	w := &watcher{job: j, folder: &watch.Folder{Dir: dir, Accept: mayBeCapture}, bell: c.Bool("bell"), codes: map[string]int{}}
 	w.folder.Say = func(message string) { say(j.stderr, message) }
 	if w.pattern, err = parsePattern(c); err != nil {
 		return nil, err
@@ -216,6 +233,7 @@ func (w *watcher) hand(m measured, j *job, f watch.File) error {
 		return nil // it comes again when it has come to rest
 	}
 	kept := true
+	w.codes[f.Name] = w.exitCode(m)
 	if m.err != nil {
 		say(w.stderr, m.err)
 	} else if w.archive != "" {
@@ -224,6 +242,7 @@ func (w *watcher) hand(m measured, j *job, f watch.File) error {
 		if err := quiet.keep(m); err != nil {
 			say(w.stderr, err)
 			kept = false
+			w.codes[f.Name] = max(w.codes[f.Name], exitFailed)
 		}
 	}
 	if err := w.show(m); err != nil {

@@ -105,8 +105,8 @@ func TestWatchBurst(t *testing.T) {
 	if strings.Count(out, "unreadable") != 1 || !strings.Contains(stderr.String(), "bad.csv: no samples") {
 		t.Errorf("the bad file is not told:\n%s", stderr)
 	}
-	if code := stop(); code != exitDone {
-		t.Errorf("exit code %d after the interrupt", code)
+	if code := stop(); code != exitUnreadable {
+		t.Errorf("exit code %d after the interrupt, want %d for the bad file", code, exitUnreadable)
 	}
 
 	again, stderr, stop := watching(t, dir)
@@ -114,7 +114,9 @@ func TestWatchBurst(t *testing.T) {
 	if out := lines(t, again, stderr, 1); strings.Count(out, "\n") != 1 || !strings.Contains(out, "new.csv") {
 		t.Errorf("started again it does\n%s", out)
 	}
-	stop()
+	if code := stop(); code != exitDone {
+		t.Errorf("exit code %d after the interrupt, want %d: the bad file was told before", code, exitDone)
+	}
 }
 
 // TestWatchArchives: devices by the names of files, their archive, and the bell for
@@ -138,7 +140,9 @@ func TestWatchArchives(t *testing.T) {
 	if n := strings.Count(stderr.String(), "\a"); n != 4 {
 		t.Errorf("the bell rang %d times, want 4", n)
 	}
-	stop()
+	if code := stop(); code != exitOutside {
+		t.Errorf("exit code %d after the interrupt, want %d for captures outside the limits", code, exitOutside)
+	}
 	all, err := archive.List(kept)
 	if err != nil {
 		t.Fatal(err)
@@ -152,5 +156,30 @@ func TestWatchArchives(t *testing.T) {
 	}
 	if v, err := archive.Verify(kept); err != nil || len(v.Problems) > 0 {
 		t.Errorf("archive: %v %v", v.Problems, err)
+	}
+}
+
+// TestWatchReplaced: a capture that failed and was replaced by one that does not is
+// no failure at the end; one that cannot be filed is.
+func TestWatchReplaced(t *testing.T) {
+	dir, file := t.TempDir(), filepath.Join(t.TempDir(), "no folder")
+	name := filepath.Join(dir, "loop.csv")
+	write(t, name, "nothing to read\n")
+	write(t, file, "")
+	stdout, stderr, stop := watching(t, dir)
+	lines(t, stdout, stderr, 1)
+	putCapture(t, name, 0)
+	if out := lines(t, stdout, stderr, 2); !strings.HasPrefix(out, "unreadable") || !strings.Contains(out, "\ngood ") {
+		t.Errorf("printed\n%s", out)
+	}
+	if code := stop(); code != exitDone {
+		t.Errorf("exit code %d after the interrupt, want %d: the file was replaced", code, exitDone)
+	}
+
+	stdout, stderr, stop = watching(t, dir, "--archive", file)
+	putCapture(t, filepath.Join(dir, "more.csv"), 0)
+	lines(t, stdout, stderr, 1)
+	if code := stop(); code != exitFailed {
+		t.Errorf("exit code %d after the interrupt, want %d: nothing could be filed\n%s", code, exitFailed, stderr)
 	}
 }
