@@ -90,6 +90,49 @@ func TestTimeColumns(t *testing.T) {
 	}
 }
 
+// An interval of the caller's that the stamps contradict: the trigger, which is the
+// zero of time, stays at its sample.
+func TestIntervalAgainstStamps(t *testing.T) {
+	// stamps of 0.4 us from the number of the first sample on, with a row left out.
+	stamps := func(first float64, without int) string {
+		text := "Time (us),V_C (V)\n"
+		for i := range rows {
+			n := first + float64(i)
+			if i >= without {
+				n++
+			}
+			text += fmt.Sprintf("%.1f,%s\n", 0.4*n, ring(1, i))
+		}
+		return text
+	}
+	gap := make([]float64, rows)
+	for i := range gap {
+		gap[i] = float64(i-20) * 1e-6
+		if i >= 40 {
+			gap[i] += 1e-6
+		}
+	}
+	contradicts := has(CoarseTime, Warning, "--interval gives 1 µs", "400 ns apart", "the given interval is used")
+	for _, c := range []struct {
+		name, text string
+		w          want
+	}{
+		{"the trigger in the record", stamps(-20, rows), want{start: -20e-6}},
+		{"the trigger before the record", stamps(50, rows), want{start: 20e-6}},
+		{"the trigger behind the record", stamps(-rows-9, rows), want{start: -4e-6 - (rows-1)*1e-6}},
+		{"the trigger between two samples", stamps(-20.25, rows), want{start: -20.25e-6}},
+		{"a row missing", stamps(-20, 40), want{start: -20e-6, times: gap, findings: "coarse-time missing-samples"}},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			c.w.interval, c.w.channels, c.w.check = 1e-6, "V_C/V", contradicts
+			if c.w.findings == "" {
+				c.w.findings = "coarse-time"
+			}
+			understand(t, c.text, Options{Interval: 1e-6}, c.w)
+		})
+	}
+}
+
 // Stamps that are not even are kept as they are.
 func TestUnevenTime(t *testing.T) {
 	us := func(i int) float64 { return float64(i) * 0.4 }

@@ -84,7 +84,7 @@ func (d *layoutDesign) timeColumn(k int) int {
 // straight makes the axis of stamps that lie on a line.
 func (k *clock) straight(a *Axis, decl declared, given bool) {
 	k.settle(a, fmt.Sprintf("time column, regression over %d stamps", k.n), decl, given)
-	a.Start = k.begin(a)
+	a.Start = k.begin(a, decl)
 }
 
 // settle decides the interval: of that of the regression and the declared one
@@ -98,9 +98,17 @@ func (k *clock) settle(a *Axis, source string, decl declared, given bool) {
 }
 
 // begin is the time of the first sample: on the line about its middle, and the
-// stamp itself where that is the same but for its print.
-func (k *clock) begin(a *Axis) float64 {
-	start := k.start + (k.interval-a.Interval)*k.middle
+// stamp itself where that is the same but for its print. With an interval that the
+// stamps contradict the zero of time stays where it is among the samples, as the
+// trigger's instant does not move with the scale; outside the record, the end that is
+// nearest to it keeps its stamp.
+func (k *clock) begin(a *Axis, decl declared) float64 {
+	fixed := k.middle // number of the sample, with a fraction, that keeps its time
+	if a.Interval == decl.value && !k.agrees(decl) {
+		last := (k.spans[len(k.spans)-1].last - k.start) / k.interval
+		fixed = math.Max(0, math.Min(-k.start/k.interval, last))
+	}
+	start := k.start + (k.interval-a.Interval)*fixed
 	if first := k.spans[0].first; math.Abs(start-first) <= 0.05*k.resolution+1e-9*k.interval {
 		return first
 	}
@@ -125,7 +133,7 @@ func (d *layoutDesign) contradiction(c *Capture, k *clock, decl declared) {
 	use := "the time column is used"
 	if d.opt.Interval > 0 {
 		what, use = "--interval gives", "the given interval is used"
-		if !k.even() {
+		if !k.even() && !k.ruled {
 			use = "the time column is used"
 		}
 	}

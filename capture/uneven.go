@@ -126,7 +126,7 @@ func (k *clock) crooked(a *Axis, decl declared, given bool) {
 	a.Source = fmt.Sprintf("time column, the %d stamps as they are", k.n)
 	if k.ruled {
 		k.settle(a, fmt.Sprintf("time column, regression over %d stamps and their numbers", k.n), decl, given)
-		start := k.begin(a)
+		start := k.begin(a, decl)
 		k.numbered(func(i int, number float64) { a.Times[i] = start + number*a.Interval })
 	}
 	a.Start = a.Times[0]
