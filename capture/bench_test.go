@@ -152,10 +152,10 @@ func BenchmarkPass(b *testing.B) {
 	s := &scanner{p: &d.plan, h: h, src: &source{meter: &meter{}}, store: store{columns: 1}, rowLen: 26}
 	c := s.chunk(text[start:], 0)
 	b.SetBytes(int64(len(c.text)))
-	stamps := d.plan.buffers()
+	w := d.plan.worker()
 	for b.Loop() {
 		c.rows = 0
-		d.plan.read(c, stamps)
+		d.plan.read(c, w)
 		if c.err != nil || c.rows != 9000 {
 			b.Fatal(c.err)
 		}

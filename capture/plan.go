@@ -58,6 +58,7 @@ type chunk struct {
 	dst     [][]float64 // for each column of samples, room for as many as lines
 	now     []instant   // the stamps of the row being read
 	cells   []cell      // of the row being read by slowRow
+	cuts    []cut       // where the numbers of the row read by fastRow stand, for each column
 	rows    int
 	partial bool     // the row being read lacks some time columns with their samples
 	absent  []bool   // for each time column, whether it is one of them
@@ -73,38 +74,31 @@ type chunk struct {
 	err     *Error
 }
 
-// read follows the plan through the chunk. Rows as the plan expects them take
-// the fast way; any other goes to slowRow, which knows every exception.
-func (p *plan) read(c *chunk, stamps [][]float64) {
+// read follows the plan through the chunk. Rows printed like one before take the
+// fastest way, others as the plan expects them take fastRow; any other goes to slowRow,
+// which knows every exception.
+func (p *plan) read(c *chunk, w *worker) {
 	c.now = make([]instant, p.times)
+	c.cuts = make([]cut, p.last+1)
 	c.missing = make([]int, p.values)
 	c.spans = make([]span, p.times)
 	for k := range c.spans {
-		c.spans[k].begin(stamps[k], c.lines)
+		c.spans[k].begin(w.stamps[k], c.lines)
 	}
+	w.stencils.credit = creditFirst
 	line := c.line
 	for i := 0; i < len(c.text); line++ {
-		at, next := i, -1
-		if !p.slow {
-			next = p.fastRow(c, i)
-		}
-		ok := next >= 0
-		if !ok {
-			end := i + bytes.IndexByte(c.text[i:], p.term)
-			ok = p.slowRow(c, c.text[i:end], line)
-			next = end + 1
-			if ok && c.partial {
-				p.acceptPart(c, line)
-				ok = false // it is booked
-			}
-		}
-		i = next
-		if ok {
-			if c.rows == 0 {
+		at := i
+		if next, n := w.stencils.rows(p, c, i); n > 0 {
+			if c.rows == n {
 				c.first = line
 			}
-			c.rows++
-			p.accept(c)
+			line += n - 1
+			if i = next; c.err != nil {
+				at = bytes.LastIndexByte(c.text[:next-1], p.term) + 1
+			}
+		} else {
+			i = p.readRow(c, w, i, line)
 		}
 		if c.err != nil && !p.fell(c, at, line) {
 			break
@@ -114,6 +108,34 @@ func (p *plan) read(c *chunk, stamps [][]float64) {
 		c.spans[k].finish()
 	}
 	p.keepEnds(c)
+}
+
+// readRow reads the row that starts at text[i], and returns where the next one starts.
+func (p *plan) readRow(c *chunk, w *worker, i, line int) (next int) {
+	ok := false
+	if !p.slow {
+		next = p.fastRow(c, i)
+		ok = next >= 0
+	}
+	if ok {
+		w.stencils.learn(p, c, i, next)
+	} else {
+		end := i + bytes.IndexByte(c.text[i:], p.term)
+		ok = p.slowRow(c, c.text[i:end], line)
+		next = end + 1
+		if ok && c.partial {
+			p.acceptPart(c, line)
+			ok = false // it is booked
+		}
+	}
+	if ok {
+		if c.rows == 0 {
+			c.first = line
+		}
+		c.rows++
+		p.accept(c)
+	}
+	return next
 }
 
 // accept takes in the stamps of a row. Where its time is before that of the row above
@@ -158,6 +180,7 @@ func (p *plan) fastRow(c *chunk, i int) int {
 			if end < 0 {
 				return -1
 			}
+			c.cuts[k] = cut{i, end}
 			if s.op == opTime {
 				t := &c.now[s.to]
 				t.d, t.real = d, d.tooLong()

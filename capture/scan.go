@@ -48,7 +48,7 @@ func (p *plan) scan(src *source, h *head) (*table, error) {
 	s.rowLen = float64(len(text)) / float64(len(h.lines)-h.first)
 	first := s.chunk(text, src.size()-int64(start.offset))
 	if h.whole {
-		p.read(first, p.buffers())
+		p.read(first, p.worker())
 	} else if err := s.stream(first, carry); err != nil {
 		return nil, err
 	}
@@ -75,8 +75,13 @@ func (s *scanner) chunk(text []byte, left int64) *chunk {
 	return c
 }
 
-// buffers returns room for the stamps of a block.
-func (p *plan) buffers() [][]float64 { return make([][]float64, p.times) }
+// A worker is what is kept from one block to the next.
+type worker struct {
+	stamps   [][]float64 // room for the stamps of each time column
+	stencils stencils
+}
+
+func (p *plan) worker() *worker { return &worker{stamps: make([][]float64, p.times)} }
 
 // stream reads the text behind the head; carry is the beginning of its first line.
 func (s *scanner) stream(first *chunk, carry []byte) error {
@@ -84,9 +89,9 @@ func (s *scanner) stream(first *chunk, carry []byte) error {
 	var workers sync.WaitGroup
 	for range runtime.GOMAXPROCS(0) {
 		workers.Go(func() {
-			stamps := s.p.buffers()
+			w := s.p.worker()
 			for c := range jobs {
-				s.work(c, stamps)
+				s.work(c, w)
 			}
 		})
 	}
@@ -97,10 +102,10 @@ func (s *scanner) stream(first *chunk, carry []byte) error {
 	return err
 }
 
-func (s *scanner) work(c *chunk, stamps [][]float64) {
-	s.p.read(c, stamps)
-	for k := range stamps {
-		stamps[k] = c.spans[k].release()
+func (s *scanner) work(c *chunk, w *worker) {
+	s.p.read(c, w)
+	for k := range w.stamps {
+		w.stamps[k] = c.spans[k].release()
 	}
 	if c.err != nil {
 		s.failed.Store(true)

@@ -115,6 +115,30 @@ func (r *progression) goesOn(t *instant) bool {
 	return true
 }
 
+// evenly returns how many of the stamps, whole numbers of 10^exp seconds, continue
+// the progression that all so far are.
+func (s *span) evenly(stamps []float64, exp int) int {
+	r := &s.run
+	if s.n != r.n || r.n < 2 || r.exp != exp {
+		return 0
+	}
+	before := r.last
+	for i, t := range stamps {
+		if int64(t)-before != r.step {
+			return i
+		}
+		before += r.step
+	}
+	return len(stamps)
+}
+
+// goOn takes in n stamps that continue the progression.
+func (s *span) goOn(n int) {
+	s.run.last += int64(n) * s.run.step
+	s.run.n += n
+	s.n += n
+}
+
 // starts takes a stamp that can be the first or second of a progression.
 // Beyond 2^53 the stamps could not be written out exactly.
 func (r *progression) starts(t *instant) bool {
