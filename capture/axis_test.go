@@ -133,6 +133,28 @@ func TestIntervalAgainstStamps(t *testing.T) {
 	}
 }
 
+// A unit of time of the caller's wins over that of the file, which is said; but not
+// over that of each stamp.
+func TestTimeUnitGiven(t *testing.T) {
+	plain := lines(rows, func(i int) string { return at(i, 4, 0) + "," + ring(1, i) })
+	override := has(CoarseTime, Note, "gives its times in ms and --time-unit in us", "the given unit is used")
+	for _, c := range []struct {
+		name, text string
+		w          want
+	}{
+		{"in the heading", "Time (ms),V_C (V)\n" + plain, want{findings: "coarse-time", check: override}},
+		{"in the preamble", "Horizontal Units,ms\nTime,V_C (V)\n" + plain, want{findings: "coarse-time", check: override}},
+		{"in each cell", "Time,V_C (V)\n" + strings.ReplaceAll(plain, ",", "us,"), want{findings: "coarse-time", check: has(CoarseTime, Note, "Each stamp", "--time-unit us is not used")}},
+		{"the same", "Time (us),V_C (V)\n" + plain, want{}},
+		{"nowhere", "Time,V_C (V)\n" + plain, want{}},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			c.w.interval, c.w.channels = 4e-6, "V_C/V"
+			understand(t, c.text, Options{TimeUnit: "us"}, c.w)
+		})
+	}
+}
+
 // Stamps that are not even are kept as they are.
 func TestUnevenTime(t *testing.T) {
 	us := func(i int) float64 { return float64(i) * 0.4 }

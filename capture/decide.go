@@ -55,6 +55,9 @@ func (d *layoutDesign) axis(c *Capture, t *table, k int) (*Axis, *Error) {
 		c.note(CoarseTime, severity, found+"; "+d.assumed, "give the unit with --time-unit if it is another")
 		d.assumed = "" // said once
 	}
+	if d.overruled != "" {
+		c.note(CoarseTime, Note, d.overruled, "leave --time-unit out if the file is right")
+	}
 	a.Source += "; " + d.timeWhy
 	return a, nil
 }

@@ -21,6 +21,8 @@ type layoutDesign struct {
 	timeWhy string
 	assumed string
 	unknown string // what the file gives as the unit of time, and nobody knows
+	// overruled says which of two units was used, where file and caller give one each.
+	overruled string
 }
 
 // design decides the layout of a capture from the head.

@@ -1,6 +1,7 @@
 package capture
 
 import (
+	"fmt"
 	"math"
 	"slices"
 )
@@ -115,6 +116,9 @@ func (d *layoutDesign) planTime(c *column, s *step) {
 	if c.kind == kindQuantity {
 		s.quantity = true
 		d.timeWhy = "each stamp has its unit"
+		if d.opt.TimeUnit != "" {
+			d.overruled = "each stamp has its unit, and --time-unit " + d.opt.TimeUnit + " is not used"
+		}
 		return
 	}
 	c.unit, d.timeWhy = d.timeUnit(c)
@@ -143,16 +147,18 @@ func (d *layoutDesign) planClock(c *column, s *step) {
 // the preamble, the declared interval against the steps of the column; seconds
 // when nothing gives it.
 func (d *layoutDesign) timeUnit(c *column) (unit, string) {
-	if d.opt.TimeUnit != "" {
-		if u, ok := parseUnit(d.opt.TimeUnit); ok && u.base == "s" {
-			return u, "unit of time given"
+	own, why := c.unit, "unit of time in the header"
+	if own.base != "s" {
+		own, why = d.preamble.timeUnit(c.Number-1), "unit of time in the preamble"
+	}
+	if u, ok := parseUnit(d.opt.TimeUnit); ok && u.base == "s" {
+		if own.base == "s" && unitName(own) != unitName(u) {
+			d.overruled = fmt.Sprintf("the file gives its times in %s and --time-unit in %s; the given unit is used", unitName(own), unitName(u))
 		}
+		return u, "unit of time given"
 	}
-	if c.unit.base == "s" {
-		return c.unit, "unit of time in the header"
-	}
-	if u := d.preamble.timeUnit(c.Number - 1); u.base == "s" {
-		return u, "unit of time in the preamble"
+	if own.base == "s" {
+		return own, why
 	}
 	if u, why := c.calendarUnit(); u.base == "s" {
 		d.assumed = why

@@ -88,6 +88,39 @@ func TestSweepColumns(t *testing.T) {
 	}
 }
 
+// TestFrequencyUnitGiven: the caller's unit wins over that of the file, which is said;
+// but not over that of each cell.
+func TestFrequencyUnitGiven(t *testing.T) {
+	rows := []string{"1,2", "2,3"}
+	override := "The file gives its frequencies in MHz and --frequency-unit in kHz; the given unit is used."
+	for _, w := range []struct{ name, text, f, message string }{
+		{"in the heading", rowsOf("f (MHz),V_C\n", rows...), "1000 2000", override},
+		{"in the preamble", rowsOf("Frequency Unit,MHz\nf,V_C\n", rows...), "1000 2000", override},
+		{"in the option line", "# MHz S MA R 50\n1 0.2 0\n2 0.3 0\n3 0.4 0\n4 0.3 0\n5 0.2 0\n", "1000 2000", override},
+		{"in each cell", rowsOf("f,V_C\n", "1 MHz,2", "2 MHz,3"), "1e+06 2e+06", "Each frequency of the file has its unit, and --frequency-unit kHz is not used."},
+		{"angular", rowsOf("omega (rad/s),V_C\n", rows...), "1000 2000", "The file gives its frequencies in rad/s and --frequency-unit in kHz; the given unit is used."},
+		{"the same", rowsOf("f (kHz),V_C\n", rows...), "1000 2000", ""},
+		{"nowhere", rowsOf("f,V_C\n", rows...), "1000 2000", ""},
+	} {
+		t.Run(w.name, func(t *testing.T) {
+			s := readSweep(t, w.text, SweepOptions{FrequencyUnit: "kHz"})
+			if got := firstOf(s.Frequency); got != w.f {
+				t.Errorf("frequencies %s, want %s", got, w.f)
+			}
+			message := ""
+			for _, f := range s.Findings {
+				if f.Code != IgnoredColumns || f.Severity != Note || message != "" {
+					t.Errorf("finding %v", f)
+				}
+				message = f.Message
+			}
+			if message != w.message {
+				t.Errorf("said %q, want %q", message, w.message)
+			}
+		})
+	}
+}
+
 func TestSweepErrors(t *testing.T) {
 	for _, w := range []struct {
 		name, text string

@@ -179,8 +179,8 @@ func (s *Sweep) say() {
 		}
 	}
 	if len(parts) > 0 {
-		s.Findings = append(s.Findings, newFinding(IgnoredColumns, Note, "columns not fitted: "+strings.Join(parts, ", "),
-			"nothing, unless one of them is the response or the reference: name it with --response or --reference"))
+		s.note(IgnoredColumns, "columns not fitted: "+strings.Join(parts, ", "),
+			"nothing, unless one of them is the response or the reference: name it with --response or --reference")
 	}
 	missing := 0
 	for _, v := range s.Magnitude {
@@ -193,6 +193,11 @@ func (s *Sweep) say() {
 			fmt.Sprintf("%d of %s have no value of the response, and are left out", missing, plural(len(s.Magnitude), "row")),
 			"measure these frequencies again"))
 	}
+}
+
+// note adds a finding of no weight.
+func (s *Sweep) note(code Code, message, remedy string) {
+	s.Findings = append(s.Findings, newFinding(code, Note, message, remedy))
 }
 
 func quoted(name string) string {

@@ -66,7 +66,7 @@ func (t *sweepTable) frequencies(s *Sweep, opt SweepOptions) error {
 	if logarithmic(c.Name) {
 		return &Error{Err: ErrSyntax, Line: t.heading.namesLine, Column: c.Number, Found: quote(c.Name), Expected: "frequencies and not their logarithms"}
 	}
-	t.frequencyUnit(c, opt)
+	t.frequencyUnit(s, c, opt)
 	s.Frequency = c.scaled()
 	for i := range s.Frequency {
 		if c.unit.base == "rad/s" {
@@ -85,34 +85,63 @@ func (t *sweepTable) frequencies(s *Sweep, opt SweepOptions) error {
 	return nil
 }
 
-// frequencyUnit settles the unit of the frequencies: the caller's word, the heading,
-// the preamble; else hertz, or radians a second under a name for those.
-func (t *sweepTable) frequencyUnit(c *column, opt SweepOptions) {
+// frequencyUnit settles the unit of the frequencies: that of each cell, the caller's
+// word, the heading, the preamble; else hertz, or radians a second under a name for
+// those. The caller's word against that of the file is said in a finding.
+func (t *sweepTable) frequencyUnit(s *Sweep, c *column, opt SweepOptions) {
+	own, why := t.ownFrequencyUnit(c)
+	given, ok := parseUnit(opt.FrequencyUnit)
+	switch {
+	case c.kind == kindQuantity && own.base != "":
+		c.unit = unit{base: own.base}
+		if ok {
+			s.note(IgnoredColumns, "each frequency of the file has its unit, and --frequency-unit "+unitName(given)+" is not used", "leave --frequency-unit out")
+		}
+	case ok:
+		s.unitGiven(own, given)
+		c.unit = given
+	case own.base != "":
+		c.unit = own
+		c.Why += why
+	case angular(c.Name):
+		c.unit = unit{base: "rad/s"}
+		c.Why += "; radians a second assumed"
+	default:
+		c.unit = unit{base: "Hz"}
+		c.Why += "; hertz assumed"
+	}
+	c.Unit = unitName(c.unit)
+}
+
+// ownFrequencyUnit is the unit of the frequencies that the file gives, without base
+// when it gives none, and what is to be said of where it stands.
+func (t *sweepTable) ownFrequencyUnit(c *column) (unit, string) {
+	switch own := c.unit; {
+	case own.base == "Sa/s" && angular(c.Name): // 1/s
+		own.base = "rad/s"
+		return own, ""
+	case own.base == "Sa/s":
+		own.base = "Hz"
+		return own, ""
+	case own.base == "Hz", own.base == "rad/s":
+		return own, ""
+	}
 	told, _, _ := t.preamble.text(meansFrequencyUnit, c.Number-1)
 	if told == "" {
 		told, _, _ = t.preamble.text(meansTimeUnit, c.Number-1) // of the horizontal axis
 	}
-	if u, ok := parseUnit(opt.FrequencyUnit); ok {
-		c.unit = u
-	} else if c.unit.base == "Sa/s" { // 1/s
-		c.unit.base = "Hz"
-		if angular(c.Name) {
-			c.unit.base = "rad/s"
-		}
-	} else if c.unit.base != "Hz" && c.unit.base != "rad/s" {
-		switch u, ok := parseUnit(told); {
-		case ok && u.base == "Hz":
-			c.unit = u
-			c.Why += "; unit in the preamble"
-		case angular(c.Name):
-			c.unit = unit{base: "rad/s"}
-			c.Why += "; radians a second assumed"
-		default:
-			c.unit = unit{base: "Hz"}
-			c.Why += "; hertz assumed"
-		}
+	if u, ok := parseUnit(told); ok && u.base == "Hz" {
+		return u, "; unit in the preamble"
 	}
-	c.Unit = unitName(c.unit)
+	return unit{}, ""
+}
+
+// unitGiven says that the caller's unit of frequency is not that of the file.
+func (s *Sweep) unitGiven(file, given unit) {
+	if file.base != "" && unitName(file) != unitName(given) {
+		s.note(IgnoredColumns, fmt.Sprintf("the file gives its frequencies in %s and --frequency-unit in %s; the given unit is used", unitName(file), unitName(given)),
+			"leave --frequency-unit out if the file is right: all frequencies scale with it")
+	}
 }
 
 // shown prints a number of a cell for a message.

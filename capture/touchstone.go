@@ -99,6 +99,7 @@ func (s *Sweep) readTouchstone(src *source, text []byte, opt SweepOptions) error
 		return &Error{Err: ErrTooFew, Found: plural(len(t.records), "row"), Expected: fmt.Sprintf("at least %d", sweepRows)}
 	}
 	if u, ok := parseUnit(opt.FrequencyUnit); ok {
+		s.unitGiven(t.unit, u)
 		t.unit = u
 	}
 	return t.build(s, src, opt.Response)
