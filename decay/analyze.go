@@ -52,7 +52,7 @@ func Analyze(ch *capture.Channel, opt Options) *Result {
 	}
 	r.Quantities = a.combined()
 	r.Modes = a.modes()
-	r.Findings = slices.Concat(a.findings, doubts(g, d, v), compareReadings(d, r.Model, &r.Readings))
+	r.Findings = slices.Concat(a.findings, doubts(g, d, v, a.opt.Model), compareReadings(d, r.Model, &r.Readings))
 	return r.shifted(first).settle()
 }
 

@@ -26,8 +26,9 @@ const (
 // shortWindow is the window, in time constants, below which the fall is hardly seen.
 const shortWindow = 0.45
 
-// doubts lists what makes a measured decay less trustworthy.
-func doubts(g *gate, d *Decay, v noise) []Finding {
+// doubts lists what makes a measured decay less trustworthy; forced is the model that
+// was asked for, "" for none.
+func doubts(g *gate, d *Decay, v noise, forced Model) []Finding {
 	var out []Finding
 	q := &d.Quantities
 	u := (d.To - d.From) * q.DecayRate.Value
@@ -61,7 +62,7 @@ func doubts(g *gate, d *Decay, v noise) []Finding {
 	}
 	switch b := g.fit.bend; {
 	case b != nil:
-		out = append(out, dependsOnAmplitude(d, &g.fit))
+		out = append(out, dependsOnAmplitude(d, &g.fit, forced == Amplitude))
 	case g.fit.rival != nil:
 		out = append(out, g.fit.undecided())
 	}
@@ -104,15 +105,24 @@ func (g *gate) besides(c *term) Finding {
 	}
 }
 
-func dependsOnAmplitude(d *Decay, f *ringFit) Finding {
+// dependsOnAmplitude says so, or, where the law was forced, how little speaks for it.
+func dependsOnAmplitude(d *Decay, f *ringFit, forced bool) Finding {
 	q, at := &d.Quantities, d.AtStart
 	law := f.bend.law.String()
 	if f.rival != nil {
 		law += ", or another law that explains as much: the uncertainties span both"
 	}
+	course := fmt.Sprintf("from %s and Q %s at the first cycle to %s and Q %s as the ring dies; %s.", at.DampedFrequency, at.Q, q.DampedFrequency, q.Q, law)
+	if forced {
+		if gain, decisive := f.bendGain(); gain < decisive {
+			return warning(capture.AmplitudeDependent,
+				fmt.Sprintf("The amplitude model was forced: against one exponential it lowers chi-squared by %s, where %s would be decisive. It runs %s",
+					figure(gain, 2), figure(decisive, 2), course),
+				"Let the model be chosen, unless you know by other means that the loss moves; a capture at twice the amplitude shows it better.")
+		}
+	}
 	return warning(capture.AmplitudeDependent,
-		fmt.Sprintf("Loss and frequency depend on the amplitude: from %s and Q %s at the first cycle to %s and Q %s as the ring dies; %s.",
-			at.DampedFrequency, at.Q, q.DampedFrequency, q.Q, law),
+		"Loss and frequency depend on the amplitude: "+course,
 		"Quote the small-signal values with the amplitude they hold for, and compare with other measurements at the same amplitude only.")
 }
 

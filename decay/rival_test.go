@@ -3,7 +3,10 @@ package decay
 import (
 	"fmt"
 	"math"
+	"strings"
 	"testing"
+
+	"dieaway/capture"
 )
 
 // lossy integrates an amplitude law by classical Runge-Kutta steps, one a sample:
@@ -89,5 +92,49 @@ func TestBentIsNoColouredNoise(t *testing.T) {
 				}
 			}
 		}
+	}
+}
+
+// TestForcedAmplitude: the finding of a forced model tells by what chi-squared it wins,
+// and what would be decisive, where the samples do not prove it; where they do, it reads
+// like that of a model that was chosen. On one exponential the gain is chi-squared of
+// two degrees of freedom, whose mean is 2 and which exceeds 13.8 once in 1000 records.
+func TestForcedAmplitude(t *testing.T) {
+	const cycle, q, snr = 40.0, 20.0, 100
+	w := 2 * math.Pi / cycle
+	a := w / (2 * q)
+	message := func(y []float64, model Model) string {
+		r := Analyze(channel(y, 0, 1), Options{Model: model})
+		for _, f := range r.Findings {
+			if f.Code == capture.AmplitudeDependent && r.Model == Amplitude && r.Status == Doubtful {
+				return f.Message
+			}
+		}
+		t.Fatalf("%s, %s: %v", r.Model, r.Status, r.Findings)
+		return ""
+	}
+	square := func(u float64) float64 { return u * u }
+	self := func(u float64) float64 { return u }
+	plain := lossy(int(4/a), a, w, 0, 0, square, self)
+	sum, most := 0.0, 0.0
+	const records = 20
+	for seed := range uint64(records) {
+		got := message(withNoise(plain, 1.0/snr, seed), Amplitude)
+		var gain, decisive float64
+		if _, err := fmt.Sscanf(got, "The amplitude model was forced: against one exponential it lowers chi-squared by %g, where %g would be decisive. It runs from", &gain, &decisive); err != nil {
+			t.Fatalf("%q: %v", got, err)
+		}
+		if n := 4 / a; math.Abs(decisive-(2*math.Log(n)+40*(1+300/n))) > 1 { // with what a law is charged for in Schwarz's criterion
+			t.Errorf("%g would be decisive", decisive)
+		}
+		sum, most = sum+gain, math.Max(most, gain)
+	}
+	// The mean of 20 has the standard deviation 2/sqrt(20); the best of three laws gains more than one.
+	if mean := sum / records; mean < 1 || mean > 4 || most > 20 {
+		t.Errorf("mean gain %.2g, at most %.2g", mean, most)
+	}
+	bent := withNoise(lossy(int(4/a), a, w, 0.2*a, -0.01*w, square, self), 1.0/snr, 1)
+	if forced, chosen := message(bent, Amplitude), message(bent, ""); forced != chosen || !strings.HasPrefix(forced, "Loss and frequency depend") {
+		t.Errorf("forced it says %q, chosen %q", forced, chosen)
 	}
 }
