@@ -158,6 +158,14 @@ func TestCrossCheckPage(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
+		alone, err := c.RingDown.sheet()
+		if err != nil {
+			t.Fatal(err)
+		}
+		got, want := titles(figures[1:]), titles(alone.Figures)
+		if !slices.Equal(got, want) || !slices.Contains(got, "Spectrum of the residual") || !slices.Contains(got, "Spectrum of the ring") {
+			t.Errorf("charts of the ring-down %q, on its own page %q", got, want)
+		}
 		for i, name := range []string{keyForetold.Name, keyPredicted.Name} {
 			if drawn := strings.Contains(string(figures[i].Option), name); !drawn {
 				t.Errorf("bench %v: nothing is %s", bench, name)

@@ -69,7 +69,8 @@ func (c *CrossCheck) page() (*crossPage, error) {
 	return p, nil
 }
 
-// figures are those of ring-down and sweep, each with what the other predicts.
+// figures are those of sweep and ring-down, each with what the other predicts, and the
+// spectra and courses that the page of a ring-down has.
 func (c *CrossCheck) figures() ([]*figure, error) {
 	ring, sweep := *c.RingDown, *c.Sweep
 	if c.Check.Compared() && len(ring.Result.Decays) > 0 {
@@ -89,7 +90,8 @@ func (c *CrossCheck) figures() ([]*figure, error) {
 	if err != nil {
 		return nil, err
 	}
-	return []*figure{driven, over}, nil
+	details, err := ring.details(over)
+	return append([]*figure{driven, over}, details...), err
 }
 
 func (c *CrossCheck) heading() string {
