@@ -178,6 +178,24 @@ func TestPageWidths(t *testing.T) {
 	}
 }
 
+// On a very wide screen charts stand beside the numbers, each as wide as they are below
+// each other or wider, and no table has to be scrolled sideways; below them elsewhere.
+func TestPageBeside(t *testing.T) {
+	const places = `["results", "charts"].map((id) => document.getElementById(id).closest("section").getBoundingClientRect()).flatMap((r) => [r.left, r.top, r.width])`
+	ctx := browser(t)
+	for width, beside := range map[int64]bool{1400: false, 3563: false, 3564: true, 3840: true, 5120: true} {
+		p := open(t, ctx, doubtful(loop07().ringDown()), width, 2000, "light")
+		at := eval[[]float64](p, places)
+		left, top, wide := at[0], at[1], at[2]
+		if got := at[3] >= left+wide && at[4] == top; got != beside || at[5] < wide {
+			t.Errorf("at %d pixels: left, top and width of the numbers %v, of the charts %v", width, at[:3], at[3:])
+		}
+		if n := eval[int](p, `[...document.querySelectorAll(".scroll")].filter((e) => e.scrollWidth > e.clientWidth).length`); n > 0 {
+			t.Errorf("at %d pixels: %d tables are cut", width, n)
+		}
+	}
+}
+
 // Turning the window or the colour scheme redraws the charts and keeps the stretch of time.
 func TestPageFollows(t *testing.T) {
 	p := open(t, browser(t), loop07().ringDown(), 1400, 900, "light")
