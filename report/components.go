@@ -109,6 +109,8 @@ type jsonComponentRow struct {
 	AddedU           number            `json:"added_u"`
 	NaturalFrequency quantity.Quantity `json:"natural_frequency_hz"`
 	DecayRate        quantity.Quantity `json:"decay_rate_per_s"`
+	Q                quantity.Quantity `json:"q"`
+	TimeConstant     quantity.Quantity `json:"time_constant_s"`
 	Residual         number            `json:"residual"`
 	ResidualU        number            `json:"residual_u"`
 	Other            number            `json:"other_residual"`
@@ -151,10 +153,11 @@ func (c *Components) WriteJSON(w io.Writer) error {
 
 func (c *Components) rowJSON(i int, r *RingDown) jsonComponentRow {
 	row := jsonComponentRow{File: orNull(r.file()), SHA256: orNull(r.sha256()), Added: number(c.Added[i].Value), AddedU: number(c.Added[i].U),
-		NaturalFrequency: unknown, DecayRate: unknown}
+		NaturalFrequency: unknown, DecayRate: unknown, Q: unknown, TimeConstant: unknown}
 	residual, other := unknown, unknown
 	if r.Result != nil && !r.refused() {
-		row.NaturalFrequency, row.DecayRate = r.Result.Quantities.NaturalFrequency, r.Result.Quantities.DecayRate
+		q := r.Result.Quantities
+		row.NaturalFrequency, row.DecayRate, row.Q, row.TimeConstant = q.NaturalFrequency, q.DecayRate, q.Q, q.TimeConstant
 	}
 	if c.Result != nil {
 		residual, other = c.Result.Rows[i].Residual, c.Result.Rows[i].Other

@@ -114,7 +114,8 @@ var followedQuantities = [3]followed{
 // kindNames are the kinds of measurement, the first the commonest, in the plural
 // and with the colour they are drawn in.
 var kindNames = []struct{ kind, name, color string }{
-	{"ringdown", "ring-downs", "samples"}, {"sweep", "driven sweeps", "peak"}, {"crosscheck", "cross-checks", "envelope"}, {"unknown", "others", "quiet"},
+	{"ringdown", "ring-downs", "samples"}, {"sweep", "driven sweeps", "peak"}, {"crosscheck", "cross-checks", "envelope"},
+	{"components", "component measurements", "crossing"}, {"unknown", "others", "quiet"},
 }
 
 // chief returns the kind with the most results: its key, its name and its sums.

@@ -3,8 +3,10 @@ package archive
 import (
 	"bytes"
 	"fmt"
+	"io"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 
 	"dieaway/report"
@@ -126,6 +128,45 @@ func TestOlderEntries(t *testing.T) {
 		t.Errorf("%d entries in the rebuilt page, %v", entries, err)
 	}
 	mustShow(t, dir, map[string]int{"loop": 5})
+}
+
+// TestComponentsShown: an entry of components stands in list and pages with what its
+// capture without an added part gave, in whatever place; one that was refused, or has
+// no such capture, with nothing.
+func TestComponentsShown(t *testing.T) {
+	row := func(file, added string, f, q float64) string {
+		return fmt.Sprintf(`{"file":"%s","added":%s,"natural_frequency_hz":{"value":%g,"u":6},"decay_rate_per_s":{"value":9300,"u":5},"q":{"value":%g,"u":0.05},"time_constant_s":{"value":1.07e-4,"u":1e-7}}`, file, added, f, q)
+	}
+	bare, more := row("bare.csv", "0", 125046, 42.2), row("more.csv", "2.2e-10", 113000, 38)
+	for i, c := range []struct{ status, rows, f, q, file string }{
+		{"good", bare + "," + more, "125.0460(60) kHz", "42.200(50)", "bare.csv"},
+		{"good", more + "," + bare, "125.0460(60) kHz", "42.200(50)", "more.csv"},
+		{"good", more, "unknown", "unknown", "more.csv"},
+		{"refused", bare + "," + more, "unknown", "unknown", "bare.csv"},
+		{"good", `{"file":"old.csv","added":0,"natural_frequency_hz":{"value":125046,"u":6}}`, "125.0460(60) kHz", "unknown", "old.csv"},
+	} {
+		dir := t.TempDir()
+		e := entryOf("loop", i)
+		e.Result = func(w io.Writer) error {
+			_, err := fmt.Fprintf(w, `{"schema":"dieaway.components.v1","status":"%s","device":"loop","inductance_h":{"value":1.62e-3,"u":1e-6},"rows":[%s]}`, c.status, c.rows)
+			return err
+		}
+		if _, err := Add(dir, "loop", e); err != nil {
+			t.Fatal(err)
+		}
+		all, err := List(dir)
+		if err != nil || len(all) != 1 {
+			t.Fatalf("%d entries, %v", len(all), err)
+		}
+		if r := all[0]; r.NaturalFrequency.String() != c.f || r.Q.String() != c.q || r.File != c.file || r.Kind != "components" {
+			t.Errorf("%s, %s: %+v", c.status, c.rows, r)
+		}
+		for _, page := range []string{string(readFile(t, dir, indexName)), string(readFile(t, dir, "loop", indexName))} {
+			if shown := strings.Contains(page, `<td class="n" data-label="natural frequency">125.0460(60) kHz</td>`); shown != (c.f != "unknown") {
+				t.Errorf("%s, %s: the frequency stands in a page: %v", c.status, c.rows, shown)
+			}
+		}
+	}
 }
 
 // TestOlderStamps: stamps of whole seconds are entries too, in order of time.

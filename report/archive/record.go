@@ -108,8 +108,13 @@ func (r *Record) take(o object) {
 			q = inner
 		}
 	}
-	if rows := o.objects("rows"); r.File == "" && len(rows) > 0 { // components hold a row for each capture
-		r.File, r.SHA256 = rows[0].text("file"), rows[0].text("sha256")
+	for _, row := range o.objects("rows") { // components hold a row for each capture
+		if r.File == "" {
+			r.File, r.SHA256 = row.text("file"), row.text("sha256")
+		}
+		if added := row.number("added"); q == nil && r.Status != "refused" && added != nil && *added == 0 {
+			q = row // the circuit as it is
+		}
 	}
 	r.NaturalFrequency = q.quantity("natural_frequency_hz", "Hz")
 	r.Q = q.quantity("q", "")
