@@ -3,6 +3,7 @@ package capture
 import (
 	"bytes"
 	"math"
+	"sync/atomic"
 )
 
 // An op is what the data pass does with a cell.
@@ -51,14 +52,16 @@ type plan struct {
 // A chunk is a run of whole lines and what the data pass made of it.
 type chunk struct {
 	text   []byte  // ends in the plan's term
+	raw    []byte  // the bytes of the file among it that are not hashed yet
 	buffer *[]byte // what text lies in, to be used again; nil for the head
-	line   int     // number of its first line
+	users  atomic.Int32
+	line   int // number of its first line
 	lines  int
 
 	dst     [][]float64 // for each column of samples, room for as many as lines
 	now     []instant   // the stamps of the row being read
 	cells   []cell      // of the row being read by slowRow
-	cuts    []cut       // where the numbers of the row read by fastRow stand, for each column
+	cuts    []cut       // for fastRow to tell where the numbers of each column stand, nil as a rule
 	rows    int
 	partial bool     // the row being read lacks some time columns with their samples
 	absent  []bool   // for each time column, whether it is one of them
@@ -78,14 +81,7 @@ type chunk struct {
 // fastest way, others as the plan expects them take fastRow; any other goes to slowRow,
 // which knows every exception.
 func (p *plan) read(c *chunk, w *worker) {
-	c.now = make([]instant, p.times)
-	c.cuts = make([]cut, p.last+1)
-	c.missing = make([]int, p.values)
-	c.spans = make([]span, p.times)
-	for k := range c.spans {
-		c.spans[k].begin(w.stamps[k], c.lines)
-	}
-	w.stencils.credit = creditFirst
+	p.begin(c, w)
 	line := c.line
 	for i := 0; i < len(c.text); line++ {
 		at := i
@@ -108,6 +104,17 @@ func (p *plan) read(c *chunk, w *worker) {
 		c.spans[k].finish()
 	}
 	p.keepEnds(c)
+}
+
+// begin makes room for what the data pass makes of a chunk.
+func (p *plan) begin(c *chunk, w *worker) {
+	c.now = make([]instant, p.times)
+	c.missing = make([]int, p.values)
+	c.spans = make([]span, p.times)
+	for k := range c.spans {
+		c.spans[k].begin(w.stamps[k], c.lines)
+	}
+	w.stencils.credit = creditFirst
 }
 
 // readRow reads the row that starts at text[i], and returns where the next one starts.
@@ -180,7 +187,9 @@ func (p *plan) fastRow(c *chunk, i int) int {
 			if end < 0 {
 				return -1
 			}
-			c.cuts[k] = cut{i, end}
+			if c.cuts != nil {
+				c.cuts[k] = cut{i, end}
+			}
 			if s.op == opTime {
 				t := &c.now[s.to]
 				t.d, t.real = d, d.tooLong()

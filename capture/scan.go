@@ -32,6 +32,7 @@ type scanner struct {
 	rowLen float64 // mean length of a row, in bytes
 	failed atomic.Bool
 	free   sync.Pool
+	hashes chan *chunk // blocks to hash, nil where the source does it
 }
 
 // scan reads all samples of the text whose beginning is h.
@@ -59,6 +60,7 @@ func (p *plan) scan(src *source, h *head) (*table, error) {
 // its start to the end of the file, not positive when unknown.
 func (s *scanner) chunk(text []byte, left int64) *chunk {
 	c := &chunk{text: text, line: s.line, lines: bytes.Count(text, []byte{s.p.term})}
+	c.users.Store(1)
 	s.line += c.lines
 	expected := 0
 	if left > 0 {
@@ -95,11 +97,31 @@ func (s *scanner) stream(first *chunk, carry []byte) error {
 			}
 		})
 	}
+	stop := s.hashApart(&workers)
 	jobs <- first
 	err := s.blocks(jobs, carry)
 	close(jobs)
+	stop()
 	workers.Wait()
 	return err
+}
+
+// hashApart takes the digest of the blocks beside reading them, which would else wait
+// for it most of the time. Text that is decoded is hashed before it gets here.
+func (s *scanner) hashApart(workers *sync.WaitGroup) (stop func()) {
+	m := s.src.meter
+	if !s.src.plain {
+		return func() {}
+	}
+	m.apart, s.hashes = true, make(chan *chunk, 2)
+	workers.Go(func() {
+		for c := range s.hashes {
+			m.hash.Write(c.raw)
+			s.release(c)
+		}
+		m.apart = false
+	})
+	return func() { close(s.hashes) }
 }
 
 func (s *scanner) work(c *chunk, w *worker) {
@@ -110,10 +132,18 @@ func (s *scanner) work(c *chunk, w *worker) {
 	if c.err != nil {
 		s.failed.Store(true)
 	}
+	s.release(c)
+}
+
+// release lets the text of a chunk go when its last user has done with it.
+func (s *scanner) release(c *chunk) {
+	if c.users.Add(-1) > 0 {
+		return
+	}
 	if c.buffer != nil {
 		s.free.Put(c.buffer)
 	}
-	c.text, c.buffer = nil, nil
+	c.text, c.raw, c.buffer = nil, nil, nil
 }
 
 // blocks cuts the text into blocks of whole lines and sends them to jobs.
@@ -122,10 +152,15 @@ func (s *scanner) blocks(jobs chan<- *chunk, carry []byte) error {
 		buffer := s.free.Get().(*[]byte)
 		buf := *buffer
 		kept := copy(buf, carry)
+		done := s.src.meter.done
 		n, last, err := fill(s.src.text, buf[kept:blockSize])
 		text := buf[:kept+n]
 		if err != nil {
 			return s.src.readError(err)
+		}
+		var raw []byte
+		if s.hashes != nil {
+			raw = text[len(text)-int(s.src.meter.done-done):]
 		}
 		if last && len(text) > 0 && text[len(text)-1] != s.p.term {
 			text = append(text, s.p.term)
@@ -135,6 +170,11 @@ func (s *scanner) blocks(jobs chan<- *chunk, carry []byte) error {
 		if end > 0 {
 			c := s.chunk(text[:end], s.src.size()-s.src.meter.done+int64(len(text)))
 			c.buffer = buffer
+			if s.hashes != nil {
+				c.raw = raw
+				c.users.Store(2)
+				s.hashes <- c
+			}
 			jobs <- c
 		} else if !last {
 			e := longLine(s.line)

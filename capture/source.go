@@ -21,6 +21,7 @@ type source struct {
 	text       io.Reader
 	encoding   string
 	compressed bool
+	plain      bool // text is the bytes of the file
 }
 
 // openSource looks at the first bytes of r and says no to what is not text.
@@ -46,6 +47,8 @@ func openSource(r io.Reader, name string, size int64, opt Options) (*source, err
 		return nil, s.notText(what)
 	}
 	s.text, s.encoding = decode(head, rest)
+	_, recoded := s.text.(*utf16Reader)
+	s.plain = !s.compressed && !recoded
 	return s, nil
 }
 
@@ -110,6 +113,7 @@ type meter struct {
 	size     int64
 	err      error // of the reader below, other than io.EOF
 	ended    bool  // io.EOF has been seen
+	apart    bool  // whoever reads takes the digest
 	progress func(done, total int64)
 	told     time.Time
 }
@@ -119,7 +123,9 @@ const progressEvery = 250 * time.Millisecond
 
 func (m *meter) Read(p []byte) (int, error) {
 	n, err := m.r.Read(p)
-	m.hash.Write(p[:n])
+	if !m.apart {
+		m.hash.Write(p[:n])
+	}
 	m.done += int64(n)
 	if err == io.EOF {
 		m.ended = true

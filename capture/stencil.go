@@ -1,13 +1,18 @@
 package capture
 
+import (
+	"bytes"
+	"math"
+)
+
 // Most rows of a record are printed alike: digits and all other bytes stand where they
-// stood in the row before. A stencil keeps where. Rows that fit it hold the same cells,
-// and the processor reads the sixteen digits of a number at a time where it has
+// stood in the row before, but for a sign. A stencil keeps where. Rows that fit it hold
+// the same cells, and the processor reads all digits of a number at a time where it has
 // instructions for that; fastRow reads all others.
 
 const (
-	stencilsKept  = 8   // signs and widths vary: two channels need four for their signs
-	stencilMost   = 512 // bytes of a row
+	stencilsKept  = 8   // as many widths of the cells as may take turns
+	stencilParts  = 64  // of a row
 	stencilDigits = 15  // of a number: they make a whole number that float64 holds
 	stencilRows   = 256 // read in one go
 
@@ -20,48 +25,46 @@ const (
 
 // A stencil is the layout of a row.
 type stencil struct {
-	rowLayout
-	reach int // where the first byte that is loaded lies, from the start of the row
-}
-
-// A rowLayout is what readFitting knows of a row.
-type rowLayout struct {
-	length  int        // of the row in bytes, with its line end
-	blocks  []rowBlock // of all bytes of the row, and those behind it that the last one covers
+	parts   []rowPart
 	numbers []numeral
+	most    int // bytes of a row
 }
 
-// A rowBlock tells what 32 bytes of a row must be: each byte, after an exclusive or with
-// fixed, must not be above its limit.
-type rowBlock struct{ fixed, limit [blockBytes]byte }
-
-const blockBytes = 32
-
-// A numeral is a number of a row: sign * digits * times / over.
-type numeral struct {
-	// pick names, for each of the sixteen digits of a whole number, the byte that holds it;
-	// noDigit where there is none.
-	pick        [numeralBytes]byte
-	at          int     // of the first of the sixteen bytes, from the start of the row
-	times, over float64 // powers of ten; both 1 for a stamp
-	sign        uint64  // the top bit, for a negative number
+// A rowPart is a stretch of a row that may begin with a sign and a number: the digits
+// that pick names, times or over a power of ten.
+type rowPart struct {
+	// Each byte of the part, after an exclusive or with fixed, must not be above its limit.
+	fixed, limit [partBytes]byte
+	// pick tells for each digit of a number of sixteen which byte holds it, noDigit for none.
+	pick        [16]byte
+	times, over float64
 	to          *float64
-	exp         int32 // power of ten of a stamp, in seconds
-	column      int32
+	length      int    // in bytes, without the sign
+	signed      uint64 // 1 for a part that may begin with a minus sign or a byte of padding
+	padding     byte   // a plus sign, or a blank; the minus sign where there is neither
 }
 
 const (
-	numeralBytes = 16
-	noDigit      = 0x80
+	partBytes = 32
+	noDigit   = 0x80
 )
 
-// stencils are those that a worker has made, and room for the stamps of the rows read.
+// A numeral is a number of a row that is wanted.
+type numeral struct {
+	part  int
+	step  *step
+	exp   int // power of ten of its last digit, in base units
+	power int // part that holds its exponent, 0 where that is counted in exp
+	sign  int // of the exponent
+}
+
+// stencils are those that a worker has made, and room for the numbers read with them.
 type stencils struct {
 	list   []stencil
 	last   int // the one that fitted last
 	oldest int
 	credit int
-	stamps [][]float64 // for each time column, whole numbers
+	room   [][stencilRows]float64 // for each part of a row
 }
 
 // rows reads the rows from text[i] on that a stencil fits. It returns where they end, i
@@ -75,41 +78,70 @@ func (t *stencils) rows(p *plan, c *chunk, i int) (next, n int) {
 		if k >= len(t.list) {
 			k -= len(t.list)
 		}
-		if n = t.read(&t.list[k], p, c, i); n > 0 {
+		if size, n := t.read(&t.list[k], p, c, i); n > 0 {
 			t.last, t.credit = k, min(t.credit+n, creditMost)
-			return i + n*t.list[k].length, n
+			return i + size, n
 		}
 	}
 	t.credit--
 	return i, 0
 }
 
-// read is rows for one stencil; it returns the number of rows.
-func (t *stencils) read(s *stencil, p *plan, c *chunk, i int) int {
-	room := len(c.text) - i - blockBytes*len(s.blocks)
-	if room < 0 || i+s.reach < 0 || c.text[i+s.length-1] != p.term {
-		return 0
+// read is rows for one stencil; it returns the bytes and the number of the rows.
+func (t *stencils) read(s *stencil, p *plan, c *chunk, i int) (size, n int) {
+	last := len(c.text) - s.most - partBytes - i
+	if last < 0 {
+		return 0, 0
 	}
-	for k := range s.numbers {
-		v := &s.numbers[k]
-		if step := &p.steps[v.column]; step.op == opTime {
-			v.to = &t.stamps[step.to][0]
-		} else {
-			v.to = &c.dst[step.to][c.rows]
+	for k := range s.parts {
+		s.parts[k].to = &t.room[k][0]
+	}
+	for _, v := range s.numbers {
+		if v.step.op == opValue {
+			s.parts[v.part].to = &c.dst[v.step.to][c.rows]
 		}
 	}
-	n := readFitting(&s.rowLayout, &c.text[i], min(room/s.length+1, stencilRows, c.lines-c.rows))
-	return t.accept(s, p, c, n)
+	size, n = readFitting(s.parts, &c.text[i], last, min(stencilRows, c.lines-c.rows))
+	good := t.accept(s, p, c, t.scale(s, c, n))
+	if good < n {
+		size = 0
+		for range good {
+			size += bytes.IndexByte(c.text[i+size:], p.term) + 1
+		}
+	}
+	return size, good
+}
+
+// scale puts the exponents of n rows to their samples. It returns for how many of the
+// rows that is one exact operation.
+func (t *stencils) scale(s *stencil, c *chunk, n int) int {
+	for _, v := range s.numbers {
+		if v.power == 0 {
+			continue
+		}
+		samples := c.dst[v.step.to][c.rows:][:n]
+		for r, power := range t.room[v.power][:n] {
+			e := v.exp + v.sign*int(power)
+			if uint(-e) < uint(len(exactPow10)) {
+				samples[r] /= exactPow10[-e]
+			} else if uint(e) < uint(len(exactPow10)) {
+				samples[r] *= exactPow10[e]
+			} else {
+				n = r
+				break
+			}
+		}
+	}
+	return n
 }
 
 // accept takes in the stamps of n rows whose samples are there already, up to the first
 // that gives an error.
 func (t *stencils) accept(s *stencil, p *plan, c *chunk, n int) int {
 	even := n
-	for k := range s.numbers {
-		if v := &s.numbers[k]; p.steps[v.column].op == opTime {
-			to := p.steps[v.column].to
-			even = c.spans[to].evenly(t.stamps[to][:even], int(v.exp))
+	for _, v := range s.numbers {
+		if v.step.op == opTime {
+			even = c.spans[v.step.to].evenly(t.room[v.part][:even], v.exp)
 		}
 	}
 	for k := range c.spans {
@@ -117,10 +149,9 @@ func (t *stencils) accept(s *stencil, p *plan, c *chunk, n int) int {
 	}
 	c.rows += even
 	for r := even; r < n; r++ {
-		for k := range s.numbers {
-			if v := &s.numbers[k]; p.steps[v.column].op == opTime {
-				to := p.steps[v.column].to
-				c.now[to] = instant{d: v.decimal(t.stamps[to][r])}
+		for _, v := range s.numbers {
+			if v.step.op == opTime {
+				c.now[v.step.to] = instant{d: wholeDecimal(t.room[v.part][r], v.exp)}
 			}
 		}
 		c.rows++
@@ -131,11 +162,11 @@ func (t *stencils) accept(s *stencil, p *plan, c *chunk, n int) int {
 	return n
 }
 
-// decimal is a stamp as it is printed.
-func (v *numeral) decimal(whole float64) decimal {
-	d := decimal{mant: uint64(whole), exp: int(v.exp)}
-	if v.sign != 0 {
-		d.mant, d.sign = uint64(-whole), 1
+// wholeDecimal is whole * 10^exp.
+func wholeDecimal(whole float64, exp int) decimal {
+	d := decimal{mant: uint64(math.Abs(whole)), exp: exp}
+	if math.Signbit(whole) {
+		d.sign = 1
 	}
 	return d
 }
@@ -150,11 +181,8 @@ func (t *stencils) learn(p *plan, c *chunk, i, next int) {
 	if !ok {
 		return
 	}
-	if t.stamps == nil {
-		t.stamps = make([][]float64, p.times)
-		for k := range t.stamps {
-			t.stamps[k] = make([]float64, stencilRows)
-		}
+	for len(t.room) < len(s.parts) {
+		t.room = append(t.room, [stencilRows]float64{})
 	}
 	if len(t.list) < stencilsKept {
 		t.list = append(t.list, s)

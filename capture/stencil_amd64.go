@@ -6,9 +6,9 @@ import "golang.org/x/sys/cpu"
 var canReadFitting = cpu.X86.HasAVX2
 
 // readFitting reads the rows that stand one behind the other from *text on, as long as
-// they fit the layout l, up to most of them. The numbers of each go where l tells, one
-// behind the other. It returns the number of rows. From *text + l.numbers[k].at on there
-// must be 16 bytes of text and from *text on those of all blocks, for each row.
+// they are made of the parts, up to most of them, and none that begins behind text[last].
+// The number of row r in part k goes to parts[k].to[r]. It returns the bytes and the
+// number of the rows. Behind the start of each part there must be partBytes+1 of text.
 //
 //go:noescape
-func readFitting(l *rowLayout, text *byte, most int) int
+func readFitting(parts []rowPart, text *byte, last, most int) (size, n int)

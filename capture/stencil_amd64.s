@@ -17,51 +17,50 @@ DATA eights<>+0(SB)/8, $0x4197d78400000000 // 1e8
 DATA eights<>+8(SB)/8, $0x3ff0000000000000 // 1
 GLOBL eights<>(SB), RODATA|NOPTR, $16
 
-DATA zeros<>+0(SB)/8, $0x3030303030303030
-DATA zeros<>+8(SB)/8, $0x3030303030303030
-GLOBL zeros<>(SB), RODATA|NOPTR, $16
-
-// func readFitting(l *rowLayout, text *byte, most int) int
-TEXT ·readFitting(SB), NOSPLIT, $0-32
-	MOVQ    l+0(FP), AX
-	MOVQ    text+8(FP), SI
-	MOVQ    most+16(FP), CX
-	MOVQ    rowLayout_length(AX), R12
-	MOVQ    rowLayout_blocks(AX), R13
-	MOVQ    rowLayout_numbers(AX), BX
-	VMOVDQU zeros<>(SB), X10
+// func readFitting(parts []rowPart, text *byte, last, most int) (size, n int)
+TEXT ·readFitting(SB), NOSPLIT, $0-64
+	MOVQ    parts_base+0(FP), BX
+	MOVQ    parts_len+8(FP), R12
+	MOVQ    text+24(FP), SI
+	MOVQ    last+32(FP), R13
+	MOVQ    most+40(FP), CX
 	VMOVDQU tens<>(SB), X11
 	VMOVDQU hundreds<>(SB), X12
 	VMOVDQU myriads<>(SB), X13
 	VMOVUPD eights<>(SB), X14
-	XORQ    DX, DX
+	ADDQ    SI, R13
+	XORQ    DX, DX              // rows read
+	MOVQ    SI, DI              // start of the row
 
 row:
 	CMPQ DX, CX
 	JGE  done
-	MOVQ R13, R8
-	MOVQ (rowLayout_blocks+8)(AX), R9
-	MOVQ SI, R10
-
-block: // what no longer is what it must be is above its limit
-	VMOVDQU  (R10), Y0
-	VPXOR    rowBlock_fixed(R8), Y0, Y0
-	VPSUBUSB rowBlock_limit(R8), Y0, Y0
-	VPTEST   Y0, Y0
-	JNZ      done
-	ADDQ     $const_blockBytes, R10
-	ADDQ     $rowBlock__size, R8
-	DECQ     R9
-	JNZ      block
-
+	CMPQ SI, R13
+	JHI  done
 	MOVQ BX, R8
-	MOVQ (rowLayout_numbers+8)(AX), R9
+	MOVQ R12, R9
 
-number: // sixteen digits become eight pairs, four fours, two eights
-	MOVQ       numeral_at(R8), R10
-	VMOVDQU    (SI)(R10*1), X0
-	VPXOR      X10, X0, X0
-	VPSHUFB    numeral_pick(R8), X0, X0
+part: // R11 is 1 behind a minus, R10 1 where there is a sign or what stands for one
+	MOVBLZX (SI), AX
+	XORL    R11, R11
+	CMPB    AX, $0x2d
+	SETEQ   R11
+	XORL    R10, R10
+	CMPB    AX, rowPart_padding(R8)
+	SETEQ   R10
+	ORQ     R11, R10
+	ANDQ    rowPart_signed(R8), R10
+	ADDQ    R10, SI
+
+	// What is not what it must be is above its limit.
+	VMOVDQU  (SI), Y0
+	VPXOR    rowPart_fixed(R8), Y0, Y0
+	VPSUBUSB rowPart_limit(R8), Y0, Y1
+	VPTEST   Y1, Y1
+	JNZ      done
+
+	// Sixteen digits become eight pairs, four fours, two eights.
+	VPSHUFB    rowPart_pick(R8), X0, X0
 	VPMADDUBSW X11, X0, X0
 	VPMADDWD   X12, X0, X0
 	VPACKUSDW  X0, X0, X0
@@ -70,21 +69,26 @@ number: // sixteen digits become eight pairs, four fours, two eights
 	VMULPD     X14, X0, X0
 	VUNPCKHPD  X0, X0, X1
 	VADDSD     X1, X0, X0
-	VMULSD     numeral_times(R8), X0, X0
-	VDIVSD     numeral_over(R8), X0, X0
-	VMOVQ      numeral_sign(R8), X1
+	VMULSD     rowPart_times(R8), X0, X0
+	VDIVSD     rowPart_over(R8), X0, X0
+	SHLQ       $63, R11
+	VMOVQ      R11, X1
 	VPOR       X1, X0, X0
-	MOVQ       numeral_to(R8), R10
+	MOVQ       rowPart_to(R8), R10
 	VMOVSD     X0, (R10)(DX*8)
-	ADDQ       $numeral__size, R8
-	DECQ       R9
-	JNZ        number
+
+	ADDQ rowPart_length(R8), SI
+	ADDQ $rowPart__size, R8
+	DECQ R9
+	JNZ  part
 
 	INCQ DX
-	ADDQ R12, SI
+	MOVQ SI, DI
 	JMP  row
 
 done:
 	VZEROUPPER
-	MOVQ DX, ret+24(FP)
+	SUBQ text+24(FP), DI
+	MOVQ DI, size+48(FP)
+	MOVQ DX, n+56(FP)
 	RET

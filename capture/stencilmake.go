@@ -3,107 +3,172 @@ package capture
 import (
 	"bytes"
 	"math"
+	"slices"
 )
 
-// A cut is where a number that fastRow has read begins and ends in the text.
+// A cut is where a number begins and ends in the text.
 type cut struct{ from, to int }
 
-// stencil makes the stencil of the row text[i:next], which fastRow has read last. There
-// is none for rows that hold stamps of other kinds than numbers, or numbers too long.
+// A stencilMaker takes a row to pieces.
+type stencilMaker struct {
+	stencil
+	row          []byte
+	fixed, limit []byte // of every byte of the row
+	at           int    // what lies before is in parts
+}
+
+// stencil makes the stencil of the row text[i:next], which fastRow has read. There is
+// none for rows that hold stamps of other kinds than numbers, or numbers too long.
 func (p *plan) stencil(c *chunk, i, next int) (s stencil, ok bool) {
-	s.length = next - i
-	if s.length > stencilMost {
+	steps := p.steps[:p.last+1]
+	if next-i > stencilParts*partBytes || slices.ContainsFunc(steps, func(s step) bool { return s.op == opClock }) {
 		return s, false
 	}
-	row := c.text[i:next]
-	fixed, limit := bytes.Clone(row), make([]byte, len(row))
-	for k, b := range row {
+	c.cuts = make([]cut, len(steps))
+	p.fastRow(c, i)
+	cuts := c.cuts
+	c.cuts = nil
+	m := stencilMaker{row: c.text[i:next], fixed: bytes.Clone(c.text[i:next]), limit: make([]byte, next-i)}
+	for k, b := range m.row {
 		if b-'0' <= 9 {
-			fixed[k], limit[k] = '0', 9
+			m.fixed[k], m.limit[k] = '0', 9
 		}
 	}
-	for k := 0; k <= p.last; k++ {
-		step := &p.steps[k]
-		if step.op == opSkip {
-			continue
-		}
-		if step.op == opClock {
+	for k := range steps {
+		if steps[k].op != opSkip && !m.number(p, &steps[k], cuts[k].from-i, cuts[k].to-i) {
 			return s, false
 		}
-		from, to := c.cuts[k].from-i, c.cuts[k].to-i
-		v, digits, ok := p.numeral(row[from:to], step)
-		if !ok {
-			return s, false
-		}
-		v.at += from
-		v.column = int32(k)
-		s.numbers = append(s.numbers, v)
-		s.reach = min(s.reach, v.at)
-		for at := from + digits; at < to; at++ { // the exponent stays as it is
-			fixed[at], limit[at] = row[at], 0
-		}
 	}
-	s.blocks = rowBlocks(fixed, limit)
-	return s, len(s.numbers) > 0
+	m.close(len(m.row))
+	m.most = len(m.row) + len(m.parts)
+	return m.stencil, len(m.parts) <= stencilParts
 }
 
-// rowBlocks cuts what is known of a row into blocks; bytes behind it may be anything.
-func rowBlocks(fixed, limit []byte) []rowBlock {
-	blocks := make([]rowBlock, (len(fixed)+blockBytes-1)/blockBytes)
-	for k := range blocks {
-		at := k * blockBytes
-		n := copy(blocks[k].fixed[:], fixed[at:])
-		copy(blocks[k].limit[:], limit[at:])
-		for j := n; j < blockBytes; j++ {
-			blocks[k].limit[j] = math.MaxUint8
-		}
-	}
-	return blocks
-}
-
-// numeral makes out a number of a row; its digits and mark are the first so many bytes
-// of it, with its sign.
-func (p *plan) numeral(number []byte, step *step) (v numeral, digits int, ok bool) {
-	end := len(number)
-	exp := step.shift
-	if e := bytes.IndexAny(number, "eE"); e >= 0 {
+// number begins a part with the number row[from:to]. It reports false for one that takes
+// more than whole numbers of float64.
+func (m *stencilMaker) number(p *plan, step *step, from, to int) bool {
+	first, padding := m.slot(p, from)
+	text := m.row[first:to]
+	end := len(text)
+	n := numeral{step: step, exp: step.shift}
+	if e := bytes.IndexAny(text, "eE"); e >= 0 {
 		end = e
-		power, _ := scanExponent(append(bytes.Clone(number[e+1:]), 0), 0)
-		exp += power
 	}
-	first := 0
-	if number[0] == '-' || number[0] == '+' {
-		first = 1
+	mark := bytes.IndexByte(text[:end], p.mark)
+	if mark >= 0 {
+		n.exp -= end - 1 - mark
 	}
-	if number[0] == '-' {
-		v.sign = 1 << 63
+	n.part = m.begin(first, 1, padding)
+	part := &m.parts[n.part]
+	if !part.choose(text[:end], mark) {
+		return false
 	}
-	v.at = end - numeralBytes
+	if end < len(text) && !m.power(&n, text, first, end+1) {
+		return false
+	}
+	m.numbers = append(m.numbers, n)
+	switch limit := len(exactPow10); {
+	case step.op == opTime || n.power > 0: // the whole number
+	case n.exp >= limit || -n.exp >= limit:
+		return false
+	case n.exp > 0:
+		part.times = exactPow10[n.exp]
+	default:
+		part.over = exactPow10[-n.exp]
+	}
+	return true
+}
+
+// slot tells where the digits of the number at from begin, and what may stand in their
+// place before them where no minus sign does. All before it closes the part before.
+func (m *stencilMaker) slot(p *plan, from int) (first int, padding byte) {
+	first, padding = from, ' '
+	place := from
+	switch sign := m.row[from]; {
+	case sign == '+':
+		first, padding = from+1, '+'
+	case sign == '-':
+		first = from + 1
+	case from > m.at && m.row[from-1] == ' ' && (p.delim != ' ' || from == 1 || isBlank(m.row[from-2])):
+		place = from - 1 // and what parts the cells is before it
+	}
+	if place > 0 && m.row[place-1] == '"' {
+		padding = '-' // nothing
+	}
+	m.close(place)
+	return first, padding
+}
+
+func isBlank(b byte) bool { return b == ' ' || b == '\t' }
+
+// power makes a part of the exponent whose sign or first digit is text[at], or keeps
+// that of a stamp as it is: few change, and one that does breaks a progression.
+func (m *stencilMaker) power(n *numeral, text []byte, first, at int) bool {
+	value, _ := scanExponent(append(bytes.Clone(text[at:]), 0), 0)
+	if n.step.op == opTime {
+		n.exp += value
+		for k := first + at; k < first+len(text); k++ {
+			m.fixed[k], m.limit[k] = m.row[k], 0
+		}
+		return true
+	}
+	n.sign = 1
+	if text[at] == '-' {
+		n.sign = -1
+	}
+	if text[at]-'0' > 9 {
+		at++
+	}
+	m.close(first + at)
+	n.power = m.begin(first+at, 0, '-')
+	return m.parts[n.power].choose(text[at:], -1)
+}
+
+// begin begins a part at a byte of the row, and returns its number.
+func (m *stencilMaker) begin(at int, signed uint64, padding byte) int {
+	m.at = at
+	m.parts = append(m.parts, rowPart{times: 1, over: 1, signed: signed, padding: padding})
+	part := &m.parts[len(m.parts)-1]
+	for k := range part.pick {
+		part.pick[k] = noDigit
+	}
+	return len(m.parts) - 1
+}
+
+// close ends the part that has been begun at a byte of the row, or several where it is
+// longer than one can be.
+func (m *stencilMaker) close(at int) {
+	if len(m.parts) == 0 && at > 0 {
+		m.begin(0, 0, '-')
+	}
+	for len(m.parts) > 0 {
+		part := &m.parts[len(m.parts)-1]
+		part.length = min(at-m.at, partBytes)
+		copy(part.fixed[:], m.fixed[m.at:m.at+part.length])
+		copy(part.limit[:], m.limit[m.at:m.at+part.length])
+		for k := part.length; k < partBytes; k++ {
+			part.limit[k] = math.MaxUint8
+		}
+		if m.at += part.length; m.at == at {
+			return
+		}
+		m.begin(m.at, 0, '-')
+	}
+}
+
+// choose picks the digits of a number that begins with the part; mark is where its
+// decimal mark stands, negative where it has none.
+func (part *rowPart) choose(number []byte, mark int) bool {
 	count := 0
-	for k := range v.pick {
-		v.pick[k] = noDigit
-	}
-	for at := end - 1; at >= first; at-- {
-		if number[at] == p.mark {
-			exp -= end - 1 - at
+	for at := len(number) - 1; at >= 0; at-- {
+		if at == mark {
 			continue
 		}
-		if count == stencilDigits || at < v.at {
-			return v, 0, false
+		if count == stencilDigits || at >= len(part.pick) {
+			return false
 		}
 		count++
-		v.pick[numeralBytes-count] = byte(at - v.at)
+		part.pick[len(part.pick)-count] = byte(at)
 	}
-	v.times, v.over = 1, 1
-	switch limit := len(exactPow10); {
-	case step.op == opTime:
-		v.exp = int32(exp)
-	case exp >= limit || -exp >= limit:
-		return v, 0, false
-	case exp > 0:
-		v.times = exactPow10[exp]
-	default:
-		v.over = exactPow10[-exp]
-	}
-	return v, end, true
+	return true
 }
