@@ -177,6 +177,29 @@ func TestPeakRows(t *testing.T) {
 			understand(t, text+lines(2*rows, c.row), Options{}, c.w)
 		})
 	}
+	// Exactly two samples a cycle: every second one is the larger, as in peak detection.
+	two := func(_, i int) float64 { return math.Exp(-float64(i)/50) * math.Cos(math.Pi*float64(i)+0.3) }
+	twice = func(i int) string { return fmt.Sprintf("%s,%v", at(i/2, 0.4, 1), two(1, i)) }
+	apart := func(i int) string { return fmt.Sprintf("%s,%v", at(i, 0.2, 1), two(1, i)) }
+	mean := func(_, i int) float64 { return 0.5*two(1, 2*i) + 0.5*two(1, 2*i+1) }
+	plain := want{n: 2 * rows, interval: 0.2e-6, channels: "CH1/V", value: two}
+	paired := want{interval: 0.4e-6, channels: "CH1/V", value: mean, findings: "uneven-time"}
+	pairedHalf := paired
+	pairedHalf.start = 0.1e-6
+	for _, c := range []struct {
+		name, above string
+		row         func(i int) string
+		w           want
+	}{
+		{"a ring of two samples a cycle is none", "", apart, plain},
+		{"in spite of a mode that is off", "Peak Detect: Off\n", apart, plain},
+		{"unless the file says so", "Acquisition Mode,Peak Detect\n", apart, pairedHalf},
+		{"or every stamp comes twice", "", twice, paired},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			understand(t, c.above+"time (us),CH1 (V)\n"+lines(2*rows, c.row), Options{}, c.w)
+		})
+	}
 	t.Run("a ring of 2.1 samples a cycle is none", func(t *testing.T) {
 		ring := func(_, i int) float64 { return math.Exp(-float64(i)/50) * math.Cos(2*math.Pi*float64(i)/2.1) }
 		text := "time (us),V_C (V)\n" + lines(rows, func(i int) string { return fmt.Sprintf("%s,%v", at(i, 0.4, 1), ring(1, i)) })

@@ -65,17 +65,20 @@ func ordered(lo, hi []float64) bool {
 }
 
 // joinPeakRows joins minimum and maximum in alternating rows: at the same time,
-// or at times half an interval apart.
+// or at times half an interval apart where the file says that they are those, or their
+// means hold the signal. A ring of two samples a cycle alternates as well, but its means
+// hold nothing.
 func (d *layoutDesign) joinPeakRows(c *Capture, t *table, k int) {
 	var on []int // columns of samples that go with the time column
 	alternate := 0
+	sure := repeated(t.spans[k]) || d.saysPeaks()
 	for i, s := range d.plan.steps {
 		if s.op != opValue || s.axis != k {
 			continue
 		}
 		v := t.values[s.to]
 		switch {
-		case alternates(v):
+		case alternates(v) && (sure || meansHold(v)):
 			alternate++
 		case zerosAndOnes(v) || equalPairs(v):
 		default:
@@ -135,6 +138,44 @@ func alternates(v []float64) bool {
 		n, back = within.down, between.up
 	}
 	return n >= fewestPairs && 4*n >= len(v) && 4*back >= n
+}
+
+// repeated reports stamps most of which come twice.
+func repeated(spans []span) bool {
+	n, twice := 0, 0
+	for _, s := range spans {
+		n, twice = n+s.n, twice+s.zeroSteps
+	}
+	return 3*twice > n
+}
+
+// saysPeaks reports a preamble or a heading that tells of peak detection.
+func (d *layoutDesign) saysPeaks() bool {
+	lines := d.headingLines()
+	for _, l := range d.head.preambleLines() {
+		lines = append(lines, toUTF8(l.text))
+	}
+	return slices.ContainsFunc(lines, func(line string) bool {
+		for _, word := range []string{"peakdetect", "pkdetect", "minmax"} {
+			if _, rest, ok := strings.Cut(fold(line), word); ok {
+				rest = strings.TrimPrefix(strings.TrimPrefix(rest, "ion"), "mode")
+				return !slices.Contains([]string{"0", "off", "no", "false", "disabled"}, rest)
+			}
+		}
+		return false
+	})
+}
+
+// meansHold reports samples whose means of every two scatter more than the two
+// differ.
+func meansHold(v []float64) bool {
+	n, sum, squares, apart := 0.0, 0.0, 0.0, 0.0
+	for i := 1; i < len(v); i += 2 {
+		if mean, half := 0.5*v[i-1]+0.5*v[i], 0.5*v[i]-0.5*v[i-1]; !math.IsNaN(mean) {
+			n, sum, squares, apart = n+1, sum+mean, squares+mean*mean, apart+half*half
+		}
+	}
+	return squares-sum*sum/n > apart
 }
 
 // fewestPairs that all go the same way by chance only once in 30,000 records of noise.
