@@ -262,6 +262,8 @@ func newDecay(s series, g *gate, v noise, unit string, timebase float64) *Decay 
 		d.Amplitude, d.Phase, d.Offset = f.shape(&cov, unit)
 		d.AtStart = f.atStart(&full, timebase)
 		d.Parameters = f.parameters(&full, unit, timebase)
+	} else {
+		d.Quantities = quantitiesOf(math.NaN(), math.NaN(), s.dt, &sym{n: 2}, timebase)
 	}
 	d.Cycles = (d.To - d.From) * d.Quantities.DampedFrequency.Value
 	return d

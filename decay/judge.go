@@ -13,6 +13,7 @@ const (
 	decaySigma    = 3    // a rate nearer to zero than this is no decay
 	ringingLeast  = 3    // samples that must carry the ring
 	fallsShare    = 0.25 // of the energy that a bare exponential may leave
+	signChange    = 2.01 // samples a cycle below which a fit that fails is one of samples that only change sign
 	oscillateGain = 16   // chi-squared that an oscillation must explain beyond an exponential
 )
 
@@ -74,7 +75,12 @@ func judge(s series, g *gate, d *Decay, v noise) (Finding, bool) {
 // noDecay names what the fit is when it is no free decay.
 func noDecay(g *gate, d *Decay, v noise) (Finding, bool) {
 	f, q := &g.fit, &d.Quantities
-	if !q.Q.Known() || math.IsNaN(q.DecayRate.U) {
+	switch unknown := !q.Q.Known() || math.IsNaN(q.DecayRate.U); {
+	case unknown && f.period() < signChange:
+		return fault(capture.SparseSamples,
+			"Two samples fall on a cycle: they only change sign, which tells no frequency, as phase and amplitude are not to be told apart.",
+			"Sample faster, at least five times a cycle."), true
+	case unknown:
 		return noRing(), true
 	}
 	if gain, need := energyGain(f, v), energyNeeded(f.s.len()); gain < need {

@@ -52,3 +52,30 @@ func step(x float64) float64 {
 	}
 	return 1
 }
+
+// TestTwoSamplesACycle: they only change sign, so that phase and amplitude are one
+// number and the equations of the fit have no solution of their own, whatever its model.
+// Where noise lets them have one, the warning is there.
+func TestTwoSamplesACycle(t *testing.T) {
+	named := 0
+	for _, noise := range []float64{0, 1e-5, 1e-3, 4e-3} {
+		for _, model := range []Model{"", Exponential, Amplitude, TwoMode} {
+			for seed := range uint64(5) {
+				y := make([]float64, 400)
+				for i := range y {
+					y[i] = math.Exp(-float64(i)/100) * math.Cos(math.Pi*float64(i)+0.3)
+				}
+				r := Analyze(channel(withNoise(y, noise, seed), 0, 1), Options{Model: model})
+				if r.Status != Refused && !has(r, capture.SparseSamples) || (r.Quantities == nil) != (r.Status == Refused) {
+					t.Errorf("noise %g, model %q, seed %d: %s, %v, %v", noise, model, seed, r.Status, r.Quantities, r.Findings)
+				}
+				if r.Status == Refused && r.Findings[0].Code == capture.SparseSamples {
+					named++
+				}
+			}
+		}
+	}
+	if named == 0 {
+		t.Error("no refusal names the sampling")
+	}
+}
