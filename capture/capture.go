@@ -3,8 +3,8 @@
 //
 // The reader knows no maker: it describes a file by its shape (preamble,
 // header, units row, data; the role of each column) and says what it
-// understood in a [Layout], which [Capture.Explain] prints. A text goes through
-// three steps:
+// understood in a [Layout], which [Capture.Explain] prints. A table that lies on its
+// side is turned first (sideways.go). A text goes through three steps:
 //
 //   - the head of the text decides the layout (detect.go, shape.go, preamble.go, keys.go,
 //     names.go, nameunit.go, roles.go, timecolumn.go, joined.go, steps.go);

@@ -135,7 +135,7 @@ func (h *head) joinQuoted() {
 }
 
 func longLine(number int) *Error {
-	return &Error{Err: ErrSyntax, Line: number, Expected: "the line to end",
+	return &Error{Err: ErrSyntax, Line: number, Expected: fmt.Sprintf("the line to end, or a table with a line for each channel of %d MiB at most", turnedMost>>20),
 		Found: fmt.Sprintf("more than %d KiB without a line end", headSize>>10)}
 }
 

@@ -59,26 +59,34 @@ func (l *Layout) explain(b *strings.Builder, file, sha256 string) {
 	fmt.Fprintf(b, "  SHA-256    %s\n", sha256)
 	fmt.Fprintf(b, "  lines      %s\n", l.lines())
 	fmt.Fprintf(b, "  separator  %s, decimal mark %q\n", l.Delimiter, l.DecimalMark)
+	each := "column"
+	if l.Sideways {
+		each = "line  "
+		fmt.Fprintf(b, "  table      on its side, a line for each channel\n")
+	}
 	for _, col := range l.Columns {
-		fmt.Fprintf(b, "  column %-3d %s\n", col.Number, col.describe())
+		fmt.Fprintf(b, "  %s %-3d %s\n", each, col.Number, col.describe())
 	}
 }
 
 func (l Layout) lines() string {
 	var parts []string
+	line := "line"
+	if l.Sideways {
+		line = "column"
+	}
+	add := func(format string, n int) {
+		if n > 0 {
+			parts = append(parts, fmt.Sprintf(format, line, n))
+		}
+	}
 	if l.Preamble > 0 {
 		parts = append(parts, fmt.Sprintf("preamble to line %d", l.Preamble))
 	}
-	if l.HeaderLine > 0 {
-		parts = append(parts, fmt.Sprintf("names in line %d", l.HeaderLine))
-	}
-	if l.UnitsLine > 0 {
-		parts = append(parts, fmt.Sprintf("units in line %d", l.UnitsLine))
-	}
-	parts = append(parts, fmt.Sprintf("samples from line %d on", l.FirstLine))
-	if l.FooterLine > 0 {
-		parts = append(parts, fmt.Sprintf("words from line %d on are not read", l.FooterLine))
-	}
+	add("names in %s %d", l.HeaderLine)
+	add("units in %s %d", l.UnitsLine)
+	add("samples from %s %d on", l.FirstLine)
+	add("words from %s %d on are not read", l.FooterLine)
 	return strings.Join(parts, ", ")
 }
 

@@ -82,6 +82,7 @@ func texts() []string {
 		}),
 		"t,ch,V\n" + lines(8, func(i int) string { return at(i, 1, 0) + ",A,1.5\n" + at(i, 1, 0) + ",B,1.5" }),
 		"# name: t\n1\n2\n3\n4\n5\n6\n\n# name: v\n1\n2\n3\n4\n5\n6\n",
+		"loop 07\ntime,s,0,1,2,3,4,5,6,7,8,9,10,11,12,13,14,15,16\nV,mV" + strings.Repeat(",0.5,-0.25", 8) + ",1\n",
 		"\x1f\x8b\x08\x00", "PK\x03\x04", "%PDF", "", "\n\n", "a,b\n", "1\n", ",,,\n,,,\n", "time,V\n1,2\n1,3\n0,4\n",
 	}
 }

@@ -6,6 +6,9 @@ type Layout struct {
 	Encoding string
 	// Compressed is true when the bytes were gzip.
 	Compressed bool
+	// Sideways is true of a table with a line for each channel. HeaderLine, UnitsLine,
+	// FirstLine and FooterLine then count columns, and the numbers of Columns lines.
+	Sideways bool
 	// Preamble is the number of lines before the header or the data.
 	Preamble int
 	// HeaderLine and UnitsLine are the line numbers of the names row and of the
@@ -26,7 +29,7 @@ type Layout struct {
 
 // A Column is one column of the data block.
 type Column struct {
-	// Number counts from 1.
+	// Number counts from 1; in a table that lies on its side it is that of the line.
 	Number int
 	// Name and Unit are as the file gives them.
 	Name, Unit string

@@ -80,27 +80,41 @@ func read(r io.Reader, name string, size int64, opt Options) (*Capture, error) {
 	if err != nil {
 		return nil, err
 	}
-	h, d, err := layOut(src, opt)
+	t, err := src.turn()
 	if err != nil {
 		return nil, err
 	}
-	t, err := d.plan.scan(src, h)
+	c, err := src.capture(opt)
+	if err != nil {
+		return nil, t.place(err)
+	}
+	t.tell(&c.Layout)
+	return c, nil
+}
+
+// capture reads a text whose samples stand below each other.
+func (s *source) capture(opt Options) (*Capture, error) {
+	h, d, err := layOut(s, opt)
+	if err != nil {
+		return nil, err
+	}
+	t, err := d.plan.scan(s, h)
 	if err != nil {
 		// A file that was cut while it was read breaks in the middle of a row.
-		if src.meter.ended && src.unchanged() != nil {
-			err = src.unchanged()
+		if s.meter.ended && s.unchanged() != nil {
+			err = s.unchanged()
 		}
 		return nil, err
 	}
-	c := &Capture{File: name}
-	if c.SHA256, err = src.digest(); err != nil {
-		return nil, src.readError(err)
+	c := &Capture{File: s.name}
+	if c.SHA256, err = s.digest(); err != nil {
+		return nil, s.readError(err)
 	}
-	if err := src.unchanged(); err != nil {
+	if err := s.unchanged(); err != nil {
 		return nil, err
 	}
-	if refusal := d.build(c, src, t); refusal != nil {
-		refusal.File = name
+	if refusal := d.build(c, s, t); refusal != nil {
+		refusal.File = s.name
 		return nil, refusal
 	}
 	return c, nil

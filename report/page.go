@@ -84,6 +84,8 @@ type evidence struct {
 	Findings          []capture.Finding
 	Origin, Layout    []fact
 	Columns           []capture.Column
+	// Sideways is true of a file with a line for each channel: Columns are lines then.
+	Sideways bool
 }
 
 // A fact is a name and what there is to say.
@@ -102,7 +104,7 @@ func (r *RingDown) page(f *figure) *page {
 		frame: frame{Kind: "Free decay of a resonant circuit", Heading: r.heading(), What: r.what(),
 			Status: string(r.Status()), Verdict: r.verdict(), Figures: []*figure{f}},
 		evidence: evidence{Refused: r.refused(), Findings: cleaned(r.Findings()),
-			Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns},
+			Origin: r.origin(), Layout: r.layout(), Columns: r.Capture.Layout.Columns, Sideways: r.Capture.Layout.Sideways},
 	}
 	p.benched = benchedOf(r.Circuit, r.Limits)
 	p.judge(p.verdictOnLimits())
@@ -222,18 +224,22 @@ func (r *RingDown) layout() []fact {
 
 // layoutFacts says how a file was understood, behind what is peculiar to it.
 func layoutFacts(l *capture.Layout, first ...fact) []fact {
+	table, each := "", "line"
+	if l.Sideways {
+		table, each = "on its side, a line for each channel", "column"
+	}
 	line := func(n int) string {
 		if n == 0 {
 			return ""
 		}
-		return fmt.Sprintf("line %d", n)
+		return fmt.Sprintf("%s %d", each, n)
 	}
 	encoding := l.Encoding
 	if l.Compressed {
 		encoding = strings.TrimPrefix(encoding+", compressed", ", ")
 	}
 	return stated(append(first, fact{"encoding", clean(encoding, nameLength)},
-		fact{"names", line(l.HeaderLine)}, fact{"units", line(l.UnitsLine)}, fact{"first sample", line(l.FirstLine)},
+		fact{"table", table}, fact{"names", line(l.HeaderLine)}, fact{"units", line(l.UnitsLine)}, fact{"first sample", line(l.FirstLine)},
 		fact{"separator", clean(l.Delimiter, nameLength)}, fact{"decimal mark", clean(l.DecimalMark, nameLength)}))
 }
 
