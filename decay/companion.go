@@ -168,7 +168,8 @@ func (g *gate) without(s series) series {
 	out := s
 	out.y = slices.Clone(s.y)
 	if s.times == nil {
-		g.fit.companion.subtract(out.y[g.first:], 0)
+		y := out.y[g.first:]
+		newFollower(0, len(y), *g.fit.companion).residuals(y, y, 0)
 		return out
 	}
 	window := s.slice(g.first, s.len())

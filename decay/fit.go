@@ -169,45 +169,52 @@ func (f *ringFit) value(n float64) float64 {
 	return v
 }
 
-// residuals of the samples first to last-1 of s, whose sample 0 is n0 intervals
-// after the start of the fitted window.
+// residuals of the samples of s, whose sample 0 is n0 intervals after the start of the
+// fitted window.
 func (f *ringFit) residuals(s series, n0 float64) []float64 {
-	return f.residualsInto(make([]float64, s.len()), s, n0)
-}
-
-// residualsInto does so in out, which has room for them.
-func (f *ringFit) residualsInto(out []float64, s series, n0 float64) []float64 {
-	out = out[:s.len()]
-	if !s.even() || f.bend != nil {
-		for i, v := range s.y {
-			out[i] = v - f.value(n0+s.position(i))
-		}
-		return out
-	}
-	offset, m := f.offset(), s.spacing()
-	for i, v := range s.y {
-		out[i] = v - offset
-	}
-	(&term{f.a * m, f.w * m, f.p, f.q}).subtract(out, n0/m)
-	if c := f.companion; c != nil {
-		(&term{c.a * m, c.w * m, c.p, c.q}).subtract(out, n0/m)
-	}
+	out := make([]float64, s.len())
+	f.residualsBy(s, s.len())(out, s, n0)
 	return out
 }
 
-// subtract takes the term off uniform samples, the first of which is at time n0.
-func (t *term) subtract(y []float64, n0 float64) {
-	var table powers
-	table.fill(pole{t.a, t.w}, len(y))
-	for at := 0; at < len(y); at += blockLength {
-		// The curve is the real part of (p - jq) z^n.
-		c := complex(t.p, -t.q) * table.z.at(n0+float64(at))
-		re, im := real(c), imag(c)
-		for m := range min(blockLength, len(y)-at) {
-			y[at+m] -= re*table.re[m] - im*table.im[m]
+// residualsBy returns a function that writes the residuals of stretches of s of at most
+// n samples.
+func (f *ringFit) residualsBy(s series, n int) func(out []float64, part series, n0 float64) {
+	if !s.even() || f.bend != nil {
+		return func(out []float64, part series, n0 float64) {
+			for i, v := range part.y {
+				out[i] = v - f.value(n0+part.position(i))
+			}
+		}
+	}
+	m := s.spacing()
+	terms := []term{{f.a * m, f.w * m, f.p, f.q}}
+	if c := f.companion; c != nil {
+		terms = append(terms, term{c.a * m, c.w * m, c.p, c.q})
+	}
+	curve := newFollower(f.offset(), n, terms...)
+	return func(out []float64, part series, n0 float64) { curve.residuals(out, part.y, n0/m) }
+}
+
+// departing visits, in order, the samples first to last-1 of s whose residual r is
+// beyond limit; sample 0 is that of the fitted window. It ends when visit is false.
+func (f *ringFit) departing(s series, first, last int, limit float64, visit func(i int, r float64) bool) {
+	var buffer [residualBlock]float64
+	residuals := f.residualsBy(s, residualBlock)
+	for at := first; at < last; at += residualBlock {
+		part := s.slice(at, min(at+residualBlock, last))
+		left := buffer[:part.len()]
+		residuals(left, part, s.position(at))
+		for i, r := range left {
+			if math.Abs(r) > limit && !visit(at+i, r) {
+				return
+			}
 		}
 	}
 }
+
+// residualBlock is the number of samples looked at in one go: they stay close by.
+const residualBlock = 1 << 11
 
 // covariance returns the covariance of (a, w, c, p, q) for noise v.
 func (f *ringFit) covariance(v noise) (cov sym, ok bool) {

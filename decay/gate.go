@@ -164,8 +164,11 @@ func refit(window series, f *ringFit, shift, tolerance float64) (ringFit, bool) 
 	if f.bend != nil {
 		return refitBent(window, f, shift, tolerance)
 	}
-	if f.problem.covers(window) {
-		return f.problem.solve(f.theta(), tolerance)
+	switch p := f.problem; {
+	case p.covers(window):
+		return p.solve(f.theta(), tolerance)
+	case p.begins(window):
+		return p.extended(window).solve(f.theta(), tolerance)
 	}
 	return fitSum(window, pole{f.a, f.w}, f.companionPole(), tolerance)
 }
@@ -180,13 +183,17 @@ func (g *gate) breakIn(s series, from, to int) (int, bool) {
 	}
 	sigma := g.lateSigma()
 	limit := breakSigma*sigma + breakShare*g.fit.size()
-	departs := func(r, n float64) bool {
-		r = math.Abs(r)
-		return r > limit && r > limit+breakSigma*sigma*g.fit.spread(&cov, n)
-	}
+	origin := s.slice(g.first, s.len())
 	var held []int // those that depart, up to the first that has another close by
 	halves(to-from, func(first, last int) func() {
-		own := g.departures(s.slice(g.first, s.len()), from+first, from+last, departs)
+		var own []int
+		g.fit.departing(origin, from+first-g.first, from+last-g.first, limit, func(i int, r float64) bool {
+			if math.Abs(r) > limit+breakSigma*sigma*g.fit.spread(&cov, origin.position(i)) {
+				own = append(own, g.first+i)
+			}
+			k := len(own)
+			return k < 2 || !neighbours(own[k-2:])
+		})
 		return func() { held = append(held, own...) }
 	})
 	for k := range max(0, len(held)-1) {
@@ -199,26 +206,6 @@ func (g *gate) breakIn(s series, from, to int) (int, bool) {
 
 // neighbours reports whether the first two of list stand close to each other.
 func neighbours(list []int) bool { return list[1]-list[0] < breakNeighbour }
-
-// departures lists the samples of the record from first to last-1 whose residual r,
-// n intervals after the start of origin, departs; it ends with the first two that
-// are near each other.
-func (g *gate) departures(origin series, first, last int, departs func(r, n float64) bool) (out []int) {
-	buffer := make([]float64, min(glitchBlock, last-first))
-	for at := first - g.first; at < last-g.first; at += glitchBlock {
-		block := origin.slice(at, min(at+glitchBlock, last-g.first))
-		for i, r := range g.fit.residualsInto(buffer, block, origin.position(at)) {
-			if !departs(r, origin.position(at+i)) {
-				continue
-			}
-			out = append(out, g.first+at+i)
-			if k := len(out); k > 1 && neighbours(out[k-2:]) {
-				return out
-			}
-		}
-	}
-	return out
-}
 
 // spread is the standard deviation of the curve n intervals after its start,
 // in units of the noise, from the covariance inv(J'J).

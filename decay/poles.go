@@ -34,6 +34,7 @@ type poles struct {
 	y, yy        float64 // sums about ref
 	length       float64 // in intervals
 	missing      []int   // samples that are not there
+	near         *expansions
 	// latest is what at returned last: a fit that goes on where one ended need not
 	// pass over the samples again for its first step.
 	latest struct {
@@ -43,21 +44,38 @@ type poles struct {
 }
 
 func newPoles(s series, rings, falls int) *poles {
-	p := &poles{given: s, s: s, rings: rings, falls: falls, ref: s.level()}
-	if s.len() < parallelFrom {
-		p.y, p.yy, p.n = sums(s.y, p.ref)
+	p := &poles{rings: rings, falls: falls, ref: s.level(), near: &expansions{}}
+	p.take(s)
+	return p
+}
+
+// extended is the problem about s, which goes on where the samples of p end: what was
+// summed up is kept.
+func (p *poles) extended(s series) *poles {
+	out := p.alike(p.rings, p.falls)
+	out.take(s)
+	return out
+}
+
+// take makes the problem one about s, which begins as the samples before did.
+func (p *poles) take(s series) {
+	rest := s.y[p.s.len():]
+	if len(rest) < parallelFrom {
+		p.add(sums(rest, p.ref))
 	} else {
-		halves(s.len(), func(first, last int) func() {
-			y, yy, n := sums(s.y[first:last], p.ref)
-			return func() { p.y, p.yy, p.n = p.y+y, p.yy+yy, p.n+n }
+		halves(len(rest), func(first, last int) func() {
+			y, yy, n := sums(rest[first:last], p.ref)
+			return func() { p.add(y, yy, n) }
 		})
 	}
+	p.given, p.s, p.missing = s, s, nil
 	p.length = s.position(s.len() - 1)
 	if p.n < s.len() {
 		p.fillGaps()
 	}
-	return p
 }
+
+func (p *poles) add(y, yy float64, n int) { p.y, p.yy, p.n = p.y+y, p.yy+yy, p.n+n }
 
 // sums returns the sum and the sum of squares of y - ref and their number; NaN is
 // left out.
@@ -96,8 +114,11 @@ func (p *poles) alike(rings, falls int) *poles {
 }
 
 // covers reports whether the problem is about the samples of s.
-func (p *poles) covers(s series) bool {
-	return p != nil && p.given.len() == s.len() && &p.given.y[0] == &s.y[0] && p.given.stride == s.stride
+func (p *poles) covers(s series) bool { return p.begins(s) && p.given.len() == s.len() }
+
+// begins reports whether it is about the first samples of s.
+func (p *poles) begins(s series) bool {
+	return p != nil && p.given.len() <= s.len() && &p.given.y[0] == &s.y[0] && p.given.stride == s.stride
 }
 
 // newRing is the problem of one ring.
@@ -183,7 +204,7 @@ func (p *poles) uniformGram(list []pole) gram {
 	g.b[0] = p.y
 	m := p.s.spacing()
 	for k, z := range list {
-		sum := projectAll(p.s.y, z.over(m), p.ref)
+		sum := p.projection(z.over(m))
 		sum[1] *= complex(m, 0)
 		p.putProjection(&g, k, sum)
 	}
@@ -229,17 +250,24 @@ func (p *poles) takeOut(g *gram, list []pole) {
 	}
 }
 
-// projectAll returns sum y z^n and sum y n z^n over all of y.
-func projectAll(y []float64, z pole, ref float64) (out [2]complex128) {
+// projection returns sum y z^n and sum y n z^n over all samples.
+func (p *poles) projection(z pole) (out [2]complex128) {
+	y := p.s.y
 	if len(y) < parallelFrom {
 		var t powers // on the stack
 		t.fill(z, len(y))
-		return t.project(y, 0, len(y), ref)
+		return t.project(y, 0, len(y), p.ref)
 	}
 	t := new(powers)
 	t.fill(z, len(y))
+	if e, ok := p.near.about(z); ok {
+		e.extend(y, p.ref)
+		blocks := len(y) / blockLength
+		out, rest := e.project(z, blocks), t.project(y, blocks*blockLength, len(y), p.ref)
+		return [2]complex128{out[0] + rest[0], out[1] + rest[1]}
+	}
 	halves(len(y), func(first, last int) func() {
-		sum := t.project(y, first, last, ref)
+		sum := t.project(y, first, last, p.ref)
 		return func() { out[0], out[1] = out[0]+sum[0], out[1]+sum[1] }
 	})
 	return out

@@ -134,17 +134,12 @@ func (d *Decay) Residuals(ch *capture.Channel, first, n int) []float64 {
 		return out
 	}
 	dt := ch.Axis.Interval
-	n0 := (ch.Axis.Time(first) - d.From) / dt
-	for i := range out {
-		out[i] -= l.offset
-	}
 	sin, cos := math.Sincos(l.phase)
-	ring := term{l.rate * dt, l.omega * dt, l.amplitude * cos, -l.amplitude * sin}
-	ring.subtract(out, n0)
+	terms := []term{{l.rate * dt, l.omega * dt, l.amplitude * cos, -l.amplitude * sin}}
 	if c := l.companion; c != nil {
-		beside := term{c.a * dt, c.w * dt, c.p, c.q}
-		beside.subtract(out, n0)
+		terms = append(terms, term{c.a * dt, c.w * dt, c.p, c.q})
 	}
+	newFollower(l.offset, n, terms...).residuals(out, out, (ch.Axis.Time(first)-d.From)/dt)
 	return out
 }
 

@@ -14,7 +14,6 @@ var sprintf = fmt.Sprintf
 const (
 	stepSamples = 1 << 13 // samples that tell the steps of a converter
 	glitchSigma = 7       // departure that makes a sample an outlier
-	glitchBlock = 1 << 14 // samples looked at in one go
 	glitchShare = 0.02    // share of the samples beyond which it is the model that is wrong
 	levelsTail  = 4       // steps of a converter without dither at which the tail is cut
 	manySteps   = 50      // amplitude in steps from which rounding hardly moves the result
@@ -72,26 +71,15 @@ func (g *gate) glitches(s series) []int {
 	}
 	var out []int
 	halves(window.len(), func(first, last int) func() {
-		far := g.far(window, first, last, limit)
+		var far []int
+		g.fit.departing(window, first, last, limit, func(i int, _ float64) bool {
+			far = append(far, g.first+i)
+			return true
+		})
 		return func() { out = append(out, far...) }
 	})
 	if float64(len(out)) > math.Max(1, glitchShare*float64(window.len())) {
 		return nil
-	}
-	return out
-}
-
-// far returns the samples of the window from first to last-1 that depart from the
-// fit by more than limit, as samples of the record.
-func (g *gate) far(window series, first, last int, limit float64) (out []int) {
-	buffer := make([]float64, min(glitchBlock, last-first))
-	for at := first; at < last; at += glitchBlock {
-		block := window.slice(at, min(at+glitchBlock, last))
-		for i, v := range g.fit.residualsInto(buffer, block, window.position(at)) {
-			if math.Abs(v) > limit {
-				out = append(out, g.first+at+i)
-			}
-		}
 	}
 	return out
 }

@@ -1,0 +1,64 @@
+package decay
+
+// follower evaluates the curve of a fit at even samples, block by block: a constant
+// and the real parts of (p - jq) z^n.
+type follower struct {
+	constant float64
+	terms    []follow
+}
+
+// follow is one term, with the powers of its pole within a block and from block to
+// block.
+type follow struct {
+	z            pole
+	c            complex128
+	re, im       [blockLength]float64
+	farRe, farIm [blockLength]float64
+}
+
+// newFollower is of terms about a constant, for n samples in one go at most.
+func newFollower(constant float64, n int, terms ...term) *follower {
+	f := &follower{constant: constant, terms: make([]follow, len(terms))}
+	for i := range f.terms {
+		t := &f.terms[i]
+		t.z, t.c = pole{terms[i].a, terms[i].w}, complex(terms[i].p, -terms[i].q)
+		powerTable(t.z.at(1), &t.re, &t.im, min(n, blockLength))
+		powerTable(t.z.at(blockLength), &t.farRe, &t.farIm, min(n/blockLength+1, blockLength))
+	}
+	return f
+}
+
+// residuals writes samples y less the curve to out, of the same length, which may be
+// y itself; the first of them is at time n0.
+func (f *follower) residuals(out, y []float64, n0 float64) {
+	for far := 0; far < len(y); far += blockLength * blockLength {
+		for i := range f.terms {
+			t := &f.terms[i]
+			root := t.c * t.z.at(n0+float64(far))
+			for k, at := 0, far; at < min(far+blockLength*blockLength, len(y)); k, at = k+1, at+blockLength {
+				end, c := min(at+blockLength, len(y)), root*complex(t.farRe[k], t.farIm[k])
+				if i == 0 {
+					t.first(out[at:end], y[at:end], f.constant, c)
+				} else {
+					t.next(out[at:end], c)
+				}
+			}
+		}
+	}
+}
+
+func (t *follow) first(out, y []float64, constant float64, c complex128) {
+	re, im := real(c), imag(c)
+	tr, ti, out := t.re[:len(y)], t.im[:len(y)], out[:len(y)]
+	for m, v := range y {
+		out[m] = v - constant - (re*tr[m] - im*ti[m])
+	}
+}
+
+func (t *follow) next(out []float64, c complex128) {
+	re, im := real(c), imag(c)
+	tr, ti := t.re[:len(out)], t.im[:len(out)]
+	for m := range out {
+		out[m] -= re*tr[m] - im*ti[m]
+	}
+}
