@@ -20,17 +20,18 @@ const (
 // limiter or a converter may have cut off. The top of an oscillation lies there too:
 // whether more was there, a fit without them tells.
 func railed(s series) []int {
+	e, from := s.extremes()
+	if e == nil {
+		return nil
+	}
 	var out []int
 	for _, rail := range []float64{s.lo, s.hi} {
-		before := len(out)
-		for i, v := range s.y {
-			if v == rail {
-				out = append(out, i)
-			}
+		if on := e.equal(rail, from, from+s.len()); len(on) >= railLeast {
+			out = append(out, on...)
 		}
-		if len(out)-before < railLeast {
-			out = out[:before]
-		}
+	}
+	for i := range out {
+		out[i] -= from
 	}
 	slices.Sort(out)
 	return out

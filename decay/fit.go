@@ -206,7 +206,7 @@ func (f *ringFit) departing(s series, first, last int, limit float64, visit func
 		left := buffer[:part.len()]
 		residuals(left, part, s.position(at))
 		for i, r := range left {
-			if math.Abs(r) > limit && !visit(at+i, r) {
+			if (r > limit || r < -limit) && !visit(at+i, r) {
 				return
 			}
 		}

@@ -78,8 +78,27 @@ func (p *poles) take(s series) {
 func (p *poles) add(y, yy float64, n int) { p.y, p.yy, p.n = p.y+y, p.yy+yy, p.n+n }
 
 // sums returns the sum and the sum of squares of y - ref and their number; NaN is
-// left out.
+// left out. Four sets of sums let the additions overlap.
 func sums(y []float64, ref float64) (sum, squares float64, n int) {
+	var s0, s1, s2, s3, q0, q1, q2, q3 float64
+	i := 0
+	for ; i+3 < len(y); i += 4 {
+		a, b, c, d := y[i]-ref, y[i+1]-ref, y[i+2]-ref, y[i+3]-ref
+		s0, s1, s2, s3 = s0+a, s1+b, s2+c, s3+d
+		q0, q1, q2, q3 = q0+a*a, q1+b*b, q2+c*c, q3+d*d
+	}
+	for ; i < len(y); i++ {
+		v := y[i] - ref
+		s0, q0 = s0+v, q0+v*v
+	}
+	if sum = s0 + s1 + s2 + s3; sum == sum {
+		return sum, q0 + q1 + q2 + q3, len(y)
+	}
+	return sumsOfThose(y, ref)
+}
+
+// sumsOfThose is [sums] of the samples that are there.
+func sumsOfThose(y []float64, ref float64) (sum, squares float64, n int) {
 	for _, v := range y {
 		v -= ref
 		if v == v {

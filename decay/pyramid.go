@@ -19,7 +19,7 @@ const pyramidRatio = 4
 // newPyramid fills gaps with the last value and puts uneven samples on a uniform
 // grid: good enough to look for start values, never used for the result.
 func newPyramid(s series) *pyramid {
-	base := series{y: s.y, t0: s.time(0), dt: s.dt}
+	base := series{y: s.y, t0: s.time(0), dt: s.dt, record: s.record, from: s.from}
 	if s.times != nil {
 		base.y = gridded(s)
 	} else if s.gaps {
@@ -95,10 +95,10 @@ func scale(k int) int { return 1 << (2 * k) }
 func (p *pyramid) onsets() []int {
 	found := []int{0}
 	for k := len(p.levels) - 1; k >= 0; k-- {
-		i := steepest(p.levels[k].y, 0, p.levels[k].len())
+		i := steepest(p.levels[k], 0, p.levels[k].len())
 		for j := k - 1; j >= 0; j-- {
 			i *= pyramidRatio
-			i = steepest(p.levels[j].y, i-pyramidRatio, i+3*pyramidRatio)
+			i = steepest(p.levels[j], i-pyramidRatio, i+3*pyramidRatio)
 		}
 		found = append(found, i)
 	}
@@ -107,30 +107,39 @@ func (p *pyramid) onsets() []int {
 }
 
 // steepest returns the index before the largest step between neighbours or next
-// neighbours in y[first:last].
-func steepest(y []float64, first, last int) int {
-	first, last = max(0, first), min(len(y), last)
+// neighbours in samples first to last-1.
+func steepest(s series, first, last int) int {
+	first, last = max(0, first), min(s.len(), last)
 	most, at := -1.0, first
 	halves(max(0, last-2-first), func(from, to int) func() {
-		d, i := largestStep(y[first+from : first+to+2])
+		d, i := largestStep(s, first+from, first+to)
 		return func() {
 			if d > most {
-				most, at = d, first+from+i
+				most, at = d, i
 			}
 		}
 	})
 	return at
 }
 
-// largestStep returns the largest step of y and the index before it.
-func largestStep(y []float64) (most float64, at int) {
-	most = -1
-	for i := range len(y) - 2 {
-		if d := math.Abs(y[i+1] - y[i]); d > most {
-			most, at = d, i
+// largestStep returns the largest step from one of samples first to last-1, and where;
+// a stretch whose range is smaller is passed over.
+func largestStep(s series, first, last int) (most float64, at int) {
+	most, at = -1, first
+	record, start := s.extremes()
+	for from, to := first, 0; from < last; from = to {
+		to = min(last, (start+from)/rangeBlock*rangeBlock+rangeBlock-start)
+		if record != nil && record.rangeOf(start+from, start+to+2) <= most {
+			continue
 		}
-		if d := math.Abs(y[i+2] - y[i]); d > most {
-			most, at = d, i
+		y := s.y[from : to+2]
+		for i := range len(y) - 2 {
+			if d := math.Abs(y[i+1] - y[i]); d > most {
+				most, at = d, from+i
+			}
+			if d := math.Abs(y[i+2] - y[i]); d > most {
+				most, at = d, from+i
+			}
 		}
 	}
 	return most, at

@@ -20,34 +20,30 @@ type series struct {
 	// stride, if not 0, is the distance of neighbours in intervals: the series was
 	// thinned.
 	stride int
+	// record knows the extremes of the record, and from is where y begins there.
+	record *Extremes
+	from   int
 }
 
 func newSeries(ch *capture.Channel) series {
 	s := series{y: ch.Samples, t0: ch.Axis.Start, dt: ch.Axis.Interval, times: ch.Axis.Times}
+	s.record = NewExtremes(s.y)
+	s.gaps = s.record.gaps
 	s.lo, s.hi = math.Inf(1), math.Inf(-1)
-	halves(len(s.y), func(first, last int) func() {
-		lo, hi, gaps := span(s.y[first:last])
-		return func() { s.lo, s.hi, s.gaps = min(s.lo, lo), max(s.hi, hi), s.gaps || gaps }
-	})
+	for k, lo := range s.record.lo {
+		s.lo, s.hi = min(s.lo, lo), max(s.hi, s.record.hi[k])
+	}
 	s.step = stepOf(s.y)
 	return s
 }
 
-// span returns the smallest and the largest sample, and whether any is missing.
-func span(y []float64) (lo, hi float64, gaps bool) {
-	lo, hi = math.Inf(1), math.Inf(-1)
-	for _, v := range y {
-		if v < lo {
-			lo = v
-		}
-		if v > hi {
-			hi = v
-		}
-		if v != v {
-			gaps = true
-		}
+// extremes returns those of the record when y is a part of it, unchanged, and where y
+// begins there; nil otherwise.
+func (s series) extremes() (e *Extremes, from int) {
+	if s.record == nil || s.len() == 0 || &s.record.y[s.from] != &s.y[0] {
+		return nil, 0
 	}
-	return lo, hi, gaps
+	return s.record, s.from
 }
 
 func (s series) len() int { return len(s.y) }
@@ -64,7 +60,7 @@ func (s series) spacing() float64 { return float64(max(1, s.stride)) }
 // slice returns samples first to last-1.
 func (s series) slice(first, last int) series {
 	out := s
-	out.y, out.t0 = s.y[first:last], s.time(first)
+	out.y, out.t0, out.from = s.y[first:last], s.time(first), s.from+first
 	if s.times != nil {
 		out.times = s.times[first:last]
 	}
