@@ -115,21 +115,10 @@ func (r *progression) goesOn(t *instant) bool {
 	return true
 }
 
-// evenly returns how many of the stamps, whole numbers of 10^exp seconds, continue
-// the progression that all so far are.
-func (s *span) evenly(stamps []float64, exp int) int {
-	r := &s.run
-	if s.n != r.n || r.n < 2 || r.exp != exp {
-		return 0
-	}
-	before := r.last
-	for i, t := range stamps {
-		if int64(t)-before != r.step {
-			return i
-		}
-		before += r.step
-	}
-	return len(stamps)
+// progresses reports whether all stamps so far are a progression, and gives its last
+// and its step.
+func (s *span) progresses() (last, step int64, ok bool) {
+	return s.run.last, s.run.step, s.n == s.run.n && s.n > 1
 }
 
 // goOn takes in n stamps that continue the progression.

@@ -5,57 +5,59 @@ import (
 	"math"
 )
 
-// Most rows of a record are printed alike: digits and all other bytes stand where they
-// stood in the row before, but for a sign. A stencil keeps where. Rows that fit it hold
-// the same cells, and the processor reads all digits of a number at a time where it has
-// instructions for that; fastRow reads all others.
+// Most rows of a record are printed alike: numbers of whatever width, and between them
+// the same bytes as in the row before. A stencil keeps them. Where the processor has
+// instructions for it, it reads the numbers of rows that fit a stencil sixteen bytes at a
+// time; fastRow reads all others.
 
 const (
-	stencilsKept  = 8   // as many widths of the cells as may take turns
+	stencilsKept  = 4   // as many kinds of row as may take turns
 	stencilParts  = 64  // of a row
 	stencilDigits = 15  // of a number: they make a whole number that float64 holds
 	stencilRows   = 256 // read in one go
 
-	// Making a stencil costs as much as a few rows. It is paid from the credit that rows
-	// which fit have earned, so that rows of ever other widths cost little more.
-	creditFirst = 16
-	creditMost  = 64
-	stencilCost = 4
+	// What a stencil costs, in rows that it could be read faster in. Rows that fit earn the
+	// credit for it, so that rows of ever other kinds cost little more than without.
+	creditFirst = 64
+	creditMost  = 256
+	runCost     = 4
+	stencilCost = 16
 )
 
 // A stencil is the layout of a row.
 type stencil struct {
 	parts   []rowPart
 	numbers []numeral
-	most    int // bytes of a row
+	most    int // bytes that a row can hold
 }
 
-// A rowPart is a stretch of a row that may begin with a sign and a number: the digits
-// that pick names, times or over a power of ten.
+// A rowPart is a stretch of a row: a number, if it begins with one, and the bytes behind
+// it up to the next.
 type rowPart struct {
-	// Each byte of the part, after an exclusive or with fixed, must not be above its limit.
+	number uint8 // 1 if there is one
+	blanks uint8 // 1 if blanks may stand before it
+	width  int   // of the last one, without its sign
+	// stop is the byte behind the number and mark its decimal mark, as often as there is
+	// room for.
+	stop, mark [partBytes]byte
+	powers     *float64 // for each number of decimal places, what the digits are divided by
+	to         *float64
+	places     *uint8
+	// Each byte behind the number, after an exclusive or with fixed, must not be above its
+	// limit.
 	fixed, limit [partBytes]byte
-	// pick tells for each digit of a number of sixteen which byte holds it, noDigit for none.
-	pick        [16]byte
-	times, over float64
-	to          *float64
-	length      int    // in bytes, without the sign
-	signed      uint64 // 1 for a part that may begin with a minus sign or a byte of padding
-	padding     byte   // a plus sign, or a blank; the minus sign where there is neither
+	length       int // of what is behind the number
 }
 
-const (
-	partBytes = 32
-	noDigit   = 0x80
-)
+const partBytes = 32
 
 // A numeral is a number of a row that is wanted.
 type numeral struct {
-	part  int
 	step  *step
-	exp   int // power of ten of its last digit, in base units
-	power int // part that holds its exponent, 0 where that is counted in exp
-	sign  int // of the exponent
+	part  int
+	exp   int  // its exponent where that stays the same,
+	power int  // or the part that holds it, 0 without one
+	whole bool // the part gives its digits, without decimal places and unit
 }
 
 // stencils are those that a worker has made, and room for the numbers read with them.
@@ -64,7 +66,12 @@ type stencils struct {
 	last   int // the one that fitted last
 	oldest int
 	credit int
-	room   [][stencilRows]float64 // for each part of a row
+	room   []stencilRoom // for each part of a row
+}
+
+type stencilRoom struct {
+	digits [stencilRows]float64
+	places [stencilRows]uint8
 }
 
 // rows reads the rows from text[i] on that a stencil fits. It returns where they end, i
@@ -79,11 +86,11 @@ func (t *stencils) rows(p *plan, c *chunk, i int) (next, n int) {
 			k -= len(t.list)
 		}
 		if size, n := t.read(&t.list[k], p, c, i); n > 0 {
-			t.last, t.credit = k, min(t.credit+n, creditMost)
+			t.last, t.credit = k, min(t.credit+n-runCost, creditMost)
 			return i + size, n
 		}
+		t.credit--
 	}
-	t.credit--
 	return i, 0
 }
 
@@ -94,16 +101,21 @@ func (t *stencils) read(s *stencil, p *plan, c *chunk, i int) (size, n int) {
 		return 0, 0
 	}
 	for k := range s.parts {
-		s.parts[k].to = &t.room[k][0]
+		s.parts[k].to, s.parts[k].places = &t.room[k].digits[0], &t.room[k].places[0]
 	}
 	for _, v := range s.numbers {
 		if v.step.op == opValue {
 			s.parts[v.part].to = &c.dst[v.step.to][c.rows]
 		}
 	}
-	size, n = readFitting(s.parts, &c.text[i], last, min(stencilRows, c.lines-c.rows))
-	good := t.accept(s, p, c, t.scale(s, c, n))
-	if good < n {
+	size, n = readFitting(s.parts, &shapes, &c.text[i], last, min(stencilRows, c.lines-c.rows))
+	good := n
+	for k := range s.numbers {
+		if v := &s.numbers[k]; v.step.op == opValue && v.whole {
+			good = t.scale(v, c.dst[v.step.to][c.rows:][:good])
+		}
+	}
+	if good = t.accept(s, p, c, good); good < n {
 		size = 0
 		for range good {
 			size += bytes.IndexByte(c.text[i+size:], p.term) + 1
@@ -112,36 +124,43 @@ func (t *stencils) read(s *stencil, p *plan, c *chunk, i int) (size, n int) {
 	return size, good
 }
 
-// scale puts the exponents of n rows to their samples. It returns for how many of the
-// rows that is one exact operation.
-func (t *stencils) scale(s *stencil, c *chunk, n int) int {
-	for _, v := range s.numbers {
-		if v.power == 0 {
-			continue
-		}
-		samples := c.dst[v.step.to][c.rows:][:n]
-		for r, power := range t.room[v.power][:n] {
-			e := v.exp + v.sign*int(power)
-			if uint(-e) < uint(len(exactPow10)) {
-				samples[r] /= exactPow10[-e]
-			} else if uint(e) < uint(len(exactPow10)) {
-				samples[r] *= exactPow10[e]
-			} else {
-				n = r
-				break
-			}
+// exponent is the power of ten of the last digit of a number in row r; ok is false where
+// what stands there is none.
+func (t *stencils) exponent(v *numeral, r int) (e int, ok bool) {
+	e = v.step.shift + v.exp - int(t.room[v.part].places[r])
+	if v.power == 0 {
+		return e, true
+	}
+	power := &t.room[v.power]
+	return e + int(power.digits[r]), power.places[r] == 0 && math.Abs(power.digits[r]) < 1e6
+}
+
+// scale puts the exponents to samples. It returns for how many that is one exact
+// operation.
+func (t *stencils) scale(v *numeral, samples []float64) int {
+	for r := range samples {
+		e, ok := t.exponent(v, r)
+		switch {
+		case !ok:
+			return r
+		case uint(-e) < uint(len(exactPow10)):
+			samples[r] /= exactPow10[-e]
+		case uint(e) < uint(len(exactPow10)):
+			samples[r] *= exactPow10[e]
+		default:
+			return r
 		}
 	}
-	return n
+	return len(samples)
 }
 
 // accept takes in the stamps of n rows whose samples are there already, up to the first
 // that gives an error.
 func (t *stencils) accept(s *stencil, p *plan, c *chunk, n int) int {
 	even := n
-	for _, v := range s.numbers {
-		if v.step.op == opTime {
-			even = c.spans[v.step.to].evenly(t.room[v.part][:even], v.exp)
+	for k := range s.numbers {
+		if v := &s.numbers[k]; v.step.op == opTime {
+			even = t.evenly(v, &c.spans[v.step.to], even)
 		}
 	}
 	for k := range c.spans {
@@ -149,15 +168,35 @@ func (t *stencils) accept(s *stencil, p *plan, c *chunk, n int) int {
 	}
 	c.rows += even
 	for r := even; r < n; r++ {
-		for _, v := range s.numbers {
-			if v.step.op == opTime {
-				c.now[v.step.to] = instant{d: wholeDecimal(t.room[v.part][r], v.exp)}
+		for k := range s.numbers {
+			if v := &s.numbers[k]; v.step.op == opTime {
+				e, ok := t.exponent(v, r)
+				if !ok {
+					return r
+				}
+				c.now[v.step.to] = instant{d: wholeDecimal(t.room[v.part].digits[r], e)}
 			}
 		}
 		c.rows++
 		if p.accept(c); c.err != nil {
 			return r + 1
 		}
+	}
+	return n
+}
+
+// evenly returns how many of n stamps continue the progression that all so far are.
+func (t *stencils) evenly(v *numeral, s *span, n int) int {
+	before, step, ok := s.progresses()
+	if !ok {
+		return 0
+	}
+	for r, whole := range t.room[v.part].digits[:n] {
+		e, ok := t.exponent(v, r)
+		if !ok || e != s.run.exp || int64(whole)-before != step {
+			return r
+		}
+		before += step
 	}
 	return n
 }
@@ -182,7 +221,7 @@ func (t *stencils) learn(p *plan, c *chunk, i, next int) {
 		return
 	}
 	for len(t.room) < len(s.parts) {
-		t.room = append(t.room, [stencilRows]float64{})
+		t.room = append(t.room, stencilRoom{})
 	}
 	if len(t.list) < stencilsKept {
 		t.list = append(t.list, s)

@@ -12,163 +12,133 @@ type cut struct{ from, to int }
 // A stencilMaker takes a row to pieces.
 type stencilMaker struct {
 	stencil
-	row          []byte
-	fixed, limit []byte // of every byte of the row
-	at           int    // what lies before is in parts
+	plan *plan
+	row  []byte
+	kept []bool // digits that must stay as they are
+	at   int    // what lies before is in parts
 }
 
 // stencil makes the stencil of the row text[i:next], which fastRow has read. There is
 // none for rows that hold stamps of other kinds than numbers, or numbers too long.
 func (p *plan) stencil(c *chunk, i, next int) (s stencil, ok bool) {
 	steps := p.steps[:p.last+1]
-	if next-i > stencilParts*partBytes || slices.ContainsFunc(steps, func(s step) bool { return s.op == opClock }) {
+	if slices.ContainsFunc(steps, func(s step) bool { return s.op == opClock }) {
 		return s, false
 	}
 	c.cuts = make([]cut, len(steps))
 	p.fastRow(c, i)
 	cuts := c.cuts
 	c.cuts = nil
-	m := stencilMaker{row: c.text[i:next], fixed: bytes.Clone(c.text[i:next]), limit: make([]byte, next-i)}
-	for k, b := range m.row {
-		if b-'0' <= 9 {
-			m.fixed[k], m.limit[k] = '0', 9
-		}
-	}
+	m := stencilMaker{plan: p, row: c.text[i:next], kept: make([]bool, next-i)}
 	for k := range steps {
-		if steps[k].op != opSkip && !m.number(p, &steps[k], cuts[k].from-i, cuts[k].to-i) {
+		if steps[k].op != opSkip && !m.number(&steps[k], cuts[k].from-i, cuts[k].to-i) {
 			return s, false
 		}
 	}
-	m.close(len(m.row))
-	m.most = len(m.row) + len(m.parts)
+	m.text(len(m.row))
 	return m.stencil, len(m.parts) <= stencilParts
 }
 
 // number begins a part with the number row[from:to]. It reports false for one that takes
-// more than whole numbers of float64.
-func (m *stencilMaker) number(p *plan, step *step, from, to int) bool {
-	first, padding := m.slot(p, from)
-	text := m.row[first:to]
+// more than a stencil can.
+func (m *stencilMaker) number(step *step, from, to int) bool {
+	blanks := m.blanksBefore(from)
+	m.text(blanks)
+	text := m.row[from:to]
 	end := len(text)
-	n := numeral{step: step, exp: step.shift}
+	v := numeral{step: step, part: len(m.parts)}
 	if e := bytes.IndexAny(text, "eE"); e >= 0 {
 		end = e
 	}
-	mark := bytes.IndexByte(text[:end], p.mark)
-	if mark >= 0 {
-		n.exp -= end - 1 - mark
-	}
-	n.part = m.begin(first, 1, padding)
-	part := &m.parts[n.part]
-	if !part.choose(text[:end], mark) {
+	if !isShape(text[:end], m.plan.mark) || m.row[from+end] == m.plan.mark {
 		return false
 	}
-	if end < len(text) && !m.power(&n, text, first, end+1) {
-		return false
+	v.whole = end < len(text) || step.op == opTime || step.shift > 0 || stencilDigits-step.shift >= len(exactPow10)
+	powers := &ones[0]
+	if !v.whole {
+		powers = &exactPow10[-step.shift]
 	}
-	m.numbers = append(m.numbers, n)
-	switch limit := len(exactPow10); {
-	case step.op == opTime || n.power > 0: // the whole number
-	case n.exp >= limit || -n.exp >= limit:
-		return false
-	case n.exp > 0:
-		part.times = exactPow10[n.exp]
-	default:
-		part.over = exactPow10[-n.exp]
+	m.begin(from, from+end, m.plan.mark, blanks < from, powers)
+	switch {
+	case end == len(text):
+	case step.op == opTime: // its exponent stays: one that does not ends an even run of stamps
+		v.exp, _ = scanExponent(append(bytes.Clone(text[end+1:]), 0), 0)
+		for k := from + end; k < to; k++ {
+			m.kept[k] = true
+		}
+	default: // the exponent is a number of its own
+		m.text(from + end + 1)
+		v.power = len(m.parts)
+		m.begin(from+end+1, to, m.row[to], false, &ones[0])
 	}
+	m.numbers = append(m.numbers, v)
 	return true
 }
 
-// slot tells where the digits of the number at from begin, and what may stand in their
-// place before them where no minus sign does. All before it closes the part before.
-func (m *stencilMaker) slot(p *plan, from int) (first int, padding byte) {
-	first, padding = from, ' '
-	place := from
-	switch sign := m.row[from]; {
-	case sign == '+':
-		first, padding = from+1, '+'
-	case sign == '-':
-		first = from + 1
-	case from > m.at && m.row[from-1] == ' ' && (p.delim != ' ' || from == 1 || isBlank(m.row[from-2])):
-		place = from - 1 // and what parts the cells is before it
-	}
-	if place > 0 && m.row[place-1] == '"' {
-		padding = '-' // nothing
-	}
-	m.close(place)
-	return first, padding
-}
+// ones are the powers of ten of no digits.
+var ones = [stencilDigits + 1]float64{1, 1, 1, 1, 1, 1, 1, 1, 1, 1, 1, 1, 1, 1, 1, 1}
 
-func isBlank(b byte) bool { return b == ' ' || b == '\t' }
-
-// power makes a part of the exponent whose sign or first digit is text[at], or keeps
-// that of a stamp as it is: few change, and one that does breaks a progression.
-func (m *stencilMaker) power(n *numeral, text []byte, first, at int) bool {
-	value, _ := scanExponent(append(bytes.Clone(text[at:]), 0), 0)
-	if n.step.op == opTime {
-		n.exp += value
-		for k := first + at; k < first+len(text); k++ {
-			m.fixed[k], m.limit[k] = m.row[k], 0
-		}
-		return true
+// blanksBefore returns where the blanks begin that may be fewer or more before a number:
+// all of them, but for the one that parts two cells.
+func (m *stencilMaker) blanksBefore(from int) int {
+	at := from
+	for at > m.at && m.row[at-1] == ' ' {
+		at--
 	}
-	n.sign = 1
-	if text[at] == '-' {
-		n.sign = -1
-	}
-	if text[at]-'0' > 9 {
+	if at < from && at > 0 && m.plan.delim == ' ' && m.row[at-1] != '\t' {
 		at++
 	}
-	m.close(first + at)
-	n.power = m.begin(first+at, 0, '-')
-	return m.parts[n.power].choose(text[at:], -1)
+	return at
 }
 
-// begin begins a part at a byte of the row, and returns its number.
-func (m *stencilMaker) begin(at int, signed uint64, padding byte) int {
-	m.at = at
-	m.parts = append(m.parts, rowPart{times: 1, over: 1, signed: signed, padding: padding})
-	part := &m.parts[len(m.parts)-1]
-	for k := range part.pick {
-		part.pick[k] = noDigit
+// begin begins a part with the number row[from:to]; a mark that is the byte behind it
+// is none.
+func (m *stencilMaker) begin(from, to int, mark byte, blanks bool, powers *float64) {
+	part := rowPart{number: 1, powers: powers, width: to - from}
+	for k := range partBytes {
+		part.stop[k], part.mark[k] = m.row[to], mark
 	}
-	return len(m.parts) - 1
+	if blanks {
+		part.blanks = 1
+	}
+	m.parts = append(m.parts, part)
+	m.most += partBytes
+	m.at = to
 }
 
-// close ends the part that has been begun at a byte of the row, or several where it is
-// longer than one can be.
-func (m *stencilMaker) close(at int) {
-	if len(m.parts) == 0 && at > 0 {
-		m.begin(0, 0, '-')
-	}
-	for len(m.parts) > 0 {
-		part := &m.parts[len(m.parts)-1]
-		part.length = min(at-m.at, partBytes)
-		copy(part.fixed[:], m.fixed[m.at:m.at+part.length])
-		copy(part.limit[:], m.limit[m.at:m.at+part.length])
-		for k := part.length; k < partBytes; k++ {
-			part.limit[k] = math.MaxUint8
-		}
-		if m.at += part.length; m.at == at {
+// text ends the part begun, at a byte of the row, or several where it is longer than one
+// can be.
+func (m *stencilMaker) text(to int) {
+	if len(m.parts) == 0 {
+		if to == 0 {
 			return
 		}
-		m.begin(m.at, 0, '-')
+		m.parts = append(m.parts, rowPart{})
+	}
+	for {
+		part := &m.parts[len(m.parts)-1]
+		n := min(to-m.at, partBytes)
+		part.set(m.row[m.at:m.at+n], m.kept[m.at:])
+		m.most += n
+		if m.at += n; m.at >= to {
+			return
+		}
+		m.parts = append(m.parts, rowPart{})
 	}
 }
 
-// choose picks the digits of a number that begins with the part; mark is where its
-// decimal mark stands, negative where it has none.
-func (part *rowPart) choose(number []byte, mark int) bool {
-	count := 0
-	for at := len(number) - 1; at >= 0; at-- {
-		if at == mark {
-			continue
+// set tells what stands behind the number of a part: digits in the places of digits, and
+// these very bytes in all others and where they are kept.
+func (part *rowPart) set(text []byte, kept []bool) {
+	part.length = len(text)
+	for k := range part.limit {
+		switch {
+		case k >= len(text):
+			part.limit[k] = math.MaxUint8
+		case text[k]-'0' <= 9 && !kept[k]:
+			part.fixed[k], part.limit[k] = '0', 9
+		default:
+			part.fixed[k] = text[k]
 		}
-		if count == stencilDigits || at >= len(part.pick) {
-			return false
-		}
-		count++
-		part.pick[len(part.pick)-count] = byte(at)
 	}
-	return true
 }
