@@ -48,12 +48,13 @@ func scanDecimal(b []byte, i int, mark byte) (d decimal, end int) {
 	if b[i] == mark {
 		i++
 		point := i
-		// One step of eight suffices: few files print more decimal places.
-		if i+8 <= len(b) {
-			if w := binary.LittleEndian.Uint64(b[i:]); eightDigits(w) {
-				m = m*100000000 + eightValue(w)
-				i += 8
+		for i+8 <= len(b) {
+			w := binary.LittleEndian.Uint64(b[i:])
+			if !eightDigits(w) {
+				break
 			}
+			m = m*100000000 + eightValue(w)
+			i += 8
 		}
 		c = b[i] - '0'
 		for c <= 9 {
