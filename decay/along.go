@@ -70,23 +70,22 @@ type stretch struct {
 
 // stretch measures the samples from one up to before another.
 func (d *Decay) stretch(ch *capture.Channel, from, to int) (stretch, bool) {
-	alpha, omega := d.Quantities.DecayRate.Value, 2*math.Pi*d.Quantities.DampedFrequency.Value
 	origin := ch.Axis.Time(from) - d.From
+	step := 1 + (to-from)/mostLocal
+	ring := d.ringAt(ch, from, step, to)
 	var cc, cs, ss, yc, ys, weight, moment float64
-	for i := from; i < to; i += 1 + (to-from)/mostLocal {
-		t := ch.Axis.Time(i) - d.From
+	for i := from; i < to; i += step {
+		// About the stretch, so that the far end of a long decay is no zero.
+		t, z := ch.Axis.Time(i)-d.From, ring()
 		y := ch.Samples[i]
 		if math.IsNaN(y) {
 			continue
 		}
-		// About the stretch, so that the far end of a long decay is no zero.
-		e := math.Exp(-alpha * (t - origin))
-		sin, cos := math.Sincos(omega * t)
-		c, s := e*cos, -e*sin
+		c, s, square := real(z), -imag(z), power(z)
 		y = d.ringOnly(t, y)
 		cc, cs, ss = cc+c*c, cs+c*s, ss+s*s
 		yc, ys = yc+y*c, ys+y*s
-		weight, moment = weight+e*e, moment+e*e*t
+		weight, moment = weight+square, moment+square*t
 	}
 	det := cc*ss - cs*cs
 	if !(det > 1e-6*cc*ss) {
@@ -94,19 +93,36 @@ func (d *Decay) stretch(ch *capture.Channel, from, to int) (stretch, bool) {
 	}
 	z := complex((yc*ss-ys*cs)/det, (ys*cc-yc*cs)/det)
 	u := d.NoiseRMS * d.NoiseFactor / (cmplx.Abs(z) * math.Sqrt(weight/2))
-	scale := complex(math.Exp(alpha*origin), 0)
+	scale := complex(math.Exp(d.Quantities.DecayRate.Value*origin), 0)
 	return stretch{moment / weight, z * scale, u}, u < localU
+}
+
+// ringAt returns a function that gives, one by one, exp((-alpha + i omega) t) at every
+// step-th sample of a stretch, its size counted from the first.
+func (d *Decay) ringAt(ch *capture.Channel, from, step, to int) func() complex128 {
+	alpha, omega := d.Quantities.DecayRate.Value, 2*math.Pi*d.Quantities.DampedFrequency.Value
+	start := ch.Axis.Time(from)
+	first := cmplx.Exp(complex(0, omega*(start-d.From)))
+	if ch.Axis.Times == nil {
+		dt := ch.Axis.Interval * float64(step)
+		powers := newLadder(pole{alpha * dt, omega * dt}, (to-from)/step+1)
+		return func() complex128 { return first * powers.next() }
+	}
+	i := from - step
+	return func() complex128 {
+		i += step
+		return first * pole{alpha, omega}.at(ch.Axis.Time(i)-start)
+	}
 }
 
 // ringOnly takes baseline and other modes from a sample at t seconds after From.
 func (d *Decay) ringOnly(t, y float64) float64 {
-	if l, ok := d.law.(exponentialLaw); ok {
+	if l, ok := d.law.(exponentialLaw); ok && l.companion != nil {
 		v, _, _ := l.at(t)
 		ring := l.amplitude * math.Exp(-l.rate*t) * math.Cos(l.omega*t+l.phase)
 		return y - (v - ring)
 	}
-	_, _, b := d.law.at(t)
-	return y - b
+	return y - constantOf(d.law)
 }
 
 // between is frequency and Q from one stretch to the next.

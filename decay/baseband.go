@@ -27,14 +27,7 @@ type baseband struct {
 	d        *Decay
 	constant float64
 	table    powers
-	sums     []run // the same in most blocks
-}
-
-// run is the sum of the powers of a pole from 0 to count-1.
-type run struct {
-	z     pole
-	count int
-	sum   complex128
+	turns    []complex128 // exp(-jwn) at every table of samples of a block
 }
 
 // mostMissing is the share of missing samples beyond which a spectrum is withheld.
@@ -85,6 +78,10 @@ func (d *Decay) baseband(ch *capture.Channel, w float64, m int) *baseband {
 	b := &baseband{w: w, dt: ch.Axis.Interval, m: m, n: d.Last - d.First,
 		d: d, constant: constantOf(d.law)}
 	b.table.fill(pole{0, -w}, m)
+	turn := newLadder(pole{0, -w}.over(blockLength), m/blockLength+1)
+	for range m/blockLength + 1 {
+		b.turns = append(b.turns, turn.next())
+	}
 	blocks := (b.n + m - 1) / m
 	b.measured, b.fitted = make([]complex128, blocks), make([]complex128, blocks)
 	y := ch.Samples[d.First:d.Last]
@@ -92,23 +89,19 @@ func (d *Decay) baseband(ch *capture.Channel, w float64, m int) *baseband {
 		missing := 0
 		for k := (first + m - 1) / m; k*m < last; k++ {
 			sum, filled := b.sum(ch, y, k*m, min(k*m+m, b.n))
-			b.measured[k] = b.turned(sum, k*m)
+			b.measured[k] = sum
 			missing += filled
 		}
 		return func() { b.missing += missing }
 	})
-	for k := range b.fitted {
-		b.fitted[k] = b.turned(b.curve(k*m, min(k*m+m, b.n)), k*m)
+	b.fit()
+	turn = newLadder(pole{0, -w}.over(float64(m)), blocks)
+	for k := range b.measured { // phases are counted from the first sample of all
+		t := turn.next()
+		b.measured[k] *= t
+		b.fitted[k] *= t
 	}
 	return b
-}
-
-// turned counts the phase of a sum from n samples before it.
-func (b *baseband) turned(sum complex128, n int) complex128 {
-	if n == 0 || b.w == 0 {
-		return sum
-	}
-	return sum * pole{0, -b.w}.at(float64(n))
 }
 
 // sum is that of samples first to last-1, phases counted from the first.
@@ -117,12 +110,12 @@ func (b *baseband) sum(ch *capture.Channel, y []float64, first, last int) (sum c
 	for at := first; at < last; at += blockLength {
 		part := y[at:min(at+blockLength, last)]
 		s := b.dot(part)
-		if cmplx.IsNaN(s) || cmplx.IsInf(s) || b.d.spoilt(at, at+len(part)) { // missing, or not the circuit's
+		if !finite(real(s)+imag(s)) || b.d.spoilt(at, at+len(part)) { // missing, or not the circuit's
 			copy(buffer[:], part)
 			filled += b.fill(ch, buffer[:len(part)], at)
 			s = b.dot(buffer[:len(part)])
 		}
-		sum += b.turned(s, at-first)
+		sum += s * b.turns[(at-first)/blockLength]
 	}
 	return sum, filled
 }
@@ -159,34 +152,44 @@ func (b *baseband) fill(ch *capture.Channel, y []float64, at int) (filled int) {
 	return filled
 }
 
-// curve is the sum of the fitted curve from sample first to last-1, in closed form:
-// with the ring the real part of C z^n it is
-//
-//	(C sum (z/v)^n + C* sum (z*/v)^n)/2, v = exp(jw).
-func (b *baseband) curve(first, last int) (sum complex128) {
-	for _, r := range ringsOf(b.d.law, float64(first), float64(last-first), b.dt) {
-		c, n := complex(r.p, -r.q), last-first
-		sum += (c*b.run(pole{r.a, r.w - b.w}, n) + cmplx.Conj(c)*b.run(pole{r.a, -r.w - b.w}, n)) / 2
-	}
-	return sum
-}
-
-// run is the sum of the powers of z.
-func (b *baseband) run(z pole, count int) complex128 {
-	for i := range b.sums {
-		if s := &b.sums[i]; s.z == z && s.count == count {
-			return s.sum
+// fit sums over the blocks of the fitted curve.
+func (b *baseband) fit() {
+	whole := b.n / b.m
+	if _, bent := b.d.law.(bentLaw); bent {
+		for k := range whole {
+			b.fitted[k] = b.curve(ringsOf(b.d.law, float64(k*b.m), float64(b.m), b.dt), b.m)
+		}
+	} else {
+		for _, r := range ringsOf(b.d.law, 0, 0, b.dt) {
+			powers := newLadder(pole{r.a, r.w}.over(float64(b.m)), whole)
+			for k, image := 0, b.images(r, b.m); k < whole; k++ {
+				b.fitted[k] += image.of(complex(r.p, -r.q) * powers.next())
+			}
 		}
 	}
-	sum := geometric(z, count)[0]
-	if len(b.sums) < runsKept {
-		b.sums = append(b.sums, run{z, count, sum})
+	if first := whole * b.m; first < b.n {
+		b.fitted[whole] = b.curve(ringsOf(b.d.law, float64(first), float64(b.n-first), b.dt), b.n-first)
+	}
+}
+
+// curve is the sum over n samples of rings.
+func (b *baseband) curve(rings []term, n int) (sum complex128) {
+	for _, r := range rings {
+		sum += b.images(r, n).of(complex(r.p, -r.q))
 	}
 	return sum
 }
 
-// runsKept are those of two rings and their images in whole blocks and in the last.
-const runsKept = 8
+// images are half the sums of (z/v)^n and (z*/v)^n, v = exp(jw), over a block: with a
+// ring the real part of C z^n its sum over the block is that of C times the one and C*
+// times the other.
+type images struct{ own, other complex128 }
+
+func (b *baseband) images(r term, n int) images {
+	return images{geometric(pole{r.a, r.w - b.w}, n)[0] / 2, geometric(pole{r.a, -r.w - b.w}, n)[0] / 2}
+}
+
+func (i images) of(c complex128) complex128 { return c*i.own + cmplx.Conj(c)*i.other }
 
 // constantOf is the constant that a law rings about.
 func constantOf(l law) float64 {

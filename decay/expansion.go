@@ -80,21 +80,16 @@ func (e *expansion) extend(y []float64, ref float64) {
 func (e *expansion) project(z pole, count int) (sum [2]complex128) {
 	d := e.deviation(z)
 	d2, d3 := d*d/2, d*d*d/6
-	var steps [blockLength]complex128
-	for k := range steps {
-		steps[k] = z.at(float64(k*blockLength) + middle)
+	powers := newLadder(z.over(blockLength), count)
+	for k, m := range e.blocks[:count] {
+		base := powers.next()
+		s := m[0] + d*m[1] + d2*m[2] + d3*m[3]
+		t := m[1] + d*m[2] + d2*m[3]
+		sum[0] += base * s
+		sum[1] += base * (complex(float64(k*blockLength)+middle, 0)*s + t)
 	}
-	for far := 0; far < count; far += blockLength {
-		root := z.at(float64(far * blockLength))
-		for k, m := range e.blocks[far:min(far+blockLength, count)] {
-			base := root * steps[k]
-			s := m[0] + d*m[1] + d2*m[2] + d3*m[3]
-			t := m[1] + d*m[2] + d2*m[3]
-			sum[0] += base * s
-			sum[1] += base * (complex(float64((far+k)*blockLength)+middle, 0)*s + t)
-		}
-	}
-	return sum
+	shift := z.at(middle)
+	return [2]complex128{sum[0] * shift, sum[1] * shift}
 }
 
 // weights are the real and imaginary parts of q^k exp(jwq) in the later half of a
