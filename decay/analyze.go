@@ -28,6 +28,12 @@ type Options struct {
 // A record without a measurable decay is Refused, with the finding that says why.
 func Analyze(ch *capture.Channel, opt Options) *Result {
 	s := newSeries(ch)
+	r := analyze(ch, s, opt)
+	r.record = s.record
+	return r
+}
+
+func analyze(ch *capture.Channel, s series, opt Options) *Result {
 	first, last := limits(ch.Axis, opt)
 	if why, unfit := unfit(s, first, last); unfit {
 		return refused(nil, why)

@@ -49,9 +49,26 @@ func span(y []float64) (lo, hi float64, gaps bool) {
 	return lo, hi, gaps
 }
 
+// of reports whether they are those of y.
+func (e *Extremes) of(y []float64) bool {
+	return len(y) == len(e.y) && (len(y) == 0 || &y[0] == &e.y[0])
+}
+
+// Limits are the smallest and the largest of all samples; false when none is there.
+func (e *Extremes) Limits() (lo, hi float64, ok bool) {
+	lo, hi = math.Inf(1), math.Inf(-1)
+	for k := range e.lo {
+		lo, hi = min(lo, e.lo[k]), max(hi, e.hi[k])
+	}
+	return lo, hi, lo <= hi
+}
+
 func (e *Extremes) block(k int) []float64 {
 	return e.y[k*rangeBlock : min((k+1)*rangeBlock, len(e.y))]
 }
+
+// At is sample i.
+func (e *Extremes) At(i int) float64 { return e.y[i] }
 
 // Of returns the indices of the first smallest and the first largest of samples first
 // to last-1; -1 when none is there.

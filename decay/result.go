@@ -1,9 +1,6 @@
 package decay
 
 import (
-	"math"
-	"slices"
-
 	"dieaway/capture"
 	"dieaway/decay/quantity"
 )
@@ -50,6 +47,17 @@ type Result struct {
 	Readings Readings
 	// Findings is sorted by severity, gravest first.
 	Findings []Finding
+
+	record *Extremes
+}
+
+// Extremes are those of the samples of ch, at hand where it is the channel that was
+// analysed.
+func (r *Result) Extremes(ch *capture.Channel) *Extremes {
+	if r.record != nil && r.record.of(ch.Samples) {
+		return r.record
+	}
+	return NewExtremes(ch.Samples)
 }
 
 // Quantities are the parameters of a damped oscillation.
@@ -124,23 +132,28 @@ func (d *Decay) At(t float64) (value, envelope, baseline float64) { return d.law
 // on, in the unit of the channel; NaN where there is no sample. For one ring on
 // even samples it costs a few operations each, where [Decay.At] takes a cosine.
 func (d *Decay) Residuals(ch *capture.Channel, first, n int) []float64 {
-	out := slices.Clone(ch.Samples[first : first+n])
+	out := make([]float64, n)
+	d.ResidualsInto(ch, n)(out, first)
+	return out
+}
+
+// ResidualsInto returns a function that fills out, of at most n values, with the
+// residuals from sample first of ch on. It may be called on any core.
+func (d *Decay) ResidualsInto(ch *capture.Channel, n int) func(out []float64, first int) {
 	l, ok := d.law.(exponentialLaw)
 	if !ok || ch.Axis.Times != nil {
-		for i := range out {
-			v, _, _ := d.At(ch.Axis.Time(first + i))
-			out[i] -= v
+		return func(out []float64, first int) {
+			for i := range out {
+				v, _, _ := d.At(ch.Axis.Time(first + i))
+				out[i] = ch.Samples[first+i] - v
+			}
 		}
-		return out
 	}
 	dt := ch.Axis.Interval
-	sin, cos := math.Sincos(l.phase)
-	terms := []term{{l.rate * dt, l.omega * dt, l.amplitude * cos, -l.amplitude * sin}}
-	if c := l.companion; c != nil {
-		terms = append(terms, term{c.a * dt, c.w * dt, c.p, c.q})
+	curve := newFollower(l.offset, n, ringsOf(l, 0, 0, dt)...)
+	return func(out []float64, first int) {
+		curve.residuals(out, ch.Samples[first:first+len(out)], (ch.Axis.Time(first)-d.From)/dt)
 	}
-	newFollower(l.offset, n, terms...).residuals(out, out, (ch.Axis.Time(first)-d.From)/dt)
-	return out
 }
 
 // Readings are what a person would read off the screen with care, each with its

@@ -29,10 +29,7 @@ func newSeries(ch *capture.Channel) series {
 	s := series{y: ch.Samples, t0: ch.Axis.Start, dt: ch.Axis.Interval, times: ch.Axis.Times}
 	s.record = NewExtremes(s.y)
 	s.gaps = s.record.gaps
-	s.lo, s.hi = math.Inf(1), math.Inf(-1)
-	for k, lo := range s.record.lo {
-		s.lo, s.hi = min(s.lo, lo), max(s.hi, s.record.hi[k])
-	}
+	s.lo, s.hi, _ = s.record.Limits()
 	s.step = stepOf(s.y)
 	return s
 }

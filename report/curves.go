@@ -61,22 +61,20 @@ func (r *RingDown) drawnDecays() []drawn {
 	return out
 }
 
-// residuals returns sample less curve. A curve that can do many in one go does.
+// residuals is sample less curve. A curve that can do many in one go does.
 func (w *drawn) residuals(ch *capture.Channel) values {
 	quick, ok := w.curve.(interface {
-		Residuals(ch *capture.Channel, first, n int) []float64
+		ResidualsInto(ch *capture.Channel, n int) func(out []float64, first int)
 	})
 	if ok {
-		return func(from, to int) []float64 { return quick.Residuals(ch, from, to-from) }
+		return values{fill: quick.ResidualsInto(ch, ch.Axis.N)}
 	}
-	return func(from, to int) []float64 {
-		out := make([]float64, to-from)
+	return values{fill: func(out []float64, from int) {
 		for i := range out {
 			v, _, _ := w.curve.At(ch.Axis.Time(from + i))
 			out[i] = ch.Samples[from+i] - v
 		}
-		return out
-	}
+	}}
 }
 
 // fitted returns the fitted curve. Where the cycles are too many to draw there is
@@ -156,14 +154,14 @@ func merge(a, b []float64) []float64 {
 
 // crests returns the peaks of |sample - baseline| from the start of the decay up
 // to sample end: behind the gate they show where the noise takes over.
-func (w *drawn) crests(r *RingDown, end int) trace {
+func (w *drawn) crests(axis *capture.Axis, samples values, end int) trace {
 	half := w.cycle / 2
 	if !(half > 1) {
 		half = 1
 	}
 	n := float64(end-w.gate.from) / half
 	stretch := math.Ceil(half * math.Max(1, math.Ceil(n/float64(w.points(crestPoints)))))
-	return crests(r.Channel, indexRange{w.gate.from, end}, int(stretch), func(t float64) float64 {
+	return crests(axis, samples, indexRange{w.gate.from, end}, int(stretch), func(t float64) float64 {
 		_, _, b := w.curve.At(math.Min(t, w.decay.To))
 		return b
 	})

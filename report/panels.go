@@ -39,7 +39,9 @@ const (
 // on a logarithmic scale and what the fit leaves.
 func (r *RingDown) figure() (*figure, error) {
 	ch, axis := r.Channel, r.Channel.Axis
-	lo, hi, _ := span(ch.Samples)
+	known := r.Result.Extremes(ch)
+	samples := samplesOf(ch, known)
+	lo, hi, _ := known.Limits()
 	start, end := axis.Start, axis.Time(max(0, axis.N-1))
 	p := &plot{Line: charts.NewLine(),
 		time:  scaleFor(start, end, axis.Interval/20, "s"),
@@ -50,9 +52,9 @@ func (r *RingDown) figure() (*figure, error) {
 		windows = append(windows, w.windows...)
 	}
 	parts := r.parts(all, windows)
-	p.waveform(r, all, parts)
+	p.waveform(r, all, reduce(axis, parts, samples))
 	if len(all) > 0 {
-		p.envelope(r, all)
+		p.envelope(r, all, samples)
 		p.residual(r, all, windows, reduced(parts))
 	}
 	f := &figure{Time: p.time.unit, Panels: p.panels, Views: p.views(all),
@@ -107,15 +109,14 @@ func (r *RingDown) parts(all []drawn, windows []indexRange) []segment {
 }
 
 // waveform draws samples, fitted curve, envelope, baseline, gate and readings.
-func (p *plot) waveform(r *RingDown, all []drawn, parts []segment) {
+func (p *plot) waveform(r *RingDown, all []drawn, samples trace) {
 	caption := captionWaveform
 	if len(all) == 0 {
 		caption = captionRefused
 	}
 	p.addPanel("Waveform", caption, p.level.unit, false)
 	ch := r.Channel
-	tr := reduce(ch.Axis, parts, samplesOf(ch))
-	data := p.addTrace(tr, p.level)
+	data := p.addTrace(samples, p.level)
 	p.addSeries(keySamples, "line", data, "v", gates(p.time, all)) // first: the bar below shows its outline
 	for i := range all {
 		w := &all[i]
@@ -160,7 +161,7 @@ func (p *plot) readingMarks(read *decay.Readings, fit curve) {
 }
 
 // envelope draws the distance from the baseline on a logarithmic scale.
-func (p *plot) envelope(r *RingDown, all []drawn) {
+func (p *plot) envelope(r *RingDown, all []drawn, samples values) {
 	p.addPanel("Envelope, logarithmic", captionEnvelope, p.level.unit, true)
 	axis, read := r.Channel.Axis, &r.Result.Readings
 	log := func(v []float64) column { return column{values: v, factor: p.level.factor, leading: 5} }
@@ -170,7 +171,7 @@ func (p *plot) envelope(r *RingDown, all []drawn) {
 		if i+1 < len(all) {
 			end = all[i+1].gate.from
 		}
-		tr := w.crests(r, end)
+		tr := w.crests(axis, samples, end)
 		p.addSeries(keyCrests, "scatter", p.addData(map[string]column{"t": p.time.column(tr.t), "v": log(tr.v)}), "v",
 			charts.WithSeriesOpts(func(s *charts.SingleSeries) { s.SymbolSize = 3 }))
 	}

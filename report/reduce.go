@@ -5,6 +5,7 @@ import (
 	"slices"
 
 	"dieaway/capture"
+	"dieaway/decay"
 )
 
 // How much of a record the page shows. Up to exactLimit samples it shows all of
@@ -97,27 +98,33 @@ type trace struct{ t, v []float64 }
 
 func (tr *trace) add(t, v float64) { tr.t, tr.v = append(tr.t, t), append(tr.v, v) }
 
-// values gives the values of a course from sample from up to before sample to, on
-// any core.
-type values func(from, to int) []float64
+// values are a course over the samples of a record, which any core may ask for.
+type values struct {
+	// fill writes those from a sample on.
+	fill func(out []float64, from int)
+	// known, when not nil, has their extremes at hand.
+	known *decay.Extremes
+}
 
 // samplesOf gives the samples of a channel.
-func samplesOf(ch *capture.Channel) values {
-	return func(from, to int) []float64 { return ch.Samples[from:to] }
+func samplesOf(ch *capture.Channel, known *decay.Extremes) values {
+	return values{func(out []float64, from int) { copy(out, ch.Samples[from:]) }, known}
 }
 
 // reduce shows a course over the segments. Bins give their smallest and largest
 // value in the order of time; missing values are left out of them.
-func reduce(axis *capture.Axis, parts []segment, course values) trace {
+func reduce(axis *capture.Axis, parts []segment, c values) trace {
 	return inPieces(parts, func(p segment, tr *trace) {
 		if p.bin == 1 {
-			for k, v := range course(p.from, p.to) {
+			all := make([]float64, p.to-p.from)
+			c.fill(all, p.from)
+			for k, v := range all {
 				tr.add(axis.Time(p.from+k), v)
 			}
 			return
 		}
 		for i := p.from; i < p.to; i += p.bin {
-			lo, hi := extremes(course(i, min(i+p.bin, p.to)))
+			lo, hi := c.extremes(i, min(i+p.bin, p.to))
 			if lo.index < 0 {
 				tr.add(axis.Time(i), math.NaN())
 				continue
@@ -125,9 +132,9 @@ func reduce(axis *capture.Axis, parts []segment, course values) trace {
 			if lo.index > hi.index {
 				lo, hi = hi, lo
 			}
-			tr.add(axis.Time(i+lo.index), lo.value)
+			tr.add(axis.Time(lo.index), lo.value)
 			if hi.index != lo.index {
-				tr.add(axis.Time(i+hi.index), hi.value)
+				tr.add(axis.Time(hi.index), hi.value)
 			}
 		}
 	})
@@ -138,16 +145,30 @@ type extreme struct {
 	value float64
 }
 
-// extremes finds the smallest and the largest of y; the indices are -1 when none is
-// a number.
-func extremes(y []float64) (lo, hi extreme) {
+// courseBlock is the number of values looked at in one go: they stay close by.
+const courseBlock = 1 << 11
+
+// extremes finds the smallest and the largest value from one sample up to before
+// another; the indices are -1 when none is a number.
+func (c values) extremes(from, to int) (lo, hi extreme) {
 	lo, hi = extreme{-1, math.Inf(1)}, extreme{-1, math.Inf(-1)}
-	for i, v := range y {
-		if v < lo.value {
-			lo = extreme{i, v}
+	if c.known != nil {
+		if l, h := c.known.Of(from, to); l >= 0 && h >= 0 {
+			lo, hi = extreme{l, c.known.At(l)}, extreme{h, c.known.At(h)}
 		}
-		if v > hi.value {
-			hi = extreme{i, v}
+		return lo, hi
+	}
+	var buffer [courseBlock]float64
+	for at := from; at < to; at += courseBlock {
+		part := buffer[:min(courseBlock, to-at)]
+		c.fill(part, at)
+		for i, v := range part {
+			if v < lo.value {
+				lo = extreme{at + i, v}
+			}
+			if v > hi.value {
+				hi = extreme{at + i, v}
+			}
 		}
 	}
 	if hi.index < 0 || lo.index < 0 {
@@ -158,11 +179,11 @@ func extremes(y []float64) (lo, hi extreme) {
 
 // crests returns the largest |sample - baseline| of each stretch of samples of
 // the given length, at its time: with a stretch of half a cycle, the peaks.
-func crests(ch *capture.Channel, a indexRange, stretch int, baseline func(t float64) float64) trace {
+func crests(axis *capture.Axis, samples values, a indexRange, stretch int, baseline func(t float64) float64) trace {
 	return inPieces([]segment{{a, stretch}}, func(p segment, tr *trace) {
 		for i := p.from; i < p.to; i += p.bin {
-			b := baseline(ch.Axis.Time(i))
-			lo, hi := extremes(ch.Samples[i:min(i+p.bin, p.to)])
+			b := baseline(axis.Time(i))
+			lo, hi := samples.extremes(i, min(i+p.bin, p.to))
 			if lo.index < 0 {
 				continue
 			}
@@ -171,7 +192,7 @@ func crests(ch *capture.Channel, a indexRange, stretch int, baseline func(t floa
 				at = lo
 			}
 			if v := math.Abs(at.value - b); v > 0 { // nothing on a logarithmic axis
-				tr.add(ch.Axis.Time(i+at.index), v)
+				tr.add(axis.Time(at.index), v)
 			}
 		}
 	})

@@ -66,13 +66,11 @@ func TestReduceKeepsExtremes(t *testing.T) {
 
 // each makes a course of a function of the index.
 func each(value func(i int) float64) values {
-	return func(from, to int) []float64 {
-		out := make([]float64, to-from)
+	return values{fill: func(out []float64, from int) {
 		for k := range out {
 			out[k] = value(from + k)
 		}
-		return out
-	}
+	}}
 }
 
 func TestReduceGap(t *testing.T) {
