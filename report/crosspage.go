@@ -90,8 +90,9 @@ func (c *CrossCheck) figures() ([]*figure, error) {
 	if err != nil {
 		return nil, err
 	}
-	details, err := ring.details(over)
-	return append([]*figure{driven, over}, details...), err
+	more, err := ring.details()
+	over.Notes = append(over.Notes, more.notes...)
+	return append([]*figure{driven, over}, more.figures...), err
 }
 
 func (c *CrossCheck) heading() string {

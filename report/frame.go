@@ -99,21 +99,28 @@ func withoutMarks(text string) string {
 // write fills the frame and writes the page p, which holds it, by a template.
 func (f *frame) write(w io.Writer, name string, p any) error {
 	f.CSS, f.Script, f.ECharts = template.CSS(pageCSS), template.JS(pageJS), template.JS(echartsJS)
+	jobs := []func() error{func() error { pageTemplates(); return nil }}
 	for i, g := range f.Figures {
 		if i > 0 {
 			g.Suffix = fmt.Sprint(i + 1)
 		}
-		data, err := json.Marshal(g) // escaped for a script element
-		if err != nil {
-			return fmt.Errorf("charts of the page: %w", err)
-		}
-		g.Data = template.JS(data)
+		jobs = append(jobs, g.encode)
+	}
+	if err := together(jobs...); err != nil {
+		return fmt.Errorf("charts of the page: %w", err)
 	}
 	b := bufio.NewWriterSize(w, 1<<16)
 	if err := pageTemplates().ExecuteTemplate(b, name, p); err != nil {
 		return err
 	}
 	return b.Flush()
+}
+
+// encode writes the figure as JSON, escaped for a script element.
+func (f *figure) encode() error {
+	data, err := json.Marshal(f)
+	f.Data = template.JS(data)
+	return err
 }
 
 // judge makes the verdict on limits part of the heading: what fails is no good page,

@@ -28,37 +28,44 @@ func (r *RingDown) WritePage(w io.Writer) error {
 
 // sheet is the page with all its figures.
 func (r *RingDown) sheet() (*page, error) {
-	f, err := r.figure()
-	if err != nil {
+	var f *figure
+	var more details
+	if err := together(into(&f, r.figure), into(&more, r.details)); err != nil {
 		return nil, err
 	}
 	p := r.page(f)
-	details, err := r.details(f)
-	p.Figures = append(p.Figures, details...)
-	return p, err
+	f.Notes = append(f.Notes, more.notes...)
+	p.Figures = append(p.Figures, more.figures...)
+	return p, nil
 }
 
-// details are the figures behind the first one, f, which tells of those that are
-// not to be had.
-func (r *RingDown) details(f *figure) ([]*figure, error) {
+// details are the figures behind the first, which tells in notes of those that are not
+// to be had.
+type details struct {
+	figures []*figure
+	notes   []string
+}
+
+func (r *RingDown) details() (details, error) {
 	s := r.spectraOf()
 	if s == nil {
-		return nil, nil
+		return details{}, nil
 	}
-	residual, err := s.residual()
-	if err != nil {
-		return nil, err
+	var residual, ring attempt
+	var along []*figure
+	err := together(into(&residual, s.residual), into(&along, r.alongFigures), into(&ring, s.ring))
+	var out details
+	for _, f := range slices.Concat([]*figure{residual.figure}, along, []*figure{ring.figure}) {
+		if f != nil {
+			out.figures = append(out.figures, f)
+		}
 	}
-	along, err := r.alongFigures()
-	if err != nil {
-		return nil, err
+	for _, n := range []string{residual.why, ring.why} {
+		if n != "" {
+			out.notes = append(out.notes, n)
+		}
 	}
-	ring, err := s.ring()
-	if err != nil {
-		return nil, err
-	}
-	f.Notes = append(f.Notes, s.notes...)
-	return slices.DeleteFunc(slices.Concat([]*figure{residual}, along, []*figure{ring}), func(f *figure) bool { return f == nil }), nil
+	return out, err
 }
 
 // A page is what the template shows.

@@ -1,6 +1,7 @@
 package report
 
 import (
+	"cmp"
 	"runtime"
 	"sync"
 	"sync/atomic"
@@ -40,4 +41,24 @@ func inPieces(parts []segment, draw func(segment, *trace)) trace {
 		all.t, all.v = append(all.t, tr.t...), append(all.v, tr.v...)
 	}
 	return all
+}
+
+// together does jobs at the same time and returns the first error, in their order.
+func together(jobs ...func() error) error {
+	errs := make([]error, len(jobs))
+	var cores sync.WaitGroup
+	for i, job := range jobs[1:] {
+		cores.Go(func() { errs[i+1] = job() })
+	}
+	errs[0] = jobs[0]()
+	cores.Wait()
+	return cmp.Or(errs...)
+}
+
+// into is the job that puts what make makes into place.
+func into[T any](place *T, make func() (T, error)) func() error {
+	return func() (err error) {
+		*place, err = make()
+		return err
+	}
 }

@@ -36,11 +36,15 @@ const (
 )
 
 // spectra draws the spectra of one decay: of what the fit leaves and of the ring.
-// What cannot be had is said in a note.
 type spectra struct {
-	r     *RingDown
-	d     *decay.Decay
-	notes []string
+	r *RingDown
+	d *decay.Decay
+}
+
+// An attempt is a figure or, where it cannot be had, why.
+type attempt struct {
+	figure *figure
+	why    string
 }
 
 // spectraOf is nil where there is no fitted decay to draw.
@@ -59,9 +63,9 @@ func (s *spectra) of() string {
 	return ""
 }
 
-// withheld notes why a chart is missing.
-func (s *spectra) withheld(what string, err error) {
-	s.notes = append(s.notes, fmt.Sprintf("There is no spectrum of %s: %v.", what, err))
+// none is a figure of something that cannot be had.
+func none(what string, err error) attempt {
+	return attempt{why: fmt.Sprintf("There is no spectrum of %s: %v.", what, err)}
 }
 
 func (s *spectra) figure(p *plot, lo, hi float64, picture, description string) (*figure, error) {
@@ -72,13 +76,12 @@ func (s *spectra) figure(p *plot, lo, hi float64, picture, description string) (
 	return f, err
 }
 
-// residual draws the density of what the fit leaves; nil when there is none.
-func (s *spectra) residual() (*figure, error) {
+// residual draws the density of what the fit leaves.
+func (s *spectra) residual() (attempt, error) {
 	d := s.d
 	x, err := d.ResidualSpectrum(s.r.Channel)
 	if err != nil {
-		s.withheld("the residual", err)
-		return nil, nil
+		return none("the residual", err), nil
 	}
 	top, bottom := 0.0, math.Inf(1)
 	for i, v := range x.Density {
@@ -103,10 +106,10 @@ func (s *spectra) residual() (*figure, error) {
 	last.Keys = append(last.Keys, keyWhiteBand)
 	f, err := s.figure(p, ends[0], ends[1], "residual-spectrum.png", describeDensity)
 	if err != nil {
-		return nil, err
+		return attempt{}, err
 	}
 	f.Logarithmic, f.Notes = true, []string{densityLine(x, s.r.unit())}
-	return f, nil
+	return attempt{figure: f}, nil
 }
 
 // densityLine says in numbers what the chart shows.
@@ -140,12 +143,11 @@ func (p *plot) whiteBand(x *decay.ResidualSpectrum) charts.SeriesOpts {
 	})
 }
 
-// ring draws the spectrum of the ring about each resonance; nil when there is none.
-func (s *spectra) ring() (*figure, error) {
+// ring draws the spectrum of the ring about each resonance.
+func (s *spectra) ring() (attempt, error) {
 	x, err := s.d.RingSpectrum(s.r.Channel)
 	if err != nil {
-		s.withheld("the ring", err)
-		return nil, nil
+		return none("the ring", err), nil
 	}
 	lo, hi := x.Frequency[0], x.Frequency[len(x.Frequency)-1]
 	_, top, _ := span(append(append([]float64{}, x.Measured...), x.Fitted...))
@@ -165,13 +167,13 @@ func (s *spectra) ring() (*figure, error) {
 	p.panels[0].Keys = append(p.panels[0].Keys, keyWidth)
 	f, err := s.figure(p, lo, hi, "ring-spectrum.png", describeRing)
 	if err != nil {
-		return nil, err
+		return attempt{}, err
 	}
 	f.Views, f.Whole = p.resonances(x), len(x.Bands) == 1
 	if x.Missing > 0 {
 		f.Notes = []string{fmt.Sprintf("The fitted curve stands in for %s that %s missing or left out of the fit.", plural(x.Missing, "sample"), isAre(x.Missing))}
 	}
-	return f, nil
+	return attempt{figure: f}, nil
 }
 
 // resonances are the views of a ring's spectrum: each resonance, the strongest first.

@@ -19,11 +19,12 @@ import (
 func detailsOf(t *testing.T, r *RingDown) (first *figure, rest []*figure) {
 	t.Helper()
 	first = figureOf(t, r)
-	rest, err := r.details(first)
+	more, err := r.details()
 	if err != nil {
 		t.Fatal(err)
 	}
-	return first, rest
+	first.Notes = append(first.Notes, more.notes...)
+	return first, more.figures
 }
 
 // titles of all panels.
