@@ -58,9 +58,13 @@ func doubts(g *gate, d *Decay, v noise, forced Model) []Finding {
 			"Sample faster, at least five times a cycle, or make sure by a second capture at another rate that the frequency is the true one."))
 	}
 	if c := g.fit.companion; c != nil {
-		out = append(out, g.besides(c))
+		out = append(out, g.besides(c, forced == TwoMode))
+	} else if forced == TwoMode {
+		out = append(out, note(capture.SecondMode, "The two-mode model was forced, but no second ring can be fitted; the result is that of one.", "Nothing, if one exponential suffices."))
 	}
 	switch b := g.fit.bend; {
+	case b == nil && forced == Amplitude:
+		out = append(out, note(capture.AmplitudeDependent, "The amplitude model was forced, but no law of the amplitude can be fitted; the result is that without one.", "Nothing, if one exponential suffices."))
 	case b != nil:
 		out = append(out, dependsOnAmplitude(d, &g.fit, forced == Amplitude))
 	case g.fit.rival != nil:
@@ -79,11 +83,17 @@ func doubts(g *gate, d *Decay, v noise, forced Model) []Finding {
 	return out
 }
 
-// besides names the companion of the ring.
-func (g *gate) besides(c *term) Finding {
+// besides names the companion of the ring, or, where it was forced, tells how little
+// speaks for it.
+func (g *gate) besides(c *term, forced bool) Finding {
 	f := &g.fit
 	share := math.Hypot(c.p, c.q) / f.size()
 	frequency := quantity.Format(c.w/(2*math.Pi*f.s.dt), "Hz", 4)
+	if little := f.forcedBy(TwoMode, forced); little != "" {
+		return warning(capture.SecondMode,
+			fmt.Sprintf("%s It has a second ring of %s, %s of the amplitude of the first.", little, frequency, percent(share)),
+			"Let the model be chosen, unless you know by other means that something else resonates.")
+	}
 	switch tone := c.steady(f.s.position(f.s.len() - 1)); {
 	case c.w == 0:
 		return note(capture.BaselineDrift,
@@ -113,17 +123,27 @@ func dependsOnAmplitude(d *Decay, f *ringFit, forced bool) Finding {
 		law += ", or another law that explains as much: the uncertainties span both"
 	}
 	course := fmt.Sprintf("from %s and Q %s at the first cycle to %s and Q %s as the ring dies; %s.", at.DampedFrequency, at.Q, q.DampedFrequency, q.Q, law)
-	if forced {
-		if gain, decisive := f.bendGain(); gain < decisive {
-			return warning(capture.AmplitudeDependent,
-				fmt.Sprintf("The amplitude model was forced: against one exponential it lowers chi-squared by %s, where %s would be decisive. It runs %s",
-					figure(gain, 2), figure(decisive, 2), course),
-				"Let the model be chosen, unless you know by other means that the loss moves; a capture at twice the amplitude shows it better.")
-		}
+	if little := f.forcedBy(Amplitude, forced); little != "" {
+		return warning(capture.AmplitudeDependent, little+" It runs "+course,
+			"Let the model be chosen, unless you know by other means that the loss moves; a capture at twice the amplitude shows it better.")
 	}
 	return warning(capture.AmplitudeDependent,
 		"Loss and frequency depend on the amplitude: "+course,
 		"Quote the small-signal values with the amplitude they hold for, and compare with other measurements at the same amplitude only.")
+}
+
+// forcedBy says how little speaks for a model that was forced, "" where it was not, or
+// would be chosen by itself.
+func (f *ringFit) forcedBy(model Model, forced bool) string {
+	if !forced {
+		return ""
+	}
+	gain, decisive := f.gainOverOne()
+	if gain >= decisive {
+		return ""
+	}
+	return fmt.Sprintf("The %s model was forced: against one exponential it lowers chi-squared by %s, where %s would be decisive.",
+		model, figure(gain, 2), figure(decisive, 2))
 }
 
 // percent prints a ratio as a percentage with its sign dropped.

@@ -63,7 +63,7 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 		model = cmp.Or(model, open)
 	}
 	g.chooseModel(s, model)
-	if !fixedStart && (g.fit.bend != nil || g.fit.companion != nil) {
+	if !fixedStart && g.fit.earned(model) {
 		g.extendBack(s)
 		g.leaveDrive(s, false)
 	}

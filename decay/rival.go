@@ -70,19 +70,32 @@ func (f *ringFit) otherLaw() *rival {
 	return &rival{by: []float64{second.a - own.a, second.w - own.w, second.bend.b - own.bend.b, second.bend.g - own.bend.g}, gain: gain}
 }
 
-// bendGain is the chi-squared that the amplitude law takes off that of one ring, and
-// what it would have to take off to be chosen by evidence.
-func (f *ringFit) bendGain() (gain, decisive float64) {
+// gainOverOne is the chi-squared that the model takes off that of one ring, and what it
+// would have to take off to be chosen by evidence.
+func (f *ringFit) gainOverOne() (gain, decisive float64) {
 	window := f.s.thinned(choiceSamples)
 	plain, okPlain := fitRing(window, f.a, f.w, coarse)
-	own, ok := refitBent(window, f, 0, coarse)
+	own, ok := refit(window, f, 0, coarse)
 	if !ok || !okPlain { // what one ring cannot follow at all
 		return math.Inf(1), 0
 	}
 	v := noiseOf(own.residuals(window, 0), own.sigma())
 	n := float64(own.n)
-	gain = math.Max(0, plain.rss-own.rss) / sq(v.rms*v.factor(f.w))
+	gain = math.Max(0, plain.rss-own.rss) / sq(v.rms*v.factor(f.addition()))
 	return gain, float64(own.normal.jtj.n-plain.normal.jtj.n)*math.Log(n) + evidence*(1+fewSamples/n)
+}
+
+// earned reports whether evidence speaks for what the fit has beyond one ring. A model
+// that was forced may have nothing to follow but the edge before the decay.
+func (f *ringFit) earned(model Model) bool {
+	if f.bend == nil && f.companion == nil {
+		return false
+	}
+	if model == open {
+		return true // it was chosen by that
+	}
+	gain, decisive := f.gainOverOne()
+	return gain >= decisive
 }
 
 // widen adds the difference to a covariance of the fit's parameters.

@@ -3,6 +3,7 @@ package decay
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 
@@ -136,5 +137,35 @@ func TestForcedAmplitude(t *testing.T) {
 	bent := withNoise(lossy(int(4/a), a, w, 0.2*a, -0.01*w, square, self), 1.0/snr, 1)
 	if forced, chosen := message(bent, Amplitude), message(bent, ""); forced != chosen || !strings.HasPrefix(forced, "Loss and frequency depend") {
 		t.Errorf("forced it says %q, chosen %q", forced, chosen)
+	}
+}
+
+// TestForcedTwoMode: a second ring that was forced is told as such, and does not carry the
+// gate over the edge before the decay, whose samples it could follow.
+func TestForcedTwoMode(t *testing.T) {
+	const cycle, q, before = 80.0, 16.0, 280
+	w := 2 * math.Pi / cycle
+	a := w / (2 * q)
+	for seed := range uint64(5) {
+		y := make([]float64, before+int(9/a))
+		for i := range y {
+			if y[i] = 1; i >= before { // by the equation of the discharged series circuit
+				u := float64(i - before)
+				y[i] = math.Exp(-a*u) * (math.Cos(w*u) + a/w*math.Sin(w*u))
+			}
+		}
+		r := Analyze(channel(withNoise(y, 0.007, seed), 0, 1), Options{Model: TwoMode})
+		if len(r.Decays) == 0 || r.Decays[0].First < before-4 {
+			t.Fatalf("seed %d: %s, %v", seed, r.Status, r.Decays)
+		}
+		told := slices.IndexFunc(r.Findings, func(f Finding) bool {
+			return f.Code == capture.SecondMode && strings.HasPrefix(f.Message, "The two-mode model was forced: against one exponential it lowers chi-squared by ")
+		})
+		if (told < 0 || r.Status != Doubtful) != (r.Model == Exponential) || !has(r, capture.SecondMode) {
+			t.Errorf("seed %d: %s, %s, %v", seed, r.Model, r.Status, r.Findings)
+		}
+		if z := (r.Quantities.Q.Value - math.Hypot(a, w)/(2*a)) / r.Quantities.Q.U; math.Abs(z) > 4 {
+			t.Errorf("seed %d: Q is off by %.1f u", seed, z)
+		}
 	}
 }
