@@ -99,31 +99,16 @@ func (p *pyramid) afterLoudest(period float64) (int, bool) {
 // likeliest is firstFit for given onsets.
 func (p *pyramid) likeliest(s series, onsets []int) (gate, bool) {
 	levels := p.plateaus()
-	var best gate
-	least := math.Inf(1)
-	for _, o := range onsets {
-		var done []seed
-		for _, sd := range p.seeds(o) {
-			if len(done) == seedsTried {
-				break
-			}
-			if similar(sd, done) {
-				continue
-			}
-			done = append(done, sd)
-			f, explained, ok := p.refine(sd)
-			if !ok {
-				continue
-			}
-			if left := levels.left(sd.first, sd.last) - explained; left < least {
-				least = left
-				m := f.s.dt / s.dt
-				f.a, f.w = f.a/m, f.w/m
-				best = gate{first: p.sample(s, sd.first), last: p.sample(s, sd.last), fit: f}
-			}
+	accounts := make([]account, len(onsets))
+	severally(len(onsets), s.len(), func(i int) { accounts[i] = p.account(s, levels, onsets[i]) })
+	least := account{left: math.Inf(1)}
+	for _, a := range accounts {
+		if a.left < least.left {
+			least = a
 		}
 	}
-	if math.IsInf(least, 1) {
+	best := least.gate
+	if math.IsInf(least.left, 1) {
 		return best, false
 	}
 	core := max(coreMost, int(math.Min(coreCycles*best.fit.period(), float64(s.len()))))
@@ -133,6 +118,38 @@ func (p *pyramid) likeliest(s series, onsets []int) (gate, bool) {
 		best.fit = f
 	}
 	return best, ok
+}
+
+// account is a ring in a record that is constant before and behind it, and the energy
+// that is left; infinite when there is none.
+type account struct {
+	gate gate
+	left float64
+}
+
+// account refines the best seeds of one onset.
+func (p *pyramid) account(s series, levels *plateaus, onset int) account {
+	best := account{left: math.Inf(1)}
+	var done []seed
+	for _, sd := range p.seeds(onset) {
+		if len(done) == seedsTried {
+			break
+		}
+		if similar(sd, done) {
+			continue
+		}
+		done = append(done, sd)
+		f, explained, ok := p.refine(sd)
+		if !ok {
+			continue
+		}
+		if left := levels.left(sd.first, sd.last) - explained; left < best.left {
+			m := f.s.dt / s.dt
+			f.a, f.w = f.a/m, f.w/m
+			best = account{gate{first: p.sample(s, sd.first), last: p.sample(s, sd.last), fit: f}, left}
+		}
+	}
+	return best
 }
 
 // similar reports whether a seed of the same window adds nothing to those done.

@@ -22,3 +22,19 @@ func halves(n int, work func(first, last int) func()) {
 	first()
 	second()
 }
+
+// severally calls work with 0 to count-1, at the same time where n samples make that
+// pay.
+func severally(count, n int, work func(i int)) {
+	if n < parallelFrom {
+		for i := range count {
+			work(i)
+		}
+		return
+	}
+	var wg sync.WaitGroup
+	for i := range count {
+		wg.Go(func() { work(i) })
+	}
+	wg.Wait()
+}

@@ -3,6 +3,7 @@ package decay
 import (
 	"math"
 	"slices"
+	"sync/atomic"
 )
 
 // pyramid holds a record at falling sample rates: level k is the mean over 4^k
@@ -111,8 +112,10 @@ func (p *pyramid) onsets() []int {
 func steepest(s series, first, last int) int {
 	first, last = max(0, first), min(s.len(), last)
 	most, at := -1.0, first
+	var shared atomic.Uint64 // the largest step so far, as bits
+	shared.Store(math.Float64bits(most))
 	halves(max(0, last-2-first), func(from, to int) func() {
-		d, i := largestStep(s, first+from, first+to)
+		d, i := largestStep(s, first+from, first+to, &shared)
 		return func() {
 			if d > most {
 				most, at = d, i
@@ -122,15 +125,19 @@ func steepest(s series, first, last int) int {
 	return at
 }
 
-// largestStep returns the largest step from one of samples first to last-1, and where;
-// a stretch whose range is smaller is passed over.
-func largestStep(s series, first, last int) (most float64, at int) {
+// largestStep returns the largest step from one of samples first to last-1, and where.
+// A stretch whose range is smaller than that, or than what the other half has found
+// so far, is passed over.
+func largestStep(s series, first, last int, shared *atomic.Uint64) (most float64, at int) {
 	most, at = -1, first
 	record, start := s.extremes()
 	for from, to := first, 0; from < last; from = to {
 		to = min(last, (start+from)/rangeBlock*rangeBlock+rangeBlock-start)
-		if record != nil && record.rangeOf(start+from, start+to+2) <= most {
-			continue
+		least := math.Float64frombits(shared.Load())
+		if record != nil {
+			if r := record.rangeOf(start+from, start+to+2); r <= most || r < least {
+				continue
+			}
 		}
 		y := s.y[from : to+2]
 		for i := range len(y) - 2 {
@@ -140,6 +147,9 @@ func largestStep(s series, first, last int) (most float64, at int) {
 			if d := math.Abs(y[i+2] - y[i]); d > most {
 				most, at = d, from+i
 			}
+		}
+		if most > least {
+			shared.Store(math.Float64bits(most)) // or what the other half found meanwhile
 		}
 	}
 	return most, at

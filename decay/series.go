@@ -92,7 +92,7 @@ func (s series) thinned(n int) series {
 	if m <= 1 {
 		return s
 	}
-	out := series{t0: s.t0, dt: s.dt, gaps: s.gaps, stride: m}
+	out := series{y: make([]float64, 0, n), t0: s.t0, dt: s.dt, gaps: s.gaps, stride: m}
 	for i := 0; i < s.len(); i += m {
 		out.y = append(out.y, s.y[i])
 		if s.times != nil {
