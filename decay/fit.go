@@ -197,20 +197,27 @@ func (f *ringFit) residualsBy(s series, n int) func(out []float64, part series, 
 }
 
 // departing visits, in order, the samples first to last-1 of s whose residual r is
-// beyond limit; sample 0 is that of the fitted window. It ends when visit is false.
-func (f *ringFit) departing(s series, first, last int, limit float64, visit func(i int, r float64) bool) {
+// beyond limit; sample 0 is that of the fitted window. It returns the largest |r|, or
+// infinity when visit was false, which ends it.
+func (f *ringFit) departing(s series, first, last int, limit float64, visit func(i int, r float64) bool) (most float64) {
 	var buffer [residualBlock]float64
 	residuals := f.residualsBy(s, residualBlock)
 	for at := first; at < last; at += residualBlock {
 		part := s.slice(at, min(at+residualBlock, last))
 		left := buffer[:part.len()]
 		residuals(left, part, s.position(at))
+		lo, hi, _ := span(left)
+		most = max(most, -lo, hi)
+		if hi <= limit && -lo <= limit {
+			continue
+		}
 		for i, r := range left {
 			if (r > limit || r < -limit) && !visit(at+i, r) {
-				return
+				return math.Inf(1)
 			}
 		}
 	}
+	return most
 }
 
 // residualBlock is the number of samples looked at in one go: they stay close by.

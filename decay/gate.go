@@ -20,6 +20,8 @@ type gate struct {
 	coarse bool
 	// cutCoarse tells that the tail was cut for that.
 	cutCoarse bool
+	// checked are the stretches that the gate grew over, in order.
+	checked []checked
 }
 
 const (
@@ -109,6 +111,7 @@ func (g *gate) settle(s series, p *pyramid, fixedStart, fixedEnd bool) {
 // growForward extends the gate, doubling it, until the record ends, the decay has
 // died, or the samples break with the fit.
 func (g *gate) growForward(s series, fixedEnd bool) {
+	g.checked = nil
 	for {
 		limit := s.len()
 		if g.fit.a > 0 && !fixedEnd {
@@ -185,17 +188,21 @@ func (g *gate) breakIn(s series, from, to int) (int, bool) {
 	limit := breakSigma*sigma + breakShare*g.fit.size()
 	origin := s.slice(g.first, s.len())
 	var held []int // those that depart, up to the first that has another close by
+	most := 0.0
 	halves(to-from, func(first, last int) func() {
 		var own []int
-		g.fit.departing(origin, from+first-g.first, from+last-g.first, limit, func(i int, r float64) bool {
+		largest := g.fit.departing(origin, from+first-g.first, from+last-g.first, limit, func(i int, r float64) bool {
 			if math.Abs(r) > limit+breakSigma*sigma*g.fit.spread(&cov, origin.position(i)) {
 				own = append(own, g.first+i)
 			}
 			k := len(own)
 			return k < 2 || !neighbours(own[k-2:])
 		})
-		return func() { held = append(held, own...) }
+		return func() { held, most = append(held, own...), max(most, largest) }
 	})
+	if to-from >= parallelFrom {
+		g.checked = append(g.checked, checked{from, to, g.first, g.fit, most})
+	}
 	for k := range max(0, len(held)-1) {
 		if neighbours(held[k:]) {
 			return held[k], true

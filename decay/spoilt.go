@@ -70,17 +70,26 @@ func (g *gate) glitches(s series) []int {
 		return nil
 	}
 	var out []int
-	halves(window.len(), func(first, last int) func() {
-		var far []int
-		g.fit.departing(window, first, last, limit, func(i int, _ float64) bool {
-			far = append(far, g.first+i)
-			return true
-		})
-		return func() { out = append(out, far...) }
-	})
+	for _, part := range g.unchecked(limit) {
+		out = append(out, g.far(window, part[0], part[1], limit)...)
+	}
 	if float64(len(out)) > math.Max(1, glitchShare*float64(window.len())) {
 		return nil
 	}
+	return out
+}
+
+// far returns the samples first to last-1 of the record that depart from the fit by
+// more than limit; window is that of the gate.
+func (g *gate) far(window series, first, last int, limit float64) (out []int) {
+	halves(last-first, func(from, to int) func() {
+		var own []int
+		g.fit.departing(window, first+from-g.first, first+to-g.first, limit, func(i int, _ float64) bool {
+			own = append(own, g.first+i)
+			return true
+		})
+		return func() { out = append(out, own...) }
+	})
 	return out
 }
 
