@@ -1,6 +1,9 @@
 package decay
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // Extremes knows the smallest and the largest of each block of samples, so that those
 // of any stretch follow from a few of them.
@@ -73,46 +76,51 @@ func (e *Extremes) At(i int) float64 { return e.y[i] }
 // Of returns the indices of the first smallest and the first largest of samples first
 // to last-1; -1 when none is there.
 func (e *Extremes) Of(first, last int) (lo, hi int) {
-	x := extent{lo: -1, hi: -1, low: math.Inf(1), high: math.Inf(-1)}
+	return e.most(e.lo, -1, first, last), e.most(e.hi, 1, first, last)
+}
+
+// most returns the index of the first sample whose product with sign is largest, ends
+// being the extremes of the blocks to that side. What the extremes tell is asked before
+// the samples themselves.
+func (e *Extremes) most(ends []float64, sign float64, first, last int) int {
 	from, to := (first+rangeBlock-1)/rangeBlock, last/rangeBlock
-	if from >= to {
-		x.look(e.y, first, last)
-		return x.lo, x.hi
+	if from > to {
+		return e.among(first, last, sign, math.Inf(-1))
 	}
-	x.look(e.y, first, from*rangeBlock)
-	lowest, highest, low, high := -1, -1, x.low, x.high
+	top, block := math.Inf(-1), -1
 	for k := from; k < to; k++ {
-		if e.lo[k] < low {
-			low, lowest = e.lo[k], k
-		}
-		if e.hi[k] > high {
-			high, highest = e.hi[k], k
+		if v := sign * ends[k]; v > top {
+			top, block = v, k
 		}
 	}
-	for _, k := range []int{min(lowest, highest), max(lowest, highest)} { // in order of time
-		if k >= 0 {
-			x.look(e.y, k*rangeBlock, (k+1)*rangeBlock)
+	at := -1
+	if first < from*rangeBlock && sign*ends[from-1] >= top {
+		at = e.among(first, from*rangeBlock, sign, math.Nextafter(top, math.Inf(-1)))
+	}
+	switch {
+	case at >= 0:
+		top = sign * e.y[at]
+	case block >= 0:
+		at = block*rangeBlock + slices.Index(e.block(block), ends[block])
+	}
+	if last > to*rangeBlock && sign*ends[to] > top {
+		if i := e.among(to*rangeBlock, last, sign, top); i >= 0 {
+			at = i
 		}
 	}
-	x.look(e.y, to*rangeBlock, last)
-	return x.lo, x.hi
+	return at
 }
 
-// extent is the smallest and the largest sample so far.
-type extent struct {
-	lo, hi    int
-	low, high float64
-}
-
-func (x *extent) look(y []float64, first, last int) {
-	for i, v := range y[first:last] {
-		if v < x.low {
-			x.low, x.lo = v, first+i
-		}
-		if v > x.high {
-			x.high, x.hi = v, first+i
+// among returns the index of the first of samples first to last-1 whose product with
+// sign is largest, and above floor; -1 when there is none.
+func (e *Extremes) among(first, last int, sign, floor float64) int {
+	at := -1
+	for i, v := range e.y[first:last] {
+		if v *= sign; v > floor {
+			floor, at = v, first+i
 		}
 	}
+	return at
 }
 
 // equal lists the samples first to last-1 that equal v, which none exceeds to its side.
