@@ -50,8 +50,11 @@ func TestSteepest(t *testing.T) {
 		s := newSeries(channel(y, 0, 1))
 		first := rng.IntN(3 * rangeBlock)
 		part := s.slice(first, s.len()-rng.IntN(3*rangeBlock))
-		if got, want := steepest(part, 0, part.len()), steepest(series{y: part.y}, 0, part.len()); got != want {
-			t.Errorf("step behind sample %d, want %d", got, want)
+		quick, slow := newPyramid(part), newPyramid(series{y: part.y})
+		for k, level := range quick.levels {
+			if got, want := quick.steepest(k, 0, level.len()), slow.steepest(k, 0, level.len()); got != want {
+				t.Errorf("level %d: step behind sample %d, want %d", k, got, want)
+			}
 		}
 	}
 }

@@ -98,7 +98,7 @@ func (p *pyramid) afterLoudest(period float64) (int, bool) {
 
 // likeliest is firstFit for given onsets.
 func (p *pyramid) likeliest(s series, onsets []int) (gate, bool) {
-	levels := p.plateaus()
+	levels := p.flat
 	accounts := make([]account, len(onsets))
 	severally(len(onsets), s.len(), func(i int) { accounts[i] = p.account(s, levels, onsets[i]) })
 	least := account{left: math.Inf(1)}
@@ -186,36 +186,32 @@ func (p *pyramid) refine(sd seed) (f ringFit, explained float64, ok bool) {
 // part is taken as constant.
 type plateaus struct {
 	block    int
+	ref      float64
 	sum, sqs []float64 // running sums over blocks
 }
 
 const plateauBlocks = 1 << 16
 
-// plateaus are summed up when they are first asked for.
-func (p *pyramid) plateaus() *plateaus {
-	if p.flat == nil {
-		p.flat = newPlateaus(p)
-	}
-	return p.flat
-}
-
-func newPlateaus(p *pyramid) *plateaus {
-	y := p.levels[0].y
+// newPlateaus has room for the sums over y.
+func newPlateaus(y []float64) *plateaus {
 	block := (len(y) + plateauBlocks - 1) / plateauBlocks
 	n := (len(y) + block - 1) / block
-	out := &plateaus{block: block, sum: make([]float64, n+1), sqs: make([]float64, n+1)}
-	ref := y[len(y)/2]
-	halves(n, func(first, last int) func() {
-		for i := first; i < last; i++ {
-			out.sum[i+1], out.sqs[i+1], _ = sums(y[i*block:min(len(y), (i+1)*block)], ref)
-		}
-		return func() {}
-	})
-	for i := range n {
-		out.sum[i+1] += out.sum[i]
-		out.sqs[i+1] += out.sqs[i]
+	return &plateaus{block: block, ref: y[len(y)/2], sum: make([]float64, n+1), sqs: make([]float64, n+1)}
+}
+
+// add sums over each of the blocks that begin among samples first to last-1 of y.
+func (p *plateaus) add(y []float64, first, last int) {
+	for i := (first + p.block - 1) / p.block; i*p.block < last; i++ {
+		p.sum[i+1], p.sqs[i+1], _ = sums(y[i*p.block:min(len(y), (i+1)*p.block)], p.ref)
 	}
-	return out
+}
+
+// run makes running sums of them.
+func (p *plateaus) run() {
+	for i := range len(p.sum) - 1 {
+		p.sum[i+1] += p.sum[i]
+		p.sqs[i+1] += p.sqs[i]
+	}
 }
 
 // left is the energy about the means of what lies before first, between, and from last on.

@@ -213,7 +213,7 @@ func bareExponential() Finding {
 // for most of what moves in the record.
 func fallsOnly(s series) bool {
 	p := newPyramid(s)
-	levels := p.plateaus()
+	levels := p.flat
 	total := levels.left(0, s.len())
 	for _, o := range p.onsets() {
 		if s.len()-o < 2*samplesLeast {

@@ -68,7 +68,7 @@ const dampingKnown = 0.3
 // bestSecondOrder tries the samples around every onset.
 func bestSecondOrder(s series) (best secondOrderFit, found bool) {
 	p := newPyramid(s)
-	levels := p.plateaus()
+	levels := p.flat
 	least := math.Inf(1)
 	start := 0
 	for _, o := range p.onsets() {

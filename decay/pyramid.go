@@ -12,7 +12,7 @@ import (
 // where the ring has a handful of samples per cycle, however deep the record is.
 type pyramid struct {
 	levels []series
-	flat   *plateaus // see plateaus
+	flat   *plateaus
 }
 
 const pyramidRatio = 4
@@ -26,26 +26,46 @@ func newPyramid(s series) *pyramid {
 	} else if s.gaps {
 		base.y = filled(slices.Clone(s.y))
 	}
-	p := &pyramid{levels: []series{base}}
-	for {
-		last := p.levels[len(p.levels)-1]
-		if last.len() < 16*pyramidRatio {
-			return p
-		}
-		p.levels = append(p.levels, decimated(last))
+	p := &pyramid{levels: []series{base}, flat: newPlateaus(base.y)}
+	for last := base; last.len() >= 16*pyramidRatio; {
+		last = series{y: make([]float64, last.len()/pyramidRatio), t0: last.t0 + last.dt*(pyramidRatio-1)/2, dt: last.dt * pyramidRatio}
+		p.levels = append(p.levels, last)
 	}
+	p.sumUp()
+	return p
 }
 
-func decimated(s series) series {
-	out := make([]float64, s.len()/pyramidRatio)
-	halves(len(out), func(first, last int) func() {
-		for i := first; i < last; i++ {
-			b := s.y[i*pyramidRatio : i*pyramidRatio+pyramidRatio]
-			out[i] = (b[0] + b[1] + b[2] + b[3]) / pyramidRatio
+const (
+	fineLevels = 4       // levels that are summed up together
+	fineBlock  = 1 << 12 // samples of level 0, in one go: they stay close by
+)
+
+// sumUp fills the levels and the plateaus.
+func (p *pyramid) sumUp() {
+	n := p.levels[0].len()
+	halves(n, func(first, last int) func() {
+		for at := (first + fineBlock - 1) / fineBlock * fineBlock; at < last; at += fineBlock {
+			end := min(at+fineBlock, n)
+			p.flat.add(p.levels[0].y, at, end)
+			for k := 1; k < min(fineLevels, len(p.levels)); k++ {
+				p.level(k, at/scale(k), end/scale(k))
+			}
 		}
 		return func() {}
 	})
-	return series{y: out, t0: s.t0 + s.dt*(pyramidRatio-1)/2, dt: s.dt * pyramidRatio}
+	for k := fineLevels; k < len(p.levels); k++ {
+		p.level(k, 0, p.levels[k].len())
+	}
+	p.flat.run()
+}
+
+// level fills samples first to last-1 of level k.
+func (p *pyramid) level(k, first, last int) {
+	below := p.levels[k-1].y[first*pyramidRatio:]
+	for i, out := 0, p.levels[k].y[first:last]; i < len(out); i++ {
+		b := below[i*pyramidRatio : i*pyramidRatio+pyramidRatio]
+		out[i] = (b[0] + b[1] + b[2] + b[3]) / pyramidRatio
+	}
 }
 
 // filled replaces NaN by the last value before it (the first one after it at the start).
@@ -96,10 +116,10 @@ func scale(k int) int { return 1 << (2 * k) }
 func (p *pyramid) onsets() []int {
 	found := []int{0}
 	for k := len(p.levels) - 1; k >= 0; k-- {
-		i := steepest(p.levels[k], 0, p.levels[k].len())
+		i := p.steepest(k, 0, p.levels[k].len())
 		for j := k - 1; j >= 0; j-- {
 			i *= pyramidRatio
-			i = steepest(p.levels[j], i-pyramidRatio, i+3*pyramidRatio)
+			i = p.steepest(j, i-pyramidRatio, i+3*pyramidRatio)
 		}
 		found = append(found, i)
 	}
@@ -108,14 +128,15 @@ func (p *pyramid) onsets() []int {
 }
 
 // steepest returns the index before the largest step between neighbours or next
-// neighbours in samples first to last-1.
-func steepest(s series, first, last int) int {
-	first, last = max(0, first), min(s.len(), last)
+// neighbours in samples first to last-1 of level k.
+func (p *pyramid) steepest(k, first, last int) int {
+	y := p.levels[k].y
+	first, last = max(0, first), min(len(y), last)
 	most, at := -1.0, first
 	var shared atomic.Uint64 // the largest step so far, as bits
 	shared.Store(math.Float64bits(most))
 	halves(max(0, last-2-first), func(from, to int) func() {
-		d, i := largestStep(s, first+from, first+to, &shared)
+		d, i := p.largestStep(k, first+from, first+to, &shared)
 		return func() {
 			if d > most {
 				most, at = d, i
@@ -128,18 +149,16 @@ func steepest(s series, first, last int) int {
 // largestStep returns the largest step from one of samples first to last-1, and where.
 // A stretch whose range is smaller than that, or than what the other half has found
 // so far, is passed over.
-func largestStep(s series, first, last int, shared *atomic.Uint64) (most float64, at int) {
+func (p *pyramid) largestStep(k, first, last int, shared *atomic.Uint64) (most float64, at int) {
 	most, at = -1, first
-	record, start := s.extremes()
+	all := p.levels[k].y
 	for from, to := first, 0; from < last; from = to {
-		to = min(last, (start+from)/rangeBlock*rangeBlock+rangeBlock-start)
+		to = min(from+rangeBlock, last)
 		least := math.Float64frombits(shared.Load())
-		if record != nil {
-			if r := record.rangeOf(start+from, start+to+2); r <= most || r < least {
-				continue
-			}
+		if r := p.rangeOf(k, from, to+2); r <= most || r < least {
+			continue
 		}
-		y := s.y[from : to+2]
+		y := all[from : to+2]
 		for i := range len(y) - 2 {
 			if d := math.Abs(y[i+1] - y[i]); d > most {
 				most, at = d, from+i
@@ -153,4 +172,12 @@ func largestStep(s series, first, last int, shared *atomic.Uint64) (most float64
 		}
 	}
 	return most, at
+}
+
+// rangeOf is not less than the range of samples first to last-1 of level k.
+func (p *pyramid) rangeOf(k, first, last int) float64 {
+	if record, start := p.levels[0].extremes(); record != nil {
+		return record.rangeOf(start+first*scale(k), start+last*scale(k))
+	}
+	return math.Inf(1)
 }

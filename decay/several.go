@@ -153,13 +153,13 @@ func (p *pyramid) strongestEdge(s series) (int, bool) {
 		return 0, false
 	}
 	y := p.levels[2].y
-	i := steepest(p.levels[2], 1, len(y)-1)
+	i := p.steepest(2, 1, len(y)-1)
 	if i+2 >= len(y) || math.Abs(y[i+2]-y[i]) < edgeShare*(s.hi-s.lo) {
 		return 0, false
 	}
 	for j := 1; j >= 0; j-- {
 		i *= pyramidRatio
-		i = steepest(p.levels[j], i, i+3*pyramidRatio)
+		i = p.steepest(j, i, i+3*pyramidRatio)
 	}
 	return i + 1, i > 0
 }
