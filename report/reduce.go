@@ -123,8 +123,9 @@ func reduce(axis *capture.Axis, parts []segment, c values) trace {
 			}
 			return
 		}
+		buffer := c.buffer()
 		for i := p.from; i < p.to; i += p.bin {
-			lo, hi := c.extremes(i, min(i+p.bin, p.to))
+			lo, hi := c.extremes(i, min(i+p.bin, p.to), buffer)
 			if lo.index < 0 {
 				tr.add(axis.Time(i), math.NaN())
 				continue
@@ -148,9 +149,17 @@ type extreme struct {
 // courseBlock is the number of values looked at in one go: they stay close by.
 const courseBlock = 1 << 11
 
+// buffer is room for extremes to work in.
+func (c values) buffer() []float64 {
+	if c.known != nil {
+		return nil
+	}
+	return make([]float64, courseBlock)
+}
+
 // extremes finds the smallest and the largest value from one sample up to before
 // another; the indices are -1 when none is a number.
-func (c values) extremes(from, to int) (lo, hi extreme) {
+func (c values) extremes(from, to int, buffer []float64) (lo, hi extreme) {
 	lo, hi = extreme{-1, math.Inf(1)}, extreme{-1, math.Inf(-1)}
 	if c.known != nil {
 		if l, h := c.known.Of(from, to); l >= 0 && h >= 0 {
@@ -158,7 +167,6 @@ func (c values) extremes(from, to int) (lo, hi extreme) {
 		}
 		return lo, hi
 	}
-	var buffer [courseBlock]float64
 	for at := from; at < to; at += courseBlock {
 		part := buffer[:min(courseBlock, to-at)]
 		c.fill(part, at)
@@ -181,9 +189,10 @@ func (c values) extremes(from, to int) (lo, hi extreme) {
 // the given length, at its time: with a stretch of half a cycle, the peaks.
 func crests(axis *capture.Axis, samples values, a indexRange, stretch int, baseline func(t float64) float64) trace {
 	return inPieces([]segment{{a, stretch}}, func(p segment, tr *trace) {
+		buffer := samples.buffer()
 		for i := p.from; i < p.to; i += p.bin {
 			b := baseline(axis.Time(i))
-			lo, hi := samples.extremes(i, min(i+p.bin, p.to))
+			lo, hi := samples.extremes(i, min(i+p.bin, p.to), buffer)
 			if lo.index < 0 {
 				continue
 			}
