@@ -181,16 +181,24 @@ func (f *ringFit) addition() float64 {
 // beginning: one plain ring departs from its large early swings, so that the gate
 // found with it may begin too late.
 func (g *gate) extendBack(s series) {
-	step := max(1, int(g.fit.period()/8))
+	least := max(1, int(g.fit.period()/8))
 	most := sigmaGrowth * g.fit.sigma()
-	for g.first > 0 {
+	// Steps double as long as the samples follow, and halve from where they do not.
+	growing := true
+	for step := least; step >= least && g.first > 0; {
 		to := max(0, g.first-step)
 		head := s.slice(to, g.first)
 		next, ok := refit(s.slice(to, g.last), &g.fit, -float64(g.first-to), coarse)
 		if !ok || next.a <= 0 || next.sigma() > most || !g.follows(&next, head) {
-			break
+			growing = false
+		} else {
+			g.first, g.fit = to, next
 		}
-		g.first, g.fit = to, next
+		if growing {
+			step *= 2
+		} else {
+			step /= 2
+		}
 	}
 	g.cutBefore = g.first > 0
 }
