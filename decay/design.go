@@ -71,9 +71,32 @@ type gram struct {
 // write keep their value, which is 1 for the first: the constant.
 func (g *gram) accumulate(s series, ref float64, n int, eval func(t float64, f *[parametersMost]float64)) {
 	g.g.n = n
+	halves(s.len(), func(first, last int) func() {
+		own := new(gram)
+		own.add(s, first, last, ref, n, eval)
+		return func() {
+			for k := range g.b {
+				g.b[k] += own.b[k]
+			}
+			for k := range g.g.v {
+				g.g.v[k] += own.g.v[k]
+			}
+		}
+	})
+	for a := range n {
+		for b := range a {
+			g.g.v[b*parametersMost+a] = g.g.v[a*parametersMost+b]
+		}
+	}
+}
+
+// add sums over samples first to last-1; of the products of the basis with itself
+// those below the diagonal.
+func (g *gram) add(s series, first, last int, ref float64, n int, eval func(t float64, f *[parametersMost]float64)) {
 	var f [parametersMost]float64
 	f[0] = 1
-	for i, v := range s.y {
+	for i := first; i < last; i++ {
+		v := s.y[i]
 		if math.IsNaN(v) {
 			continue
 		}
@@ -86,11 +109,6 @@ func (g *gram) accumulate(s series, ref float64, n int, eval func(t float64, f *
 			for b := range row {
 				row[b] += fa * f[b]
 			}
-		}
-	}
-	for a := range n {
-		for b := range a {
-			g.g.v[b*parametersMost+a] = g.g.v[a*parametersMost+b]
 		}
 	}
 }
