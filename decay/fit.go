@@ -169,60 +169,6 @@ func (f *ringFit) value(n float64) float64 {
 	return v
 }
 
-// residuals of the samples of s, whose sample 0 is n0 intervals after the start of the
-// fitted window.
-func (f *ringFit) residuals(s series, n0 float64) []float64 {
-	out := make([]float64, s.len())
-	f.residualsBy(s, s.len())(out, s, n0)
-	return out
-}
-
-// residualsBy returns a function that writes the residuals of stretches of s of at most
-// n samples.
-func (f *ringFit) residualsBy(s series, n int) func(out []float64, part series, n0 float64) {
-	if !s.even() || f.bend != nil {
-		return func(out []float64, part series, n0 float64) {
-			for i, v := range part.y {
-				out[i] = v - f.value(n0+part.position(i))
-			}
-		}
-	}
-	m := s.spacing()
-	terms := []term{{f.a * m, f.w * m, f.p, f.q}}
-	if c := f.companion; c != nil {
-		terms = append(terms, term{c.a * m, c.w * m, c.p, c.q})
-	}
-	curve := newFollower(f.offset(), n, terms...)
-	return func(out []float64, part series, n0 float64) { curve.residuals(out, part.y, n0/m) }
-}
-
-// departing visits, in order, the samples first to last-1 of s whose residual r is
-// beyond limit; sample 0 is that of the fitted window. It returns the largest |r|, or
-// infinity when visit was false, which ends it.
-func (f *ringFit) departing(s series, first, last int, limit float64, visit func(i int, r float64) bool) (most float64) {
-	var buffer [residualBlock]float64
-	residuals := f.residualsBy(s, residualBlock)
-	for at := first; at < last; at += residualBlock {
-		part := s.slice(at, min(at+residualBlock, last))
-		left := buffer[:part.len()]
-		residuals(left, part, s.position(at))
-		lo, hi, _ := span(left)
-		most = max(most, -lo, hi)
-		if hi <= limit && -lo <= limit {
-			continue
-		}
-		for i, r := range left {
-			if (r > limit || r < -limit) && !visit(at+i, r) {
-				return math.Inf(1)
-			}
-		}
-	}
-	return most
-}
-
-// residualBlock is the number of samples looked at in one go: they stay close by.
-const residualBlock = 1 << 11
-
 // covariance returns the covariance of (a, w, c, p, q) for noise v.
 func (f *ringFit) covariance(v noise) (cov sym, ok bool) {
 	full, ok := f.fullCovariance(v)

@@ -269,29 +269,6 @@ func (p *poles) takeOut(g *gram, list []pole) {
 	}
 }
 
-// projection returns sum y z^n and sum y n z^n over all samples.
-func (p *poles) projection(z pole) (out [2]complex128) {
-	y := p.s.y
-	if len(y) < parallelFrom {
-		var t powers // on the stack
-		t.fill(z, len(y))
-		return t.project(y, 0, len(y), p.ref)
-	}
-	t := new(powers)
-	t.fill(z, len(y))
-	if e, ok := p.near.about(z); ok {
-		e.extend(y, p.ref)
-		blocks := len(y) / blockLength
-		out, rest := e.project(z, blocks), t.project(y, blocks*blockLength, len(y), p.ref)
-		return [2]complex128{out[0] + rest[0], out[1] + rest[1]}
-	}
-	halves(len(y), func(first, last int) func() {
-		sum := t.project(y, first, last, p.ref)
-		return func() { out[0], out[1] = out[0]+sum[0], out[1]+sum[1] }
-	})
-	return out
-}
-
 func (p *poles) putProjection(g *gram, k int, sum [2]complex128) {
 	at := p.slot(k)
 	for j := range 2 {
