@@ -200,9 +200,7 @@ func (g *gate) breakIn(s series, from, to int) (int, bool) {
 		})
 		return func() { held, most = append(held, own...), max(most, largest) }
 	})
-	if to-from >= parallelFrom {
-		g.checked = append(g.checked, checked{from, to, g.first, g.fit, most})
-	}
+	g.check(from, to, most)
 	for k := range max(0, len(held)-1) {
 		if neighbours(held[k:]) {
 			return held[k], true
