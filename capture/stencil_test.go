@@ -88,7 +88,7 @@ func TestStencilsFit(t *testing.T) {
 	}
 	for _, row := range []string{
 		"%.9e,%.6f\n", "%.6f;%+.5E\n", "\"%.4f\", \"%.3f\"\r\n", "%11.6f %9.4f\n", "2,%.6f,,%.3f,7,8\n", "%.3f\t%.12f\n",
-		"%.6f," + strings.Repeat("a word, ", 12) + "%.4f" + strings.Repeat(",0.5", 20) + "\n",
+		"%31.3f,%29.3f\n", "%.6f," + strings.Repeat("a word, ", 12) + "%.4f" + strings.Repeat(",0.5", 20) + "\n",
 	} {
 		var b strings.Builder
 		for i := range 4000 {

@@ -102,7 +102,7 @@ func (m *stencilMaker) begin(from, to int, mark byte, blanks bool, powers *float
 		part.blanks = 1
 	}
 	m.parts = append(m.parts, part)
-	m.most += partBytes
+	m.most += partBytes + shapeMost // blanks and a sign, digits and a mark
 	m.at = to
 }
 
