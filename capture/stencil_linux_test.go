@@ -37,11 +37,11 @@ func TestStencilsStayInside(t *testing.T) {
 		from := strings.Index(text, "\n") + 1
 		d.plan.read(s.chunk(guarded[from:], 0), d.plan.worker())
 	}
-	for width := range 48 {
+	for width := 1; width < 60; width++ {
 		var b strings.Builder
 		b.WriteString("t,V\n")
 		for i := range 300 {
-			fmt.Fprintf(&b, "%*.1f,%*.3f\n", 1+i*width/300, float64(i)/10, 1+(300-i)*width/300, float64(i%7))
+			fmt.Fprintf(&b, "%*.14f,%*.14f\n", width, float64(i-300)/300, width, -float64(i%7))
 		}
 		read(b.String())
 	}
