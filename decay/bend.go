@@ -61,7 +61,7 @@ func (l bendLaw) shape(a, b, t float64) (u, i, ua, ub, ia, ib float64) {
 		if b > 0 {
 			// Where u has stopped, I stays; its derivatives are those at the stop,
 			// for u vanishes there.
-			t = math.Min(t, math.Log1p(a/b)/a)
+			t = math.Min(t, l.stop(a, b))
 		}
 		e, f, fa := integral(a, t)
 		g, ga := secondIntegral(a, t, f, fa)
@@ -116,23 +116,49 @@ func logIntegral(b, f, fa float64) (i, ia, ib float64) {
 	return i, ia, (f/d - i) / b
 }
 
-// newBent is the problem with theta = (a, w, B, G) and beta = (c, p, q). Its basis
-// is 1, C, S and the derivatives of C and S by a, w, B, G.
-func newBent(s series, law bendLaw) *design {
+// basis writes 1, C, S and the derivatives of C and S by a, w, B, G: but for the 1 real
+// and imaginary parts.
+func (l bendLaw) basis(th []float64, t float64, f *[parametersMost]float64) {
+	u, i, ua, ub, ia, ib := l.shape(th[0], th[2], t)
+	sin, cos := math.Sincos(th[1]*t + th[3]*i)
+	c, s := u*cos, u*sin
+	g := th[3]
+	f[1], f[2] = c, s
+	f[3], f[4] = ua*cos-s*g*ia, ua*sin+c*g*ia
+	f[5], f[6] = -t*s, t*c
+	f[7], f[8] = ub*cos-s*g*ib, ub*sin+c*g*ib
+	f[9], f[10] = -i*s, i*c
+}
+
+// stop is the time at which the ring stops for good, +Inf for never.
+func (l bendLaw) stop(a, b float64) float64 {
+	if l == constant && b > 0 {
+		return math.Log1p(a/b) / a
+	}
+	return math.Inf(1)
+}
+
+// fastest bounds the angular frequency at which the curve and its derivatives depart
+// from exp(jwt). Where B is larger than a, they follow 1/(1 + Bt) or 1/sqrt(1 + 2Bt), whose
+// sixth derivatives are those of exponentials of 3 and 4.7 times the rate B.
+func (f *bend) fastest(a, own, w float64) float64 {
+	return math.Hypot(math.Abs(a)+5*math.Abs(f.b), math.Max(math.Abs(own-w), math.Abs(own+f.g-w)))
+}
+
+// newBent is the problem with theta = (a, w, B, G) and beta = (c, p, q), about samples
+// whose sums are those of n, or nil.
+func newBent(s series, law bendLaw, n *nodal) *design {
 	length := s.position(s.len() - 1)
 	d := &design{
 		s: s, ref: s.level(), width: 11, linear: []int{0, 1, 2},
 		derivative: [][]product{{{3, 1}, {4, 2}}, {{5, 1}, {6, 2}}, {{7, 1}, {8, 2}}, {{9, 1}, {10, 2}}},
-		eval: func(th []float64, t float64, f *[parametersMost]float64) {
-			u, i, ua, ub, ia, ib := law.shape(th[0], th[2], t)
-			sin, cos := math.Sincos(th[1]*t + th[3]*i)
-			c, s := u*cos, u*sin
-			g := th[3]
-			f[1], f[2] = c, s
-			f[3], f[4] = ua*cos-s*g*ia, ua*sin+c*g*ia
-			f[5], f[6] = -t*s, t*c
-			f[7], f[8] = ub*cos-s*g*ib, ub*sin+c*g*ib
-			f[9], f[10] = -i*s, i*c
+		eval:       law.basis,
+		nodes: &byNodes{
+			sums: n,
+			fastest: func(th []float64, w float64) float64 {
+				return (&bend{law, th[2], th[3]}).fastest(th[0], th[1], w)
+			},
+			corner: func(th []float64) float64 { return law.stop(th[0], th[2]) },
 		},
 		domain: func(th []float64) bool {
 			a, w, b, g := th[0], th[1], th[2], th[3]
@@ -144,9 +170,10 @@ func newBent(s series, law bendLaw) *design {
 	return d
 }
 
-// fitBent fits an amplitude law, started at a ring (a, w) and a few strengths.
-func fitBent(s series, law bendLaw, a, w, tolerance float64) (best ringFit, ok bool) {
-	d := newBent(s, law)
+// fitBent fits an amplitude law, started at a ring (a, w) and a few strengths, with the
+// sums of n.
+func fitBent(s series, law bendLaw, n *nodal, a, w, tolerance float64) (best ringFit, ok bool) {
+	d := newBent(s, law, n)
 	for _, strength := range []float64{0.1, 1} {
 		sol := minimise(d, []float64{a / (1 + strength/2), w, strength * a / (1 + strength/2), 0}, tolerance)
 		if sol.stop == Singular || sol.stop == NotRun {
@@ -163,7 +190,7 @@ func fitBent(s series, law bendLaw, a, w, tolerance float64) (best ringFit, ok b
 // refitBent continues from the parameters of f on another window, whose start is
 // shift intervals after that of f.
 func refitBent(s series, f *ringFit, shift, tolerance float64) (ringFit, bool) {
-	d := newBent(s, f.bend.law)
+	d := newBent(s, f.bend.law, f.nodes.over(s, f.w))
 	u, _, _, _, _, _ := f.bend.law.shape(f.a, f.bend.b, math.Max(shift, -1/(f.a+math.Abs(f.bend.b))))
 	power := u
 	switch f.bend.law {
@@ -187,8 +214,8 @@ func (d *design) bentFit(sol solution, law bendLaw) ringFit {
 	b := sol.normal.beta
 	return ringFit{
 		s: d.s, a: sol.theta[0], w: sol.theta[1], c: b[0], p: b[1], q: b[2], ref: d.ref,
-		bend: &bend{law, sol.theta[2], sol.theta[3]},
-		rss:  sol.normal.rss, n: d.n, stop: sol.stop, iterations: sol.iterations, normal: sol.normal,
+		bend: &bend{law, sol.theta[2], sol.theta[3]}, nodes: d.nodes.sums,
+		rss: sol.normal.rss, n: d.n, stop: sol.stop, iterations: sol.iterations, normal: sol.normal,
 	}
 }
 

@@ -19,6 +19,7 @@ type design struct {
 	// derivative[k] pairs functions with the beta that multiplies each.
 	derivative [][]product
 	domain     func(theta []float64) bool
+	nodes      *byNodes // how the sums follow from few values; nil when they do not
 }
 
 // product is a function of the basis times a linear parameter.
@@ -28,8 +29,10 @@ func (d *design) size() int                  { return d.n }
 func (d *design) valid(theta []float64) bool { return d.domain == nil || d.domain(theta) }
 
 func (d *design) at(theta []float64) (normal, bool) {
-	var g gram
-	g.accumulate(d.s, d.ref, d.width, func(t float64, f *[parametersMost]float64) { d.eval(theta, t, f) })
+	g, ok := d.gramByNodes(theta)
+	if !ok {
+		g.accumulate(d.s, d.ref, d.width, func(t float64, f *[parametersMost]float64) { d.eval(theta, t, f) })
+	}
 	out, ok := g.project(d.linear, d.yy)
 	if !ok {
 		return out, false
@@ -51,6 +54,11 @@ func (d *design) at(theta []float64) (normal, bool) {
 
 // prepare sums what does not depend on theta.
 func (d *design) prepare() {
+	if b := d.nodes; b != nil && b.sums != nil {
+		d.ref = b.sums.ref
+		d.n, d.yy = b.sums.energy(d.s)
+		return
+	}
 	d.n = d.s.count()
 	d.yy = 0
 	for _, v := range d.s.y {
@@ -74,16 +82,24 @@ func (g *gram) accumulate(s series, ref float64, n int, eval func(t float64, f *
 	halves(s.len(), func(first, last int) func() {
 		own := new(gram)
 		own.add(s, first, last, ref, n, eval)
-		return func() {
-			for k := range g.b {
-				g.b[k] += own.b[k]
-			}
-			for k := range g.g.v {
-				g.g.v[k] += own.g.v[k]
-			}
-		}
+		return func() { g.join(own) }
 	})
-	for a := range n {
+	g.mirror()
+}
+
+// join adds the sums of other.
+func (g *gram) join(other *gram) {
+	for k := range g.b {
+		g.b[k] += other.b[k]
+	}
+	for k := range g.g.v {
+		g.g.v[k] += other.g.v[k]
+	}
+}
+
+// mirror copies what is below the diagonal to above it.
+func (g *gram) mirror() {
+	for a := range g.g.n {
 		for b := range a {
 			g.g.v[b*parametersMost+a] = g.g.v[a*parametersMost+b]
 		}

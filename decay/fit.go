@@ -43,6 +43,7 @@ type ringFit struct {
 	iterations    int
 	normal        normal
 	problem       *poles // that it solves; nil with an amplitude law
+	nodes         *nodal // sums of a fit with an amplitude law, or nil
 	left          *noise // see noise
 	rival         *rival // a model that the samples do not rule out, or nil
 }

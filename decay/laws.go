@@ -10,7 +10,9 @@ type exponentialLaw struct {
 
 func (f *ringFit) law() law {
 	if f.bend != nil {
-		return bentLaw{*f}
+		own := *f
+		own.nodes = nil // they need not outlive the analysis
+		return bentLaw{own}
 	}
 	l := exponentialLaw{f.size(), f.a / f.s.dt, f.w / f.s.dt, math.Atan2(-f.q, f.p), f.offset(), nil}
 	if c := f.companion; c != nil {

@@ -58,7 +58,7 @@ func (f *ringFit) otherLaw() *rival {
 	}
 	window := f.s.thinned(choiceSamples)
 	own, ok := refitBent(window, f, 0, coarse)
-	second, found := fitBent(window, other, f.a, f.w, coarse)
+	second, found := fitBent(window, other, own.nodes, f.a, f.w, coarse)
 	if !ok || !found {
 		return nil
 	}

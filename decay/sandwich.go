@@ -181,11 +181,10 @@ func (c *coloured) residualAutocovariance(variance float64, density []float64, m
 // parameters, in the order of the normal equations, n intervals after the start.
 func (f *ringFit) gradients() func(n float64, g *[parametersMost]float64) {
 	if f.bend != nil {
-		d := newBent(f.s, f.bend.law)
 		theta := []float64{f.a, f.w, f.bend.b, f.bend.g}
 		return func(n float64, g *[parametersMost]float64) {
 			var h [parametersMost]float64
-			d.eval(theta, n, &h)
+			f.bend.law.basis(theta, n, &h)
 			for k := range 4 {
 				g[k] = f.p*h[3+2*k] + f.q*h[4+2*k]
 			}
