@@ -40,6 +40,12 @@ type bend struct {
 	b, g float64
 }
 
+// at returns u and the phase at time t.
+func (f *bend) at(a, w, t float64) (u, phase float64) {
+	u, i, _, _, _, _ := f.law.shape(a, f.b, t)
+	return u, w*t + f.g*i
+}
+
 // shape returns u and I at time t and their derivatives by a and B.
 func (l bendLaw) shape(a, b, t float64) (u, i, ua, ub, ia, ib float64) {
 	switch l {

@@ -140,7 +140,7 @@ func (g *gate) candidates(window series, plain *ringFit, model Model) []ringFit 
 		}
 	}
 	if model == open || model == Amplitude {
-		sums := newNodal(window, plain.w)
+		sums := nodalOf(window, plain.w)
 		for _, law := range []bendLaw{quadratic, cubic, constant} {
 			if f, ok := fitBent(window, law, sums, plain.a, plain.w, coarse); ok {
 				out = append(out, f)

@@ -128,11 +128,11 @@ func shadowed(found []gate, s series, rails []int) (out []int) {
 	for k := range found {
 		g := &found[k]
 		margin := shadowSigma * g.fit.sigma()
-		for i := g.first; i < g.last; i++ {
-			if v := g.fit.value((s.time(i) - s.time(g.first)) / s.dt); v > hi-margin || v < lo+margin {
-				out = append(out, i)
+		g.fit.along(s.slice(g.first, g.last), func(i int, v float64) {
+			if v > hi-margin || v < lo+margin {
+				out = append(out, g.first+i)
 			}
-		}
+		})
 	}
 	return out
 }

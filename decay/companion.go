@@ -44,7 +44,7 @@ func companions(f *ringFit, known *pole) []ringFit {
 	var best [2]ringFit
 	var found [2]bool
 	for _, st := range starts {
-		next, ok := fitSum(f.s, st[0], &st[1], coarse)
+		next, ok := f.problem.fitSum(st[0], &st[1], coarse)
 		if !ok || next.a <= 0 {
 			continue
 		}
@@ -115,7 +115,7 @@ func (f *ringFit) dampedIsBaseline() {
 	case c.w > baselineRatio*c.a:
 		return
 	}
-	if next, ok := fitSum(f.s, ring, &fall, coarse); ok && next.rss < baselineRise*f.rss {
+	if next, ok := f.problem.fitSum(ring, &fall, coarse); ok && next.rss < baselineRise*f.rss {
 		*f = next
 	}
 }
@@ -130,7 +130,7 @@ func (f *ringFit) strongestFirst() {
 	case c.w == 0 || tone:
 		return
 	case second.steady(length) || c.energy() > second.energy():
-		if next, ok := fitSum(f.s, pole{c.a, c.w}, &pole{f.a, f.w}, coarse); ok {
+		if next, ok := f.problem.fitSum(pole{c.a, c.w}, &pole{f.a, f.w}, coarse); ok {
 			*f = next
 		}
 	}

@@ -65,21 +65,22 @@ func fitRing(s series, a, w, tolerance float64) (ringFit, bool) {
 
 // fitSum fits a ring and, unless it is nil, a companion.
 func fitSum(s series, ring pole, companion *pole, tolerance float64) (ringFit, bool) {
-	theta := []float64{ring.a, ring.w}
-	p := &poles{}
-	switch {
-	case s.len() < samplesLeast:
+	if s.len() < samplesLeast {
 		return ringFit{}, false
-	case companion == nil:
-		p = newPoles(s, 1, 0)
-	case companion.w > 0:
-		p = newPoles(s, 2, 0)
-		theta = append(theta, companion.a, companion.w)
-	default:
-		p = newPoles(s, 1, 1)
-		theta = append(theta, companion.a)
 	}
-	return p.solve(theta, tolerance)
+	return newRing(s).fitSum(ring, companion, tolerance)
+}
+
+// fitSum does so to the samples of p.
+func (p *poles) fitSum(ring pole, companion *pole, tolerance float64) (ringFit, bool) {
+	switch {
+	case companion == nil:
+		return p.alike(1, 0).solve([]float64{ring.a, ring.w}, tolerance)
+	case companion.w > 0:
+		return p.alike(2, 0).solve([]float64{ring.a, ring.w, companion.a, companion.w}, tolerance)
+	default:
+		return p.alike(1, 1).solve([]float64{ring.a, ring.w, companion.a}, tolerance)
+	}
 }
 
 // solve fits from theta on.
@@ -97,7 +98,7 @@ func (p *poles) solve(theta []float64, tolerance float64) (ringFit, bool) {
 func (r *poles) fit(sol solution) ringFit {
 	b := sol.normal.beta
 	f := ringFit{
-		s: r.given, a: sol.theta[0], w: sol.theta[1], c: b[0], p: b[1], q: b[2], ref: r.ref,
+		s: r.s, a: sol.theta[0], w: sol.theta[1], c: b[0], p: b[1], q: b[2], ref: r.ref,
 		rss: sol.normal.rss, n: r.n, stop: sol.stop, iterations: sol.iterations, normal: sol.normal,
 		problem: r,
 	}
@@ -156,8 +157,8 @@ func (f *ringFit) ring(n float64) float64 {
 		ring := term{f.a, f.w, f.p, f.q}
 		return ring.at(n)
 	}
-	u, i, _, _, _, _ := f.bend.law.shape(f.a, f.bend.b, n)
-	sin, cos := math.Sincos(f.w*n + f.bend.g*i)
+	u, phase := f.bend.at(f.a, f.w, n)
+	sin, cos := math.Sincos(phase)
 	return u * (f.p*cos + f.q*sin)
 }
 

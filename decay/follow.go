@@ -76,6 +76,11 @@ func (f *ringFit) residuals(s series, n0 float64) []float64 {
 // residualsBy returns a function that writes the residuals of stretches of s of at most
 // n samples.
 func (f *ringFit) residualsBy(s series, n int) func(out []float64, part series, n0 float64) {
+	if f.bend != nil && s.even() {
+		if curve := newNodeFollower(f, s.spacing()); curve != nil {
+			return func(out []float64, part series, n0 float64) { curve.residuals(out, part.y, n0) }
+		}
+	}
 	if !s.even() || f.bend != nil {
 		return func(out []float64, part series, n0 float64) {
 			for i, v := range part.y {
@@ -90,6 +95,21 @@ func (f *ringFit) residualsBy(s series, n int) func(out []float64, part series, 
 	}
 	curve := newFollower(f.offset(), n, terms...)
 	return func(out []float64, part series, n0 float64) { curve.residuals(out, part.y, n0/m) }
+}
+
+// along visits the values of the curve at the samples of the fitted window s, in order.
+func (f *ringFit) along(s series, visit func(i int, v float64)) {
+	var buffer [residualBlock]float64
+	residuals := f.residualsBy(s, residualBlock)
+	for at := 0; at < s.len(); at += residualBlock {
+		part := s.slice(at, min(at+residualBlock, s.len()))
+		part.y = buffer[:part.len()]
+		clear(part.y)
+		residuals(part.y, part, s.position(at))
+		for i, r := range part.y {
+			visit(at+i, -r)
+		}
+	}
 }
 
 // departing visits, in order, the samples first to last-1 of s whose residual r is

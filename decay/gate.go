@@ -172,6 +172,8 @@ func refit(window series, f *ringFit, shift, tolerance float64) (ringFit, bool) 
 		return p.solve(f.theta(), tolerance)
 	case p.begins(window):
 		return p.extended(window).solve(f.theta(), tolerance)
+	case p != nil:
+		return p.elsewhere(window).solve(f.theta(), tolerance)
 	}
 	return fitSum(window, pole{f.a, f.w}, f.companionPole(), tolerance)
 }

@@ -15,7 +15,7 @@ type nodal struct {
 }
 
 const (
-	nodeLevels = 7       // the longest blocks have 4096 samples
+	nodeLevels = 4       // the longest blocks have 4096 samples
 	nodalFrom  = 1 << 12 // samples from which sums over nodes pay
 )
 
@@ -25,7 +25,7 @@ type nodeLevel struct {
 	first  int
 	blocks []nodeSums
 	whole  *nodeHeld // of a block without gaps
-	// Shortest blocks are summed up from samples, the others from two of the level
+	// Shortest blocks are summed up from samples, the others from some of the level
 	// below: for functions near w, near 2w, and smooth ones.
 	weights [3]*nodeWeights
 	join    [3]*nodeJoin
@@ -45,29 +45,36 @@ type nodeHeld struct {
 	n                   int
 }
 
-// newNodal is for the samples of s and functions near exp(jwn), n in intervals; nil where
+// nodalOf is for the samples of s and functions near exp(jwn), n in intervals; nil where
 // it does not pay.
-func newNodal(s series, w float64) *nodal {
+func nodalOf(s series, w float64) *nodal {
 	if !s.even() || s.len() < nodalFrom {
 		return nil
 	}
-	n := &nodal{s: s.slice(0, 0), w: w * s.spacing(), ref: s.level()}
+	return newNodal(s, w*s.spacing(), s.level())
+}
+
+// newNodal is for even samples of s, counted about ref.
+func newNodal(s series, w, ref float64) *nodal {
+	n := &nodal{s: s.slice(0, 0), w: w, ref: ref}
 	near := [3]float64{n.w, 2 * n.w, 0}
+	length := nodeBlock
 	for j := range n.levels {
 		l := &n.levels[j]
-		l.length = nodeBlock << j
+		l.length = length
+		length *= nodeJoined
 		for k, w := range near {
 			if j == 0 {
 				l.weights[k] = newNodeWeights(w)
 			} else {
-				l.join[k] = newNodeJoin(w, l.length/2)
+				l.join[k] = newNodeJoin(w, l.length/nodeJoined)
 			}
 		}
 		if j == 0 {
 			l.whole = l.held(make([]float64, nodeBlock))
 		} else {
 			below := n.levels[j-1].whole
-			l.whole = l.both(below, below)
+			l.whole = l.heldBy([nodeJoined]*nodeHeld{below, below, below, below})
 		}
 		l.first = (s.from + l.length - 1) / l.length
 	}
@@ -79,7 +86,7 @@ func newNodal(s series, w float64) *nodal {
 // knows them or can be extended to do so.
 func (n *nodal) over(window series, w float64) *nodal {
 	if n == nil || !window.even() || !n.sharesSamples(window) || math.Abs(w*window.spacing()-n.w)*(nodeBlock/2) > nodeReach/4 {
-		return newNodal(window, w)
+		return nodalOf(window, w)
 	}
 	n.extend(window)
 	return n
@@ -170,36 +177,48 @@ func (l *nodeLevel) held(y []float64) *nodeHeld {
 	return out
 }
 
-// sumBlocks sums up block k from the two of the level below that make it.
+// sumBlocks sums up block k from those of the level below that make it.
 func (l *nodeLevel) sumBlocks(below *nodeLevel, k int) {
-	pair := below.blocks[2*k-below.first:][:2]
 	b := &l.blocks[k-l.first]
-	b.y = l.join[0].sums(&pair[0].y, &pair[1].y)
-	b.sum, b.yy = pair[0].sum+pair[1].sum, pair[0].yy+pair[1].yy
-	if b.held = l.whole; pair[0].held != below.whole || pair[1].held != below.whole {
-		b.held = l.both(pair[0].held, pair[1].held)
+	b.held = l.whole
+	var y [nodeJoined]*atNodes
+	var held [nodeJoined]*nodeHeld
+	for i := range y {
+		part := &below.blocks[nodeJoined*k+i-below.first]
+		y[i], held[i] = &part.y, part.held
+		b.sum, b.yy = b.sum+part.sum, b.yy+part.yy
+		if part.held != below.whole {
+			b.held = nil
+		}
+	}
+	b.y = l.join[0].sums(y)
+	if b.held == nil {
+		b.held = l.heldBy(held)
 	}
 }
 
-func (l *nodeLevel) both(before, later *nodeHeld) *nodeHeld {
-	return &nodeHeld{
-		one:    l.join[0].sums(&before.one, &later.one),
-		square: l.join[1].sums(&before.square, &later.square),
-		smooth: l.join[2].sums(&before.smooth, &later.smooth),
-		n:      before.n + later.n,
+// heldBy is of the block that parts make.
+func (l *nodeLevel) heldBy(parts [nodeJoined]*nodeHeld) *nodeHeld {
+	var one, square, smooth [nodeJoined]*atNodes
+	out := new(nodeHeld)
+	for i, p := range parts {
+		one[i], square[i], smooth[i] = &p.one, &p.square, &p.smooth
+		out.n += p.n
 	}
+	out.one, out.square, out.smooth = l.join[0].sums(one), l.join[1].sums(square), l.join[2].sums(smooth)
+	return out
 }
 
 // cover visits samples first to last-1 of the record in order: by the longest blocks of
-// levels up to top that fit, and what is left, with the shortest block around corner,
+// levels j up to top that fit, and what is left, with the shortest block around corner,
 // as samples.
-func (n *nodal) cover(first, last, top int, corner float64, block func(l *nodeLevel, at int, b *nodeSums), rest func(first, last int)) {
+func (n *nodal) cover(first, last, top int, corner float64, block func(j, at int, b *nodeSums), rest func(first, last int)) {
 	for at := first; at < last; {
 		j := top
 		for ; j >= 0; j-- {
 			l := &n.levels[j]
 			if k := at / l.length; k*l.length == at && at+l.length <= last && (corner < float64(at) || corner > float64(at+l.length)) {
-				block(l, at, &l.blocks[k-l.first])
+				block(j, at, &l.blocks[k-l.first])
 				at += l.length
 				break
 			}
@@ -216,7 +235,7 @@ func (n *nodal) cover(first, last, top int, corner float64, block func(l *nodeLe
 // squares about ref.
 func (n *nodal) energy(window series) (count int, yy float64) {
 	first := window.from
-	n.cover(first, first+window.len(), nodeLevels-1, math.Inf(1), func(_ *nodeLevel, _ int, b *nodeSums) {
+	n.cover(first, first+window.len(), nodeLevels-1, math.Inf(1), func(_, _ int, b *nodeSums) {
 		count, yy = count+b.held.n, yy+b.yy
 	}, func(from, to int) {
 		_, squares, m := sums(window.y[from-first:to-first], n.ref)
@@ -226,10 +245,10 @@ func (n *nodal) energy(window series) (count int, yy float64) {
 }
 
 // level is that of the longest blocks in which functions that depart from exp(jwn) by
-// depart radians a sample are known by their nodes; -1 when there is none.
-func (n *nodal) level(depart float64) int {
+// depart radians a sample do so by reach at most; -1 when there is none.
+func (n *nodal) level(depart, reach float64) int {
 	j := nodeLevels - 1
-	for ; j >= 0 && !(depart*float64(n.levels[j].length)/2 <= nodeReach); j-- {
+	for ; j >= 0 && !(depart*float64(n.levels[j].length)/2 <= reach); j-- {
 	}
 	return j
 }

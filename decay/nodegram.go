@@ -31,7 +31,7 @@ func (d *design) gramByNodes(theta []float64) (g gram, ok bool) {
 		return g, false
 	}
 	m := d.s.spacing()
-	top := b.sums.level(m * b.fastest(theta, b.sums.w/m))
+	top := b.sums.level(m*b.fastest(theta, b.sums.w/m), nodeReach)
 	if top < 0 {
 		return g, false
 	}
@@ -42,14 +42,14 @@ func (d *design) gramByNodes(theta []float64) (g gram, ok bool) {
 	halves(d.s.len(), func(first, last int) func() {
 		var own gram
 		var sums nodeGram
-		b.sums.cover(from+first, from+last, top, corner, func(l *nodeLevel, at int, b *nodeSums) {
-			sums.add(b)
-			half := float64(l.length) / 2
+		b.sums.cover(from+first, from+last, top, corner, func(j, at int, s *nodeSums) {
+			sums.add(s)
+			half := float64(b.sums.levels[j].length) / 2
 			middle := float64(at-from) + half - 0.5
 			var f [parametersMost]float64
 			for i, x := range nodeAt {
 				eval((middle+x*half)*m, &f)
-				sums.addNode(b, i, &f, d.width/2)
+				sums.addNode(s, i, &f, d.width/2)
 			}
 		}, func(at, to int) { own.add(d.s, at-from, to-from, d.ref, d.width, eval) })
 		return func() {

@@ -69,7 +69,7 @@ type nodeWeights struct {
 	// Real and imaginary parts of x^k exp(jwq) in the later half: before the middle
 	// they are the same but for the sign.
 	table [nodeBlock / 2][2 * nodes]float64
-	to    [nodes][nodes]complex128
+	turn  atNodes // exp(-jwt) at the nodes
 }
 
 func newNodeWeights(w float64) *nodeWeights {
@@ -84,10 +84,7 @@ func newNodeWeights(w float64) *nodeWeights {
 		}
 	}
 	for i, at := range nodeAt {
-		turn := cmplx.Exp(complex(0, -w*at*(nodeBlock/2)))
-		for k := range nodes {
-			out.to[i][k] = turn * complex(lagrange[i][k], 0)
-		}
+		out.turn[i] = cmplx.Exp(complex(0, -w*at*(nodeBlock/2)))
 	}
 	return out
 }
@@ -111,40 +108,66 @@ func (w *nodeWeights) sums(y *[nodeBlock]float64, ref float64) (out atNodes) {
 		r5 += difference * f[10]
 		i5 += sum * f[11]
 	}
-	moments := [nodes]complex128{complex(r0, i0), complex(r1, i1), complex(r2, i2), complex(r3, i3), complex(r4, i4), complex(r5, i5)}
 	for i := range out {
-		for k, m := range moments {
-			out[i] += w.to[i][k] * m
-		}
+		l := &lagrange[i]
+		re := l[0]*r0 + l[1]*r1 + l[2]*r2 + l[3]*r3 + l[4]*r4 + l[5]*r5
+		im := l[0]*i0 + l[1]*i1 + l[2]*i2 + l[3]*i3 + l[4]*i4 + l[5]*i5
+		out[i] = w.turn[i] * complex(re, im)
 	}
 	return out
 }
 
-// nodeJoin turns what two neighbouring blocks come to at their nodes into what both
+// nodeJoin turns what neighbouring blocks come to at their nodes into what all of them
 // come to at those of the block that they make.
-type nodeJoin [2][nodes][nodes]complex128
+type nodeJoin [nodeJoined][nodes][nodes]complex128
+
+const nodeJoined = 4
 
 // newNodeJoin is for blocks of length samples and functions near w.
 func newNodeJoin(w float64, length int) *nodeJoin {
 	out, half := new(nodeJoin), float64(length)/2
-	for side, middle := range [2]float64{-1, 1} { // in units of half a short block
-		for i, at := range nodeAt {
-			for j, from := range nodeAt {
-				turn := cmplx.Exp(complex(0, w*half*(middle+from-2*at)))
-				out[side][i][j] = turn * complex(lagrangeAt(i, (middle+from)/2), 0)
+	turn := func(x float64) complex128 { return cmplx.Exp(complex(0, w*half*x)) }
+	for j, from := range nodeAt {
+		for part := range nodeJoined {
+			forward := turn(from + partMiddle(part))
+			for i := range nodes {
+				out[part][i][j] = forward * complex(lagrangeJoined[part][i][j], 0)
+			}
+		}
+	}
+	for i, at := range nodeAt {
+		back := turn(-nodeJoined * at)
+		for part := range nodeJoined {
+			for j := range nodes {
+				out[part][i][j] *= back
 			}
 		}
 	}
 	return out
 }
 
-func (t *nodeJoin) sums(before, later *atNodes) (out atNodes) {
-	for i := range out {
-		sum := complex(0, 0)
-		for j := range nodes {
-			sum += t[0][i][j]*before[j] + t[1][i][j]*later[j]
+// partMiddle is the middle of a part of a block, in units of half the part, from the
+// middle of the block.
+func partMiddle(part int) float64 { return float64(2*part - nodeJoined + 1) }
+
+// lagrangeJoined[part][i][j] is l_i of a block at node j of one of its parts.
+var lagrangeJoined = func() (out [nodeJoined][nodes][nodes]float64) {
+	for part := range out {
+		for i := range nodes {
+			for j, from := range nodeAt {
+				out[part][i][j] = lagrangeAt(i, (partMiddle(part)+from)/nodeJoined)
+			}
 		}
-		out[i] = sum
+	}
+	return out
+}()
+
+func (t *nodeJoin) sums(parts [nodeJoined]*atNodes) (out atNodes) {
+	for part, from := range parts {
+		for i := range out {
+			to := &t[part][i]
+			out[i] += to[0]*from[0] + to[1]*from[1] + to[2]*from[2] + to[3]*from[3] + to[4]*from[4] + to[5]*from[5]
+		}
 	}
 	return out
 }

@@ -6,6 +6,24 @@ import (
 	"testing"
 )
 
+// TestNodeFollower: residuals by way of nodes are those of the curve, also where a ring
+// stops and in a part of a block.
+func TestNodeFollower(t *testing.T) {
+	const most = nodeReach / (nodeBlock / 2)
+	s := series{y: make([]float64, 20011), dt: 1}
+	for law, b := range map[bendLaw]float64{quadratic: most / 12, cubic: most / 12, constant: most / 100} {
+		f := ringFit{s: s, a: most / 50, w: 0.31, p: 0.3, q: -0.7, ref: 0.1, bend: &bend{law, b, most / 2}, nodes: nodalOf(s, 0.31)}
+		if newNodeFollower(&f, 1) == nil {
+			t.Fatalf("%v: too fast", law)
+		}
+		for i, r := range f.residuals(s.slice(100, 20011), 100) {
+			if want := -f.value(float64(100 + i)); math.Abs(r-want) > 1e-10 {
+				t.Fatalf("%v: residual %.12g of sample %d, want %.12g", law, r, i, want)
+			}
+		}
+	}
+}
+
 // TestGramByNodes: the inner products of the laws of the amplitude by way of nodes are
 // those of the definition, for functions that depart from what was summed up as far as
 // they may, with samples that are missing, in any window of a record, and thinned.
@@ -23,7 +41,7 @@ func TestGramByNodes(t *testing.T) {
 	for _, window := range []series{
 		record, record.slice(17, 9000), record.slice(length/2+33, length-5), record.slice(length/3, length/3+nodalFrom), record.thinned(1 << 14),
 	} {
-		n := newNodal(window.slice(0, max(nodalFrom, window.len()/3)), w).over(window, w)
+		n := nodalOf(window.slice(0, max(nodalFrom, window.len()/3)), w).over(window, w)
 		m := window.spacing()
 		most := nodeReach / (nodeBlock / 2) / m // radians an interval
 		for _, law := range []bendLaw{quadratic, cubic, constant} {

@@ -26,15 +26,15 @@ func (z pole) over(m float64) pole { return pole{z.a * m, z.w * m} }
 // theta is enough, and only for their products with y: all other sums are
 // geometric series.
 type poles struct {
-	given        series // as it was given
-	s            series // with what is missing at the level ref
-	rings, falls int    // damped sinusoids, plain exponentials
+	s            series
+	solid        []float64 // with what is missing at the level ref; see whole
+	rings, falls int       // damped sinusoids, plain exponentials
 	n            int
 	ref          float64
 	y, yy        float64 // sums about ref
 	length       float64 // in intervals
 	missing      []int   // samples that are not there
-	near         *expansions
+	near         *projections
 	// latest is what at returned last: a fit that goes on where one ended need not
 	// pass over the samples again for its first step.
 	latest struct {
@@ -44,7 +44,7 @@ type poles struct {
 }
 
 func newPoles(s series, rings, falls int) *poles {
-	p := &poles{rings: rings, falls: falls, ref: s.level(), near: &expansions{}}
+	p := &poles{rings: rings, falls: falls, ref: s.level(), near: &projections{}}
 	p.take(s)
 	return p
 }
@@ -54,6 +54,17 @@ func newPoles(s series, rings, falls int) *poles {
 func (p *poles) extended(s series) *poles {
 	out := p.alike(p.rings, p.falls)
 	out.take(s)
+	return out
+}
+
+// elsewhere is the problem about another window of the record; where it is deep both share
+// sums over nodes.
+func (p *poles) elsewhere(window series) *poles {
+	if window.len() < parallelFrom {
+		return newPoles(window, p.rings, p.falls)
+	}
+	out := &poles{rings: p.rings, falls: p.falls, ref: p.ref, near: p.near}
+	out.take(window)
 	return out
 }
 
@@ -68,10 +79,15 @@ func (p *poles) take(s series) {
 			return func() { p.add(y, yy, n) }
 		})
 	}
-	p.given, p.s, p.missing = s, s, nil
+	p.s, p.solid, p.missing = s, s.y, nil
 	p.length = s.position(s.len() - 1)
-	if p.n < s.len() {
-		p.fillGaps()
+	if p.n < s.len() && s.even() {
+		p.solid = nil
+		for i, v := range s.y {
+			if v != v {
+				p.missing = append(p.missing, i)
+			}
+		}
 	}
 }
 
@@ -110,20 +126,6 @@ func sumsOfThose(y []float64, ref float64) (sum, squares float64, n int) {
 	return sum, squares, n
 }
 
-// fillGaps notes the samples that are not there and puts them at the reference
-// level, where they add nothing to the sums with y.
-func (p *poles) fillGaps() {
-	if p.s.even() {
-		p.s.y = slices.Clone(p.s.y)
-	}
-	for i, v := range p.s.y {
-		if math.IsNaN(v) && p.s.even() {
-			p.missing = append(p.missing, i)
-			p.s.y[i] = p.ref
-		}
-	}
-}
-
 // alike is the problem of another number of exponentials about the same samples.
 func (p *poles) alike(rings, falls int) *poles {
 	out := *p
@@ -133,11 +135,11 @@ func (p *poles) alike(rings, falls int) *poles {
 }
 
 // covers reports whether the problem is about the samples of s.
-func (p *poles) covers(s series) bool { return p.begins(s) && p.given.len() == s.len() }
+func (p *poles) covers(s series) bool { return p.begins(s) && p.s.len() == s.len() }
 
 // begins reports whether it is about the first samples of s.
 func (p *poles) begins(s series) bool {
-	return p != nil && p.given.len() <= s.len() && &p.given.y[0] == &s.y[0] && p.given.stride == s.stride
+	return p != nil && p.s.len() <= s.len() && &p.s.y[0] == &s.y[0] && p.s.stride == s.stride
 }
 
 // newRing is the problem of one ring.
@@ -253,20 +255,6 @@ func (p *poles) innerProducts(list []pole, n int) gram {
 		}
 	}
 	return g
-}
-
-// takeOut corrects the sums for the samples that are not there.
-func (p *poles) takeOut(g *gram, list []pole) {
-	var f [parametersMost]float64
-	f[0] = 1
-	for _, i := range p.missing {
-		p.basis(list, p.s.position(i), &f)
-		for a := range g.g.n {
-			for b := range a + 1 {
-				g.g.set(a, b, g.g.At(a, b)-f[a]*f[b])
-			}
-		}
-	}
 }
 
 func (p *poles) putProjection(g *gram, k int, sum [2]complex128) {

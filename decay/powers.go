@@ -103,6 +103,30 @@ func (l *ladder) next() complex128 {
 	return l.root * complex(l.re[m], l.im[m])
 }
 
+// walk goes through the powers of a pole at numbers that rise, exact at the start of
+// each block.
+type walk struct {
+	z      pole
+	re, im [blockLength]float64
+	root   complex128
+	block  int
+}
+
+// newWalk is for powers below n.
+func newWalk(z pole, n int) *walk {
+	w := &walk{z: z, block: -1}
+	powerTable(z.at(1), &w.re, &w.im, min(n, blockLength))
+	return w
+}
+
+func (w *walk) at(n int) complex128 {
+	if k := n / blockLength; k != w.block {
+		w.block, w.root = k, w.z.at(float64(k*blockLength))
+	}
+	m := n % blockLength
+	return w.root * complex(w.re[m], w.im[m])
+}
+
 // geometric returns sum n^k z^n over n = 0..count-1 for k = 0, 1, 2, with
 // z = exp(-a + jw). Closed forms lose all digits where z is near one: a short run
 // is summed term by term, and the sum over runs is a geometric one again, of

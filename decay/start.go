@@ -23,6 +23,7 @@ const (
 // A sample is thus left out only when the ring explains it worse than chance.
 type startSearch struct {
 	s        series  // up to the last sample that the search needs
+	whole    *poles  // one ring about them
 	variance float64 // V
 	floor    float64 // variance that a slightly wrong model may leave
 	a, w     float64
@@ -39,7 +40,7 @@ func newStartSearch(s series, start, last int, f *ringFit) *startSearch {
 	s = s.slice(0, min(last, start+startWindow(f)))
 	r := newRing(s)
 	v := r.aboutMean() / float64(max(1, r.n))
-	return &startSearch{s: s, a: f.a, w: f.w, variance: v, floor: sq(modelShare) * v, tried: map[int]trial{}}
+	return &startSearch{s: s, whole: r, a: f.a, w: f.w, variance: v, floor: sq(modelShare) * v, tried: map[int]trial{}}
 }
 
 // startWindow is how many samples tell the start of the decay that f was fitted to.
@@ -67,7 +68,7 @@ func (q *startSearch) fit(window series) (best ringFit, ok bool) {
 		starts = append(starts, damped(window.y)...)
 	}
 	for _, sd := range starts {
-		f, good := fitRing(window, sd.a, sd.w, trialStep)
+		f, good := q.whole.elsewhere(window).solve([]float64{sd.a, sd.w}, trialStep)
 		if good && f.a > 0 && (!ok || f.rss < best.rss) {
 			best, ok = f, true
 		}
