@@ -183,17 +183,18 @@ func (f *ringFit) addition() float64 {
 // found with it may begin too late.
 func (g *gate) extendBack(s series) {
 	least := max(1, int(g.fit.period()/8))
-	most := sigmaGrowth * g.fit.sigma()
+	most, late := sigmaGrowth*g.fit.sigma(), g.lateSigma()
 	// Steps double as long as the samples follow, and halve from where they do not.
 	growing := true
 	for step := least; step >= least && g.first > 0; {
 		to := max(0, g.first-step)
 		head := s.slice(to, g.first)
 		next, ok := refit(s.slice(to, g.last), &g.fit, -float64(g.first-to), coarse)
-		if !ok || next.a <= 0 || next.sigma() > most || !g.follows(&next, head) {
+		if !ok || next.a <= 0 || next.sigma() > most || !next.followed(head, late) {
 			growing = false
 		} else {
 			g.first, g.fit = to, next
+			late = g.lateSigma()
 		}
 		if growing {
 			step *= 2
@@ -204,16 +205,11 @@ func (g *gate) extendBack(s series) {
 	g.cutBefore = g.first > 0
 }
 
-// follows reports whether the samples at the head of a window keep to its fit as
-// those of the rest do.
-func (g *gate) follows(f *ringFit, head series) bool {
-	limit := math.Hypot(headSigma*g.lateSigma(), headShare*f.size())
-	for _, r := range f.residuals(head, 0) {
-		if math.Abs(r) > limit {
-			return false
-		}
-	}
-	return true
+// followed reports whether the samples at the head of the fitted window keep to the fit
+// as those of the rest do, whose noise is late.
+func (f *ringFit) followed(head series, late float64) bool {
+	limit := math.Hypot(headSigma*late, headShare*f.size())
+	return f.departing(head, 0, head.len(), limit, func(int, float64) bool { return false }) <= limit
 }
 
 const (

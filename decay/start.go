@@ -12,6 +12,7 @@ const (
 	headSamples  = 1 << 15 // samples of a long gate that its start is settled with
 	modelShare   = 0.005   // of the record's rms: what a slightly wrong model may leave
 	trimSigma    = 3       // departure at which a sample on an edge is dropped
+	trimSteps    = 64      // steps at most to do so
 )
 
 // startSearch looks for the first sample of the free decay: the cut s for which
@@ -166,19 +167,20 @@ func (g *gate) settleStart(s series, before int, was pole) {
 }
 
 // trim drops the samples of the edge itself, a few at most, that a finite rise
-// time leaves between the levels.
+// time leaves between the levels; of a ring of many samples a cycle several at a time.
 func (g *gate) trim(s series) {
 	if g.first == 0 {
 		return
 	}
 	sigma := g.lateSigma()
-	most := g.first + max(2, int(g.fit.period()/16))
-	for g.first < most && g.last-g.first > 2*samplesLeast {
+	most := min(g.first+max(2, int(g.fit.period()/16)), g.last-2*samplesLeast)
+	step := max(1, (most-g.first)/trimSteps)
+	for g.first < most {
 		r := g.fit.residuals(g.fit.s.slice(0, 1), 0)[0]
 		if math.Abs(r) < trimSigma*sigma {
 			return
 		}
-		g.first++
+		g.first = min(g.first+step, most)
 		g.refit(s, coarse)
 	}
 }
