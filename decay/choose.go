@@ -9,6 +9,9 @@ import (
 const (
 	choiceSamples = 1 << 15 // samples that a model is chosen on
 	suspicion     = 20      // chi-squared from which other models are tried
+	// noiseShare is the share of a window up to which a ring, or a line of what it leaves,
+	// may be nothing but noise.
+	noiseShare = 0.1
 	// evidence is what a richer model must win by, in units of chi-squared beyond
 	// the Bayesian information criterion (Schwarz 1978, from memory). Kass and
 	// Raftery (1995, from memory) call ten decisive; converters and amplifiers are
@@ -66,20 +69,39 @@ func (g *gate) misfits(s series) bool {
 	// A bent ring leaves waves that look like coloured noise: its gain counts in units
 	// of what it leaves itself. In noise that is coloured the evidence decides.
 	bend := f.beside(f.bent())
-	return lineGain(r) > suspicion || bend.gain > suspicion*math.Min(density, bend.left/float64(f.n)) || fallGain(&f)/sq(v.rms*v.factor(0)) > suspicion
+	line, _ := lineGain(r)
+	return line > suspicion || bend.gain > suspicion*math.Min(density, bend.left/float64(f.n)) || fallGain(&f)/sq(v.rms*v.factor(0)) > suspicion
 }
 
-// lineGain is what the strongest line of the residual explains beyond chance, in
-// whole, half and quarter windows.
-func lineGain(r []float64) float64 {
+// isNoise reports whether the ring explains little of its window, and no more than one
+// does by chance.
+func (f *ringFit) isNoise() bool {
+	return f.rss > (1-noiseShare)*f.aboutMean() && energyGain(f, f.noise()) < energyNeeded(f.n)
+}
+
+// nothingRings reports whether noise is all that the gate and the first fit, from which
+// it grew, hold: then no other model finds a decay either.
+func (g *gate) nothingRings(first *gate) bool {
+	if !first.fit.isNoise() || !g.fit.isNoise() {
+		return false
+	}
+	window := g.fit.s.thinned(choiceSamples)
+	r := g.fit.residuals(window, 0)
+	_, share := lineGain(r)
+	return share < noiseShare
+}
+
+// lineGain is what the strongest line of the residual explains beyond chance, and as a
+// share of the energy, in whole, half and quarter windows.
+func lineGain(r []float64) (most, share float64) {
 	y := filled(slices.Clone(r))
-	most := 0.0
 	for n := len(y); n >= len(y)/4 && n >= windowLeast; n /= 2 {
 		for _, s := range spectral(y[:min(n, coreMost)]) {
 			most = math.Max(most, s.gain-2*math.Log(float64(n)))
+			share = math.Max(share, -math.Expm1(-s.gain/float64(min(n, coreMost))))
 		}
 	}
-	return most
+	return most, share
 }
 
 // fallRates are the rates of the exponentials that are tried beside a ring, per

@@ -55,7 +55,7 @@ func findGate(s series, fixedStart, fixedEnd bool, model Model) (gate, bool) {
 	}
 	g.cutCoarseTail(s)
 	plain := g
-	if g.misfits(s) && !g.coarse {
+	if !g.nothingRings(&first) && g.misfits(s) && !g.coarse {
 		if two, ok := withCompanion(s, &first); ok {
 			two.settleBoth(s, fixedStart, fixedEnd)
 			if two.cost(s) < g.cost(s)-companionMargin {

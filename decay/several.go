@@ -12,6 +12,9 @@ import (
 const (
 	edgesMost    = 6    // cuts in search of a decay between edges
 	edgeShare    = 0.2  // of the range that an edge must jump by
+	edgeLevel    = 2    // of the pyramid, means of 16 samples, that edges are sought on
+	stepsLeast   = 256  // steps that tell their noise,
+	stepChance   = 1e-3 // and probability that one of them is so large in noise alone
 	sameRing     = 0.15 // mean square departure, over the square of the amplitude, of one ring from itself
 	stirring     = 3    // variance over that of the noise that is worth a look
 	decayShare   = 0.05 // of the first amplitude that another decay must have
@@ -30,11 +33,12 @@ func findDecays(s series, opt Options) []gate {
 		return nil
 	}
 	g, ok := decayIn(s, opt.Model, nil)
-	if !ok {
-		if g, ok = findGate(s, false, false, opt.Model); !ok {
-			return nil
-		}
+	switch {
+	case ok:
+	case g.last > 0:
 		return []gate{g} // for the judge to say what is wrong with it
+	default:
+		return nil
 	}
 	return joined(s, slices.Concat(decaysLike(&g, s, 0, g.first, opt.Model), []gate{g}, decaysLike(&g, s, g.last, s.len(), opt.Model)))
 }
@@ -109,7 +113,8 @@ func (g *gate) stirs(s series) bool {
 
 // decayIn finds a decay in s that is plausible and, unless like is nil, of the
 // same circuit. A drive that switches to and fro may outweigh the ring: then it is
-// looked for between the edges.
+// looked for between the edges. Where there is none the gate is what was found in the
+// whole of s, if anything.
 func decayIn(s series, model Model, like *gate) (gate, bool) {
 	return decayWithin(s, model, like, edgesMost)
 }
@@ -118,16 +123,20 @@ func decayWithin(s series, model Model, like *gate, cuts int) (gate, bool) {
 	if s.len() < 2*samplesLeast {
 		return gate{}, false
 	}
-	g, ok := findGate(s, false, false, model)
-	if ok && g.plausible() && (like == nil || g.sameCircuit(like)) {
-		return g, true
+	whole, ok := findGate(s, false, false, model)
+	if ok && whole.plausible() && (like == nil || whole.sameCircuit(like)) {
+		return whole, true
+	}
+	if !ok {
+		whole = gate{}
 	}
 	if cuts == 0 {
-		return gate{}, false
+		return whole, false
 	}
-	at, ok := newPyramid(s).strongestEdge(s)
-	if !ok {
-		return gate{}, false
+	p := newPyramid(s)
+	at, ok := p.strongestEdge(s)
+	if !ok || whole.last > 0 && whole.fit.isNoise() && !p.standsOut() {
+		return whole, false
 	}
 	for _, part := range [][2]int{{at, s.len()}, {0, at}} {
 		if g, ok := decayWithin(s.slice(part[0], part[1]), model, like, cuts-1); ok {
@@ -135,7 +144,7 @@ func decayWithin(s series, model Model, like *gate, cuts int) (gate, bool) {
 			return g, true
 		}
 	}
-	return gate{}, false
+	return whole, false
 }
 
 // plausible reports whether the gate holds a decay that is worth a second look.
@@ -149,19 +158,41 @@ func (g *gate) plausible() bool {
 // strongestEdge finds where the means of stretches of 16 samples jump most, if by
 // a notable share of the range.
 func (p *pyramid) strongestEdge(s series) (int, bool) {
-	if len(p.levels) < 3 || s.times != nil {
+	if len(p.levels) <= edgeLevel || s.times != nil {
 		return 0, false
 	}
-	y := p.levels[2].y
-	i := p.steepest(2, 1, len(y)-1)
+	y := p.levels[edgeLevel].y
+	i := p.steepest(edgeLevel, 1, len(y)-1)
 	if i+2 >= len(y) || math.Abs(y[i+2]-y[i]) < edgeShare*(s.hi-s.lo) {
 		return 0, false
 	}
-	for j := 1; j >= 0; j-- {
+	for j := edgeLevel - 1; j >= 0; j-- {
 		i *= pyramidRatio
 		i = p.steepest(j, i, i+3*pyramidRatio)
 	}
 	return i + 1, i > 0
+}
+
+// standsOut reports whether on some level a step is larger than the largest of as many
+// steps of Gaussian noise of any colour: slow noise has steep places everywhere, and to
+// cut it there finds no decay. A few steps tell nothing of that.
+func (p *pyramid) standsOut() bool {
+	for k, level := range p.levels {
+		y, n := level.y, level.len()-2
+		if n < stepsLeast {
+			return k == 0
+		}
+		steps := make([]float64, 0, min(n, noiseSamples))
+		for i := 0; i < n; i += 1 + n/noiseSamples {
+			steps = append(steps, y[i+2]-y[i])
+		}
+		i := min(p.steepest(k, 0, level.len()), n-1)
+		most := math.Max(math.Abs(y[i+1]-y[i]), math.Abs(y[i+2]-y[i]))
+		if most > math.Sqrt(2*math.Log(float64(n)/stepChance))*robustSigma(steps) {
+			return true
+		}
+	}
+	return false
 }
 
 // sameCircuit reports whether g is a measurable decay of the circuit of other.
