@@ -70,61 +70,94 @@ type secondOrderFit struct {
 	iterations int
 }
 
-// fitSecondOrder fits at most n samples of s from sample at on: near critical damping in a and D, far
-// above it, where a and D run along a bent valley, in the two rates.
+// fitSecondOrder fits at most n samples of s from sample at on. In a long window the
+// best of many starts is found on means of it.
 func fitSecondOrder(s series, at, n int) (secondOrderFit, bool) {
 	window := s.slice(at, s.len()).thinned(n)
-	near, okNear := fitNearCritical(window)
-	far, okFar := fitTwoFalls(window)
-	best, ok := near, okNear
-	if okFar && (!okNear || far.rss < near.rss) {
+	means, m := window.averaged(startMeans)
+	best, ok := fitNearCritical(means, nearStarts(means))
+	if far, found := fitTwoFalls(means, fallStarts(means)); found && (!ok || far.rss < best.rss) {
 		best, ok = far, true
+	}
+	if ok && m > 1 {
+		best, ok = refitSecondOrder(window, best.a/float64(m), best.d/sq(float64(m)))
 	}
 	best.at = at
 	return best, ok
 }
 
-func fitNearCritical(window series) (best secondOrderFit, ok bool) {
-	p := newSecondOrder(window.thinned(choiceSamples))
+// refitSecondOrder fits a window from (a, D) on: all of it where the two rates stand
+// apart, and a part of it near critical damping, where only the slower [design] holds.
+func refitSecondOrder(window series, a, d float64) (secondOrderFit, bool) {
+	if v := math.Sqrt(math.Max(0, -d)); v > ratesApart*a {
+		if f, ok := fitTwoFalls(window, [][]float64{{a - v, a + v}}); ok {
+			return f, true
+		}
+	}
+	return fitNearCritical(window.thinned(choiceSamples), [][]float64{{a, d}})
+}
+
+// ratesApart is half the difference of two rates over their mean from which they stand apart.
+const ratesApart = 0.3
+
+// nearStarts are values of (a, D) to start from.
+func nearStarts(window series) (out [][]float64) {
 	length := window.position(window.len() - 1)
 	for _, u := range []float64{3, 10, 30} {
 		a := u / length
-		for _, damping := range []float64{-0.5, 0.3} {
-			sol := minimise(p, []float64{a, damping * a * a}, fine)
-			inv, sound := sol.normal.jtj.inverse()
-			if sol.stop != Converged || !sound || ok && sol.normal.rss >= best.rss {
-				continue
-			}
-			b := sol.normal.beta
-			best, ok = secondOrderFit{s: p.s, a: sol.theta[0], d: sol.theta[1], cov: inv,
-				c: p.ref + b[0], p: b[1], q: b[2], uC: math.Sqrt(inv.At(2, 2)),
-				rss: sol.normal.rss, used: p.n, stop: sol.stop, iterations: sol.iterations}, true
+		out = append(out, []float64{a, -0.5 * a * a}, []float64{a, 0.3 * a * a})
+	}
+	return out
+}
+
+// fitNearCritical fits in a and D, the best of given starts.
+func fitNearCritical(window series, starts [][]float64) (best secondOrderFit, ok bool) {
+	p := newSecondOrder(window)
+	for _, start := range starts {
+		sol := minimise(p, start, fine)
+		inv, sound := sol.normal.jtj.inverse()
+		if sol.stop != Converged || !sound || ok && sol.normal.rss >= best.rss {
+			continue
 		}
+		b := sol.normal.beta
+		best, ok = secondOrderFit{s: p.s, a: sol.theta[0], d: sol.theta[1], cov: inv,
+			c: p.ref + b[0], p: b[1], q: b[2], uC: math.Sqrt(inv.At(2, 2)),
+			rss: sol.normal.rss, used: p.n, stop: sol.stop, iterations: sol.iterations}, true
 	}
 	return best, ok
 }
 
-// fitTwoFalls fits rates r1 < r2: a = (r1+r2)/2, v = (r2-r1)/2, D = -v^2, and
-// with exp(-r1 t) = exp(-at)(K + vS), exp(-r2 t) = exp(-at)(K - vS) the rest.
-func fitTwoFalls(window series) (best secondOrderFit, ok bool) {
-	p := newPoles(window, 0, 2)
+// fallStarts are pairs of rates to start from.
+func fallStarts(window series) (out [][]float64) {
+	length := window.position(window.len() - 1)
 	for _, u := range []float64{1, 4, 12} {
 		for _, ratio := range []float64{3, 20, 100} {
-			sol := minimise(p, []float64{u / p.length, ratio * u / p.length}, fine)
-			inv, sound := sol.normal.jtj.inverse()
-			if sol.stop != Converged || !sound || ok && sol.normal.rss >= best.rss {
-				continue
-			}
-			r1, r2, b := sol.theta[0], sol.theta[1], sol.normal.beta
-			if r1 <= 0 || r2 <= 0 {
-				continue
-			}
-			v := (r2 - r1) / 2
-			da, dd := [2]float64{0.5, 0.5}, [2]float64{v, -v}
-			best, ok = secondOrderFit{s: window, a: (r1 + r2) / 2, d: -v * v, cov: transformed(&inv, da, dd),
-				c: p.ref + b[0], p: b[1] + b[2], q: v * (b[1] - b[2]), uC: math.Sqrt(inv.At(2, 2)),
-				rss: sol.normal.rss, used: p.n, stop: sol.stop, iterations: sol.iterations}, true
+			out = append(out, []float64{u / length, ratio * u / length})
 		}
+	}
+	return out
+}
+
+// fitTwoFalls fits rates r1 < r2, the best of given starts, far above critical damping,
+// where a and D run along a bent valley: a = (r1+r2)/2, v = (r2-r1)/2, D = -v^2, and
+// with exp(-r1 t) = exp(-at)(K + vS), exp(-r2 t) = exp(-at)(K - vS) the rest.
+func fitTwoFalls(window series, starts [][]float64) (best secondOrderFit, ok bool) {
+	p := newPoles(window, 0, 2)
+	for _, start := range starts {
+		sol := minimise(p, start, fine)
+		inv, sound := sol.normal.jtj.inverse()
+		if sol.stop != Converged || !sound || ok && sol.normal.rss >= best.rss {
+			continue
+		}
+		r1, r2, b := sol.theta[0], sol.theta[1], sol.normal.beta
+		if r1 <= 0 || r2 <= 0 {
+			continue
+		}
+		v := (r2 - r1) / 2
+		da, dd := [2]float64{0.5, 0.5}, [2]float64{v, -v}
+		best, ok = secondOrderFit{s: window, a: (r1 + r2) / 2, d: -v * v, cov: transformed(&inv, da, dd),
+			c: p.ref + b[0], p: b[1] + b[2], q: v * (b[1] - b[2]), uC: math.Sqrt(inv.At(2, 2)),
+			rss: sol.normal.rss, used: p.n, stop: sol.stop, iterations: sol.iterations}, true
 	}
 	return best, ok
 }

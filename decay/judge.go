@@ -184,7 +184,7 @@ func notOscillating(f *ringFit, v noise) (Finding, bool) {
 // as one that needs a companion or an amplitude law for it.
 func twoFallsDo(f *ringFit) bool {
 	window := f.s.thinned(choiceSamples)
-	falls, ok := fitTwoFalls(window)
+	falls, ok := fitTwoFalls(window, fallStarts(window))
 	if !ok {
 		return false
 	}
@@ -213,29 +213,45 @@ func bareExponential() Finding {
 // for most of what moves in the record.
 func fallsOnly(s series) bool {
 	p := newPyramid(s)
-	levels := p.flat
-	total := levels.left(0, s.len())
+	all := p.levels[0].len()
+	total := p.flat.left(0, all)
 	for _, o := range p.onsets() {
-		if s.len()-o < 2*samplesLeast {
+		if all-o < 2*samplesLeast {
 			continue
 		}
-		window := s.slice(o, s.len())
-		if left, ok := fitExponential(window); ok && levels.about(0, o/levels.block)+left < fallsShare*total {
-			return newRing(window).aboutMean() > fallsShare*total
+		k := p.levelFor(all-o, startMeans)
+		level := p.levels[k].slice(o/scale(k), p.levels[k].len())
+		fall, ok := fitExponential(level)
+		if !ok {
+			continue
+		}
+		block := o / p.flat.block
+		before, behind := p.flat.about(0, block), p.flat.about(block, len(p.flat.sum)-1)
+		explained := float64(scale(k)) * (newRing(level).aboutMean() - fall)
+		if before+behind-explained < fallsShare*total {
+			return behind > fallsShare*total
 		}
 	}
 	return false
 }
 
+// startMeans are enough to find the rates of exponentials on, as means of a long window.
+const startMeans = 1 << 12
+
 // fitExponential returns the residual sum of squares of a bare exponential about
 // a constant, from the best of a row of start rates.
 func fitExponential(s series) (float64, bool) {
-	p := newPoles(s, 0, 1)
-	best := math.Inf(1)
+	means, m := s.averaged(startMeans)
+	p := newPoles(means, 0, 1)
+	best, at := math.Inf(1), 0.0
 	for _, u := range []float64{0.3, 2, 8, 30} {
-		if sol := minimise(p, []float64{u / p.length}, coarse); sol.stop != Singular {
-			best = math.Min(best, sol.normal.rss)
+		if sol := minimise(p, []float64{u / p.length}, coarse); sol.stop != Singular && sol.normal.rss < best {
+			best, at = sol.normal.rss, sol.theta[0]
 		}
+	}
+	if m > 1 && !math.IsInf(best, 1) {
+		sol := minimise(newPoles(s, 0, 1), []float64{at / float64(m)}, coarse)
+		return sol.normal.rss, sol.stop != Singular
 	}
 	return best, !math.IsInf(best, 1)
 }

@@ -34,3 +34,22 @@ func TestOverdampedIsNoRing(t *testing.T) {
 		}
 	}
 }
+
+// In a long window the starts are sought on means, and the rates come from all samples:
+// zeta and the mean rate of two exponentials that are given.
+func TestOverdampedDeep(t *testing.T) {
+	const n, slow, fast = 200000, 5e-5, 2e-4
+	random := normal01(6)
+	y := make([]float64, n)
+	for i := range y {
+		u := float64(i)
+		y[i] = math.Exp(-slow*u) + math.Exp(-fast*u) + 0.003*random()
+	}
+	f, ok := fitSecondOrder(series{y: y, dt: 1}, 0, n)
+	if a := (slow + fast) / 2; !ok || f.used != n || math.Abs(f.a-a) > 4*0.003*math.Sqrt(f.cov.At(0, 0)) {
+		t.Errorf("rate %g from %d samples, want %g", f.a, f.used, a)
+	}
+	if d := -sq((fast - slow) / 2); math.Abs(f.d-d) > 4*0.003*math.Sqrt(f.cov.At(1, 1)) {
+		t.Errorf("D %g, want %g", f.d, d)
+	}
+}

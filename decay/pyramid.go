@@ -108,6 +108,15 @@ func gridded(s series) []float64 {
 // scale returns the number of samples of level 0 in one of level k.
 func scale(k int) int { return 1 << (2 * k) }
 
+// levelFor is the finest level on which n samples of level 0 are no more than most.
+func (p *pyramid) levelFor(n, most int) int {
+	k := 0
+	for k+1 < len(p.levels) && n/scale(k) > most {
+		k++
+	}
+	return k
+}
+
 // onsets proposes where a decay may begin, as indices of level 0 in order of time.
 // Any shock stands out, at some scale, as the place where the mean of a stretch
 // differs most from the mean of the next: the steepest place of each level is

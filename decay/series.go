@@ -102,6 +102,32 @@ func (s series) thinned(n int) series {
 	return out
 }
 
+// averaged returns the means over stretches of m samples, few enough that at most n are
+// left, and m: a series of its own interval, in which an exponential is an exponential
+// still, m times as fast.
+func (s series) averaged(n int) (out series, m int) {
+	if m = (s.len() + n - 1) / n; m <= 1 {
+		return s, 1
+	}
+	out = series{y: make([]float64, s.len()/m), t0: s.t0, dt: s.dt * float64(m), gaps: s.gaps}
+	if s.times != nil {
+		out.times = make([]float64, len(out.y))
+	}
+	halves(len(out.y), func(first, last int) func() {
+		for i := first; i < last; i++ {
+			part := s.slice(i*m, (i+1)*m)
+			sum, _, there := sums(part.y, 0)
+			out.y[i] = sum / float64(there) // NaN where there is none
+			if s.times != nil {
+				out.times[i], _, _ = sums(part.times, 0)
+				out.times[i] /= float64(m)
+			}
+		}
+		return func() {}
+	})
+	return out, m
+}
+
 // count returns the number of samples that are there.
 func (s series) count() int {
 	if !s.gaps {
