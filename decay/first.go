@@ -166,10 +166,7 @@ func similar(s seed, done []seed) bool {
 // returns the energy that the ring explains there beyond a constant, in units of
 // samples of level 0.
 func (p *pyramid) refine(sd seed) (f ringFit, explained float64, ok bool) {
-	k := 0
-	for k+1 < len(p.levels) && (sd.last-sd.first)/scale(k) > coreMost {
-		k++
-	}
+	k := p.levelFor(sd.last-sd.first, coreMost)
 	m := float64(scale(k))
 	level := p.levels[k]
 	window := level.slice(sd.first/scale(k), min(sd.last/scale(k), level.len()))
@@ -236,4 +233,12 @@ func (p *pyramid) sample(s series, i int) int {
 	}
 	t := p.levels[0].t0 + float64(i)*s.dt
 	return sort.SearchFloat64s(s.times, t-0.5*s.dt)
+}
+
+// index converts an index of s to one of level 0.
+func (p *pyramid) index(s series, i int) int {
+	if s.times == nil {
+		return i
+	}
+	return min(p.levels[0].len(), int((s.time(i)-s.times[0])/s.dt+0.5))
 }

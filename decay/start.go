@@ -109,34 +109,37 @@ func floorPower(n int) int {
 // reach bounds the first step, in samples.
 func (g *gate) placeStart(s series, p *pyramid, reach int) {
 	before, a, w := g.first, g.fit.a, g.fit.w
-	k := 0
-	if s.whole() {
-		for k+1 < len(p.levels) && g.fit.period()/float64(scale(k+1)) >= startPoints {
-			k++
-		}
+	k, short := 0, min(startWindow(&g.fit), s.len()) <= headSamples
+	for k+1 < len(p.levels) && g.fit.period()/float64(scale(k+1)) >= startPoints && (s.whole() || !short) {
+		k++
 	}
-	for {
-		m := float64(scale(k))
-		level := s
-		if k > 0 {
-			level = p.levels[k]
+	for ; k > 0; k = max(0, k-2) {
+		level, m := p.levels[k], scale(k)
+		first, last := p.index(s, g.first)/m, min(p.index(s, g.last)/m, level.len())
+		if at, ok := g.searchStart(level, first, last, float64(m), reach/m); ok {
+			g.first = min(p.sample(s, at*m), s.len()-1)
 		}
-		f := g.fit
-		f.a, f.w = f.a*m, f.w*m
-		q := newStartSearch(level, g.first/scale(k), min(g.last/scale(k), level.len()), &f)
-		at, t := q.search(min(g.first/scale(k), max(0, q.s.len()-samplesLeast)), reach/scale(k))
-		if !math.IsInf(t.cost, 1) {
-			g.first = at * scale(k)
-			g.fit.a, g.fit.w = t.fit.a/m, t.fit.w/m
-		}
-		if k == 0 {
-			break
-		}
-		reach = min(reach, startReach*scale(k))
-		k = max(0, k-2)
+		reach = min(reach, startReach*m)
+	}
+	if at, ok := g.searchStart(s, g.first, g.last, 1, reach); ok {
+		g.first = at
 	}
 	g.settleStart(s, before, pole{a, w})
 	g.cutBefore = g.first > 0
+}
+
+// searchStart returns the start of the decay in s, whose intervals are m times those of
+// the record, sought from first on, and notes the rate and frequency that fit there.
+func (g *gate) searchStart(s series, first, last int, m float64, reach int) (int, bool) {
+	f := g.fit
+	f.a, f.w = f.a*m, f.w*m
+	q := newStartSearch(s, first, last, &f)
+	at, t := q.search(min(first, max(0, q.s.len()-samplesLeast)), reach)
+	if math.IsInf(t.cost, 1) {
+		return first, false
+	}
+	g.fit.a, g.fit.w = t.fit.a/m, t.fit.w/m
+	return at, true
 }
 
 // settleStart fits the gate from where its start has come to, and moves it by the
