@@ -23,6 +23,13 @@ const (
 	fullWindow = 3
 )
 
+// A ring of less than blurredRing times its rate in angular frequency, Q below 0.9, and an
+// exponential of more than blurredShare of it account for many a response between them.
+const (
+	blurredRing  = 1.5
+	blurredShare = 0.3
+)
+
 // shortWindow is the window, in time constants, below which the fall is hardly seen.
 const shortWindow = 0.45
 
@@ -95,6 +102,11 @@ func (g *gate) besides(c *term, forced bool) Finding {
 			"Let the model be chosen, unless you know by other means that something else resonates.")
 	}
 	switch tone := c.steady(f.s.position(f.s.len() - 1)); {
+	case c.w == 0 && f.w < blurredRing*f.a && share > blurredShare:
+		return warning(capture.BaselineDrift,
+			fmt.Sprintf("An exponential of %s of the ring's amplitude, with a time constant of %s, was fitted beside a ring that has died within a cycle: the two are hardly told apart, and a circuit that does not swing at all may look like both.",
+				percent(share), quantity.Format(f.s.dt/c.a, "s", 3)),
+			"Compare with a capture at another time base, begin the gate behind the edge with --from, and couple by DC.")
 	case c.w == 0:
 		return note(capture.BaselineDrift,
 			fmt.Sprintf("The ring sits on a baseline that moves exponentially, by %s of the ring's amplitude with a time constant of %s; it was fitted along.",

@@ -53,3 +53,24 @@ func TestOverdampedDeep(t *testing.T) {
 		t.Errorf("D %g, want %g", f.d, d)
 	}
 }
+
+// TestOverdampedIsNoGoodRing: no response of a circuit that does not swing, discharged
+// from a level (x = e^-at (cosh st + a/s sinh st), the solution of x" + 2ax' + w0²x = 0),
+// passes without a warning as a ring beside an exponential.
+func TestOverdampedIsNoGoodRing(t *testing.T) {
+	const n, before, zeta, w0 = 3000, 300, 1.3, 0.02
+	a, s := zeta*w0, w0*math.Sqrt(zeta*zeta-1)
+	y := make([]float64, n)
+	for i := range y {
+		if y[i] = 1; i >= before {
+			u := float64(i - before)
+			y[i] = math.Exp(-a*u) * (math.Cosh(s*u) + a/s*math.Sinh(s*u))
+		}
+	}
+	for seed := range uint64(30) {
+		r := Analyze(channel(withNoise(y, 0.003, seed), 0, 1), Options{})
+		if r.Status == Good {
+			t.Errorf("seed %d: %s, damping ratio %s, %v", seed, r.Model, r.Quantities.DampingRatio, r.Findings)
+		}
+	}
+}
