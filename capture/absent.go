@@ -71,13 +71,7 @@ func (p *plan) acceptPart(c *chunk, line int) {
 	for k, gone := range c.absent {
 		switch h := c.holes[k]; {
 		case !gone:
-			s, t := &c.spans[k], &c.now[k]
-			if s.run.goesOn(t) && s.n == s.run.n {
-				s.run.n++
-				s.n++
-			} else if !s.add(t) {
-				c.fallen, c.err = append(c.fallen, k), errFell
-			}
+			c.stamp(k)
 		case len(h) > 0 && h[len(h)-1].to == c.rows:
 			h[len(h)-1].to++
 		default:

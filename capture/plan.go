@@ -149,16 +149,21 @@ func (p *plan) readRow(c *chunk, w *worker, i, line int) (next int) {
 // errFell says so.
 func (p *plan) accept(c *chunk) {
 	for k := range c.spans {
-		s, t := &c.spans[k], &c.now[k]
-		if s.run.goesOn(t) && s.n == s.run.n {
-			s.run.n++
-			s.n++
-		} else if !s.add(t) {
-			c.fallen, c.err = append(c.fallen, k), errFell
-		}
+		c.stamp(k)
 	}
 	if c.footer != nil {
 		c.between()
+	}
+}
+
+// stamp takes in that of time column k.
+func (c *chunk) stamp(k int) {
+	s, t := &c.spans[k], &c.now[k]
+	if s.run.goesOn(t) && s.n == s.run.n {
+		s.run.n++
+		s.n++
+	} else if !s.add(t) {
+		c.fallen, c.err = append(c.fallen, k), errFell
 	}
 }
 
