@@ -179,17 +179,24 @@ func cheapest(list []ringFit) ringFit {
 	byRSS := func(x, y ringFit) int { return cmp.Compare(x.rss, y.rss) }
 	least, most := slices.MinFunc(list, byRSS), slices.MaxFunc(list, byRSS)
 	v := noiseOf(least.residuals(least.s, 0), least.sigma())
-	charge := func(f *ringFit) float64 {
-		c := float64(f.normal.jtj.n)*math.Log(float64(f.n)) - (most.rss-f.rss)/sq(v.rms*v.factor(f.addition()))
-		if f.companion != nil || f.bend != nil {
-			c += evidence * (1 + fewSamples/float64(f.n))
-		}
+	cost := func(f *ringFit) float64 {
+		c := f.charge() - (most.rss-f.rss)/sq(v.rms*v.factor(f.addition()))
 		if k := f.companion; k != nil && k.w > 0 && math.Abs(k.w-f.w) < math.Abs(k.a)+math.Abs(f.a) {
 			c += unresolved
 		}
 		return c
 	}
-	return slices.MinFunc(list, func(x, y ringFit) int { return cmp.Compare(charge(&x), charge(&y)) })
+	return slices.MinFunc(list, func(x, y ringFit) int { return cmp.Compare(cost(&x), cost(&y)) })
+}
+
+// charge is what the fit must explain, in units of chi-squared, to pay for its
+// parameters: the criterion's, and the evidence wanted of what goes beyond one ring.
+func (f *ringFit) charge() float64 {
+	c := float64(f.normal.jtj.n) * math.Log(float64(f.n))
+	if f.companion != nil || f.bend != nil {
+		c += evidence * (1 + fewSamples/float64(f.n))
+	}
+	return c
 }
 
 // addition is the angular frequency of what the fit has beyond one ring.

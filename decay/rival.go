@@ -80,9 +80,8 @@ func (f *ringFit) gainOverOne() (gain, decisive float64) {
 		return math.Inf(1), 0
 	}
 	v := noiseOf(own.residuals(window, 0), own.sigma())
-	n := float64(own.n)
 	gain = math.Max(0, plain.rss-own.rss) / sq(v.rms*v.factor(f.addition()))
-	return gain, float64(own.normal.jtj.n-plain.normal.jtj.n)*math.Log(n) + evidence*(1+fewSamples/n)
+	return gain, own.charge() - plain.charge()
 }
 
 // earned reports whether evidence speaks for what the fit has beyond one ring. A model
