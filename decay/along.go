@@ -105,8 +105,11 @@ func (d *Decay) ringAt(ch *capture.Channel, from, step, to int) func() complex12
 	first := cmplx.Exp(complex(0, omega*(start-d.From)))
 	if ch.Axis.Times == nil {
 		dt := ch.Axis.Interval * float64(step)
-		powers := newLadder(pole{alpha * dt, omega * dt}, (to-from)/step+1)
-		return func() complex128 { return first * powers.next() }
+		powers, n := newWalk(pole{alpha * dt, omega * dt}, (to-from)/step+1), -1
+		return func() complex128 {
+			n++
+			return first * powers.at(n)
+		}
 	}
 	i := from - step
 	return func() complex128 {

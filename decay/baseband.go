@@ -78,9 +78,9 @@ func (d *Decay) baseband(ch *capture.Channel, w float64, m int) *baseband {
 	b := &baseband{w: w, dt: ch.Axis.Interval, m: m, n: d.Last - d.First,
 		d: d, constant: constantOf(d.law)}
 	b.table.fill(pole{0, -w}, m)
-	turn := newLadder(pole{0, -w}.over(blockLength), m/blockLength+1)
-	for range m/blockLength + 1 {
-		b.turns = append(b.turns, turn.next())
+	turn := newWalk(pole{0, -w}.over(blockLength), m/blockLength+1)
+	for k := range m/blockLength + 1 {
+		b.turns = append(b.turns, turn.at(k))
 	}
 	blocks := (b.n + m - 1) / m
 	b.measured, b.fitted = make([]complex128, blocks), make([]complex128, blocks)
@@ -95,9 +95,9 @@ func (d *Decay) baseband(ch *capture.Channel, w float64, m int) *baseband {
 		return func() { b.missing += missing }
 	})
 	b.fit()
-	turn = newLadder(pole{0, -w}.over(float64(m)), blocks)
+	turn = newWalk(pole{0, -w}.over(float64(m)), blocks)
 	for k := range b.measured { // phases are counted from the first sample of all
-		t := turn.next()
+		t := turn.at(k)
 		b.measured[k] *= t
 		b.fitted[k] *= t
 	}
@@ -161,9 +161,9 @@ func (b *baseband) fit() {
 		}
 	} else {
 		for _, r := range ringsOf(b.d.law, 0, 0, b.dt) {
-			powers := newLadder(pole{r.a, r.w}.over(float64(b.m)), whole)
+			powers := newWalk(pole{r.a, r.w}.over(float64(b.m)), whole)
 			for k, image := 0, b.images(r, b.m); k < whole; k++ {
-				b.fitted[k] += image.of(complex(r.p, -r.q) * powers.next())
+				b.fitted[k] += image.of(complex(r.p, -r.q) * powers.at(k))
 			}
 		}
 	}

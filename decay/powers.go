@@ -79,30 +79,6 @@ func (t *powers) block(y []float64, ref float64) [2]complex128 {
 	return [2]complex128{complex(sr+tr, si+ti), complex(mr+nr, mi+ni)}
 }
 
-// ladder goes through the powers of a pole at 0, 1, 2, ..., exact once a table.
-type ladder struct {
-	z      pole
-	re, im [blockLength]float64
-	root   complex128
-	n      int
-}
-
-// newLadder is for n powers at most.
-func newLadder(z pole, n int) *ladder {
-	l := &ladder{z: z}
-	powerTable(z.at(1), &l.re, &l.im, min(n, blockLength))
-	return l
-}
-
-func (l *ladder) next() complex128 {
-	m := l.n % blockLength
-	if m == 0 {
-		l.root = l.z.at(float64(l.n))
-	}
-	l.n++
-	return l.root * complex(l.re[m], l.im[m])
-}
-
 // walk goes through the powers of a pole at numbers that rise, exact at the start of
 // each block.
 type walk struct {
